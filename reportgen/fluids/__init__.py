@@ -1,0 +1,1 @@
+"""Property models: vectorised, SI units, mass basis."""

@@ -1,0 +1,132 @@
+"""The glossary: one name for every number, with its symbol, dimension, SI unit and sign.
+
+A value's path is its place in the calculation file (``states.1.pressure``); its last part is a name of this
+glossary. Symbols follow ISO 80000-5 and ISO 80000-4 where these have one.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+__all__ = ["DIMENSIONS", "NAMES", "Name", "name_of", "symbol_of"]
+
+#: SI unit of each dimension, as written in a Record.
+DIMENSIONS: dict[str, str] = {
+    "temperature": "K",
+    "temperature_difference": "K",
+    "pressure": "Pa",
+    "pressure_difference": "Pa",
+    "specific_energy": "J/kg",
+    "specific_entropy": "J/(kg*K)",
+    "density": "kg/m3",
+    "specific_volume": "m3/kg",
+    "mass_flow": "kg/s",
+    "molar_flow": "mol/s",
+    "volume_flow": "m3/s",
+    "molar_mass": "kg/mol",
+    "power": "W",
+    "heat_flow": "W",
+    "entropy_flow": "W/K",
+    "energy": "J",
+    "entropy": "J/K",
+    "mass": "kg",
+    "volume": "m3",
+    "velocity": "m/s",
+    "length": "m",
+    "area": "m2",
+    "efficiency": "1",
+    "ratio": "1",
+}
+
+
+@dataclass(frozen=True)
+class Name:
+    """One entry: key, LaTeX symbol, dimension (a key of DIMENSIONS), meaning, sign convention."""
+
+    key: str
+    symbol: str
+    dimension: str
+    text: str
+    sign: str = ""
+
+    @property
+    def unit(self) -> str:
+        """SI unit as written in a Record."""
+        return DIMENSIONS[self.dimension]
+
+
+_INTO = "positive into the fluid"
+_POWER = "positive in the natural direction of the kind: absorbed by compressors and pumps, delivered by turbines"
+
+_ENTRIES = (
+    # states
+    Name("temperature", "T", "temperature", "Thermodynamic temperature"),
+    Name("pressure", "p", "pressure", "Absolute pressure"),
+    Name("specific_enthalpy", "h", "specific_energy", "Specific enthalpy"),
+    Name("specific_entropy", "s", "specific_entropy", "Specific entropy"),
+    Name("specific_internal_energy", "u", "specific_energy", "Specific internal energy"),
+    Name("density", r"\rho", "density", "Mass density"),
+    Name("specific_volume", "v", "specific_volume", "Specific volume"),
+    Name("quality", "x", "ratio", "Vapour mass fraction of a two-phase state"),
+    Name("superheat", r"\Delta T_\mathrm{sup}", "temperature_difference", "Temperature above saturation at the same pressure"),
+    Name("subcooling", r"\Delta T_\mathrm{sub}", "temperature_difference", "Temperature below saturation at the same pressure"),
+    Name("compressibility_factor", "Z", "ratio", "Compressibility factor p v M / (R T)"),
+    Name("isobaric_heat_capacity", "c_p", "specific_entropy", "Specific heat capacity at constant pressure"),
+    Name("isochoric_heat_capacity", "c_v", "specific_entropy", "Specific heat capacity at constant volume"),
+    Name("speed_of_sound", "w", "velocity", "Speed of sound"),
+    Name("specific_exergy", "e", "specific_energy", "Specific flow exergy relative to the surroundings"),
+    Name("mass_flow", r"\dot m", "mass_flow", "Mass flow rate"),
+    Name("molar_flow", r"\dot n", "molar_flow", "Amount-of-substance flow rate"),
+    Name("volume_flow", r"\dot V", "volume_flow", "Volume flow rate at the conditions of the state"),
+    Name("mass", "m", "mass", "Mass"),
+    Name("volume", "V", "volume", "Volume"),
+    Name("velocity", "V", "velocity", "Mean velocity of the flow"),
+    Name("elevation", "z", "length", "Elevation above a common datum"),
+    # equipment
+    Name("power", r"\dot W", "power", "Power", _POWER),
+    Name("heat", r"\dot Q", "heat_flow", "Heat flow rate", _INTO),
+    Name("boundary_temperature", "T_b", "temperature", "Temperature of the boundary where heat crosses"),
+    Name("duty", r"\dot Q", "heat_flow", "Heat flow from the hot to the cold side", "positive from hot to cold"),
+    Name("isentropic_efficiency", r"\eta_s", "efficiency", "Isentropic efficiency"),
+    Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
+    Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Specific enthalpy at outlet pressure and inlet entropy"),
+    Name("pressure_drop", r"\Delta p", "pressure_difference", "Pressure loss from inlet to outlet"),
+    Name("pressure_ratio", r"r_p", "ratio", "Higher over lower pressure of the machine"),
+    Name("entropy_generation", r"\dot S_\mathrm{gen}", "entropy_flow", "Entropy generation rate"),
+    Name("entropy_with_heat", r"\dot S_Q", "entropy_flow", "Entropy carried by heat", _INTO),
+    Name("entropy_imbalance", r"\delta\dot S", "entropy_flow", "What is left of the entropy balance"),
+    Name("lost_work", r"\dot W_\mathrm{lost}", "power", "Work forgone at the temperature of the surroundings, T0 times entropy generation"),
+    Name("exergetic_efficiency", r"\varepsilon", "efficiency", "Exergetic efficiency: exergy gained over exergy spent"),
+    Name("entropy_generation_number", r"N_s", "ratio", "Entropy generation rate over the reference stated for the kind"),
+    Name("energy_imbalance", r"\delta\dot E", "power", "What is left of the energy balance"),
+    Name("mass_imbalance", r"\delta\dot m", "mass_flow", "What is left of the mass balance"),
+    Name("closure", r"\delta\dot S_\mathrm{gen}", "entropy_flow", "Sum of the parts minus the balance round the whole"),
+)
+
+NAMES: dict[str, Name] = {entry.key: entry for entry in _ENTRIES}
+
+
+def name_of(path: str) -> Name | None:
+    """Glossary entry of the last part of a path, or None when the path ends in no known name."""
+    return NAMES.get(path.rsplit(".", 1)[-1])
+
+
+def symbol_of(path: str) -> str:
+    """LaTeX symbol of a value, with the state or the tag as its subscript.
+
+    ``states.2.specific_entropy`` gives ``s_{\\mathrm{2}}``. A path that ends in no known name gives its own text.
+    """
+    parts = path.split(".")
+    entry = NAMES.get(parts[-1])
+    if entry is None:
+        return r"\mathrm{" + parts[-1].replace("_", r"\ ") + "}"
+    if parts[0] == "surroundings":
+        owner = "0"
+    elif parts[0] == "total":
+        owner = r"\mathrm{total}"
+    else:
+        owner = r"\mathrm{" + ".".join(parts[1:-1]) + "}"
+    base, _, inner = entry.symbol.partition("_")
+    if inner:
+        return f"{base}_{{{inner.strip('{}') if inner.startswith('{') else inner},{owner}}}"
+    return f"{base}_{{{owner}}}"

@@ -1,0 +1,1 @@
+"""From a Record to equations, figures, tables, pages and the register."""

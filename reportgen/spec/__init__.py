@@ -1,0 +1,1 @@
+"""The calculation file: schema, reading with line numbers, JSON Schema."""
