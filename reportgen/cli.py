@@ -1,0 +1,239 @@
+"""The commands. Each one only calls the layers in order and says what came of it.
+
+Exit status: 0 done; 1 done, but ``--strict`` was asked and a stop caution or failed criterion stands; 2 the input is
+wrong; 3 it cannot be solved. Every heavy import stays inside the command that needs it.
+"""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Iterator
+from contextlib import contextmanager
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import click
+
+from reportgen import __version__
+from reportgen.errors import Fault, InputError, ReportgenError
+
+if TYPE_CHECKING:
+    from reportgen.record import Record
+
+__all__ = ["main"]
+
+_FOLDER = click.Path(path_type=Path, file_okay=False)
+_STRICT = click.option("--strict", is_flag=True, help="Exit with status 1 when a stop caution or a failed criterion stands.")
+
+
+@contextmanager
+def _reported() -> Iterator[None]:
+    """Turn an error raised on purpose into its text on standard error and its exit status."""
+    try:
+        yield
+    except ReportgenError as error:
+        _say_faults(error)
+        raise SystemExit(error.exit_status) from None
+    except OSError as error:
+        click.echo(f"{error.filename or 'file'}: {error.strerror or error}", err=True)
+        raise SystemExit(InputError.exit_status) from None
+
+
+def _say_faults(error: ReportgenError, within: Path | None = None) -> None:
+    """Print every fault on a line of its own, file names made relative to where the user stands."""
+    for fault in error.faults:
+        if within is not None and fault.file is not None:
+            fault = fault.at((within / fault.file).as_posix(), fault.line, fault.column)
+        elif within is not None and fault.file is None:
+            fault = fault.at((within / "calculation.toml").as_posix(), None)
+        click.echo(str(fault), err=True)
+    count = len(error.faults)
+    if count > 1:
+        click.echo(f"{count} faults.", err=True)
+
+
+@click.group(context_settings={"help_option_names": ["-h", "--help"]})
+@click.version_option(__version__, prog_name="reportgen")
+def main() -> None:
+    """Entropy calculation reports: from a plain-text calculation file to a checked, versioned HTML report."""
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            stream.reconfigure(encoding="utf-8", newline="\n" if stream is sys.stdout else None)
+
+
+@main.command()
+@click.argument("folder", type=_FOLDER)
+def start(folder: Path) -> None:
+    """Write a new calculation into FOLDER from a starter that evaluates as it is."""
+    from reportgen import spec
+
+    with _reported():
+        written = spec.start(folder)
+    for path in written:
+        click.echo(path.as_posix())
+    click.echo(f"Next: edit {folder.as_posix()}/calculation.toml, then run: reportgen draft {folder.as_posix()}")
+
+
+def _folders(given: tuple[Path, ...]) -> list[Path]:
+    """All calculation folders below the given ones, in order, each once."""
+    from reportgen import spec
+
+    found: dict[Path, None] = {}
+    faults = []
+    for folder in given:
+        try:
+            found.update(dict.fromkeys(spec.find(folder)))
+        except InputError as error:
+            faults.extend(error.faults)
+    if faults:
+        raise InputError(faults)
+    return list(found)
+
+
+def _evaluated(folder: Path) -> Record:
+    """The Record of one folder, its narratives checked."""
+    from reportgen import evaluation, report, spec
+
+    record = evaluation.evaluate(spec.read(folder))
+    report.check_narratives(record)
+    return record
+
+
+class _Outcome:
+    """Worst exit status of a run over several folders, and whether anything stands against ``--strict``."""
+
+    def __init__(self) -> None:
+        self.status = 0
+        self.standing = False
+
+    def failed(self, error: ReportgenError, folder: Path) -> None:
+        _say_faults(error, folder)
+        self.status = max(self.status, error.exit_status)
+
+    def done(self, record: Record) -> None:
+        stops = any(caution["severity"] == "stop" for caution in record.data["cautions"])
+        failed = any(criterion["decision"] == "not met" for criterion in record.data["criteria"])
+        self.standing = self.standing or stops or failed
+
+    def leave(self, strict: bool) -> None:
+        if self.status:
+            raise SystemExit(self.status)
+        if strict and self.standing:
+            raise SystemExit(1)
+
+
+@main.command()
+@click.argument("folder", type=_FOLDER)
+@click.option("--json", "as_json", is_flag=True, help="Print the Record instead of a summary.")
+@_STRICT
+def evaluate(folder: Path, as_json: bool, strict: bool) -> None:
+    """Evaluate the calculation in FOLDER; print results, cautions and criteria, or the Record."""
+    outcome = _Outcome()
+    records = []
+    with _reported():
+        folders = _folders((folder,))
+    for place in folders:
+        try:
+            record = _evaluated(place)
+        except ReportgenError as error:
+            outcome.failed(error, place)
+            continue
+        outcome.done(record)
+        records.append(record)
+    if as_json and not outcome.status:
+        texts = [record.to_json().decode("utf-8").rstrip("\n") for record in records]
+        click.echo(texts[0] if len(folders) == 1 else "[" + ",\n".join(texts) + "]")
+    elif not as_json:
+        from reportgen.report import terminal
+
+        for record in records:
+            terminal.print_summary(record)
+    outcome.leave(strict)
+
+
+@main.command()
+@click.argument("folders", metavar="FOLDER...", type=_FOLDER, nargs=-1, required=True)
+@click.option("--site", type=_FOLDER, default=Path("site"), show_default=True, help="Where the pages go.")
+@_STRICT
+def draft(folders: tuple[Path, ...], site: Path, strict: bool) -> None:
+    """Evaluate each calculation in FOLDER... and render its draft report and the register."""
+    from reportgen import report
+
+    outcome = _Outcome()
+    written: list[Path] = []
+    with _reported():
+        places = _folders(folders)
+    for place in _with_progress(places):
+        try:
+            record = _evaluated(place)
+            _refuse_twice(record, place, written, site)
+            written.append(report.render(record, site))
+        except ReportgenError as error:
+            outcome.failed(error, place)
+            continue
+        outcome.done(record)
+    if written:
+        with _reported():
+            register = report.register(site)
+        for page in written:
+            click.echo(f"report    {page.as_posix()}")
+        click.echo(f"register  {register.as_posix()}")
+    outcome.leave(strict)
+
+
+def _refuse_twice(record: Record, place: Path, written: list[Path], site: Path) -> None:
+    """Two folders that would land on one page would silently lose one of them."""
+    from reportgen import report
+
+    if report.page_path(record, site) in written:
+        title = record.data["calculation"]
+        raise InputError(
+            Fault(
+                f"Number {title['number']} revision {title['revision']} is also used by another folder of this run.",
+                path="calculation.number",
+                file="calculation.toml",
+                found=f"{title['number']} revision {title['revision']} in {place.as_posix()}",
+                expected="a number and revision that no other calculation has",
+            )
+        )
+
+
+def _with_progress(places: list[Path]) -> Iterator[Path]:
+    """The folders one by one, with a progress bar when there are several and a person is watching."""
+    if len(places) < 2 or not sys.stderr.isatty():
+        yield from places
+        return
+    from rich.console import Console
+    from rich.progress import BarColumn, MofNCompleteColumn, Progress, TextColumn
+
+    columns = (TextColumn("{task.description}"), BarColumn(), MofNCompleteColumn())
+    with Progress(*columns, console=Console(stderr=True), transient=True) as progress:
+        task = progress.add_task("drafting", total=len(places))
+        for place in places:
+            progress.update(task, description=place.name)
+            yield place
+            progress.advance(task)
+
+
+@main.command()
+@click.argument("name", required=False)
+def fluids(name: str | None) -> None:
+    """List the fluids carried, with limits and sources; or show the one called NAME."""
+    from reportgen import fluids as models
+
+    with _reported():
+        if name is None:
+            for key in models.names():
+                click.echo(key)
+        else:
+            click.echo(models.describe(name))
+
+
+@main.command()
+def schema() -> None:
+    """Print the JSON Schema of the calculation file, for editors that complete and check it."""
+    import json
+
+    from reportgen import spec
+
+    click.echo(json.dumps(spec.json_schema(), indent=2, ensure_ascii=False, sort_keys=True))
