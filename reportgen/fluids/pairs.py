@@ -1,0 +1,131 @@
+"""Reading the pair of properties that fixes a state, and keeping account of elements that have none."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Collection, Mapping
+from dataclasses import dataclass
+from difflib import get_close_matches
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from reportgen.errors import Fault, InputError, RangeError
+from reportgen.fluids.model import Errors
+
+__all__ = ["PROPERTIES", "Elements", "Pair", "read_pair"]
+
+#: Properties that may be given, with their SI unit.
+PROPERTIES: dict[str, str] = {
+    "pressure": "Pa",
+    "temperature": "K",
+    "specific_enthalpy": "J/kg",
+    "specific_entropy": "J/(kg*K)",
+    "quality": "1",
+    "density": "kg/m3",
+    "specific_volume": "m3/kg",
+    "superheat": "K",
+    "subcooling": "K",
+}
+
+#: Faults named in full when an error is raised; the rest is counted.
+_NAMED_FAULTS = 3
+
+
+@dataclass(frozen=True)
+class Pair:
+    """Two properties as flat arrays of equal length, with the shape to give back.
+
+    ``names`` is in the order of the model's own list of pairs; a specific volume given is here a density.
+    """
+
+    names: tuple[str, str]
+    first: NDArray[np.float64]
+    second: NDArray[np.float64]
+    shape: tuple[int, ...]
+
+
+def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, str]], title: str) -> Pair:
+    """Check the two properties given to a model and bring them to one shape.
+
+    Parameters
+    ----------
+    given : keyword arguments of ``Fluid.at``; names of PROPERTIES, SI.
+    supported : pairs of names the model carries; ``specific_volume`` is turned into ``density`` before the look-up.
+    title : name of the fluid, for messages.
+
+    Raises
+    ------
+    InputError : unknown or repeated property, not exactly two, unsupported pair, shapes that do not broadcast.
+    """
+    for name in given:
+        if name not in PROPERTIES:
+            near = get_close_matches(name, PROPERTIES, n=1)
+            hint = f"Did you mean {near[0]}?" if near else None
+            raise InputError(
+                Fault(
+                    "This is not a property that fixes a state.", found=name, expected=", ".join(PROPERTIES), hint=hint
+                )
+            )
+    if len(given) != 2:
+        found = ", ".join(given) or "nothing"
+        raise InputError(Fault(f"A state of {title} is fixed by exactly two properties.", found=found))
+    values = {}
+    for name, value in given.items():
+        array = np.asarray(value, dtype=np.float64)
+        if name == "specific_volume":
+            with np.errstate(divide="ignore"):
+                array = 1.0 / array
+            name = "density"
+        values[name] = array
+    names = tuple(values)
+    if names not in supported:
+        names = names[::-1]
+        if names not in supported:
+            offered = "; ".join(f"{a} with {b}" for a, b in supported)
+            raise InputError(
+                Fault(f"{title} cannot be evaluated from this pair.", found=" with ".join(given), expected=offered)
+            )
+    first, second = values[names[0]], values[names[1]]
+    if first.shape != second.shape:
+        try:
+            first, second = np.broadcast_arrays(first, second)
+        except ValueError:
+            raise InputError(
+                Fault(
+                    "The two properties have shapes that do not fit together.", found=f"{first.shape}, {second.shape}"
+                )
+            ) from None
+    return Pair((names[0], names[1]), first.reshape(-1), second.reshape(-1), first.shape)
+
+
+class Elements:
+    """Which elements of a flat batch could not be evaluated, and why.
+
+    The first fault of an element stands; NaN given is no fault. ``rejected`` is true in elements with a fault.
+    """
+
+    def __init__(self, size: int) -> None:
+        self.size = size
+        self.faults: dict[int, Fault] = {}
+        self.rejected: NDArray[np.bool_] = np.zeros(size, dtype=np.bool_)
+
+    def reject(self, where: NDArray[np.bool_], describe: Callable[[int], Fault]) -> None:
+        """Mark the elements where ``where`` is true; ``describe(index)`` gives the fault of each newly marked one."""
+        if not where.any():
+            return
+        for index in np.flatnonzero(where & ~self.rejected):
+            self.faults[int(index)] = describe(int(index))
+        self.rejected |= where
+
+    def finish(self, errors: Errors) -> None:
+        """Raise a RangeError that names the first failing elements, if there are any and errors are to be raised."""
+        if not self.faults or errors == "mask":
+            return
+        first = sorted(self.faults.items())[:_NAMED_FAULTS]
+        faults = [fault for _, fault in first]
+        if self.size > 1:
+            positions = ", ".join(str(index) for index, _ in first)
+            count = len(self.faults)
+            more = "" if count <= _NAMED_FAULTS else ", ..."
+            faults.append(Fault(f"{count} of {self.size} elements cannot be evaluated: flat index {positions}{more}."))
+        raise RangeError(faults)
