@@ -33,7 +33,7 @@ class Shown:
     """A number as the reader sees it.
 
     ``number`` and ``unit`` are text, ``uncertainty`` the expanded uncertainty in the same unit or None; ``latex`` is
-    number and unit for a formula.
+    number and unit for a formula, where a temperature stands in K or °R.
     """
 
     number: str
@@ -62,12 +62,12 @@ def _unit(text: str, latex: str, expression: str) -> _DisplayUnit:
 
 
 _KELVIN = _unit("K", "K", "kelvin")
-_RANKINE = _unit("°R", r"{}^{\circ}R", "degR")
+_RANKINE = _DisplayUnit("°R", r"\text{°R}", "degR")
 _PERCENT = _DisplayUnit("%", r"\%", "0.01")
 _ONE = _unit("", "", "1")
 
 _SI = {
-    "temperature": _unit("°C", r"{}^{\circ}C", "degC"),
+    "temperature": _DisplayUnit("°C", r"\text{°C}", "degC"),
     "temperature_difference": _KELVIN,
     "pressure": _unit("bar", "bar", "bar"),
     "pressure_difference": _unit("bar", "bar", "bar"),
@@ -94,12 +94,12 @@ _SI = {
 }
 
 _US = {
-    "temperature": _unit("°F", r"{}^{\circ}F", "degF"),
+    "temperature": _DisplayUnit("°F", r"\text{°F}", "degF"),
     "temperature_difference": _RANKINE,
     "pressure": _unit("psia", "psia", "psi"),
     "pressure_difference": _unit("psi", "psi", "psi"),
     "specific_energy": _unit("Btu/lb", r"Btu\,lb^{-1}", "Btu_it/pound"),
-    "specific_entropy": _unit("Btu/(lb·°R)", r"Btu\,lb^{-1}\,{}^{\circ}R^{-1}", "Btu_it/pound/degR"),
+    "specific_entropy": _DisplayUnit("Btu/(lb·°R)", r"\mathrm{Btu\,lb^{-1}}\,\text{°R}^{-1}", "Btu_it/pound/degR"),
     "density": _unit("lb/ft³", r"lb\,ft^{-3}", "pound/foot**3"),
     "specific_volume": _unit("ft³/lb", r"ft^{3}\,lb^{-1}", "foot**3/pound"),
     "mass_flow": _unit("lb/h", r"lb\,h^{-1}", "pound/hour"),
@@ -108,9 +108,9 @@ _US = {
     "molar_mass": _unit("lb/lbmol", r"lb\,lbmol^{-1}", "gram/mole"),
     "power": _unit("hp", "hp", "horsepower"),
     "heat_flow": _unit("Btu/h", r"Btu\,h^{-1}", "Btu_it/hour"),
-    "entropy_flow": _unit("Btu/(h·°R)", r"Btu\,h^{-1}\,{}^{\circ}R^{-1}", "Btu_it/hour/degR"),
+    "entropy_flow": _DisplayUnit("Btu/(h·°R)", r"\mathrm{Btu\,h^{-1}}\,\text{°R}^{-1}", "Btu_it/hour/degR"),
     "energy": _unit("Btu", "Btu", "Btu_it"),
-    "entropy": _unit("Btu/°R", r"Btu\,{}^{\circ}R^{-1}", "Btu_it/degR"),
+    "entropy": _DisplayUnit("Btu/°R", r"\mathrm{Btu}\,\text{°R}^{-1}", "Btu_it/degR"),
     "mass": _unit("lb", "lb", "pound"),
     "volume": _unit("ft³", "ft^{3}", "foot**3"),
     "velocity": _unit("ft/s", r"ft\,s^{-1}", "foot/second"),
@@ -121,6 +121,8 @@ _US = {
 }
 
 _SYSTEMS = {"SI": _SI, "US": _US}
+#: In a formula a temperature divides and multiplies, so it stands there on its absolute scale.
+_ABSOLUTE = {"SI": _KELVIN, "US": _RANKINE}
 
 
 class Display:
@@ -145,7 +147,7 @@ class Display:
         """An SI value, or array of values, in the unit shown; not rounded. For the axes of figures."""
         scale = conversion(self._table[dimension].expression, dimension)
         # Dividing keeps round numbers round: 101325 Pa / 1e5 is 1.01325 bar exactly, times 1e-5 it is not.
-        return (value - scale.offset) / scale.factor if scale.offset else value / scale.factor
+        return (value - scale.offset) / scale.factor
 
     def show(self, value: float | None, dimension: str, expanded_uncertainty: float | None = None) -> Shown:
         """A value [SI] with the expanded uncertainty [SI, same dimension] as the reader sees it.
@@ -155,22 +157,35 @@ class Display:
         if value is None or not math.isfinite(value):
             return Shown(_MISSING, "", None, r"\text{" + _MISSING + "}")
         unit = self._table[dimension]
-        number = _decimal(self.convert(float(value), dimension))
-        spread: Decimal | None = None
-        if expanded_uncertainty is not None and math.isfinite(expanded_uncertainty) and expanded_uncertainty > 0.0:
-            factor = conversion(unit.expression, dimension).factor
-            spread = _significant(_decimal(float(expanded_uncertainty) / factor), 2)
-            number, spread = _to_place(number, spread)
-        else:
-            number = _without_end_zeros(_significant(number, _DIGITS))
-        exponent = _shown_exponent(number, spread)
-        latex = _write(number, exponent, _write_latex)
+        number, spread, exponent = self._digits(float(value), expanded_uncertainty, dimension, unit)
+        formula_number, formula_exponent, formula_unit = number, exponent, unit
+        if dimension == "temperature":
+            formula_unit = _ABSOLUTE[self.units]
+            formula_number, _, formula_exponent = self._digits(
+                float(value), expanded_uncertainty, "temperature_difference", formula_unit
+            )
+        latex = _write(formula_number, formula_exponent, _write_latex)
         return Shown(
             number=_write(number, exponent, _write_text),
             unit=unit.text,
             uncertainty=None if spread is None else _write(spread, _own_exponent(spread, exponent), _write_text),
-            latex=rf"{latex}\,{unit.latex}" if unit.latex else latex,
+            latex=rf"{latex}\,{formula_unit.latex}" if formula_unit.latex else latex,
         )
+
+    @staticmethod
+    def _digits(
+        value: float, expanded_uncertainty: float | None, dimension: str, unit: _DisplayUnit
+    ) -> tuple[Decimal, Decimal | None, int]:
+        """Rounded value and uncertainty in the unit, with the power of ten to set apart."""
+        scale = conversion(unit.expression, dimension)
+        number = _decimal((value - scale.offset) / scale.factor)
+        spread: Decimal | None = None
+        if expanded_uncertainty is not None and math.isfinite(expanded_uncertainty) and expanded_uncertainty > 0.0:
+            spread = _significant(_decimal(float(expanded_uncertainty) / scale.factor), 2)
+            number = _to_place(number, spread)
+        else:
+            number = _without_end_zeros(_significant(number, _DIGITS))
+        return number, spread, _shown_exponent(number, spread)
 
 
 def _decimal(number: float) -> Decimal:
@@ -193,12 +208,12 @@ def _significant(number: Decimal, digits: int) -> Decimal:
     return _round_to(rounded, rounded.adjusted() - digits + 1)
 
 
-def _to_place(number: Decimal, spread: Decimal) -> tuple[Decimal, Decimal]:
+def _to_place(number: Decimal, spread: Decimal) -> Decimal:
     """The value at the last place of its uncertainty, as far as double precision has digits there."""
     place = int(spread.as_tuple().exponent)
     if number:
         place = max(place, number.adjusted() - _MOST_DIGITS + 1)
-    return _round_to(number, place), spread
+    return _round_to(number, place)
 
 
 def _without_end_zeros(number: Decimal) -> Decimal:

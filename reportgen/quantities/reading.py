@@ -381,7 +381,7 @@ def _spread_factor(unit_text: str, dimension: str, content: str) -> float:
 
 def _finite(number: float, found: str) -> float:
     if not math.isfinite(number):
-        raise _Refused("The number is too large.", found)
+        raise _Refused("The number is too large, or none at all.", found)
     return number
 
 
