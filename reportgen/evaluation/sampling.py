@@ -17,7 +17,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
-from typing import Protocol
+from typing import TYPE_CHECKING
 
 import numpy as np
 import numpy.typing as npt
@@ -25,35 +25,14 @@ import numpy.typing as npt
 from reportgen.errors import Fault, InputError
 from reportgen.evaluation import uncertainty
 
+if TYPE_CHECKING:
+    from reportgen.spec.calculation import Correlation, Input
+
 __all__ = ["Estimate", "SampleAxis", "sample_axis"]
 
 Array = npt.NDArray[np.float64]
 
 ATMOSPHERE = "surroundings.pressure"
-
-
-class Measured(Protocol):
-    """What the sample axis needs to know of a quantity (``quantities.Quantity`` has it)."""
-
-    @property
-    def value(self) -> float: ...
-    @property
-    def gauge(self) -> bool: ...
-    @property
-    def standard_uncertainty(self) -> float | None: ...
-    @property
-    def degrees_of_freedom(self) -> float: ...
-
-
-class Given(Protocol):
-    """What the sample axis needs to know of an input (``spec.Input`` has it)."""
-
-    @property
-    def path(self) -> str: ...
-    @property
-    def quantity(self) -> Measured: ...
-    @property
-    def applies_to(self) -> tuple[str, ...]: ...
 
 
 @dataclass(frozen=True)
@@ -107,8 +86,8 @@ class SampleAxis:
 
 
 def sample_axis(
-    inputs: Mapping[str, Given],
-    correlations: Sequence[tuple[str, str, float, int]] = (),
+    inputs: Mapping[str, Input],
+    correlations: Sequence[Correlation] = (),
     coverage_factor: float = 2.0,
     file: str | None = None,
 ) -> SampleAxis:
@@ -119,7 +98,7 @@ def sample_axis(
 
     Args:
         inputs: path to input, with quantities in SI.
-        correlations: (path, path, r, line) for pairs of uncertain inputs; r in [−1, 1].
+        correlations: coefficients r in [−1, 1] between pairs of uncertain inputs.
         coverage_factor: k by which the standard uncertainty is expanded [1].
         file: name of the calculation file, for the place in errors.
 
@@ -153,19 +132,18 @@ def sample_axis(
     )
 
 
-def _correlation_matrix(
-    names: tuple[str, ...], correlations: Sequence[tuple[str, str, float, int]], file: str | None
-) -> Array:
+def _correlation_matrix(names: tuple[str, ...], correlations: Sequence[Correlation], file: str | None) -> Array:
     matrix = np.eye(len(names))
     faults = []
-    for first, second, coefficient, line in correlations:
+    for correlation in correlations:
+        first, second = correlation.first, correlation.second
         unknown = [path for path in (first, second) if path not in names]
         faults += [
             Fault(
                 "A correlation needs two inputs that have an uncertainty.",
                 path=path,
                 file=file,
-                line=line,
+                line=correlation.line,
                 found="no uncertainty stated",
                 expected="one of " + (", ".join(names) or "the inputs, once they have uncertainties"),
             )
@@ -173,7 +151,7 @@ def _correlation_matrix(
         ]
         if not unknown and first != second:
             row, column = names.index(first), names.index(second)
-            matrix[row, column] = matrix[column, row] = coefficient
+            matrix[row, column] = matrix[column, row] = correlation.coefficient
     if not faults and correlations:
         smallest = float(np.linalg.eigvalsh(matrix)[0])
         if smallest < -1e-9 or math.isnan(smallest):
@@ -182,7 +160,7 @@ def _correlation_matrix(
                     "The correlation coefficients contradict each other: no set of quantities can have them all.",
                     path="uncertainty.correlations",
                     file=file,
-                    line=correlations[0][3],
+                    line=correlations[0].line,
                     found=f"a correlation matrix with the eigenvalue {smallest:.3g}",
                     expected="a positive semi-definite matrix",
                 )

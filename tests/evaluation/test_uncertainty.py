@@ -11,6 +11,7 @@ import pytest
 from reportgen.errors import InputError
 from reportgen.evaluation import uncertainty
 from reportgen.evaluation.sampling import SampleAxis, sample_axis
+from reportgen.spec.calculation import Correlation
 
 
 @dataclass(frozen=True)
@@ -30,7 +31,7 @@ class Given:
 
 def axis_of(readings: dict[str, Reading], correlations: tuple = (), **more: object) -> SampleAxis:
     inputs = {path: Given(path, reading, (path,)) for path, reading in readings.items()}
-    return sample_axis(inputs, correlations, **more)  # type: ignore[arg-type]
+    return sample_axis(inputs, [Correlation(*entry) for entry in correlations], **more)  # type: ignore[arg-type]
 
 
 def test_columns_are_base_then_plus_then_minus() -> None:

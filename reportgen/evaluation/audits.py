@@ -1,0 +1,177 @@
+"""Audits of a solved plant: the second law with its uncertainty, and whether every balance closes.
+
+The closures are computed here from states, heats and powers alone, round each piece, round each train and round the
+whole, and not taken from the relations that solved the plant: a wrong relation would show.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from typing import Any
+
+import numpy as np
+import numpy.typing as npt
+
+from reportgen.evaluation import uncertainty
+from reportgen.evaluation.decisions import second_law
+from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.sampling import SampleAxis
+
+__all__ = [
+    "balance_round",
+    "boundary_streams",
+    "closure_audit",
+    "counted_pieces",
+    "heaviest_inputs",
+    "second_law_audit",
+]
+
+Array = npt.NDArray[np.float64]
+
+#: Standard acceleration of free fall [m/s2], exact by convention: ISO 80000-3.
+FREE_FALL = 9.80665
+
+#: What iterations may leave of an entropy balance, as a part of the entropy flows in it.
+BALANCE_RESOLUTION = 1e-9
+
+HEAVIEST = 3
+
+
+def second_law_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str, Any]]:
+    """Entropy generation with its interval against zero, for every piece, every train and the total.
+
+    Args:
+        plant: the solved plant.
+        totals: tags that count in ``total``.
+
+    Returns:
+        Record entries. Owners without an entropy generation (heat enters through a boundary of unknown temperature)
+        are left out; a warning of the solution says so.
+    """
+    owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
+    owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
+    owners.append(("total", totals))
+    entries = []
+    for owner, tags in owners:
+        path = f"{owner}.entropy_generation"
+        if not plant.has(path):
+            continue
+        estimate = plant.estimate(path)
+        resolution = entropy_resolution(plant, tags)
+        entries.append(
+            {
+                "owner": owner,
+                "path": path,
+                "value": estimate.value,
+                "expanded_uncertainty": estimate.expanded_uncertainty,
+                "interval": list(estimate.interval),
+                "resolution": resolution,
+                "verdict": second_law(estimate.value, estimate.expanded_uncertainty, resolution),
+                "heaviest_inputs": heaviest_inputs(plant.axis, plant.samples(path)),
+            }
+        )
+    return entries
+
+
+def entropy_resolution(plant: EvaluatedPlant, tags: Sequence[str]) -> float:
+    """Size below which an entropy generation is a zero of the arithmetic [W/K]."""
+    scale = balance_round(plant, tags)["entropy"][1]
+    return BALANCE_RESOLUTION * scale if np.isfinite(scale) else 0.0
+
+
+def heaviest_inputs(axis: SampleAxis, samples: Array, count: int = HEAVIEST) -> list[str]:
+    """The uncertain inputs with the largest contributions to a result, heaviest first; samples of shape (N,)."""
+    contribution = np.nan_to_num(np.abs(uncertainty.contributions(samples)))
+    order = np.argsort(-contribution, kind="stable")[:count]
+    return [axis.inputs[index] for index in order if contribution[index] > 0.0]
+
+
+def closure_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str, Any]]:
+    """Mass, energy and entropy balance of each piece, each train and the whole in the base case.
+
+    For trains and the whole the balance is drawn round the outer boundary, and what it leaves is the entropy the
+    boundary sees less the sum over the parts. Quantities that cannot be computed (no flow, no boundary temperature)
+    are left out.
+    """
+    owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
+    owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
+    owners.append(("total", totals))
+    units = {"mass": "kg/s", "energy": "W", "entropy": "W/K"}
+    entries = []
+    for owner, tags in owners:
+        for quantity, (residual, scale) in balance_round(plant, tags).items():
+            if np.isfinite(residual):
+                entries.append(
+                    {
+                        "owner": owner,
+                        "quantity": quantity,
+                        "value": residual,
+                        "scale": scale,
+                        "relative": abs(residual) / scale if scale > 0.0 else 0.0,
+                        "unit": units[quantity],
+                    }
+                )
+    return entries
+
+
+def balance_round(plant: EvaluatedPlant, tags: Sequence[str]) -> dict[str, tuple[float, float]]:
+    """What mass, energy and entropy balances leave round a group of pieces, with the size of their terms.
+
+        mass      Σin ṁ − Σout ṁ                                                        [kg/s]
+        energy    Σ Q̇ + Ẇabsorbed − Ẇdelivered + Σin ṁ(h + V²/2 + g z) − Σout (same)    [W]
+        entropy   Σout ṁ s − Σin ṁ s − Σ Ṡ_Q − Σ Ṡgen of the pieces                     [W/K]
+
+    Only streams that cross the boundary of the group enter. Velocity and elevation count where they are known.
+
+    Returns:
+        Quantity to (residual, sum of the absolute terms), base case; NaN where a term is unknown.
+    """
+    entering, leaving = boundary_streams(plant, tags)
+    signs = [(1.0, state) for state in entering] + [(-1.0, state) for state in leaving]
+    mass, energy, entropy = [], [], []
+    for sign, state in signs:
+        flow = _base(plant, f"states.{state}.mass_flow")
+        velocity = _base(plant, f"states.{state}.velocity", 0.0)
+        elevation = _base(plant, f"states.{state}.elevation", 0.0)
+        enthalpy = _base(plant, f"states.{state}.specific_enthalpy")
+        mass.append(sign * flow)
+        energy.append(sign * flow * (enthalpy + 0.5 * velocity**2 + FREE_FALL * elevation))
+        entropy.append(-sign * flow * _base(plant, f"states.{state}.specific_entropy"))
+    for tag in tags:
+        for port in plant.heats[tag]:
+            heat = _base(plant, port.heat)
+            energy.append(heat)
+            entropy.append(-_base(plant, port.entropy) if heat != 0.0 else 0.0)
+        if plant.power_signs[tag]:
+            energy.append(plant.power_signs[tag] * _base(plant, f"equipment.{tag}.power"))
+        entropy.append(-_base(plant, f"equipment.{tag}.entropy_generation"))
+    return {
+        name: (float(np.sum(terms)), float(np.sum(np.abs(terms))))
+        for name, terms in (("mass", mass), ("energy", energy), ("entropy", entropy))
+    }
+
+
+def boundary_streams(plant: EvaluatedPlant, tags: Iterable[str]) -> tuple[list[str], list[str]]:
+    """States that enter and that leave a group of pieces; a stream between two of them crosses no boundary.
+
+    States joined inside the group appear as an outlet of one piece and an inlet of another.
+    """
+    tags = list(tags)
+    entering = [
+        connection.state for tag in tags for connection in plant.connections[tag] if connection.direction == "in"
+    ]
+    leaving = [
+        connection.state for tag in tags for connection in plant.connections[tag] if connection.direction == "out"
+    ]
+    return [state for state in entering if state not in leaving], [state for state in leaving if state not in entering]
+
+
+def counted_pieces(plant: EvaluatedPlant, alternatives: Iterable[str]) -> list[str]:
+    """Tags that count in the total: every piece but those of trains that are alternatives to another."""
+    left_out = {tag for train in alternatives for tag in plant.trains[train]}
+    return [tag for tag in plant.kinds if tag not in left_out]
+
+
+def _base(plant: EvaluatedPlant, path: str, absent: float = np.nan) -> float:
+    value = float(plant.samples(path)[0])
+    return absent if np.isnan(value) else value

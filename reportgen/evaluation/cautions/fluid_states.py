@@ -1,0 +1,113 @@
+"""Cautions on the states of fluids: freezing, the critical region, the range of the model."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from reportgen.evaluation.cautions.entry import Finding, caution
+from reportgen.evaluation.evaluated import EvaluatedPlant
+
+__all__ = ["carbon_dioxide_freezes", "near_the_critical_point", "outside_the_model"]
+
+SPAN_WAGNER = "Span and Wagner 1996, https://doi.org/10.1063/1.555991"
+#: Triple point of carbon dioxide [K], [Pa]: Span and Wagner 1996, table 3 (from memory).
+CO2_TRIPLE_TEMPERATURE = 216.592
+CO2_TRIPLE_PRESSURE = 0.51795e6
+
+CRITICAL_TEMPERATURE_BAND = 0.05
+CRITICAL_PRESSURE_BAND = 0.10
+
+
+@caution(
+    "T02",
+    "stop",
+    "Dry ice",
+    source=f"triple point, {SPAN_WAGNER}",
+    limit=CO2_TRIPLE_TEMPERATURE,
+    dimension="temperature",
+)
+def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
+    """Carbon dioxide at or below its triple-point temperature, or liquid below its triple-point pressure.
+
+    Looks at pure carbon dioxide only: in a mixture the frost point depends on the partial pressure.
+    """
+    for state in plant.state_fluids:
+        fluid = plant.fluid_of(state)
+        if (fluid.substance or "").lower().replace(" ", "") not in {"co2", "carbondioxide"}:
+            continue
+        yield Finding(
+            f"states.{state}.temperature",
+            plant.samples(f"states.{state}.temperature"),
+            np.nextafter(limit, np.inf),  # freezing already at the triple point itself
+            "above",
+            f"Carbon dioxide in state {state} is at or below its triple point: dry ice forms and may plug lines and "
+            "relief paths. The property model is not valid here.",
+            "temperature",
+        )
+        if plant.phase(state) in {"liquid", "two-phase"}:
+            yield Finding(
+                f"states.{state}.pressure",
+                plant.samples(f"states.{state}.pressure"),
+                CO2_TRIPLE_PRESSURE,
+                "above",
+                f"Liquid carbon dioxide in state {state} is below its triple-point pressure: it turns to dry ice, "
+                "which may plug lines and relief paths.",
+                "pressure",
+            )
+
+
+@caution("T22", "note", "Near the critical point", source="common practice", limit=1.0, dimension="ratio")
+def near_the_critical_point(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
+    """State within 5 % of the critical temperature and 10 % of the critical pressure.
+
+    Measured is the larger of |T/Tc − 1|/0.05 and |p/pc − 1|/0.10; the limit is 1.
+    """
+    for state in plant.state_fluids:
+        critical = plant.fluid_of(state).limits.critical_point
+        if critical is None:
+            continue
+        temperature = plant.samples(f"states.{state}.temperature") / critical.temperature
+        pressure = plant.samples(f"states.{state}.pressure") / critical.pressure
+        yield Finding(
+            f"states.{state}.temperature",
+            np.maximum(
+                np.abs(temperature - 1.0) / CRITICAL_TEMPERATURE_BAND, np.abs(pressure - 1.0) / CRITICAL_PRESSURE_BAND
+            ),
+            limit,
+            "above",
+            f"State {state} lies near the critical point (T/Tc = {temperature[0]:.3f}, p/pc = {pressure[0]:.3f}), "
+            "where properties change steeply and small errors of temperature or pressure weigh heavily. The value is "
+            "the distance from it in units of the band of 5 % in temperature and 10 % in pressure.",
+            "ratio",
+        )
+
+
+@caution("T31", "stop", "Outside the property model", source="the publication of the property model")
+def outside_the_model(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
+    """State outside the temperature or pressure range of its property model, or within its uncertainty of the edge.
+
+    Models refuse most states outside their range outright (the calculation then stops with an error); this caution
+    is for the rest, and for readings whose uncertainty reaches across the edge.
+    """
+    for state in plant.state_fluids:
+        fluid = plant.fluid_of(state)
+        limits = fluid.limits
+        edges = (
+            ("temperature", limits.minimum_temperature, "above", "minimum"),
+            ("temperature", limits.maximum_temperature, "below", "maximum"),
+            ("pressure", limits.maximum_pressure, "below", "maximum"),
+        )
+        for name, edge, keep, word in edges:
+            if np.isfinite(edge):
+                yield Finding(
+                    f"states.{state}.{name}",
+                    plant.samples(f"states.{state}.{name}"),
+                    edge,
+                    "above" if keep == "above" else "below",
+                    f"The {name} of state {state} is at or beyond the {word} for which the model of {fluid.title} "
+                    "was published: properties there would be extrapolated.",
+                    name,
+                    source="; ".join(fluid.sources),
+                )

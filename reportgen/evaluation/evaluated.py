@@ -1,0 +1,92 @@
+"""A solved plant with its sample axis: what audits, cautions, tests and figures read from.
+
+The class holds and looks up; it computes nothing of its own.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any, Literal, NamedTuple
+
+import numpy as np
+import numpy.typing as npt
+
+from reportgen.evaluation.sampling import Estimate, SampleAxis
+
+if TYPE_CHECKING:
+    from reportgen.balances.relations import HeatPort
+    from reportgen.fluids.model import Fluid
+    from reportgen.spec.calculation import Limits
+
+__all__ = ["Connection", "EvaluatedPlant"]
+
+Array = npt.NDArray[np.float64]
+
+
+class Connection(NamedTuple):
+    """One state at one port of a piece of equipment."""
+
+    port: str
+    direction: Literal["in", "out"]
+    state: str
+
+
+@dataclass(frozen=True)
+class EvaluatedPlant:
+    """Values along the sample axis with the structure of the plant they belong to.
+
+    Args:
+        axis: the sample axis, N = 2n+1 columns.
+        values: variable path to samples of shape (N,) [SI], or to text for phases.
+        fluids: fluid id to property model (``fluids.Fluid``).
+        state_fluids: state id to fluid id.
+        kinds: equipment tag to the name of its kind.
+        connections: equipment tag to the states at its ports.
+        power_signs: equipment tag to +1 where power is absorbed, −1 where it is delivered, 0 without power.
+        heats: equipment tag to its heat ports (``balances.HeatPort``: paths of heat, temperature, entropy).
+        limits: equipment tag to its ``limits`` table, only where it has one.
+        trains: train id to the tags of its pieces; empty when the file has no trains.
+    """
+
+    axis: SampleAxis
+    values: Mapping[str, npt.NDArray[Any]]
+    fluids: Mapping[str, Fluid]
+    state_fluids: Mapping[str, str]
+    kinds: Mapping[str, str]
+    connections: Mapping[str, tuple[Connection, ...]]
+    power_signs: Mapping[str, int]
+    heats: Mapping[str, tuple[HeatPort, ...]]
+    limits: Mapping[str, Limits]
+    trains: Mapping[str, tuple[str, ...]]
+
+    def samples(self, path: str) -> Array:
+        """Samples of a value, shape (N,); all NaN when the plant has no such value."""
+        found = self.values.get(path)
+        if found is None:
+            found = self.axis.givens.get(path)
+        if found is None:
+            return np.full(self.axis.columns, np.nan)
+        return np.broadcast_to(np.asarray(found, dtype=float), (self.axis.columns,))
+
+    def has(self, path: str) -> bool:
+        """Whether the base case has a number for the path."""
+        return bool(np.isfinite(self.samples(path)[0]))
+
+    def estimate(self, path: str) -> Estimate:
+        """Value and uncertainty of a path; NaN when the plant has no such value."""
+        return self.axis.estimate(self.samples(path))
+
+    def phase(self, state: str) -> str:
+        """Phase of a state in the base case, empty when unknown."""
+        found = self.values.get(f"states.{state}.phase")
+        return "" if found is None else str(np.asarray(found).flat[0])
+
+    def fluid_of(self, state: str) -> Fluid:
+        """Property model of a state."""
+        return self.fluids[self.state_fluids[state]]
+
+    def states_at(self, tag: str, direction: Literal["in", "out"] | None = None) -> tuple[str, ...]:
+        """States at the ports of a piece, each once, inlets first as the kind declares them."""
+        chosen = [connection.state for connection in self.connections[tag] if direction in (None, connection.direction)]
+        return tuple(dict.fromkeys(chosen))
