@@ -1,0 +1,1 @@
+"""The kinds of equipment, one module each; :func:`reportgen.balances.kinds.kinds` finds them."""

@@ -1,0 +1,156 @@
+"""Control volume: any streams in and out, power delivered, heat over one or several boundaries.
+
+    0 = Σ Q̇_j − Ẇ + Σin ṁ H − Σout ṁ H ,   with one mass balance for each fluid
+
+``heat_ports`` lists the boundaries when there are several, each with ``heat`` and ``temperature``; ``heat`` is then
+their sum. Without it ``heat`` and ``boundary_temperature`` describe the one boundary. Power is positive when delivered.
+
+Exergetic efficiency: exergy that leaves with streams, heat and power over exergy that enters with them.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from reportgen.balances.equations import BOUNDARY_TEMPERATURE, energy_balance, heat_ports, mass_balances
+from reportgen.balances.kinds import Group, Kind, Parameter, Port
+from reportgen.balances.merit import exergy_ratio
+from reportgen.balances.plant import Piece
+from reportgen.balances.relations import Balance, Default, Formula, HeatPort, Relation, Stretch, Term, token, zero
+
+GROUP = "heat_ports"
+
+
+def relations(piece: Piece) -> list[Relation]:
+    """Mass, energy, and the sum of the heats."""
+    found = mass_balances(piece)
+    total, power = piece.path("heat"), piece.path("power")
+    energy = energy_balance(piece, total, power, -1)
+    ports = [port.heat for port in heats(piece)] if piece.count(GROUP) else []
+    if ports:
+        without = tuple(term for term in energy.terms if term.factors != (total,))
+        each = tuple(Term(1.0, (path,)) for path in ports)
+        sentences = dict(energy.sentences)
+        sentences.pop(total)
+        for number, path in enumerate(ports, start=1):
+            sentences[path] = f"{piece.title}: the energy balance gives the heat over boundary {number}."
+        energy = Balance(
+            energy.key, energy.owner, energy.name, energy.sentence, energy.basis, without + each, {}, sentences
+        )
+        found.append(
+            Balance(
+                piece.path("heat.sum"),
+                piece.owner,
+                "Heat over all boundaries",
+                f"{piece.title}: the heat is the sum over all boundaries.",
+                "conservation of energy",
+                (Term(-1.0, (total,)), *each),
+            )
+        )
+    return [*found, energy]
+
+
+def defaults(piece: Piece) -> list[Default]:
+    """No power."""
+    power = piece.path("power")
+    text = f"{piece.title} exchanges no work with its surroundings."
+    sentence = f"{piece.title} exchanges no work."
+    relation = zero(power, piece.path("power.assumed"), piece.owner, "No work", sentence)
+    return [Default(f"{piece.owner}.no_work", piece.owner, text, (power,), relation)]
+
+
+def heats(piece: Piece) -> list[HeatPort]:
+    """The boundaries over which heat crosses."""
+    count = piece.count(GROUP)
+    if not count:
+        return heat_ports(piece)
+    found = []
+    for number in range(1, count + 1):
+        prefix = piece.path(f"{GROUP}.{number}")
+        label = f"{piece.title}, boundary {number}"
+        found.append(HeatPort(label, f"{prefix}.heat", f"{prefix}.temperature", f"{prefix}.entropy_with_heat"))
+    return found
+
+
+def results(piece: Piece) -> list[Formula]:
+    """Exergy that leaves over exergy that enters."""
+    flows = []
+    for state in (*piece.streams("in"), *piece.streams("out")):
+        flows += [f"states.{state}.mass_flow", f"states.{state}.specific_exergy"]
+    heat_paths = []
+    for port in heats(piece):
+        heat_paths += [port.heat, port.entropy]
+    inputs = (*flows, *heat_paths, piece.path("power"), "surroundings.temperature")
+    entering = 2 * len(piece.streams("in"))
+
+    def parts(*arrays: Any) -> tuple[Any, Any]:
+        import numpy as np
+
+        power, ambient = arrays[-2], arrays[-1]
+        gained = np.maximum(power, 0.0) + sum(arrays[i] * arrays[i + 1] for i in range(entering, len(flows), 2))
+        spent = np.maximum(-power, 0.0) + sum(arrays[i] * arrays[i + 1] for i in range(0, entering, 2))
+        for i in range(len(flows), len(arrays) - 2, 2):
+            exergy = arrays[i] - ambient * arrays[i + 1]
+            gained, spent = gained + np.maximum(-exergy, 0.0), spent + np.maximum(exergy, 0.0)
+        return gained, spent
+
+    products = [rf"{token(flows[i])}\,{token(flows[i + 1])}" for i in range(0, len(flows), 2)]
+    ambient, power = token("surroundings.temperature"), token(piece.path("power"))
+    of_heat = [
+        rf"\left({token(heat_paths[i])} - {ambient}\,{token(heat_paths[i + 1])}\right)"
+        for i in range(0, len(heat_paths), 2)
+    ]
+    leave = " + ".join([*products[entering // 2 :], *(rf"{part}^-" for part in of_heat), rf"{power}^+"])
+    enter = " + ".join([*products[: entering // 2], *(rf"{part}^+" for part in of_heat), rf"{power}^-"])
+    return [
+        exergy_ratio(
+            piece,
+            "exergy that leaves over exergy that enters, with streams, heat and power (⁺ and ⁻: the size of what is positive "
+            "or negative, else nothing).",
+            inputs,
+            lambda *arrays: parts(*arrays)[0],
+            lambda *arrays: parts(*arrays)[1],
+            rf"\frac{{{leave}}}{{{enter}}}",
+        )
+    ]
+
+
+def stretches(piece: Piece) -> list[Stretch]:
+    """The stream, when exactly one enters and leaves; what happens inside is not known otherwise."""
+    inlets, outlets = piece.streams("in"), piece.streams("out")
+    if len(inlets) == len(outlets) == 1:
+        return [Stretch("stream", inlets[0], outlets[0], "enthalpy", mixing=True)]
+    return []
+
+
+KIND = Kind(
+    name="control-volume",
+    title="Control volume",
+    text="Any streams in and out, power delivered, heat over one or several boundaries.",
+    ports=(
+        Port("inlets", "in", many=True, optional=True, text="States of the streams that enter."),
+        Port("outlets", "out", many=True, optional=True, text="States of the streams that leave."),
+    ),
+    parameters=(
+        Parameter("power", "power", "Power delivered.", "0 when nothing else determines it"),
+        Parameter("heat", "heat_flow", "Heat flow into the volume, over all boundaries."),
+        BOUNDARY_TEMPERATURE,
+    ),
+    relations=relations,
+    defaults=defaults,
+    results=results,
+    heats=heats,
+    stretches=stretches,
+    groups=(
+        Group(
+            GROUP,
+            (
+                Parameter("heat", "heat_flow", "Heat flow into the volume over this boundary."),
+                Parameter("temperature", "temperature", "Temperature of this boundary."),
+            ),
+            "Boundaries over which heat crosses, each with its heat flow and temperature.",
+        ),
+    ),
+    power_sign=-1,
+    exergetic_efficiency="Exergy that leaves with streams, heat and power over exergy that enters with them.",
+)

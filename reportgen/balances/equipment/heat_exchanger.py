@@ -1,0 +1,144 @@
+"""Heat exchanger: a hot stream gives its duty to a cold one across a wall.
+
+    D = ṁ_h (H_h,in − H_h,out) ,    ṁ_c (H_c,out − H_c,in) = D + Q̇
+
+``duty`` D is what the hot stream gives up; ``heat`` Q̇ is what enters from outside (negative for a loss), counted on the
+cold side. Each relation can be solved for duty, either enthalpy or the flow. The pressure loss of a side is taken as
+zero when nothing else determines it, the loss of heat too.
+
+Exergetic efficiency: exergy gained by the cold stream over exergy given up by the hot one; below the surroundings'
+temperature the streams change parts, so the stream that gains is the one above the line.
+Entropy generation number: lost work over duty.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from reportgen.balances.equations import (
+    BOUNDARY_TEMPERATURE,
+    HEAT_BY_CUSTOM,
+    adiabatic,
+    heat_ports,
+    mass_balances,
+    no_pressure_drop,
+    pressure_drop,
+    through,
+)
+from reportgen.balances.kinds import Kind, Parameter, Port
+from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
+from reportgen.balances.plant import Piece
+from reportgen.balances.relations import Balance, Default, Formula, Relation, Stretch, Term, token
+
+SIDES = ("hot", "cold")
+
+
+def relations(piece: Piece) -> list[Relation]:
+    """Mass, pressure loss and energy of each side."""
+    found = mass_balances(piece)
+    duty, heat = piece.path("duty"), piece.path("heat")
+    for side in SIDES:
+        inlet, outlet = piece.one(f"{side}_inlet"), piece.one(f"{side}_outlet")
+        found.append(pressure_drop(piece, inlet, outlet, f"{side}_pressure_drop"))
+        terms = through(piece, inlet, outlet)
+        if side == "hot":
+            terms.append(Term(-1.0, (duty,)))
+            words = "what the hot stream gives up is the duty."
+        else:
+            terms += [Term(1.0, (duty,)), Term(1.0, (heat,))]
+            words = "the cold stream takes up the duty and the heat that enters from outside."
+        sentences = {
+            duty: f"{piece.title}: the {side} stream gives the duty.",
+            heat: f"{piece.title}: what the two streams do not exchange comes from outside.",
+            f"states.{inlet}.mass_flow": f"{piece.title}: the duty gives the flow of the {side} stream.",
+            f"states.{inlet}.specific_enthalpy": f"{piece.title}: the duty gives the enthalpy of state {inlet}.",
+            f"states.{outlet}.specific_enthalpy": f"{piece.title}: the duty gives the enthalpy of state {outlet}.",
+        }
+        found.append(
+            Balance(
+                piece.path(f"energy_balance.{side}"),
+                piece.owner,
+                f"Energy balance, {side} side",
+                f"{piece.title}: {words}",
+                "first law, steady flow",
+                tuple(terms),
+                {},
+                sentences,
+            )
+        )
+    return found
+
+
+def defaults(piece: Piece) -> list[Default]:
+    """No heat from outside, no pressure loss on either side."""
+    drops = [no_pressure_drop(piece, f"{side}_pressure_drop", f" on the {side} side") for side in SIDES]
+    return [adiabatic(piece), *drops]
+
+
+def results(piece: Piece) -> list[Formula]:
+    """Exergy gained over exergy spent by the two streams; lost work over duty."""
+    paths = []
+    for side in SIDES:
+        inlet, outlet = piece.one(f"{side}_inlet"), piece.one(f"{side}_outlet")
+        paths += [
+            f"states.{inlet}.mass_flow",
+            f"states.{inlet}.specific_exergy",
+            f"states.{outlet}.specific_exergy",
+        ]
+
+    def changes(*arrays: Any) -> tuple[Any, Any]:
+        import numpy as np
+
+        hot, cold = arrays[0] * (arrays[2] - arrays[1]), arrays[3] * (arrays[5] - arrays[4])
+        return np.maximum(hot, 0.0) + np.maximum(cold, 0.0), np.maximum(-hot, 0.0) + np.maximum(-cold, 0.0)
+
+    mh, eh1, eh2, mc, ec1, ec2 = (token(path) for path in paths)
+    efficiency = exergy_ratio(
+        piece,
+        "exergy gained by one stream over exergy given up by the other.",
+        paths,
+        lambda *arrays: changes(*arrays)[0],
+        lambda *arrays: changes(*arrays)[1],
+        rf"\left[\frac{{{mc}\left({ec2} - {ec1}\right)}}{{{mh}\left({eh1} - {eh2}\right)}}\right]^{{\pm 1}}",
+    )
+    return [efficiency, entropy_number_by_power(piece, piece.path("duty"), "duty")]
+
+
+def stretches(piece: Piece) -> list[Stretch]:
+    """Both streams."""
+    return [
+        Stretch(f"{side} stream", piece.one(f"{side}_inlet"), piece.one(f"{side}_outlet"), "enthalpy") for side in SIDES
+    ]
+
+
+KIND = Kind(
+    name="heat-exchanger",
+    title="Heat exchanger",
+    text="A hot stream gives heat to a cold one across a wall.",
+    ports=tuple(
+        Port(f"{side}_{end}let", direction, text=f"State of the {side} stream where it {verb}.", side=side)
+        for side in SIDES
+        for end, direction, verb in (("in", "in", "enters"), ("out", "out", "leaves"))
+    ),
+    parameters=(
+        Parameter("duty", "heat_flow", "Heat flow given up by the hot stream."),
+        HEAT_BY_CUSTOM,
+        BOUNDARY_TEMPERATURE,
+        *(
+            Parameter(
+                f"{side}_pressure_drop",
+                "pressure_difference",
+                f"Pressure loss of the {side} stream.",
+                "0 when nothing else determines it",
+            )
+            for side in SIDES
+        ),
+    ),
+    relations=relations,
+    defaults=defaults,
+    results=results,
+    heats=heat_ports,
+    stretches=stretches,
+    exergetic_efficiency="Exergy gained by one stream over exergy given up by the other.",
+    entropy_generation_number="Lost work over duty.",
+)

@@ -1,0 +1,125 @@
+"""Mixer: several streams of one fluid leave as one; adiabatic unless the balance says otherwise.
+
+The outlet has the lowest of the inlet pressures less the pressure loss. An inlet whose pressure nothing else determines
+enters at the outlet's pressure.
+
+Exergetic efficiency: exergy that leaves over exergy that enters. Entropy generation number: Ṡgen/(ṁ_out R).
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from reportgen.balances.equations import (
+    BOUNDARY_TEMPERATURE,
+    HEAT_BY_CUSTOM,
+    OUTLET,
+    adiabatic,
+    energy_balance,
+    heat_ports,
+    mass_balances,
+    no_pressure_drop,
+)
+from reportgen.balances.kinds import Kind, Port
+from reportgen.balances.merit import entropy_number_by_flow, exergy_ratio
+from reportgen.balances.plant import Piece
+from reportgen.balances.relations import (
+    Balance,
+    Default,
+    Formula,
+    Inverse,
+    Relation,
+    Stretch,
+    Term,
+    token,
+)
+from reportgen.balances.thermal import PRESSURE_DROP
+
+
+def lowest(pressures: Any) -> Any:
+    """Smallest of several arrays, element by element."""
+    import numpy as np
+
+    return np.min(np.broadcast_arrays(*pressures), axis=0)
+
+
+def relations(piece: Piece) -> list[Relation]:
+    """Mass, pressure and energy."""
+    inlets, outlet = piece.states("inlets"), piece.one("outlet")
+    pressures = tuple(f"states.{state}.pressure" for state in inlets)
+    leaving, drop = f"states.{outlet}.pressure", piece.path("pressure_drop")
+    smallest = rf"\min\left({',\\,'.join(token(path) for path in pressures)}\right)"
+    pressure = Formula(
+        piece.path("pressure_drop.relation"),
+        piece.owner,
+        "Pressure loss",
+        f"{piece.title}: the outlet has the lowest of the inlet pressures less the pressure loss.",
+        "definition of the pressure loss of a mixer",
+        leaving,
+        (drop, *pressures),
+        lambda loss, *entering: lowest(entering) - loss,
+        rf"{smallest} - {token(drop)}",
+        {
+            drop: Inverse(
+                lambda left, *entering: lowest(entering) - left,
+                rf"{smallest} - {token(leaving)}",
+                f"{piece.title}: the pressures give the pressure loss.",
+            )
+        },
+        solvable_inputs=(drop,),
+    )
+    return [*mass_balances(piece), pressure, energy_balance(piece, piece.path("heat"))]
+
+
+def defaults(piece: Piece) -> list[Default]:
+    """Adiabatic, no pressure loss, unknown inlet pressures equal to the outlet's."""
+    outlet = piece.one("outlet")
+    found = [adiabatic(piece), no_pressure_drop(piece)]
+    for state in piece.states("inlets"):
+        entering, leaving = f"states.{state}.pressure", f"states.{outlet}.pressure"
+        key = piece.path(f"inlet_pressure.{state}")
+        sentence = f"{piece.title}: stream {state} enters at the pressure of the mixer."
+        terms = (Term(1.0, (entering,)), Term(-1.0, (leaving,)))
+        equal = Balance(key, piece.owner, "Inlet pressure", sentence, "assumption", terms)
+        found.append(Default(key, piece.owner, sentence, (entering,), equal, rank=2))
+    return found
+
+
+def results(piece: Piece) -> list[Formula]:
+    """Exergy kept, and entropy generation in parts of ṁ R."""
+    inlets, outlet = piece.states("inlets"), piece.one("outlet")
+    paths = []
+    for state in (*inlets, outlet):
+        paths += [f"states.{state}.mass_flow", f"states.{state}.specific_exergy"]
+    products = [rf"{token(paths[i])}\,{token(paths[i + 1])}" for i in range(0, len(paths), 2)]
+    efficiency = exergy_ratio(
+        piece,
+        "exergy of the stream that leaves over exergy of the streams that enter.",
+        paths,
+        lambda *arrays: arrays[-2] * arrays[-1],
+        lambda *arrays: sum(arrays[i] * arrays[i + 1] for i in range(0, len(arrays) - 2, 2)),
+        rf"\frac{{{products[-1]}}}{{{' + '.join(products[:-1])}}}",
+    )
+    return [efficiency, entropy_number_by_flow(piece, outlet)]
+
+
+def stretches(piece: Piece) -> list[Stretch]:
+    """Each inlet joined to the outlet."""
+    outlet = piece.one("outlet")
+    return [Stretch(f"stream {state}", state, outlet, "enthalpy", mixing=True) for state in piece.states("inlets")]
+
+
+KIND = Kind(
+    name="mixer",
+    title="Mixer",
+    text="Several streams of one fluid leave as one.",
+    ports=(Port("inlets", "in", many=True, text="States of the streams that enter."), OUTLET),
+    parameters=(HEAT_BY_CUSTOM, BOUNDARY_TEMPERATURE, PRESSURE_DROP),
+    relations=relations,
+    defaults=defaults,
+    results=results,
+    heats=heat_ports,
+    stretches=stretches,
+    exergetic_efficiency="Exergy of the stream that leaves over exergy of the streams that enter.",
+    entropy_generation_number="Entropy generation over leaving flow times specific gas constant.",
+)

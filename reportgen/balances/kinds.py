@@ -1,0 +1,114 @@
+"""What a kind of equipment declares, and the registry of all kinds.
+
+A kind is one module of :mod:`reportgen.balances.equipment` that binds one :class:`Kind` to the name ``KIND``.
+Nothing else names it: :func:`kinds` finds the modules by looking into the package. This module and the
+declarations need neither numpy nor a fluid, so that the schema of the calculation file stays cheap to make.
+"""
+
+from __future__ import annotations
+
+import importlib
+import pkgutil
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from functools import cache
+from typing import TYPE_CHECKING, Literal
+
+if TYPE_CHECKING:
+    from reportgen.balances.plant import Piece
+    from reportgen.balances.relations import Default, Formula, HeatPort, Relation, Stretch
+
+__all__ = ["Group", "Kind", "Parameter", "Port", "kinds"]
+
+
+@dataclass(frozen=True)
+class Port:
+    """Where streams enter or leave: key in the calculation file, direction, one or many states, needed or not.
+
+    Streams exchange mass only with ports of the same ``side`` (the two sides of a heat exchanger).
+    """
+
+    name: str
+    direction: Literal["in", "out"]
+    many: bool = False
+    optional: bool = False
+    text: str = ""
+    side: str = ""
+
+
+@dataclass(frozen=True)
+class Parameter:
+    """A quantity that may be given for a piece of equipment; what is not given is solved for.
+
+    ``dimension`` is a key of :data:`reportgen.names.DIMENSIONS`; ``default`` says in words what is assumed when
+    neither the file nor any balance determines the quantity (empty: nothing is assumed).
+    """
+
+    name: str
+    dimension: str
+    text: str
+    default: str = ""
+
+
+@dataclass(frozen=True)
+class Group:
+    """A list of tables of parameters, such as ``heat_ports``; paths are ``equipment.<tag>.<group>.<n>.<parameter>``."""
+
+    name: str
+    parameters: tuple[Parameter, ...]
+    text: str = ""
+
+
+@dataclass(frozen=True)
+class Kind:
+    """One kind of equipment: what the calculation file may say about it, and the relations it obeys.
+
+    Parameters
+    ----------
+    name, title, text : key in the file, title in a report, one sentence on what it is.
+    ports, parameters, groups : what the file may give.
+    relations : the relations of one piece, solvable for any of their variables.
+    defaults : assumptions that stand in when nothing else determines a quantity, first ones tried first.
+    results : formulae for values that are only reported (efficiencies, numbers of merit).
+    heats : heat ports with the paths of their heat and their boundary temperature.
+    stretches : how each stream changes between two states, for process curves.
+    power_sign : +1 when positive power is absorbed, -1 when it is delivered, 0 when there is no power.
+    exergetic_efficiency, entropy_generation_number : their definitions in words.
+    """
+
+    name: str
+    title: str
+    text: str
+    ports: tuple[Port, ...]
+    parameters: tuple[Parameter, ...]
+    relations: Callable[[Piece], Sequence[Relation]]
+    defaults: Callable[[Piece], Sequence[Default]]
+    results: Callable[[Piece], Sequence[Formula]]
+    heats: Callable[[Piece], Sequence[HeatPort]]
+    stretches: Callable[[Piece], Sequence[Stretch]]
+    groups: tuple[Group, ...] = ()
+    power_sign: int = 0
+    exergetic_efficiency: str = ""
+    entropy_generation_number: str = ""
+
+    def port(self, name: str) -> Port:
+        """The port of that name; KeyError when the kind has none."""
+        for port in self.ports:
+            if port.name == name:
+                return port
+        raise KeyError(name)
+
+
+@cache
+def _discover() -> tuple[Kind, ...]:
+    package = importlib.import_module("reportgen.balances.equipment")
+    found = []
+    for module in sorted(pkgutil.iter_modules(package.__path__), key=lambda entry: entry.name):
+        kind = importlib.import_module(f"{package.__name__}.{module.name}").KIND
+        found.append(kind)
+    return tuple(found)
+
+
+def kinds() -> dict[str, Kind]:
+    """Every kind of equipment by its name in the calculation file, in alphabetical order."""
+    return {kind.name: kind for kind in sorted(_discover(), key=lambda kind: kind.name)}

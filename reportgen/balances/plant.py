@@ -1,0 +1,244 @@
+"""The plant as plain data: fluids, states, pieces of equipment and trains; and the view a kind has of its piece."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import Any
+
+from reportgen.balances.kinds import Kind, kinds
+from reportgen.errors import Fault, InputError
+
+__all__ = ["EquipmentDefinition", "Piece", "Plant", "Train"]
+
+
+@dataclass(frozen=True)
+class EquipmentDefinition:
+    """One piece: its kind, the state ids at each port, and the kind's groups (``{"heat_ports": [{}, {}]}``)."""
+
+    kind: str
+    ports: Mapping[str, tuple[str, ...]]
+    options: Mapping[str, Any] = field(default_factory=dict)
+
+
+@dataclass(frozen=True)
+class Train:
+    """Pieces that have one account; ``alternative_to`` names the train it could stand in the place of."""
+
+    title: str
+    equipment: tuple[str, ...]
+    alternative_to: str | None = None
+
+
+@dataclass(frozen=True)
+class Plant:
+    """Everything that does not depend on a number. ``states`` maps a state id to its fluid id."""
+
+    fluids: Mapping[str, Any]
+    states: Mapping[str, str]
+    equipment: Mapping[str, EquipmentDefinition] = field(default_factory=dict)
+    trains: Mapping[str, Train] = field(default_factory=dict)
+
+
+class Piece:
+    """One piece of equipment as its kind sees it: names of its values, its states and their fluids."""
+
+    def __init__(self, tag: str, kind: Kind, definition: EquipmentDefinition, plant: Plant, given: frozenset[str]):
+        self.tag = tag
+        self.kind = kind
+        self.options = definition.options
+        self.given = given
+        self.owner = f"equipment.{tag}"
+        self._plant = plant
+        self._ports = {name: tuple(states) for name, states in definition.ports.items()}
+
+    @property
+    def title(self) -> str:
+        """Kind and tag, to begin a sentence with: "Throttling valve PRV-3"."""
+        return f"{self.kind.title} {self.tag}"
+
+    def path(self, name: str) -> str:
+        """Path of a value of this piece."""
+        return f"equipment.{self.tag}.{name}"
+
+    def states(self, port: str) -> tuple[str, ...]:
+        """State ids at a port, in the order of the file."""
+        return self._ports.get(port, ())
+
+    def one(self, port: str) -> str:
+        """The state id at a port that takes one."""
+        return self._ports[port][0]
+
+    def streams(self, direction: str) -> tuple[str, ...]:
+        """State ids of all ports of one direction, ``"in"`` or ``"out"``."""
+        found: list[str] = []
+        for port in self.kind.ports:
+            if port.direction == direction:
+                found.extend(self.states(port.name))
+        return tuple(found)
+
+    def connections(self) -> list[tuple[str, str, str]]:
+        """Every (port name, direction, state id)."""
+        return [(port.name, port.direction, state) for port in self.kind.ports for state in self.states(port.name)]
+
+    def fluid_id(self, state: str) -> str:
+        """Id of the fluid of a state."""
+        return self._plant.states[state]
+
+    def fluid(self, state: str) -> Any:
+        """Property model of a state."""
+        return self._plant.fluids[self._plant.states[state]]
+
+    def count(self, group: str) -> int:
+        """Number of entries of a group such as ``heat_ports``."""
+        entries = self.options.get(group, ())
+        return entries if isinstance(entries, int) else len(entries)
+
+
+def _same_zero(first: Any, second: Any) -> bool:
+    """True when two models are the same fluid with the same zero of enthalpy and entropy."""
+    return first is second or (
+        first.kind == second.kind
+        and first.substance == second.substance
+        and first.composition == second.composition
+        and first.entropy_zero == second.entropy_zero
+        and getattr(first, "constant_heat_capacity", None) == getattr(second, "constant_heat_capacity", None)
+    )
+
+
+def _ports_of(piece: Piece, definition: EquipmentDefinition, plant: Plant) -> list[Fault]:
+    faults = []
+    known = {port.name: port for port in piece.kind.ports}
+    for name, states in definition.ports.items():
+        place = piece.path(name)
+        if name not in known:
+            faults.append(Fault(f"{piece.kind.title} has no port of this name.", place, expected=", ".join(known)))
+            continue
+        if not known[name].many and len(states) != 1:
+            faults.append(Fault("The port takes one state.", place, found=", ".join(states) or "none"))
+        for state in states:
+            if state not in plant.states:
+                faults.append(Fault("There is no state of this name.", place, found=state))
+    for port in piece.kind.ports:
+        if not port.optional and not definition.ports.get(port.name):
+            faults.append(Fault("The port is not connected.", piece.path(port.name), expected="a state"))
+    return faults
+
+
+def _zeros_of(piece: Piece) -> list[Fault]:
+    """Streams that leave as another fluid than they came in: their enthalpies have no common zero."""
+    faults = []
+    groups = balance_groups(piece)
+    for inlets, outlets in groups:
+        for direction, states, others in (("enters", inlets, outlets), ("leaves", outlets, inlets)):
+            if states and not others:
+                opposite = piece.streams("out" if direction == "enters" else "in")
+                names = sorted({piece.fluid_id(state) for state in opposite}) or ["nothing"]
+                faults.append(
+                    Fault(
+                        f"Fluid {piece.fluid_id(states[0])} {direction} (state {', '.join(states)}) but the other side "
+                        f"has {', '.join(names)} only: enthalpies and entropies of different fluids have different "
+                        "zeros, and no balance can be made between them.",
+                        piece.owner,
+                        hint="Give the states on both sides of a stream the same fluid.",
+                    )
+                )
+    return faults
+
+
+def balance_groups(piece: Piece) -> list[tuple[tuple[str, ...], tuple[str, ...]]]:
+    """Inlets and outlets that exchange mass with each other: those of one side and one fluid."""
+    groups: list[tuple[str, Any, list[str], list[str]]] = []
+    for port in piece.kind.ports:
+        for state in piece.states(port.name):
+            fluid = piece.fluid(state)
+            for side, model, entering, leaving in groups:
+                if side == port.side and _same_zero(model, fluid):
+                    (entering if port.direction == "in" else leaving).append(state)
+                    break
+            else:
+                groups.append((port.side, fluid, *(([state], []) if port.direction == "in" else ([], [state]))))
+    return [(tuple(entering), tuple(leaving)) for _, _, entering, leaving in groups]
+
+
+def _shared_states(pieces: Mapping[str, Piece], plant: Plant) -> list[Fault]:
+    """States that two pieces of one account draw from or feed: mass would be counted twice."""
+    faults = []
+    seen: dict[tuple[str, str], list[str]] = {}
+    for tag, piece in pieces.items():
+        for _, direction, state in piece.connections():
+            for other in seen.get((direction, state), ()):
+                if other == tag or not alternatives(plant, tag, other):
+                    verb, cure = ("enters", "splitter") if direction == "in" else ("leaves", "mixer")
+                    faults.append(
+                        Fault(
+                            f"State {state} {verb} both {other} and {tag}; its flow would be counted twice.",
+                            f"equipment.{tag}",
+                            hint=f"Put a {cure} between them, or put the pieces into trains that are alternatives.",
+                        )
+                    )
+            seen.setdefault((direction, state), []).append(tag)
+    return faults
+
+
+def alternatives(plant: Plant, first: str, second: str) -> bool:
+    """True when two pieces stand in trains that replace each other."""
+
+    def root(tag: str) -> tuple[str | None, str | None]:
+        for name, train in plant.trains.items():
+            if tag in train.equipment:
+                return name, train.alternative_to or name
+        return None, None
+
+    (name, origin), (other_name, other_origin) = root(first), root(second)
+    return name is not None and name != other_name and origin == other_origin
+
+
+def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
+    """A checked view of every piece; InputError with every fault of the plant's structure."""
+    registry = kinds()
+    faults: list[Fault] = []
+    pieces: dict[str, Piece] = {}
+    for state, fluid in plant.states.items():
+        if fluid not in plant.fluids:
+            faults.append(Fault("There is no fluid of this name.", f"states.{state}.fluid", found=fluid))
+    for tag, definition in plant.equipment.items():
+        kind = registry.get(definition.kind)
+        if kind is None:
+            place = f"equipment.{tag}.kind"
+            faults.append(Fault("Unknown kind.", place, found=definition.kind, expected=", ".join(registry)))
+            continue
+        piece = Piece(tag, kind, definition, plant, given)
+        found = _ports_of(piece, definition, plant)
+        faults += found
+        if not found and not faults:
+            faults += _zeros_of(piece)
+        pieces[tag] = piece
+    listed: dict[str, str] = {}
+    for name, train in plant.trains.items():
+        for tag in train.equipment:
+            if tag not in plant.equipment:
+                faults.append(Fault("There is no equipment of this tag.", f"trains.{name}.equipment", found=tag))
+            elif tag in listed:
+                text = f"Equipment {tag} already belongs to train {listed[tag]}."
+                faults.append(Fault(text, f"trains.{name}.equipment", found=tag))
+            listed[tag] = name
+        target = train.alternative_to
+        if target is not None and (target not in plant.trains or target == name):
+            place = f"trains.{name}.alternative_to"
+            faults.append(Fault("There is no other train of this name.", place, found=target))
+        elif target is not None and plant.trains[target].alternative_to is not None:
+            place = f"trains.{name}.alternative_to"
+            text = "The train is itself an alternative; name the train that is counted in the totals."
+            faults.append(Fault(text, place, found=target, expected=plant.trains[target].alternative_to))
+    if not faults:
+        faults += _shared_states(pieces, plant)
+    if faults:
+        raise InputError(faults)
+    return pieces
+
+
+def trains_of(plant: Plant, pieces: Sequence[str]) -> tuple[str, ...]:
+    """Tags that count in the totals: all but those of alternative trains."""
+    left_out = {tag for train in plant.trains.values() if train.alternative_to for tag in train.equipment}
+    return tuple(tag for tag in pieces if tag not in left_out)

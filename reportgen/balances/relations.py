@@ -1,0 +1,310 @@
+r"""Relations between values: sums of products, and formulae with one output.
+
+A :class:`Balance` is a sum of products that equals zero, 0 = Σ c_k Π x_kj. It yields its residual, its derivatives,
+a direct solution for every variable that occurs linearly, and the LaTeX of that solution. A :class:`Formula` is
+y = f(x1, x2, …) on arrays, with inverses where they are known in closed form. Both only carry data and plain
+arithmetic: arrays are handed in, so that this module needs no numpy.
+
+LaTeX templates name a value by its path between ⟦ and ⟧; whoever shows the template puts the symbol or the number
+of that value there.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import Any
+
+__all__ = [
+    "Balance",
+    "Default",
+    "Equation",
+    "Formula",
+    "HeatPort",
+    "Inverse",
+    "Relation",
+    "Stretch",
+    "Term",
+    "token",
+    "zero",
+]
+
+#: An array along the sample axis (or anything with array arithmetic).
+Array = Any
+
+
+def token(path: str) -> str:
+    """The place of a value in a LaTeX template."""
+    return f"⟦{path}⟧"
+
+
+@dataclass(frozen=True)
+class Equation:
+    """One line of the working: left and right side as LaTeX templates."""
+
+    left: str
+    right: str
+
+    @property
+    def latex(self) -> str:
+        """The whole template, ``left = right``."""
+        return f"{self.left} = {self.right}"
+
+
+@dataclass(frozen=True)
+class Term:
+    """A product: coefficient times the values of some paths; ``label`` is the coefficient's LaTeX when it is not 1."""
+
+    coefficient: float
+    factors: tuple[str, ...]
+    label: str = ""
+
+    def without(self, path: str) -> Term:
+        """The same product with one occurrence of a factor left out."""
+        factors = list(self.factors)
+        factors.remove(path)
+        return Term(self.coefficient, tuple(factors), self.label)
+
+    def value(self, values: Mapping[str, Array]) -> Array:
+        """The product in numbers."""
+        result: Array = self.coefficient
+        for factor in self.factors:
+            result = result * values[factor]
+        return result
+
+
+def _magnitude(term: Term, skip_first: bool = False) -> str:
+    """LaTeX of a term without its sign."""
+    factors = term.factors[1:] if skip_first else term.factors
+    parts = [term.label] if term.label else []
+    done: set[str] = set()
+    for factor in factors:
+        if factor in done:
+            continue
+        done.add(factor)
+        power = factors.count(factor)
+        parts.append(token(factor) if power == 1 else rf"\left({token(factor)}\right)^{{{power}}}")
+    return r"\,".join(parts) if parts else "1"
+
+
+def _sum(terms: Sequence[tuple[float, str]]) -> str:
+    """LaTeX of a signed sum, positive parts first when the sum would begin with a minus sign."""
+    if not terms:
+        return "0"
+    ordered = list(terms)
+    if ordered[0][0] < 0:
+        ordered.sort(key=lambda item: item[0] < 0)
+    text = ("-" if ordered[0][0] < 0 else "") + ordered[0][1]
+    for sign, part in ordered[1:]:
+        text += (" - " if sign < 0 else " + ") + part
+    return text
+
+
+def sum_latex(terms: Sequence[Term], sign: float = 1.0) -> str:
+    """LaTeX of a sum of products; neighbours with the same first factor are bracketed together."""
+    parts: list[tuple[float, str]] = []
+    index = 0
+    while index < len(terms):
+        last = index + 1
+        first = terms[index].factors[0] if len(terms[index].factors) > 1 else None
+        while first and last < len(terms) and len(terms[last].factors) > 1 and terms[last].factors[0] == first:
+            last += 1
+        if first and last - index > 1:
+            inner = [(sign * term.coefficient, _magnitude(term, skip_first=True)) for term in terms[index:last]]
+            outer = 1.0 if any(part[0] > 0 for part in inner) else -1.0
+            inner = [(outer * part[0], part[1]) for part in inner]
+            parts.append((outer, rf"{token(first)}\left({_sum(inner)}\right)"))
+        else:
+            parts.append((sign * terms[index].coefficient, _magnitude(terms[index])))
+            last = index + 1
+        index = last
+    return _sum(parts)
+
+
+@dataclass(frozen=True)
+class Balance:
+    """A sum of products that equals zero.
+
+    ``sentence`` says in words what the relation states; ``sentences`` and ``forms`` hold words and a hand-set
+    equation for particular unknowns. ``unsolvable`` are variables the relation must not be solved for.
+    """
+
+    key: str
+    owner: str
+    name: str
+    sentence: str
+    basis: str
+    terms: tuple[Term, ...]
+    forms: Mapping[str, Equation] = field(default_factory=dict)
+    sentences: Mapping[str, str] = field(default_factory=dict)
+    unsolvable: frozenset[str] = frozenset()
+
+    @property
+    def variables(self) -> tuple[str, ...]:
+        """Every path that occurs, once, in order."""
+        return tuple(dict.fromkeys(factor for term in self.terms for factor in term.factors))
+
+    @property
+    def solvable(self) -> tuple[str, ...]:
+        """The paths the relation may be solved for."""
+        return tuple(path for path in self.variables if path not in self.unsolvable)
+
+    def residual(self, values: Mapping[str, Array]) -> Array:
+        """The sum, zero when the relation holds."""
+        result: Array = 0.0
+        for term in self.terms:
+            result = result + term.value(values)
+        return result
+
+    def derivative(self, path: str, values: Mapping[str, Array]) -> Array:
+        """Derivative of the sum with respect to one variable."""
+        result: Array = 0.0
+        for term in self.terms:
+            count = term.factors.count(path)
+            if count:
+                result = result + count * term.without(path).value(values)
+        return result
+
+    def is_linear_in(self, paths: Iterable[str]) -> bool:
+        """True when no product holds two of the paths (or one of them twice)."""
+        wanted = set(paths)
+        return all(sum(factor in wanted for factor in term.factors) <= 1 for term in self.terms)
+
+    def direct(self, path: str, values: Mapping[str, Array]) -> Array:
+        """The value of one linear variable from all others."""
+        slope: Array = 0.0
+        rest: Array = 0.0
+        for term in self.terms:
+            if path in term.factors:
+                slope = slope + term.without(path).value(values)
+            else:
+                rest = rest + term.value(values)
+        return -rest / slope
+
+    def solved(self, path: str) -> Equation:
+        """The equation written for one variable."""
+        if path in self.forms:
+            return self.forms[path]
+        slope = [term.without(path) for term in self.terms if path in term.factors]
+        rest = [term for term in self.terms if path not in term.factors]
+        sign = 1.0 if slope[0].coefficient > 0 else -1.0
+        numerator = sum_latex(rest, -sign)
+        if len(slope) == 1 and not slope[0].factors and not slope[0].label:
+            return Equation(token(path), numerator)
+        return Equation(token(path), rf"\frac{{{numerator}}}{{{sum_latex(slope, sign)}}}")
+
+    def balanced(self) -> Equation:
+        """The equation with positive products on the left and negative ones on the right."""
+        left = [term for term in self.terms if term.coefficient > 0]
+        right = [term for term in self.terms if term.coefficient < 0]
+        return Equation(sum_latex(left), sum_latex(right, -1.0))
+
+    def words(self, path: str) -> str:
+        """The sentence when the relation is solved for a path."""
+        return self.sentences.get(path, self.sentence)
+
+
+@dataclass(frozen=True)
+class Inverse:
+    """A formula turned round: the input from the output and the other inputs, with its right side in LaTeX."""
+
+    evaluate: Callable[..., Array]
+    latex: str
+    sentence: str = ""
+
+
+@dataclass(frozen=True)
+class Formula:
+    """y = f(x1, x2, …) on arrays; NaN where it cannot be had.
+
+    ``evaluate`` takes the inputs in order. ``inverses`` give an input in closed form: they take the arrays in the
+    order of ``inputs`` with the output in the place of the input asked for. ``solvable_inputs`` are the inputs the
+    relation may be solved for in any way (None: all). ``fluids`` are the fluids whose properties it uses.
+    ``tolerant``: when it cannot be evaluated, the value is left out with a warning instead of an error.
+    ``lower_bound`` keeps the unknown of an inversion above a value, e.g. 0 for a pressure.
+    """
+
+    key: str
+    owner: str
+    name: str
+    sentence: str
+    basis: str
+    output: str
+    inputs: tuple[str, ...]
+    evaluate: Callable[..., Array]
+    latex: str
+    inverses: Mapping[str, Inverse] = field(default_factory=dict)
+    solvable_inputs: tuple[str, ...] | None = None
+    fluids: tuple[str, ...] = ()
+    tolerant: bool = False
+    reason: str = ""
+
+    @property
+    def variables(self) -> tuple[str, ...]:
+        """Output and inputs."""
+        return tuple(dict.fromkeys((self.output, *self.inputs)))
+
+    @property
+    def solvable(self) -> tuple[str, ...]:
+        """The paths the relation may be solved for."""
+        return (self.output, *(self.inputs if self.solvable_inputs is None else self.solvable_inputs))
+
+    def balanced(self) -> Equation:
+        """The equation as it stands."""
+        return Equation(token(self.output), self.latex)
+
+    def words(self, path: str) -> str:
+        """The sentence when the relation is solved for a path."""
+        if path in self.inverses and self.inverses[path].sentence:
+            return self.inverses[path].sentence
+        return self.sentence
+
+
+Relation = Balance | Formula
+
+
+@dataclass(frozen=True)
+class Default:
+    """An assumption that stands in when neither the givens nor another relation determine a quantity.
+
+    It adds ``relation`` to the network, and puts other relations in the place of those named in ``replaces``
+    (a valve without heat exchange keeps its enthalpy, whatever its flow). ``rank``: lower ones are tried first.
+    """
+
+    key: str
+    owner: str
+    text: str
+    affects: tuple[str, ...]
+    relation: Relation
+    replaces: Mapping[str, Relation] = field(default_factory=dict)
+    rank: int = 0
+
+
+@dataclass(frozen=True)
+class HeatPort:
+    """Heat that crosses the boundary of a piece: paths of heat, boundary temperature and entropy carried."""
+
+    label: str
+    heat: str
+    temperature: str
+    entropy: str
+
+
+@dataclass(frozen=True)
+class Stretch:
+    """How a stream changes from one state to another.
+
+    ``along``: ``"enthalpy"`` (enthalpy changes evenly with ln p, or at constant pressure) or ``"entropy"`` (entropy
+    changes evenly with ln p). ``role`` names the stream; ``mixing`` marks a line that only joins two states.
+    """
+
+    role: str
+    start: str
+    end: str
+    along: str
+    mixing: bool = False
+
+
+def zero(path: str, key: str, owner: str, name: str, sentence: str) -> Balance:
+    """The relation that sets one value to zero."""
+    return Balance(key, owner, name, sentence, "assumption", (Term(1.0, (path,)),))
