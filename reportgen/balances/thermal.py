@@ -32,7 +32,7 @@ def stream_defaults(piece: Piece) -> list[Default]:
 
 
 def stream_exergy_efficiency(piece: Piece, gains: bool) -> Formula:
-    """Exergy of stream and heat, gained over spent; T_b stands for the surroundings' temperature where none is given."""
+    """Exergy of stream and heat, gained over spent."""
     paths = [
         f"states.{piece.one('inlet')}.mass_flow",
         f"states.{piece.one('inlet')}.specific_exergy",

@@ -105,8 +105,8 @@ def results(piece: Piece) -> list[Formula]:
     return [
         exergy_ratio(
             piece,
-            "exergy that leaves over exergy that enters, with streams, heat and power (⁺ and ⁻: the size of what is positive "
-            "or negative, else nothing).",
+            "exergy that leaves over exergy that enters, with streams, heat and power "
+            "(⁺ and ⁻: the size of what is positive or negative, else nothing).",
             inputs,
             lambda *arrays: parts(*arrays)[0],
             lambda *arrays: parts(*arrays)[1],

@@ -1,7 +1,7 @@
 """Heater: a stream that takes up heat from outside.
 
-Exergetic efficiency: exergy gained by the stream over that of the heat, ε = ṁ (e_2 − e_1)/((1 − T0/T_b) Q̇); it needs the
-boundary temperature. Entropy generation number: lost work over heat.
+Exergetic efficiency: exergy gained by the stream over that of the heat, ε = ṁ (e_2 − e_1)/((1 − T0/T_b) Q̇); it needs
+the boundary temperature. Entropy generation number: lost work over heat.
 """
 
 from __future__ import annotations

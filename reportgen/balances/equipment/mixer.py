@@ -48,7 +48,8 @@ def relations(piece: Piece) -> list[Relation]:
     inlets, outlet = piece.states("inlets"), piece.one("outlet")
     pressures = tuple(f"states.{state}.pressure" for state in inlets)
     leaving, drop = f"states.{outlet}.pressure", piece.path("pressure_drop")
-    smallest = rf"\min\left({',\\,'.join(token(path) for path in pressures)}\right)"
+    listed = r",\,".join(token(path) for path in pressures)
+    smallest = rf"\min\left({listed}\right)"
     pressure = Formula(
         piece.path("pressure_drop.relation"),
         piece.owner,
