@@ -49,7 +49,8 @@ SECTIONS: dict[str, type] = {
 def canonical(value: Any) -> Any:
     """Plain JSON data with floats at twelve significant digits, NaN and infinities as None, minus zero as zero.
 
-    Mappings become dicts with text keys, sequences and arrays (anything with ``tolist``) become lists.
+    Mappings become dicts with sorted text keys (so that a record reads the same before it is written and after it is
+    loaded), sequences and arrays (anything with ``tolist``) become lists.
     Raises TypeError for anything else: a record must never carry the ``repr`` of an object.
     """
     if value is None or isinstance(value, bool | str):
@@ -64,7 +65,7 @@ def canonical(value: Any) -> Any:
         for key in value:
             if not isinstance(key, str):
                 raise TypeError(f"a record's keys are text, not {type(key).__name__}")
-        return {str(key): canonical(entry) for key, entry in value.items()}
+        return {str(key): canonical(value[key]) for key in sorted(value)}
     if isinstance(value, list | tuple):
         return [canonical(entry) for entry in value]
     if hasattr(value, "tolist"):

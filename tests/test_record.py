@@ -66,6 +66,7 @@ def test_equal_data_in_another_order_gives_equal_bytes_and_loads_back(tmp_path: 
     file = tmp_path / "record.json"
     file.write_bytes(record.to_json())
     assert Record.load(file) == record
+    assert list(Record.load(file).values) == list(record.values) == sorted(record.values)
     assert Record.load(file).to_json() == record.to_json()
 
 

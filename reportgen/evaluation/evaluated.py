@@ -12,11 +12,12 @@ from typing import TYPE_CHECKING, Any, Literal, NamedTuple
 import numpy as np
 import numpy.typing as npt
 
-from reportgen.evaluation.sampling import Estimate, SampleAxis
+from reportgen.evaluation.sampling import ATMOSPHERE, Estimate, SampleAxis
 
 if TYPE_CHECKING:
     from reportgen.balances.relations import HeatPort
     from reportgen.fluids.model import Fluid
+    from reportgen.quantities import Quantity
     from reportgen.spec.calculation import Limits
 
 __all__ = ["Connection", "EvaluatedPlant"]
@@ -76,6 +77,13 @@ class EvaluatedPlant:
     def estimate(self, path: str) -> Estimate:
         """Value and uncertainty of a path; NaN when the plant has no such value."""
         return self.axis.estimate(self.samples(path))
+
+    def limit_samples(self, limit: Quantity) -> Array:
+        """Samples of a stated limit, shape (N,) [SI]: a gauge pressure keeps its difference to the atmosphere."""
+        if limit.gauge:
+            atmosphere = self.samples(ATMOSPHERE)
+            return limit.value + (atmosphere - atmosphere[0])
+        return np.full(self.axis.columns, limit.value)
 
     def phase(self, state: str) -> str:
         """Phase of a state in the base case, empty when unknown."""

@@ -7,7 +7,7 @@ from types import SimpleNamespace
 
 import numpy as np
 import pytest
-from plants import fluid, plant, samples
+from handmade_plants import fluid, plant, samples
 
 from reportgen.errors import InputError
 from reportgen.evaluation.cautions import catalogue, check_adjustments, raised

@@ -97,8 +97,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             continue
         atmosphere = plant.samples(ATMOSPHERE)
         pressure = plant.samples(f"states.{state}.pressure")
-        # A gauge limit is a fixed difference to the atmosphere, an absolute one a fixed pressure.
-        allowable = table.pressure.value + ((atmosphere - atmosphere[0]) if table.pressure.gauge else 0.0)
+        allowable = plant.limit_samples(table.pressure)
         yield Finding(
             f"states.{state}.pressure",
             pressure,

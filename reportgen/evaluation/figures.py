@@ -1,0 +1,238 @@
+"""Data of the figures, in SI: what to draw, not how.
+
+Curves are sampled so that straight pieces between samples are not seen: the saturation dome evenly in θ^(1/3),
+θ = 1 − T/Tc, in which both branches are nearly straight up to the critical point; isobars evenly in entropy, with the
+saturated states put in; processes evenly along the path that the kind of equipment states for them.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+import numpy.typing as npt
+
+from reportgen.evaluation.evaluated import EvaluatedPlant
+
+if TYPE_CHECKING:
+    from reportgen.balances.relations import Stretch
+
+__all__ = ["bar_figures", "isobar", "process_path", "saturation_dome", "temperature_entropy_figures"]
+
+Array = npt.NDArray[np.float64]
+Curve = dict[str, Any]
+
+DOME_SAMPLES = 60  # a branch
+ISOBAR_SAMPLES = 90
+PATH_SAMPLES = 60
+
+#: Closest approach to the critical point, as 1 − T/Tc; nearer, two-phase densities cannot be told apart reliably.
+CLOSEST_TO_CRITICAL = 1e-5
+#: Pressures closer than this part of each other share one isobar.
+SAME_PRESSURE = 1e-3
+#: Room left and right of the states for isobars, as a part of the entropy span of the states.
+MARGIN = 0.35
+
+
+def temperature_entropy_figures(
+    plant: EvaluatedPlant, stretches: Mapping[str, Sequence[Stretch]]
+) -> list[dict[str, Any]]:
+    """One T–s figure for each fluid that has a state with a known temperature and entropy.
+
+    Args:
+        plant: the solved plant (base case).
+        stretches: equipment tag to the changes of its streams.
+    """
+    figures = []
+    for identifier, fluid in plant.fluids.items():
+        points = [point for state in plant.state_fluids if (point := _point(plant, state, identifier)) is not None]
+        if not points:
+            continue
+        span = _entropy_span(points, fluid.gas_constant)
+        pressures = _distinct(plant.samples(f"states.{point['state']}.pressure")[0] for point in points)
+        paths = [
+            {"equipment": tag, "role": stretch.role, "mixing": stretch.mixing, **curve}
+            for tag, streams in stretches.items()
+            for stretch in streams
+            if plant.state_fluids[stretch.start] == identifier == plant.state_fluids[stretch.end]
+            and (curve := _process(plant, stretch)) is not None
+        ]
+        dome = saturation_dome(fluid)
+        parts = ["Temperature against specific entropy", f"entropy zero: {fluid.entropy_zero}"]
+        parts += ["the dome is the saturation line, closed at the critical point"] if dome else []
+        parts += ["thin lines are isobars through the states, thick lines the states passed on the way"]
+        figures.append(
+            {
+                "id": f"temperature-entropy-{identifier}",
+                "kind": "temperature-entropy",
+                "fluid": identifier,
+                "title": f"Temperature and entropy of {fluid.title}",
+                "caption": "; ".join(parts) + ".",
+                "dome": dome,
+                "isobars": [{"pressure": float(pressure), **isobar(fluid, pressure, *span)} for pressure in pressures],
+                "paths": paths,
+                "points": points,
+            }
+        )
+    return figures
+
+
+def bar_figures(
+    plant: EvaluatedPlant, train_of: Mapping[str, str | None], accounts: Mapping[str, Mapping[str, Any]]
+) -> list[dict[str, Any]]:
+    """Lost work piece by piece, and entropy entering, generated and leaving account by account."""
+    figures: list[dict[str, Any]] = []
+    bars = []
+    for tag in plant.kinds:
+        path = f"equipment.{tag}.lost_work"
+        if plant.has(path):
+            estimate = plant.estimate(path)
+            bars.append(
+                {
+                    "label": tag,
+                    "path": path,
+                    "value": estimate.value,
+                    "expanded_uncertainty": estimate.expanded_uncertainty,
+                    "train": train_of.get(tag),
+                }
+            )
+    if bars:
+        figures.append(
+            {
+                "id": "lost-work",
+                "kind": "lost-work-bars",
+                "title": "Work forgone in each piece",
+                "caption": "Temperature of the surroundings times entropy generation, with its expanded uncertainty.",
+                "bars": bars,
+            }
+        )
+    complete = [
+        {
+            "label": account["title"],
+            "entering": account["sum_entering"],
+            "generated": sum(line["value"] for line in account["generated"]),
+            "leaving": account["sum_leaving"],
+        }
+        for account in accounts.values()
+        if account["generated"] and all(line["value"] is not None for line in account["generated"])
+    ]
+    if complete:
+        figures.append(
+            {
+                "id": "entropy-account",
+                "kind": "entropy-account-bars",
+                "title": "Entropy entering and generated",
+                "caption": "What enters and what is generated together leave; entropies relative to the stated zeros.",
+                "bars": complete,
+            }
+        )
+    return figures
+
+
+def saturation_dome(fluid: Any) -> Curve | None:
+    """Saturation line from the saturated liquid at the lowest temperature over the critical point to the vapour.
+
+    Both branches meet in the critical point, which stands once in the middle. None for fluids without saturation.
+
+    Returns:
+        ``entropy`` [J/(kg·K)] and ``temperature`` [K], equally long lists.
+    """
+    critical = fluid.limits.critical_point
+    if critical is None or not hasattr(fluid, "saturation"):
+        return None
+    triple = fluid.limits.triple_point
+    lowest = max(fluid.limits.minimum_temperature, triple.temperature if triple is not None else 0.0)
+    reach = 1.0 - lowest / critical.temperature
+    theta = np.linspace(reach ** (1 / 3), CLOSEST_TO_CRITICAL ** (1 / 3), DOME_SAMPLES) ** 3
+    temperature = critical.temperature * (1.0 - theta)
+    temperature[0] = lowest
+    liquid, vapour = fluid.saturation(temperature=temperature, errors="mask")
+    top = fluid.at(temperature=critical.temperature, density=critical.density, errors="mask")
+    entropies = np.concatenate(
+        [
+            np.asarray(liquid.specific_entropy),
+            [float(top.specific_entropy)],
+            np.asarray(vapour.specific_entropy)[::-1],
+        ]
+    )
+    temperatures = np.concatenate(
+        [np.asarray(liquid.temperature), [critical.temperature], np.asarray(vapour.temperature)[::-1]]
+    )
+    return _curve(entropies, temperatures)
+
+
+def isobar(fluid: Any, pressure: float, lowest: float, highest: float) -> Curve:
+    """Temperatures along one pressure [Pa] between two entropies [J/(kg·K)], where the model reaches."""
+    entropy = np.linspace(lowest, highest, ISOBAR_SAMPLES)
+    critical = fluid.limits.critical_point
+    if critical is not None and pressure < critical.pressure and hasattr(fluid, "saturation"):
+        corners = [float(state.specific_entropy) for state in fluid.saturation(pressure=pressure, errors="mask")]
+        entropy = np.unique([*entropy, *(corner for corner in corners if lowest < corner < highest)])
+    state = fluid.at(pressure=np.full_like(entropy, pressure), specific_entropy=entropy, errors="mask")
+    return _curve(entropy, np.asarray(state.temperature))
+
+
+def process_path(fluid: Any, along: str, start: Mapping[str, float], end: Mapping[str, float]) -> Curve:
+    """States that a stream passes between two states, evenly along the path.
+
+    ``along`` is ``"enthalpy"`` or ``"entropy"``: that property changes evenly with ln p; at constant pressure it
+    changes evenly by itself.
+
+    Args:
+        fluid: property model.
+        along: the property that changes evenly.
+        start, end: pressure [Pa], temperature [K], specific_enthalpy [J/kg], specific_entropy [J/(kg·K)].
+    """
+    part = np.linspace(0.0, 1.0, PATH_SAMPLES)
+    name = f"specific_{along}"
+    pressure = np.exp((1.0 - part) * np.log(start["pressure"]) + part * np.log(end["pressure"]))
+    level = (1.0 - part) * start[name] + part * end[name]
+    state = fluid.at(pressure=pressure, errors="mask", **{name: level})
+    entropy = np.array(state.specific_entropy, dtype=float)
+    temperature = np.array(state.temperature, dtype=float)
+    for index, edge in ((0, start), (-1, end)):
+        entropy[index], temperature[index] = edge["specific_entropy"], edge["temperature"]
+    return _curve(entropy, temperature)
+
+
+def _process(plant: EvaluatedPlant, stretch: Stretch) -> Curve | None:
+    names = ("pressure", "temperature", "specific_enthalpy", "specific_entropy")
+    start, end = (
+        {name: float(plant.samples(f"states.{state}.{name}")[0]) for name in names}
+        for state in (stretch.start, stretch.end)
+    )
+    if not np.all(np.isfinite([*start.values(), *end.values()])):
+        return None
+    return process_path(plant.fluid_of(stretch.start), stretch.along, start, end)
+
+
+def _point(plant: EvaluatedPlant, state: str, fluid: str) -> dict[str, Any] | None:
+    if plant.state_fluids[state] != fluid:
+        return None
+    entropy, temperature = (
+        float(plant.samples(f"states.{state}.{name}")[0]) for name in ("specific_entropy", "temperature")
+    )
+    if not (np.isfinite(entropy) and np.isfinite(temperature)):
+        return None
+    return {"state": state, "label": state, "entropy": entropy, "temperature": temperature}
+
+
+def _entropy_span(points: Sequence[Mapping[str, Any]], gas_constant: float) -> tuple[float, float]:
+    entropies = [point["entropy"] for point in points]
+    lowest, highest = min(entropies), max(entropies)
+    room = MARGIN * max(highest - lowest, gas_constant)
+    return lowest - room, highest + room
+
+
+def _distinct(pressures: Iterable[float]) -> list[float]:
+    found: list[float] = []
+    for pressure in sorted(float(pressure) for pressure in pressures if np.isfinite(pressure)):
+        if not found or pressure > found[-1] * (1.0 + SAME_PRESSURE):
+            found.append(pressure)
+    return found
+
+
+def _curve(entropy: Array, temperature: Array) -> Curve:
+    known = np.isfinite(entropy) & np.isfinite(temperature)
+    return {"entropy": entropy[known].tolist(), "temperature": temperature[known].tolist()}
