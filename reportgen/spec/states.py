@@ -1,0 +1,172 @@
+"""What is given for a state, its own givens and those of the state that it is ``like``."""
+
+from __future__ import annotations
+
+from reportgen.spec.schema import FLOWS, INTENSIVE, STATE_KEYS
+from reportgen.spec.source import Source
+
+__all__ = ["check_states", "fluid_of", "givens_of"]
+
+#: Givens that say the same thing in different ways: an own one takes the place of any that is copied.
+_SAME = ({*FLOWS}, {"density", "specific_volume"}, {"superheat", "subcooling"})
+#: Pairs that never fix a state, with the reason.
+_DEPENDENT = {
+    frozenset({"density", "specific_volume"}): "one is the reciprocal of the other",
+    frozenset({"superheat", "subcooling"}): "a state is above or below saturation",
+    frozenset({"quality", "superheat"}): "a superheated state has no vapour fraction",
+    frozenset({"quality", "subcooling"}): "a subcooled state has no vapour fraction",
+}
+_WITHOUT_SATURATION = ("quality", "superheat", "subcooling")
+
+
+def _ancestry(source: Source, state: str) -> list[str]:
+    """The state, the one it is like, the one that is like, and so on; ends before an unknown or a repeated one."""
+    chain: list[str] = []
+    states = source.table("states")
+    following: str | None = state
+    while following is not None and following in states and following not in chain:
+        chain.append(following)
+        following = source.text("states", following, "like")
+    return chain
+
+
+def givens_of(source: Source, state: str) -> dict[str, str]:
+    """Names of all quantities given for a state, each with the state in whose table it stands; own ones first."""
+    givens: dict[str, str] = {}
+    for owner in _ancestry(source, state):
+        inner = dict(givens)
+        for key in source.table("states", owner):
+            replaced = next((same for same in _SAME if key in same), {key})
+            if key in STATE_KEYS and not replaced & inner.keys():
+                givens[key] = owner
+    return givens
+
+
+def fluid_of(source: Source, state: str) -> str | None:
+    """The fluid of a state, its own or that of the state it is like."""
+    return next((fluid for owner in _ancestry(source, state) if (fluid := source.text("states", owner, "fluid"))), None)
+
+
+def check_states(source: Source) -> None:
+    """Fluids, likeness, and that no more is given than can be independent."""
+    in_a_circle: set[str] = set()
+    for state in source.table("states"):
+        _check_likeness(source, state, in_a_circle)
+        _check_fluid(source, state)
+        _check_intensive(source, state)
+        flows = [key for key in source.table("states", state) if key in FLOWS]
+        if len(flows) > 1:
+            source.report(
+                ("states", state, flows[1]),
+                "The flow of this state is given more than once.",
+                at="key",
+                found=", ".join(flows),
+                expected="one of them",
+            )
+
+
+def _check_likeness(source: Source, state: str, in_a_circle: set[str]) -> None:
+    like = source.text("states", state, "like")
+    if like is None:
+        return
+    states = source.table("states")
+    location = ("states", state, "like")
+    if like not in states:
+        if source.names_are_complete and not source.is_broken(("states", like)):
+            source.report(
+                location,
+                "There is no such state.",
+                found=f'"{like[:60]}"',
+                expected="a state of this file",
+                hint=source.nearest(like, states),
+            )
+        return
+    chain = _ancestry(source, state)
+    if source.text("states", chain[-1], "like") == state and state not in in_a_circle:
+        in_a_circle.update(chain)
+        source.report(
+            location,
+            "A state cannot be like itself, not by way of others either.",
+            found=" like ".join([*chain, state][:8]),
+            expected="a state whose givens stand in its own table",
+        )
+
+
+def _check_fluid(source: Source, state: str) -> None:
+    fluids = source.table("fluids")
+    fluid = source.text("states", state, "fluid")
+    location = ("states", state, "fluid")
+    if fluid is None:
+        if source.node(location) is None and fluid_of(source, state) is None and not _likeness_is_open(source, state):
+            source.report(location, '"fluid" is missing.', expected="Name of a table of [fluids]")
+    elif fluid not in fluids and source.names_are_complete and not source.is_broken(("fluids", fluid)):
+        source.report(
+            location,
+            "There is no such fluid.",
+            found=f'"{fluid[:60]}"',
+            expected="a fluid of this file: " + ", ".join(list(fluids)[:12]) if fluids else "a table [fluids.<name>]",
+            hint=source.nearest(fluid, fluids),
+        )
+
+
+def _likeness_is_open(source: Source, state: str) -> bool:
+    """Whether the file has a fault in the likeness already, so that the fluid cannot be known."""
+    last = _ancestry(source, state)[-1]
+    return source.node(("states", last, "like")) is not None
+
+
+def _check_intensive(source: Source, state: str) -> None:
+    givens = {key: owner for key, owner in givens_of(source, state).items() if key in INTENSIVE}
+    own = [key for key, owner in givens.items() if owner == state]
+    if not own and len(givens) > 0:
+        return  # all copied: any fault is reported at the state they are copied from
+    location = ("states", state, own[min(2, len(own) - 1)] if own else "like")
+    listed = ", ".join(key if owner == state else f"{key} (like {owner})" for key, owner in givens.items())
+    if _check_saturation(source, state, own):
+        return
+    for pair, reason in _DEPENDENT.items():
+        if pair <= givens.keys():
+            at = [key for key in own if key in pair]
+            names = " and ".join(key for key in givens if key in pair)
+            source.report(
+                ("states", state, at[-1]) if at else location,
+                f"{names} cannot both be given: {reason}.",
+                at="key",
+                found=listed,
+                expected="two independent quantities",
+            )
+            return
+    if len(givens) > 2:
+        source.report(
+            location,
+            "More than two quantities are given that each help to fix the state.",
+            at="key",
+            found=listed,
+            expected="any two independent ones",
+        )
+
+
+def _check_saturation(source: Source, state: str, own: list[str]) -> bool:
+    """What an ideal gas does not have; True when something was reported."""
+    fluid = fluid_of(source, state)
+    if fluid is None or source.text("fluids", fluid, "model") != "ideal-gas":
+        return False
+    wrong = [key for key in own if key in _WITHOUT_SATURATION]
+    for key in wrong:
+        source.report(
+            ("states", state, key),
+            "An ideal gas does not condense.",
+            at="key",
+            found=key,
+            expected="pressure, temperature or another quantity of a gas; or a real-fluid",
+        )
+    if not wrong and {"temperature", "specific_enthalpy"} <= set(own):
+        source.report(
+            ("states", state, "specific_enthalpy"),
+            "temperature and specific_enthalpy cannot both be given: in an ideal gas one follows from the other.",
+            at="key",
+            found="temperature, specific_enthalpy",
+            expected="two independent quantities, such as pressure and temperature",
+        )
+        return True
+    return bool(wrong)

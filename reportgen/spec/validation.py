@@ -1,0 +1,231 @@
+"""Checking a file against the schema: what pydantic finds, said in the words of an engineer."""
+
+from __future__ import annotations
+
+import re
+import types
+from collections.abc import Mapping, Sequence
+from contextlib import suppress
+from typing import Annotated, Any, Literal, Union, get_args, get_origin
+
+from pydantic import BaseModel, ValidationError
+
+from reportgen.errors import Fault, InputError
+from reportgen.spec.fields import QuantityOf, shown
+from reportgen.spec.schema import LATER, document
+from reportgen.spec.source import Location, Source
+
+__all__ = ["refuse_later", "validate"]
+
+STANDARD_ATMOSPHERE = 101_325.0
+
+_TYPES = {
+    "string_type": "text in quotes",
+    "model_type": "a table",
+    "model_attributes_type": "a table",
+    "dict_type": "a table",
+    "list_type": "a list in [ ]",
+    "float_type": "a number without quotes",
+    "int_type": "a whole number without quotes",
+}
+_BOUNDS = {
+    "greater_than": "above {gt}",
+    "greater_than_equal": "at least {ge}",
+    "less_than": "below {lt}",
+    "less_than_equal": "at most {le}",
+    "too_short": "{min_length} or more entries",
+    "too_long": "at most {max_length} entries",
+    "string_too_short": "{min_length} or more characters",
+    "string_too_long": "at most {max_length} characters",
+}
+
+
+def context_of(source: Source) -> dict[str, float]:
+    """Atmosphere [Pa] and coverage factor [1] of the file, which the reading of every quantity needs.
+
+    Where the file gives no usable one, that is a fault of its own; the rest is then read with the standard
+    atmosphere and k = 2, so that each of its own faults is found and none is reported for the missing one.
+    """
+    coverage = source.node(("uncertainty", "coverage_factor"))
+    factor = coverage.value if coverage is not None else None
+    usable = isinstance(factor, int | float) and not isinstance(factor, bool) and 1.0 <= factor <= 10.0
+    atmosphere = STANDARD_ATMOSPHERE
+    pressure = source.node(("surroundings", "pressure"))
+    if pressure is not None and not pressure.broken:
+        with suppress(InputError):
+            atmosphere = QuantityOf(("pressure",), absolute=True).read(pressure.plain(), None, 2.0).value
+    return {"atmosphere": atmosphere, "coverage_factor": float(factor) if usable else 2.0}  # type: ignore[arg-type]
+
+
+def validate(source: Source, context: Mapping[str, float]) -> BaseModel | None:
+    """The validated file; None, with the faults noted in ``source``, when it does not fit the schema."""
+    try:
+        return document().model_validate(source.root.plain(), context=dict(context))
+    except ValidationError as error:
+        for detail in error.errors(include_url=False):
+            _note(source, detail)
+        return None
+
+
+def refuse_later(source: Source, location: Location, table: str, word: str, *, at: Literal["key", "value"]) -> bool:
+    """Whether a word belongs to what this version does not carry; then that is noted."""
+    subject = LATER.get(table, {}).get(word)
+    if subject is None:
+        return False
+    source.report(location, f"{subject} not carried by this version.", at=at, found=word)
+    return True
+
+
+def _note(source: Source, detail: Any) -> None:
+    """Turn one finding of pydantic into the faults it means."""
+    kind, tagged = detail["type"], tuple(detail["loc"])
+    context = detail.get("ctx", {})
+    about_key = bool(tagged) and tagged[-1] == "[key]"
+    location = _without_tags(tagged[:-1] if about_key else tagged)
+    cause = context.get("error")
+    if isinstance(cause, InputError):
+        for fault in cause.faults:
+            _note_value(source, location, fault, about_key)
+    elif kind == "missing":
+        _note_missing(source, location, _step_field(tagged))
+    elif kind in ("union_tag_not_found", "union_tag_invalid"):
+        _note_tag(source, location, context)
+    elif kind == "extra_forbidden":
+        _note_unknown_key(source, location, _keys_of(tagged[:-1]))
+    elif kind == "literal_error":
+        choices = _choices(context["expected"])
+        _note_choice(source, location, choices)
+    else:
+        message, expected = "The value does not fit.", detail["msg"]
+        if kind in _TYPES:
+            message, expected = "This is not the type of value that belongs here.", _TYPES[kind]
+        elif kind in _BOUNDS:
+            expected = _BOUNDS[kind].format(**context)
+        source.report(location, message, found=_found(source, location), expected=expected)
+
+
+def _note_value(source: Source, location: Location, fault: Fault, about_key: bool) -> None:
+    """A fault that the value's own reader found; in a quantity table, at the key that its message speaks of."""
+    node = source.node(location)
+    if about_key or node is None or not node.table:
+        source.note(location, fault, at="key" if about_key else "value")
+        return
+    named = [word for word in re.findall(r"\w+", fault.message) if word in node.table]
+    key = named[0] if named else "value"
+    unknown = re.search(r'has no "', fault.message) is not None
+    source.note((*location, key) if key in node.table else location, fault, at="key" if unknown else "value")
+
+
+def _note_missing(source: Source, location: Location, description: str | None) -> None:
+    if not source.is_broken(location):
+        source.report(location, f'"{location[-1]}" is missing.', expected=description)
+
+
+def _note_tag(source: Source, location: Location, context: Mapping[str, Any]) -> None:
+    """An equipment kind or property model that is absent or not known."""
+    key = str(context["discriminator"]).strip("'")
+    place = (*location, key)
+    node = source.node(place)
+    if node is None:
+        what = "What kind of equipment it is" if key == "kind" else "Which property model holds"
+        _note_missing(source, place, f"{what}.")
+    elif not node.broken:
+        _note_choice(source, place, _choices(context.get("expected_tags", "")))
+
+
+def _note_choice(source: Source, location: Location, choices: Sequence[str]) -> None:
+    """A value that is none of those allowed."""
+    node = source.node(location)
+    value = node.value if node is not None else None
+    table = ".".join(str(part) for part in (location[0], location[-1]))
+    if isinstance(value, str) and refuse_later(source, location, table, value, at="value"):
+        return
+    source.report(
+        location,
+        f"This {location[-1]} is not known."
+        if isinstance(value, str)
+        else "This is not the type of value that belongs here.",
+        found=shown(value),
+        expected=" or ".join(f'"{choice}"' for choice in choices),
+        hint=source.nearest(value, choices) if isinstance(value, str) else None,
+    )
+
+
+def _note_unknown_key(source: Source, location: Location, choices: Sequence[str]) -> None:
+    key = str(location[-1])
+    table = str(location[0]) if len(location) > 1 else ""
+    if refuse_later(source, location, table, key, at="key"):
+        return
+    source.report(
+        location,
+        f'There is no key "{shown(key)[1:-1]}" here.',
+        at="key",
+        found=shown(key)[1:-1],
+        expected=", ".join(choices),
+        hint=source.nearest(key, choices),
+    )
+
+
+def _found(source: Source, location: Location) -> str:
+    node = source.node(location)
+    return shown(node.plain()) if node is not None else "nothing"
+
+
+def _choices(expected: str) -> list[str]:
+    """The texts in pydantic's ``'a', 'b' or 'c'``."""
+    return re.findall(r"'([^']*)'", expected)
+
+
+# --- where in the schema a finding belongs --------------------------------------------------------------------------
+
+
+def _without_tags(tagged: Location) -> tuple[str | int, ...]:
+    """A location of pydantic without the name of the variant that it puts behind equipment and fluids."""
+    if len(tagged) > 2 and tagged[0] in ("equipment", "fluids"):
+        return (*tagged[:2], *tagged[3:])
+    return tuple(tagged)
+
+
+def _variants(annotation: Any) -> list[Any]:
+    """The types an annotation stands for, without the marks round them and without None."""
+    while get_origin(annotation) is Annotated:
+        annotation = get_args(annotation)[0]
+    if get_origin(annotation) in (Union, types.UnionType):
+        return [inner for variant in get_args(annotation) for inner in _variants(variant)]
+    return [] if annotation is type(None) else [annotation]
+
+
+def _step(annotation: Any, part: str | int) -> Any:
+    """The annotation one key or index further inside."""
+    variants = _variants(annotation)
+    for variant in variants:
+        if isinstance(variant, type) and issubclass(variant, BaseModel):
+            if len(variants) > 1:
+                tag = variant.model_fields.get("kind") or variant.model_fields.get("model")
+                if tag is not None and get_args(tag.annotation) == (part,):
+                    return variant
+            elif part in variant.model_fields:
+                return variant.model_fields[str(part)].annotation
+        elif get_origin(variant) in (dict, list):
+            return get_args(variant)[-1]
+    return None
+
+
+def _model_at(tagged: Location) -> type[BaseModel] | None:
+    annotation: Any = document()
+    for part in tagged:
+        annotation = _step(annotation, part)
+    variants = _variants(annotation)
+    return variants[0] if variants and isinstance(variants[0], type) and issubclass(variants[0], BaseModel) else None
+
+
+def _keys_of(tagged: Location) -> list[str]:
+    model = _model_at(tagged)
+    return list(model.model_fields) if model is not None else []
+
+
+def _step_field(tagged: Location) -> str | None:
+    """Description of the field at a location."""
+    model = _model_at(tagged[:-1])
+    field = model.model_fields.get(str(tagged[-1])) if model is not None else None
+    return field.description.rstrip(".") if field is not None and field.description else None
