@@ -1,0 +1,36 @@
+"""Figures of a record as SVG that stands in the page: text as text in the page's face, colours of the page.
+
+One module a kind of figure; ``KINDS`` is the only place that lists them. matplotlib is imported when one is drawn.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+from markupsafe import Markup
+
+from reportgen.report.figures import bars, temperature_entropy
+from reportgen.report.figures.canvas import Drawing
+from reportgen.report.presenter import Presenter
+
+__all__ = ["KINDS", "draw"]
+
+KINDS: dict[str, Callable[[dict[str, Any], Presenter, Path], Drawing]] = {
+    "temperature-entropy": temperature_entropy.draw,
+    "lost-work-bars": bars.draw_lost_work,
+    "entropy-account-bars": bars.draw_entropy_account,
+}
+
+
+def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Markup | None:
+    """SVG of one figure of the record, None for a kind that this version does not draw or that has no data.
+
+    ``fonts`` is the folder with ``figures.otf``, by which text is measured.
+    """
+    kind = KINDS.get(figure["kind"])
+    if kind is None:
+        return None
+    drawing = kind(figure, presenter, fonts)
+    return Markup(drawing.svg(figure["id"], figure["title"], drawing.description))

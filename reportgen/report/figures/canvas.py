@@ -1,0 +1,144 @@
+"""What all figures share: size, face, colours, and SVG bytes that depend on nothing but the data."""
+
+from __future__ import annotations
+
+import io
+import re
+from collections.abc import Sequence
+from html import escape
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+from reportgen.report.links import anchor
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+    from matplotlib.font_manager import FontProperties
+
+__all__ = ["GENERATION", "GREY", "INK", "PAPER", "TEAL", "TINT", "Drawing"]
+
+#: Colours as drawn; each stands for a custom property of the style sheet, which the page's scheme sets.
+INK, GREY, TINT, PAPER, TEAL, GENERATION = "#1b2224", "#6b7577", "#dfe4e4", "#fdfdfc", "#0d5c66", "#b3341c"
+_PROPERTIES = {
+    INK: "var(--ink)",
+    GREY: "var(--quiet)",
+    TINT: "var(--tint)",
+    PAPER: "var(--paper)",
+    TEAL: "var(--teal)",
+    GENERATION: "var(--generation)",
+}
+FAMILY = "Ledger Pagella"
+SIZE = 9.5
+SMALL = 8.5
+_SETTINGS = {
+    "svg.fonttype": "none",
+    "svg.hashsalt": "reportgen",
+    "path.simplify": False,
+    "axes.unicode_minus": True,
+    "text.usetex": False,
+}
+
+
+class Drawing:
+    """A matplotlib figure in points (1/72 inch), with the face of the page, that writes itself as SVG.
+
+    ``width`` and ``height`` in points. One unit of display coordinates is one point, counted from the lower left.
+    """
+
+    def __init__(self, width: float, height: float, fonts: Path) -> None:
+        from matplotlib.backends.backend_svg import FigureCanvasSVG
+        from matplotlib.figure import Figure
+
+        self.width, self.height = width, height
+        self.description = ""
+        self._face = fonts / "figures.otf"
+        self.figure = Figure(figsize=(width / 72, height / 72), dpi=72, facecolor="none")
+        FigureCanvasSVG(self.figure)
+
+    def face(self, size: float = SIZE) -> FontProperties:
+        """The page's text face at a size [pt]."""
+        from matplotlib.font_manager import FontProperties
+
+        return FontProperties(family=FAMILY, fname=str(self._face), size=size)
+
+    def text_size(self, text: str, size: float = SIZE) -> tuple[float, float]:
+        """Width and height [pt] of one line of text."""
+        from matplotlib.font_manager import get_font
+        from matplotlib.ft2font import LoadFlags
+
+        font = get_font(str(self._face))
+        font.set_size(size, 72)
+        font.set_text(text, 0.0, flags=LoadFlags.NO_HINTING)
+        width, _ = font.get_width_height()
+        return width / 64, 0.95 * size
+
+    def axes(self, left: float, bottom: float, right: float, top: float) -> Axes:
+        """Axes with margins [pt], hairline spines left and below, no box."""
+        box = (
+            left / self.width,
+            bottom / self.height,
+            (self.width - left - right) / self.width,
+            (self.height - bottom - top) / self.height,
+        )
+        axes = self.figure.add_axes(box, facecolor="none")
+        for side in ("top", "right"):
+            axes.spines[side].set_visible(False)
+        for side in ("left", "bottom"):
+            axes.spines[side].set(color=GREY, linewidth=0.6)
+        axes.tick_params(width=0.6, length=3, color=GREY, labelcolor=INK)
+        return axes
+
+    def dress_ticks(self, axes: Axes) -> None:
+        """Tick labels in the page's face; call when the limits are set."""
+        for label in (*axes.get_xticklabels(), *axes.get_yticklabels()):
+            label.set_fontproperties(self.face(SMALL))
+            label.set_color(INK)
+
+    def write(self, x: float, y: float, text: str, **more: Any) -> None:
+        """A line of text at display coordinates [pt]."""
+        size = more.pop("size", SIZE)
+        more.setdefault("color", INK)
+        self.figure.text(x / self.width, y / self.height, text, fontproperties=self.face(size), **more)
+
+    def leader(self, start: tuple[float, float], end: tuple[float, float]) -> None:
+        """A hairline between two display coordinates, from what is named to its label."""
+        from matplotlib.lines import Line2D
+
+        xs, ys = zip(start, end, strict=True)
+        line = Line2D([x / self.width for x in xs], [y / self.height for y in ys], color=GREY, linewidth=0.5)
+        self.figure.add_artist(line)
+
+    def svg(self, identifier: str, title: str, description: str) -> str:
+        """The figure as an ``<svg>`` element with title and description; every id begins with the figure's own."""
+        import matplotlib
+
+        stream = io.StringIO()
+        with matplotlib.rc_context(_SETTINGS):
+            self.figure.savefig(
+                stream, format="svg", metadata={"Date": None, "Creator": None, "Format": None, "Type": None}
+            )
+        text = stream.getvalue()
+        body = text[text.index(">", text.index("<svg")) + 1 : text.rindex("</svg>")]
+        body = re.sub(r"\s*<metadata>.*?</metadata>", "", body, flags=re.DOTALL)
+        prefix = anchor("figure", identifier)
+        body = re.sub(r'\bid="', f'id="{prefix}.', body)
+        body = re.sub(r"url\(#", f"url(#{prefix}.", body)
+        body = re.sub(r'xlink:href="#', f'href="#{prefix}.', body)
+        for colour, name in _PROPERTIES.items():
+            body = body.replace(colour, name)
+        body = re.sub(r"\n\s*", "\n", body)
+        return (
+            f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {self.width:g} {self.height:g}" role="img" '
+            f'aria-labelledby="{prefix}.title {prefix}.desc">'
+            f'<title id="{prefix}.title">{escape(title)}</title>'
+            f'<desc id="{prefix}.desc">{escape(description)}</desc>{body}</svg>'
+        )
+
+
+def finite(*columns: Sequence[float | None]) -> list[tuple[float, ...]]:
+    """Rows of several columns in which no entry is missing."""
+    return [
+        tuple(float(entry) for entry in row if entry is not None)
+        for row in zip(*columns, strict=True)
+        if all(entry is not None for entry in row)
+    ]

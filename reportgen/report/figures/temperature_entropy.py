@@ -1,0 +1,277 @@
+"""Temperature against specific entropy: saturation dome, isobars, process paths, state points."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from reportgen.report.figures.canvas import GREY, INK, PAPER, SMALL, TEAL, Drawing, finite
+from reportgen.report.figures.placement import Box, Label, Placed, Placement
+from reportgen.report.presenter import Presenter
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+
+__all__ = ["draw"]
+
+_WIDTH, _HEIGHT = 432.0, 292.0
+_MARGINS = (46.0, 38.0, 10.0, 12.0)  # left, bottom, right, top
+_POINT_RADIUS = 2.6
+_BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
+#: Part of both axes below which the processes get a panel of their own.
+_CROWDED = 0.4
+
+Line = list[tuple[float, float]]
+
+
+def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
+    """The figure of one fluid; where the processes crowd in a corner of the dome, a second panel shows them large."""
+    curves = _Curves(figure, presenter)
+    detail = curves.detail()
+    drawing = Drawing(_WIDTH, _HEIGHT * (2.0 if detail else 1.0), fonts)
+    left, bottom, right, top = _MARGINS
+    upper = (left, bottom + (_HEIGHT if detail else 0.0), right, top)
+    if detail:
+        _panel(drawing, curves, upper, curves.whole(), detail, presenter)
+        _panel(drawing, curves, (left, bottom, right, top + _HEIGHT), detail, None, presenter)
+    else:
+        _panel(drawing, curves, upper, curves.whole(), None, presenter)
+    drawing.description = curves.description(presenter)
+    return drawing
+
+
+class _Curves:
+    """The curves of the record in display units."""
+
+    def __init__(self, figure: dict[str, Any], presenter: Presenter) -> None:
+        def line(entry: dict[str, Any] | None) -> Line:
+            if not entry:
+                return []
+            rows = finite(entry["entropy"], entry["temperature"])
+            return [
+                (
+                    presenter.display.convert(entropy, "specific_entropy"),
+                    presenter.display.convert(temperature, "temperature"),
+                )
+                for entropy, temperature in rows
+            ]
+
+        self.dome = line(figure.get("dome"))
+        self.isobars = [
+            (presenter.with_unit(float(f"{entry['pressure']:.3g}"), "pressure"), line(entry))
+            for entry in figure.get("isobars", [])
+        ]
+        self.paths = [(entry["equipment"], line(entry)) for entry in figure.get("paths", [])]
+        self.points = [
+            (str(entry["label"]), line({"entropy": [entry["entropy"]], "temperature": [entry["temperature"]]})[0])
+            for entry in figure.get("points", [])
+            if entry["entropy"] is not None and entry["temperature"] is not None
+        ]
+
+    def processes(self) -> Box:
+        """What paths and points cover."""
+        return _cover([*(point for _, line in self.paths for point in line), *(point for _, point in self.points)])
+
+    def whole(self) -> Box:
+        """Limits that hold dome, paths and points."""
+        found = self.processes()
+        if self.dome:
+            dome = _cover(self.dome)
+            found = Box(
+                min(found.left, dome.left),
+                min(found.bottom, dome.bottom),
+                max(found.right, dome.right),
+                max(found.top, dome.top),
+            )
+        return _aired(found, 0.05, 0.09)
+
+    def detail(self) -> Box | None:
+        """Limits of the second panel, None when the processes fill the whole well enough."""
+        if not self.dome or not self.points:
+            return None
+        whole, processes = self.whole(), self.processes()
+        wide = (processes.right - processes.left) / (whole.right - whole.left)
+        high = (processes.top - processes.bottom) / (whole.top - whole.bottom)
+        if wide > _CROWDED or high > _CROWDED or max(wide, high) == 0.0:
+            return None
+        return _aired(processes, 0.3, 0.25)
+
+    def description(self, presenter: Presenter) -> str:
+        """The figure in words: states and paths."""
+        entropy = presenter.display.unit_text("specific_entropy")
+        temperature = presenter.display.unit_text("temperature")
+        points = "; ".join(
+            f"state {name} at {_plain(point[0])} {entropy} and {_plain(point[1])} {temperature}"
+            for name, point in self.points
+        )
+        parts = ["Temperature against specific entropy."]
+        if self.dome:
+            parts.append("The saturation line is a closed dome.")
+        if points:
+            parts.append(f"Points: {points}.")
+        if self.paths:
+            parts.append("Paths: " + ", ".join(dict.fromkeys(name for name, _ in self.paths)) + ".")
+        return " ".join(parts)
+
+
+def _plain(figure: float) -> str:
+    return f"{figure:.4g}".replace("-", "−")
+
+
+def _cover(points: Line) -> Box:
+    if not points:
+        return Box(0.0, 0.0, 1.0, 1.0)
+    entropies, temperatures = zip(*points, strict=True)
+    return Box(min(entropies), min(temperatures), max(entropies), max(temperatures))
+
+
+def _aired(box: Box, wide: float, high: float) -> Box:
+    """Room round the curves, as parts of their extent; a point or a line gets some of each unit."""
+    across = (box.right - box.left) or max(abs(box.left), 1.0) * 0.2
+    up = (box.top - box.bottom) or max(abs(box.top), 1.0) * 0.2
+    return Box(box.left - wide * across, box.bottom - high * up, box.right + wide * across, box.top + high * up)
+
+
+def _panel(
+    drawing: Drawing,
+    curves: _Curves,
+    margins: tuple[float, float, float, float],
+    limits: Box,
+    detail: Box | None,
+    presenter: Presenter,
+) -> None:
+    """One pair of axes with all curves; ``detail`` is framed and its states are left to the panel below."""
+    axes = drawing.axes(*margins)
+    axes.set(xlim=(limits.left, limits.right), ylim=(limits.bottom, limits.top))
+    left, bottom, right, top = margins
+    frame = Box(left + 2, bottom + 2, drawing.width - right, drawing.height - top)
+    placement = Placement(frame)
+    pen = _Pen(axes, placement)
+    for _, line in curves.isobars:
+        pen.line(line, color=GREY, linewidth=0.6, linestyle=(0, (4, 3)), zorder=1)
+    if curves.dome:
+        pen.line(curves.dome, color=INK, linewidth=0.9, zorder=2)
+    for _, line in curves.paths:
+        pen.line(line, color=TEAL, linewidth=2.0, solid_capstyle="round", zorder=3)
+    for _, point in curves.points:
+        pen.point(point)
+    if detail is not None:
+        corners = [
+            (detail.left, detail.bottom),
+            (detail.right, detail.bottom),
+            (detail.right, detail.top),
+            (detail.left, detail.top),
+            (detail.left, detail.bottom),
+        ]
+        pen.line(corners, color=GREY, linewidth=0.5, zorder=1)
+    _labels(drawing, curves, pen, detail)
+    _axis_names(drawing, axes, margins, presenter)
+
+
+class _Pen:
+    """Draws in data coordinates and tells the placement, in display coordinates, what is in the way."""
+
+    def __init__(self, axes: Axes, placement: Placement) -> None:
+        self.axes = axes
+        self.placement = placement
+
+    def display(self, points: Line) -> Line:
+        """Data coordinates to points on the figure."""
+        array = self.axes.transData.transform(np.asarray(points, dtype=float))
+        return [(float(x), float(y)) for x, y in array]
+
+    def line(self, points: Line, **style: Any) -> None:
+        """A polyline."""
+        if len(points) < 2:
+            return
+        entropies, temperatures = zip(*points, strict=True)
+        self.axes.plot(entropies, temperatures, **style)
+        self.placement.add_line(self.display(points))
+
+    def point(self, point: tuple[float, float]) -> None:
+        """A state point: a small ring."""
+        self.axes.plot(
+            [point[0]],
+            [point[1]],
+            marker="o",
+            markersize=2 * _POINT_RADIUS,
+            markerfacecolor=PAPER,
+            markeredgecolor=INK,
+            markeredgewidth=1.0,
+            zorder=4,
+        )
+        x, y = self.display([point])[0]
+        reach = _POINT_RADIUS + 0.6
+        self.placement.add_box(Box(x - reach, y - reach, x + reach, y + reach))
+
+    def visible(self, points: Line) -> Line:
+        """The points of a line that lie within the axes, in display coordinates."""
+        return [(x, y) for x, y in self.display(points) if Box(x, y, x, y).inside(self.placement.frame)]
+
+
+def _labels(drawing: Drawing, curves: _Curves, pen: _Pen, detail: Box | None) -> None:
+    """States first, then paths, isobars, the dome: the more a label matters, the better its place."""
+    if detail is None:
+        for name, point in curves.points:
+            width, height = drawing.text_size(name)
+            label = Label(name, width * _BOLD_FACTOR, height, pen.display([point]))
+            _set(drawing, pen.placement.place(label), weight="bold")
+        for name, line in curves.paths:
+            anchors = _spread(pen.visible(line), (0.5, 0.35, 0.65, 0.2, 0.8))
+            if anchors:
+                width, height = drawing.text_size(name)
+                _set(drawing, pen.placement.place(Label(name, width, height, anchors, 0.0)), color=TEAL)
+    for text, line in curves.isobars:
+        anchors = _spread(pen.visible(line), (1.0, 0.97, 0.9, 0.8, 0.6, 0.4))
+        if anchors:
+            width, height = drawing.text_size(text, SMALL)
+            placed = pen.placement.place(Label(text, width, height, anchors, 180.0))
+            _set(drawing, placed, color=GREY, size=SMALL)
+    if curves.dome:
+        anchors = _spread(pen.visible(curves.dome), (0.18, 0.25, 0.12, 0.8, 0.9))
+        if anchors:
+            width, height = drawing.text_size("saturation", SMALL)
+            placed = pen.placement.place(Label("saturation", width, height, anchors, 0.0))
+            _set(drawing, placed, color=GREY, size=SMALL)
+    if detail is not None:
+        corners = pen.display([(detail.left, detail.bottom)])
+        width, height = drawing.text_size("enlarged below", SMALL)
+        placed = pen.placement.place(Label("enlarged below", width, height, corners, 225.0))
+        _set(drawing, placed, color=GREY, size=SMALL)
+
+
+def _spread(points: Line, parts: tuple[float, ...]) -> Line:
+    """Points at parts of a line's length in points."""
+    return [points[min(int(part * len(points)), len(points) - 1)] for part in parts] if points else []
+
+
+def _set(drawing: Drawing, placed: Placed | None, **style: Any) -> None:
+    """Write a label where it was placed, with its leader if it stands apart."""
+    if placed is None:
+        return
+    box = placed.box
+    if placed.leader is not None:
+        end = (min(max(placed.leader[0], box.left), box.right), min(max(placed.leader[1], box.bottom), box.top))
+        drawing.leader(placed.leader, end)
+    drawing.write(
+        (box.left + box.right) / 2,
+        box.bottom + 0.22 * (box.top - box.bottom),
+        placed.label.text,
+        ha="center",
+        va="baseline",
+        **style,
+    )
+
+
+def _axis_names(drawing: Drawing, axes: Axes, margins: tuple[float, float, float, float], presenter: Presenter) -> None:
+    """Names with units: entropy below, temperature at the head of its axis, upright."""
+    left, bottom, right, top = margins
+    entropy = presenter.display.unit_text("specific_entropy")
+    temperature = presenter.display.unit_text("temperature")
+    drawing.dress_ticks(axes)
+    drawing.write(
+        drawing.width - right, bottom - 30, f"specific entropy in {entropy}", ha="right", va="baseline", color=INK
+    )
+    drawing.write(left - 40, drawing.height - top + 3, f"temperature in {temperature}", ha="left", color=INK)

@@ -1,0 +1,179 @@
+r"""LaTeX to MathML Core that browsers draw well.
+
+The conversion proper is latex2mathml's; what it leaves rough for a browser is mended here: letters of an upright
+word are joined (``\mathrm{kg}`` comes as two identifiers), dots are marked as accents, limits of sums go below and
+above, words in subscripts become text, so that the hyphen of a tag is no minus sign.
+
+Long equations are broken into pieces, each a ``<math>`` of its own, before relations and before + and − that stand
+outside all brackets. The page sets them one after the other like words, so that an equation wraps at any width.
+"""
+
+from __future__ import annotations
+
+import re
+from functools import lru_cache
+from xml.etree import ElementTree
+
+from reportgen.errors import Fault, InputError
+
+__all__ = ["estimated_width", "mathml", "pieces"]
+
+_LARGE_OPERATORS = {"∑", "∏"}
+_ACCENTS = {"˙", "¨", "¯", "―", "^", "ˆ", "~", "˜", "→"}
+_FUNCTIONS = {"ln", "log", "exp", "sin", "cos", "tan", "max", "min"}
+_WORD = re.compile(r"\\mathrm\{([^{}\\^]*)\}")
+_BREAKS = ("=", "+", "-", r"\approx", r"\leq", r"\geq", r"\le", r"\ge", r"\pm")
+_COMMAND = re.compile(r"\\[A-Za-z]+|\\.|.", re.DOTALL)
+
+
+def _words_as_text(latex: str) -> str:
+    r"""Turn ``\mathrm{PRV-3}`` into text unless it is letters only, digits only (then it is set as mathematics)."""
+
+    def replaced(match: re.Match[str]) -> str:
+        content = match[1]
+        if content.isalpha() or content.isdigit():
+            return match[0]
+        return rf"\text{{{content}}}"
+
+    return _WORD.sub(replaced, latex)
+
+
+@lru_cache(maxsize=4096)
+def mathml(latex: str, infix_start: bool = False) -> str:
+    """One ``<math>`` element, in display style, for inline setting.
+
+    ``infix_start`` says that the piece goes on from one before it: a leading + or − is then spaced as between two
+    terms. Raises InputError when the text is not LaTeX that can be converted.
+    """
+    from latex2mathml import converter
+
+    try:
+        root = converter.convert_to_element(_words_as_text(latex))
+    except Exception as error:
+        raise InputError(Fault("A formula cannot be set.", found=latex, hint=str(error))) from error
+    root.attrib.clear()
+    root.set("displaystyle", "true")
+    _mend(root)
+    if infix_start:
+        first = next((element for element in root.iter() if element.tag not in ("math", "mrow")), None)
+        if first is not None and first.tag == "mo":
+            first.set("form", "infix")
+    return ElementTree.tostring(root, encoding="unicode", short_empty_elements=False)
+
+
+def _mend(element: ElementTree.Element) -> None:
+    """Mend the children of an element, then itself, in place."""
+    for child in element:
+        _mend(child)
+    if element.text:
+        element.text = _plain(element.text)
+    if element.tag == "mover" and len(element) == 2 and element[1].text in _ACCENTS:
+        element.set("accent", "true")
+        element[1].set("stretchy", "false" if element[1].text == "˙" else "true")
+    if element.tag in ("msub", "msup", "msubsup") and element[0].text in _LARGE_OPERATORS:
+        element.tag = {"msub": "munder", "msup": "mover", "msubsup": "munderover"}[element.tag]
+    _unwrap(element)
+    _join_letters(element)
+    if element.tag in ("math", "mrow"):
+        _space_functions(element)
+
+
+def _plain(text: str) -> str:
+    """Character references that the library leaves in the text, resolved."""
+    return re.sub(r"&#x([0-9A-Fa-f]+);", lambda match: chr(int(match[1], 16)), text)
+
+
+def _unwrap(element: ElementTree.Element) -> None:
+    """Replace rows that hold one child by the child, and rows inside rows by their children."""
+    index = 0
+    while index < len(element):
+        child = element[index]
+        if child.tag == "mrow" and not child.attrib:
+            if len(child) == 1:
+                element[index] = child[0]
+                continue
+            if element.tag in ("math", "mrow") and len(child) and not _fenced(child):
+                element[index : index + 1] = list(child)
+                continue
+        index += 1
+
+
+def _fenced(row: ElementTree.Element) -> bool:
+    """A bracketed row must stay one: its brackets stretch to its own height only."""
+    return row[0].tag == "mo" and row[0].get("fence") == "true"
+
+
+def _upright_letters(element: ElementTree.Element) -> str | None:
+    if element.tag == "mi" and element.get("mathvariant") == "normal" and element.text:
+        return element.text
+    return None
+
+
+def _join_letters(element: ElementTree.Element) -> None:
+    """Join neighbouring upright letters to one identifier; the last may be the base of a power."""
+    if element.tag not in ("math", "mrow"):
+        return
+    index = 0
+    while index + 1 < len(element):
+        letters = _upright_letters(element[index])
+        follower = element[index + 1]
+        base = follower[0] if follower.tag in ("msup", "msub") and len(follower) else follower
+        joined = _upright_letters(base)
+        if letters is None or joined is None:
+            index += 1
+            continue
+        base.text = letters + joined
+        element.remove(element[index])
+        index = max(index - 1, 0)
+
+
+def _space_functions(element: ElementTree.Element) -> None:
+    """A thin space after ln, exp and their like when no bracket follows."""
+    for index in reversed(range(len(element) - 1)):
+        child, follower = element[index], element[index + 1]
+        if child.tag == "mi" and child.text in _FUNCTIONS:
+            opening = follower[0] if follower.tag == "mrow" and len(follower) else follower
+            if opening.tag == "mspace" or (opening.tag == "mo" and opening.text == "("):
+                continue
+            space = ElementTree.Element("mspace", {"width": "0.167em"})
+            element.insert(index + 1, space)
+
+
+def split(latex: str) -> list[str]:
+    """Cut a formula before each relation, + and − that stands outside all braces and brackets, never at a sign."""
+    parts: list[str] = []
+    current: list[str] = []
+    depth = 0
+    for token in _COMMAND.findall(latex):
+        if depth == 0 and token in _BREAKS and _is_term("".join(current)):
+            parts.append("".join(current).strip())
+            current = []
+        depth += {"{": 1, "(": 1, "[": 1, "}": -1, ")": -1, "]": -1}.get(token, 0)
+        current.append(token)
+    parts.append("".join(current).strip())
+    return [part for part in parts if part]
+
+
+def _is_term(text: str) -> bool:
+    """Whether what stands before an operator is a term, so that the operator joins and is no sign."""
+    stripped = re.sub(r"(\\[,;:! ]|\s)+$", "", text)
+    return bool(stripped) and not re.search(r"(=|\+|-|\(|,|\\cdot|\\times|\\approx|\\left|\\right|\^|_)$", stripped)
+
+
+def pieces(latex: str, relation: str = "") -> list[str]:
+    """MathML of the pieces of a formula, the relation sign (``=``) before the first."""
+    parts = split(f"{relation} {latex}".strip())
+    return [mathml(part, infix_start=index > 0) for index, part in enumerate(parts)]
+
+
+def estimated_width(latex: str) -> int:
+    """Rough number of characters of the widest piece, to tell whether a narrow screen can hold it.
+
+    Both parts of a fraction count, which overstates; commands count as one sign.
+    """
+    return max((len(re.sub(r"[{}\s^_]", "", _drop_commands(part))) for part in split(latex)), default=0)
+
+
+def _drop_commands(latex: str) -> str:
+    text = re.sub(r"\\(mathrm|text|left|right|frac|dot|bar|overline|,|;|:|!)", "", latex)
+    return re.sub(r"\\[A-Za-z]+", "x", text)

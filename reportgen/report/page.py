@@ -1,0 +1,96 @@
+"""The report page of one record."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+from markupsafe import Markup
+
+from reportgen.record import Record
+from reportgen.report import figures
+from reportgen.report.formulae import pieces
+from reportgen.report.links import anchor
+from reportgen.report.presenter import Presenter
+from reportgen.report.sections import account, basis, findings, head, tail, working
+from reportgen.report.templates import environment, fonts_folder, style
+
+__all__ = ["page"]
+
+_BALANCE = (
+    r"\dot S_\mathrm{gen}",
+    r"\sum_\mathrm{out} \dot m s - \sum_\mathrm{in} \dot m s - \sum_{j} \frac{\dot Q_{j}}{T_{j}} \geq 0",
+)
+
+
+def _safety(presenter: Presenter) -> dict[str, Any]:
+    return {}
+
+
+def _figures(presenter: Presenter) -> dict[str, Any] | None:
+    drawn = []
+    for figure in presenter.record.data["figures"]:
+        svg = figures.draw(figure, presenter, fonts_folder())
+        if svg is not None:
+            drawn.append(
+                {
+                    "anchor": anchor("drawing", figure["id"]),
+                    "svg": svg,
+                    "title": figure["title"].rstrip("."),
+                    "caption": figure.get("caption"),
+                }
+            )
+    return {"figures": drawn} if drawn else None
+
+
+#: (identifier and template, title, context or None when there is nothing to say), in the reader's order.
+SECTIONS: tuple[tuple[str, str, Callable[[Presenter], dict[str, Any] | None]], ...] = (
+    ("found", "What was found", findings.found),
+    ("cautions", "Cautions", findings.cautions),
+    ("purpose", "Purpose", basis.purpose),
+    ("boundary", "Boundary", basis.boundary),
+    ("inputs", "Inputs", basis.inputs),
+    ("assumptions", "Assumptions", basis.assumptions),
+    ("method", "Method", basis.method),
+    ("states", "States", working.states),
+    ("working", "Working", working.working),
+    ("account", "Entropy account", account.accounts),
+    ("closure", "Closure", account.closure),
+    ("budget", "Uncertainty budget", account.uncertainty_budget),
+    ("cross-checks", "Cross-checks", account.cross_checks),
+    ("figures", "Figures", _figures),
+    ("references", "References", tail.references),
+    ("revisions", "Revision history", tail.revisions),
+    ("provenance", "Provenance", tail.provenance),
+    ("safety", "Safety notice", _safety),
+)
+
+
+def page(record: Record) -> str:
+    """HTML of the report: one file, faces and figures in it. Equal records give equal text.
+
+    Raises InputError when a narrative of the record is at fault.
+    """
+    presenter = Presenter(record)
+    sections: list[dict[str, Any]] = []
+    for identifier, title, build in SECTIONS:
+        view = build(presenter)
+        if view is not None:
+            sections.append({"id": identifier, "title": title, "view": view, "number": len(sections) + 1})
+    calculation = record.data["calculation"]
+    foot = f"{calculation['number']} · revision {calculation['revision']} · {calculation['status']}"
+    left, right = _BALANCE
+    return (
+        environment()
+        .get_template("report.html.jinja")
+        .render(
+            calculation=calculation,
+            title_block=head.title_block(record),
+            sections=sections,
+            numbers={section["id"]: section["number"] for section in sections},
+            steps=working.step_anchors(presenter),
+            coverage=presenter.coverage,
+            balance=Markup(" ").join(Markup(part) for part in [*pieces(left), *pieces(right, "=")]),
+            style=style(foot),
+        )
+    )

@@ -1,0 +1,138 @@
+"""Numbers, names and symbols of a record as they stand on a page.
+
+Everything that a section shows goes through here, so that a number looks and links the same everywhere.
+"""
+
+from __future__ import annotations
+
+from markupsafe import Markup, escape
+
+from reportgen.names import DIMENSIONS, name_of
+from reportgen.quantities import Display, Shown
+from reportgen.record import Record
+from reportgen.report.formulae import mathml
+from reportgen.report.links import Links
+
+__all__ = ["NO_VALUE", "Presenter"]
+
+NO_VALUE = "—"
+
+
+class Presenter:
+    """Shows the values of one record in its display units."""
+
+    def __init__(self, record: Record) -> None:
+        calculation = record.data["calculation"]
+        self.record = record
+        self.links = Links(record)
+        self.display = Display(calculation["units"])
+        self.coverage_factor: float = calculation["coverage_factor"]
+
+    @property
+    def coverage(self) -> str:
+        """The coverage factor as text, ``2`` or ``1.96``."""
+        return f"{self.coverage_factor:g}"
+
+    def show(self, value: float | None, dimension: str, uncertainty: float | None = None) -> Shown:
+        """A number in its display unit; ``value`` and expanded ``uncertainty`` in SI."""
+        return self.display.show(value, dimension, uncertainty)
+
+    def with_unit(self, value: float | None, dimension: str, uncertainty: float | None = None) -> str:
+        """``376.5 °C``: number and unit as one text, with the digits that the uncertainty allows."""
+        shown = self.show(value, dimension, uncertainty)
+        return f"{shown.number}\N{NO-BREAK SPACE}{shown.unit}" if shown.unit else shown.number
+
+    def difference(self, value: float | None, dimension: str, uncertainty: float | None = None) -> str:
+        """A difference of two values of a dimension, with its unit: kelvins for temperatures."""
+        return self.with_unit(value, self.difference_dimension(dimension), uncertainty)
+
+    @staticmethod
+    def difference_dimension(dimension: str) -> str:
+        """Dimension of the difference of two values: temperatures and pressures have one of their own."""
+        own = f"{dimension}_difference"
+        return own if own in DIMENSIONS else dimension
+
+    def plus_minus(self, path: str) -> str:
+        """``± 0.019``, the expanded uncertainty of a value in its display unit; empty when it has none."""
+        entry = self.record.entry(path)
+        if entry is None or not isinstance(entry["value"], float | int):
+            return ""
+        return self.plus_minus_of(entry["value"], entry["dimension"], self.record.expanded_uncertainty(path))
+
+    def plus_minus_of(self, value: float, dimension: str, uncertainty: float | None) -> str:
+        """``± 0.019`` for an expanded uncertainty in SI; with unit where it differs from the value's."""
+        shown = self.show(value, dimension, uncertainty)
+        if shown.uncertainty is None:
+            return ""
+        text = f"±\N{NO-BREAK SPACE}{shown.uncertainty}"
+        if dimension == "temperature":
+            text += f"\N{NO-BREAK SPACE}{self.display.unit_text('temperature_difference')}"
+        return text
+
+    def text(self, path: str, unit: bool = True) -> str:
+        """A value as plain text, with or without its unit; a dash when it is undefined or unknown."""
+        entry = self.record.entry(path)
+        if entry is None or entry["value"] is None:
+            return NO_VALUE
+        if isinstance(entry["value"], str):
+            return entry["value"]
+        uncertainty = self.record.expanded_uncertainty(path)
+        if unit:
+            return self.with_unit(entry["value"], entry["dimension"], uncertainty)
+        return self.show(entry["value"], entry["dimension"], uncertainty).number
+
+    def number(self, path: str, unit: bool = True, uncertainty: bool = False) -> Markup:
+        """A value as a link to where it comes from."""
+        text = self.text(path, unit)
+        half_width = self.plus_minus(path) if uncertainty else ""
+        if half_width:
+            entry = self.record.entry(path)
+            if unit and entry is not None and entry["dimension"] != "temperature":
+                text = f"({self.text(path, unit=False)} {half_width})"
+                text += f"\N{NO-BREAK SPACE}{self.display.unit_text(entry['dimension'])}"
+            else:
+                text = f"{text} {half_width}"
+        return self.link(path, text)
+
+    def link(self, path: str | None, text: str | Markup) -> Markup:
+        """A text as a link to where the value of a path comes from; plain when that is not known."""
+        target = self.links.target(path) if path else None
+        if target is None:
+            return Markup('<span class="n">{}</span>').format(text)
+        return Markup('<a class="n" href="#{}">{}</a>').format(target, text)
+
+    def symbol(self, path: str) -> Markup:
+        """Symbol of a value as MathML; the path itself when the record gives none."""
+        entry = self.record.values.get(path)
+        if entry is None or not entry.get("symbol"):
+            return escape(path)
+        return self.math(entry["symbol"])
+
+    @staticmethod
+    def math(latex: str) -> Markup:
+        """A formula as MathML; its texts are escaped by the serialiser."""
+        return Markup(mathml(latex))
+
+    def owner(self, path: str) -> str:
+        """What a path belongs to, in words: ``state 2``, ``PRV-3``, ``in total``."""
+        parts = path.split(".")
+        name = ".".join(parts[1:-1])
+        trains = self.record.data["plant"].get("trains", {})
+        if parts[0] == "states":
+            return f"state {name}"
+        if parts[0] == "equipment":
+            return name
+        if parts[0] == "trains":
+            return str(trains.get(name, {}).get("title") or name)
+        return {"total": "in total", "surroundings": "surroundings"}.get(parts[0], name)
+
+    def label(self, path: str) -> str:
+        """A value in words: ``Entropy generation rate, PRV-3``."""
+        entry = name_of(path)
+        text = entry.text if entry else path.rsplit(".", 1)[-1].replace("_", " ").capitalize()
+        owner = self.owner(path)
+        return f"{text}, {owner}" if owner else text
+
+    def owner_title(self, owner: str) -> str:
+        """An owner without a value's name (``equipment.PRV-3``, ``trains.valve``, ``total``) in words."""
+        return self.owner(f"{owner}.x")

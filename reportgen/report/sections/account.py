@@ -1,0 +1,121 @@
+"""The entropy account, the second-law audit, closure, and lost work."""
+
+from __future__ import annotations
+
+from itertools import zip_longest
+from typing import Any
+
+from markupsafe import Markup
+
+from reportgen.report.presenter import NO_VALUE, Presenter
+
+__all__ = ["accounts", "closure", "cross_checks", "uncertainty_budget"]
+
+
+def accounts(presenter: Presenter) -> dict[str, Any] | None:
+    """One double-entry account for each train and for the whole, and the audit of every generation."""
+    data = presenter.record.data
+    found = [_account(name, entry, presenter) for name, entry in data["accounts"].items()]
+    audit = [_audit(entry, presenter) for entry in data["audits"].get("second_law", [])]
+    if not found and not audit:
+        return None
+    return {
+        "accounts": found,
+        "audit": audit,
+        "unit": presenter.display.unit_text("entropy_flow"),
+    }
+
+
+def _account(name: str, entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+    """Left: entering, then generated. Right: leaving. All figures to one decimal place, that of the coarsest."""
+    left = [(line, False) for line in entry["entering"]] + [(line, True) for line in entry["generated"]]
+    right = entry["leaving"]
+    sum_left = sum(line["value"] for line, _ in left if line["value"] is not None)
+    sum_right = sum(line["value"] for line in right if line["value"] is not None)
+    figures = [line["value"] for line, _ in left] + [line["value"] for line in right] + [sum_left, sum_right]
+    places = _places([presenter.display.convert(value, "entropy_flow") for value in figures if value is not None])
+
+    def amount(value: float | None) -> str:
+        if value is None:
+            return NO_VALUE
+        return fixed(presenter.display.convert(value, "entropy_flow"), places)
+
+    def line_of(line: dict[str, Any]) -> tuple[str, Markup]:
+        return line["label"], presenter.link(line["path"], amount(line["value"]))
+
+    rows = []
+    for entering, leaving in zip_longest(left, right):
+        rows.append(
+            {
+                "left": line_of(entering[0]) if entering else None,
+                "generated": bool(entering and entering[1]),
+                "right": line_of(leaving) if leaving else None,
+            }
+        )
+    complete = bool(entry["generated"]) and all(line["value"] is not None for line in entry["generated"])
+    return {
+        "name": name,
+        "title": entry["title"],
+        "rows": rows,
+        "sum_left": amount(sum_left),
+        "sum_right": amount(sum_right),
+        "complete": complete,
+        "balanced": amount(sum_left) == amount(sum_right),
+    }
+
+
+def _places(figures: list[float]) -> int:
+    """Decimal places that give the largest figure six significant digits."""
+    largest = max((abs(figure) for figure in figures), default=0.0)
+    if largest == 0.0:
+        return 1
+    digits_before = len(str(int(largest))) if largest >= 1.0 else 0
+    return max(0, min(9, 5 - digits_before))
+
+
+def fixed(figure: float, places: int) -> str:
+    """A figure with a set number of decimals, a true minus, thin spaces in threes from five digits on."""
+    text = f"{abs(figure):.{places}f}"
+    whole, point, decimals = text.partition(".")
+    if len(whole) >= 5:
+        whole = f"{int(whole):,}".replace(",", "\N{THIN SPACE}")
+    sign = "−" if figure < 0.0 and float(text) != 0.0 else ""
+    return f"{sign}{whole}{point}{decimals}"
+
+
+def _audit(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+    uncertainty = entry["expanded_uncertainty"]
+    low, high = (presenter.show(end, "entropy_flow", uncertainty).number for end in entry["interval"])
+    return {
+        "owner": presenter.owner_title(entry["owner"]),
+        "number": presenter.link(entry["path"], presenter.with_unit(entry["value"], "entropy_flow", uncertainty)),
+        "interval": f"{low} to {high}" if uncertainty else NO_VALUE,
+        "verdict": entry["verdict"],
+        "heaviest": [presenter.link(path, presenter.symbol(path)) for path in entry["heaviest_inputs"]],
+    }
+
+
+def closure(presenter: Presenter) -> dict[str, Any] | None:
+    """What is left of the balances, against their size."""
+    dimensions = {"mass": "mass_flow", "energy": "power", "entropy": "entropy_flow"}
+    rows = [
+        {
+            "owner": presenter.owner_title(entry["owner"]),
+            "quantity": entry["quantity"],
+            "value": presenter.with_unit(entry["value"], dimensions[entry["quantity"]]),
+            "scale": presenter.with_unit(entry["scale"], dimensions[entry["quantity"]]),
+            "relative": presenter.show(entry["relative"], "ratio").number,
+        }
+        for entry in presenter.record.data["audits"].get("closure", [])
+    ]
+    return {"rows": rows} if rows else None
+
+
+def uncertainty_budget(presenter: Presenter) -> dict[str, Any] | None:
+    """For each key result what every input contributes to its standard uncertainty."""
+    return None
+
+
+def cross_checks(presenter: Presenter) -> dict[str, Any] | None:
+    """Results computed a second way."""
+    return None

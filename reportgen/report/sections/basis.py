@@ -1,0 +1,185 @@
+"""What the calculation rests on: purpose, boundary, inputs, assumptions, method and property models."""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from typing import Any
+
+from reportgen.report.links import anchor
+from reportgen.report.narrative import render_narrative
+from reportgen.report.presenter import NO_VALUE, Presenter
+
+__all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
+
+_MODELS = {
+    "ideal-gas": "ideal gas",
+    "real-fluid": "real fluid, multiparameter Helmholtz-energy equation",
+}
+_LIMITS = (
+    ("minimum_temperature", "from", "temperature"),
+    ("maximum_temperature", "to", "temperature"),
+    ("maximum_pressure", "up to", "pressure"),
+)
+
+
+def purpose(presenter: Presenter) -> dict[str, Any] | None:
+    """The author's purpose."""
+    text = render_narrative("purpose", presenter)
+    return None if text is None else {"text": text}
+
+
+def boundary(presenter: Presenter) -> dict[str, Any] | None:
+    """Pieces inside the boundary with what enters and leaves each, train by train."""
+    plant = presenter.record.data["plant"]
+    groups: dict[str | None, list[dict[str, Any]]] = defaultdict(list)
+    for tag, piece in plant["equipment"].items():
+        groups[piece.get("train")].append(_piece(tag, piece, presenter))
+    if not groups:
+        return None
+    trains = plant["trains"]
+    listed = []
+    for train in sorted(groups, key=lambda name: list(trains).index(name) if name in trains else len(trains)):
+        entry = trains.get(train, {}) if train else {}
+        other = entry.get("alternative_to")
+        listed.append(
+            {
+                "title": entry.get("title") or train,
+                "alternative_to": (trains.get(other, {}).get("title") or other) if other else None,
+                "pieces": groups[train],
+            }
+        )
+    surroundings = [presenter.number(plant["surroundings"][key]) for key in ("temperature", "pressure")]
+    return {"trains": listed, "named": bool(trains), "surroundings": surroundings}
+
+
+def _piece(tag: str, piece: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+    crossing = []
+    for name, word in (("heat", "heat"), ("power", "power")):
+        path = f"equipment.{tag}.{name}"
+        value = presenter.record.value(path)
+        if isinstance(value, float) and value != 0.0:
+            crossing.append((word, presenter.number(path)))
+    ports = {"in": [], "out": []}  # type: dict[str, list[dict[str, str]]]
+    for port in piece["ports"]:
+        ports[port["direction"]].append(
+            {"name": port["name"].replace("_", " "), "state": port["state"], "anchor": anchor("state", port["state"])}
+        )
+    return {
+        "tag": tag,
+        "anchor": anchor("equipment", tag),
+        "title": piece.get("title"),
+        "kind": piece.get("kind_title") or piece["kind"],
+        "entering": ports["in"],
+        "leaving": ports["out"],
+        "crossing": crossing,
+    }
+
+
+def inputs(presenter: Presenter) -> dict[str, Any] | None:
+    """Every input as written, in SI display units, with uncertainty, origin and place in the file."""
+    record = presenter.record
+    used: dict[str, list[str]] = defaultdict(list)
+    for key in record.data["solution_order"]:
+        for path in record.data["relations"][key]["uses"]:
+            used[path].append(key)
+    rows = []
+    for path, entry in record.inputs.items():
+        others = [other for other in entry["applies_to"] if other != path]
+        steps = list(dict.fromkeys(key for target in {path: None, **dict.fromkeys(others)} for key in used[target]))
+        rows.append(
+            {
+                "anchor": anchor("value", path),
+                "label": presenter.label(path),
+                "symbol": presenter.symbol(path),
+                "path": path,
+                "text": entry["text"],
+                "value": presenter.with_unit(entry["value"], entry["dimension"], entry["expanded_uncertainty"]),
+                "uncertainty": presenter.plus_minus_of(
+                    entry["value"], entry["dimension"], entry["expanded_uncertainty"]
+                ),
+                "distribution": _distribution(entry),
+                "source": entry["source"],
+                "supplied_by": entry["supplied_by"],
+                "status": entry["status"],
+                "others": [presenter.label(other) for other in others],
+                "place": f"{entry['file']}:{entry['line']}",
+                "steps": steps,
+            }
+        )
+    return {"rows": rows} if rows else None
+
+
+def _distribution(entry: dict[str, Any]) -> str:
+    """How the uncertainty was stated, when it is not the usual (normal, k of the calculation, type B)."""
+    if entry["standard_uncertainty"] is None:
+        return ""
+    words = [] if entry["distribution"] == "normal" else [entry["distribution"]]
+    if entry["evaluation"] == "A":
+        words.append("type A")
+    if entry["degrees_of_freedom"] is not None:
+        words.append(f"ν = {entry['degrees_of_freedom']:g}")
+    return ", ".join(words)
+
+
+def assumptions(presenter: Presenter) -> dict[str, Any] | None:
+    """Assumptions in the order of the record, open ones first, with what a test of each found."""
+    rows = []
+    for entry in presenter.record.data["assumptions"]:
+        rows.append(
+            {
+                **entry,
+                "anchor": anchor("assumption", entry["id"]),
+                "open": entry["status"] == "to be verified",
+                "test": _test(entry["test"], presenter) if entry["test"] else None,
+            }
+        )
+    return {"rows": rows} if rows else None
+
+
+def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+    dimension = test["dimension"]
+    facts = []
+    if test["model_value"] is not None and test["other_value"] is not None:
+        facts = [
+            ("as assumed", presenter.link(test["path"], presenter.with_unit(test["model_value"], dimension))),
+            ("otherwise", presenter.with_unit(test["other_value"], dimension)),
+        ]
+        if test["difference"] is not None:
+            facts.append(("difference", presenter.difference(test["difference"], dimension)))
+    label = presenter.label(test["path"]) if test["path"] else ""
+    return {**test, "facts": facts, "label": label}
+
+
+def method(presenter: Presenter) -> dict[str, Any]:
+    """The author's method and the property models with sources and limits."""
+    fluids = []
+    for name, entry in presenter.record.data["plant"]["fluids"].items():
+        limits = [
+            f"{word} {presenter.with_unit(entry['limits'][key], dimension)}"
+            for key, word, dimension in _LIMITS
+            if isinstance(entry.get("limits", {}).get(key), float | int)
+        ]
+        fluids.append(
+            {
+                "anchor": anchor("fluid", name),
+                "name": name,
+                "title": entry["title"],
+                "model": _MODELS.get(entry["model"], entry["model"]),
+                "composition": _composition(entry["composition"]),
+                "entropy_zero": entry["entropy_zero"],
+                "limits": ", ".join(limits) or NO_VALUE,
+                "sources": entry["sources"],
+            }
+        )
+    return {
+        "text": render_narrative("method", presenter),
+        "fluids": fluids,
+        "uncertainty_method": presenter.record.data["calculation"]["method"],
+        "uncertain": any(entry["standard_uncertainty"] for entry in presenter.record.inputs.values()),
+    }
+
+
+def _composition(composition: dict[str, float] | None) -> str:
+    if not composition or len(composition) < 2:
+        return ""
+    return ", ".join(f"{name} {100 * part:.5g} %" for name, part in composition.items())
