@@ -18,7 +18,9 @@ from reportgen.spec.calculation import (
     Uncertainty,
 )
 from reportgen.spec.folder import CALCULATION_FILE, find
+from reportgen.spec.json_schema import json_schema
 from reportgen.spec.reading import read
+from reportgen.spec.starting import start
 
 __all__ = [
     "CALCULATION_FILE",
@@ -38,5 +40,7 @@ __all__ = [
     "TrainSpec",
     "Uncertainty",
     "find",
+    "json_schema",
     "read",
+    "start",
 ]

@@ -8,7 +8,14 @@ import re
 from dataclasses import dataclass
 from typing import Annotated, Any
 
-from pydantic import AfterValidator, GetCoreSchemaHandler, GetJsonSchemaHandler, StringConstraints, ValidationInfo
+from pydantic import (
+    AfterValidator,
+    GetCoreSchemaHandler,
+    GetJsonSchemaHandler,
+    StringConstraints,
+    ValidationInfo,
+    WithJsonSchema,
+)
 from pydantic.json_schema import JsonSchemaValue
 from pydantic_core import CoreSchema, core_schema
 
@@ -17,8 +24,6 @@ from reportgen.names import DIMENSIONS, NAMES
 from reportgen.quantities import Quantity, parse
 
 __all__ = [
-    "BOUNDS",
-    "EXAMPLES",
     "Bounds",
     "CalendarDate",
     "Identifier",
@@ -27,6 +32,7 @@ __all__ = [
     "QuantityOf",
     "RawQuantity",
     "ShortText",
+    "bounds_for",
     "dimensions_for",
     "shown",
 ]
@@ -35,7 +41,7 @@ __all__ = [
 _ALTERNATIVES = {"volume_flow": ("volume_flow", "molar_flow")}
 
 #: One realistic spelling for each dimension, for messages and for editors.
-EXAMPLES = {
+_EXAMPLES = {
     "temperature": "400 degC ± 1.5 K",
     "temperature_difference": "10 K",
     "pressure": "39.0 bar(g) ± 0.3 bar",
@@ -78,13 +84,18 @@ class Bounds:
 
 
 #: What the dimension alone cannot tell; ``quantities`` knows that efficiencies end at 1 and flows begin at 0.
-BOUNDS: dict[str, Bounds] = {
+_BOUNDS: dict[str, Bounds] = {
     "quality": Bounds(0.0, 1.0, 'A vapour fraction of 95 percent is written "95 %" or "0.95".'),
     "superheat": Bounds(0.0, remark="Below saturation, give subcooling."),
     "subcooling": Bounds(0.0, remark="Above saturation, give superheat."),
     "pressure_drop": Bounds(0.0, remark="The drop is counted from inlet to outlet."),
     "pressure_ratio": Bounds(1.0, remark="The ratio is that of the higher to the lower pressure."),
 }
+
+
+def bounds_for(name: str) -> Bounds:
+    """The bounds of a quantity of this name; ``hot_pressure_drop`` has those of ``pressure_drop``."""
+    return next((bounds for key, bounds in _BOUNDS.items() if name == key or name.endswith(f"_{key}")), Bounds())
 
 
 def dimensions_for(name: str) -> tuple[str, ...]:
@@ -148,62 +159,63 @@ class QuantityOf:
 
     def json_schema(self) -> JsonSchemaValue:
         """The forms a quantity can be written in."""
-        examples = [EXAMPLES[dimension] for dimension in self.dimensions if dimension in EXAMPLES]
+        examples = [_EXAMPLES[dimension] for dimension in self.dimensions if dimension in _EXAMPLES]
         if self.certain:
             examples = [example.partition(" ±")[0] for example in examples]
-        return quantity_json_schema(self.dimensions, [*self.words, *examples], self.words)
+        number = None
+        if any(DIMENSIONS[dimension] == "1" for dimension in self.dimensions):
+            number = {"type": "number", **self._number_bounds()}
+        return quantity_json_schema(number, [*self.words, *examples], self.words)
+
+    def _number_bounds(self) -> JsonSchemaValue:
+        """Bounds of a bare number; it has no unit, so they are those of the value."""
+        if "efficiency" in self.dimensions:
+            return {"exclusiveMinimum": 0, "maximum": 1}
+        bounds = {"minimum": self.bounds.lowest, "maximum": self.bounds.highest}
+        return {key: bound for key, bound in bounds.items() if math.isfinite(bound)}
 
 
 #: What a spelling must begin with: a number, or a bracket round a number and its uncertainty.
-_NUMBER_FIRST = r"^\s*\(?\s*[+\-−]?(\d|\.\d)"
+_NUMBER_FIRST = r"^\s*\(?\s*[+\-−]?([0-9]|\.[0-9])"
 
 
 def quantity_json_schema(
-    dimensions: tuple[str, ...], examples: list[str], words: tuple[str, ...] = ()
+    number: JsonSchemaValue | None, examples: list[str], words: tuple[str, ...] = ()
 ) -> JsonSchemaValue:
-    """JSON Schema of a quantity: text, table, and a bare number where the dimension has no unit."""
-    pattern = _NUMBER_FIRST
-    bare = any(DIMENSIONS[dimension] == "1" for dimension in dimensions)
-    if not bare:
-        # A number alone lacks its unit.
-        pattern += r".*[A-Za-z%°]"
+    """JSON Schema of a quantity: text, table, and a bare ``number`` where the dimension has no unit."""
+    # Without a bare number there must be a unit.
+    pattern = _NUMBER_FIRST if number is not None else _NUMBER_FIRST + ".*[A-Za-z%°]"
     if words:
         pattern += "|^(" + "|".join(re.escape(word) for word in words) + ")$"
     text: JsonSchemaValue = {"type": "string", "maxLength": 200, "pattern": pattern, "examples": examples}
-    value = {**text, "description": "Value with unit and, after ±, its uncertainty."}
-    forms: list[JsonSchemaValue] = [text]
-    if bare:
-        forms.append({"type": "number"})
-        value = {"anyOf": [value, {"type": "number"}], "description": value["description"]}
-    forms.append(
-        {
-            "type": "object",
-            "required": ["value"],
-            "additionalProperties": False,
-            "properties": {
-                "value": value,
-                "source": _text_schema("Where the value comes from: instrument, document, person."),
-                "supplied_by": _text_schema("Who supplied the value."),
-                "status": _text_schema("Standing of the value, such as: to be verified."),
-                "distribution": {
-                    "enum": ["normal", "uniform", "triangular", "u-shaped"],
-                    "description": "Distribution of the uncertainty; for all but normal, ± is the half-width.",
-                },
-                "evaluation": {
-                    "enum": ["A", "B"],
-                    "description": "A: from repeated readings; B: by other means (JCGM 100).",
-                },
-                "degrees_of_freedom": {"type": "number", "minimum": 1, "description": "Degrees of freedom [1]."},
-                "coverage_factor": {
-                    "type": "number",
-                    "exclusiveMinimum": 0,
-                    "maximum": 10,
-                    "description": "Coverage factor [1] that ± refers to.",
-                },
+    plain = [text] if number is None else [text, number]
+    table = {
+        "type": "object",
+        "required": ["value"],
+        "additionalProperties": False,
+        "properties": {
+            "value": {"anyOf": plain, "description": "Value with unit and, after ±, its uncertainty."},
+            "source": _text_schema("Where the value comes from: instrument, document, person."),
+            "supplied_by": _text_schema("Who supplied the value."),
+            "status": _text_schema("Standing of the value, such as: to be verified."),
+            "distribution": {
+                "enum": ["normal", "uniform", "triangular", "u-shaped"],
+                "description": "Distribution of the uncertainty; for all but normal, ± is the half-width.",
             },
-        }
-    )
-    return {"anyOf": forms}
+            "evaluation": {
+                "enum": ["A", "B"],
+                "description": "A: from repeated readings; B: by other means (JCGM 100).",
+            },
+            "degrees_of_freedom": {"type": "number", "minimum": 1, "description": "Degrees of freedom [1]."},
+            "coverage_factor": {
+                "type": "number",
+                "exclusiveMinimum": 0,
+                "maximum": 10,
+                "description": "Coverage factor [1] that ± refers to.",
+            },
+        },
+    }
+    return {"anyOf": [*plain, table]}
 
 
 def _text_schema(description: str) -> JsonSchemaValue:
@@ -220,7 +232,7 @@ class RawQuantity:
         return core_schema.any_schema()
 
     def __get_pydantic_json_schema__(self, schema: CoreSchema, handler: GetJsonSchemaHandler) -> JsonSchemaValue:
-        return quantity_json_schema(("ratio",), list(self.examples))
+        return quantity_json_schema({"type": "number"}, list(self.examples))
 
 
 def _printable(text: str) -> str:
@@ -300,6 +312,11 @@ def shown(value: object) -> str:
 
 ShortText = Annotated[str, StringConstraints(max_length=300), AfterValidator(_printable)]
 LongText = Annotated[str, StringConstraints(max_length=100_000)]
-Identifier = Annotated[str, AfterValidator(_identifier)]
-PageName = Annotated[str, AfterValidator(_page_name)]
+# The patterns for editors are a little wider than the checks: regular expressions differ between languages there.
+Identifier = Annotated[
+    str, AfterValidator(_identifier), WithJsonSchema({"type": "string", "pattern": r"^[^._\s-][^.\s]{0,39}$"})
+]
+PageName = Annotated[
+    str, AfterValidator(_page_name), WithJsonSchema({"type": "string", "pattern": r"^[A-Za-z0-9][A-Za-z0-9._-]{0,59}$"})
+]
 CalendarDate = Annotated[datetime.date, _DateSchema()]

@@ -15,7 +15,6 @@ from reportgen.balances.kinds import Kind, Parameter, kinds
 from reportgen.names import DIMENSIONS, NAMES
 from reportgen.quantities import Quantity, usual_units
 from reportgen.spec.fields import (
-    BOUNDS,
     Bounds,
     CalendarDate,
     Identifier,
@@ -24,6 +23,7 @@ from reportgen.spec.fields import (
     QuantityOf,
     RawQuantity,
     ShortText,
+    bounds_for,
     dimensions_for,
 )
 
@@ -92,12 +92,16 @@ def _quantity(name: str, text: str = "", sign: str = "") -> Any:
     entry = NAMES[name]
     dimensions = dimensions_for(name)
     described = ", ".join(part for part in (text or entry.text, sign or entry.sign) if part)
-    marker = QuantityOf(dimensions, BOUNDS.get(name, Bounds()))
+    marker = QuantityOf(dimensions, bounds_for(name))
     return (Annotated[Quantity, marker] | None, Field(None, description=with_unit(described, dimensions)))
 
 
 class CalculationTable(Table):
     """Title block of the document."""
+
+    model_config = ConfigDict(
+        json_schema_extra={"allOf": [{"not": {"required": [key, f"{key}_file"]}} for key in NARRATIVES]}
+    )
 
     number: PageName = Field(description="Document number; becomes the folder of the report.")
     title: ShortText = Field(description="Title of the document.")
@@ -140,6 +144,13 @@ _Fraction = Annotated[Quantity, QuantityOf(("ratio",), Bounds(0.0, 1.0), certain
 class IdealGasTable(Table):
     """A gas with p v = R T."""
 
+    model_config = ConfigDict(
+        json_schema_extra={
+            "oneOf": [{"required": ["substance"]}, {"required": ["composition"]}],
+            "dependentRequired": {"composition": ["basis"], "basis": ["composition"]},
+        }
+    )
+
     model: Literal["ideal-gas"] = Field(description="Property model: ideal-gas.")
     substance: ShortText | None = Field(None, description="Substance, as listed by: reportgen fluids.")
     composition: dict[ShortText, _Fraction] | None = Field(
@@ -179,6 +190,10 @@ class StateBase(Table):
 class LimitsTable(Table):
     """What a piece of equipment is designed for."""
 
+    model_config = ConfigDict(
+        json_schema_extra={"anyOf": [{"required": [key]} for key in ("pressure", "temperature", "minimum_temperature")]}
+    )
+
     pressure: Annotated[Quantity, QuantityOf(("pressure",), certain=True)] | None = Field(
         None, description=with_unit("Maximum allowable pressure", ("pressure",))
     )
@@ -216,6 +231,8 @@ _RESULT_PATH = "Path of a result, such as equipment.PRV-3.lost_work."
 
 class CriterionTable(Table):
     """A limit that a result is held against; exactly one of at_most and at_least."""
+
+    model_config = ConfigDict(json_schema_extra={"oneOf": [{"required": ["at_most"]}, {"required": ["at_least"]}]})
 
     value: ShortText = Field(description=_RESULT_PATH)
     at_most: Annotated[Any, _CRITERION] = Field(None, description="Upper limit, in a unit of the result.")
@@ -297,10 +314,10 @@ def _parameters(parameters: tuple[Parameter, ...]) -> dict[str, Any]:
     """Optional quantity fields, as a kind declares them."""
     fields = {}
     for parameter in parameters:
-        marker = QuantityOf((parameter.dimension,), BOUNDS.get(parameter.name, Bounds()))
+        marker = QuantityOf((parameter.dimension,), bounds_for(parameter.name))
         text = parameter.text.rstrip(".")
         if parameter.default:
-            text = f"{text}; when nothing determines it: {parameter.default}"
+            text = f"{text}; if not given: {parameter.default}"
         described = with_unit(text, (parameter.dimension,))
         fields[parameter.name] = (Annotated[Quantity, marker] | None, Field(None, description=described))
     return fields

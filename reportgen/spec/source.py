@@ -9,7 +9,8 @@ from itertools import islice
 from typing import Literal
 
 from reportgen.errors import Fault
-from reportgen.spec.toml_text import Node, TomlText
+from reportgen.spec.toml_cursor import Node
+from reportgen.spec.toml_text import TomlText
 
 __all__ = ["MOST_FAULTS", "Location", "Source", "path_of"]
 

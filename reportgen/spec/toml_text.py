@@ -12,137 +12,43 @@ from __future__ import annotations
 
 import re
 import tomllib
-from bisect import bisect_right
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 from reportgen.errors import Fault
+from reportgen.spec.toml_cursor import BLANK, MAXIMUM_DEPTH, Cursor, Mistake, Node, TooMuch
 
-__all__ = ["MAXIMUM_DEPTH", "MAXIMUM_ENTRIES", "Node", "TomlText", "parse"]
+__all__ = ["TomlText", "parse"]
 
-MAXIMUM_DEPTH = 12
-MAXIMUM_ENTRIES = 20_000
-MAXIMUM_FAULTS = 100
-_LONGEST_KEY = 100
-_LONGEST_SCALAR = 60
-
-_BLANK = re.compile(r"[ \t]*")
 _FILLER = re.compile(r"(?:[ \t\n]|#[^\n]*)*+")
-_BARE_KEY = re.compile(r"[A-Za-z0-9_-]+")
-_LINE_TEXT = re.compile(r'"(?:[^"\\\n]|\\[^\n])*+"|\'[^\'\n]*\'')
-_BLOCK_TEXT = re.compile(r'"""(?:[^"\\]|\\.|"{1,2}(?!"))*+"{3,5}|' + r"'''(?:[^']|'{1,2}(?!'))*+'{3,5}", re.DOTALL)
-_SCALAR_END = {"line": re.compile(r"[^\n#]*"), "list": re.compile(r"[^\n#,\]}]*")}
-_SCALAR = re.compile(r"true|false|[+-]?(?:inf|nan)|[+-]?[0-9][0-9A-Za-z_.:+-]*(?:[ ][0-9][0-9.:]*[0-9Z:+-]*)?")
 _STATEMENT = re.compile(r"[ \t]*(?:\[|[A-Za-z0-9_\"'-][^\n=\"]*=)")
+_OPENING = re.compile(r"\[\[?[A-Za-z]|[A-Za-z0-9_-]{1,100}[ \t]*=")
 _KEY_WITH_SPACES = re.compile(r"((?:[A-Za-z0-9_-]+[ ]+)+[A-Za-z0-9_-]+)[ \t]*=")
 
 
-@dataclass(eq=False)
-class Node:
-    """One value with its place: a table (``dict``), an array (``list``) or a scalar.
-
-    ``line`` and ``column`` (from 1) are those of the value, ``key_line`` and ``key_column`` those of its key; for a
-    table with a header both are the place of the last part of the header. ``broken`` marks a value that stands in
-    the text but could not be read, so that nobody calls it missing.
-    ``defined`` is set by a header or by brackets: no second header may open it. ``first_line_of_text`` is where the
-    text of a scalar begins, a line further down than the quotation marks when these stand alone.
-    """
-
-    value: object
-    line: int
-    column: int
-    key_line: int
-    key_column: int
-    broken: bool = False
-    defined: bool = False
-    first_line_of_text: int = 0
-
-    @property
-    def table(self) -> dict[str, Node]:
-        """The entries of a table; none for any other value."""
-        return self.value if isinstance(self.value, dict) else {}
-
-    @property
-    def items(self) -> list[Node]:
-        """The items of an array; none for any other value."""
-        return self.value if isinstance(self.value, list) else []
-
-    def plain(self) -> object:
-        """The value without places, broken entries left out."""
-        if isinstance(self.value, dict):
-            return {key: node.plain() for key, node in self.value.items() if not node.broken}
-        if isinstance(self.value, list):
-            return [node.plain() for node in self.value if not node.broken]
-        return self.value
-
-
-@dataclass
+@dataclass(frozen=True)
 class TomlText:
     """What was read: the root table, the mistakes, and whether the name of some table could not be made out."""
 
     root: Node
-    faults: list[Fault] = field(default_factory=list)
-    header_lost: bool = False
-
-
-class _Mistake(Exception):
-    """A mistake of syntax at an offset of the text; caught by the statement it stands in."""
-
-    def __init__(self, offset: int, message: str, *, resume: int | None = None, **details: str | None) -> None:
-        super().__init__(message)
-        self.offset = offset
-        self.message = message
-        self.resume = resume
-        self.path: tuple[str, ...] | None = None
-        self.details = details
-
-
-class _TooMuch(Exception):
-    """A bound is passed: nothing after it is read."""
+    faults: tuple[Fault, ...]
+    header_lost: bool
 
 
 def parse(text: str, file: str) -> TomlText:
     """Read a TOML text. Never raises for what the text says; its mistakes are in ``faults``."""
     reader = _Reader(text.replace("\r\n", "\n"), file)
     reader.read()
-    return reader.result
+    return TomlText(reader.root, tuple(reader.faults), reader.header_lost)
 
 
-class _Reader:
+class _Reader(Cursor):
     """One pass over one text."""
 
     def __init__(self, text: str, file: str) -> None:
-        self.text = text
-        self.file = file
-        self.offset = 0
-        self.starts = [0, *(match.end() for match in re.finditer("\n", text))]
-        self.result = TomlText(self.node({}, 0, 0))
-        self.table = self.result.root
+        super().__init__(text, file)
+        self.root = self.table = self.node({}, 0, 0)
         self.prefix: tuple[str, ...] = ()
-        self.entries = 0
-
-    # --- places -------------------------------------------------------------------------------------------------
-
-    def place(self, offset: int) -> tuple[int, int]:
-        """Line and column, both from 1, of an offset."""
-        line = bisect_right(self.starts, offset)
-        return line, offset - self.starts[line - 1] + 1
-
-    def node(self, value: object, offset: int, key_offset: int) -> Node:
-        return Node(value, *self.place(offset), *self.place(key_offset))
-
-    def report(self, offset: int, message: str, path: tuple[str, ...] = (), **details: str | None) -> None:
-        if len(self.result.faults) >= MAXIMUM_FAULTS:
-            raise _TooMuch
-        line, column = self.place(offset)
-        where = ".".join(path) or None
-        self.result.faults.append(Fault(message, path=where, file=self.file, line=line, column=column, **details))
-
-    def count(self, offset: int) -> None:
-        self.entries += 1
-        if self.entries > MAXIMUM_ENTRIES:
-            self.result.faults.clear()
-            self.report(offset, f"The file holds more than {MAXIMUM_ENTRIES} entries; it is not read further.")
-            raise _TooMuch
+        self.header_lost = False
 
     # --- statements ---------------------------------------------------------------------------------------------
 
@@ -153,9 +59,9 @@ class _Reader:
                 if self.offset >= len(self.text):
                     break
                 self.statement()
-        except _TooMuch:
-            self.result.header_lost = True
-        if not self.result.faults:
+        except TooMuch:
+            self.header_lost = True
+        if not self.faults:
             self.ask_the_standard_reader()
 
     def statement(self) -> None:
@@ -168,7 +74,7 @@ class _Reader:
             else:
                 self.assignment(self.table, self.prefix, 0, "line")
             self.end_of_line()
-        except _Mistake as mistake:
+        except Mistake as mistake:
             self.report(mistake.offset, mistake.message, mistake.path or path, **mistake.details)
             if mistake.resume is None:
                 self.recover(begin, mistake.offset)
@@ -184,9 +90,9 @@ class _Reader:
         self.offset = len(self.text) if end < 0 else end + 1
 
     def end_of_line(self) -> None:
-        self.skip(_BLANK)
+        self.skip(BLANK)
         if self.offset < len(self.text) and self.text[self.offset] not in "#\n":
-            raise _Mistake(
+            raise Mistake(
                 self.offset,
                 "Something follows the value on its line.",
                 found=self.glance(self.offset),
@@ -203,13 +109,13 @@ class _Reader:
         closing = "]]" if several else "]"
         try:
             keys = self.dotted_key()
-        except _Mistake:
-            self.result.header_lost = True
+        except Mistake:
+            self.header_lost = True
             raise
         closed = self.text.startswith(closing, self.offset)
         if not closed and self.text[self.offset : self.offset + 1] not in ("", "\n", "#", "]"):
-            self.result.header_lost = True
-            raise _Mistake(
+            self.header_lost = True
+            raise Mistake(
                 self.offset,
                 "The name of the table is not readable.",
                 found=self.line_of(begin),
@@ -217,13 +123,13 @@ class _Reader:
             )
         self.open(keys, several)
         if not closed:
-            raise _Mistake(begin, f"The header is not closed by {closing}.", found=self.line_of(begin))
+            raise Mistake(begin, f"The header is not closed by {closing}.", found=self.line_of(begin))
         self.offset += len(closing)
 
     def open(self, keys: list[tuple[str, int]], several: bool) -> None:
         """Make the table of a header the current one."""
         names = tuple(name for name, _ in keys)
-        parent = self.result.root
+        parent = self.root
         for depth, (name, offset) in enumerate(keys[:-1], 1):
             parent = self.descend(parent, name, offset, names[:depth])
         name, offset = keys[-1]
@@ -291,15 +197,15 @@ class _Reader:
             if not self.text.startswith("=", self.offset):
                 raise self.no_equals_sign(begin)
             self.offset += 1
-            self.skip(_BLANK)
+            self.skip(BLANK)
             value = self.value(keys[-1][1], (*prefix, *names), depth, within)
-        except _Mistake as mistake:
-            if mistake.path is None:
-                mistake.path = (*prefix, *(name for name, _ in keys))
+        except Mistake as mistake:
             spaced = _KEY_WITH_SPACES.match(self.text, begin)
-            broken = [(re.sub(" +", "_", spaced[1]), begin)] if spaced else keys
-            if broken:
-                self.insert(table, prefix, broken, None)
+            meant = [(re.sub(" +", "_", spaced[1]), begin)] if spaced else keys
+            if mistake.path is None:
+                mistake.path = (*prefix, *(name for name, _ in meant))
+            if meant:
+                self.insert(table, prefix, meant, None)
             raise
         self.insert(table, prefix, keys, value)
 
@@ -320,44 +226,16 @@ class _Reader:
             value.broken = True
         table.table[name] = value
 
-    def no_equals_sign(self, begin: int) -> _Mistake:
+    def no_equals_sign(self, begin: int) -> Mistake:
         """What is wrong where a key is not followed by an equals sign."""
         sign = self.text[self.offset : self.offset + 1]
         hint = "Write = in place of the colon." if sign == ":" else None
         if spaced := _KEY_WITH_SPACES.match(self.text, begin):
             hint = f"Keys are written without spaces: {re.sub(' +', '_', spaced[1])}."
         found = self.line_of(begin)
-        return _Mistake(self.offset, "A key must be followed by = and its value.", found=found, hint=hint)
+        return Mistake(self.offset, "A key must be followed by = and its value.", found=found, hint=hint)
 
     # --- keys and values ----------------------------------------------------------------------------------------
-
-    def dotted_key(self) -> list[tuple[str, int]]:
-        """``a.b."c d"`` as names with their offsets; spaces after it are skipped."""
-        keys: list[tuple[str, int]] = []
-        while True:
-            self.skip(_BLANK)
-            begin = self.offset
-            if bare := _BARE_KEY.match(self.text, begin):
-                self.offset = bare.end()
-                name = bare[0]
-            elif self.text[begin : begin + 1] in ('"', "'") and (quoted := _LINE_TEXT.match(self.text, begin)):
-                self.offset = quoted.end()
-                name = self.decoded(quoted[0], begin)
-            else:
-                raise _Mistake(
-                    begin,
-                    "A key is expected here.",
-                    found=self.glance(begin),
-                    expected="letters, digits, _ and -; a comment starts with #",
-                )
-            if len(name) > _LONGEST_KEY or len(keys) >= MAXIMUM_DEPTH:
-                limits = f"{_LONGEST_KEY} characters and {MAXIMUM_DEPTH} parts"
-                raise _Mistake(begin, f"The key is longer than {limits}.", found=self.glance(begin))
-            keys.append((name, begin))
-            self.skip(_BLANK)
-            if not self.text.startswith(".", self.offset):
-                return keys
-            self.offset += 1
 
     def value(self, key_offset: int, path: tuple[str, ...], depth: int, within: str) -> Node:
         begin = self.offset
@@ -367,7 +245,7 @@ class _Reader:
                 self.report(
                     begin, f"Brackets are nested deeper than {MAXIMUM_DEPTH}; the file is not read further.", path
                 )
-                raise _TooMuch
+                raise TooMuch
             self.offset += 1
             inner = self.array(path, depth + 1) if sign == "[" else self.inline_table(path, depth + 1)
             result = self.node(inner, begin, key_offset)
@@ -376,53 +254,6 @@ class _Reader:
         if sign in ('"', "'"):
             return self.quoted(begin, key_offset)
         return self.node(self.scalar(begin, within), begin, key_offset)
-
-    def quoted(self, begin: int, key_offset: int) -> Node:
-        block = self.text[begin : begin + 3] in ('"""', "'''")
-        match = (_BLOCK_TEXT if block else _LINE_TEXT).match(self.text, begin)
-        if match is None:
-            if block:
-                # The rest of the file is inside the text: reading on would only report nonsense.
-                self.offset = len(self.text)
-                self.report(begin, "The text is not closed.", expected=f"{self.text[begin : begin + 3]} at its end")
-                raise _TooMuch
-            raise _Mistake(
-                begin,
-                "The text is not closed by a quotation mark on its line.",
-                found=self.glance(begin),
-                expected="the same quotation mark at both ends",
-            )
-        self.offset = match.end()
-        result = self.node(self.decoded(match[0], begin), begin, key_offset)
-        # A line break right behind the three quotation marks is not part of the text.
-        line_break = block and self.text.startswith("\n", begin + 3)
-        result.first_line_of_text = result.line + (1 if line_break else 0)
-        return result
-
-    def decoded(self, token: str, begin: int) -> str:
-        try:
-            return str(tomllib.loads(f"v={token}")["v"])
-        except ValueError:
-            raise _Mistake(
-                begin,
-                "The text holds a backslash or control character that TOML does not know.",
-                found=self.glance(begin),
-                hint="Write a backslash as \\\\ or put the text in single quotes.",
-            ) from None
-
-    def scalar(self, begin: int, within: str) -> object:
-        match = _SCALAR_END[within].match(self.text, begin)
-        token = match[0].rstrip() if match else ""
-        self.offset = begin + len(token)
-        if not token:
-            raise _Mistake(begin, "The value is missing.", expected='a value such as "39 bar(g)"')
-        if len(token) <= _LONGEST_SCALAR and _SCALAR.fullmatch(token):
-            try:
-                return tomllib.loads(f"v={token}")["v"]
-            except ValueError:
-                pass
-        expected, hint = _advice(token)
-        raise _Mistake(begin, "This is not a value.", found=self.glance(begin, token), expected=expected, hint=hint)
 
     def array(self, path: tuple[str, ...], depth: int) -> list[Node]:
         opening = self.offset - 1
@@ -442,16 +273,16 @@ class _Reader:
             elif not self.text.startswith("]", self.offset):
                 if self.offset >= len(self.text) or self.looks_like_a_statement():
                     raise self.open_list(opening)
-                raise _Mistake(
+                raise Mistake(
                     self.offset,
                     "A comma is missing between two items.",
                     found=self.glance(self.offset),
                     expected=", or ]",
                 )
 
-    def open_list(self, opening: int) -> _Mistake:
+    def open_list(self, opening: int) -> Mistake:
         """A list that runs into the next statement, which is then read as such."""
-        return _Mistake(
+        return Mistake(
             opening,
             "The list is not closed.",
             resume=self.offset,
@@ -461,61 +292,42 @@ class _Reader:
 
     def looks_like_a_statement(self) -> bool:
         """Whether a new line here begins with a header or ``key =``: then the list above was never closed."""
-        start = self.text.rfind("\n", 0, self.offset) + 1
-        return not self.text[start : self.offset].strip() and bool(
-            re.match(r"\[\[?[A-Za-z]|[A-Za-z0-9_-]+[ \t]*=", self.text[self.offset : self.offset + _LONGEST_KEY])
-        )
+        line, column = self.place(self.offset)
+        start = self.starts[line - 1]
+        indented = column <= 100 and not self.text[start : self.offset].strip()
+        return indented and _OPENING.match(self.text, self.offset) is not None
 
     def inline_table(self, path: tuple[str, ...], depth: int) -> dict[str, Node]:
         table = self.node({}, self.offset - 1, self.offset - 1)
         opening = self.offset - 1
-        self.skip(_BLANK)
+        self.skip(BLANK)
         if self.text.startswith("}", self.offset):
             self.offset += 1
             return table.table
         while True:
             if self.text[self.offset : self.offset + 1] in ("", "\n", "#"):
-                raise _Mistake(
+                raise Mistake(
                     opening,
                     "A table in braces must be closed on its line.",
                     found=self.line_of(opening),
                     expected="} on the same line, or a table with a [header] of its own",
                 )
             self.assignment(table, path, depth, "list")
-            self.skip(_BLANK)
+            self.skip(BLANK)
             sign = self.text[self.offset : self.offset + 1]
             if sign == "}":
                 self.offset += 1
                 return table.table
             if sign == ",":
                 self.offset += 1
-                self.skip(_BLANK)
+                self.skip(BLANK)
             elif sign not in ("", "\n", "#"):
-                raise _Mistake(
+                raise Mistake(
                     self.offset,
                     "A comma is missing between two keys.",
                     found=self.glance(self.offset),
                     expected=", or }",
                 )
-
-    # --- small things -------------------------------------------------------------------------------------------
-
-    def skip(self, pattern: re.Pattern[str]) -> None:
-        if match := pattern.match(self.text, self.offset):
-            self.offset = match.end()
-
-    def glance(self, begin: int, text: str | None = None) -> str:
-        """What stands at an offset, at most 40 characters of its line."""
-        if text is None:
-            end = self.text.find("\n", begin)
-            text = self.text[begin : len(self.text) if end < 0 else end].rstrip()
-        if not text:
-            return "the end of the line"
-        text = "".join(sign if sign.isprintable() else "\N{REPLACEMENT CHARACTER}" for sign in text[:41])
-        return text if len(text) <= 40 else text[:39] + "…"
-
-    def line_of(self, offset: int) -> str:
-        return self.glance(self.starts[self.place(offset)[0] - 1]).strip()
 
     def ask_the_standard_reader(self) -> None:
         """Report what ``tomllib`` refuses in a text that this reader has accepted."""
@@ -525,18 +337,4 @@ class _Reader:
             place = re.search(r" \(at line (\d+), column (\d+)\)$", str(error))
             line, column = (int(place[1]), int(place[2])) if place else (len(self.starts), 1)
             message = str(error)[: place.start()] if place else str(error).removesuffix(" (at end of document)")
-            self.result.faults.append(Fault(f"{message}.", file=self.file, line=line, column=column))
-
-
-def _advice(token: str) -> tuple[str | None, str | None]:
-    """What would do in place of a token that is no TOML value, and a hint."""
-    if re.match(r"[+-]?[0-9]+,[0-9]", token):
-        return None, "Numbers have a decimal point, not a comma; quantities stand in quotes."
-    if re.match(r"[0-9]+[./-][0-9]+[./-][0-9]+", token):
-        return "a date as 2026-03-12, without quotes", None
-    if token[0] in "“”„‘’«»":
-        return None, 'Use straight quotation marks: "…".'
-    if token.lower() in ("true", "false"):
-        return token.lower(), None
-    shown = token if len(token) <= 40 else "39 bar(g)"
-    return f'text and quantities in quotes: "{shown}"', None
+            self.faults.append(Fault(f"{message}.", file=self.file, line=line, column=column))
