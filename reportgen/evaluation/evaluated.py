@@ -82,7 +82,8 @@ class EvaluatedPlant:
         """Samples of a stated limit, shape (N,) [SI]: a gauge pressure keeps its difference to the atmosphere."""
         if limit.gauge:
             atmosphere = self.samples(ATMOSPHERE)
-            return limit.value + (atmosphere - atmosphere[0])
+            shifted: Array = limit.value + (atmosphere - atmosphere[0])
+            return shifted
         return np.full(self.axis.columns, limit.value)
 
     def phase(self, state: str) -> str:

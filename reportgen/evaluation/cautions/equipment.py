@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -166,5 +166,6 @@ def _states_with_limits(plant: EvaluatedPlant) -> Iterator[tuple[str, str, Limit
 
 def _dew_temperature(plant: EvaluatedPlant, state: str) -> Array:
     """Saturation temperature at the pressure of a state [K], shape (N,); NaN above the critical pressure."""
-    _, vapour = plant.fluid_of(state).saturation(pressure=plant.samples(f"states.{state}.pressure"), errors="mask")
+    fluid: Any = plant.fluid_of(state)
+    _, vapour = fluid.saturation(pressure=plant.samples(f"states.{state}.pressure"), errors="mask")
     return np.asarray(vapour.temperature, dtype=float)

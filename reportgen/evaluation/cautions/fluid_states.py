@@ -35,7 +35,7 @@ def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Find
     """
     for state in plant.state_fluids:
         fluid = plant.fluid_of(state)
-        if (fluid.substance or "").lower().replace(" ", "") not in {"co2", "carbondioxide"}:
+        if (fluid.substance or "").lower().replace(" ", "").replace("-", "") not in {"co2", "carbondioxide"}:
             continue
         yield Finding(
             f"states.{state}.temperature",

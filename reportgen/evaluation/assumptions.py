@@ -1,0 +1,274 @@
+"""Assumptions, the author's and the program's, in one list; those that can be tested are tested.
+
+A test solves the plant again with the assumption replaced by something better or by a plausible other extreme, and
+compares the results. How much a difference weighs is said by ``decisions.MAGNITUDE_RULE``.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Mapping
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from reportgen.errors import ReportgenError
+from reportgen.evaluation.decisions import MAGNITUDE_RULE, magnitude
+from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.names import NAMES
+
+if TYPE_CHECKING:
+    from reportgen.fluids.model import Fluid
+    from reportgen.spec.calculation import Assumption, FluidSpec
+
+__all__ = [
+    "AutomaticAssumption",
+    "Variant",
+    "assumption_list",
+    "boundary_temperature_test",
+    "compare",
+    "fluid_assumptions",
+]
+
+#: Results that a test compares, the most telling first.
+COMPARED = ("entropy_generation", "lost_work", "power", "temperature")
+
+#: Given on a state, these tie a calculation to the zero of one property model.
+TIED_TO_A_ZERO = ("specific_enthalpy", "specific_entropy")
+
+#: Distance of the compressibility factor from 1 from which an ideal gas deserves a remark: common practice.
+COMPRESSIBILITY_REMARK = 0.02
+
+OPEN = "to be verified"
+BY_DEFAULT = "by default"
+TESTED = "tested"
+
+#: Solves the base case again: (fluids to replace, givens to add or replace) to values by path.
+Variant = Callable[[Mapping[str, Any], Mapping[str, float]], Mapping[str, float]]
+
+
+@dataclass(frozen=True)
+class AutomaticAssumption:
+    """An assumption that the program took, with the result of its test (None: there is none for it)."""
+
+    id: str
+    text: str
+    basis: str
+    affects: tuple[str, ...]
+    test: dict[str, Any] | None = None
+
+
+def assumption_list(
+    authored: Mapping[str, Assumption], automatic: Iterable[AutomaticAssumption]
+) -> list[dict[str, Any]]:
+    """Record entries: open ones first, then the author's, then the program's.
+
+    An automatic assumption is open when its test found it decisive, and ``tested`` when the test found less; without
+    a test it stands ``by default``.
+    """
+    entries: list[dict[str, Any]] = [
+        {
+            "id": identifier,
+            "text": item.text,
+            "origin": "author",
+            "basis": item.basis,
+            "status": item.status,
+            "owner": item.owner,
+            "due": item.due,
+            "affects": [],
+            "test": None,
+        }
+        for identifier, item in authored.items()
+    ]
+    for assumption in automatic:
+        verdict = None if assumption.test is None else assumption.test["verdict"]
+        status = BY_DEFAULT if verdict is None else OPEN if verdict == "decisive" else TESTED
+        entries.append(
+            {
+                "id": assumption.id,
+                "text": assumption.text,
+                "origin": "automatic",
+                "basis": assumption.basis,
+                "status": status,
+                "owner": None,
+                "due": None,
+                "affects": list(assumption.affects),
+                "test": assumption.test,
+            }
+        )
+    return sorted(entries, key=lambda entry: (entry["status"] != OPEN, entry["origin"] != "author"))
+
+
+def fluid_assumptions(
+    plant: EvaluatedPlant,
+    specifications: Mapping[str, FluidSpec],
+    variant: Variant,
+    real_counterpart: Callable[[Fluid], Fluid | None],
+    with_variable_heat_capacity: Callable[[FluidSpec], Fluid],
+) -> list[AutomaticAssumption]:
+    """Ideal gas and constant heat capacity, for every fluid that is one or has one.
+
+    Args:
+        plant: the solved plant.
+        specifications: fluid id to what the file says.
+        variant: solves the base case again.
+        real_counterpart: the real fluid of the same substance, None where none is carried.
+        with_variable_heat_capacity: the same ideal gas with its variable heat capacity.
+    """
+    found = []
+    for identifier, specification in specifications.items():
+        if specification.model != "ideal-gas":
+            continue
+        model = plant.fluids[identifier]
+        counterpart = real_counterpart(model)
+        text = f"{model.title} ({identifier}) is an ideal gas."
+        if counterpart is None:
+            test = None
+            basis = "property model chosen in the file; no real fluid of this composition is carried to test it"
+        else:
+            remark = _compressibility_remark(plant, identifier, counterpart)
+            test = _model_test(
+                plant, identifier, counterpart, variant, f"With the equation of state of the real fluid {remark}"
+            )
+            basis = "property model chosen in the file"
+        found.append(
+            AutomaticAssumption(f"fluids.{identifier}.ideal-gas", text, basis, (f"fluids.{identifier}",), test)
+        )
+        if specification.heat_capacity is not None:
+            text = (
+                f"{model.title} ({identifier}) has the constant heat capacity {specification.heat_capacity:g} J/(kg K)."
+            )
+            other = with_variable_heat_capacity(specification)
+            test = _model_test(plant, identifier, other, variant, "With the heat capacity as a function of temperature")
+            found.append(
+                AutomaticAssumption(
+                    f"fluids.{identifier}.constant-heat-capacity",
+                    text,
+                    "heat capacity given in the file",
+                    (f"fluids.{identifier}",),
+                    test,
+                )
+            )
+    return found
+
+
+def boundary_temperature_test(
+    plant: EvaluatedPlant, tag: str, temperature_path: str, variant: Variant
+) -> dict[str, Any] | None:
+    """What changes when heat leaves at the mean temperature of the fluid instead of that of the surroundings.
+
+    The two are the extremes: drawn close to the fluid, the boundary leaves the drop of temperature towards the
+    surroundings outside; drawn in the surroundings, it takes it in. None when the temperatures are not known.
+    """
+    temperatures = [plant.samples(f"states.{state}.temperature")[0] for state in plant.states_at(tag)]
+    if not temperatures or not np.all(np.isfinite(temperatures)):
+        return None
+    mean = float(np.mean(temperatures))
+    return _test(
+        plant,
+        lambda: variant({}, {temperature_path: mean}),
+        f"With the boundary at the mean temperature of the fluid in {tag}, {mean:.4g} K,",
+    )
+
+
+def compare(plant: EvaluatedPlant, other: Mapping[str, float], condition: str) -> dict[str, Any] | None:
+    """The result that changes most, weighed against its uncertainty, as the ``test`` entry of a record.
+
+    Compared are entropy generation, lost work, power and temperature of every owner. The gravest verdict counts;
+    among equal ones the largest change in parts of U (or of the value). None when nothing can be compared.
+
+    Args:
+        plant: the solved plant, column 0.
+        other: values of the plant solved otherwise.
+        condition: opening of the finding, such as "With the equation of state of the real fluid".
+    """
+    rank = {"negligible": 0, "noticeable": 1, "decisive": 2}
+    best: tuple[tuple[float, ...], dict[str, Any]] | None = None
+    results = []
+    for path in plant.values:
+        name = path.rsplit(".", 1)[-1]
+        if name not in COMPARED or not plant.has(path) or not np.isfinite(other.get(path, np.nan)):
+            continue
+        estimate, changed = plant.estimate(path), float(other[path])
+        difference = changed - estimate.value
+        if abs(difference) <= 1e-9 * max(abs(changed), abs(estimate.value)):
+            difference = 0.0
+        verdict = magnitude(difference, estimate.expanded_uncertainty, estimate.value)
+        measure = estimate.expanded_uncertainty if estimate.expanded_uncertainty > 0.0 else abs(estimate.value)
+        entry = {
+            "path": path,
+            "model_value": estimate.value,
+            "other_value": changed,
+            "difference": difference,
+            "unit": NAMES[name].unit,
+            "dimension": NAMES[name].dimension,
+            "verdict": verdict,
+        }
+        results.append({key: entry[key] for key in ("path", "model_value", "other_value", "difference", "verdict")})
+        weight = abs(difference) / measure if measure > 0.0 else 0.0
+        weighed = (rank[verdict], round(weight, 9), -COMPARED.index(name))
+        if best is None or weighed > best[0]:
+            best = (weighed, entry)
+    if best is None:
+        return None
+    entry = best[1]
+    words = {
+        "negligible": "no result changes noticeably",
+        "noticeable": "one result or more changes noticeably",
+        "decisive": "one result or more changes by more than its uncertainty",
+    }
+    finding = f"{condition} {words[entry['verdict']]}; shown is the one that changes most."
+    return {
+        **entry,
+        "finding": finding,
+        "text": f"Rule: {MAGNITUDE_RULE}.",
+        "results": sorted(results, key=lambda item: item["path"]),
+    }
+
+
+def _model_test(
+    plant: EvaluatedPlant, identifier: str, other: Any, variant: Variant, condition: str
+) -> dict[str, Any] | None:
+    tied = [
+        path
+        for path in plant.axis.givens
+        if path.startswith("states.")
+        and path.rsplit(".", 1)[-1] in TIED_TO_A_ZERO
+        and plant.state_fluids.get(path.split(".")[1]) == identifier
+    ]
+    if tied:
+        return _untested(f"Not tested: {tied[0]} is given, and the other model has another zero.")
+    return _test(plant, lambda: variant({identifier: other}, {}), condition)
+
+
+def _test(plant: EvaluatedPlant, solve: Callable[[], Mapping[str, float]], condition: str) -> dict[str, Any] | None:
+    try:
+        values = solve()
+    except ReportgenError as error:
+        return _untested(f"Could not be tested. {condition} the plant has no solution: {error.faults[0].message}")
+    return compare(plant, values, condition)
+
+
+def _untested(finding: str) -> dict[str, Any]:
+    empty = dict.fromkeys(("model_value", "other_value", "difference", "unit", "dimension", "path", "verdict"))
+    return {**empty, "finding": finding, "text": "", "results": []}
+
+
+def _compressibility_remark(plant: EvaluatedPlant, identifier: str, counterpart: Any) -> str:
+    """ "(|Z − 1| up to 0.004)", with a word where that is more than common practice lets pass."""
+    states = [state for state, fluid in plant.state_fluids.items() if fluid == identifier]
+    pressure, temperature = (
+        np.array([plant.samples(f"states.{state}.{name}")[0] for state in states])
+        for name in ("pressure", "temperature")
+    )
+    state = counterpart.at(pressure=pressure, temperature=temperature, errors="mask")
+    distance = np.abs(np.asarray(state.compressibility_factor, dtype=float) - 1.0)
+    if not np.any(np.isfinite(distance)):
+        return "(its compressibility factor cannot be had at these states)"
+    largest = float(np.nanmax(distance))
+    more = (
+        f", beyond the {COMPRESSIBILITY_REMARK:g} that common practice lets pass"
+        if largest > COMPRESSIBILITY_REMARK
+        else ""
+    )
+    return f"(|Z − 1| up to {largest:.2g}{more})"

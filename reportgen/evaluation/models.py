@@ -1,0 +1,71 @@
+"""From what the file says of fluids and equipment to property models and the plant that the balances solve."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import replace
+from typing import TYPE_CHECKING, Any
+
+from reportgen import balances, fluids
+from reportgen.errors import Fault, InputError, ReportgenError
+
+if TYPE_CHECKING:
+    from reportgen.spec.calculation import Calculation, FluidSpec
+
+__all__ = ["located", "placed", "plant_of", "property_model", "property_models"]
+
+
+def property_model(specification: FluidSpec, heat_capacity: float | None = None) -> Any:
+    """Property model of one fluid of the file (``fluids.model.Fluid``).
+
+    ``heat_capacity`` [J/(kg·K)] for an ideal gas; None for a variable one.
+    """
+    if specification.model == "real-fluid":
+        return fluids.real_fluid(specification.substance, reference_state=specification.reference_state)
+    return fluids.ideal_gas(
+        specification.substance if specification.substance is not None else dict(specification.composition or {}),
+        basis=specification.basis or "mole",
+        heat_capacity="variable" if heat_capacity is None else heat_capacity,
+    )
+
+
+def property_models(calculation: Calculation) -> dict[str, Any]:
+    """Property models of all fluids. Raises InputError with the place of every fluid that cannot be made."""
+    models, faults = {}, []
+    for identifier, specification in calculation.fluids.items():
+        try:
+            models[identifier] = property_model(specification, specification.heat_capacity)
+        except ReportgenError as error:
+            path = f"fluids.{identifier}"
+            faults += [located(calculation, replace(fault, path=fault.path or path)) for fault in error.faults]
+    if faults:
+        raise InputError(faults)
+    return models
+
+
+def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Plant:
+    """The plant as the balances take it."""
+    return balances.Plant(
+        fluids=dict(models),
+        states={identifier: state.fluid for identifier, state in calculation.states.items()},
+        equipment={
+            tag: balances.EquipmentDefinition(kind=piece.kind, ports=piece.ports, options=piece.options)
+            for tag, piece in calculation.equipment.items()
+        },
+        trains={
+            identifier: balances.Train(train.title, train.equipment, train.alternative_to)
+            for identifier, train in calculation.trains.items()
+        },
+    )
+
+
+def placed(calculation: Calculation, error: ReportgenError) -> ReportgenError:
+    """The same error with file, line and column put to every fault that names a path."""
+    return type(error)([located(calculation, fault) for fault in error.faults])
+
+
+def located(calculation: Calculation, fault: Fault) -> Fault:
+    """The fault with the place of its path in the calculation file, unless it has one."""
+    if fault.path is None or fault.line is not None:
+        return fault
+    return fault.at(*calculation.locate(fault.path))

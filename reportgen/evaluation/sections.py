@@ -1,0 +1,178 @@
+"""Sections of the record that repeat what was given: title block, plant, inputs."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from typing import TYPE_CHECKING, Any
+
+from reportgen.balances import kinds
+from reportgen.evaluation.evaluated import Connection
+
+if TYPE_CHECKING:
+    from reportgen.fluids.model import Fluid
+    from reportgen.quantities import Quantity
+    from reportgen.spec.calculation import Calculation, EquipmentSpec, Limits
+
+__all__ = ["calculation_section", "connections_of", "inputs_section", "plant_section", "train_of"]
+
+
+def calculation_section(calculation: Calculation) -> dict[str, Any]:
+    """Title block, narratives, references, revisions."""
+    fields = (
+        "number",
+        "title",
+        "revision",
+        "date",
+        "owner",
+        "client",
+        "location",
+        "status",
+        "units",
+        "originator",
+        "checker",
+        "approver",
+    )
+    return {
+        **{name: getattr(calculation, name) for name in fields},
+        "coverage_factor": calculation.uncertainty.coverage_factor,
+        "method": calculation.uncertainty.method,
+        "narratives": {
+            name: {"text": narrative.text, "file": narrative.file, "line": narrative.line}
+            for name, narrative in calculation.narratives.items()
+        },
+        "references": [{"id": identifier, "text": item.text} for identifier, item in calculation.references.items()],
+        "revisions": [
+            {"index": item.index, "date": item.date, "description": item.description} for item in calculation.revisions
+        ],
+    }
+
+
+def inputs_section(calculation: Calculation) -> dict[str, Any]:
+    """Every given quantity as written and in SI, with its place in the file."""
+    return {path: _input(item.quantity, item) for path, item in calculation.inputs.items()}
+
+
+def _input(quantity: Quantity, item: Any) -> dict[str, Any]:
+    freedom = quantity.degrees_of_freedom
+    return {
+        "text": quantity.text,
+        "value": quantity.value,
+        "unit": quantity.unit,
+        "dimension": quantity.dimension,
+        "gauge": quantity.gauge,
+        "standard_uncertainty": quantity.standard_uncertainty,
+        "expanded_uncertainty": quantity.expanded_uncertainty,
+        "coverage_factor": quantity.coverage_factor,
+        "distribution": quantity.distribution,
+        "evaluation": quantity.evaluation,
+        "degrees_of_freedom": None if math.isinf(freedom) else freedom,
+        "source": quantity.source,
+        "supplied_by": quantity.supplied_by,
+        "status": quantity.status,
+        "applies_to": list(item.applies_to),
+        "file": item.file,
+        "line": item.line,
+    }
+
+
+def plant_section(calculation: Calculation, models: Mapping[str, Fluid], paths: Mapping[str, Any]) -> dict[str, Any]:
+    """Fluids, states, equipment with its ports, trains. ``position`` keeps the order of the file.
+
+    ``paths`` are those of the solution: a state names its flow only when it has one.
+    """
+    trains = train_of(calculation)
+    registry = kinds()
+    states = {}
+    for position, (identifier, state) in enumerate(calculation.states.items()):
+        flow = f"states.{identifier}.mass_flow"
+        states[identifier] = {
+            "fluid": state.fluid,
+            "title": state.title,
+            "position": position,
+            "mass_flow": flow if flow in paths else None,
+        }
+    equipment = {
+        tag: {
+            "kind": piece.kind,
+            "kind_title": registry[piece.kind].title,
+            "title": piece.title,
+            "train": trains.get(tag),
+            "position": position,
+            "ports": [
+                {"name": connection.port, "direction": connection.direction, "state": connection.state}
+                for connection in connections_of(piece)
+            ],
+            "limits": None if piece.limits is None else _limits(piece.limits),
+        }
+        for position, (tag, piece) in enumerate(calculation.equipment.items())
+    }
+    return {
+        "fluids": {
+            identifier: _fluid(models[identifier], position) for position, identifier in enumerate(calculation.fluids)
+        },
+        "states": states,
+        "equipment": equipment,
+        "trains": {
+            identifier: {
+                "title": train.title,
+                "equipment": list(train.equipment),
+                "alternative_to": train.alternative_to,
+                "position": position,
+            }
+            for position, (identifier, train) in enumerate(calculation.trains.items())
+        },
+        "surroundings": {name: f"surroundings.{name}" for name in ("temperature", "pressure")},
+    }
+
+
+def train_of(calculation: Calculation) -> dict[str, str]:
+    """Equipment tag to its train; empty without trains."""
+    return {tag: identifier for identifier, train in calculation.trains.items() for tag in train.equipment}
+
+
+def connections_of(piece: EquipmentSpec) -> tuple[Connection, ...]:
+    """States at the ports of a piece, in the order in which the kind declares its ports."""
+    return tuple(
+        Connection(port.name, port.direction, state)
+        for port in kinds()[piece.kind].ports
+        for state in piece.ports.get(port.name, ())
+    )
+
+
+def _limits(limits: Limits) -> dict[str, Any]:
+    quantities = ("pressure", "temperature", "minimum_temperature")
+    stated = {name: getattr(limits, name) for name in quantities if getattr(limits, name) is not None}
+    return {
+        **{name: {"text": quantity.text, "value": quantity.value} for name, quantity in stated.items()},
+        "material": limits.material,
+        "source": limits.source,
+    }
+
+
+def _fluid(model: Fluid, position: int) -> dict[str, Any]:
+    limits = model.limits
+    points = {"triple_point": limits.triple_point, "critical_point": limits.critical_point}
+    return {
+        "title": model.title,
+        "model": model.kind,
+        "substance": model.substance,
+        "composition": None if model.composition is None else dict(model.composition),
+        "molar_mass": model.molar_mass,
+        "gas_constant": model.gas_constant,
+        "entropy_zero": model.entropy_zero,
+        "sources": list(model.sources),
+        "position": position,
+        "limits": {
+            "minimum_temperature": limits.minimum_temperature,
+            "maximum_temperature": limits.maximum_temperature,
+            "maximum_pressure": limits.maximum_pressure,
+            "remarks": list(limits.remarks),
+            **{
+                name: None
+                if point is None
+                else {"temperature": point.temperature, "pressure": point.pressure, "density": point.density}
+                for name, point in points.items()
+            },
+        },
+    }

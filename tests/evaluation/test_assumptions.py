@@ -1,0 +1,134 @@
+"""Assumption tests: comparing, weighing, ordering."""
+
+from __future__ import annotations
+
+import math
+from types import SimpleNamespace
+
+import numpy as np
+import pytest
+from handmade_plants import fluid, plant, samples
+
+from reportgen.errors import SolutionError
+from reportgen.evaluation.assumptions import (
+    AutomaticAssumption,
+    assumption_list,
+    boundary_temperature_test,
+    compare,
+    fluid_assumptions,
+)
+
+
+def machine(**values: object) -> dict[str, object]:
+    return {f"equipment.M.{name}": value for name, value in values.items()}
+
+
+def test_the_change_that_weighs_most_is_shown() -> None:
+    case = plant(machine(entropy_generation=samples(10.0, 1.0), power=samples(500.0, 2.0)), inputs=1)
+    result = compare(case, machine(entropy_generation=10.5, power=506.0), "With something else")
+    assert result is not None
+    assert (result["path"], result["verdict"]) == ("equipment.M.power", "decisive")
+    assert (result["model_value"], result["other_value"], result["difference"]) == (500.0, 506.0, 6.0)
+    assert (result["unit"], result["dimension"]) == ("W", "power")
+    assert result["finding"].startswith("With something else one result or more")
+    assert [entry["verdict"] for entry in result["results"]] == ["negligible", "decisive"]
+
+
+@pytest.mark.parametrize(("changed", "verdict"), [(10.6, "negligible"), (11.0, "noticeable"), (12.1, "decisive")])
+def test_verdict_by_expanded_uncertainty(changed: float, verdict: str) -> None:
+    case = plant(machine(entropy_generation=samples(10.0, 1.0)), inputs=1)
+    result = compare(case, machine(entropy_generation=changed), "x")
+    assert result is not None
+    assert result["verdict"] == verdict
+
+
+def test_what_a_solver_leaves_is_no_change() -> None:
+    case = plant(machine(entropy_generation=10.0))
+    result = compare(case, machine(entropy_generation=10.0 * (1 + 1e-12)), "x")
+    assert result is not None
+    assert result["difference"] == 0.0
+
+
+def test_nothing_to_compare() -> None:
+    assert compare(plant(machine(heat=3.0)), machine(heat=4.0), "x") is None
+    assert compare(plant(machine(power=3.0)), machine(power=math.nan), "x") is None
+
+
+def gas_case(values: dict, heat_capacity: float | None = None, solve: object = None) -> list[AutomaticAssumption]:
+    counterpart = SimpleNamespace(
+        at=lambda pressure, temperature, errors: SimpleNamespace(compressibility_factor=np.full_like(pressure, 0.97))
+    )
+    case = plant({"states.1.temperature": 300.0, "states.1.pressure": 5e5, **values}, fluids={"f": fluid("Air")})
+    specification = SimpleNamespace(model="ideal-gas", heat_capacity=heat_capacity)
+    return fluid_assumptions(
+        case,
+        {"f": specification},  # type: ignore[dict-item]
+        solve or (lambda fluids, givens: machine(power=103.0)),  # type: ignore[arg-type, return-value]
+        lambda model: counterpart,  # type: ignore[arg-type, return-value]
+        lambda specification: counterpart,  # type: ignore[arg-type, return-value]
+    )
+
+
+def test_ideal_gas_against_the_real_fluid() -> None:
+    found = gas_case(machine(power=100.0))
+    assert [assumption.id for assumption in found] == ["fluids.f.ideal-gas"]
+    test = found[0].test
+    assert test is not None
+    assert test["verdict"] == "decisive"
+    assert "|Z − 1| up to 0.03, beyond the 0.02" in test["finding"]
+
+
+def test_constant_heat_capacity_is_an_assumption_of_its_own() -> None:
+    found = gas_case(machine(power=100.0), heat_capacity=1005.0)
+    assert [assumption.id for assumption in found] == ["fluids.f.ideal-gas", "fluids.f.constant-heat-capacity"]
+    assert "1005 J/(kg K)" in found[1].text
+
+
+def test_a_variant_without_solution_is_told_not_hidden() -> None:
+    def fail(fluids: object, givens: object) -> dict[str, float]:
+        raise SolutionError("No convergence.")
+
+    test = gas_case(machine(power=100.0), solve=fail)[0].test
+    assert test is not None
+    assert test["verdict"] is None
+    assert "Could not be tested" in test["finding"]
+    assert "No convergence." in test["finding"]
+
+
+def test_boundary_temperature_is_tried_at_the_mean_of_the_fluid() -> None:
+    asked = []
+
+    def solve(fluids: object, givens: dict[str, float]) -> dict[str, float]:
+        asked.append(givens)
+        return machine(entropy_generation=8.0)  # type: ignore[return-value]
+
+    case = plant(
+        {"states.1.temperature": 300.0, "states.2.temperature": 400.0, **machine(entropy_generation=10.0)},
+        kinds={"M": "compressor"},
+        connections={"M": [("inlet", "in", "1"), ("outlet", "out", "2")]},
+    )
+    test = boundary_temperature_test(case, "M", "equipment.M.boundary_temperature", solve)  # type: ignore[arg-type]
+    assert asked == [{"equipment.M.boundary_temperature": 350.0}]
+    assert test is not None
+    assert (test["difference"], test["verdict"]) == (-2.0, "decisive")
+
+
+def author(status: str) -> SimpleNamespace:
+    return SimpleNamespace(text="t", basis="b", status=status, owner=None, due=None)
+
+
+def test_open_assumptions_come_first() -> None:
+    def automatic(identifier: str, verdict: str | None) -> AutomaticAssumption:
+        return AutomaticAssumption(identifier, "t", "b", (), None if verdict is None else {"verdict": verdict})
+
+    entries = assumption_list(
+        {"A1": author("accepted"), "A2": author("to be verified")},  # type: ignore[dict-item]
+        [automatic("x", None), automatic("y", "decisive"), automatic("z", "negligible")],
+    )
+    assert [(entry["id"], entry["status"]) for entry in entries] == [
+        ("A2", "to be verified"),
+        ("y", "to be verified"),
+        ("A1", "accepted"),
+        ("x", "by default"),
+        ("z", "tested"),
+    ]
