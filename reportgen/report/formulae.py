@@ -16,7 +16,7 @@ from xml.etree import ElementTree
 
 from reportgen.errors import Fault, InputError
 
-__all__ = ["estimated_width", "mathml", "pieces"]
+__all__ = ["estimated_total", "estimated_width", "mathml", "pieces", "split"]
 
 _LARGE_OPERATORS = {"∑", "∏"}
 _ACCENTS = {"˙", "¨", "¯", "―", "^", "ˆ", "~", "˜", "→"}
@@ -27,15 +27,18 @@ _COMMAND = re.compile(r"\\[A-Za-z]+|\\.|.", re.DOTALL)
 
 
 def _words_as_text(latex: str) -> str:
-    r"""Turn ``\mathrm{PRV-3}`` into text unless it is letters only, digits only (then it is set as mathematics)."""
+    r"""Turn ``\mathrm{PRV-3}`` into text unless it is letters only or digits only: these are set as mathematics.
+
+    A single letter becomes text too: the library would set it in italics.
+    """
 
     def replaced(match: re.Match[str]) -> str:
         content = match[1]
-        if content.isalpha() or content.isdigit():
+        if (content.isalpha() and len(content) > 1) or content.isdigit():
             return match[0]
         return rf"\text{{{content}}}"
 
-    return _WORD.sub(replaced, latex)
+    return _WORD.sub(replaced, latex.replace(r"{}^{\circ}", "°").replace(r"{}^\circ", "°"))
 
 
 @lru_cache(maxsize=4096)
@@ -167,11 +170,13 @@ def pieces(latex: str, relation: str = "") -> list[str]:
 
 
 def estimated_width(latex: str) -> int:
-    """Rough number of characters of the widest piece, to tell whether a narrow screen can hold it.
+    """Rough number of characters of the widest piece, to tell whether a narrow screen can hold it."""
+    return max((estimated_total(part) for part in split(latex)), default=0)
 
-    Both parts of a fraction count, which overstates; commands count as one sign.
-    """
-    return max((len(re.sub(r"[{}\s^_]", "", _drop_commands(part))) for part in split(latex)), default=0)
+
+def estimated_total(latex: str) -> int:
+    """Rough number of characters of a formula set in one line; both parts of a fraction count."""
+    return len(re.sub(r"[{}\s^_]", "", _drop_commands(latex)))
 
 
 def _drop_commands(latex: str) -> str:

@@ -5,6 +5,11 @@ Everything that a section shows goes through here, so that a number looks and li
 
 from __future__ import annotations
 
+import re
+from collections.abc import Mapping
+from dataclasses import replace
+from typing import Any
+
 from markupsafe import Markup, escape
 
 from reportgen.names import DIMENSIONS, name_of
@@ -13,9 +18,24 @@ from reportgen.record import Record
 from reportgen.report.formulae import mathml
 from reportgen.report.links import Links
 
-__all__ = ["NO_VALUE", "Presenter"]
+__all__ = ["NO_VALUE", "Presenter", "in_order", "natural"]
 
 NO_VALUE = "—"
+_PIECES = re.compile(r"(\d+)")
+
+
+def natural(text: str) -> list[tuple[int, int, str]]:
+    """Key that sorts names as people do: ``2`` before ``10``, ``HX-2`` before ``HX-10``."""
+    return [(0, int(part), "") if part.isdecimal() else (1, 0, part) for part in _PIECES.split(text) if part]
+
+
+def in_order(entries: Mapping[str, dict[str, Any]]) -> list[tuple[str, dict[str, Any]]]:
+    """Entries in the order of the calculation file, which their ``position`` keeps; without one by name."""
+    return sorted(entries.items(), key=lambda item: (item[1].get("position", 0), natural(item[0])))
+
+
+def _unbroken(text: str) -> str:
+    return text.replace("\N{THIN SPACE}", "\N{NARROW NO-BREAK SPACE}").replace(" ", "\N{NO-BREAK SPACE}")
 
 
 class Presenter:
@@ -34,8 +54,13 @@ class Presenter:
         return f"{self.coverage_factor:g}"
 
     def show(self, value: float | None, dimension: str, uncertainty: float | None = None) -> Shown:
-        """A number in its display unit; ``value`` and expanded ``uncertainty`` in SI."""
-        return self.display.show(value, dimension, uncertainty)
+        """A number in its display unit; ``value`` and expanded ``uncertainty`` in SI.
+
+        Its spaces are made such that no line breaks within a number.
+        """
+        shown = self.display.show(value, dimension, uncertainty)
+        spread = None if shown.uncertainty is None else _unbroken(shown.uncertainty)
+        return replace(shown, number=_unbroken(shown.number), uncertainty=spread)
 
     def with_unit(self, value: float | None, dimension: str, uncertainty: float | None = None) -> str:
         """``376.5 °C``: number and unit as one text, with the digits that the uncertainty allows."""
@@ -130,6 +155,7 @@ class Presenter:
         """A value in words: ``Entropy generation rate, PRV-3``."""
         entry = name_of(path)
         text = entry.text if entry else path.rsplit(".", 1)[-1].replace("_", " ").capitalize()
+        text = re.split(r"[,:]| of a two-phase| relative| p v", text, maxsplit=1)[0]
         owner = self.owner(path)
         return f"{text}, {owner}" if owner else text
 

@@ -8,10 +8,13 @@ from urllib.parse import quote
 
 from reportgen.errors import InputError
 from reportgen.record import Record
-from reportgen.report.presenter import NO_VALUE, Presenter
+from reportgen.report.presenter import NO_VALUE, Presenter, natural
 from reportgen.report.templates import environment, style
 
 __all__ = ["records_in", "register_page"]
+
+
+_SEVERITIES = ("stop", "warning", "note")
 
 
 def records_in(site: Path) -> list[tuple[str, Record]]:
@@ -29,7 +32,7 @@ def records_in(site: Path) -> list[tuple[str, Record]]:
             continue
         folders = "/".join(quote(part) for part in path.relative_to(site).parts[:-1])
         found.append((f"{folders}/index.html", record))
-    return sorted(found, key=lambda entry: (entry[1].number, entry[1].revision, entry[0]))
+    return sorted(found, key=lambda entry: (natural(entry[1].number), natural(entry[1].revision), entry[0]))
 
 
 def register_page(site: Path) -> str:
@@ -60,9 +63,7 @@ def _row(address: str, record: Record) -> dict[str, Any]:
         "client": calculation.get("client") or "",
         "generated": presenter.text(total) + (f" {spread}" if spread else ""),
         "open": _open_items(data),
-        "cautions": _counted(
-            {word: _count(data["cautions"], "severity", word) for word in ("stop", "warning", "note")}
-        ),
+        "cautions": _counted({word: _count(data["cautions"], "severity", word) for word in _SEVERITIES}),
     }
 
 

@@ -577,8 +577,8 @@ def _data() -> dict[str, Any]:
                 "due": None,
                 "affects": ["equipment.TG-2.heat"],
                 "test": {
-                    "finding": "0.31 kW of difference",
-                    "text": "A loss of 1 % of the power through the casing would change the power",
+                    "finding": "With 1 % of the power lost through the casing one result or more changes noticeably.",
+                    "text": "Rule: noticeable from a tenth of U, decisive from U.",
                     "model_value": power,
                     "other_value": power * 0.99,
                     "difference": -power * 0.01,

@@ -30,7 +30,7 @@ _PROPERTIES = {
 FAMILY = "Ledger Pagella"
 SIZE = 9.5
 SMALL = 8.5
-_SETTINGS = {
+_SETTINGS: Any = {
     "svg.fonttype": "none",
     "svg.hashsalt": "reportgen",
     "path.simplify": False,

@@ -17,6 +17,7 @@ if TYPE_CHECKING:
 __all__ = ["draw"]
 
 _WIDTH, _HEIGHT = 432.0, 292.0
+_HEIGHT_ABOVE_DETAIL = 228.0
 _MARGINS = (46.0, 38.0, 10.0, 12.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
@@ -30,14 +31,14 @@ def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
     """The figure of one fluid; where the processes crowd in a corner of the dome, a second panel shows them large."""
     curves = _Curves(figure, presenter)
     detail = curves.detail()
-    drawing = Drawing(_WIDTH, _HEIGHT * (2.0 if detail else 1.0), fonts)
     left, bottom, right, top = _MARGINS
-    upper = (left, bottom + (_HEIGHT if detail else 0.0), right, top)
     if detail:
-        _panel(drawing, curves, upper, curves.whole(), detail, presenter)
-        _panel(drawing, curves, (left, bottom, right, top + _HEIGHT), detail, None, presenter)
+        drawing = Drawing(_WIDTH, _HEIGHT + _HEIGHT_ABOVE_DETAIL, fonts)
+        _panel(drawing, curves, (left, bottom + _HEIGHT, right, top), curves.whole(), detail, presenter)
+        _panel(drawing, curves, (left, bottom, right, top + _HEIGHT_ABOVE_DETAIL), detail, None, presenter)
     else:
-        _panel(drawing, curves, upper, curves.whole(), None, presenter)
+        drawing = Drawing(_WIDTH, _HEIGHT, fonts)
+        _panel(drawing, curves, _MARGINS, curves.whole(), None, presenter)
     drawing.description = curves.description(presenter)
     return drawing
 

@@ -7,7 +7,7 @@ from typing import Any
 
 from markupsafe import Markup
 
-from reportgen.report.presenter import NO_VALUE, Presenter
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order
 
 __all__ = ["accounts", "closure", "cross_checks", "uncertainty_budget"]
 
@@ -15,7 +15,7 @@ __all__ = ["accounts", "closure", "cross_checks", "uncertainty_budget"]
 def accounts(presenter: Presenter) -> dict[str, Any] | None:
     """One double-entry account for each train and for the whole, and the audit of every generation."""
     data = presenter.record.data
-    found = [_account(name, entry, presenter) for name, entry in data["accounts"].items()]
+    found = [_account(name, entry, presenter) for name, entry in _in_train_order(data)]
     audit = [_audit(entry, presenter) for entry in data["audits"].get("second_law", [])]
     if not found and not audit:
         return None
@@ -24,6 +24,12 @@ def accounts(presenter: Presenter) -> dict[str, Any] | None:
         "audit": audit,
         "unit": presenter.display.unit_text("entropy_flow"),
     }
+
+
+def _in_train_order(data: dict[str, Any]) -> list[tuple[str, dict[str, Any]]]:
+    """Accounts in the order of the trains, the whole last."""
+    order = [name for name, _ in in_order(data["plant"].get("trains", {}))]
+    return sorted(data["accounts"].items(), key=lambda item: order.index(item[0]) if item[0] in order else len(order))
 
 
 def _account(name: str, entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
@@ -70,7 +76,7 @@ def _places(figures: list[float]) -> int:
     if largest == 0.0:
         return 1
     digits_before = len(str(int(largest))) if largest >= 1.0 else 0
-    return max(0, min(9, 5 - digits_before))
+    return max(0, min(9, 6 - digits_before))
 
 
 def fixed(figure: float, places: int) -> str:

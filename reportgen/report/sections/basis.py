@@ -7,7 +7,7 @@ from typing import Any
 
 from reportgen.report.links import anchor
 from reportgen.report.narrative import render_narrative
-from reportgen.report.presenter import NO_VALUE, Presenter
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural
 
 __all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
 
@@ -32,13 +32,14 @@ def boundary(presenter: Presenter) -> dict[str, Any] | None:
     """Pieces inside the boundary with what enters and leaves each, train by train."""
     plant = presenter.record.data["plant"]
     groups: dict[str | None, list[dict[str, Any]]] = defaultdict(list)
-    for tag, piece in plant["equipment"].items():
+    for tag, piece in in_order(plant["equipment"]):
         groups[piece.get("train")].append(_piece(tag, piece, presenter))
     if not groups:
         return None
     trains = plant["trains"]
+    order = [name for name, _ in in_order(trains)]
     listed = []
-    for train in sorted(groups, key=lambda name: list(trains).index(name) if name in trains else len(trains)):
+    for train in sorted(groups, key=lambda name: order.index(name) if name in order else len(order)):
         entry = trains.get(train, {}) if train else {}
         other = entry.get("alternative_to")
         listed.append(
@@ -83,7 +84,7 @@ def inputs(presenter: Presenter) -> dict[str, Any] | None:
         for path in record.data["relations"][key]["uses"]:
             used[path].append(key)
     rows = []
-    for path, entry in record.inputs.items():
+    for path, entry in sorted(record.inputs.items(), key=_place_in_file):
         others = [other for other in entry["applies_to"] if other != path]
         steps = list(dict.fromkeys(key for target in {path: None, **dict.fromkeys(others)} for key in used[target]))
         rows.append(
@@ -107,6 +108,11 @@ def inputs(presenter: Presenter) -> dict[str, Any] | None:
             }
         )
     return {"rows": rows} if rows else None
+
+
+def _place_in_file(item: tuple[str, dict[str, Any]]) -> tuple[str, int, list[tuple[int, int, str]]]:
+    path, entry = item
+    return entry["file"], entry["line"], natural(path)
 
 
 def _distribution(entry: dict[str, Any]) -> str:
@@ -140,12 +146,18 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     dimension = test["dimension"]
     facts = []
     if test["model_value"] is not None and test["other_value"] is not None:
+        uncertainty = presenter.record.expanded_uncertainty(test["path"])
         facts = [
-            ("as assumed", presenter.link(test["path"], presenter.with_unit(test["model_value"], dimension))),
-            ("otherwise", presenter.with_unit(test["other_value"], dimension)),
+            (
+                "as assumed",
+                presenter.link(test["path"], presenter.with_unit(test["model_value"], dimension, uncertainty)),
+            ),
+            ("otherwise", presenter.with_unit(test["other_value"], dimension, uncertainty)),
         ]
         if test["difference"] is not None:
             facts.append(("difference", presenter.difference(test["difference"], dimension)))
+        if uncertainty:
+            facts.append(("U", presenter.difference(uncertainty, dimension)))
     label = presenter.label(test["path"]) if test["path"] else ""
     return {**test, "facts": facts, "label": label}
 
@@ -153,7 +165,7 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
 def method(presenter: Presenter) -> dict[str, Any]:
     """The author's method and the property models with sources and limits."""
     fluids = []
-    for name, entry in presenter.record.data["plant"]["fluids"].items():
+    for name, entry in in_order(presenter.record.data["plant"]["fluids"]):
         limits = [
             f"{word} {presenter.with_unit(entry['limits'][key], dimension)}"
             for key, word, dimension in _LIMITS

@@ -49,7 +49,7 @@ def cautions(presenter: Presenter) -> dict[str, Any]:
 
 def _caution(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     dimension, uncertainty = entry["dimension"], entry["expanded_uncertainty"]
-    facts = []
+    facts: list[tuple[str, str]] = []
     if dimension and entry["value"] is not None:
         facts.append(
             ("value", presenter.link(entry["path"], presenter.with_unit(entry["value"], dimension, uncertainty)))

@@ -37,7 +37,7 @@ def title_block(record: Record) -> dict[str, Any]:
             ("Client", field("client"), ""),
             ("Location", field("location"), ""),
             ("Sheet", "at the foot of each printed page", "quiet"),
-            ("Content hash", " ".join(digest[i : i + 4] for i in range(0, 16, 4)) + " …", "hash"),
+            ("Content hash", " ".join(digest[i : i + 4] for i in range(0, 12, 4)) + " …", "hash"),
         ],
         "roles": [(role.capitalize(), calculation.get(role) or "") for role in _ROLES],
         "missing": missing_for_confirmed(record),

@@ -8,9 +8,9 @@ from typing import Any
 from markupsafe import Markup
 
 from reportgen.names import NAMES
-from reportgen.report.formulae import estimated_width, pieces
+from reportgen.report.formulae import estimated_total, estimated_width, pieces
 from reportgen.report.links import anchor
-from reportgen.report.presenter import NO_VALUE, Presenter
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order
 
 __all__ = ["states", "step_anchors", "working"]
 
@@ -25,6 +25,8 @@ _STATE_COLUMNS = (
 )
 #: Characters of one piece of an equation that still fit beside the margin of a narrow screen.
 _NARROW = 30
+#: Characters of a whole equation that stay on one line.
+_SHORT = 56
 
 
 def states(presenter: Presenter) -> dict[str, Any] | None:
@@ -37,7 +39,7 @@ def states(presenter: Presenter) -> dict[str, Any] | None:
         name for name in _STATE_COLUMNS if any(record.entry(f"states.{state}.{name}") for state in plant["states"])
     ]
     rows = []
-    for state, entry in plant["states"].items():
+    for state, entry in in_order(plant["states"]):
         paths = [f"states.{state}.{name}" for name in columns]
         phase = record.value(f"states.{state}.phase")
         quality = record.value(f"states.{state}.quality")
@@ -114,6 +116,7 @@ def _line(line: list[str], path: str | None) -> dict[str, Any]:
         "anchor": anchor("value", path) if path else None,
         "left": Markup(pieces(left)[0]) if left else "",
         "rights": [[Markup(piece) for piece in pieces(right, "=")] for right in distinct],
+        "short": estimated_total(left) + sum(estimated_total(right) + 2 for right in distinct) <= _SHORT,
         "wide": max((estimated_width(right) for right in distinct), default=0) > _NARROW,
     }
 
