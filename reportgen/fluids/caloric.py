@@ -13,13 +13,16 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import NDArray
 
-__all__ = ["CaloricLaw", "ConstantHeatCapacity", "Nasa9"]
+__all__ = ["LIMIT_SLACK", "CaloricLaw", "ConstantHeatCapacity", "Nasa9"]
 
 Array = NDArray[np.float64]
 
 #: Nodes of the table in each temperature interval; the bracket of Newton's method is one cell of it.
 _NODES = 128
 _STEPS = 8
+
+#: Relative overstepping of a temperature limit that is put down to rounding.
+LIMIT_SLACK = 1e-12
 _RELATIVE_STEP = 1e-13
 
 
@@ -197,7 +200,6 @@ class ConstantHeatCapacity:
         self._heat_capacity = heat_capacity
         self._gas_constant = gas_constant
         self._temperature, self._enthalpy, self._entropy = temperature, enthalpy, entropy
-        # Temperatures computed at a limit must stay inside, whatever the last bits are.
         self._low, self._high = minimum_temperature, maximum_temperature
 
     def heat_capacity(self, temperature: Array) -> Array:
@@ -228,7 +230,7 @@ class ConstantHeatCapacity:
         return self._inside(self._temperature * _exp((entropy - at_reference) / isochoric))
 
     def _inside(self, temperature: Array) -> Array:
-        inside = (temperature >= self._low * (1.0 - 1e-12)) & (temperature <= self._high * (1.0 + 1e-12))
+        inside = (temperature >= self._low * (1.0 - LIMIT_SLACK)) & (temperature <= self._high * (1.0 + LIMIT_SLACK))
         return np.where(inside, np.clip(temperature, self._low, self._high), np.nan)
 
 

@@ -17,7 +17,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError
-from reportgen.fluids.caloric import CaloricLaw, ConstantHeatCapacity, Nasa9
+from reportgen.fluids.caloric import LIMIT_SLACK, CaloricLaw, ConstantHeatCapacity, Nasa9
 from reportgen.fluids.gas_species import DATA_FILE, Basis, GasMixture, GasSpecies, library, mole_fractions, resolve
 from reportgen.fluids.model import Errors, Limits
 from reportgen.fluids.pairs import PROPERTIES, Elements, Pair, read_pair
@@ -252,7 +252,8 @@ class IdealGas:
 
     def _check_temperature(self, temperature: Array, known: Mapping[str, Array], elements: Elements) -> None:
         low, high = self._breaks[0], self._breaks[-1]
-        outside = ~((temperature >= low) & (temperature <= high))
+        # A temperature worked out at a limit must stay inside, whatever its last bits are.
+        outside = ~((temperature >= low * (1.0 - LIMIT_SLACK)) & (temperature <= high * (1.0 + LIMIT_SLACK)))
         if not outside.any():
             return
         for array in known.values():
