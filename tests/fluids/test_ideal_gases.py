@@ -15,8 +15,9 @@ from scipy.integrate import quad
 
 from reportgen.errors import InputError, RangeError
 from reportgen.fluids.caloric import Nasa9
+from reportgen.fluids.gas_catalogue import describe, names, real_counterpart
 from reportgen.fluids.gas_species import library
-from reportgen.fluids.ideal_gases import MOLAR_GAS_CONSTANT, describe, ideal_gas, names, real_counterpart
+from reportgen.fluids.ideal_gases import MOLAR_GAS_CONSTANT, ideal_gas
 from reportgen.fluids.model import Fluid
 from reportgen.fluids.state import FIELDS
 

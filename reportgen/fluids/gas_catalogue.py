@@ -1,0 +1,62 @@
+"""Which ideal gases are carried, what is known of each, and which real fluid one can be tested against."""
+
+from __future__ import annotations
+
+from collections.abc import Collection
+
+from reportgen.fluids.gas_species import GasSpecies, library, resolve
+from reportgen.fluids.ideal_gases import IdealGas, ideal_gas
+
+__all__ = ["AIR_TOLERANCE", "describe", "names", "real_counterpart"]
+
+#: Largest difference of a mole fraction from dry air's for the real fluid "air" to stand for a mixture.
+AIR_TOLERANCE = 0.015
+
+
+def names() -> tuple[str, ...]:
+    """Names by which ideal gases are carried: dry air, then every species, in alphabetical order."""
+    carried = library()
+    return (
+        *sorted(carried.mixtures),
+        *sorted((species.name for species in carried.species.values()), key=str.casefold),
+    )
+
+
+def describe(name: str) -> str:
+    """What is carried under a name, as lines of text: formula, molar mass, range, zeros, sources.
+
+    Raises InputError for a name that is not carried.
+    """
+    entry = resolve(name)
+    gas = ideal_gas(entry.key)
+    lines = [f"{gas.title} (ideal gas)"]
+    if isinstance(entry, GasSpecies):
+        formula = entry.formula if entry.key == entry.name else entry.key
+        others = [other for other in entry.aliases if other != formula]
+        lines.append(f"  formula       {formula}")
+        if others:
+            lines.append(f"  other names   {', '.join(others)}")
+    else:
+        lines.append("  mole shares   " + ", ".join(f"{key} {share:g}" for key, share in entry.mole_fractions.items()))
+    limits = gas.limits
+    lines += [
+        f"  molar mass    {gas.molar_mass * 1e3:.6g} g/mol",
+        f"  temperature   {limits.minimum_temperature:g} K to {limits.maximum_temperature:g} K",
+        f"  zeros         {gas.entropy_zero}",
+        *(f"  remark        {remark}" for remark in limits.remarks),
+        *(f"  source        {source}" for source in gas.sources),
+    ]
+    return "\n".join(lines)
+
+
+def real_counterpart(gas: IdealGas, carried: Collection[str]) -> str | None:
+    """Name of the real fluid that an ideal gas can be tested against, out of the names ``carried``, or None.
+
+    A single species has itself; a mixture has "air" when no mole fraction differs from dry air's by more than 0.015.
+    """
+    composition = gas.composition
+    if composition is None:
+        return gas.substance if gas.substance in carried else None
+    air = library().mixtures["air"].mole_fractions
+    furthest = max(abs(composition.get(key, 0.0) - air.get(key, 0.0)) for key in {*composition, *air})
+    return "air" if furthest <= AIR_TOLERANCE and "air" in carried else None
