@@ -26,8 +26,8 @@ _FRACTION_TOLERANCE = 1e-6
 
 def check(source: Source, context: Mapping[str, float]) -> None:
     """Note every fault of meaning in ``source``."""
-    if not source.table("states") and not source.table("equipment") and source.names_are_complete:
-        source.report((), "The file holds nothing to evaluate.", expected="[states.<name>] and [equipment.<tag>]")
+    if not source.table("states") and not source.table("equipment"):
+        source.miss((), "The file holds nothing to evaluate.", expected="[states.<name>] and [equipment.<tag>]")
     _check_title_block(source)
     _check_confirmed(source)
     _check_fluids(source, context)
@@ -88,7 +88,7 @@ def _check_title_block(source: Source) -> None:
             "This revision is not listed in [[revisions]].",
             found=f'"{revision}"',
             expected="a row with its index, date and description",
-            hint=source.nearest(revision, first_row),
+            hint=source.hint(revision, first_row),
         )
 
 
@@ -107,10 +107,9 @@ def _check_confirmed(source: Source) -> None:
         if status is not None and status.strip().casefold() == _TO_BE_VERIFIED:
             source.report((*given, "status"), message, found=f"input {path_of(given)}", expected=expected)
     if source.node(("revisions",)) is None:
-        source.report(
+        source.miss(
             ("calculation", "status"),
             "A confirmed document needs its revision history.",
-            found='"confirmed"',
             expected="[[revisions]] with a row for each revision",
         )
 
@@ -123,18 +122,16 @@ def _check_fluids(source: Source, context: Mapping[str, float]) -> None:
         if source.text("fluids", fluid, "model") != "ideal-gas":
             continue
         has_substance, has_composition = "substance" in node.table, "composition" in node.table
-        if has_substance == has_composition:
-            source.report(
-                ("fluids", fluid, "composition") if has_composition else ("fluids", fluid),
-                "Both substance and composition are given." if has_substance else "No substance is given.",
-                at="key",
-                expected="either substance or composition with basis",
-            )
+        either = "either substance or composition with basis"
+        if has_substance and has_composition:
+            both = "Both substance and composition are given."
+            source.report(("fluids", fluid, "composition"), both, at="key", expected=either)
+        elif not has_substance and not has_composition:
+            source.miss(("fluids", fluid), "No substance is given.", expected=either)
         if has_composition and "basis" not in node.table:
-            source.report(
+            source.miss(
                 ("fluids", fluid, "composition"),
                 "The composition does not say what its fractions count.",
-                at="key",
                 expected='basis = "mole" or basis = "mass"',
             )
         if has_substance and not has_composition and "basis" in node.table:
@@ -176,10 +173,9 @@ def _check_limits(source: Source, context: Mapping[str, float]) -> None:
         if limits is None or not isinstance(limits.value, dict):
             continue
         if not {"pressure", "temperature", "minimum_temperature"} & limits.table.keys():
-            source.report(
+            source.miss(
                 location,
                 "The limits hold no limit.",
-                at="key",
                 expected="pressure, temperature or minimum_temperature",
             )
         highest = read_quantity(source, (*location, "temperature"), marker, context)
@@ -206,13 +202,11 @@ def _check_criteria(source: Source, context: Mapping[str, float]) -> None:
     for criterion, node in source.table("criteria").items():
         location = ("criteria", criterion)
         given = [key for key in ("at_most", "at_least") if key in node.table]
-        if len(given) != 1:
-            source.report(
-                (*location, given[-1]) if given else location,
-                "Both at_most and at_least are given." if given else "The criterion has no limit.",
-                at="key",
-                expected="one of at_most and at_least; two limits are two criteria",
-            )
+        one = "one of at_most and at_least; two limits are two criteria"
+        if len(given) == 2:
+            source.report((*location, "at_least"), "Both at_most and at_least are given.", at="key", expected=one)
+        elif not given:
+            source.miss(location, "The criterion has no limit.", expected=one)
         path = source.text(*location, "value")
         if path is None:
             continue
@@ -296,7 +290,7 @@ def _check_correlated(source: Source, location: Location, path: str, inputs: Map
                 "No quantity is given at this path.",
                 found=f'"{path[:80]}"',
                 expected="the path of an input of this file",
-                hint=f'It is given at "states.{origin}.{parts[2]}".' if origin else source.nearest(path, inputs),
+                hint=f'It is given at "states.{origin}.{parts[2]}".' if origin else source.hint(path, inputs),
             )
         return False
     node = source.node(inputs[path])

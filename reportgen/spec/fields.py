@@ -5,7 +5,7 @@ from __future__ import annotations
 import datetime
 import math
 import re
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Annotated, Any
 
 from pydantic import (
@@ -89,6 +89,7 @@ _BOUNDS: dict[str, Bounds] = {
     "superheat": Bounds(0.0, remark="Below saturation, give subcooling."),
     "subcooling": Bounds(0.0, remark="Above saturation, give superheat."),
     "pressure_drop": Bounds(0.0, remark="The drop is counted from inlet to outlet."),
+    "split_fraction": Bounds(0.0, 1.0),
     "pressure_ratio": Bounds(1.0, remark="The ratio is that of the higher to the lower pressure."),
 }
 
@@ -149,7 +150,15 @@ class QuantityOf:
         if isinstance(raw, str) and raw in self.words:
             return raw
         context = info.context or {}
-        return self.read(raw, context.get("atmosphere"), context.get("coverage_factor", 2.0))
+        try:
+            return self.read(raw, context.get("atmosphere"), context.get("coverage_factor", 2.0))
+        except InputError as error:
+            if not self.words or not isinstance(raw, str):
+                raise
+            words = " or ".join(f'"{word}"' for word in self.words)
+            raise InputError(
+                replace(fault, expected=f"{words} or {fault.expected}") for fault in error.faults
+            ) from None
 
     def __get_pydantic_core_schema__(self, source: Any, handler: GetCoreSchemaHandler) -> CoreSchema:
         return core_schema.with_info_plain_validator_function(self.validate)

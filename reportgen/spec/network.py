@@ -51,7 +51,7 @@ def _unknown(source: Source, location: Location, name: str, section: str, what: 
             f"There is no such {what}.",
             found=f'"{name[:60]}"',
             expected=f"a name of [{section}]",
-            hint=source.nearest(name, source.table(section)),
+            hint=source.hint(name, source.table(section)),
         )
 
 

@@ -90,7 +90,7 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
         owner = parts[1]
         present = source.table(parts[0])
         if owner not in present:
-            hint = source.nearest(owner, present)
+            hint = source.hint(owner, present)
             return f'There is no "{owner[:60]}" in [{parts[0]}].' + (f" {hint}" if hint else "")
         names = _names_of(source, parts[0], owner)
         rest = parts[2:]
@@ -102,7 +102,7 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
     name = ".".join(rest)
     if name in names:
         return names[name]
-    hint = source.nearest(name, names)
+    hint = source.hint(name, names)
     return f'There is no "{name[:60]}" among the results of {".".join(parts[: -len(rest)])[:60]}.' + (
         f" {hint}" if hint else ""
     )

@@ -284,7 +284,7 @@ class CautionTable(Table):
     limit: Annotated[Quantity, QuantityOf(("ratio", "temperature", "pressure"), certain=True)] | None = Field(
         None, description="The limit to use in place of the catalogue's [1, K or Pa]."
     )
-    reason: ShortText = Field(description="Why.")
+    reason: ShortText = Field(description="Why the limit is moved, or what answers the caution.")
 
 
 @cache

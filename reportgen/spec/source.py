@@ -34,8 +34,9 @@ class Source:
         self.root = text.root
         self.file = file
         self.faults = list(text.faults)
+        self.truncated = text.truncated
         #: With the name of some table unreadable, nobody can say which names are unknown.
-        self.names_are_complete = not text.header_lost
+        self.names_are_complete = not text.header_lost and not text.truncated
 
     def node(self, location: Location) -> Node | None:
         """The node at a location; None when nothing stands there."""
@@ -105,18 +106,29 @@ class Source:
         """Note a fault at a location."""
         self.note(location, Fault(message, found=found, expected=expected, hint=hint), at=at)
 
+    def miss(self, location: Location, message: str, *, expected: str | None, found: str | None = None) -> None:
+        """Note that something is not there, at the table where it should be; not where it may merely be unread."""
+        unread = self.truncated or (len(location) < 2 and not self.names_are_complete)
+        if not unread and not self.is_broken(location):
+            self.report(location, message, at="key", found=found, expected=expected)
+
     def note(self, location: Location, fault: Fault, *, at: Literal["key", "value"] = "value") -> None:
         """Note a fault that does not know its place yet."""
         self.faults.append(replace(fault, path=path_of(location) or None).at(self.file, *self.place(location, at)))
 
     def nearest(self, name: str, choices: Iterable[str]) -> str | None:
-        """A hint that names the valid name most like the one found, or None when none is like it."""
+        """The valid name most like the one found, or None when none is like it."""
         if len(self.faults) > MOST_FAULTS:
             # Comparing names is slow, and these faults will not be listed.
             return None
         by_folded = {choice.casefold(): choice for choice in islice(choices, _MOST_CHOICES)}
         found = difflib.get_close_matches(name.casefold()[:100], by_folded, n=1, cutoff=0.6)
-        return f'Did you mean "{by_folded[found[0]]}"?' if found else None
+        return by_folded[found[0]] if found else None
+
+    def hint(self, name: str, choices: Iterable[str]) -> str | None:
+        """The nearest valid name as a question."""
+        found = self.nearest(name, choices)
+        return f'Did you mean "{found}"?' if found else None
 
     def sorted_faults(self) -> list[Fault]:
         """The faults in the order of the file, the first ones if they are very many."""

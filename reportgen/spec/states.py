@@ -78,7 +78,7 @@ def _check_likeness(source: Source, state: str, in_a_circle: set[str]) -> None:
                 "There is no such state.",
                 found=f'"{like[:60]}"',
                 expected="a state of this file",
-                hint=source.nearest(like, states),
+                hint=source.hint(like, states),
             )
         return
     chain = _ancestry(source, state)
@@ -98,14 +98,14 @@ def _check_fluid(source: Source, state: str) -> None:
     location = ("states", state, "fluid")
     if fluid is None:
         if source.node(location) is None and fluid_of(source, state) is None and not _likeness_is_open(source, state):
-            source.report(location, '"fluid" is missing.', expected="Name of a table of [fluids]")
+            source.miss(location, '"fluid" is missing.', expected="Name of a table of [fluids]")
     elif fluid not in fluids and source.names_are_complete and not source.is_broken(("fluids", fluid)):
         source.report(
             location,
             "There is no such fluid.",
             found=f'"{fluid[:60]}"',
             expected="a fluid of this file: " + ", ".join(list(fluids)[:12]) if fluids else "a table [fluids.<name>]",
-            hint=source.nearest(fluid, fluids),
+            hint=source.hint(fluid, fluids),
         )
 
 

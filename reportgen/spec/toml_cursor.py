@@ -118,7 +118,11 @@ class Cursor:
         self.entries += 1
         if self.entries > MAXIMUM_ENTRIES:
             self.faults.clear()
-            self.report(offset, f"The file holds more than {MAXIMUM_ENTRIES} entries; it is not read further.")
+            self.report(
+                offset,
+                "The file holds too many entries; it is not read further.",
+                expected=f"at most {MAXIMUM_ENTRIES}",
+            )
             raise TooMuch
 
     def skip(self, pattern: re.Pattern[str]) -> None:

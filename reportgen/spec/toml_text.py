@@ -27,18 +27,22 @@ _KEY_WITH_SPACES = re.compile(r"((?:[A-Za-z0-9_-]+[ ]+)+[A-Za-z0-9_-]+)[ \t]*=")
 
 @dataclass(frozen=True)
 class TomlText:
-    """What was read: the root table, the mistakes, and whether the name of some table could not be made out."""
+    """What was read: the root table and the mistakes.
+
+    ``header_lost`` says that the name of some table could not be made out, ``truncated`` that the end was not read.
+    """
 
     root: Node
     faults: tuple[Fault, ...]
     header_lost: bool
+    truncated: bool
 
 
 def parse(text: str, file: str) -> TomlText:
     """Read a TOML text. Never raises for what the text says; its mistakes are in ``faults``."""
     reader = _Reader(text.replace("\r\n", "\n"), file)
     reader.read()
-    return TomlText(reader.root, tuple(reader.faults), reader.header_lost)
+    return TomlText(reader.root, tuple(reader.faults), reader.header_lost, reader.truncated)
 
 
 class _Reader(Cursor):
@@ -49,6 +53,7 @@ class _Reader(Cursor):
         self.root = self.table = self.node({}, 0, 0)
         self.prefix: tuple[str, ...] = ()
         self.header_lost = False
+        self.truncated = False
 
     # --- statements ---------------------------------------------------------------------------------------------
 
@@ -60,7 +65,7 @@ class _Reader(Cursor):
                     break
                 self.statement()
         except TooMuch:
-            self.header_lost = True
+            self.truncated = True
         if not self.faults:
             self.ask_the_standard_reader()
 
@@ -230,10 +235,12 @@ class _Reader(Cursor):
         """What is wrong where a key is not followed by an equals sign."""
         sign = self.text[self.offset : self.offset + 1]
         hint = "Write = in place of the colon." if sign == ":" else None
+        offset = self.offset
         if spaced := _KEY_WITH_SPACES.match(self.text, begin):
+            offset = begin
             hint = f"Keys are written without spaces: {re.sub(' +', '_', spaced[1])}."
         found = self.line_of(begin)
-        return Mistake(self.offset, "A key must be followed by = and its value.", found=found, hint=hint)
+        return Mistake(offset, "A key must be followed by = and its value.", found=found, hint=hint)
 
     # --- keys and values ----------------------------------------------------------------------------------------
 
@@ -243,7 +250,10 @@ class _Reader(Cursor):
         if sign in ("[", "{"):
             if depth >= MAXIMUM_DEPTH:
                 self.report(
-                    begin, f"Brackets are nested deeper than {MAXIMUM_DEPTH}; the file is not read further.", path
+                    begin,
+                    "Brackets are nested too deep; the file is not read further.",
+                    path,
+                    expected=f"at most {MAXIMUM_DEPTH} within one another",
                 )
                 raise TooMuch
             self.offset += 1

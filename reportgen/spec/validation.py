@@ -14,6 +14,7 @@ from reportgen.errors import Fault, InputError
 from reportgen.spec.fields import QuantityOf, shown
 from reportgen.spec.schema import LATER, document
 from reportgen.spec.source import Location, Source
+from reportgen.spec.toml_cursor import Node
 
 __all__ = ["refuse_later", "validate"]
 
@@ -29,10 +30,10 @@ _TYPES = {
     "int_type": "a whole number without quotes",
 }
 _BOUNDS = {
-    "greater_than": "above {gt}",
-    "greater_than_equal": "at least {ge}",
-    "less_than": "below {lt}",
-    "less_than_equal": "at most {le}",
+    "greater_than": "above {gt:g}",
+    "greater_than_equal": "at least {ge:g}",
+    "less_than": "below {lt:g}",
+    "less_than_equal": "at most {le:g}",
     "too_short": "{min_length} or more entries",
     "too_long": "at most {max_length} entries",
     "string_too_short": "{min_length} or more characters",
@@ -62,8 +63,14 @@ def validate(source: Source, context: Mapping[str, float]) -> BaseModel | None:
     try:
         return document().model_validate(source.root.plain(), context=dict(context))
     except ValidationError as error:
-        for detail in error.errors(include_url=False):
-            _note(source, detail)
+        details = error.errors(include_url=False)
+        # A key that is only misspelt is not reported as missing too, so the unknown keys come first.
+        meant = {
+            name for detail in details if detail["type"] == "extra_forbidden" for name in _note_unknown(source, detail)
+        }
+        for detail in details:
+            if detail["type"] != "extra_forbidden" and not (detail["type"] == "missing" and detail["loc"] in meant):
+                _note(source, detail)
         return None
 
 
@@ -87,21 +94,20 @@ def _note(source: Source, detail: Any) -> None:
         for fault in cause.faults:
             _note_value(source, location, fault, about_key)
     elif kind == "missing":
-        _note_missing(source, location, _step_field(tagged))
+        source.miss(location, f'"{location[-1]}" is missing.', expected=_description(tagged))
     elif kind in ("union_tag_not_found", "union_tag_invalid"):
         _note_tag(source, location, context)
-    elif kind == "extra_forbidden":
-        _note_unknown_key(source, location, _keys_of(tagged[:-1]))
     elif kind == "literal_error":
         choices = _choices(context["expected"])
         _note_choice(source, location, choices)
     else:
-        message, expected = "The value does not fit.", detail["msg"]
+        message, expected, hint = "The value does not fit.", detail["msg"], None
         if kind in _TYPES:
             message, expected = "This is not the type of value that belongs here.", _TYPES[kind]
+            hint = _rewritten(kind, source.node(location))
         elif kind in _BOUNDS:
             expected = _BOUNDS[kind].format(**context)
-        source.report(location, message, found=_found(source, location), expected=expected)
+        source.report(location, message, found=_found(source, location), expected=expected, hint=hint)
 
 
 def _note_value(source: Source, location: Location, fault: Fault, about_key: bool) -> None:
@@ -116,19 +122,14 @@ def _note_value(source: Source, location: Location, fault: Fault, about_key: boo
     source.note((*location, key) if key in node.table else location, fault, at="key" if unknown else "value")
 
 
-def _note_missing(source: Source, location: Location, description: str | None) -> None:
-    if not source.is_broken(location):
-        source.report(location, f'"{location[-1]}" is missing.', expected=description)
-
-
 def _note_tag(source: Source, location: Location, context: Mapping[str, Any]) -> None:
     """An equipment kind or property model that is absent or not known."""
     key = str(context["discriminator"]).strip("'")
     place = (*location, key)
     node = source.node(place)
     if node is None:
-        what = "What kind of equipment it is" if key == "kind" else "Which property model holds"
-        _note_missing(source, place, f"{what}.")
+        what = "what kind of equipment it is" if key == "kind" else "which property model holds"
+        source.miss(place, f'"{key}" is missing.', expected=what)
     elif not node.broken:
         _note_choice(source, place, _choices(context.get("expected_tags", "")))
 
@@ -142,28 +143,44 @@ def _note_choice(source: Source, location: Location, choices: Sequence[str]) -> 
         return
     source.report(
         location,
-        f"This {location[-1]} is not known."
-        if isinstance(value, str)
-        else "This is not the type of value that belongs here.",
+        f'This is not a value that "{location[-1]}" can have.',
         found=shown(value),
         expected=" or ".join(f'"{choice}"' for choice in choices),
-        hint=source.nearest(value, choices) if isinstance(value, str) else None,
+        hint=source.hint(value, choices) if isinstance(value, str) else None,
     )
 
 
-def _note_unknown_key(source: Source, location: Location, choices: Sequence[str]) -> None:
+def _note_unknown(source: Source, detail: Any) -> list[Location]:
+    """Note a key that the schema does not have; returns where the key that was probably meant would stand."""
+    tagged = tuple(detail["loc"])
+    location = _without_tags(tagged)
+    choices = _keys_of(tagged[:-1])
     key = str(location[-1])
     table = str(location[0]) if len(location) > 1 else ""
     if refuse_later(source, location, table, key, at="key"):
-        return
+        return []
+    meant = source.nearest(key, choices)
     source.report(
         location,
         f'There is no key "{shown(key)[1:-1]}" here.',
         at="key",
         found=shown(key)[1:-1],
         expected=", ".join(choices),
-        hint=source.nearest(key, choices),
+        hint=f'Did you mean "{meant}"?' if meant else None,
     )
+    return [(*tagged[:-1], meant)] if meant else []
+
+
+def _rewritten(kind: str, node: Node | None) -> str | None:
+    """How a name or number of the wrong form would be written, where that is plain."""
+    value = node.plain() if node is not None else None
+    if kind == "string_type" and isinstance(value, int | float) and not isinstance(value, bool):
+        return f'Write "{shown(value)}".'
+    if kind == "string_type" and isinstance(value, list) and len(value) == 1 and isinstance(value[0], str):
+        return f"Write {shown(value[0])}."
+    if kind == "list_type" and isinstance(value, str):
+        return f"Write [{shown(value)}]."
+    return None
 
 
 def _found(source: Source, location: Location) -> str:
@@ -224,7 +241,7 @@ def _keys_of(tagged: Location) -> list[str]:
     return list(model.model_fields) if model is not None else []
 
 
-def _step_field(tagged: Location) -> str | None:
+def _description(tagged: Location) -> str | None:
     """Description of the field at a location."""
     model = _model_at(tagged[:-1])
     field = model.model_fields.get(str(tagged[-1])) if model is not None else None

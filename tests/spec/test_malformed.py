@@ -1,0 +1,331 @@
+"""Malformed calculation files: every fault of each, at its line and column, and nothing else."""
+
+from __future__ import annotations
+
+import shutil
+from pathlib import Path
+
+import pytest
+
+from reportgen import spec
+from reportgen.errors import InputError
+
+FOLDER = Path(__file__).parent / "malformed"
+
+#: For each file the faults in the order of the file: line and column, path, and words that must be in the message.
+EXPECTED: dict[str, list[tuple[str | None, ...]]] = {
+    "backslashes": [
+        ("6:12", "calculation.owner", "The text holds a backslash or control character that TOML"),
+        ("25:45", "states.2.pressure.source", "The text holds a backslash or control character that TOML"),
+    ],
+    "bare-psi": [
+        ("19:15", "states.1.pressure", 'The unit "psi" is ambiguous'),
+        ("25:12", "states.2.pressure", 'The unit "psi" is ambiguous'),
+    ],
+    "caution-faults": [
+        ("32:11", "cautions.moisture", "This is not the number of a caution"),
+        ("35:11", "cautions.T10.reason", '"reason" is missing'),
+        ("39:10", "cautions.T19.limit", '"kW" is a unit of a power, but a ratio or a temperature or a'),
+    ],
+    "composition-faults": [
+        ("16:1", "fluids.air.composition", "The composition does not say what its fractions count"),
+        ("16:15", "fluids.air.composition", "The fractions do not add up to 1"),
+        ("34:9", "fluids.nothing", "No substance is given"),
+        ("40:1", "fluids.both.composition", "Both substance and composition are given"),
+        ("41:17", "fluids.both.basis", 'This is not a value that "basis" can have', 'Did you mean "mole"?'),
+        ("42:17", "fluids.both.heat_capacity", "There is no number where one is needed"),
+        ("47:24", "fluids.wet.composition.N2", "The value is outside what is possible"),
+        ("47:35", "fluids.wet.composition.H2O", "The value is outside what is possible"),
+        ("48:17", "fluids.wet.heat_capacity", '"kJ/kg" is a unit of a specific energy, but a specific'),
+        ("53:17", "fluids.helium.heat_capacity", "An uncertainty has no meaning here"),
+    ],
+    "confirmed-too-early": [
+        ("7:1", "calculation.status", "A confirmed document needs its revision history"),
+        ("20:54", "states.1.temperature.status", "The document is confirmed, but this is still to be verified"),
+        ("35:10", "assumptions.A1.status", "The document is confirmed, but this is still to be verified"),
+        ("45:10", "assumptions.A3.status", "The document is confirmed, but this is still to be verified"),
+    ],
+    "correlations-that-cannot-be": [
+        ("33:19", "uncertainty.coverage_factor", "The value does not fit"),
+        ("35:76", "uncertainty.correlations.1.coefficient", "The value does not fit"),
+        ("36:37", "uncertainty.correlations.2.between.2", "This input has no uncertainty that could be correlated"),
+        ("37:15", "uncertainty.correlations.3.between", "The value does not fit"),
+        (
+            "38:16",
+            "uncertainty.correlations.4.between.1",
+            "No quantity is given at this path",
+            'Did you mean "states.1.pressure"?',
+        ),
+        ("39:74", "uncertainty.correlations.5.coefficient", "This is not the type of value that belongs here"),
+        (
+            "40:15",
+            "uncertainty.correlations.6.between",
+            "The correlation of these two inputs is already stated at line",
+        ),
+        ("41:38", "uncertainty.correlations.7.between.2", "An input is not correlated with itself"),
+    ],
+    "correlations-that-contradict": [
+        ("33:16", "uncertainty.correlations", "The correlations contradict one another"),
+    ],
+    "criteria-that-decide-nothing": [
+        ("35:1", "criteria.C1.at_least", "Both at_most and at_least are given"),
+        ("37:11", "criteria.C2", "The criterion has no limit"),
+        ("43:11", "criteria.C3.at_most", "An uncertainty has no meaning here"),
+        ("47:11", "criteria.C4.at_most", '"bar" is a unit of a pressure, but a temperature is needed'),
+        ("50:11", "criteria.C5.value", 'No value can have this path. There is no "lost_wrok" among'),
+        ("54:11", "criteria.C6.value", "No value can have this path. A path is states.<id>.<name>,"),
+        ("58:11", "criteria.C7.value", 'No value can have this path. There is no "phase" among the'),
+    ],
+    "dates-in-quotes": [
+        ("5:12", "calculation.date", "This is not a date"),
+        ("36:10", "assumptions.A1.due", "This is not a date"),
+        ("40:15", "revisions.1.date", "This is not a value"),
+        ("45:15", "revisions.2.date", "This is not a date"),
+    ],
+    "dependent-givens": [
+        ("23:1", "states.1.quality", "An ideal gas does not condense"),
+        ("29:1", "states.2.specific_enthalpy", "temperature and specific_enthalpy cannot both be given"),
+        ("44:1", "states.7.quality", "superheat and quality cannot both be given"),
+        ("49:1", "states.8.specific_volume", "density and specific_volume cannot both be given"),
+    ],
+    "duplicate-keys-and-tags": [
+        ("7:1", "calculation.revision", "This name is already there at line 4"),
+        ("21:1", "states.1.pressure", "This name is already there at line 20"),
+        ("34:12", "equipment.PRV-3", "This name is already there at line 29"),
+        ("39:12", "equipment.prv-3", "The tag differs from PRV-3 at line 29 in capitals only"),
+    ],
+    "efficiency-in-percent": [
+        (
+            "33:25",
+            "equipment.K-1.isentropic_efficiency",
+            "An efficiency is above 0 and at most 1",
+            'Did you mean "78 %"?',
+        ),
+        ("39:25", "equipment.K-2.isentropic_efficiency", "An efficiency is above 0 and at most 1"),
+        ("40:25", "equipment.K-2.pressure_ratio", "The value is outside what is possible"),
+    ],
+    "gauge-atmosphere": [
+        ("11:15", "surroundings.pressure", "A gauge pressure needs the pressure of the surroundings"),
+    ],
+    "heat-ports": [
+        ("37:12", "equipment.CV-1.heat_ports.2.heat", "The unit is missing"),
+        (
+            "37:18",
+            "equipment.CV-1.heat_ports.2.temprature",
+            'There is no key "temprature" here',
+            'Did you mean "temperature"?',
+        ),
+        ("38:3", "equipment.CV-1.heat_ports.3", "This is not the type of value that belongs here"),
+    ],
+    "ids-that-are-no-path-parts": [
+        ("27:12", "equipment.PRV 3.1", "This name cannot be part of a path"),
+        ("32:9", "states.inlet.a", "This name cannot be part of a path"),
+        ("35:14", "assumptions._A1", "This name cannot be part of a path"),
+        ("38:10", "assumptions._A1.status", 'This is not a value that "status" can have', 'Did you mean "accepted"?'),
+    ],
+    "impossible-values": [
+        ("19:15", "states.1.pressure", "A pressure must be above a perfect vacuum"),
+        ("20:15", "states.1.temperature", "A temperature must be above absolute zero"),
+        ("21:15", "states.1.mass_flow", "A mass flow cannot be negative"),
+        ("31:17", "equipment.PRV-3.pressure_drop", "The value is outside what is possible"),
+        ("36:12", "states.3.quality", "The value is outside what is possible"),
+    ],
+    "later-breadth": [
+        ("33:11", "fluids.oil.model", "Incompressible fluids are not carried by this version"),
+        ("37:12", "fluids.gas.model", "Cubic equations of state are not carried by this version"),
+        ("42:1", "states.a.volume", "Closed systems are not carried by this version"),
+        ("44:2", "processes", "Closed-system processes are not carried by this version"),
+        ("49:2", "vessels", "Vessels are not carried by this version"),
+        ("52:2", "cases", "Cases are not carried by this version"),
+        ("55:2", "sweeps", "Sweeps are not carried by this version"),
+        ("58:2", "readings", "Readings of a test log are not carried by this version"),
+        ("62:10", "uncertainty.method", "The Monte Carlo method is not carried by this version"),
+        ("63:1", "uncertainty.draws", "The Monte Carlo method is not carried by this version"),
+        ("64:1", "uncertainty.seed", "The Monte Carlo method is not carried by this version"),
+    ],
+    "likeness-in-a-circle": [
+        ("33:8", "states.3.like", "A state cannot be like itself, not by way of others either"),
+        ("43:1", "states.6.quality", "More than two quantities are given that each help to fix the"),
+        ("45:9", "states.7.fluid", '"fluid" is missing'),
+    ],
+    "limits-faults": [
+        ("33:23", "equipment.PRV-3.limits.pressure", "An uncertainty has no meaning here"),
+        (
+            "35:23",
+            "equipment.PRV-3.limits.minimum_temperature",
+            "The minimum temperature is not below the maximum temperature",
+        ),
+        (
+            "36:1",
+            "equipment.PRV-3.limits.max_temperature",
+            'There is no key "max_temperature" here',
+            'Did you mean "temperature"?',
+        ),
+        ("37:23", "equipment.PRV-3.limits.source", "This is not the type of value that belongs here"),
+        ("43:1", "equipment.PRV-4.limits", "The limits hold no limit"),
+    ],
+    "missing-narratives": [
+        ("7:1", "calculation.purpose_file", "The purpose is given twice"),
+        ("8:15", "calculation.method_file", "The file must be in the folder of the calculation"),
+        ("9:19", "calculation.conclusion_file", "The file must be in the folder of the calculation"),
+    ],
+    "missing-units": [
+        ("11:15", "surroundings.pressure", "The unit is missing"),
+        ("20:15", "states.1.temperature", "The unit is missing"),
+        ("21:15", "states.1.mass_flow", "The unit is missing"),
+    ],
+    "misspelt-keys": [
+        ("6:1", "calculation.ownr", 'There is no key "ownr" here', 'Did you mean "owner"?'),
+        ("19:1", "states.1.presure", 'There is no key "presure" here', 'Did you mean "pressure"?'),
+        ("30:1", "equipment.PRV-3.outlt", 'There is no key "outlt" here', 'Did you mean "outlet"?'),
+    ],
+    "misspelt-kinds": [
+        ("14:13", "fluids.steam.model", 'This is not a value that "model" can have', 'Did you mean "real-fluid"?'),
+        (
+            "28:10",
+            "equipment.PRV-3.kind",
+            'This is not a value that "kind" can have',
+            'Did you mean "throttling-valve"?',
+        ),
+        ("32:12", "equipment.X-1.kind", '"kind" is missing'),
+        ("37:8", "equipment.X-2.kind", 'This is not a value that "kind" can have'),
+    ],
+    "nested-too-deep": [
+        ("31:20", "equipment.PRV-3.note.1.1.1.1.1.1.1.1.1.1.1.1", "Brackets are nested too deep"),
+    ],
+    "no-surroundings": [
+        ("1:1", "surroundings", '"surroundings" is missing'),
+    ],
+    "nothing-in-it": [
+        ("1:1", "calculation", '"calculation" is missing'),
+        ("1:1", "surroundings", '"surroundings" is missing'),
+        ("1:1", None, "The file holds nothing to evaluate"),
+    ],
+    "over-specified-state": [
+        ("22:1", "states.1.mass_flow", "The flow of this state is given more than once"),
+        ("28:1", "states.2.specific_enthalpy", "More than two quantities are given that each help to fix the"),
+    ],
+    "pathological-numbers": [
+        ("21:15", "states.1.mass_flow", "The unit is missing"),
+        ("25:12", "states.2.pressure", "The number cannot be read"),
+        ("31:1", "equipment.PRV-3.isentropic_efficiency", 'There is no key "isentropic_efficiency" here'),
+        ("32:17", "equipment.PRV-3.pressure_drop", "This is not a value"),
+        ("38:25", "equipment.K-9.isentropic_efficiency", "The number is too large, or none at all"),
+        ("39:25", "equipment.K-9.pressure_ratio", "The number is too large, or none at all"),
+    ],
+    "percent-of-a-temperature": [
+        ("20:15", "states.1.temperature", "A percentage of a temperature depends on the scale it is"),
+        ("21:15", "states.1.mass_flow", "After ±"),
+    ],
+    "ports-of-the-wrong-form": [
+        ("29:10", "equipment.PRV-3.inlet", "This is not the type of value that belongs here"),
+        ("40:10", "equipment.M-1.inlets", "This is not the type of value that belongs here"),
+        ("41:10", "equipment.M-1.outlet", "This is not the type of value that belongs here"),
+        ("46:11", "equipment.S-1.outlets", "The value does not fit"),
+        ("48:12", "equipment.E-1.hot_outlet", '"hot_outlet" is missing'),
+        ("48:12", "equipment.E-1.cold_outlet", '"cold_outlet" is missing'),
+        ("51:1", "equipment.E-1.cold_in", 'There is no key "cold_in" here', 'Did you mean "cold_inlet"?'),
+    ],
+    "quantity-tables": [
+        ("19:50", "states.1.pressure.sorce", 'A quantity has no "sorce"'),
+        ("20:52", "states.1.temperature.distribution", "This distribution is not known"),
+        ("20:52", "states.1.temperature.distribution", "The table gives distribution, but the value has no"),
+        ("21:15", "states.1.mass_flow", "The table has no value"),
+        ("25:59", "states.2.pressure.evaluation", "This evaluation is not known"),
+        ("25:85", "states.2.pressure.degrees_of_freedom", "The degrees_of_freedom does not fit"),
+    ],
+    "revision-not-listed": [
+        ("4:12", "calculation.revision", "This revision is not listed in [[revisions]]"),
+        ("38:15", "revisions.2.index", "Revision A is already listed at line 33"),
+    ],
+    "states-with-two-sources": [
+        ("37:10", "equipment.PRV-4.inlet", "State 1 already enters PRV-3 at line 29"),
+        ("38:10", "equipment.PRV-4.outlet", "State 2 already leaves PRV-3 at line 30"),
+        ("43:10", "equipment.PRV-5.outlet", "The state both enters and leaves this piece"),
+    ],
+    "syntax-of-headers": [
+        ("9:1", None, "The header is not closed by ]"),
+        ("23:9", None, "The name of the table is not readable"),
+        ("31:1", None, "The header is not closed by ]]"),
+    ],
+    "syntax-of-lines": [
+        ("6:6", "calculation.owner", "A key must be followed by = and its value"),
+        ("15:13", "fluids.steam.substance", "This is not a value"),
+        ("19:15", "states.1.pressure", "The text is not closed by a quotation mark on its line"),
+        ("21:1", "states.1.mass_flow", "A key must be followed by = and its value"),
+        ("29:9", "equipment.PRV-3.inlet", "The value is missing"),
+    ],
+    "tables-and-values-confused": [
+        ("14:9", "fluids.steam", "This is not the type of value that belongs here"),
+        ("31:2", "revisions", "This is not the type of value that belongs here"),
+        ("35:6", "references.R1", "This is not the type of value that belongs here"),
+        ("37:18", "equipment.PRV-3.inlet", "inlet is a value (line 28) and cannot hold further keys"),
+    ],
+    "title-block-values": [
+        ("2:12", "calculation.number", "This cannot be the name of a folder"),
+        ("4:12", "calculation.revision", "This is not the type of value that belongs here"),
+        ("6:12", "calculation.owner", "This is not the type of value that belongs here"),
+        ("7:12", "calculation.status", 'This is not a value that "status" can have'),
+        ("8:12", "calculation.units", 'This is not a value that "units" can have'),
+        ("9:12", "calculation.client", "The text is empty"),
+        ("10:1", "calculation.approved", 'There is no key "approved" here', 'Did you mean "approver"?'),
+    ],
+    "trains-that-do-not-fit": [
+        ("38:10", "equipment.TG-1.inlet", "State 1 already enters PRV-3 at line 29"),
+        ("41:12", "equipment.TG-2", "The piece belongs to no train"),
+        ("55:22", "trains.turbine.equipment.2", "The piece already belongs to a train"),
+        ("59:18", "trains.third.equipment", "The value does not fit"),
+        ("60:18", "trains.third.alternative_to", "An alternative stands in the place of a train that is none"),
+    ],
+    "unclosed-list": [
+        ("34:13", "trains.valve.equipment", "The list is not closed"),
+        ("35:18", "trains.valve.alternative_to", "There is no such train"),
+        ("38:11", "criteria.C1.value", 'No value can have this path. There is no "lost_wrk" among the'),
+        ("39:11", "criteria.C1.at_most", "A table in braces must be closed on its line"),
+    ],
+    "unclosed-text": [
+        ("5:11", None, "The text is not closed"),
+    ],
+    "units-of-another-quantity": [
+        ("19:15", "states.1.pressure", '"degC" is a unit of a temperature, but a pressure is needed'),
+        ("20:15", "states.1.temperature", '"bar(g)" is a unit of a pressure, but a temperature is needed'),
+        ("21:15", "states.1.mass_flow", '"t" is a unit of a mass, but a mass flow is needed'),
+        ("31:1", "equipment.PRV-3.isentropic_efficiency", 'There is no key "isentropic_efficiency" here'),
+    ],
+    "unknown-names": [
+        ("24:12", "states.2.fluid", "There is no such fluid", 'Did you mean "steam"?'),
+        ("30:10", "equipment.PRV-3.outlet", "There is no such state", 'Did you mean "2"?'),
+        ("33:8", "states.3.like", "There is no such state", 'Did you mean "11a"?'),
+        ("39:11", "criteria.C1.value", 'No value can have this path. There is no "PVR-3" in'),
+        ("44:23", "trains.main.equipment.2", "There is no such piece of equipment"),
+        ("48:19", "trains.other.equipment.1", "There is no such piece of equipment", 'Did you mean "PRV-3"?'),
+        ("49:18", "trains.other.alternative_to", "There is no such train", 'Did you mean "main"?'),
+    ],
+    "unquoted-quantities": [
+        ("19:15", "states.1.pressure", "This is not a value"),
+        ("21:15", "states.1.mass_flow", "This is not a value"),
+        ("25:12", "states.2.pressure", "The unit is missing"),
+    ],
+}
+
+
+def test_every_malformed_file_is_in_the_table_and_there_are_at_least_thirty() -> None:
+    assert {path.stem for path in FOLDER.glob("*.toml")} == EXPECTED.keys()
+    assert len(EXPECTED) >= 30
+
+
+@pytest.mark.parametrize("name", EXPECTED)
+def test_all_faults_of_a_malformed_file_are_reported_at_their_places(name: str, tmp_path: Path) -> None:
+    shutil.copyfile(FOLDER / f"{name}.toml", tmp_path / "calculation.toml")
+    with pytest.raises(InputError) as caught:
+        spec.read(tmp_path)
+    faults = caught.value.faults
+    assert caught.value.exit_status == 2
+    found = [(f"{fault.line}:{fault.column}", fault.path) for fault in faults]
+    assert found == [(place, path) for place, path, *_ in EXPECTED[name]], str(caught.value)
+    for fault, (_, _, *words) in zip(faults, EXPECTED[name], strict=True):
+        assert fault.file == "calculation.toml"
+        for part in words:
+            assert part is not None
+            assert part in str(fault)
+        assert fault.found or fault.expected or fault.hint, f"{fault} does not say what would do"
