@@ -111,7 +111,9 @@ def sum_latex(terms: Sequence[Term], sign: float = 1.0) -> str:
             last += 1
         if first and last - index > 1:
             inner = [(sign * term.coefficient, _magnitude(term, skip_first=True)) for term in terms[index:last]]
-            outer = 1.0 if any(part[0] > 0 for part in inner) else -1.0
+            # A bracket opens with a positive product; at the head of a sum it takes no minus sign if it can do without.
+            all_negative = all(part[0] < 0 for part in inner)
+            outer = -1.0 if all_negative or (parts and inner[0][0] < 0) else 1.0
             inner = [(outer * part[0], part[1]) for part in inner]
             parts.append((outer, rf"{token(first)}\left({_sum(inner)}\right)"))
         else:
@@ -179,7 +181,8 @@ class Balance:
                 slope = slope + term.without(path).value(values)
             else:
                 rest = rest + term.value(values)
-        return -rest / slope
+        # Adding zero turns −0.0 into 0.0.
+        return -rest / slope + 0.0
 
     def solved(self, path: str) -> Equation:
         """The equation written for one variable."""

@@ -116,9 +116,12 @@ KIND = Kind(
     title="Heat exchanger",
     text="A hot stream gives heat to a cold one across a wall.",
     ports=tuple(
-        Port(f"{side}_{end}let", direction, text=f"State of the {side} stream where it {verb}.", side=side)
+        port
         for side in SIDES
-        for end, direction, verb in (("in", "in", "enters"), ("out", "out", "leaves"))
+        for port in (
+            Port(f"{side}_inlet", "in", text=f"State of the {side} stream where it enters.", side=side),
+            Port(f"{side}_outlet", "out", text=f"State of the {side} stream where it leaves.", side=side),
+        )
     ),
     parameters=(
         Parameter("duty", "heat_flow", "Heat flow given up by the hot stream."),

@@ -1,0 +1,379 @@
+r"""Results that follow once the network is solved: exergies, entropy accounts, lost work, totals and closures.
+
+    Ṡ_Q = Σ Q̇_j / T_j ,   Ṡgen = Σout ṁ s − Σin ṁ s − Ṡ_Q ,   lost work = T0 Ṡgen
+    e = h − h0 − T0 (s − s0)   (h0, s0 of the same fluid at p0, T0; kinetic and potential energy not counted)
+
+Heat that leaves through a boundary of unstated temperature leaves at T0, as a listed assumption. Heat that enters
+through one has no entropy that could be stated: the entropy generation of that piece and of the totals is left out.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.balances.equations import elevated_enthalpy
+from reportgen.balances.plant import Piece, balance_groups, trains_of
+from reportgen.balances.relations import Equation, Formula, HeatPort, Term, sum_latex, token
+from reportgen.balances.solution import Account, Assumption, Entry, Solution, Step
+from reportgen.balances.structure import Network
+from reportgen.errors import Fault
+
+__all__ = ["add_results"]
+
+Array = NDArray[np.float64]
+AMBIENT = "surroundings.temperature"
+#: Heat below this part of the energy that flows through a piece is rounding, not heat.
+_ROUNDING = 1e-10
+
+
+def add_results(solution: Solution, network: Network) -> None:
+    """Add every value that is only reported, with its step, to a solution whose network is solved."""
+    book = _Book(solution)
+    book.exergies()
+    book.entropy_flows()
+    for piece in solution.pieces.values():
+        book.piece(piece)
+    for balance in network.implied:
+        loop = "The mass balances round the closed loop hold together; this one follows from the others."
+        solution.reasons.setdefault(balance.key, loop)
+    groups = {f"trains.{name}": (train.title, train.equipment) for name, train in solution.plant.trains.items()}
+    if solution.pieces:
+        groups["total"] = ("Whole plant", trains_of(solution.plant, tuple(solution.pieces)))
+    for owner, (title, tags) in groups.items():
+        book.group(owner, title, [solution.pieces[tag] for tag in tags])
+
+
+class _Book:
+    """Adds steps and values one by one."""
+
+    def __init__(self, solution: Solution) -> None:
+        self.solution = solution
+        self.values = solution.values
+        self.columns = self.values[AMBIENT].size
+
+    # -- single values -------------------------------------------------------------------------------------------
+
+    def put(self, step: Step, result: Any, reason: str = "") -> Array:
+        """Enter the one value a step solves; no step is kept for a value that does not exist in the base case."""
+        array = np.array(np.broadcast_to(np.asarray(result, dtype=float), (self.columns,))) + 0.0
+        array[~np.isfinite(array)] = np.nan
+        path = step.solves[0]
+        self.values[path] = array
+        if np.isnan(array[0]):
+            self.solution.reasons.setdefault(path, self._cause(step.uses) or reason or "it has no value here")
+        else:
+            self.solution.steps.append(step)
+        return array
+
+    def _cause(self, uses: Iterable[str]) -> str:
+        """Why a value that others are made from is missing."""
+        for path in uses:
+            array = self.values.get(path)
+            if array is None and not path.startswith(("fluids.", "assumptions.")):
+                return self.solution.reasons.get(path, f"{path} has no value")
+            if array is not None and array.dtype.kind == "f" and np.isnan(array[0]):
+                return self.solution.reasons.get(path, f"{path} has no value")
+        return ""
+
+    def _array(self, path: str) -> Array:
+        return self.values.get(path, np.full(self.columns, np.nan))
+
+    def balance(
+        self,
+        path: str,
+        owner: str,
+        name: str,
+        sentence: str,
+        basis: str,
+        terms: Sequence[Term],
+        assumptions: Sequence[str] = (),
+    ) -> Array:
+        """Enter a value that is a sum of products."""
+        uses = tuple(dict.fromkeys(factor for term in terms for factor in term.factors))
+        total: Any = 0.0
+        for term in terms:
+            total = total + term.value({factor: self._array(factor) for factor in term.factors})
+        step = Step(
+            path,
+            owner,
+            name,
+            sentence,
+            basis,
+            (path,),
+            (*uses, *(f"assumptions.{key}" for key in assumptions)),
+            (Equation(token(path), sum_latex(terms)),),
+        )
+        return self.put(step, total)
+
+    def formula(self, formula: Formula) -> Array:
+        """Enter the output of a formula."""
+        with np.errstate(all="ignore"):
+            result = formula.evaluate(*(self._array(path) for path in formula.inputs))
+        uses = (*formula.inputs, *(f"fluids.{fluid}" for fluid in formula.fluids))
+        step = Step(
+            formula.key,
+            formula.owner,
+            formula.name,
+            formula.sentence,
+            formula.basis,
+            (formula.output,),
+            uses,
+            (Equation(token(formula.output), formula.latex),),
+        )
+        return self.put(step, result, formula.reason)
+
+    # -- states --------------------------------------------------------------------------------------------------
+
+    def exergies(self) -> None:
+        """Specific flow exergy of every state, relative to its fluid in the state of the surroundings."""
+        plant = self.solution.plant
+        used = dict.fromkeys(plant.states.values())
+        for fluid_id in used:
+            self._dead_state(fluid_id)
+        for state, fluid_id in plant.states.items():
+            prefix, dead = f"states.{state}.", f"surroundings.{fluid_id}."
+            h, s = prefix + "specific_enthalpy", prefix + "specific_entropy"
+            h0, s0 = dead + "specific_enthalpy", dead + "specific_entropy"
+            terms = (Term(1.0, (h,)), Term(-1.0, (h0,)), Term(-1.0, (AMBIENT, s)), Term(1.0, (AMBIENT, s0)))
+            self.balance(
+                prefix + "specific_exergy",
+                f"states.{state}",
+                "Specific exergy",
+                f"State {state}: work that could be had on the way to equilibrium with the surroundings.",
+                "definition of flow exergy, without kinetic and potential energy",
+                terms,
+            )
+
+    def _dead_state(self, fluid_id: str) -> None:
+        fluid = self.solution.plant.fluids[fluid_id]
+        dead = f"surroundings.{fluid_id}."
+        paths = ("surroundings.pressure", AMBIENT)
+        state = fluid.at(errors="mask", pressure=self.values[paths[0]], temperature=self.values[paths[1]])
+        fault = state.faults.get(0)
+        solved, equations = [], []
+        for name, symbol in (("specific_enthalpy", "h"), ("specific_entropy", "s")):
+            path = dead + name
+            self.values[path] = np.array(getattr(state, name), dtype=float)
+            if fault:
+                self.solution.reasons[path] = fault.message
+            solved.append(path)
+            arguments = rf"{token(paths[0])},\,{token(paths[1])}"
+            equations.append(Equation(token(path), rf"{symbol}\left({arguments}\right)"))
+        if np.isnan(self.values[solved[0]][0]):
+            text = f"{fluid.title} has no state at the surroundings' temperature and pressure, hence no exergy: "
+            self.solution.warnings.append(Fault(text + (fault.message if fault else "no value."), f"fluids.{fluid_id}"))
+            return
+        self.solution.steps.append(
+            Step(
+                f"surroundings.{fluid_id}.properties",
+                f"fluids.{fluid_id}",
+                "Surroundings",
+                f"{fluid.title} in equilibrium with the surroundings.",
+                f"equation of state, {fluid.title}",
+                tuple(solved),
+                (*paths, f"fluids.{fluid_id}"),
+                tuple(equations),
+            )
+        )
+
+    def entropy_flows(self) -> None:
+        """ṁ s of every stream."""
+        for state in self.solution.plant.states:
+            flow, entropy = f"states.{state}.mass_flow", f"states.{state}.specific_entropy"
+            if flow in self.values:
+                self.balance(
+                    f"states.{state}.entropy_flow",
+                    f"states.{state}",
+                    "Entropy of a stream",
+                    f"Stream {state} carries its flow times its specific entropy.",
+                    "entropy of a stream",
+                    (Term(1.0, (flow, entropy)),),
+                )
+
+    # -- pieces --------------------------------------------------------------------------------------------------
+
+    def piece(self, piece: Piece) -> None:
+        """Imbalances, entropy with heat, entropy generation, lost work, figures of merit, account."""
+        self._imbalances(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
+        ports = list(piece.kind.heats(piece))
+        for port in ports:
+            self._entropy_with_heat(piece, port)
+        carried = piece.path("entropy_with_heat")
+        if len(ports) > 1 or (ports and ports[0].entropy != carried):
+            sentence = f"{piece.title}: entropy that comes with heat over all boundaries."
+            terms = [Term(1.0, (port.entropy,)) for port in ports]
+            self.balance(carried, piece.owner, "Entropy with heat", sentence, "second law, steady flow", terms)
+        self.balance(
+            piece.path("entropy_generation"),
+            piece.owner,
+            "Entropy balance",
+            f"{piece.title}: what leaves as entropy and did not enter was generated inside.",
+            "second law, steady flow",
+            [*_entropy_terms(piece), Term(-1.0, (carried,))],
+        )
+        self._lost_work(piece.owner, piece.title)
+        for formula in piece.kind.results(piece):
+            self.formula(formula)
+        self._account(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
+
+    def _imbalances(
+        self, owner: str, title: str, pieces: Sequence[Piece], inlets: Sequence[str], outlets: Sequence[str]
+    ) -> None:
+        terms = [Term(1.0, (f"states.{state}.mass_flow",)) for state in inlets]
+        terms += [Term(-1.0, (f"states.{state}.mass_flow",)) for state in outlets]
+        sentence = f"{title}: what is left of the mass balance; zero but for rounding."
+        self.balance(f"{owner}.mass_imbalance", owner, "Check of mass", sentence, "conservation of mass", terms)
+        energy: list[Term] = []
+        for states, sign in ((inlets, 1.0), (outlets, -1.0)):
+            for state in states:
+                energy += elevated_enthalpy(pieces[0], state, f"states.{state}.mass_flow", sign)
+        for piece in pieces:
+            if piece.path("heat") in self.values:
+                energy.append(Term(1.0, (piece.path("heat"),)))
+            if piece.kind.power_sign:
+                energy.append(Term(float(piece.kind.power_sign), (piece.path("power"),)))
+        sentence = f"{title}: what is left of the energy balance; zero but for rounding."
+        self.balance(f"{owner}.energy_imbalance", owner, "Check of energy", sentence, "first law, steady flow", energy)
+
+    def _scale(self, piece: Piece) -> float:
+        """Size of the energy that flows through a piece, base case [W]."""
+        parts = [abs(float(self._array(port.heat)[0])) for port in piece.kind.heats(piece)]
+        for _, _, state in piece.connections():
+            flow, enthalpy = f"states.{state}.mass_flow", f"states.{state}.specific_enthalpy"
+            parts.append(abs(float(self._array(flow)[0] * self._array(enthalpy)[0])))
+        return float(np.nanmax(parts)) if parts else 0.0
+
+    def _entropy_with_heat(self, piece: Piece, port: HeatPort) -> None:
+        heat = self._array(port.heat)
+        temperature = port.temperature
+        basis = "definition of entropy transfer with heat"
+        assumptions: tuple[str, ...] = ()
+        sentence = f"{port.label}: heat carries its amount over the temperature of the boundary as entropy."
+        if temperature not in self.values:
+            temperature = AMBIENT
+            if not abs(heat[0]) > _ROUNDING * self._scale(piece):
+                sentence = f"{port.label}: no heat crosses the boundary, and no entropy with it."
+            elif heat[0] > 0.0:
+                reason = f"heat enters {port.label} and {port.temperature} is not stated"
+                self.values[port.entropy] = np.full(self.columns, np.nan)
+                self.solution.reasons[port.entropy] = reason
+                text = (
+                    f"{heat[0]:.6g} W of heat enters {port.label} through a boundary of unstated temperature; "
+                    "the entropy generation of this piece and of the totals it belongs to is not reported."
+                )
+                hint = f"State {port.temperature}."
+                self.solution.warnings.append(Fault(text, port.temperature, hint=hint))
+                return
+            else:
+                key = f"{port.heat}.leaves_at_surroundings"
+                text = f"Heat that leaves {port.label} leaves at the temperature of the surroundings."
+                self.solution.assumptions.append(Assumption(key, text, piece.owner, (port.entropy,)))
+                assumptions = (key,)
+                basis = f"assumption: {text}"
+        step = Step(
+            port.entropy,
+            piece.owner,
+            "Entropy with heat",
+            sentence,
+            basis,
+            (port.entropy,),
+            (port.heat, temperature, *(f"assumptions.{key}" for key in assumptions)),
+            (Equation(token(port.entropy), rf"\frac{{{token(port.heat)}}}{{{token(temperature)}}}"),),
+        )
+        self.put(step, heat / self._array(temperature))
+
+    def _lost_work(self, owner: str, title: str) -> None:
+        generated = f"{owner}.entropy_generation"
+        sentence = f"{title}: work forgone at the temperature of the surroundings."
+        basis = "Gouy–Stodola theorem"
+        self.balance(f"{owner}.lost_work", owner, "Lost work", sentence, basis, [Term(1.0, (AMBIENT, generated))])
+
+    # -- groups and accounts -------------------------------------------------------------------------------------
+
+    def group(self, owner: str, title: str, pieces: Sequence[Piece]) -> None:
+        """Sums of the parts, balances round the whole, and what the two differ by."""
+        inlets, outlets = _boundary(pieces)
+        sums = {
+            "entropy_generation": ("Entropy generation of the parts", "sum of the parts"),
+            "heat": ("Heat", "sum of the parts"),
+            "entropy_with_heat": ("Entropy with heat", "sum of the parts"),
+        }
+        for name, (heading, basis) in sums.items():
+            terms = [Term(1.0, (piece.path(name),)) for piece in pieces]
+            words = f"{title}: sum over {', '.join(piece.tag for piece in pieces)}."
+            self.balance(f"{owner}.{name}", owner, heading, words, basis, terms)
+        powers = [Term(-float(p.kind.power_sign), (p.path("power"),)) for p in pieces if p.kind.power_sign]
+        if powers:
+            words = f"{title}: net power delivered, what is absorbed counted negative."
+            self.balance(f"{owner}.power", owner, "Net power", words, "sum of the parts", powers)
+        self._lost_work(owner, title)
+        self._imbalances(owner, title, pieces, inlets, outlets)
+        terms = [
+            Term(1.0, (f"{owner}.entropy_generation",)),
+            *(Term(1.0, (f"states.{state}.entropy_flow",)) for state in inlets),
+            *(Term(-1.0, (f"states.{state}.entropy_flow",)) for state in outlets),
+            Term(1.0, (f"{owner}.entropy_with_heat",)),
+        ]
+        words = f"{title}: sum of the parts less the balance round the whole; zero but for rounding."
+        self.balance(f"{owner}.closure", owner, "Closure of entropy", words, "parts against the whole", terms)
+        self._account(owner, title, pieces, inlets, outlets)
+
+    def _account(
+        self, owner: str, title: str, pieces: Sequence[Piece], inlets: Sequence[str], outlets: Sequence[str]
+    ) -> None:
+        entries: list[Entry] = []
+        for state in inlets:
+            path = f"states.{state}.entropy_flow"
+            entries.append(Entry("in", f"Stream {state}", path, 1, self._array(path)))
+        leaving: list[Entry] = []
+        for state in outlets:
+            path = f"states.{state}.entropy_flow"
+            leaving.append(Entry("out", f"Stream {state}", path, 1, self._array(path)))
+        complete = True
+        for piece in pieces:
+            for port in piece.kind.heats(piece):
+                amount = self._array(port.entropy)
+                if np.isnan(amount[0]):
+                    complete = False
+                elif amount[0] < 0.0:
+                    leaving.append(Entry("out", f"Heat from {port.label}", port.entropy, -1, -amount))
+                elif amount[0] > 0.0:
+                    entries.append(Entry("in", f"Heat into {port.label}", port.entropy, 1, amount))
+        for piece in pieces:
+            path = piece.path("entropy_generation")
+            entries.append(Entry("generated", piece.title, path, 1, self._array(path)))
+        self.solution.accounts[owner] = Account(
+            owner, title, (*entries, *leaving), complete, tuple(inlets), tuple(outlets)
+        )
+
+
+def _boundary(pieces: Sequence[Piece]) -> tuple[list[str], list[str]]:
+    """States that enter or leave a group of pieces, those between its pieces left out."""
+    entering = [state for piece in pieces for state in piece.streams("in")]
+    leaving = [state for piece in pieces for state in piece.streams("out")]
+    inner = set(entering) & set(leaving)
+    return [state for state in entering if state not in inner], [state for state in leaving if state not in inner]
+
+
+def _entropy_terms(piece: Piece) -> list[Term]:
+    """Σout ṁ s − Σin ṁ s, with the mass balance put in where one side of a group has a single state."""
+
+    def product(flow: str, state: str, sign: float) -> Term:
+        return Term(sign, (f"states.{flow}.mass_flow", f"states.{state}.specific_entropy"))
+
+    terms: list[Term] = []
+    for inlets, outlets in balance_groups(piece):
+        if len(outlets) == 1:
+            for state in inlets:
+                terms += [product(state, outlets[0], 1.0), product(state, state, -1.0)]
+        elif len(inlets) == 1:
+            for state in outlets:
+                terms += [product(state, state, 1.0), product(state, inlets[0], -1.0)]
+        else:
+            terms += [product(state, state, 1.0) for state in outlets]
+            terms += [product(state, state, -1.0) for state in inlets]
+    return terms

@@ -1,0 +1,71 @@
+"""States from any two of their properties."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from typing import Any
+
+from reportgen.errors import Fault, InputError
+
+__all__ = ["known_pair", "state_from", "why_missing"]
+
+#: Pairs in the order of preference; those a model does not carry are found out once and remembered.
+PAIRS = (
+    ("pressure", "quality"),
+    ("temperature", "quality"),
+    ("pressure", "temperature"),
+    ("pressure", "specific_enthalpy"),
+    ("pressure", "specific_entropy"),
+    ("pressure", "superheat"),
+    ("pressure", "subcooling"),
+    ("pressure", "density"),
+    ("pressure", "specific_volume"),
+    ("temperature", "density"),
+    ("temperature", "specific_volume"),
+    ("temperature", "specific_entropy"),
+    ("temperature", "specific_enthalpy"),
+)
+
+_refused: set[tuple[type, tuple[str, str]]] = set()
+
+
+def _carries(fluid: Any, pair: tuple[str, str]) -> bool:
+    """Whether a model takes a pair: asked with NaN, which no model may object to."""
+    key = (type(fluid), pair)
+    if key in _refused:
+        return False
+    try:
+        fluid.at(errors="mask", **{name: float("nan") for name in pair})
+    except InputError:
+        _refused.add(key)
+        return False
+    return True
+
+
+def known_pair(fluid: Any, known: Iterable[str]) -> tuple[str, str] | None:
+    """The pair of known properties a state is best fixed by; None when the model carries none of them."""
+    available = set(known)
+    for pair in PAIRS:
+        if available.issuperset(pair) and (_carries(fluid, pair) or _by_saturation(fluid, pair)):
+            return pair
+    return None
+
+
+def _by_saturation(fluid: Any, pair: tuple[str, str]) -> bool:
+    return pair[1] in ("superheat", "subcooling") and hasattr(fluid, "saturation")
+
+
+def state_from(fluid: Any, pair: tuple[str, str], values: Mapping[str, Any]) -> Any:
+    """The state, NaN where it cannot be had; ``values`` by name of property, arrays of one shape."""
+    first, second = pair
+    if _by_saturation(fluid, pair) and not _carries(fluid, pair):
+        _, vapour = fluid.saturation(pressure=values[first], errors="mask")
+        distance = values[second] if second == "superheat" else -values[second]
+        return fluid.at(errors="mask", pressure=values[first], temperature=vapour.temperature + distance)
+    return fluid.at(errors="mask", **{first: values[first], second: values[second]})
+
+
+def why_missing(state: Any, column: int) -> str:
+    """What a model says about a column it could not evaluate."""
+    fault: Fault | None = state.faults.get(column)
+    return fault.message if fault else "the property model gives no value."

@@ -1,0 +1,151 @@
+"""What a solved plant holds: values, the steps that led to them, assumptions, accounts, warnings."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Any, Literal
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.balances.plant import Piece, Plant
+from reportgen.balances.relations import Equation
+from reportgen.errors import Fault
+
+__all__ = ["Account", "Assumption", "Curve", "Entry", "Solution", "Step"]
+
+
+@dataclass(frozen=True)
+class Step:
+    """One step of the working.
+
+    ``owner`` is ``states.<id>``, ``equipment.<tag>``, ``trains.<id>``, ``total`` or ``fluids.<id>``. ``uses`` holds
+    the paths of the values it starts from; a step that rests on a property model also lists ``fluids.<id>``, one that
+    rests on an assumption of the program's own ``assumptions.<id>``. ``equations`` are templates with ⟦path⟧ tokens.
+    """
+
+    key: str
+    owner: str
+    name: str
+    sentence: str
+    basis: str
+    solves: tuple[str, ...]
+    uses: tuple[str, ...]
+    equations: tuple[Equation, ...] = ()
+
+    @property
+    def latex(self) -> tuple[str, ...]:
+        """The equations as whole templates, ``left = right``."""
+        return tuple(equation.latex for equation in self.equations)
+
+
+@dataclass(frozen=True)
+class Assumption:
+    """An assumption the program took because nothing else determined a value."""
+
+    id: str
+    text: str
+    owner: str
+    affects: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class Entry:
+    """One line of an entropy account: side, words, path of the value, and its amount [W/K], shape (N,).
+
+    ``sign`` −1 says that the amount is the value of the path with the sign turned (heat that leaves).
+    """
+
+    side: Literal["in", "generated", "out"]
+    label: str
+    path: str
+    sign: int
+    amount: NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Account:
+    """Entropy account of a piece, a train or the whole plant: what enters and is generated equals what leaves."""
+
+    owner: str
+    title: str
+    entries: tuple[Entry, ...]
+    complete: bool
+    inlets: tuple[str, ...]
+    outlets: tuple[str, ...]
+
+    def side(self, name: str) -> tuple[Entry, ...]:
+        """The entries of one side."""
+        return tuple(entry for entry in self.entries if entry.side == name)
+
+
+@dataclass(frozen=True)
+class Curve:
+    """How a stream changes in the base case: entropy [J/(kg K)] and temperature [K] along the way, shape (points,).
+
+    ``mixing`` marks a line that only joins the states of a process that passes through no equilibrium states of one
+    stream. Points the model cannot evaluate are NaN.
+    """
+
+    equipment: str
+    role: str
+    fluid: str
+    start: str
+    end: str
+    mixing: bool
+    entropy: NDArray[np.float64]
+    temperature: NDArray[np.float64]
+    pressure: NDArray[np.float64]
+    enthalpy: NDArray[np.float64]
+
+
+@dataclass
+class Solution:
+    """A solved plant; every array has shape (N,), column 0 being the base case.
+
+    ``values``: path to samples; phases are arrays of text. ``reasons``: why a value is NaN in the base case.
+    ``states``: state id to the property model's own State. ``accounts``: by owner (``equipment.X``, ``trains.T``,
+    ``total``). ``warnings``: faults that do not stop the evaluation, each with its path.
+    """
+
+    plant: Plant
+    pieces: Mapping[str, Piece]
+    values: dict[str, NDArray[Any]]
+    steps: list[Step] = field(default_factory=list)
+    assumptions: list[Assumption] = field(default_factory=list)
+    accounts: dict[str, Account] = field(default_factory=dict)
+    warnings: list[Fault] = field(default_factory=list)
+    reasons: dict[str, str] = field(default_factory=dict)
+    states: dict[str, Any] = field(default_factory=dict)
+
+    def curves(self, points: int = 41) -> list[Curve]:
+        """The way of every stream through its piece of equipment, base case."""
+        return [
+            self._curve(tag, stretch.role, stretch.start, stretch.end, stretch.along, stretch.mixing, points)
+            for tag, piece in self.pieces.items()
+            for stretch in piece.kind.stretches(piece)
+        ]
+
+    def _curve(self, tag: str, role: str, start: str, end: str, along: str, mixing: bool, points: int) -> Curve:
+        def ends(name: str) -> tuple[float, float]:
+            return float(self.values[f"states.{start}.{name}"][0]), float(self.values[f"states.{end}.{name}"][0])
+
+        fluid = self.plant.fluids[self.plant.states[start]]
+        (first, last), changing = ends("pressure"), f"specific_{along}"
+        share = np.linspace(0.0, 1.0, points)
+        pressure = first * (last / first) ** share
+        other = np.linspace(*ends(changing), points)
+        state = fluid.at(errors="mask", pressure=pressure, **{changing: other})
+        return Curve(
+            tag,
+            role,
+            self.plant.states[start],
+            start,
+            end,
+            mixing,
+            np.asarray(state.specific_entropy, float),
+            np.asarray(state.temperature, float),
+            pressure,
+            np.asarray(state.specific_enthalpy, float),
+        )

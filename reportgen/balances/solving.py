@@ -1,0 +1,323 @@
+"""The solution of a plant on the sample axis: one block after the other, each a step of the working."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from typing import Any
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from reportgen.balances.accounting import add_results
+from reportgen.balances.newton import Coupled, NoSolution
+from reportgen.balances.plant import Plant, pieces_of
+from reportgen.balances.properties import known_pair, state_from, why_missing
+from reportgen.balances.relations import Balance, Equation, Formula, token
+from reportgen.balances.solution import Assumption, Solution, Step
+from reportgen.balances.starts import Starts
+from reportgen.balances.structure import PROPERTIES, AnyRelation, Block, Network, PropertyRelation, build_network
+from reportgen.errors import Fault, SolutionError
+from reportgen.names import NAMES
+
+__all__ = ["solve"]
+
+Array = NDArray[np.float64]
+
+#: Fields of a state that are reported as values beside those the network solves for.
+REPORTED = (
+    "temperature",
+    "pressure",
+    "specific_enthalpy",
+    "specific_entropy",
+    "specific_internal_energy",
+    "density",
+    "specific_volume",
+    "quality",
+    "superheat",
+    "subcooling",
+    "compressibility_factor",
+    "isobaric_heat_capacity",
+    "isochoric_heat_capacity",
+    "speed_of_sound",
+)
+#: Properties whose line is shown in the working of a state.
+_SHOWN = ("pressure", "temperature", "specific_enthalpy", "specific_entropy", "density")
+_ESSENTIAL = ("power", "heat", "duty")
+
+
+def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
+    """Solve a plant.
+
+    Parameters
+    ----------
+    plant : fluids, states, equipment and trains.
+    givens : variable path to samples, shape (N,) or scalar [SI]; column 0 is the base case. Both
+        ``surroundings.temperature`` [K] and ``surroundings.pressure`` [Pa] must be among them.
+
+    Returns
+    -------
+    Solution with every value of the plant, shape (N,). Columns that cannot be solved hold NaN, with a warning.
+
+    Raises
+    ------
+    InputError : the plant itself is wrong, or a given path names nothing in it.
+    SolutionError : too little or too much is given, the base case has no solution or leaves the range of a fluid.
+    """
+    columns = max((np.size(value) for value in givens.values()), default=1)
+    values: dict[str, NDArray[Any]] = {
+        path: np.array(np.broadcast_to(np.asarray(value, dtype=float), (columns,))) for path, value in givens.items()
+    }
+    pieces = pieces_of(plant, frozenset(values))
+    network = build_network(plant, pieces, frozenset(values))
+    solution = Solution(plant, pieces, values)
+    _Run(solution, network, columns).blocks()
+    add_results(solution, network)
+    return solution
+
+
+class _Run:
+    """One pass through the blocks of a network."""
+
+    def __init__(self, solution: Solution, network: Network, columns: int) -> None:
+        self.solution = solution
+        self.values = solution.values
+        self.plant = solution.plant
+        self.columns = columns
+        self.network = network
+        self.assumed = {default.relation.key: default for default in network.defaults}
+        self.starts = Starts(self.plant, solution.pieces, self.values)
+        self.needed = _needed(network.blocks)
+        self.simultaneous = 0
+
+    def blocks(self) -> None:
+        """Solve all blocks in order and list the assumptions taken."""
+        listed: dict[str, Assumption] = {}
+        for default in self.network.defaults:
+            known = listed.get(default.key)
+            affects = (*known.affects, *default.affects) if known else default.affects
+            listed[default.key] = Assumption(default.key, default.text, default.owner, affects)
+        self.solution.assumptions.extend(listed.values())
+        for number, block in enumerate(self.network.blocks):
+            self._block(block, number in self.needed)
+        for state in self.plant.states:
+            if state not in self.solution.states:
+                self._state(state, ("pressure", "specific_enthalpy"))
+
+    def _block(self, block: Block, needed: bool) -> None:
+        if all(path in self.values for path in block.unknowns):
+            return
+        owners = {relation.state if isinstance(relation, PropertyRelation) else "" for relation in block.relations}
+        if len(owners) == 1 and (state := next(iter(owners))):
+            known = [name for name in PROPERTIES if f"states.{state}.{name}" in self.values]
+            pair = known_pair(self.plant.fluids[self.plant.states[state]], known)
+            if pair:
+                self._state(state, pair)
+                return
+        relation, unknown = block.relations[0], block.unknowns[0]
+        if len(block.relations) == 1 and self._direct(relation, unknown, needed):
+            return
+        self._together(block)
+
+    def _state(self, state: str, pair: tuple[str, str]) -> None:
+        """All properties of a state from two of them."""
+        fluid_id = self.plant.states[state]
+        fluid = self.plant.fluids[fluid_id]
+        prefix = f"states.{state}."
+        inputs = {name: self.values[prefix + name] for name in pair}
+        result = state_from(fluid, pair, inputs)
+        enthalpy = np.asarray(result.specific_enthalpy)
+        missing = ~np.isfinite(enthalpy)
+        if missing[0]:
+            told = " and ".join(f"{name.replace('_', ' ')} = {_number(inputs[name][0], name)}" for name in pair)
+            absent = [prefix + name for name in pair if not np.isfinite(inputs[name][0])]
+            reason = self.solution.reasons.get(absent[0]) if absent else None
+            if reason is None:
+                reason = f"it depends on {absent[0]}, which has no value" if absent else why_missing(result, 0)
+            message = f"State {state} ({fluid.title}) cannot be evaluated with {told}: {reason}"
+            raise SolutionError(Fault(message, f"states.{state}"))
+        if missing.any():
+            text = f"State {state} has no value in {int(missing.sum())} of {self.columns} columns: "
+            text += why_missing(result, int(np.argmax(missing)))
+            self.solution.warnings.append(Fault(text, f"states.{state}"))
+        solved = []
+        for name in REPORTED:
+            path = prefix + name
+            if path not in self.values:
+                self.values[path] = np.array(getattr(result, name), dtype=float)
+                solved.append(path)
+        self.values[f"{prefix}phase"] = np.asarray(result.phase)
+        solved.append(f"{prefix}phase")
+        self.solution.states[state] = result
+        arguments = r",\,".join(token(prefix + name) for name in pair)
+        equations = tuple(
+            Equation(token(prefix + name), rf"{NAMES[name].symbol}\left({arguments}\right)")
+            for name in _SHOWN
+            if prefix + name in solved
+        )
+        words = " and ".join(name.replace("_", " ") for name in pair)
+        if prefix + "specific_enthalpy" in solved or prefix + "temperature" in solved:
+            sentence = f"State {state} is fixed by its {words}; the equation of state gives the rest."
+        else:
+            sentence = f"State {state} is known; the equation of state gives its remaining properties."
+        uses = (*(prefix + name for name in pair), f"fluids.{fluid_id}")
+        basis = f"equation of state, {fluid.title}"
+        self.solution.steps.append(
+            Step(
+                f"{prefix}properties",
+                f"states.{state}",
+                f"State {state}",
+                sentence,
+                basis,
+                tuple(solved),
+                uses,
+                equations,
+            )
+        )
+
+    def _direct(self, relation: AnyRelation, unknown: str, needed: bool) -> bool:
+        """Solve one relation for one unknown in closed form; False when that cannot be done."""
+        fluids: tuple[str, ...] = ()
+        with np.errstate(all="ignore"):
+            if isinstance(relation, Balance) and relation.is_linear_in((unknown,)):
+                result = relation.direct(unknown, self.values)
+                equation = relation.solved(unknown)
+            elif isinstance(relation, Formula) and relation.output == unknown:
+                result = relation.evaluate(*(self.values[path] for path in relation.inputs))
+                equation, fluids = Equation(token(unknown), relation.latex), relation.fluids
+            elif isinstance(relation, Formula) and unknown in relation.inverses:
+                inverse = relation.inverses[unknown]
+                inputs = [relation.output if path == unknown else path for path in relation.inputs]
+                result = inverse.evaluate(*(self.values[path] for path in inputs))
+                equation, fluids = Equation(token(unknown), inverse.latex), relation.fluids
+            else:
+                return False
+        array = np.array(np.broadcast_to(np.asarray(result, dtype=float), (self.columns,)))
+        array[~np.isfinite(array)] = np.nan
+        others = tuple(path for path in relation.variables if path != unknown)
+        if np.isnan(array[0]):
+            self._absent(relation, unknown, others, needed)
+        self.values[unknown] = array
+        default = self.assumed.get(relation.key)
+        uses = (*others, *(f"fluids.{fluid}" for fluid in fluids))
+        if default and not others:
+            uses = (f"assumptions.{default.key}",)
+        if not np.isnan(array[0]):
+            self.solution.steps.append(
+                Step(
+                    relation.key,
+                    relation.owner,
+                    relation.name,
+                    relation.words(unknown),
+                    f"assumption: {default.text}" if default else relation.basis,
+                    (unknown,),
+                    uses,
+                    (equation,),
+                )
+            )
+        return True
+
+    def _absent(self, relation: Balance | Formula, unknown: str, others: Sequence[str], needed: bool) -> None:
+        """A value that cannot be had in the base case: a reason where nothing depends on it, else an error."""
+        empty = [path for path in others if np.isnan(self.values[path][0])]
+        if empty:
+            reason = self.solution.reasons.get(empty[0], f"{empty[0]} has no value")
+        elif isinstance(relation, Formula):
+            reason = relation.reason or "the formula has no value here"
+        else:
+            reason = f"the factor of {unknown} in the equation is zero, so that any value would satisfy it"
+        if needed:
+            numbers = ", ".join(f"{path} = {self.values[path][0]:.6g}" for path in others)
+            message = f"{relation.name} of {relation.owner} cannot be solved for {unknown}: {reason}."
+            raise SolutionError(Fault(message, unknown, found=numbers or None))
+        self.solution.reasons[unknown] = reason
+
+    def _together(self, block: Block) -> None:
+        """Solve several relations at once."""
+        problem = Coupled(block.relations, block.unknowns, self.values, self._fluid_of)
+        try:
+            found = problem.solve(list(self.starts.attempts(problem.tears)), self.columns)
+        except NoSolution as failure:
+            raise SolutionError(self._unsolved(block, failure)) from None
+        lost = int(np.isnan(np.array([found[path] for path in block.unknowns])).any(axis=0).sum())
+        if lost:
+            text = f"{lost} of {self.columns} columns of the relations solved together did not converge."
+            self.solution.warnings.append(Fault(text, block.unknowns[0]))
+        solves = tuple(path for path in block.unknowns if path not in self.values)
+        self.values.update((path, found[path]) for path in solves)
+        uses = [path for relation in block.relations for path in relation.variables if path not in block.unknowns]
+        fluids: list[str] = []
+        equations = []
+        owners: list[str] = []
+        for relation in block.relations:
+            if isinstance(relation, PropertyRelation):
+                prefix = f"states.{relation.state}."
+                fluids.append(f"fluids.{self.plant.states[relation.state]}")
+                symbol = NAMES[relation.output].symbol
+                arguments = rf"{token(prefix + 'pressure')},\,{token(prefix + 'specific_enthalpy')}"
+                equations.append(Equation(token(relation.path), rf"{symbol}\left({arguments}\right)"))
+            else:
+                if isinstance(relation, Formula):
+                    fluids.extend(f"fluids.{fluid}" for fluid in relation.fluids)
+                equations.append(relation.balanced())
+                owners.append(relation.owner)
+        self.simultaneous += 1
+        single = len(block.relations) == 1
+        names = ", ".join(dict.fromkeys(owner.split(".", 1)[-1] for owner in owners))
+        first = block.relations[0]
+        if single and not isinstance(first, PropertyRelation):
+            sentence, name = f"{first.sentence} Solved for the unknown by iteration.", first.name
+        else:
+            sentence = f"The relations of {names or 'the state'} share {len(solves)} unknowns and are solved together."
+            name = "Simultaneous relations"
+        method = "linear system" if problem.is_linear else "Newton's method on all relations"
+        self.solution.steps.append(
+            Step(
+                f"simultaneous.{self.simultaneous}",
+                owners[0] if owners else f"states.{block.unknowns[0].split('.')[1]}",
+                name,
+                sentence,
+                method,
+                solves,
+                tuple(dict.fromkeys([*uses, *fluids])),
+                tuple(equations),
+            )
+        )
+
+    def _unsolved(self, block: Block, failure: NoSolution) -> Fault:
+        relations = ", ".join(relation.key for relation in block.relations[:8])
+        more = f" and {len(block.relations) - 8} more" if len(block.relations) > 8 else ""
+        known = dict.fromkeys(
+            path for relation in block.relations for path in relation.variables if path in self.values
+        )
+        numbers = ", ".join(f"{path} = {self.values[path][0]:.6g}" for path in list(known)[:8])
+        return Fault(
+            f"The relations {relations}{more} have no common solution that could be found: {failure.reason}.",
+            failure.paths[0] if failure.paths else block.unknowns[0],
+            found=numbers or None,
+            hint=f"Unknown together: {', '.join(failure.paths)}.",
+        )
+
+    def _fluid_of(self, state: str) -> Any:
+        return self.plant.fluids[self.plant.states[state]]
+
+
+def _number(value: float, name: str) -> str:
+    entry = NAMES[name]
+    unit = "" if entry.unit == "1" else f" {entry.unit}"
+    return f"{value:.6g}{unit}"
+
+
+def _needed(blocks: Sequence[Block]) -> set[int]:
+    """Numbers of the blocks whose failure is an error: they give a state, a flow, a power or heat, or lead to one."""
+    wanted: set[str] = set()
+    found: set[int] = set()
+    for number in range(len(blocks) - 1, -1, -1):
+        block = blocks[number]
+        essential = len(block.relations) > 1 or any(
+            path in wanted or path.startswith("states.") or path.rsplit(".", 1)[-1] in _ESSENTIAL
+            for path in block.unknowns
+        )
+        if essential:
+            found.add(number)
+            wanted.update(path for relation in block.relations for path in relation.variables)
+    return found
