@@ -242,6 +242,10 @@ def test_refused_forms_say_why(text, dimension, message):
     assert re.search(message, refusal(text, dimension))
 
 
+def test_a_number_too_long_to_print_is_refused_without_printing_it():
+    assert "a whole number of 16610 bits" in refusal(10**5000, "ratio")
+
+
 def test_gauge_without_surroundings_says_what_is_needed():
     assert "[surroundings]" in refusal("7.2 bar(g)", "pressure", atmosphere=None)
 

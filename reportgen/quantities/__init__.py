@@ -3,8 +3,9 @@
 Only ``units.py`` of this package imports pint, and only when a unit is first converted.
 """
 
+from reportgen.quantities.details import Distribution, Evaluation
 from reportgen.quantities.display import Display, Shown
-from reportgen.quantities.reading import Distribution, Evaluation, Quantity, parse
+from reportgen.quantities.reading import Quantity, parse
 from reportgen.quantities.units import units_of, usual_units
 
 __all__ = ["Display", "Distribution", "Evaluation", "Quantity", "Shown", "parse", "units_of", "usual_units"]
