@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection
 
-from reportgen.fluids.gas_species import GasSpecies, library, resolve
+from reportgen.fluids.gas_species import GasSpecies, library, plain_name, resolve
 from reportgen.fluids.ideal_gases import IdealGas, ideal_gas
 
 __all__ = ["AIR_TOLERANCE", "describe", "names", "real_counterpart"]
@@ -54,9 +54,10 @@ def real_counterpart(gas: IdealGas, carried: Collection[str]) -> str | None:
 
     A single species has itself; a mixture has "air" when no mole fraction differs from dry air's by more than 0.015.
     """
+    real = {plain_name(name): name for name in carried}
     composition = gas.composition
     if composition is None:
-        return gas.substance if gas.substance in carried else None
+        return real.get(plain_name(gas.substance or ""))
     air = library().mixtures["air"].mole_fractions
     furthest = max(abs(composition.get(key, 0.0) - air.get(key, 0.0)) for key in {*composition, *air})
-    return "air" if furthest <= AIR_TOLERANCE and "air" in carried else None
+    return real.get("air") if furthest <= AIR_TOLERANCE else None

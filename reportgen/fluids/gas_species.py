@@ -21,6 +21,7 @@ __all__ = [
     "GasSpecies",
     "library",
     "mole_fractions",
+    "plain_name",
     "resolve",
 ]
 
@@ -109,7 +110,7 @@ def library() -> GasLibrary:
     )
 
 
-def _plain(name: str) -> str:
+def plain_name(name: str) -> str:
     """What spellings of one name have in common: no case, no spaces, hyphens or underscores."""
     return "".join(character for character in name.casefold() if character not in " -_")
 
@@ -127,10 +128,10 @@ def _names() -> tuple[dict[str, GasSpecies | GasMixture], dict[str, list[GasSpec
             names.append(entry.name)
             isomers.setdefault(entry.formula, []).append(entry)
         for name in names:
-            found.setdefault(_plain(name), entry)
+            found.setdefault(plain_name(name), entry)
     for formula, sharing in isomers.items():
         if len(sharing) == 1:
-            found.setdefault(_plain(formula), sharing[0])
+            found.setdefault(plain_name(formula), sharing[0])
     return found, isomers
 
 
@@ -142,7 +143,7 @@ def resolve(name: str) -> GasSpecies | GasMixture:
     found, isomers = _names()
     if not isinstance(name, str) or not name.strip() or len(name) > 80:
         raise InputError(Fault("The name of a gas is a short text.", found=repr(name)[:60], expected='such as "N2"'))
-    entry = found.get(_plain(name))
+    entry = found.get(plain_name(name))
     if entry is not None:
         return entry
     sharing = isomers.get(name.strip(), [])
@@ -154,7 +155,7 @@ def resolve(name: str) -> GasSpecies | GasMixture:
                 expected=" or ".join(species.key for species in sharing),
             )
         )
-    near = get_close_matches(_plain(name), found, n=1, cutoff=0.6)
+    near = get_close_matches(plain_name(name), found, n=1, cutoff=0.6)
     hint = None
     if near:
         close = found[near[0]]

@@ -554,7 +554,8 @@ def test_what_a_model_says_of_itself():
 
 
 def test_real_counterparts():
-    carried = {"air", "nitrogen", "water"}
+    carried = {"air", "nitrogen", "water", "carbon-dioxide"}
+    assert real_counterpart(ideal_gas("CO2"), carried) == "carbon-dioxide"
     assert real_counterpart(ideal_gas("N2"), carried) == "nitrogen"
     assert real_counterpart(ideal_gas("steam"), carried) == "water"
     assert real_counterpart(ideal_gas("SF6"), carried) is None
