@@ -184,7 +184,7 @@ def compare(plant: EvaluatedPlant, other: Mapping[str, float], condition: str) -
     """
     rank = {"negligible": 0, "noticeable": 1, "decisive": 2}
     best: tuple[tuple[float, ...], dict[str, Any]] | None = None
-    results = []
+    results: list[dict[str, Any]] = []
     for path in plant.values:
         name = path.rsplit(".", 1)[-1]
         if name not in COMPARED or not plant.has(path) or not np.isfinite(other.get(path, np.nan)):
@@ -195,7 +195,7 @@ def compare(plant: EvaluatedPlant, other: Mapping[str, float], condition: str) -
             difference = 0.0
         verdict = magnitude(difference, estimate.expanded_uncertainty, estimate.value)
         measure = estimate.expanded_uncertainty if estimate.expanded_uncertainty > 0.0 else abs(estimate.value)
-        entry = {
+        entry: dict[str, Any] = {
             "path": path,
             "model_value": estimate.value,
             "other_value": changed,
@@ -211,15 +211,15 @@ def compare(plant: EvaluatedPlant, other: Mapping[str, float], condition: str) -
             best = (weighed, entry)
     if best is None:
         return None
-    entry = best[1]
+    heaviest = best[1]
     words = {
         "negligible": "no result changes noticeably",
         "noticeable": "one result or more changes noticeably",
         "decisive": "one result or more changes by more than its uncertainty",
     }
-    finding = f"{condition} {words[entry['verdict']]}; shown is the one that changes most."
+    finding = f"{condition} {words[heaviest['verdict']]}; shown is the one that changes most."
     return {
-        **entry,
+        **heaviest,
         "finding": finding,
         "text": f"Rule: {MAGNITUDE_RULE}.",
         "results": sorted(results, key=lambda item: item["path"]),

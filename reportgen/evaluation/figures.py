@@ -16,9 +16,9 @@ import numpy.typing as npt
 from reportgen.evaluation.evaluated import EvaluatedPlant
 
 if TYPE_CHECKING:
-    from reportgen.balances.relations import Stretch
+    from reportgen.balances import Solution
 
-__all__ = ["bar_figures", "isobar", "process_path", "saturation_dome", "temperature_entropy_figures"]
+__all__ = ["bar_figures", "isobar", "saturation_dome", "temperature_entropy_figures"]
 
 Array = npt.NDArray[np.float64]
 Curve = dict[str, Any]
@@ -35,16 +35,15 @@ SAME_PRESSURE = 1e-3
 MARGIN = 0.35
 
 
-def temperature_entropy_figures(
-    plant: EvaluatedPlant, stretches: Mapping[str, Sequence[Stretch]]
-) -> list[dict[str, Any]]:
+def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> list[dict[str, Any]]:
     """One T–s figure for each fluid that has a state with a known temperature and entropy.
 
     Args:
         plant: the solved plant (base case).
-        stretches: equipment tag to the changes of its streams.
+        solution: knows the way of every stream through its piece.
     """
     figures = []
+    curves = solution.curves(PATH_SAMPLES)
     for identifier, fluid in plant.fluids.items():
         points = [point for state in plant.state_fluids if (point := _point(plant, state, identifier)) is not None]
         if not points:
@@ -52,11 +51,14 @@ def temperature_entropy_figures(
         span = _entropy_span(points, fluid.gas_constant)
         pressures = _distinct(plant.samples(f"states.{point['state']}.pressure")[0] for point in points)
         paths = [
-            {"equipment": tag, "role": stretch.role, "mixing": stretch.mixing, **curve}
-            for tag, streams in stretches.items()
-            for stretch in streams
-            if plant.state_fluids[stretch.start] == identifier == plant.state_fluids[stretch.end]
-            and (curve := _process(plant, stretch)) is not None
+            {
+                "equipment": curve.equipment,
+                "role": curve.role,
+                "mixing": curve.mixing,
+                **_curve(curve.entropy, curve.temperature),
+            }
+            for curve in curves
+            if curve.fluid == identifier
         ]
         dome = saturation_dome(fluid)
         parts = ["Temperature against specific entropy", f"entropy zero: {fluid.entropy_zero}"]
@@ -171,40 +173,6 @@ def isobar(fluid: Any, pressure: float, lowest: float, highest: float) -> Curve:
         entropy = np.unique([*entropy, *(corner for corner in corners if lowest < corner < highest)])
     state = fluid.at(pressure=np.full_like(entropy, pressure), specific_entropy=entropy, errors="mask")
     return _curve(entropy, np.asarray(state.temperature))
-
-
-def process_path(fluid: Any, along: str, start: Mapping[str, float], end: Mapping[str, float]) -> Curve:
-    """States that a stream passes between two states, evenly along the path.
-
-    ``along`` is ``"enthalpy"`` or ``"entropy"``: that property changes evenly with ln p; at constant pressure it
-    changes evenly by itself.
-
-    Args:
-        fluid: property model.
-        along: the property that changes evenly.
-        start, end: pressure [Pa], temperature [K], specific_enthalpy [J/kg], specific_entropy [J/(kg·K)].
-    """
-    part = np.linspace(0.0, 1.0, PATH_SAMPLES)
-    name = f"specific_{along}"
-    pressure = np.exp((1.0 - part) * np.log(start["pressure"]) + part * np.log(end["pressure"]))
-    level = (1.0 - part) * start[name] + part * end[name]
-    state = fluid.at(pressure=pressure, errors="mask", **{name: level})
-    entropy = np.array(state.specific_entropy, dtype=float)
-    temperature = np.array(state.temperature, dtype=float)
-    for index, edge in ((0, start), (-1, end)):
-        entropy[index], temperature[index] = edge["specific_entropy"], edge["temperature"]
-    return _curve(entropy, temperature)
-
-
-def _process(plant: EvaluatedPlant, stretch: Stretch) -> Curve | None:
-    names = ("pressure", "temperature", "specific_enthalpy", "specific_entropy")
-    start, end = (
-        {name: float(plant.samples(f"states.{state}.{name}")[0]) for name in names}
-        for state in (stretch.start, stretch.end)
-    )
-    if not np.all(np.isfinite([*start.values(), *end.values()])):
-        return None
-    return process_path(plant.fluid_of(stretch.start), stretch.along, start, end)
 
 
 def _point(plant: EvaluatedPlant, state: str, fluid: str) -> dict[str, Any] | None:

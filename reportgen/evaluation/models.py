@@ -12,7 +12,7 @@ from reportgen.errors import Fault, InputError, ReportgenError
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Calculation, FluidSpec
 
-__all__ = ["located", "placed", "plant_of", "property_model", "property_models"]
+__all__ = ["located", "placed", "plant_of", "property_model", "property_models", "real_counterpart"]
 
 
 def property_model(specification: FluidSpec, heat_capacity: float | None = None) -> Any:
@@ -57,6 +57,14 @@ def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Pl
             for identifier, train in calculation.trains.items()
         },
     )
+
+
+def real_counterpart(model: Any) -> Any:
+    """Real fluid that an ideal gas can be tested against, or None where none of its composition is carried."""
+    from reportgen.fluids import gas_catalogue
+
+    name = gas_catalogue.real_counterpart(model, fluids.names())
+    return None if name is None else fluids.real_fluid(name)
 
 
 def placed(calculation: Calculation, error: ReportgenError) -> ReportgenError:

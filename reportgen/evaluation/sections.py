@@ -10,11 +10,12 @@ from reportgen.balances import kinds
 from reportgen.evaluation.evaluated import Connection
 
 if TYPE_CHECKING:
+    from reportgen.balances import Solution
     from reportgen.fluids.model import Fluid
     from reportgen.quantities import Quantity
     from reportgen.spec.calculation import Calculation, EquipmentSpec, Limits
 
-__all__ = ["calculation_section", "connections_of", "inputs_section", "plant_section", "train_of"]
+__all__ = ["accounts_section", "calculation_section", "connections_of", "inputs_section", "plant_section", "train_of"]
 
 
 def calculation_section(calculation: Calculation) -> dict[str, Any]:
@@ -176,3 +177,28 @@ def _fluid(model: Fluid, position: int) -> dict[str, Any]:
             },
         },
     }
+
+
+def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, Any]:
+    """Entropy accounts of the trains, or of the whole plant where the file has no trains [W/K]."""
+    owners = {f"trains.{identifier}": identifier for identifier in calculation.trains} or {"total": "total"}
+    section = {}
+    for owner, identifier in owners.items():
+        account = solution.accounts.get(owner)
+        if account is None:
+            continue
+        sides: dict[str, list[dict[str, Any]]] = {
+            name: [
+                {"label": entry.label, "path": entry.path, "value": float(entry.amount[0])}
+                for entry in account.side(side)
+            ]
+            for name, side in (("entering", "in"), ("generated", "generated"), ("leaving", "out"))
+        }
+        section[identifier] = {
+            "title": account.title,
+            "complete": account.complete,
+            **sides,
+            "sum_entering": sum(line["value"] for line in sides["entering"]),
+            "sum_leaving": sum(line["value"] for line in sides["leaving"]),
+        }
+    return section

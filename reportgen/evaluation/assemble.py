@@ -1,0 +1,176 @@
+"""From a calculation to its Record: the order of the steps, and nothing else.
+
+inputs ─► sample axis ─► balances (one solution of all columns) ─► audits, cautions, criteria,
+assumption tests, budgets, figures ─► Record
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import replace
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from reportgen import balances
+from reportgen.errors import ReportgenError
+from reportgen.evaluation.assumptions import (
+    AutomaticAssumption,
+    Variant,
+    assumption_list,
+    boundary_temperature_test,
+    fluid_assumptions,
+)
+from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit
+from reportgen.evaluation.budget import budgets
+from reportgen.evaluation.cautions import catalogue, check_adjustments, raised
+from reportgen.evaluation.criteria import decided_criteria
+from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
+from reportgen.evaluation.models import placed, plant_of, property_model, property_models, real_counterpart
+from reportgen.evaluation.provenance import provenance
+from reportgen.evaluation.results import relations_section, values_section
+from reportgen.evaluation.sampling import SampleAxis, sample_axis
+from reportgen.evaluation.sections import (
+    accounts_section,
+    calculation_section,
+    connections_of,
+    inputs_section,
+    plant_section,
+    train_of,
+)
+from reportgen.quantities import Display
+from reportgen.record import Record
+from reportgen.spec import CALCULATION_FILE
+
+if TYPE_CHECKING:
+    from reportgen.balances import Plant, Solution
+    from reportgen.spec.calculation import Calculation
+
+__all__ = ["evaluate"]
+
+
+def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
+    """Evaluate one calculation.
+
+    Args:
+        calculation: as read by ``spec.read``.
+        folder: where the calculation stands, for the commit of its files; None leaves the commit out.
+
+    Raises:
+        InputError: an adjustment, a correlation, a criterion or a fluid that cannot be used.
+        SolutionError, RangeError: the plant cannot be solved; every fault with its place in the file.
+    """
+    check_adjustments(catalogue(), calculation.cautions, CALCULATION_FILE)
+    axis = sample_axis(
+        calculation.inputs,
+        calculation.uncertainty.correlations,
+        calculation.uncertainty.coverage_factor,
+        CALCULATION_FILE,
+    )
+    models = property_models(calculation)
+    definition = plant_of(calculation, models)
+    try:
+        solution = balances.solve(definition, axis.givens)
+    except ReportgenError as error:
+        raise placed(calculation, error) from error
+    plant = _evaluated(calculation, models, axis, solution)
+    totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
+    criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
+    automatic = _automatic(calculation, plant, solution, _variant(definition, axis))
+    accounts = accounts_section(calculation, solution)
+    summary = _summary(calculation, plant, totals)
+    relations = relations_section(plant, solution, Display(calculation.units))
+    return Record(
+        {
+            "calculation": calculation_section(calculation),
+            "plant": plant_section(calculation, models, solution.values),
+            "inputs": inputs_section(calculation),
+            "values": values_section(plant, solution, calculation.inputs),
+            "relations": relations,
+            "solution_order": list(relations),
+            "assumptions": assumption_list(calculation.assumptions, automatic),
+            "cautions": raised(catalogue(), plant, calculation.cautions),
+            "audits": {
+                "second_law": second_law_audit(plant, totals),
+                "closure": closure_audit(plant, totals),
+                "warnings": [
+                    {"path": fault.path, "text": fault.message, "hint": fault.hint} for fault in solution.warnings
+                ],
+            },
+            "accounts": accounts,
+            "criteria": criteria,
+            "summary": summary,
+            "uncertainty_budget": budgets(plant, dict.fromkeys([*summary, *(entry["path"] for entry in criteria)])),
+            "figures": [
+                *temperature_entropy_figures(plant, solution),
+                *bar_figures(plant, train_of(calculation), accounts),
+            ],
+            "provenance": provenance(calculation.files, models.values(), folder),
+        }
+    )
+
+
+def _evaluated(
+    calculation: Calculation, models: Mapping[str, Any], axis: SampleAxis, solution: Solution
+) -> EvaluatedPlant:
+    pieces = solution.pieces
+    return EvaluatedPlant(
+        axis=axis,
+        values=solution.values,
+        fluids=models,
+        state_fluids={identifier: state.fluid for identifier, state in calculation.states.items()},
+        kinds={tag: piece.kind for tag, piece in calculation.equipment.items()},
+        connections={tag: connections_of(piece) for tag, piece in calculation.equipment.items()},
+        power_signs={tag: piece.kind.power_sign for tag, piece in pieces.items()},
+        heats={tag: tuple(piece.kind.heats(piece)) for tag, piece in pieces.items()},
+        limits={tag: piece.limits for tag, piece in calculation.equipment.items() if piece.limits is not None},
+        trains={identifier: train.equipment for identifier, train in calculation.trains.items()},
+    )
+
+
+def _variant(definition: Plant, axis: SampleAxis) -> Variant:
+    """Solves the base case with some fluids and some givens replaced."""
+
+    def solve(fluids: Mapping[str, Any], givens: Mapping[str, float]) -> Mapping[str, float]:
+        base = {path: float(samples[0]) for path, samples in axis.givens.items()}
+        changed = replace(definition, fluids={**definition.fluids, **fluids})
+        values = balances.solve(changed, {**base, **givens}).values
+        return {path: float(array.flat[0]) for path, array in values.items() if array.dtype.kind == "f"}
+
+    return solve
+
+
+def _automatic(
+    calculation: Calculation, plant: EvaluatedPlant, solution: Solution, variant: Variant
+) -> list[AutomaticAssumption]:
+    """Assumptions of the property models, then those the balances took, each with its test where there is one."""
+    found = fluid_assumptions(plant, calculation.fluids, variant, real_counterpart, property_model)
+    for item in solution.assumptions:
+        port = next(
+            (port for ports in plant.heats.values() for port in ports if port.entropy in item.affects),
+            None,
+        )
+        test = None
+        if port is not None and item.owner.startswith("equipment."):
+            test = boundary_temperature_test(plant, item.owner.split(".", 1)[1], port.temperature, variant)
+        found.append(AutomaticAssumption(item.id, item.text, "not stated in the file", item.affects, test))
+    return found
+
+
+def _summary(calculation: Calculation, plant: EvaluatedPlant, totals: list[str]) -> list[str]:
+    """Headline results: generation, lost work and power of each piece, then of trains and the whole.
+
+    Sums over a single piece repeat what the piece says and are left out.
+    """
+    owners = [f"equipment.{tag}" for tag in plant.kinds]
+    owners += [f"trains.{name}" for name, tags in plant.trains.items() if len(tags) > 1]
+    owners += ["total"] if len(totals) > 1 else []
+    found = []
+    for owner in owners:
+        names = ["entropy_generation", "lost_work", "power"]
+        if owner.startswith("equipment.") and f"{owner}.isentropic_efficiency" not in calculation.inputs:
+            names.append("isentropic_efficiency")
+        found += [path for name in names if (path := f"{owner}.{name}") in plant.values]
+    return [path for path in found if np.isfinite(plant.samples(path)[0]) or path.endswith("entropy_generation")]

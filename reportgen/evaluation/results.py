@@ -1,0 +1,125 @@
+"""Values and relations of the record: every number with its origin, every step of the working with its formulae."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.sampling import ATMOSPHERE
+from reportgen.evaluation.working import TOKEN, with_numbers, with_symbols
+from reportgen.names import name_of, symbol_of
+from reportgen.quantities import Display
+
+if TYPE_CHECKING:
+    from reportgen.balances import Equation, Solution, Step
+    from reportgen.spec.calculation import Input
+
+__all__ = ["relations_section", "values_section"]
+
+#: Residuals of the arithmetic: what an input contributes to them is rounding, not uncertainty.
+RESIDUALS = ("closure", "energy_imbalance", "entropy_imbalance", "mass_imbalance")
+
+
+def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[str, Input]) -> dict[str, Any]:
+    """Every value of the base case with unit, symbol, uncertainty and the paths it was computed from.
+
+    The ``from`` chains end in inputs, in fluids (``fluids.<id>``) and in listed assumptions (``assumptions.<id>``). A
+    value that is an input itself has an empty ``from``, or, as a gauge reading, the atmosphere.
+    """
+    origins, relations = _origins(solution.steps, inputs)
+    numbers = [path for path, array in solution.values.items() if array.dtype.kind == "f"]
+    deviations = dict(
+        zip(
+            numbers,
+            plant.axis.standard_uncertainties(np.array([plant.samples(path) for path in numbers])),
+            strict=True,
+        )
+    )
+    section = {}
+    for path, array in solution.values.items():
+        name = name_of(path)
+        entry: dict[str, Any] = {
+            "symbol": symbol_of(path),
+            "from": list(origins.get(path, ())),
+            "relation": relations.get(path),
+        }
+        if path in deviations:
+            value, deviation = float(array[0]), float(deviations[path])
+            known = deviation > 0.0 and path.rsplit(".", 1)[-1] not in RESIDUALS
+            entry |= {
+                "value": value,
+                "unit": "1" if name is None else name.unit,
+                "dimension": "ratio" if name is None else name.dimension,
+                "standard_uncertainty": deviation if known else None,
+            }
+            if np.isnan(value):
+                entry["reason"] = solution.reasons.get(path, "the property has no meaning in this state")
+        else:
+            entry |= {"value": str(array.flat[0]), "unit": "", "dimension": None, "standard_uncertainty": None}
+        section[path] = entry
+    return section
+
+
+def relations_section(plant: EvaluatedPlant, solution: Solution, display: Display) -> dict[str, Any]:
+    """Every step with its sentence and its formulae in symbols and in numbers.
+
+    ``latex_lines`` holds for each equation [left side, right side in symbols, right side in numbers, result]. Where
+    the left side is a sum (relations solved together), numbers stand for both sides, and there is no result.
+    """
+
+    def number(path: str) -> str:
+        return _number(plant, display, path)
+
+    section = {}
+    for step in solution.steps:
+        lines = [_line(equation, number, plant, display) for equation in step.equations]
+        section[step.key] = {
+            "owner": step.owner,
+            "equipment": step.owner.split(".", 1)[1] if step.owner.startswith("equipment.") else None,
+            "name": step.name,
+            "sentence": step.sentence,
+            "basis": step.basis,
+            "solves": list(step.solves),
+            "uses": list(step.uses),
+            "latex_symbols": [f"{line[0]} = {line[1]}" for line in lines],
+            "latex_numbers": [" = ".join(part for part in (line[0], line[2], line[3]) if part) for line in lines],
+            "latex_lines": lines,
+        }
+    return section
+
+
+def _origins(steps: list[Step], inputs: Mapping[str, Input]) -> tuple[dict[str, tuple[str, ...]], dict[str, str]]:
+    """Path to the paths it came from, and path to the key of its relation."""
+    origins: dict[str, tuple[str, ...]] = {}
+    relations: dict[str, str] = {}
+    for item in inputs.values():
+        for path in item.applies_to:
+            atmosphere = (ATMOSPHERE,) if item.quantity.gauge and path != ATMOSPHERE else ()
+            origins[path] = atmosphere if path == item.path else (item.path, *atmosphere)
+    for step in steps:
+        for path in step.solves:
+            origins.setdefault(path, step.uses)
+            relations.setdefault(path, step.key)
+    return origins, relations
+
+
+def _line(equation: Equation, number: Any, plant: EvaluatedPlant, display: Display) -> list[str]:
+    symbols, numbers = with_symbols(equation.right), with_numbers(equation.right, number)
+    solved = TOKEN.fullmatch(equation.left.strip())
+    if solved is None:
+        return [with_symbols(equation.left), symbols, f"{with_numbers(equation.left, number)} = {numbers}", ""]
+    path = solved.group(1)
+    return [with_symbols(equation.left), symbols, numbers, _number(plant, display, path, with_uncertainty=True)]
+
+
+def _number(plant: EvaluatedPlant, display: Display, path: str, *, with_uncertainty: bool = False) -> str:
+    """LaTeX of a value with its unit; results with as many digits as their uncertainty allows."""
+    name = name_of(path)
+    dimension = "ratio" if name is None else name.dimension
+    if not with_uncertainty or path.rsplit(".", 1)[-1] in RESIDUALS:
+        return display.show(float(plant.samples(path)[0]), dimension).latex
+    estimate = plant.estimate(path)
+    return display.show(estimate.value, dimension, estimate.expanded_uncertainty or None).latex
