@@ -20,6 +20,7 @@ __all__ = ["estimated_total", "estimated_width", "mathml", "pieces", "split"]
 
 _LARGE_OPERATORS = {"∑", "∏"}
 _ACCENTS = {"˙", "¨", "¯", "―", "^", "ˆ", "~", "˜", "→"}
+_CHILDREN = {"mfrac": 2, "msub": 2, "msup": 2, "msubsup": 3, "mover": 2, "munder": 2, "munderover": 3}
 _FUNCTIONS = {"ln", "log", "exp", "sin", "cos", "tan", "max", "min"}
 _WORD = re.compile(r"\\mathrm\{([^{}\\^]*)\}")
 _BREAKS = ("=", "+", "-", r"\approx", r"\leq", r"\geq", r"\le", r"\ge", r"\pm")
@@ -54,6 +55,10 @@ def mathml(latex: str, infix_start: bool = False) -> str:
         root = converter.convert_to_element(_words_as_text(latex))
     except Exception as error:
         raise InputError(Fault("A formula cannot be set.", found=latex, hint=str(error))) from error
+    parts = list(root.iter())
+    unknown = any((part.text or "").startswith("\\") for part in parts)
+    if unknown or any(len(part) != _CHILDREN.get(part.tag, len(part)) for part in parts):
+        raise InputError(Fault("A formula cannot be set: a command is unknown or incomplete.", found=latex))
     root.attrib.clear()
     root.set("displaystyle", "true")
     _mend(root)

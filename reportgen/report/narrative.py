@@ -59,7 +59,7 @@ def render_narrative(name: str, presenter: Presenter) -> Markup | None:
             text += part
         else:
             path, options = part
-            text += presenter.number(path, options.get("unit", True), options.get("uncertainty", False))
+            text += str(presenter.number(path, options.get("unit", True), options.get("uncertainty", False)))
         if len(text) > LONGEST_RESULT:
             raise InputError(
                 _fault(f"The text grows beyond {LONGEST_RESULT} characters.", narrative, name, narrative["line"])

@@ -126,6 +126,20 @@ class Presenter:
             return Markup('<span class="n">{}</span>').format(text)
         return Markup('<a class="n" href="#{}">{}</a>').format(target, text)
 
+    def caution_facts(self, caution: Mapping[str, Any]) -> list[tuple[str, str]]:
+        """Value, limit and margin of a caution as (word, text), as far as it has them."""
+        dimension, uncertainty = caution["dimension"], caution["expanded_uncertainty"]
+        facts = []
+        if dimension and caution["value"] is not None:
+            facts.append(("value", self.with_unit(caution["value"], dimension, uncertainty)))
+        if dimension and caution["limit"] is not None:
+            facts.append(("limit", self.with_unit(caution["limit"], dimension)))
+        if dimension and caution["margin"] is not None:
+            facts.append(
+                ("margin", self.show(caution["margin"], self.difference_dimension(dimension), uncertainty).text)
+            )
+        return facts
+
     def symbol(self, path: str) -> Markup:
         """Symbol of a value as MathML; the path itself when the record gives none."""
         entry = self.record.values.get(path)

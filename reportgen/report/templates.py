@@ -6,9 +6,9 @@ import base64
 import re
 from functools import lru_cache
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
-from markupsafe import Markup
+from markupsafe import Markup, escape
 
 from reportgen.errors import Fault, ReportgenError
 
@@ -25,6 +25,9 @@ FACES = (
     ("math.woff2", "Ledger Pagella Math", "400", "normal"),
 )
 _STYLES = ("page.css", "title-block.css", "tables.css", "sections.css", "register.css", "narrow.css", "print.css")
+
+_POWER = re.compile(r"(×(?:\N{NO-BREAK SPACE}|&nbsp;)10)([⁻⁰¹²³⁴⁵⁶⁷⁸⁹]+)")
+_LOWERED = str.maketrans("⁻⁰¹²³⁴⁵⁶⁷⁸⁹", "−0123456789")
 
 
 def templates_folder() -> Path:
@@ -50,6 +53,7 @@ def environment() -> Environment:
         loader=FileSystemLoader(templates_folder(), encoding="utf-8"),
         autoescape=lambda name: bool(name and ".html" in name),
         undefined=StrictUndefined,
+        finalize=raised,
         trim_blocks=True,
         lstrip_blocks=True,
     )
@@ -66,6 +70,13 @@ def style(foot: str) -> Markup:
     parts += [(templates_folder() / "css" / name).read_text("utf-8") for name in _STYLES]
     parts.append(jinja.get_template("css/sheet.css.jinja").render(foot=foot))
     return Markup("\n".join(parts))
+
+
+def raised(value: Any) -> Any:
+    """Powers of ten with their exponents raised by markup: the face has not all raised digits."""
+    if not isinstance(value, str) or "10" not in value or not _POWER.search(value):
+        return value
+    return Markup(_POWER.sub(lambda match: f"{match[1]}<sup>{match[2].translate(_LOWERED)}</sup>", escape(value)))
 
 
 def css_string(text: str) -> str:

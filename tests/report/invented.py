@@ -298,6 +298,33 @@ def figure_data(build: Builder) -> list[dict[str, Any]]:
     ]
 
 
+def budget_of(value: float) -> dict[str, Any]:
+    """A budget with invented shares."""
+    shares = {"states.1.mass_flow": 0.9, "states.1.pressure": 0.1}
+    steps = {"states.1.mass_flow": FLOW * 0.01, "states.1.pressure": 15000.0}
+    combined = 0.0105 * value
+    return {
+        "value": value,
+        "standard_uncertainty": combined,
+        "expanded_uncertainty": 2 * combined,
+        "coverage_factor": 2.0,
+        "coverage_probability": 0.9545,
+        "effective_degrees_of_freedom": None,
+        "contributions": [
+            {
+                "input": path,
+                "standard_uncertainty": steps[path],
+                "degrees_of_freedom": None,
+                "sensitivity": combined * share**0.5 / steps[path],
+                "contribution": combined * share**0.5,
+                "share": share,
+                "curvature": 1e-4 * combined,
+            }
+            for path, share in shares.items()
+        ],
+    }
+
+
 @functools.cache
 def _data() -> dict[str, Any]:
     build = Builder()
@@ -375,7 +402,8 @@ def _data() -> dict[str, Any]:
             [
                 r"h_{\mathrm{3}}",
                 r"h_{\mathrm{1}} - \eta_{s,\mathrm{TG-2}} \left(h_{\mathrm{1}} - h_{s,\mathrm{TG-2}}\right)",
-                rf"{enthalpy_text(h1)} - 0.72 \left({h1 / 1e3:.6g} - {ideal / 1e3:.6g}\right)\,\mathrm{{kJ\,kg^{{-1}}}}",
+                rf"{enthalpy_text(h1)} - 0.72 \left({h1 / 1e3:.6g} - {ideal / 1e3:.6g}\right)"
+                r"\,\mathrm{kJ\,kg^{-1}}",
                 enthalpy_text(outlet),
             ]
         ],
@@ -486,7 +514,7 @@ def _data() -> dict[str, Any]:
             "method": "first-order",
             "narratives": {
                 "purpose": {
-                    "text": "Saltbeck Energy lets steam down from the header to the mill main through valve **PRV-3**.\n"
+                    "text": "Saltbeck Energy lets steam down from the header to the mill main through **PRV-3**.\n"
                     "The review asks what the valve forgoes, and what turbine **TG-2** would win in its place.",
                     "file": "calculation.toml",
                     "line": 12,
@@ -535,8 +563,13 @@ def _data() -> dict[str, Any]:
                 "TG-2": equipment("turbine", "Back-pressure turbine", "Turbine", "turbine", "3", False),
             },
             "trains": {
-                "valve": {"title": "Letdown valve", "equipment": ["PRV-3"], "alternative_to": None},
-                "turbine": {"title": "Back-pressure turbine", "equipment": ["TG-2"], "alternative_to": "valve"},
+                "valve": {"title": "Letdown valve", "equipment": ["PRV-3"], "alternative_to": None, "position": 0},
+                "turbine": {
+                    "title": "Back-pressure turbine",
+                    "equipment": ["TG-2"],
+                    "alternative_to": "valve",
+                    "position": 1,
+                },
             },
             "surroundings": {"temperature": "surroundings.temperature", "pressure": "surroundings.pressure"},
         },
@@ -607,7 +640,7 @@ def _data() -> dict[str, Any]:
             {
                 "id": "T19",
                 "severity": "warning",
-                "text": "Inlet of PRV-3 above 90 % of the maximum allowable pressure: show relief and operating margin.",
+                "text": "Inlet of PRV-3 above 90 % of the maximum allowable pressure: show the operating margin.",
                 "path": "states.1.pressure",
                 "value": 40.013e5,
                 "limit": 44e5,
@@ -703,7 +736,7 @@ def _data() -> dict[str, Any]:
             "equipment.TG-2.power",
             "total.entropy_generation",
         ],
-        "uncertainty_budget": {},
+        "uncertainty_budget": {"equipment.PRV-3.entropy_generation": budget_of(valve)},
         "figures": figure_data(build),
         "provenance": {
             "program": {"name": "reportgen", "version": "0.1.0"},

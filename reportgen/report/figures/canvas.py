@@ -119,7 +119,8 @@ class Drawing:
             )
         text = stream.getvalue()
         body = text[text.index(">", text.index("<svg")) + 1 : text.rindex("</svg>")]
-        body = re.sub(r"\s*<metadata>.*?</metadata>", "", body, flags=re.DOTALL)
+        # The style element would hold for the whole page: its two properties go to the figure itself.
+        body = re.sub(r"\s*<defs>\s*<style.*?</style>\s*</defs>", "", body, count=1, flags=re.DOTALL)
         prefix = anchor("figure", identifier)
         body = re.sub(r'\bid="', f'id="{prefix}.', body)
         body = re.sub(r"url\(#", f"url(#{prefix}.", body)
@@ -129,6 +130,7 @@ class Drawing:
         body = re.sub(r"\n\s*", "\n", body)
         return (
             f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {self.width:g} {self.height:g}" role="img" '
+            'stroke-linejoin="round" stroke-linecap="butt" '
             f'aria-labelledby="{prefix}.title {prefix}.desc">'
             f'<title id="{prefix}.title">{escape(title)}</title>'
             f'<desc id="{prefix}.desc">{escape(description)}</desc>{body}</svg>'

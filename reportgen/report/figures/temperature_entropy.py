@@ -237,9 +237,9 @@ def _labels(drawing: Drawing, curves: _Curves, pen: _Pen, detail: Box | None) ->
             placed = pen.placement.place(Label("saturation", width, height, anchors, 0.0))
             _set(drawing, placed, color=GREY, size=SMALL)
     if detail is not None:
-        corners = pen.display([(detail.left, detail.bottom)])
+        foot = pen.display([(x, detail.bottom) for x in ((detail.left + detail.right) / 2, detail.right, detail.left)])
         width, height = drawing.text_size("enlarged below", SMALL)
-        placed = pen.placement.place(Label("enlarged below", width, height, corners, 225.0))
+        placed = pen.placement.place(Label("enlarged below", width, height, foot, 270.0))
         _set(drawing, placed, color=GREY, size=SMALL)
 
 

@@ -9,7 +9,7 @@ from markupsafe import Markup
 
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order
 
-__all__ = ["accounts", "closure", "cross_checks", "uncertainty_budget"]
+__all__ = ["accounts", "closure"]
 
 
 def accounts(presenter: Presenter) -> dict[str, Any] | None:
@@ -115,13 +115,3 @@ def closure(presenter: Presenter) -> dict[str, Any] | None:
         for entry in presenter.record.data["audits"].get("closure", [])
     ]
     return {"rows": rows} if rows else None
-
-
-def uncertainty_budget(presenter: Presenter) -> dict[str, Any] | None:
-    """For each key result what every input contributes to its standard uncertainty."""
-    return None
-
-
-def cross_checks(presenter: Presenter) -> dict[str, Any] | None:
-    """Results computed a second way."""
-    return None

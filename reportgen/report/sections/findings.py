@@ -48,15 +48,6 @@ def cautions(presenter: Presenter) -> dict[str, Any]:
 
 
 def _caution(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
-    dimension, uncertainty = entry["dimension"], entry["expanded_uncertainty"]
-    facts: list[tuple[str, str]] = []
-    if dimension and entry["value"] is not None:
-        facts.append(
-            ("value", presenter.link(entry["path"], presenter.with_unit(entry["value"], dimension, uncertainty)))
-        )
-    if dimension and entry["limit"] is not None:
-        facts.append(("limit", presenter.with_unit(entry["limit"], dimension)))
-    if dimension and entry["margin"] is not None:
-        margin = presenter.show(entry["margin"], presenter.difference_dimension(dimension), uncertainty)
-        facts.append(("margin", margin.text))
-    return {**entry, "facts": facts}
+    facts: list[tuple[str, str]] = presenter.caution_facts(entry)
+    linked = [(name, presenter.link(entry["path"], text) if name == "value" else text) for name, text in facts]
+    return {**entry, "facts": linked}

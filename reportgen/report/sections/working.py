@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import defaultdict
 from collections.abc import Iterable
 from typing import Any
 
@@ -78,22 +79,29 @@ def step_anchors(presenter: Presenter) -> dict[str, tuple[int, str]]:
 def working(presenter: Presenter) -> dict[str, Any] | None:
     """Steps in solution order: sentence, equation in symbols, numbers and result, basis, and what it used."""
     relations = presenter.record.data["relations"]
-    steps = [_step(number, name, relations[key], presenter) for key, (number, name) in step_anchors(presenter).items()]
+    results: dict[str, list[str]] = defaultdict(list)
+    for key, relation in relations.items():
+        results[key] = [path for path in relation["solves"] if path in presenter.record.values]
+    for path, entry in presenter.record.values.items():
+        if entry["relation"] in relations and path not in results[entry["relation"]]:
+            results[entry["relation"]].append(path)
+    steps = [
+        _step(number, name, relations[key], results[key], presenter)
+        for key, (number, name) in step_anchors(presenter).items()
+    ]
     return {"steps": steps} if steps else None
 
 
-def _step(number: int, name: str, relation: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+def _step(number: int, name: str, relation: dict[str, Any], results: list[str], presenter: Presenter) -> dict[str, Any]:
     values = presenter.record.values
     lines = []
     shown = set()
     for line in relation["latex_lines"]:
-        path = next(
-            (path for path in relation["solves"] if path in values and values[path].get("symbol") == line[0]), None
-        )
+        path = next((path for path in results if values[path].get("symbol") == line[0]), None)
         if path is not None:
             shown.add(path)
         lines.append(_line(line, path))
-    others = [path for path in relation["solves"] if path not in shown]
+    others = [path for path in results if path not in shown]
     return {
         "number": number,
         "anchor": name,
