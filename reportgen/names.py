@@ -92,6 +92,8 @@ _ENTRIES = (
     Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
     Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Specific enthalpy at outlet pressure and inlet entropy"),
     Name("pressure_drop", r"\Delta p", "pressure_difference", "Pressure loss from inlet to outlet"),
+    Name("hot_pressure_drop", r"\Delta p_\mathrm{hot}", "pressure_difference", "Pressure loss of the hot stream"),
+    Name("cold_pressure_drop", r"\Delta p_\mathrm{cold}", "pressure_difference", "Pressure loss of the cold stream"),
     Name("pressure_ratio", r"r_p", "ratio", "Higher over lower pressure of the machine"),
     Name("entropy_generation", r"\dot S_\mathrm{gen}", "entropy_flow", "Entropy generation rate"),
     Name("entropy_with_heat", r"\dot S_Q", "entropy_flow", "Entropy carried by heat", _INTO),
@@ -123,7 +125,7 @@ def symbol_of(path: str) -> str:
     if entry is None:
         return r"\mathrm{" + parts[-1].replace("_", r"\ ") + "}"
     if parts[0] == "surroundings":
-        owner = "0"
+        owner = ",".join(["0", *(r"\mathrm{" + part + "}" for part in parts[1:-1])])
     elif parts[0] == "total":
         owner = r"\mathrm{total}"
     else:

@@ -19,6 +19,8 @@ if TYPE_CHECKING:
 
 __all__ = ["relations_section", "values_section"]
 
+#: Between the equations of one step.
+LINE_BREAK = r" \\ "
 #: Residuals of the arithmetic: what an input contributes to them is rounding, not uncertainty.
 RESIDUALS = ("closure", "energy_imbalance", "entropy_imbalance", "mass_imbalance")
 
@@ -84,8 +86,8 @@ def relations_section(plant: EvaluatedPlant, solution: Solution, display: Displa
             "basis": step.basis,
             "solves": list(step.solves),
             "uses": list(step.uses),
-            "latex_symbols": [f"{line[0]} = {line[1]}" for line in lines],
-            "latex_numbers": [" = ".join(part for part in (line[0], line[2], line[3]) if part) for line in lines],
+            "latex_symbols": LINE_BREAK.join(f"{line[0]} = {line[1]}" for line in lines),
+            "latex_numbers": LINE_BREAK.join(" = ".join(filter(None, (line[0], *line[2:]))) for line in lines),
             "latex_lines": lines,
         }
     return section

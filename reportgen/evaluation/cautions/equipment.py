@@ -126,7 +126,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
     "T32",
     "warning",
     "Temperature limits of the equipment",
-    source="the named data sheet; margin of 10 K: common practice",
+    source="margin of 10 K: common practice",
     limit=TEMPERATURE_MARGIN,
     dimension="temperature_difference",
 )
