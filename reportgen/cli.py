@@ -94,7 +94,7 @@ def _evaluated(folder: Path) -> Record:
     """The Record of one folder, its narratives checked."""
     from reportgen import evaluation, report, spec
 
-    record = evaluation.evaluate(spec.read(folder))
+    record = evaluation.evaluate(spec.read(folder), folder)
     report.check_narratives(record)
     return record
 

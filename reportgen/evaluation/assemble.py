@@ -24,7 +24,7 @@ from reportgen.evaluation.assumptions import (
 )
 from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit
 from reportgen.evaluation.budget import budgets
-from reportgen.evaluation.cautions import catalogue, check_adjustments, raised
+from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, raised, unevaluated
 from reportgen.evaluation.criteria import decided_criteria
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
@@ -74,7 +74,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
     try:
         solution = balances.solve(definition, axis.givens)
     except ReportgenError as error:
-        raise placed(calculation, error) from error
+        raise placed(calculation, error, models) from error
     plant = _evaluated(calculation, models, axis, solution)
     totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
     criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
@@ -91,13 +91,12 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             "relations": relations,
             "solution_order": list(relations),
             "assumptions": assumption_list(calculation.assumptions, automatic),
-            "cautions": raised(catalogue(), plant, calculation.cautions),
+            "cautions": in_order(
+                [*raised(catalogue(), plant, calculation.cautions), *map(unevaluated, solution.warnings)]
+            ),
             "audits": {
                 "second_law": second_law_audit(plant, totals),
                 "closure": closure_audit(plant, totals),
-                "warnings": [
-                    {"path": fault.path, "text": fault.message, "hint": fault.hint} for fault in solution.warnings
-                ],
             },
             "accounts": accounts,
             "criteria": criteria,

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from reportgen import balances, fluids
 from reportgen.errors import Fault, InputError, ReportgenError
+from reportgen.evaluation.cautions.fluid_states import freezing_hint
 
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Calculation, FluidSpec
@@ -67,9 +68,19 @@ def real_counterpart(model: Any) -> Any:
     return None if name is None else fluids.real_fluid(name)
 
 
-def placed(calculation: Calculation, error: ReportgenError) -> ReportgenError:
-    """The same error with file, line and column put to every fault that names a path."""
-    return type(error)([located(calculation, fault) for fault in error.faults])
+def placed(calculation: Calculation, error: ReportgenError, models: Mapping[str, Any]) -> ReportgenError:
+    """The same error with file, line and column put to every fault that names a path.
+
+    Faults of carbon dioxide states without a hint of their own get that of its freezing.
+    """
+    faults = []
+    for fault in error.faults:
+        parts = (fault.path or "").split(".")
+        state = calculation.states.get(parts[1]) if parts[0] == "states" and len(parts) > 1 else None
+        if state is not None and fault.hint is None:
+            fault = replace(fault, hint=freezing_hint(models[state.fluid]))
+        faults.append(located(calculation, fault))
+    return type(error)(faults)
 
 
 def located(calculation: Calculation, fault: Fault) -> Fault:

@@ -11,9 +11,17 @@ import importlib
 import pkgutil
 from functools import cache
 
-from reportgen.evaluation.cautions.entry import Caution, Finding, caution, check_adjustments, raised
+from reportgen.evaluation.cautions.entry import (
+    Caution,
+    Finding,
+    caution,
+    check_adjustments,
+    in_order,
+    raised,
+    unevaluated,
+)
 
-__all__ = ["Caution", "Finding", "catalogue", "caution", "check_adjustments", "raised"]
+__all__ = ["Caution", "Finding", "catalogue", "caution", "check_adjustments", "in_order", "raised", "unevaluated"]
 
 
 @cache

@@ -22,10 +22,13 @@ from reportgen.evaluation.evaluated import EvaluatedPlant
 if TYPE_CHECKING:
     from reportgen.spec.calculation import CautionAdjustment
 
-__all__ = ["Caution", "Finding", "Severity", "caution", "check_adjustments", "raised"]
+__all__ = ["Caution", "Finding", "Severity", "caution", "check_adjustments", "in_order", "raised", "unevaluated"]
 
 Severity = Literal["stop", "warning", "note"]
 
+
+#: Id of entries that no caution of the catalogue raised.
+UNEVALUATED = "N/E"
 
 ORDER: dict[Severity, int] = {"stop": 0, "warning": 1, "note": 2}
 
@@ -157,9 +160,29 @@ def raised(
             known = entries.get(key)
             if known is None or ORDER[entry["severity"]] < ORDER[known["severity"]]:
                 entries[key] = entry
-    return sorted(
-        entries.values(), key=lambda entry: (ORDER[entry["severity"]], entry["id"], entry["owner"], entry["path"])
-    )
+    return in_order(entries.values())
+
+
+def unevaluated(fault: Fault) -> dict[str, Any]:
+    """A warning of the solution as an entry beside the cautions: what is left out, and what to state for it."""
+    path = fault.path or ""
+    empty = dict.fromkeys(("value", "limit", "margin", "expanded_uncertainty", "dimension", "adjusted"))
+    return {
+        **empty,
+        "id": UNEVALUATED,
+        "severity": "warning",
+        "gist": "Not evaluated",
+        "text": " ".join(part for part in (fault.message, fault.hint) if part),
+        "owner": ".".join(path.split(".")[:2]),
+        "path": path,
+        "decided": True,
+        "source": "solution of the balances",
+    }
+
+
+def in_order(entries: Iterable[dict[str, Any]]) -> list[dict[str, Any]]:
+    """Record entries, stop first, then warning, then note."""
+    return sorted(entries, key=lambda entry: (ORDER[entry["severity"]], entry["id"], entry["owner"], entry["path"]))
 
 
 def _entry(item: Caution, finding: Finding, plant: EvaluatedPlant, reason: str | None) -> dict[str, Any] | None:

@@ -3,13 +3,17 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from reportgen.evaluation.cautions.entry import Finding, caution
 from reportgen.evaluation.evaluated import EvaluatedPlant
 
-__all__ = ["carbon_dioxide_freezes", "near_the_critical_point", "outside_the_model"]
+if TYPE_CHECKING:
+    from reportgen.fluids.model import Fluid
+
+__all__ = ["carbon_dioxide_freezes", "freezing_hint", "near_the_critical_point", "outside_the_model"]
 
 SPAN_WAGNER = "Span and Wagner 1996, https://doi.org/10.1063/1.555991"
 #: Triple point of carbon dioxide [K], [Pa]: Span and Wagner 1996, table 3 (from memory).
@@ -34,8 +38,7 @@ def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Find
     Looks at pure carbon dioxide only: in a mixture the frost point depends on the partial pressure.
     """
     for state in plant.state_fluids:
-        fluid = plant.fluid_of(state)
-        if (fluid.substance or "").lower().replace(" ", "").replace("-", "") not in {"co2", "carbondioxide"}:
+        if not _is_carbon_dioxide(plant.fluid_of(state)):
             continue
         yield Finding(
             f"states.{state}.temperature",
@@ -56,6 +59,20 @@ def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Find
                 "which may plug lines and relief paths.",
                 "pressure",
             )
+
+
+def freezing_hint(fluid: Fluid) -> str | None:
+    """What to think of when the property model refuses a state of carbon dioxide; None for other fluids."""
+    if not _is_carbon_dioxide(fluid):
+        return None
+    return (
+        f"Caution T02: at or below {CO2_TRIPLE_TEMPERATURE} K carbon dioxide is dry ice, and below "
+        f"{CO2_TRIPLE_PRESSURE / 1e5:.3f} bar it has no liquid."
+    )
+
+
+def _is_carbon_dioxide(fluid: Fluid) -> bool:
+    return (fluid.substance or "").lower().replace(" ", "").replace("-", "") in {"co2", "carbondioxide"}
 
 
 @caution("T22", "note", "Near the critical point", source="common practice", limit=1.0, dimension="ratio")
