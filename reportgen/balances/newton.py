@@ -16,6 +16,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from reportgen.balances.properties import state_from
 from reportgen.balances.relations import Balance, Formula
 from reportgen.balances.structure import AnyRelation, PropertyRelation
 
@@ -31,6 +32,7 @@ _TOLERANCE = 1e-10
 #: Relative displacement for differences: the square root of the rounding of property models (about 1e-13).
 _DISPLACEMENT = 1e-6
 _SPARSE_FROM = 120
+_SATURATION = ("quality", "superheat", "subcooling")
 
 #: Sizes below which a variable counts as small, in SI units, by the last part of its path.
 _TYPICAL = {
@@ -81,11 +83,15 @@ class Coupled:
         self.fluid_of = fluid_of
         free = set(unknowns)
         self.outputs: dict[str, list[str]] = {}
+        self.carriers = _carriers(relations, free)
         self.formulae: list[Formula] = []
         self.residuals: list[AnyRelation] = []
         explicit: set[str] = set()
         for relation in relations:
             if isinstance(relation, PropertyRelation):
+                if relation.output == self.carriers[relation.state][1]:
+                    # The known property carries the state; its relation gives the enthalpy instead.
+                    relation = PropertyRelation(relation.state, "specific_enthalpy")
                 self.outputs.setdefault(relation.state, []).append(relation.output)
                 if relation.path in free:
                     explicit.add(relation.path)
@@ -139,12 +145,8 @@ class Coupled:
     def _properties(self, values: Mapping[str, Array]) -> dict[str, Array]:
         found = {}
         for state, names in self.outputs.items():
-            prefix = f"states.{state}."
-            result = self.fluid_of(state).at(
-                errors="mask",
-                pressure=values[f"{prefix}pressure"],
-                specific_enthalpy=values[f"{prefix}specific_enthalpy"],
-            )
+            prefix, pair = f"states.{state}.", self.carriers[state]
+            result = state_from(self.fluid_of(state), pair, {name: values[prefix + name] for name in pair})
             for name in names:
                 found[prefix + name] = getattr(result, name)
         return found
@@ -170,10 +172,13 @@ class Coupled:
         chain: dict[str, Derivatives] = {path: {path: ones} for path in self.tears}
         of_property: dict[str, Derivatives] = {}
         for state, names in self.outputs.items():
-            inputs = [f"states.{state}.pressure", f"states.{state}.specific_enthalpy"]
+            pair = self.carriers[state]
+            inputs = [f"states.{state}.{name}" for name in pair]
 
-            def properties(p: Array, h: Array, state: str = state, names: list[str] = names) -> list[Array]:
-                result = self.fluid_of(state).at(errors="mask", pressure=p, specific_enthalpy=h)
+            def properties(
+                *arrays: Array, state: str = state, names: list[str] = names, pair: tuple[str, str] = pair
+            ) -> list[Array]:
+                result = state_from(self.fluid_of(state), pair, dict(zip(pair, arrays, strict=True)))
                 return [getattr(result, name) for name in names]
 
             slopes = _differences(properties, inputs, values, chain)
@@ -320,6 +325,19 @@ class Coupled:
         return np.where(bad, 0.0, found), values, np.where(bad, np.nan, trial), bad
 
 
+def _carriers(relations: Sequence[AnyRelation], free: set[str]) -> dict[str, tuple[str, str]]:
+    """The two properties each state is evaluated from: pressure and enthalpy, or one that is known and has no meaning
+    away from saturation, so that no iteration may leave it.
+    """
+    found: dict[str, tuple[str, str]] = {}
+    for relation in relations:
+        if isinstance(relation, PropertyRelation):
+            found.setdefault(relation.state, ("pressure", "specific_enthalpy"))
+            if relation.output in _SATURATION and relation.path not in free:
+                found[relation.state] = ("pressure", relation.output)
+    return found
+
+
 def _limited(step: Array, x: Array, positive: NDArray[np.bool_]) -> Array:
     """Steps shortened as a whole so that no pressure falls below half or rises above three times its value."""
     if not positive.any():
@@ -327,7 +345,7 @@ def _limited(step: Array, x: Array, positive: NDArray[np.bool_]) -> Array:
     with np.errstate(divide="ignore", invalid="ignore"):
         relative = step[positive] / x[positive]
         factor = np.minimum(1.0, np.minimum(2.0 / np.maximum(relative, 1e-300), 0.5 / np.maximum(-relative, 1e-300)))
-    limited: Array = step * np.nanmin(factor, axis=0)
+    limited: Array = step * np.min(np.where(np.isnan(factor), 1.0, factor), axis=0)
     return limited
 
 

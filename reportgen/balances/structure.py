@@ -221,7 +221,7 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
         taken.append(default)
         table[default.relation.key] = default.relation
         table.update(default.replaces)
-    _refuse_lack(matching, list(unknowns), plant, pieces)
+    _refuse_lack(matching, list(unknowns), pieces)
 
     needs = {
         key: [
@@ -248,6 +248,8 @@ def _refuse_excess(matching: Matching, table: Mapping[str, AnyRelation], given: 
     """SolutionError naming the givens that compete, when more is given than can hold at once."""
     faults = []
     covered: set[str] = set()
+    every = dict.fromkeys(path for relation in table.values() for path in relation.variables)
+    position = {path: number for number, path in enumerate(every)}
     for key in matching.idle():
         if key in covered:
             continue
@@ -255,7 +257,7 @@ def _refuse_excess(matching: Matching, table: Mapping[str, AnyRelation], given: 
         covered.update(group)
         excess = sum(1 for other in matching.idle() if other in group)
         paths = [path for member in group for path in table[member].solvable if path in given]
-        paths = [path for path in dict.fromkeys(paths) if not path.startswith("surroundings.")]
+        paths = sorted({path for path in paths if not path.startswith("surroundings.")}, key=position.__getitem__)
         owners = sorted({_owner(table[member]) for member in group})
         number = "one value" if excess == 1 else f"{excess} values"
         if paths:
@@ -288,11 +290,13 @@ _PROPOSED = ("mass_flow", "pressure", "temperature", "specific_enthalpy", "power
 _EXTENSIVE = ("mass_flow", "power", "heat", "duty", "volume_flow", "molar_flow")
 
 
-def _refuse_lack(matching: Matching, unknowns: list[str], plant: Plant, pieces: Mapping[str, Piece]) -> None:
+def _refuse_lack(matching: Matching, unknowns: list[str], pieces: Mapping[str, Piece]) -> None:
     """SolutionError naming what nothing determines, with what could be given instead."""
     allowed = {piece.path(parameter.name) for piece in pieces.values() for parameter in piece.kind.parameters}
     faults = []
-    for members, missing in matching.undetermined(unknowns):
+    position = {path: number for number, path in enumerate(unknowns)}
+    for group, missing in matching.undetermined(unknowns):
+        members = sorted(group, key=position.__getitem__)
         name_of = {path: path.rsplit(".", 1)[-1] for path in members}
         open_states = [path for path in members if path.startswith("states.")]
         number = "one more value" if missing == 1 else f"{missing} more independent values"
