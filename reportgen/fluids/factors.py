@@ -22,7 +22,7 @@ FloatArray = NDArray[Any]
 
 @dataclass(frozen=True)
 class Factor:
-    """Parameters of one factor; dimensionless. ``rate`` g, ``power`` l, ``width`` η, ``centre`` ε, ``offset`` b, ``slope`` c."""
+    """Parameters of one factor, dimensionless; in order: e, g, l, η, ε, b, c."""
 
     exponent: float
     rate: float = 0.0

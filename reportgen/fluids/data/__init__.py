@@ -1,0 +1,1 @@
+"""Coefficients of published equations, one file a fluid, and the scripts that collected them."""

@@ -1,0 +1,289 @@
+"""Saturation curves for the data files, from the equations alone (run by a maintainer, through collect.py).
+
+The critical point is where (∂p/∂ρ)_T and its minimum over density vanish. Coexisting densities satisfy equal pressure
+and equal Gibbs energy (Newton's method: Akasaka, J. Therm. Sci. Technol. 3 (2008) 442, doi:10.1299/jtst.3.442), in
+extended precision. Curves are fitted by Chebyshev polynomials of x = (1 − T/T_c)^(1/2), halving intervals until the
+tail is small (idea: Bell and Alpert, Ind. Eng. Chem. Res. 60 (2021) 9983, doi:10.1021/acs.iecr.1c00847).
+
+Why the square root: densities of an equation analytic at its critical point are analytic in it, the vapour being the
+branch x < 0; so the innermost interval is fitted across x = 0 from both sides, where solving directly would
+lose all digits. With a cube root as many intervals are needed (measured: 11-13 either way).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.fluids.helmholtz import Helmholtz
+
+Array = NDArray[Any]
+Extended = np.longdouble
+
+DEGREE = 14
+TOLERANCE = 1e-13
+DEEPEST = 10
+#: x below which the innermost interval begins: analytic equations, and those with non-analytic terms.
+INNER_ANALYTIC, INNER_SINGULAR = 0.03, 0.001
+INNER_COUNT = 20
+#: Extended precision leaves coexisting densities uncertain by about this over θ^(3/2).
+NOISE = 1e-17
+
+
+@dataclass
+class Critical:
+    """Temperature [K], density [kg/m3], pressure [Pa]."""
+
+    temperature: Any
+    density: Any
+    pressure: Any
+
+
+def critical_point(equation: Helmholtz, temperature: float, density: float) -> Critical:
+    """The equation's own critical point, near the stated temperature [K] and density [kg/m3]."""
+
+    def least_slope(t: Any) -> tuple[Any, Any]:
+        low, high = Extended(density) * Extended(0.8), Extended(density) * Extended(1.2)
+        for _ in range(7):
+            grid = np.linspace(low, high, 41, dtype=Extended)
+            slope = equation.properties(np.full(41, t, dtype=Extended), grid).pressure_density
+            k = int(np.clip(np.argmin(slope), 1, 39))
+            low, high = grid[k - 1], grid[k + 1]
+        return slope[k], grid[k]
+
+    low, high = Extended(temperature) * Extended(0.98), Extended(temperature) * Extended(1.02)
+    for _ in range(62):
+        middle = (low + high) / 2
+        if least_slope(middle)[0] > 0:
+            high = middle
+        else:
+            low = middle
+    rho = least_slope(high)[1]
+    p = equation.properties(np.array([high]), np.array([rho])).pressure[0]
+    return Critical(high, rho, p)
+
+
+def coexistence(equation: Helmholtz, temperature: Array, liquid: Array, vapour: Array) -> tuple[Array, Array, Array]:
+    """Coexisting densities [kg/m3] and pressure [Pa] at temperature [K] from starting densities, shape (N,)."""
+    liquid, vapour = liquid.copy(), vapour.copy()
+    last = np.inf
+    for _ in range(60):
+        a, b = equation.properties(temperature, liquid), equation.properties(temperature, vapour)
+        pressure_gap = b.pressure - a.pressure
+        gibbs_gap = b.enthalpy - a.enthalpy - temperature * (b.entropy - a.entropy)
+        u = (pressure_gap / vapour - gibbs_gap) / (1 / vapour - 1 / liquid)
+        step_l = u / a.pressure_density
+        step_v = (u - pressure_gap) / b.pressure_density
+        relative = np.maximum(abs(step_l / liquid), abs(step_v / vapour))
+        damping = np.minimum(1, 0.2 / np.maximum(relative, 1e-30))
+        liquid += damping * step_l
+        vapour += damping * step_v
+        largest = float(relative.max())
+        if largest < 1e-17 or (largest < 1e-9 and largest >= last):
+            return liquid, vapour, equation.properties(temperature, vapour).pressure
+        last = largest
+    raise ArithmeticError(f"no coexistence found near T = {temperature[0]} K (step {largest:.1e})")
+
+
+def chebyshev(values: Array) -> Array:
+    """Chebyshev coefficients of functions known at the Chebyshev nodes; last axis."""
+    n = values.shape[-1]
+    k = np.arange(n)
+    matrix = np.cos(np.pi * np.outer(k, k + 0.5) / n).astype(Extended) * 2 / n
+    matrix[0] /= 2
+    return values @ matrix.T
+
+
+def nodes(low: Any, high: Any, count: int = DEGREE + 1) -> Array:
+    """Chebyshev nodes of an interval."""
+    k = np.arange(count)
+    place = np.cos(np.pi * (k + 0.5) / count).astype(Extended)
+    middle: Array = (low + high) / 2 + (high - low) / 2 * place
+    return middle
+
+
+@dataclass
+class Piece:
+    """One interval with the coefficients of each function."""
+
+    low: Any
+    high: Any
+    coefficients: Array
+
+
+def fit(function: Callable[[Array], Array], low: Any, high: Any, scale: Array, noise: float = 0.0, depth: int = 0) -> list[Piece]:
+    """Expansions of functions (x -> shape (functions, N)), intervals halved until the tail is below the tolerance."""
+    c = chebyshev(function(nodes(low, high)))
+    tail = float(np.max(np.abs(c[:, -2:]).max(axis=1) / scale))
+    if tail < TOLERANCE + noise / max(float(low), 1e-9) ** 3 or depth == DEEPEST or not np.isfinite(tail):
+        if not tail < 1e-7:
+            raise ArithmeticError(f"no expansion found on {float(low)}..{float(high)}: tail {tail}")
+        if depth == DEEPEST:
+            print(f"    interval {float(low):.6f}..{float(high):.6f}: tail {tail:.1e} at the deepest level")
+        return [Piece(low, high, c)]
+    middle = (low + high) / 2
+    return fit(function, low, middle, scale, noise, depth + 1) + fit(function, middle, high, scale, noise, depth + 1)
+
+
+def march(
+    equation: Helmholtz, critical: Critical, triple: float, liquid: float, vapour: float
+) -> tuple[Array, Array, Array]:
+    """x, ln ρ_L, ln ρ_V from the triple point upwards, each step started from the ones before; ascending x."""
+    largest = 1 - Extended(triple) / critical.temperature
+    theta = np.concatenate([np.linspace(float(largest), 0.02, 80), np.geomspace(0.02, 1e-7, 160)[1:]]).astype(Extended)
+    x = np.sqrt(theta)
+    logs = np.zeros((2, theta.size), dtype=Extended)
+    for i in range(theta.size):
+        if i == 0:
+            start = np.log(np.array([liquid, vapour], dtype=Extended))
+        elif i == 1:
+            start = logs[:, 0]
+        else:
+            start = logs[:, i - 1] + (logs[:, i - 1] - logs[:, i - 2]) * (x[i] - x[i - 1]) / (x[i - 1] - x[i - 2])
+        t = np.array([critical.temperature * (1 - theta[i])])
+        rho_l, rho_v, _ = coexistence(equation, t, np.exp(start[:1]), np.exp(start[1:]))
+        logs[:, i] = np.log(rho_l[0]), np.log(rho_v[0])
+    return x[::-1], logs[0, ::-1], logs[1, ::-1]
+
+
+def pure_curves(
+    equation: Helmholtz, critical: Critical, triple: float, liquid: float, vapour: float, *, singular: bool
+) -> list[Piece]:
+    """ln p, ρ_L, ln ρ_V as functions of x from the critical to the triple point."""
+    seed_x, seed_l, seed_v = march(equation, critical, triple, liquid, vapour)
+    seeds = [np.asarray(a, dtype=float) for a in (seed_x, seed_l, seed_v)]
+
+    def solve(x: Array) -> Array:
+        start = np.asarray(x, dtype=float)
+        rho_l, rho_v, p = coexistence(
+            equation,
+            critical.temperature * (1 - x * x),
+            np.exp(np.interp(start, seeds[0], seeds[1])).astype(Extended),
+            np.exp(np.interp(start, seeds[0], seeds[2])).astype(Extended),
+        )
+        return np.array([np.log(p), rho_l, np.log(rho_v)])
+
+    outer = np.sqrt(1 - Extended(triple) / critical.temperature)
+    inner = Extended(INNER_SINGULAR if singular else INNER_ANALYTIC)
+    scale = np.array([1.0, float(critical.density), 1.0])
+    pieces = fit(solve, inner, outer, scale, NOISE)
+    ends = np.array([np.log(critical.pressure), critical.density, np.log(critical.density)])
+    if singular:
+        # T within 1e-6 T_c of critical: fourth degree through the critical point, least squares beyond 1e-7 T_c
+        at = np.linspace(np.sqrt(1e-7), float(inner), 40).astype(Extended)
+        powers = np.array([(at / inner) ** k for k in range(1, 5)], dtype=float).T
+        found = np.linalg.lstsq(powers, np.asarray(solve(at) - ends[:, None], dtype=float).T, rcond=None)[0].astype(Extended)
+        span = nodes(Extended(0), inner)
+        values = ends[:, None] + sum(found[k - 1][:, None] * (span / inner) ** k for k in range(1, 5))
+        return [Piece(Extended(0), inner, chebyshev(values)), *pieces]
+    # Both branches are one function of x: liquid for x > 0, vapour for x < 0.
+    at = nodes(-inner, inner, INNER_COUNT)
+    solved = solve(abs(at))
+    both = chebyshev(np.array([solved[0], np.where(at > 0, solved[1], np.exp(solved[2]))]))
+    order = np.arange(INNER_COUNT)
+    span = nodes(Extended(0), inner)
+
+    def evaluate(c: Array, x: Array) -> Array:
+        value: Array = c @ np.cos(order[:, None] * np.arccos(np.asarray(x / inner, dtype=Extended))[None, :])
+        return value
+
+    values = np.array([evaluate(both[0], span), evaluate(both[1], span), np.log(evaluate(both[1], -span))])
+    return [Piece(Extended(0), inner, chebyshev(values)), *pieces]
+
+
+def pseudo_pure_curves(
+    equation: Helmholtz,
+    top: float,
+    triple: float,
+    bubble: Callable[[Array], Array],
+    dew: Callable[[Array], Array],
+    liquid: float,
+    vapour: float,
+    *,
+    critical: Any,
+) -> list[Piece]:
+    """ln p_bubble, ρ_L, ln ρ_V, ln p_dew as functions of x = (1 − T/T_top)^(1/2).
+
+    ``bubble`` and ``dew`` give the published pressures [Pa] of T [K]; ``liquid`` and ``vapour`` are densities near those at
+    the triple point; ``critical`` is the temperature above which the equation's isotherms rise throughout.
+    """
+
+    def solve(x: Array) -> Array:
+        t = Extended(top) * (1 - x * x)
+        p_l, p_v = bubble(t), dew(t)
+        rho_l = np.array([_branch_density(equation, a, b, 1.05 * liquid, 0.3 * liquid) for a, b in zip(t, p_l, strict=True)])
+        rho_v = np.array([_branch_density(equation, a, b, 0.1 * vapour, 0.4 * liquid) for a, b in zip(t, p_v, strict=True)])
+        return np.array([np.log(p_l), rho_l, np.log(rho_v), np.log(p_v)])
+
+    outer = np.sqrt(1 - Extended(triple) / top)
+    return fit(solve, Extended(0), outer, np.array([1.0, equation.reducing_density, 1.0, 1.0]))
+
+
+def _branch_density(equation: Helmholtz, temperature: Any, pressure: Any, outer: float, inner: float) -> Any:
+    """The root of p(T, ρ) = p nearest to ``outer`` [kg/m3] on the way to ``inner``, by scanning and bisection."""
+    grid = np.geomspace(outer, inner, 400).astype(Extended)
+    gap = equation.properties(np.full(grid.size, temperature), grid).pressure - pressure
+    k = int(np.flatnonzero(np.sign(gap) != np.sign(gap[0]))[0])
+    low, high, sign = grid[k - 1], grid[k], np.sign(gap[k - 1])
+    t = np.array([temperature])
+    for _ in range(70):
+        middle = np.array([(low + high) / 2])
+        same = np.sign(equation.properties(t, middle).pressure[0] - pressure) == sign
+        low, high = (middle[0], high) if same else (low, middle[0])
+    return (low + high) / 2
+
+
+def evaluate_pieces(pieces: list[Piece], function: int, x: Array) -> Array:
+    """One of the fitted functions at x; beyond the ends, its value at the end."""
+    result = np.zeros(x.shape, dtype=Extended)
+    for index, piece in enumerate(pieces):
+        inside = (x > piece.low) | (index == 0)
+        place = np.clip((2 * x[inside] - piece.low - piece.high) / (piece.high - piece.low), -1, 1)
+        order = np.arange(piece.coefficients.shape[1])[:, None]
+        result[inside] = piece.coefficients[function] @ np.cos(order * np.arccos(place))
+    return result
+
+
+def outermost_crossing(pieces: list[Piece], function: int, log_top: Any) -> float:
+    """The largest x at which a pressure curve still reaches the pressure at x = 0: zero unless it first rises."""
+    x = np.linspace(0, float(pieces[-1].high), 4001).astype(Extended)[1:]
+    above = np.flatnonzero(evaluate_pieces(pieces, function, x) > log_top)
+    if above.size == 0:
+        return 0.0
+    low, high = x[above[-1]], x[above[-1] + 1]
+    for _ in range(66):
+        middle = (low + high) / 2
+        if evaluate_pieces(pieces, function, np.array([middle]))[0] > log_top:
+            low = middle
+        else:
+            high = middle
+    return float(low)
+
+
+def inverse(pieces: list[Piece], function: int, log_top: Any, start: Any) -> list[Piece]:
+    """x as a function of y = (ln(p_top/p))^(1/2), by bisection in the fitted pressure; x runs from ``start`` outwards."""
+    outer = pieces[-1].high
+    deepest = np.sqrt(log_top - evaluate_pieces(pieces, function, np.array([outer]))[0])
+
+    def solve(y: Array) -> Array:
+        target = log_top - y * y
+        low, high = np.full_like(y, start), np.full_like(y, outer)
+        for _ in range(66):
+            middle = (low + high) / 2
+            above = evaluate_pieces(pieces, function, middle) > target
+            low, high = np.where(above, middle, low), np.where(above, high, middle)
+        return np.array([(low + high) / 2])
+
+    return fit(solve, Extended(0), deepest, np.array([1.0]))
+
+
+def as_data(pieces: list[Piece], names: tuple[str, ...]) -> dict[str, Any]:
+    """Edges and coefficients for the data file."""
+    result: dict[str, Any] = {"edges": [float(pieces[0].low), *(float(piece.high) for piece in pieces)]}
+    for row, name in enumerate(names):
+        result[name] = [[float(c) for c in piece.coefficients[row]] for piece in pieces]
+    return result

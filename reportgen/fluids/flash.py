@@ -1,0 +1,270 @@
+"""States from pressure and enthalpy or entropy: two-dimensional Newton's method, with a bracketed search behind it."""
+
+from __future__ import annotations
+
+from typing import Any, NamedTuple
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.fluids.density import DensitySolver
+from reportgen.fluids.helmholtz import Helmholtz, Properties
+from reportgen.fluids.saturation import Saturated, SaturationCurves
+
+__all__ = ["Caloric", "PressureFlash"]
+
+FloatArray = NDArray[Any]
+BoolArray = NDArray[np.bool_]
+
+_NEWTON_ITERATIONS = 14
+_SEARCH_ITERATIONS = 120
+
+
+class Caloric(NamedTuple):
+    """Result of a flash, arrays of shape (N,): temperature [K], density [kg/m3], quality [1] (NaN in single phase),
+    densities of the phases [kg/m3], and whether a state was found.
+
+    ``between`` marks elements between the bubble and the dew line of a pseudo-pure fluid, ``cold`` those that would lie below
+    the lowest temperature, ``hot`` those above the highest.
+    """
+
+    temperature: FloatArray
+    density: FloatArray
+    quality: FloatArray
+    liquid_density: FloatArray
+    vapour_density: FloatArray
+    found: BoolArray
+    between: BoolArray
+    cold: BoolArray
+    hot: BoolArray
+
+
+class PressureFlash:
+    """Finds the state at given pressure and enthalpy, or pressure and entropy.
+
+    At constant pressure both rise with temperature (slopes c_p and c_p/T), so the state is unique.
+
+    Parameters
+    ----------
+    equation, curves, solver : the equation, its saturation curves, its density solver.
+    lowest, highest : temperatures [K] between which states are sought.
+    triple_pressure : lowest pressure with a liquid [Pa].
+    """
+
+    def __init__(
+        self,
+        equation: Helmholtz,
+        curves: SaturationCurves,
+        solver: DensitySolver,
+        lowest: float,
+        highest: float,
+        triple_pressure: float,
+    ) -> None:
+        self._equation = equation
+        self._curves = curves
+        self._solver = solver
+        self._lowest, self._highest = lowest, highest
+        self._triple_pressure = triple_pressure
+
+    def solve(self, pressure: FloatArray, target: FloatArray, *, entropy: bool) -> Caloric:
+        """State at p [Pa] and h [J/kg], or s [J/(kg*K)] if ``entropy``; shape (N,), finite."""
+        size = pressure.size
+        nan = np.full(size, np.nan)
+        result = Caloric(
+            np.empty(size),
+            np.empty(size),
+            nan.copy(),
+            nan.copy(),
+            nan,
+            np.zeros(size, dtype=np.bool_),
+            np.zeros(size, dtype=np.bool_),
+            np.zeros(size, dtype=np.bool_),
+            np.zeros(size, dtype=np.bool_),
+        )
+        low = np.full(size, self._lowest * (1 - 1e-9))
+        high = np.full(size, self._highest * (1 + 1e-9))
+        liquid = np.zeros(size, dtype=np.bool_)
+        saturable = (pressure < self._curves.top_pressure) & (pressure >= self._triple_pressure)
+        if saturable.any():
+            where = slice(None) if saturable.all() else np.flatnonzero(saturable)
+            self._saturable(pressure, target, where, entropy, result, low, high, liquid)
+        rest = ~saturable
+        if rest.any():
+            p = pressure[rest]
+            dense = p >= self._curves.top_pressure
+            top = self._curves.top_temperature
+            result.temperature[rest] = np.where(dense, np.minimum(top * (p / self._curves.top_pressure) ** 0.13, self._highest), self._lowest)
+            liquid[rest] = dense
+            result.density[rest] = self._solver.solve(result.temperature[rest], p, dense)[0]
+        todo = np.flatnonzero(~result.found & ~result.between)
+        if todo.size:
+            self._single_phase(pressure, target, entropy, result, todo, low, high, liquid)
+        return result
+
+    def _saturable(
+        self,
+        pressure: FloatArray,
+        target: FloatArray,
+        where: Any,
+        entropy: bool,
+        result: Caloric,
+        low: FloatArray,
+        high: FloatArray,
+        liquid: BoolArray,
+    ) -> None:
+        """Settle two-phase elements; give the others a start and bounds from the nearer saturated state."""
+        saturated: Saturated = self._curves.at_pressure(pressure[where])
+        n = saturated.liquid_density.size
+        t_l, t_v = saturated.bubble_temperature, saturated.dew_temperature
+        rho_l, rho_v = saturated.liquid_density, saturated.vapour_density
+        t_both, rho_both = np.concatenate([t_l, t_v]), np.concatenate([rho_l, rho_v])
+        found = self._equation.properties(t_both, rho_both)
+        value = found.entropy if entropy else found.enthalpy
+        heat_capacity = self._heat_capacity(t_both, rho_both, found)
+        wanted = target[where]
+        from_liquid, from_vapour = wanted - value[:n], wanted - value[n:]
+        mixed = (from_liquid >= 0) & (from_vapour <= 0)
+        cold_side = from_liquid < 0
+        if mixed.any():
+            x = from_liquid / (value[n:] - value[:n])
+            if self._curves.pseudo_pure:
+                x = np.where(np.abs(x) < 1e-12, 0.0, np.where(np.abs(x - 1) < 1e-12, 1.0, x))
+                result.between[where] = mixed & (x > 0) & (x < 1)
+            result.quality[where] = np.where(mixed, x, np.nan)
+            result.liquid_density[where], result.vapour_density[where] = rho_l, rho_v
+            result.found[where] = mixed & ~result.between[where]
+        t0 = np.where(cold_side, t_l, t_v)
+        rho0 = np.where(cold_side, rho_l, rho_v)
+        gap = np.where(cold_side, from_liquid, from_vapour)
+        cp = np.where(cold_side, heat_capacity[:n], heat_capacity[n:])
+        start = t0 * np.exp(gap / cp) if entropy else t0 + gap / cp
+        start = np.minimum(np.maximum(start, self._lowest), self._highest)
+        edge = np.where(cold_side, start, t0)
+        low[where] = np.where(cold_side, low[where], t0 * (1 - 1e-12))
+        high[where] = np.where(cold_side, t0 * (1 + 1e-12), high[where])
+        liquid[where] = cold_side
+        x = result.quality[where]
+        with np.errstate(invalid="ignore"):
+            overall = 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))
+        # density guess: a gas keeps its compressibility, a liquid its density
+        guess = np.where(cold_side, rho0, rho0 * t0 / np.maximum(start, edge))
+        result.temperature[where] = np.where(mixed, t0 if not self._curves.pseudo_pure else np.where(x == 0, t_l, t_v), start)
+        result.density[where] = np.where(mixed, overall, guess)
+
+    @staticmethod
+    def _heat_capacity(temperature: FloatArray, density: FloatArray, found: Properties) -> FloatArray:
+        """c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ) [J/(kg*K)]."""
+        squared = (found.pressure_temperature / density) ** 2
+        result: FloatArray = found.isochoric_heat_capacity + temperature * squared / found.pressure_density
+        return result
+
+    def _single_phase(
+        self,
+        pressure: FloatArray,
+        target: FloatArray,
+        entropy: bool,
+        result: Caloric,
+        todo: NDArray[np.intp],
+        low: FloatArray,
+        high: FloatArray,
+        liquid: BoolArray,
+    ) -> None:
+        """Newton's method in T and ρ together; elements that do not settle go to the bracketed search."""
+        equation = self._equation
+        t, rho = result.temperature[todo], result.density[todo]
+        p, wanted = pressure[todo], target[todo]
+        lo, hi = low[todo], high[todo]
+        for _ in range(_NEWTON_ITERATIONS):
+            found = equation.properties(t, rho)
+            slope = found.pressure_density
+            p_gap = p - found.pressure
+            with np.errstate(invalid="ignore", divide="ignore", over="ignore"):
+                beta = found.pressure_temperature / rho**2
+                cp = found.isochoric_heat_capacity + t * (beta * rho) ** 2 / slope
+                # along the isobar: dρ = (Δp − p_T dT)/p_ρ; s_ρ = −p_T/ρ², h_ρ = T s_ρ + p_ρ/ρ
+                if entropy:
+                    step_t = t / cp * (wanted - found.entropy + beta * p_gap / slope)
+                else:
+                    step_t = (wanted - found.enthalpy - (slope / rho - t * beta) * p_gap / slope) / cp
+                step_t = np.minimum(np.maximum(step_t, -0.4 * t), 0.8 * t)
+                trial_t = np.minimum(np.maximum(t + step_t, lo), hi)
+                step_t = trial_t - t
+                ratio = (p_gap - found.pressure_temperature * step_t) / (slope * rho)
+                small = (np.abs(step_t) <= 1e-9 * t) & (np.abs(ratio) <= 1e-9 * np.minimum(1, slope / (p / rho)))
+                good = (slope > 0) & np.isfinite(ratio)
+                done = small & good & (slope * rho > 1e-3 * p)
+                ratio = np.where(ratio > 0, ratio / (1 + 0.5 * ratio), np.maximum(ratio, -0.6))
+            t = np.where(good, trial_t, t)
+            rho = np.where(good, rho * (1 + ratio), rho)
+            if done.any() or not good.all():
+                finished = todo[done]
+                result.temperature[finished], result.density[finished] = t[done], rho[done]
+                result.found[finished] = self._on_branch(t[done], rho[done], p[done], liquid[finished])
+                keep = ~done & good
+                if not keep.any():
+                    break
+                todo, t, rho, p, wanted, lo, hi = (a[keep] for a in (todo, t, rho, p, wanted, lo, hi))
+        remaining = np.flatnonzero(~result.found & ~result.between)
+        if remaining.size:
+            self._search(pressure, target, entropy, result, remaining, low, high, liquid)
+
+    def _on_branch(self, temperature: FloatArray, density: FloatArray, pressure: FloatArray, liquid: BoolArray) -> BoolArray:
+        """Whether a root lies on the stable side of the saturation line, and inside the temperatures allowed."""
+        good = (temperature > self._lowest * (1 - 1e-9)) & (temperature < self._highest * (1 + 1e-9))
+        below = temperature < self._curves.top_temperature
+        if below.any():
+            saturated = self._curves.at_temperature(temperature[below])
+            fluid = liquid[below]
+            good[below] &= np.where(
+                fluid,
+                density[below] >= saturated.liquid_density * (1 - 1e-9),
+                density[below] <= saturated.vapour_density * (1 + 1e-9),
+            )
+        return good
+
+    def _search(
+        self,
+        pressure: FloatArray,
+        target: FloatArray,
+        entropy: bool,
+        result: Caloric,
+        todo: NDArray[np.intp],
+        low: FloatArray,
+        high: FloatArray,
+        liquid: BoolArray,
+    ) -> None:
+        """Bracketed Newton's method in T with the density solved at each step."""
+        p, wanted, side = pressure[todo], target[todo], liquid[todo]
+        lo, hi = low[todo].copy(), high[todo].copy()
+
+        def evaluate(t: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray, BoolArray]:
+            rho, ok = self._solver.solve(t, p, side)
+            found = self._equation.properties(t, rho)
+            cp = self._heat_capacity(t, rho, found)
+            return rho, wanted - (found.entropy if entropy else found.enthalpy), (cp / t if entropy else cp), ok
+
+        scale = self._equation.gas_constant * (1.0 if entropy else self._curves.top_temperature)
+        rho, gap, _, ok = evaluate(lo)
+        rounding = 1e-13 * scale
+        result.cold[todo] = ok & (gap < -1e-9 * scale)
+        rho, gap, _, ok = evaluate(hi)
+        result.hot[todo] = ok & (gap > 1e-9 * scale)
+        t = np.minimum(np.maximum(result.temperature[todo], lo), hi)
+        t = np.where(np.isfinite(t), t, 0.5 * (lo + hi))
+        width = hi - lo
+        settled = np.zeros(todo.size, dtype=np.bool_)
+        for iteration in range(_SEARCH_ITERATIONS):
+            rho, gap, slope, ok = evaluate(t)
+            step = gap / slope
+            settled = ok & ((np.abs(step) <= 1e-13 * t) | (np.abs(gap) <= rounding) | (hi - lo <= 1e-15 * t))
+            if settled.all():
+                break
+            lo, hi = np.where(gap > 0, t, lo), np.where(gap > 0, hi, t)
+            trial = t + step
+            bad = ~((trial > lo) & (trial < hi))
+            if iteration % 2:
+                bad |= hi - lo > 0.5 * width
+                width = hi - lo
+            t = np.where(settled, t, np.where(bad, 0.5 * (lo + hi), trial))
+        result.temperature[todo], result.density[todo] = t, rho
+        result.found[todo] = settled & ~result.cold[todo] & ~result.hot[todo]

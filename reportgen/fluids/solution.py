@@ -1,0 +1,136 @@
+"""From solved states (temperature, densities, quality) to all other properties, computed when asked for."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.fluids.helmholtz import Helmholtz
+from reportgen.fluids.saturation import SaturationCurves
+
+__all__ = ["Solution"]
+
+FloatArray = NDArray[np.float64]
+
+_CALORIC = (
+    "specific_enthalpy",
+    "specific_entropy",
+    "specific_internal_energy",
+    "isobaric_heat_capacity",
+    "isochoric_heat_capacity",
+    "speed_of_sound",
+)
+
+
+@dataclass
+class Solution:
+    """Flat arrays of equal length that fix the states of a batch; NaN in elements without a state.
+
+    ``density`` [kg/m3] is the overall one. ``quality`` is NaN in single-phase states off the saturation line; where it lies
+    strictly between 0 and 1, ``liquid_density`` and ``vapour_density`` hold those of the phases (else None or NaN).
+    ``known`` holds properties that were given, so that they are returned unchanged.
+    """
+
+    equation: Helmholtz
+    curves: SaturationCurves
+    triple_pressure: float
+    temperature: FloatArray
+    pressure: FloatArray
+    density: FloatArray
+    quality: FloatArray | None = None
+    liquid_density: FloatArray | None = None
+    vapour_density: FloatArray | None = None
+    known: dict[str, FloatArray] = field(default_factory=dict)
+
+    def values(self) -> dict[str, FloatArray]:
+        """Fields known already."""
+        found = {"temperature": self.temperature, "pressure": self.pressure, "density": self.density} | self.known
+        if self.quality is None:
+            self.quality = np.full_like(self.temperature, np.nan)
+        found["quality"] = self.quality
+        return found
+
+    def fill(self, name: str) -> Mapping[str, NDArray[Any]]:
+        """The field ``name`` and those that come with it."""
+        if name in _CALORIC:
+            return self._caloric()
+        if name == "specific_volume":
+            return {name: 1 / self.density}
+        if name == "compressibility_factor":
+            return {name: self.pressure / (self.density * self.equation.gas_constant * self.temperature)}
+        if name == "phase":
+            return {name: self._phase()}
+        return self._distance()
+
+    def _two_phase(self) -> NDArray[np.bool_]:
+        quality = self.values()["quality"]
+        return (quality > 0) & (quality < 1)
+
+    def _caloric(self) -> dict[str, FloatArray]:
+        """Enthalpy, entropy, internal energy, heat capacities and speed of sound.
+
+        Single phase: ``c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ)``, ``w² = (c_p/c_v) ∂p/∂ρ``. Two phases: h and s by the lever rule.
+        """
+        t, p, rho = self.temperature, self.pressure, self.density
+        mixed = None if self.quality is None else np.flatnonzero(self._two_phase())
+        if mixed is not None and mixed.size == t.size:
+            cv = cp = w = np.full_like(t, np.nan)
+            h, s = np.empty_like(t), np.empty_like(t)
+        else:
+            found = self.equation.properties(t, rho)
+            h, s, cv = found.enthalpy, found.entropy, found.isochoric_heat_capacity
+            slope = found.pressure_density
+            with np.errstate(invalid="ignore", divide="ignore"):
+                cp = cv + t * (found.pressure_temperature / rho) ** 2 / slope
+                w = np.sqrt(cp / cv * slope)
+        if mixed is not None and mixed.size:
+            assert self.quality is not None and self.liquid_density is not None and self.vapour_density is not None
+            x, t_mixed = self.quality[mixed], t[mixed]
+            both = np.concatenate([self.liquid_density[mixed], self.vapour_density[mixed]])
+            phases = self.equation.properties(np.concatenate([t_mixed, t_mixed]), both)
+            n = mixed.size
+            h[mixed] = phases.enthalpy[:n] + x * (phases.enthalpy[n:] - phases.enthalpy[:n])
+            s[mixed] = phases.entropy[:n] + x * (phases.entropy[n:] - phases.entropy[:n])
+            cv[mixed] = cp[mixed] = w[mixed] = np.nan
+        h, s = self.known.get("specific_enthalpy", h), self.known.get("specific_entropy", s)
+        return dict(zip(_CALORIC, (h, s, h - p / rho, cp, cv, w), strict=True))
+
+    def _distance(self) -> dict[str, FloatArray]:
+        """Superheat and subcooling: distance of a single phase from saturation at its pressure."""
+        p, t = self.pressure, self.temperature
+        superheat, subcooling = np.full_like(t, np.nan), np.full_like(t, np.nan)
+        with np.errstate(invalid="ignore"):
+            inside = (p >= self.triple_pressure * (1 - 1e-12)) & (p <= self.curves.top_pressure) & ~self._two_phase()
+        if inside.any():
+            boiling, condensing = self.curves.temperatures(p[inside])
+            here, x = t[inside], self.values()["quality"][inside]
+            over, under = here - condensing, boiling - here
+            superheat[inside] = np.where(x == 1, 0.0, np.where(over >= 0, over, np.nan))
+            subcooling[inside] = np.where(x == 0, 0.0, np.where(under >= 0, under, np.nan))
+            superheat[inside] = np.where(x == 0, np.nan, superheat[inside])
+            subcooling[inside] = np.where(x == 1, np.nan, subcooling[inside])
+        return {"superheat": superheat, "subcooling": subcooling}
+
+    def _phase(self) -> NDArray[np.str_]:
+        """Phase in words; above both critical values "supercritical", above one of them by the other."""
+        t, p, rho = self.temperature, self.pressure, self.density
+        top, top_p = self.curves.top_temperature, self.curves.top_pressure
+        quality = self.values()["quality"]
+        phase = np.full(t.shape, "vapour", dtype="<U13")
+        hot, dense = t > top, p > top_p
+        phase[dense] = "liquid"
+        phase[hot & dense] = "supercritical"
+        cold = np.flatnonzero(~hot & ~dense & np.isfinite(rho))
+        if cold.size:
+            saturated = self.curves.at_temperature(t[cold])
+            middle = np.sqrt(saturated.liquid_density * saturated.vapour_density)
+            phase[cold[rho[cold] > middle]] = "liquid"
+        phase[quality == 0] = "liquid"
+        phase[quality == 1] = "vapour"
+        phase[self._two_phase()] = "two-phase"
+        phase[~np.isfinite(rho)] = ""
+        return phase
