@@ -139,8 +139,8 @@ def adiabatic(piece: Piece, energy: Balance | None = None, kept: Balance | None 
     text = f"{piece.title} exchanges no heat with its surroundings (adiabatic)."
     sentence = f"{piece.title} is taken as adiabatic."
     relation = zero(heat, piece.path("heat.assumed"), piece.owner, "Adiabatic", sentence)
-    replaces: dict[str, Relation] = {energy.key: kept} if energy and kept else {}
-    return Default(f"{piece.owner}.adiabatic", piece.owner, text, (heat,), relation, replaces)
+    rewrites = {energy.key: lambda _: kept} if energy and kept else {}
+    return Default(f"{piece.owner}.adiabatic", piece.owner, text, (heat,), relation, rewrites)
 
 
 def pressure_drop(piece: Piece, inlet: str, outlet: str, name: str = "pressure_drop") -> Balance:

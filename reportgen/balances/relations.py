@@ -270,8 +270,8 @@ Relation = Balance | Formula
 class Default:
     """An assumption that stands in when neither the givens nor another relation determine a quantity.
 
-    It adds ``relation`` to the network, and puts other relations in the place of those named in ``replaces``
-    (a valve without heat exchange keeps its enthalpy, whatever its flow). ``rank``: lower ones are tried first.
+    It adds ``relation`` to the network, and rewrites the relations named in ``rewrites`` (a valve without heat exchange
+    keeps its enthalpy, whatever its flow). ``rank``: lower ones are tried first.
     """
 
     key: str
@@ -279,7 +279,7 @@ class Default:
     text: str
     affects: tuple[str, ...]
     relation: Relation
-    replaces: Mapping[str, Relation] = field(default_factory=dict)
+    rewrites: Mapping[str, Callable[[Any], Relation]] = field(default_factory=dict)
     rank: int = 0
 
 

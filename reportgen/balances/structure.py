@@ -211,16 +211,16 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
         if not offer(trial, default.relation):
             continue
         complete = True
-        for key in default.replaces:
+        rewritten = {key: rewrite(table[key]) for key, rewrite in default.rewrites.items()}
+        for key, relation in rewritten.items():
             trial.remove(key)
-        for relation in default.replaces.values():
             complete = offer(trial, relation) and complete
         if not complete or trial.idle():
             continue
         matching = trial
         taken.append(default)
         table[default.relation.key] = default.relation
-        table.update(default.replaces)
+        table.update(rewritten)
     _refuse_lack(matching, list(unknowns), pieces)
 
     needs = {

@@ -45,12 +45,16 @@ def lowest(pressures: Any) -> Any:
 
 def relations(piece: Piece) -> list[Relation]:
     """Mass, pressure and energy."""
-    inlets, outlet = piece.states("inlets"), piece.one("outlet")
-    pressures = tuple(f"states.{state}.pressure" for state in inlets)
-    leaving, drop = f"states.{outlet}.pressure", piece.path("pressure_drop")
+    pressures = tuple(f"states.{state}.pressure" for state in piece.states("inlets"))
+    return [*mass_balances(piece), outlet_pressure(piece, pressures), energy_balance(piece, piece.path("heat"))]
+
+
+def outlet_pressure(piece: Piece, pressures: tuple[str, ...]) -> Formula:
+    """p_out = min(p_in) − Δp over the inlets whose pressure something else determines."""
+    leaving, drop = f"states.{piece.one('outlet')}.pressure", piece.path("pressure_drop")
     listed = r",\,".join(token(path) for path in pressures)
     smallest = rf"\min\left({listed}\right)"
-    pressure = Formula(
+    return Formula(
         piece.path("pressure_drop.relation"),
         piece.owner,
         "Pressure loss",
@@ -69,20 +73,25 @@ def relations(piece: Piece) -> list[Relation]:
         },
         solvable_inputs=(drop,),
     )
-    return [*mass_balances(piece), pressure, energy_balance(piece, piece.path("heat"))]
 
 
 def defaults(piece: Piece) -> list[Default]:
     """Adiabatic, no pressure loss, unknown inlet pressures equal to the outlet's."""
-    outlet = piece.one("outlet")
+    leaving, drop = f"states.{piece.one('outlet')}.pressure", piece.path("pressure_drop")
     found = [adiabatic(piece), no_pressure_drop(piece)]
     for state in piece.states("inlets"):
-        entering, leaving = f"states.{state}.pressure", f"states.{outlet}.pressure"
+        entering = f"states.{state}.pressure"
         key = piece.path(f"inlet_pressure.{state}")
         sentence = f"{piece.title}: stream {state} enters at the pressure of the mixer."
-        terms = (Term(1.0, (entering,)), Term(-1.0, (leaving,)))
+        terms = (Term(1.0, (entering,)), Term(-1.0, (leaving,)), Term(-1.0, (drop,)))
         equal = Balance(key, piece.owner, "Inlet pressure", sentence, "assumption", terms)
-        found.append(Default(key, piece.owner, sentence, (entering,), equal, rank=2))
+
+        def without(relation: Any, left_out: str = entering) -> Formula:
+            others = tuple(path for path in relation.inputs if path not in (left_out, drop))
+            return outlet_pressure(piece, others or (left_out,))
+
+        rewrites = {piece.path("pressure_drop.relation"): without}
+        found.append(Default(key, piece.owner, sentence, (entering,), equal, rewrites, rank=2))
     return found
 
 
