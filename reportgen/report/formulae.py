@@ -44,7 +44,7 @@ def _words_as_text(latex: str) -> str:
 
 @lru_cache(maxsize=4096)
 def mathml(latex: str, infix_start: bool = False) -> str:
-    """One ``<math>`` element, in display style, for inline setting.
+    """One ``<math>`` element for inline setting; the style sheet gives it the size of a displayed formula.
 
     ``infix_start`` says that the piece goes on from one before it: a leading + or − is then spaced as between two
     terms. Raises InputError when the text is not LaTeX that can be converted.
@@ -60,13 +60,13 @@ def mathml(latex: str, infix_start: bool = False) -> str:
     if unknown or any(len(part) != _CHILDREN.get(part.tag, len(part)) for part in parts):
         raise InputError(Fault("A formula cannot be set: a command is unknown or incomplete.", found=latex))
     root.attrib.clear()
-    root.set("displaystyle", "true")
     _mend(root)
+    _strip_defaults(root)
     if infix_start:
         first = next((element for element in root.iter() if element.tag not in ("math", "mrow")), None)
         if first is not None and first.tag == "mo":
             first.set("form", "infix")
-    return ElementTree.tostring(root, encoding="unicode", short_empty_elements=False)
+    return ElementTree.tostring(root, encoding="unicode")
 
 
 def _mend(element: ElementTree.Element) -> None:
@@ -84,6 +84,17 @@ def _mend(element: ElementTree.Element) -> None:
     _join_letters(element)
     if element.tag in ("math", "mrow"):
         _space_functions(element)
+
+
+def _strip_defaults(root: ElementTree.Element) -> None:
+    """Drop attributes that only repeat what MathML takes anyway; capital Greek letters stand upright (ISO 80000-2)."""
+    for element in root.iter():
+        if element.tag == "mo" and element.get("fence") == "true":
+            element.attrib.clear()
+        elif element.tag == "mi" and len(element.text or "") > 1:
+            element.attrib.pop("mathvariant", None)
+        elif element.tag == "mi" and "Α" <= (element.text or " ") <= "Ω":
+            element.set("mathvariant", "normal")
 
 
 def _plain(text: str) -> str:

@@ -30,6 +30,7 @@ class Links:
         data = record.data
         self._targets: dict[str, str] = {}
         for assumption in reversed(data["assumptions"]):
+            self._targets[f"assumptions.{assumption['id']}"] = anchor("assumption", assumption["id"])
             for path in assumption["affects"]:
                 self._targets[path] = anchor("assumption", assumption["id"])
         for path, entry in record.inputs.items():
@@ -38,7 +39,8 @@ class Links:
         for path in record.inputs:
             self._targets[path] = anchor("value", path)
         for path, entry in record.values.items():
-            if entry["relation"] in data["relations"] and path not in record.inputs:
+            known = entry["value"] is not None and path not in record.inputs
+            if known and entry["relation"] in data["relations"]:
                 self._targets[path] = anchor("value", path)
         for name in data["plant"].get("fluids", {}):
             self._targets[f"fluids.{name}"] = anchor("fluid", name)

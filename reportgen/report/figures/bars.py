@@ -54,7 +54,10 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
     left = 12.0 + max((drawing.text_size(bar["label"])[0] for bar in bars), default=0.0)
     axes = drawing.axes(left, _FOOT, 8.0, _HEAD)
     sums = [presenter.display.convert(bar["entering"] + bar["generated"], "entropy_flow") for bar in bars]
-    axes.set(xlim=(0.0, 1.02 * max([*sums, 0.0]) or 1.0), ylim=(len(bars) - 0.5, -0.5))
+    starts = [presenter.display.convert(bar["entering"], "entropy_flow") for bar in bars]
+    lowest, highest = min([0.0, *sums, *starts]), max([0.0, *sums, *starts])
+    reach = (highest - lowest) or 1.0
+    axes.set(xlim=(lowest, lowest + 1.02 * reach), ylim=(len(bars) - 0.5, -0.5))
     described = []
     for row, bar in enumerate(bars):
         entering = presenter.display.convert(bar["entering"], "entropy_flow")
@@ -63,8 +66,8 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         axes.barh(row, entering, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
         axes.barh(row, generated, height=height, left=entering, color=GENERATION, edgecolor=INK, linewidth=0.7)
         texts = (
-            f"in {presenter.with_unit(bar['entering'], 'entropy_flow')}",
-            f"generated {presenter.with_unit(bar['generated'], 'entropy_flow')}",
+            f"in {presenter.with_unit(_short(bar['entering']), 'entropy_flow')}",
+            f"generated {presenter.with_unit(_short(bar['generated']), 'entropy_flow')}",
         )
         start, middle = (float(value) for value in axes.transData.transform((0.0, row)))
         end = float(axes.transData.transform((entering + generated, row))[0])
@@ -75,6 +78,11 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
     _finish(drawing, axes, f"entropy rate in {presenter.display.unit_text('entropy_flow')}")
     drawing.description = f"Horizontal bars from zero. {'; '.join(described)}."
     return drawing
+
+
+def _short(value: float) -> float:
+    """Four significant digits: a label beside a bar, the account has the rest."""
+    return float(f"{value:.4g}")
 
 
 def _finish(drawing: Drawing, axes: Any, name: str) -> None:

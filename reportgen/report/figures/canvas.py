@@ -128,6 +128,7 @@ class Drawing:
         for colour, name in _PROPERTIES.items():
             body = body.replace(colour, name)
         body = re.sub(r"\n\s*", "\n", body)
+        body = re.sub(r"-?\d+\.\d{3,}", lambda match: f"{round(float(match[0]), 2) + 0.0:g}", body)
         return (
             f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {self.width:g} {self.height:g}" role="img" '
             'stroke-linejoin="round" stroke-linecap="butt" '

@@ -30,7 +30,7 @@ def _budget(path: str, budget: dict[str, Any], presenter: Presenter) -> dict[str
         "number": presenter.number(path, uncertainty=True),
         "unit": presenter.display.unit_text(dimension),
         "rows": [_row(row, dimension, presenter) for row in budget["contributions"]],
-        "combined": presenter.show(budget["standard_uncertainty"], dimension).number,
+        "combined": presenter.show(_digits(budget["standard_uncertainty"], 3), dimension).number,
         "expanded": presenter.difference(budget["expanded_uncertainty"], dimension, budget["expanded_uncertainty"]),
         "freedom": "infinite" if freedom is None else f"{freedom:.3g}",
         "probability": None if probability is None else f"{100.0 * probability:.3g}\N{NO-BREAK SPACE}%",

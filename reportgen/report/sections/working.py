@@ -26,8 +26,9 @@ _STATE_COLUMNS = (
 )
 #: Characters of one piece of an equation that still fit beside the margin of a narrow screen.
 _NARROW = 30
+_GROUPS = {"trains": "Trains", "total": "The whole"}
 #: Characters of a whole equation that stay on one line.
-_SHORT = 56
+_SHORT = 62
 
 
 def states(presenter: Presenter) -> dict[str, Any] | None:
@@ -89,7 +90,17 @@ def working(presenter: Presenter) -> dict[str, Any] | None:
         _step(number, name, relations[key], results[key], presenter)
         for key, (number, name) in step_anchors(presenter).items()
     ]
-    return {"steps": steps} if steps else None
+    return {"groups": _grouped(steps)} if steps else None
+
+
+def _grouped(steps: list[dict[str, Any]]) -> list[dict[str, Any]]:
+    """Runs of steps under one heading; pieces with their states, each train, the whole. The order stays."""
+    groups: list[dict[str, Any]] = []
+    for step in steps:
+        if not groups or groups[-1]["title"] != step["group"]:
+            groups.append({"title": step["group"], "steps": []})
+        groups[-1]["steps"].append(step)
+    return groups
 
 
 def _step(number: int, name: str, relation: dict[str, Any], results: list[str], presenter: Presenter) -> dict[str, Any]:
@@ -101,9 +112,10 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
         if path is not None:
             shown.add(path)
         lines.append(_line(line, path))
-    others = [path for path in results if path not in shown]
+    others = [path for path in results if path not in shown and values[path]["value"] is not None]
     return {
         "number": number,
+        "group": _GROUPS.get(relation["owner"].split(".")[0], "States and pieces"),
         "anchor": name,
         "sentence": relation["sentence"],
         "basis": relation["basis"],
@@ -119,6 +131,8 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
 def _line(line: list[str], path: str | None) -> dict[str, Any]:
     """One equation: left side, then each right side in pieces, repeated right sides left out."""
     left, *rights = line
+    if len(rights) > 1 and rights[0].strip() == "0":
+        rights = rights[1:]
     distinct = [right for index, right in enumerate(rights) if right and right not in rights[:index]]
     return {
         "anchor": anchor("value", path) if path else None,
@@ -135,6 +149,8 @@ def _uses(paths: Iterable[str], presenter: Presenter) -> list[Markup]:
     for path in dict.fromkeys(paths):
         if path.startswith("fluids."):
             found.append(presenter.link(path, path.removeprefix("fluids.")))
+        elif path.startswith("assumptions."):
+            found.append(presenter.link(path, "assumption"))
         else:
             found.append(presenter.link(path, presenter.symbol(path)))
     return found
