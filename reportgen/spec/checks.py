@@ -14,7 +14,7 @@ from reportgen.quantities import Quantity
 from reportgen.spec.fields import QuantityOf, shown
 from reportgen.spec.network import check_network
 from reportgen.spec.paths import input_locations, result_dimensions
-from reportgen.spec.schema import NARRATIVES
+from reportgen.spec.schema import MOST_CORRELATIONS, NARRATIVES
 from reportgen.spec.source import Location, Source, path_of
 from reportgen.spec.states import check_states, givens_of
 
@@ -273,7 +273,7 @@ def _check_correlations(source: Source) -> None:
         coefficient = row.table["coefficient"].value if "coefficient" in row.table else None
         if all(known) and isinstance(coefficient, int | float) and -1.0 <= coefficient <= 1.0:
             sound.append((first, second, float(coefficient)))
-    if len(sound) == len(rows.items):
+    if len(sound) == len(rows.items) <= MOST_CORRELATIONS:
         _check_consistency(source, sound)
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import islice
 
 from reportgen.spec.paths import kind_of
 from reportgen.spec.source import Location, Source
@@ -119,13 +120,14 @@ def _check_ports(source: Source, train_of: dict[str, str]) -> None:
                 uses.setdefault(state, []).append(_Use(tag, train_of.get(tag), location))
     for state, several in entering.items():
         for index, use in enumerate(several):
-            rivals = [other for other in several[:index] if not _alternatives(source, other.train, use.train)]
-            _refuse_rival(source, state, use, rivals, "enters")
+            before = islice(several, index)
+            rival = next((other for other in before if not _alternatives(source, other.train, use.train)), None)
+            _refuse_rival(source, state, use, rival, "enters")
     for state, several in leaving.items():
+        entered = {use.tag for use in entering.get(state, [])}
         for index, use in enumerate(several):
-            _refuse_rival(source, state, use, several[:index], "leaves")
-        for use in several:
-            if any(other.tag == use.tag for other in entering.get(state, [])):
+            _refuse_rival(source, state, use, several[0] if index else None, "leaves")
+            if use.tag in entered:
                 source.report(
                     use.location,
                     "The state both enters and leaves this piece.",
@@ -142,14 +144,14 @@ def _alternatives(source: Source, first: str | None, second: str | None) -> bool
     return main[0] == main[1]
 
 
-def _refuse_rival(source: Source, state: str, use: _Use, rivals: list[_Use], verb: str) -> None:
-    if not rivals:
+def _refuse_rival(source: Source, state: str, use: _Use, rival: _Use | None, verb: str) -> None:
+    if rival is None:
         return
-    line, _ = source.place(rivals[0].location)
+    line, _ = source.place(rival.location)
     enters = verb == "enters"
     source.report(
         use.location,
-        f"State {state} already {verb} {rivals[0].tag} at line {line}.",
+        f"State {state} already {verb} {rival.tag} at line {line}.",
         found=f'"{state}"',
         expected="a splitter, or pieces in alternative trains" if enters else "a mixer, or a state of its own",
     )

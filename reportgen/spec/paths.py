@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from reportgen.balances.kinds import Kind, kinds
 from reportgen.names import NAMES
 from reportgen.spec.fields import dimensions_for
-from reportgen.spec.schema import FLOWS, INTENSIVE, STATE_KEYS
+from reportgen.spec.schema import FLOWS, INTENSIVE, MOST_ENTRIES, STATE_KEYS
 from reportgen.spec.source import Source
 
 __all__ = ["input_locations", "kind_of", "result_dimensions"]
@@ -120,6 +120,6 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str, 
         names |= {parameter.name: (parameter.dimension,) for parameter in kind.parameters}
         for group in kind.groups:
             node = source.node(("equipment", owner, group.name))
-            for number in range(1, 1 + len(node.items if node is not None else [])):
+            for number in range(1, 1 + min(MOST_ENTRIES, len(node.items if node is not None else []))):
                 names |= {f"{group.name}.{number}.{entry.name}": (entry.dimension,) for entry in group.parameters}
     return names

@@ -31,6 +31,8 @@ __all__ = [
     "FLOWS",
     "INTENSIVE",
     "LATER",
+    "MOST_CORRELATIONS",
+    "MOST_ENTRIES",
     "NARRATIVES",
     "STATE_KEYS",
     "Table",
@@ -55,6 +57,10 @@ INTENSIVE = (
 FLOWS = ("mass_flow", "volume_flow", "molar_flow")
 #: All quantities that may be given for a state.
 STATE_KEYS = (*INTENSIVE, *FLOWS, "velocity", "elevation")
+
+#: Bounds of lists within one table.
+MOST_ENTRIES = 50
+MOST_CORRELATIONS = 500
 
 #: What belongs to the calculation file but is not carried by this version, by table ("" for the whole file) and key.
 LATER: dict[str, dict[str, str]] = {
@@ -274,7 +280,9 @@ class UncertaintyTable(Table):
     )
     method: Literal["first-order"] = Field("first-order", description="How uncertainties are propagated (JCGM 100).")
     correlations: list[CorrelationTable] = Field(
-        default=[], max_length=500, description="Inputs that vary together, such as readings of one instrument."
+        default=[],
+        max_length=MOST_CORRELATIONS,
+        description="Inputs that vary together, such as readings of one instrument.",
     )
 
 
@@ -348,5 +356,5 @@ def _equipment(kind: Kind) -> type[Table]:
         entry = create_model(
             f"{camel}_{group.name}", __base__=Table, __doc__=group.text, **_parameters(group.parameters)
         )
-        fields[group.name] = (list[entry], Field([], max_length=50, description=group.text or group.name))
+        fields[group.name] = (list[entry], Field([], max_length=MOST_ENTRIES, description=group.text or group.name))
     return create_model(f"{camel}Table", __base__=Table, __doc__=kind.text or kind.title, **fields)

@@ -32,6 +32,7 @@ class Source:
 
     def __init__(self, text: TomlText, file: str) -> None:
         self.root = text.root
+        self._tables: dict[Location, dict[str, Node]] = {}
         self.file = file
         self.faults = list(text.faults)
         self.truncated = text.truncated
@@ -58,8 +59,11 @@ class Source:
 
     def table(self, *location: str | int) -> dict[str, Node]:
         """Readable entries of the table at a location; none when there is no table."""
-        node = self.node(location)
-        return {key: entry for key, entry in node.table.items() if not entry.broken} if node is not None else {}
+        if location not in self._tables:
+            node = self.node(location)
+            entries = node.table if node is not None else {}
+            self._tables[location] = {key: entry for key, entry in entries.items() if not entry.broken}
+        return self._tables[location]
 
     def text(self, *location: str | int) -> str | None:
         """The text at a location; None when there is none or something else stands there."""

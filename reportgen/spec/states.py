@@ -19,12 +19,19 @@ _DEPENDENT = {
 _WITHOUT_SATURATION = ("quality", "superheat", "subcooling")
 
 
+#: How often a likeness is followed; nobody could check a longer chain on paper.
+_LONGEST_LIKENESS = 10
+
+
 def _ancestry(source: Source, state: str) -> list[str]:
-    """The state, the one it is like, the one that is like, and so on; ends before an unknown or a repeated one."""
+    """The state, the one it is like, the one that is like, and so on.
+
+    Ends before an unknown or a repeated one, and in any case soon.
+    """
     chain: list[str] = []
     states = source.table("states")
     following: str | None = state
-    while following is not None and following in states and following not in chain:
+    while following in states and following not in chain and len(chain) <= _LONGEST_LIKENESS:
         chain.append(following)
         following = source.text("states", following, "like")
     return chain
@@ -82,7 +89,14 @@ def _check_likeness(source: Source, state: str, in_a_circle: set[str]) -> None:
             )
         return
     chain = _ancestry(source, state)
-    if source.text("states", chain[-1], "like") == state and state not in in_a_circle:
+    if len(chain) > _LONGEST_LIKENESS:
+        source.report(
+            location,
+            "The likeness goes from state to state too often.",
+            found=f"{' like '.join(chain[:4])} like …",
+            expected=f"at most {_LONGEST_LIKENESS} states in a chain",
+        )
+    elif source.text("states", chain[-1], "like") == state and state not in in_a_circle:
         in_a_circle.update(chain)
         source.report(
             location,
