@@ -1,8 +1,8 @@
 """Data of the figures, in SI: what to draw, not how.
 
-Curves are sampled so that straight pieces between samples are not seen: the saturation dome evenly in θ^(1/3),
-θ = 1 − T/Tc, in which both branches are nearly straight up to the critical point; isobars evenly in entropy, with the
-saturated states put in; processes evenly along the path that the kind of equipment states for them.
+Curves are sampled so that straight pieces between samples are not seen: the saturation dome half evenly in temperature
+and half evenly in θ^(1/3), θ = 1 − T/Tc, in which both branches are nearly straight up to the critical point; isobars
+evenly in entropy, with the saturated states put in; processes evenly along the path that the kind of equipment states.
 """
 
 from __future__ import annotations
@@ -23,7 +23,7 @@ __all__ = ["bar_figures", "isobar", "saturation_dome", "temperature_entropy_figu
 Array = npt.NDArray[np.float64]
 Curve = dict[str, Any]
 
-DOME_SAMPLES = 60  # a branch
+DOME_SAMPLES = 80  # a branch
 ISOBAR_SAMPLES = 90
 PATH_SAMPLES = 60
 
@@ -146,9 +146,9 @@ def saturation_dome(fluid: Any) -> Curve | None:
     triple = fluid.limits.triple_point
     lowest = max(fluid.limits.minimum_temperature, triple.temperature if triple is not None else 0.0)
     reach = 1.0 - lowest / critical.temperature
-    theta = np.linspace(reach ** (1 / 3), CLOSEST_TO_CRITICAL ** (1 / 3), DOME_SAMPLES) ** 3
-    temperature = critical.temperature * (1.0 - theta)
-    temperature[0] = lowest
+    near = np.linspace(CLOSEST_TO_CRITICAL ** (1 / 3), reach ** (1 / 3), DOME_SAMPLES // 2, endpoint=False) ** 3
+    even = np.linspace(0.0, reach, DOME_SAMPLES // 2 + 1)[1:-1]
+    temperature = np.array([lowest, *(critical.temperature * (1.0 - np.sort([*near, *even])[::-1]))])
     liquid, vapour = fluid.saturation(temperature=temperature, errors="mask")
     top = fluid.at(temperature=critical.temperature, density=critical.density, errors="mask")
     entropies = np.concatenate(
