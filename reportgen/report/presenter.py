@@ -10,9 +10,9 @@ from collections.abc import Mapping
 from dataclasses import replace
 from typing import Any
 
-from markupsafe import Markup, escape
+from markupsafe import Markup
 
-from reportgen.names import DIMENSIONS, name_of
+from reportgen.names import DIMENSIONS, name_of, symbol_of
 from reportgen.quantities import Display, Shown
 from reportgen.record import Record
 from reportgen.report.formulae import mathml
@@ -21,6 +21,7 @@ from reportgen.report.links import Links
 __all__ = ["NO_VALUE", "Presenter", "in_order", "natural"]
 
 NO_VALUE = "—"
+_QUALIFIED = re.compile(r"[,:]| at the | of a two-phase| relative to| p v ")
 _PIECES = re.compile(r"(\d+)")
 
 
@@ -141,11 +142,9 @@ class Presenter:
         return facts
 
     def symbol(self, path: str) -> Markup:
-        """Symbol of a value as MathML; the path itself when the record gives none."""
-        entry = self.record.values.get(path)
-        if entry is None or not entry.get("symbol"):
-            return escape(path)
-        return self.math(entry["symbol"])
+        """Symbol of a value as MathML, the record's own where it gives one."""
+        entry = self.record.values.get(path, {})
+        return self.math(entry.get("symbol") or symbol_of(path))
 
     @staticmethod
     def math(latex: str) -> Markup:
@@ -165,12 +164,16 @@ class Presenter:
             return str(trains.get(name, {}).get("title") or name)
         return {"total": "in total", "surroundings": "surroundings"}.get(parts[0], name)
 
-    def label(self, path: str) -> str:
-        """A value in words: ``Entropy generation rate, PRV-3``."""
+    @staticmethod
+    def meaning(path: str) -> str:
+        """What a value is, without its owner: the glossary's words up to where they begin to explain."""
         entry = name_of(path)
         text = entry.text if entry else path.rsplit(".", 1)[-1].replace("_", " ").capitalize()
-        text = re.split(r"[,:]| of a two-phase| relative| p v", text, maxsplit=1)[0]
-        owner = self.owner(path)
+        return _QUALIFIED.split(text, maxsplit=1)[0]
+
+    def label(self, path: str) -> str:
+        """A value in words: ``Entropy generation rate, PRV-3``."""
+        text, owner = self.meaning(path), self.owner(path)
         return f"{text}, {owner}" if owner else text
 
     def owner_title(self, owner: str) -> str:

@@ -20,6 +20,8 @@ _LIMITS = (
     ("maximum_temperature", "to", "temperature"),
     ("maximum_pressure", "up to", "pressure"),
 )
+#: Steps named in the table of inputs; the temperature of the surroundings is used almost everywhere.
+_STEPS_SHOWN = 6
 
 
 def purpose(presenter: Presenter) -> dict[str, Any] | None:
@@ -104,7 +106,8 @@ def inputs(presenter: Presenter) -> dict[str, Any] | None:
                 "status": entry["status"],
                 "others": [presenter.label(other) for other in others],
                 "place": f"{entry['file']}:{entry['line']}",
-                "steps": steps,
+                "steps": steps[:_STEPS_SHOWN],
+                "more_steps": len(steps[_STEPS_SHOWN:]),
             }
         )
     return {"rows": rows} if rows else None
@@ -139,7 +142,8 @@ def assumptions(presenter: Presenter) -> dict[str, Any] | None:
                 "test": _test(entry["test"], presenter) if entry["test"] else None,
             }
         )
-    return {"rows": rows} if rows else None
+    rules = list(dict.fromkeys(row["test"]["text"] for row in rows if row["test"] and row["test"]["text"]))
+    return {"rows": rows, "rules": rules} if rows else None
 
 
 def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
@@ -155,11 +159,16 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
             ("otherwise", presenter.with_unit(test["other_value"], dimension, uncertainty)),
         ]
         if test["difference"] is not None:
-            facts.append(("difference", presenter.difference(test["difference"], dimension)))
+            facts.append(("difference", presenter.difference(two_digits(test["difference"]), dimension)))
         if uncertainty:
-            facts.append(("U", presenter.difference(uncertainty, dimension)))
+            facts.append(("U", presenter.difference(two_digits(uncertainty), dimension)))
     label = presenter.label(test["path"]) if test["path"] else ""
     return {**test, "facts": facts, "label": label}
+
+
+def two_digits(value: float) -> float:
+    """Rounded to two significant digits, as befits a difference or an uncertainty."""
+    return float(f"{value:.2g}")
 
 
 def method(presenter: Presenter) -> dict[str, Any]:

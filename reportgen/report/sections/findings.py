@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import groupby
 from typing import Any
 
 from reportgen.report.narrative import render_narrative
@@ -16,13 +17,14 @@ def found(presenter: Presenter) -> dict[str, Any]:
     """Headline results, each with the criteria set on it; criteria on other values follow."""
     data = presenter.record.data
     paths = list(dict.fromkeys([*data["summary"], *(entry["path"] for entry in data["criteria"])]))
-    rows = []
+    rows: list[dict[str, Any]] = []
     for path in paths:
         criteria = [_criterion(entry) for entry in data["criteria"] if entry["path"] == path]
         entry = presenter.record.entry(path)
         rows.append(
             {
-                "label": presenter.label(path),
+                "owner": presenter.owner(path),
+                "label": presenter.meaning(path),
                 "number": presenter.number(path),
                 "uncertainty": presenter.plus_minus(path) or NO_VALUE,
                 "criteria": criteria,
@@ -30,7 +32,8 @@ def found(presenter: Presenter) -> dict[str, Any]:
                 "reason": entry.get("reason") if entry is not None and entry["value"] is None else None,
             }
         )
-    return {"rows": rows, "conclusion": render_narrative("conclusion", presenter)}
+    groups = [(owner, list(group)) for owner, group in groupby(rows, key=lambda row: str(row["owner"]))]
+    return {"groups": groups, "conclusion": render_narrative("conclusion", presenter)}
 
 
 def _criterion(entry: dict[str, Any]) -> dict[str, Any]:
