@@ -15,11 +15,11 @@ __all__ = ["start"]
 def start(folder: Path) -> list[Path]:
     """Write the starter into a folder that does not exist or is empty; returns the files written.
 
-    Everything is written into a folder beside it that is then renamed: the folder is there whole or not at all, and
-    nothing is ever overwritten. Raises InputError when the folder holds something or cannot be made.
+    Everything is written into a temporary folder and then renamed, so that nothing half written is ever found, and
+    nothing is ever overwritten. Raises InputError when there is something already, OSError when it cannot be written.
     """
-    taken = folder.exists() or folder.is_symlink()
-    if taken and not (folder.is_dir() and not folder.is_symlink() and not any(folder.iterdir())):
+    empty = folder.is_dir() and not any(folder.iterdir())
+    if not empty and (folder.exists() or folder.is_symlink()):
         raise InputError(
             Fault(
                 "There is something at this place already; nothing was written.",
@@ -27,18 +27,22 @@ def start(folder: Path) -> list[Path]:
                 expected="the name of a folder that does not exist or is empty",
             )
         )
-    folder.parent.mkdir(parents=True, exist_ok=True)
-    beside = Path(tempfile.mkdtemp(prefix=f".{folder.name}-", dir=folder.parent))
+    if not empty:
+        folder.parent.mkdir(parents=True, exist_ok=True)
+    beside = Path(tempfile.mkdtemp(prefix=".starting-", dir=folder if empty else folder.parent))
     try:
         starter = resources.files("reportgen.spec") / "starter"
         names = sorted(entry.name for entry in starter.iterdir() if entry.is_file())
         for name in names:
             (beside / name).write_bytes((starter / name).read_bytes())
-        # A folder for temporary files is closed to others; a calculation is not.
-        beside.chmod(0o755)
-        if taken:
-            folder.rmdir()  # refuses when something has come into it meanwhile
-        beside.rename(folder)
+        if empty:
+            # The folder may be the one the user stands in: it stays, and the files move into it.
+            for name in names:
+                (beside / name).rename(folder / name)
+            beside.rmdir()
+        else:
+            beside.chmod(0o755)  # a temporary folder is closed to others; a calculation is not
+            beside.rename(folder)
     except BaseException:
         shutil.rmtree(beside, ignore_errors=True)
         raise

@@ -8,7 +8,6 @@ import pytest
 
 from reportgen import spec
 from reportgen.errors import InputError
-from reportgen.spec import starting
 
 
 def everything(folder: Path) -> list[str]:
@@ -63,3 +62,10 @@ def test_a_failure_half_way_leaves_nothing_behind(tmp_path: Path, monkeypatch: p
     with pytest.raises(OSError, match="disk full"):
         spec.start(tmp_path / "new")
     assert everything(tmp_path) == []
+
+
+def test_the_folder_one_stands_in_can_be_started(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.chdir(tmp_path)
+    spec.start(Path())
+    assert everything(tmp_path) == ["calculation.toml", "purpose.md"]
+    assert Path.cwd() == tmp_path
