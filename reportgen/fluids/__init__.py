@@ -1,5 +1,65 @@
-"""Property models: vectorised, SI units, mass basis."""
+"""Property models: vectorised, SI units, mass basis.
 
+    fluid = real_fluid("water")                     # or ideal_gas("nitrogen"), ideal_gas({"N2": 0.79, "O2": 0.21})
+    state = fluid.at(pressure=39e5, temperature=[600.0, 650.0])
+    state.specific_entropy
+
+Every model has the interface of :class:`fluids.model.Fluid`.
+"""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+from reportgen.errors import InputError
+from reportgen.fluids import catalogue
 from reportgen.fluids.ideal_gases import ideal_gas
 
-__all__ = ["ideal_gas"]
+if TYPE_CHECKING:
+    from reportgen.fluids.real_fluid import RealFluid
+
+__all__ = ["describe", "ideal_gas", "names", "real_fluid"]
+
+
+def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
+    """Real fluid by its published Helmholtz-energy equation; see :class:`fluids.real_fluid.RealFluid`.
+
+    Parameters
+    ----------
+    name : canonical name (see :func:`names`), alias, formula or CAS number.
+    reference_state : "published", "IIR", "ASHRAE" or "NBP".
+
+    Raises
+    ------
+    InputError : unknown fluid (with the nearest name) or reference state.
+    """
+    from reportgen.fluids.real_fluid import RealFluid
+
+    return RealFluid(name, reference_state)
+
+
+def names() -> tuple[str, ...]:
+    """Names of the real fluids carried."""
+    return catalogue.names()
+
+
+def describe(name: str) -> str:
+    """What is carried under a name, real fluid and ideal gas, as lines of text: range, zeros, sources.
+
+    Raises
+    ------
+    InputError : neither carries the name; hints give the nearest names.
+    """
+    from reportgen.fluids import gas_catalogue
+    from reportgen.fluids.description import describe_real
+
+    texts = []
+    faults = []
+    for write in (describe_real, gas_catalogue.describe):
+        try:
+            texts.append(write(name))
+        except InputError as error:
+            faults += error.faults
+    if not texts:
+        raise InputError(faults)
+    return "\n\n".join(texts)

@@ -93,7 +93,9 @@ class PressureFlash:
             p = pressure[rest]
             dense = p >= self._curves.top_pressure
             top = self._curves.top_temperature
-            result.temperature[rest] = np.where(dense, np.minimum(top * (p / self._curves.top_pressure) ** 0.13, self._highest), self._lowest)
+            result.temperature[rest] = np.where(
+                dense, np.minimum(top * (p / self._curves.top_pressure) ** 0.13, self._highest), self._lowest
+            )
             liquid[rest] = dense
             result.density[rest] = self._solver.solve(result.temperature[rest], p, dense)[0]
         todo = np.flatnonzero(~result.found & ~result.between)
@@ -148,7 +150,9 @@ class PressureFlash:
             overall = 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))
         # density guess: a gas keeps its compressibility, a liquid its density
         guess = np.where(cold_side, rho0, rho0 * t0 / np.maximum(start, edge))
-        result.temperature[where] = np.where(mixed, t0 if not self._curves.pseudo_pure else np.where(x == 0, t_l, t_v), start)
+        result.temperature[where] = np.where(
+            mixed, t0 if not self._curves.pseudo_pure else np.where(x == 0, t_l, t_v), start
+        )
         result.density[where] = np.where(mixed, overall, guess)
 
     @staticmethod
@@ -208,7 +212,9 @@ class PressureFlash:
         if remaining.size:
             self._search(pressure, target, entropy, result, remaining, low, high, liquid)
 
-    def _on_branch(self, temperature: FloatArray, density: FloatArray, pressure: FloatArray, liquid: BoolArray) -> BoolArray:
+    def _on_branch(
+        self, temperature: FloatArray, density: FloatArray, pressure: FloatArray, liquid: BoolArray
+    ) -> BoolArray:
         """Whether a root lies on the stable side of the saturation line, and inside the temperatures allowed."""
         good = (temperature > self._lowest * (1 - 1e-9)) & (temperature < self._highest * (1 + 1e-9))
         below = temperature < self._curves.top_temperature

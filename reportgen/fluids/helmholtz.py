@@ -141,6 +141,11 @@ class Helmholtz:
         one = zero + 1
         return Reduced(value, one, -one, first, second, zero)
 
+    def shift(self, enthalpy: float, entropy: float) -> None:
+        """Raise all enthalpies [J/kg] and entropies [J/(kg*K)] by constants: adds τΔh/(R T_r) − Δs/R to φ°."""
+        self._linear += enthalpy / (self.gas_constant * self.reducing_temperature)
+        self._constant -= entropy / self.gas_constant
+
     def isotherm(self, temperature: FloatArray) -> Isotherm:
         """What depends on temperature T [K] alone, for repeated evaluation at different densities."""
         tau = self.reducing_temperature / temperature

@@ -88,7 +88,7 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
     first, second = values[names[0]], values[names[1]]
     if first.shape != second.shape:
         try:
-            first, second = np.broadcast_arrays(first, second)
+            first, second = (np.array(array) for array in np.broadcast_arrays(first, second))
         except ValueError:
             raise InputError(
                 Fault(

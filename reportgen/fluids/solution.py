@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -54,6 +54,29 @@ class Solution:
         found["quality"] = self.quality
         return found
 
+    def masked(self, rejected: NDArray[np.bool_]) -> dict[str, FloatArray]:
+        """Put NaN into the rejected elements; returns the fields known already."""
+        self._replace(lambda array: np.where(rejected, np.nan, array))
+        return self.values()
+
+    def spread(self, positions: NDArray[np.intp], size: int) -> dict[str, FloatArray]:
+        """Put the elements to their positions in a longer batch, NaN elsewhere; returns the fields known already."""
+
+        def place(array: FloatArray) -> FloatArray:
+            longer = np.full(size, np.nan)
+            longer[positions] = array
+            return longer
+
+        self._replace(place)
+        return self.values()
+
+    def _replace(self, change: Callable[[FloatArray], FloatArray]) -> None:
+        for name in ("temperature", "pressure", "density", "quality", "liquid_density", "vapour_density"):
+            array = getattr(self, name)
+            if array is not None:
+                setattr(self, name, change(array))
+        self.known = {name: change(array) for name, array in self.known.items()}
+
     def fill(self, name: str) -> Mapping[str, NDArray[Any]]:
         """The field ``name`` and those that come with it."""
         if name in _CALORIC:
@@ -88,7 +111,9 @@ class Solution:
                 cp = cv + t * (found.pressure_temperature / rho) ** 2 / slope
                 w = np.sqrt(cp / cv * slope)
         if mixed is not None and mixed.size:
-            assert self.quality is not None and self.liquid_density is not None and self.vapour_density is not None
+            assert self.quality is not None
+            assert self.liquid_density is not None
+            assert self.vapour_density is not None
             x, t_mixed = self.quality[mixed], t[mixed]
             both = np.concatenate([self.liquid_density[mixed], self.vapour_density[mixed]])
             phases = self.equation.properties(np.concatenate([t_mixed, t_mixed]), both)

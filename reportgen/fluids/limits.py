@@ -1,0 +1,245 @@
+"""Where a real fluid's equation may be used, and what is said when it may not."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.errors import Fault
+from reportgen.fluids.melting import MeltingLine
+from reportgen.fluids.model import Limits, Point
+from reportgen.fluids.pairs import PROPERTIES, Elements
+
+__all__ = ["Guard", "limits_of"]
+
+FloatArray = NDArray[np.float64]
+BoolArray = NDArray[np.bool_]
+
+#: Rounding granted at the ends of the range.
+_ROUNDING = 1e-9
+
+
+def limits_of(data: Mapping[str, Any]) -> Limits:
+    """Limits from a data file."""
+    limits, critical, triple = data["limits"], data["critical_point"], data["triple_point"]
+    remarks = []
+    if data["melting_line"]:
+        remarks.append("Bounded by the melting line: states under it are refused.")
+    else:
+        remarks.append("No melting line is carried: that a compressed liquid is not solid is not checked.")
+    if data["pseudo_pure"]:
+        remarks.append(
+            "Pseudo-pure: bubble and dew lines differ, and there is no state between them. The critical point given is the "
+            "point of the highest temperature of the two-phase region."
+        )
+    return Limits(
+        minimum_temperature=limits["minimum_temperature"],
+        maximum_temperature=limits["maximum_temperature"],
+        maximum_pressure=limits["maximum_pressure"],
+        triple_point=Point(triple["temperature"], triple["pressure"]),
+        critical_point=Point(critical["temperature"], critical["pressure"], critical["density"]),
+        remarks=tuple(remarks),
+    )
+
+
+def _value(name: str, value: float) -> str:
+    unit = PROPERTIES[name]
+    return f"{name} {value:.9g}" + ("" if unit == "1" else f" {unit}")
+
+
+def _sentence(name: str, value: float) -> str:
+    text = _value(name, value).replace("_", " ", 1)
+    return text[0].upper() + text[1:]
+
+
+class Guard:
+    """Checks batches against the limits of one fluid and words the faults.
+
+    Parameters
+    ----------
+    title : name of the fluid for messages.
+    limits : its limits.
+    melting_line : the ``melting_line`` table of its data file, or None.
+    """
+
+    def __init__(self, title: str, limits: Limits, melting_line: Mapping[str, Any] | None) -> None:
+        self._title = title
+        self._limits = limits
+        self._line = MeltingLine(melting_line) if melting_line else None
+
+    def _reject(self, where: BoolArray, elements: Elements, name: str, values: FloatArray, limit: str) -> None:
+        elements.reject(
+            where,
+            lambda i: Fault(
+                f"{_sentence(name, values[i])} is {limit} for {self._title}.", found=_value(name, values[i])
+            ),
+        )
+
+    def temperature(self, temperature: FloatArray, elements: Elements) -> None:
+        """Refuse temperatures [K] outside the range."""
+        low, high = self._limits.minimum_temperature, self._limits.maximum_temperature
+        inside = (temperature >= low * (1 - _ROUNDING)) & (temperature <= high * (1 + _ROUNDING))
+        if inside.all():
+            return
+        cold = temperature < low * (1 - _ROUNDING)
+        self._reject(cold, elements, "temperature", temperature, f"below the minimum, {low:g} K (triple point),")
+        self._reject(~cold & ~inside, elements, "temperature", temperature, f"above the maximum, {high:g} K,")
+
+    def pressure(self, pressure: FloatArray, elements: Elements) -> None:
+        """Refuse pressures [Pa] not positive or above the maximum."""
+        high = self._limits.maximum_pressure
+        inside = (pressure > 0) & (pressure <= high * (1 + _ROUNDING))
+        if inside.all():
+            return
+        self._reject(pressure <= 0, elements, "pressure", pressure, "not above zero (absolute pressure is needed)")
+        self._reject(~inside & (pressure > 0), elements, "pressure", pressure, f"above the maximum, {high:g} Pa,")
+
+    def resulting_pressure(self, pressure: FloatArray, elements: Elements) -> None:
+        """Refuse pressures [Pa] that came out of temperature and density beyond the range."""
+        self.pressure(pressure, elements)
+
+    def density(self, density: FloatArray, elements: Elements, highest: float) -> None:
+        """Refuse densities [kg/m3] not positive, or beyond any state within the limits."""
+        self._reject(~(density > 0), elements, "density", density, "not above zero")
+        self._reject(
+            density > highest,
+            elements,
+            "density",
+            density,
+            f"above {highest:.5g} kg/m3, the highest within the limits,",
+        )
+
+    def quality(self, quality: FloatArray, elements: Elements, pseudo_pure: bool) -> None:
+        """Refuse qualities [1] outside 0 to 1, and for pseudo-pure fluids any but 0 and 1."""
+        self._reject(~((quality >= 0) & (quality <= 1)), elements, "quality", quality, "not between 0 and 1")
+        if pseudo_pure:
+            elements.reject(
+                (quality > 0) & (quality < 1),
+                lambda i: Fault(
+                    f"Quality {quality[i]:g} lies between the bubble and the dew line of {self._title}, a pseudo-pure fluid, whose "
+                    "equation gives no state there.",
+                    found=_value("quality", quality[i]),
+                    expected="quality 0 (bubble line) or 1 (dew line)",
+                ),
+            )
+
+    def distance(self, distance: FloatArray, elements: Elements, name: str) -> None:
+        """Refuse negative superheat or subcooling [K]."""
+        self._reject(
+            distance < 0, elements, name, distance, "negative, which names a state on the other side of saturation,"
+        )
+
+    def saturation_pressure(self, pressure: FloatArray, elements: Elements, triple: float, top: float) -> None:
+        """Refuse pressures [Pa] without liquid and vapour in equilibrium."""
+        self._reject(
+            pressure < triple * (1 - _ROUNDING),
+            elements,
+            "pressure",
+            pressure,
+            f"below that of the triple point, {triple:.6g} Pa: no liquid there, so no saturation",
+        )
+        self._reject(
+            pressure > top * (1 + _ROUNDING),
+            elements,
+            "pressure",
+            pressure,
+            f"above the critical pressure, {top:.8g} Pa: no saturation",
+        )
+
+    def saturation_temperature(self, temperature: FloatArray, elements: Elements, top: float) -> None:
+        """Refuse temperatures [K] without liquid and vapour in equilibrium."""
+        low = self._limits.minimum_temperature
+        self._reject(
+            temperature < low * (1 - _ROUNDING),
+            elements,
+            "temperature",
+            temperature,
+            f"below the triple point, {low:g} K: no liquid there, so no saturation",
+        )
+        self._reject(
+            temperature > top * (1 + _ROUNDING),
+            elements,
+            "temperature",
+            temperature,
+            f"above the critical temperature, {top:.8g} K: no saturation",
+        )
+
+    def melting(self, pressure: FloatArray, temperature: FloatArray, elements: Elements) -> None:
+        """Refuse states under the melting line: p [Pa] above the melting pressure at T [K]."""
+        if self._line is None:
+            return
+        with np.errstate(invalid="ignore"):
+            candidates = (temperature <= self._line.maximum_temperature) & (pressure > self._floor)
+        if not candidates.any():
+            return
+        at = np.flatnonzero(candidates)
+        melting = np.full_like(pressure, np.inf)
+        melting[at] = self._line.pressure(np.maximum(temperature[at], self._line.minimum_temperature))
+        elements.reject(
+            pressure > melting * (1 + 1e-6),
+            lambda i: Fault(
+                f"{self._title} is solid at {pressure[i]:.9g} Pa and {temperature[i]:.9g} K: it melts there at {melting[i]:.6g} Pa.",
+                found=f"{_value('pressure', pressure[i])}, {_value('temperature', temperature[i])}",
+                expected="a state on the fluid side of the melting line",
+            ),
+        )
+
+    @property
+    def _floor(self) -> float:
+        """Pressure [Pa] below which nothing is under the melting line at allowed temperatures: that of the triple point."""
+        triple = self._limits.triple_point
+        return 0.0 if triple is None else triple.pressure
+
+    def on_saturation(self, pressure: float, temperature: float, pseudo_pure: bool) -> Fault:
+        """Pressure [Pa] and temperature [K] do not fix a state."""
+        if pseudo_pure:
+            return Fault(
+                f"{pressure:.9g} Pa and {temperature:.9g} K lie on or between the bubble and the dew line of {self._title}, a "
+                "pseudo-pure fluid, whose equation gives no state between them.",
+                hint="On a line, give the quality: 0 (bubble) or 1 (dew).",
+            )
+        return Fault(
+            f"{pressure:.9g} Pa and {temperature:.9g} K are a point of the saturation line of {self._title}: they do not tell liquid "
+            "from vapour.",
+            hint="Give the quality with one of them.",
+        )
+
+    def between_lines(self, pressure: float, name: str, value: float) -> Fault:
+        """A pseudo-pure fluid between its lines, from pressure [Pa] and another property."""
+        return Fault(
+            f"{_value('pressure', pressure)} and {_value(name, value)} lie between the bubble and the dew line of {self._title}, a "
+            "pseudo-pure fluid, whose equation gives no state there.",
+        )
+
+    def between_lines_density(self, temperature: float, density: float) -> Fault:
+        """The same from temperature [K] and density [kg/m3]."""
+        return Fault(
+            f"{_value('temperature', temperature)} and {_value('density', density)} lie between the bubble and the dew line of "
+            f"{self._title}, a pseudo-pure fluid, whose equation gives no state there.",
+        )
+
+    def too_cold(self, pressure: float, name: str, value: float) -> Fault:
+        """Below the lowest temperature."""
+        return Fault(
+            f"{self._title} at {pressure:.9g} Pa with {_value(name, value)} would be below the minimum temperature, "
+            f"{self._limits.minimum_temperature:g} K (triple point).",
+            found=_value(name, value),
+        )
+
+    def too_hot(self, pressure: float, name: str, value: float) -> Fault:
+        """Above the highest temperature."""
+        return Fault(
+            f"{self._title} at {pressure:.9g} Pa with {_value(name, value)} would be above the maximum temperature, "
+            f"{self._limits.maximum_temperature:g} K.",
+            found=_value(name, value),
+        )
+
+    def not_found(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
+        """The search did not end in a state."""
+        return Fault(
+            f"No state of {self._title} was found at {_value(first, first_value)} and {_value(second, second_value)}.",
+            hint="If these values lie within the limits of the fluid, this is a fault of the program.",
+        )

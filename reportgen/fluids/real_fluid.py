@@ -1,0 +1,294 @@
+"""Real fluids by their published multiparameter Helmholtz-energy equations."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from reportgen.errors import Fault, InputError
+from reportgen.fluids import catalogue
+from reportgen.fluids.density import DensitySolver
+from reportgen.fluids.flash import PressureFlash
+from reportgen.fluids.helmholtz import Helmholtz
+from reportgen.fluids.limits import Guard, limits_of
+from reportgen.fluids.model import Errors
+from reportgen.fluids.pairs import Elements, read_pair
+from reportgen.fluids.reference import zero_of
+from reportgen.fluids.saturation import SaturationCurves
+from reportgen.fluids.solution import Solution
+from reportgen.fluids.state import State
+
+__all__ = ["RealFluid"]
+
+FloatArray = NDArray[np.float64]
+
+#: Pressures closer than this to saturation (relative) do not decide between liquid and vapour.
+_SATURATION_BAND = 1e-9
+
+
+class RealFluid:
+    """One substance, by its published equation of state: SI units, mass basis, vectorised.
+
+    Equation: a(T, ρ) = RT [φ°(δ, τ) + φʳ(δ, τ)], see helmholtz.py; publication and DOI in ``sources``; range in ``limits``.
+
+    Parameters
+    ----------
+    name : canonical name, alias, formula or CAS number.
+    reference_state : "published" (zero of the publication), "IIR" (h = 200 kJ/kg, s = 1 kJ/(kg·K) for the saturated liquid at
+        0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C) or "NBP" (h = s = 0 for the saturated liquid at 101 325 Pa).
+
+    Raises
+    ------
+    InputError : unknown fluid; unknown reference state, or one that the fluid does not have.
+    """
+
+    kind = "real-fluid"
+    composition = None
+
+    def __init__(self, name: str, reference_state: str = "published") -> None:
+        data, file = catalogue.find(name)
+        self.substance: str = data["name"]
+        self.title: str = data["title"]
+        self.molar_mass: float = data["molar_mass"]
+        self.gas_constant: float = data["molar_gas_constant"] / self.molar_mass
+        self.pseudo_pure: bool = data["pseudo_pure"]
+        self.reference_state = reference_state
+        self.sources = catalogue.source_lines(data)
+        self.data_files = ({"file": file, "sha256": catalogue.digest(file)},)
+        self.limits = limits_of(data)
+        self._guard = Guard(self.title, self.limits, data["melting_line"])
+        self._curves = SaturationCurves(data["saturation"], data["critical_point"]["temperature"])
+        equation = Helmholtz(
+            data["ideal"],
+            data["residual"],
+            reducing_temperature=data["reducing_temperature"],
+            reducing_density=data["reducing_molar_density"] * self.molar_mass,
+            gas_constant=self.gas_constant,
+        )
+        self.entropy_zero = zero_of(reference_state, data, equation, self._curves)
+        self._equation = equation
+        self._maximum_density: float = data["limits"]["maximum_density"]
+        self._solver = DensitySolver(equation, self._curves, data["acentric_factor"], self._maximum_density)
+        self._triple_pressure: float = data["triple_point"]["pressure"]
+        self._flash = PressureFlash(
+            equation,
+            self._curves,
+            self._solver,
+            self.limits.minimum_temperature,
+            self.limits.maximum_temperature,
+            self._triple_pressure,
+        )
+        self._pairs: dict[tuple[str, str], Callable[[FloatArray, FloatArray, Elements], Solution]] = {
+            ("pressure", "temperature"): self._pressure_temperature,
+            ("pressure", "specific_enthalpy"): self._pressure_enthalpy,
+            ("pressure", "specific_entropy"): self._pressure_entropy,
+            ("pressure", "quality"): self._pressure_quality,
+            ("temperature", "quality"): self._temperature_quality,
+            ("temperature", "density"): self._temperature_density,
+            ("pressure", "superheat"): self._pressure_superheat,
+            ("pressure", "subcooling"): self._pressure_subcooling,
+        }
+
+    def __repr__(self) -> str:
+        return f"RealFluid({self.substance!r}, reference_state={self.reference_state!r})"
+
+    def at(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
+        """State fixed by two properties; see ``fluids.model.Fluid.at``.
+
+        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, quality, superheat or subcooling; temperature
+        with quality or density (or specific_volume). Pressure and temperature within 1e-9 of saturation are refused, since they do not tell
+        liquid from vapour: give the quality.
+        """
+        given = read_pair(pair, self._pairs, self.title)
+        if errors not in ("raise", "mask"):
+            raise InputError(Fault("Errors are raised or masked.", found=repr(errors), expected='"raise", "mask"'))
+        size = given.first.size
+        valid = np.isfinite(given.first) & np.isfinite(given.second)
+        elements = Elements(size)
+        # An infinite value is a mistake, NaN is a value not known.
+        elements.reject(
+            np.isinf(given.first) | np.isinf(given.second),
+            lambda _: Fault(f"{given.names[0]} or {given.names[1]} is infinite."),
+        )
+        solve = self._pairs[given.names]
+        if valid.all():
+            solution = solve(given.first, given.second, elements)
+            elements.finish(errors)
+            if not elements.faults:
+                return State(given.shape, solution.values(), solution.fill)
+            return State(given.shape, solution.masked(elements.rejected), solution.fill, elements.faults)
+        inner = Elements(int(np.count_nonzero(valid)))
+        solution = solve(given.first[valid], given.second[valid], inner)
+        positions = np.flatnonzero(valid)
+        elements.faults |= {int(positions[index]): fault for index, fault in inner.faults.items()}
+        elements.finish(errors)
+        solution.masked(inner.rejected)
+        return State(given.shape, solution.spread(positions, size), solution.fill, elements.faults)
+
+    def saturation(
+        self, *, temperature: ArrayLike | None = None, pressure: ArrayLike | None = None, errors: Errors = "raise"
+    ) -> tuple[State, State]:
+        """Saturated liquid and saturated vapour at a temperature [K] or a pressure [Pa], in the shape given.
+
+        Raises
+        ------
+        InputError : not exactly one of the two given.
+        RangeError : below the triple point or above the critical point (``errors="raise"``).
+        """
+        if (temperature is None) == (pressure is None):
+            raise InputError(Fault("Saturation is fixed by a temperature or a pressure, one of the two."))
+        if temperature is not None:
+            given = {"temperature": temperature}
+        else:
+            assert pressure is not None
+            given = {"pressure": pressure}
+        return self.at(errors=errors, quality=0.0, **given), self.at(errors=errors, quality=1.0, **given)
+
+    def _solution(self, temperature: FloatArray, pressure: FloatArray, density: FloatArray, **more: Any) -> Solution:
+        return Solution(self._equation, self._curves, self._triple_pressure, temperature, pressure, density, **more)
+
+    def _pressure_temperature(self, pressure: FloatArray, temperature: FloatArray, elements: Elements) -> Solution:
+        guard, curves = self._guard, self._curves
+        guard.pressure(pressure, elements)
+        guard.temperature(temperature, elements)
+        usable = ~elements.rejected
+        p, t = (
+            (pressure, temperature)
+            if usable.all()
+            else (np.where(usable, pressure, 1e5), np.where(usable, temperature, self.limits.maximum_temperature))
+        )
+        liquid = np.zeros(p.size, dtype=np.bool_)
+        below = t < curves.top_temperature
+        if below.any():
+            saturated = curves.at_temperature(t[below])
+            bubble, dew = saturated.bubble_pressure, saturated.dew_pressure
+            liquid[below] = p[below] > (bubble if not self.pseudo_pure else np.sqrt(bubble * dew))
+            band = (p[below] < bubble * (1 + _SATURATION_BAND)) & (p[below] > dew * (1 - _SATURATION_BAND))
+            if band.any():
+                on_line = np.zeros(p.size, dtype=np.bool_)
+                on_line[below] = band
+                elements.reject(on_line, lambda i: guard.on_saturation(p[i], t[i], self.pseudo_pure))
+        guard.melting(p, t, elements)
+        density, found = self._solver.solve(t, p, liquid)
+        elements.reject(~found, lambda i: guard.not_found("pressure", p[i], "temperature", t[i]))
+        return self._solution(temperature, pressure, density)
+
+    def _pressure_enthalpy(self, pressure: FloatArray, enthalpy: FloatArray, elements: Elements) -> Solution:
+        return self._pressure_caloric(pressure, enthalpy, elements, "specific_enthalpy")
+
+    def _pressure_entropy(self, pressure: FloatArray, entropy: FloatArray, elements: Elements) -> Solution:
+        return self._pressure_caloric(pressure, entropy, elements, "specific_entropy")
+
+    def _pressure_caloric(self, pressure: FloatArray, target: FloatArray, elements: Elements, name: str) -> Solution:
+        guard = self._guard
+        guard.pressure(pressure, elements)
+        p = (
+            pressure
+            if not elements.rejected.any()
+            else np.where(elements.rejected, self._curves.top_pressure / 2, pressure)
+        )
+        result = self._flash.solve(p, target, entropy=name == "specific_entropy")
+        elements.reject(result.between, lambda i: guard.between_lines(p[i], name, target[i]))
+        elements.reject(result.cold, lambda i: guard.too_cold(p[i], name, target[i]))
+        elements.reject(result.hot, lambda i: guard.too_hot(p[i], name, target[i]))
+        elements.reject(~result.found, lambda i: guard.not_found("pressure", p[i], name, target[i]))
+        guard.melting(p, result.temperature, elements)
+        return self._solution(
+            result.temperature,
+            pressure,
+            result.density,
+            quality=result.quality,
+            liquid_density=result.liquid_density,
+            vapour_density=result.vapour_density,
+            known={name: target},
+        )
+
+    def _pressure_quality(self, pressure: FloatArray, quality: FloatArray, elements: Elements) -> Solution:
+        self._guard.pressure(pressure, elements)
+        self._guard.quality(quality, elements, self.pseudo_pure)
+        self._guard.saturation_pressure(pressure, elements, self._triple_pressure, self._curves.top_pressure)
+        p = np.where(elements.rejected, self._curves.top_pressure / 2, pressure)
+        saturated = self._curves.at_pressure(np.maximum(p, self._triple_pressure))
+        temperature = np.where(quality == 0, saturated.bubble_temperature, saturated.dew_temperature)
+        return self._saturated(temperature, pressure, quality, saturated.liquid_density, saturated.vapour_density)
+
+    def _temperature_quality(self, temperature: FloatArray, quality: FloatArray, elements: Elements) -> Solution:
+        self._guard.quality(quality, elements, self.pseudo_pure)
+        self._guard.saturation_temperature(temperature, elements, self._curves.top_temperature)
+        t = np.where(elements.rejected, self.limits.minimum_temperature, temperature)
+        saturated = self._curves.at_temperature(t)
+        pressure = np.where(quality == 0, saturated.bubble_pressure, saturated.dew_pressure)
+        return self._saturated(temperature, pressure, quality, saturated.liquid_density, saturated.vapour_density)
+
+    def _saturated(
+        self, temperature: FloatArray, pressure: FloatArray, quality: FloatArray, liquid: FloatArray, vapour: FloatArray
+    ) -> Solution:
+        density = 1 / (1 / liquid + quality * (1 / vapour - 1 / liquid))
+        # exact ends: one phase, with its heat capacity and speed of sound
+        density = np.where(quality == 0, liquid, np.where(quality == 1, vapour, density))
+        return self._solution(
+            temperature, pressure, density, quality=quality, liquid_density=liquid, vapour_density=vapour
+        )
+
+    def _temperature_density(self, temperature: FloatArray, density: FloatArray, elements: Elements) -> Solution:
+        guard = self._guard
+        guard.temperature(temperature, elements)
+        guard.density(density, elements, self._maximum_density)
+        t = np.where(elements.rejected, self.limits.maximum_temperature, temperature)
+        rho = np.where(elements.rejected, 1.0, density)
+        below = t < self._curves.top_temperature
+        quality = np.full_like(t, np.nan)
+        rho_l, rho_v = quality.copy(), quality.copy()
+        pressure = self._equation.properties(t, rho).pressure
+        if below.any():
+            saturated = self._curves.at_temperature(t[below])
+            liquid, vapour = saturated.liquid_density, saturated.vapour_density
+            x = (1 / rho[below] - 1 / liquid) / (1 / vapour - 1 / liquid)
+            mixed = (x >= 0) & (x <= 1)
+            rho_l[below], rho_v[below] = liquid, vapour
+            quality[below] = np.where(mixed, x, np.nan)
+            pressure[below] = np.where(mixed, saturated.bubble_pressure, pressure[below])
+            if self.pseudo_pure:
+                inside = np.zeros(t.size, dtype=np.bool_)
+                inside[below] = mixed & (x > 0) & (x < 1)
+                elements.reject(inside, lambda i: guard.between_lines_density(t[i], rho[i]))
+                pressure[below] = np.where(mixed & (x == 1), saturated.dew_pressure, pressure[below])
+        guard.resulting_pressure(pressure, elements)
+        guard.melting(pressure, t, elements)
+        return self._solution(
+            temperature, pressure, density, quality=quality, liquid_density=rho_l, vapour_density=rho_v
+        )
+
+    def _pressure_superheat(self, pressure: FloatArray, superheat: FloatArray, elements: Elements) -> Solution:
+        return self._pressure_distance(pressure, superheat, elements, "superheat", 1.0)
+
+    def _pressure_subcooling(self, pressure: FloatArray, subcooling: FloatArray, elements: Elements) -> Solution:
+        return self._pressure_distance(pressure, subcooling, elements, "subcooling", 0.0)
+
+    def _pressure_distance(
+        self, pressure: FloatArray, distance: FloatArray, elements: Elements, name: str, end: float
+    ) -> Solution:
+        """A stated distance from saturation; none at all is the saturated state itself."""
+        guard = self._guard
+        guard.pressure(pressure, elements)
+        guard.saturation_pressure(pressure, elements, self._triple_pressure, self._curves.top_pressure)
+        guard.distance(distance, elements, name)
+        p = np.where(elements.rejected, self._curves.top_pressure / 2, pressure)
+        gap = np.where(elements.rejected, 0.0, distance)
+        saturated = self._curves.at_pressure(p)
+        base = saturated.dew_temperature if end else saturated.bubble_temperature
+        temperature = base + gap if end else base - gap
+        guard.temperature(temperature, elements)
+        guard.melting(p, temperature, elements)
+        # inside the band next to saturation, the branch is known here although (p, T) would not tell it
+        liquid = np.full(p.size, not end)
+        t = np.where(elements.rejected, base, temperature)
+        density, found = self._solver.solve(t, p, liquid)
+        edge = saturated.vapour_density if end else saturated.liquid_density
+        density = np.where(gap == 0, edge, density)
+        elements.reject(~found & (gap != 0), lambda i: guard.not_found("pressure", p[i], name, distance[i]))
+        quality = np.where(gap == 0, end, np.nan)
+        return self._solution(temperature, pressure, density, quality=quality, known={name: distance})
