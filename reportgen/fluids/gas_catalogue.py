@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection
 
+from reportgen.fluids import catalogue
 from reportgen.fluids.gas_species import GasSpecies, library, plain_name, resolve
 from reportgen.fluids.ideal_gases import IdealGas, ideal_gas
 
@@ -49,12 +50,14 @@ def describe(name: str) -> str:
     return "\n".join(lines)
 
 
-def real_counterpart(gas: IdealGas, carried: Collection[str]) -> str | None:
-    """Name of the real fluid that an ideal gas can be tested against, out of the names ``carried``, or None.
+def real_counterpart(gas: IdealGas, carried: Collection[str] | None = None) -> str | None:
+    """Name of the real fluid that an ideal gas can be tested against, or None.
+
+    ``carried`` are the names of real fluids to choose from, all that are carried unless given.
 
     A single species has itself; a mixture has "air" when no mole fraction differs from dry air's by more than 0.015.
     """
-    real = {plain_name(name): name for name in carried}
+    real = {plain_name(name): name for name in (catalogue.names() if carried is None else carried)}
     composition = gas.composition
     if composition is None:
         return real.get(plain_name(gas.substance or ""))

@@ -106,7 +106,7 @@ def library() -> GasLibrary:
         temperature_breaks=tuple(content["temperature_breaks"]),
         standard_pressure=content["standard_pressure"],
         source=content["source"],
-        sha256=hashlib.sha256(raw).hexdigest(),
+        sha256=hashlib.sha256(raw.replace(b"\r\n", b"\n")).hexdigest(),  # the same whatever line ends a checkout has
     )
 
 
