@@ -11,18 +11,18 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
-from reportgen.errors import InputError
+from reportgen.errors import Fault, InputError
 from reportgen.fluids import catalogue
 from reportgen.fluids.ideal_gases import ideal_gas
 
 if TYPE_CHECKING:
-    from reportgen.fluids.real_fluid import RealFluid
+    from reportgen.fluids.real_fluids import RealFluid
 
 __all__ = ["describe", "ideal_gas", "names", "real_fluid"]
 
 
 def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
-    """Real fluid by its published Helmholtz-energy equation; see :class:`fluids.real_fluid.RealFluid`.
+    """Real fluid by its published Helmholtz-energy equation; see :class:`fluids.real_fluids.RealFluid`.
 
     Parameters
     ----------
@@ -33,7 +33,7 @@ def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
     ------
     InputError : unknown fluid (with the nearest name) or reference state.
     """
-    from reportgen.fluids.real_fluid import RealFluid
+    from reportgen.fluids.real_fluids import RealFluid
 
     return RealFluid(name, reference_state)
 
@@ -54,7 +54,7 @@ def describe(name: str) -> str:
     from reportgen.fluids.description import describe_real
 
     texts = []
-    faults = []
+    faults: list[Fault] = []
     for write in (describe_real, gas_catalogue.describe):
         try:
             texts.append(write(name))

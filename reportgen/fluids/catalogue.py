@@ -47,7 +47,7 @@ def _files() -> dict[str, str]:
 @cache
 def _aliases() -> dict[str, str]:
     """Plain form of every name, alias, formula and CAS number -> file of a real fluid."""
-    found = {}
+    found: dict[str, str] = {}
     for file in _files().values():
         data, _ = _read(file)
         if data.get("format") == FORMAT:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from reportgen.fluids import catalogue
-from reportgen.fluids.real_fluid import RealFluid
+from reportgen.fluids.real_fluids import RealFluid
 
 __all__ = ["describe_real"]
 

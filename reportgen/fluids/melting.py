@@ -51,7 +51,8 @@ class MeltingLine:
         if self._form == "simon":
             rise: FloatArray = part["a"] * (ratio ** part["c"] - 1)
             return start + rise
-        total = np.ones_like(ratio)
+        total: FloatArray = np.ones_like(ratio)
         for a, t in zip(part["a"], part["t"], strict=True):
             total += a * (ratio**t - 1 if self._form == "polynomial-in-ratio" else np.maximum(ratio - 1, 0) ** t)
-        return start * total
+        total *= start
+        return total
