@@ -18,7 +18,7 @@ from reportgen.fluids.ideal_gases import ideal_gas
 if TYPE_CHECKING:
     from reportgen.fluids.real_fluids import RealFluid
 
-__all__ = ["describe", "ideal_gas", "names", "real_fluid"]
+__all__ = ["describe", "ideal_gas", "ideal_gas_names", "names", "real_fluid"]
 
 
 def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
@@ -41,6 +41,13 @@ def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
 def names() -> tuple[str, ...]:
     """Names of the real fluids carried."""
     return catalogue.names()
+
+
+def ideal_gas_names() -> tuple[str, ...]:
+    """Names of the ideal gases carried; their formulas and other names are taken too."""
+    from reportgen.fluids import gas_catalogue
+
+    return gas_catalogue.names()
 
 
 def describe(name: str) -> str:
