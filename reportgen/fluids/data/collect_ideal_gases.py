@@ -230,7 +230,7 @@ def collect(data: bytes) -> dict[str, Any]:
         }
     return {
         "source": "McBride, Zehe and Gordon, NASA Glenn Coefficients for Calculating Thermodynamic Properties of "
-        "Individual Species, NASA/TP-2002-211556, 2002",
+        "Individual Species, NASA/TP-2002-211556, 2002, https://ntrs.nasa.gov/citations/20020085330",
         "collected_from": f"cea {version('cea')}, thermo.lib (Apache-2.0)",
         "form": "cp/R = a1/T^2 + a2/T + a3 + a4 T + a5 T^2 + a6 T^3 + a7 T^4; then b1 (enthalpy), b2 (entropy)",
         "units": {"molar_mass": "g/mol", "temperature": "K"},
