@@ -114,7 +114,8 @@ class Nasa9:
         if not any(part.any() for part in above):
             first: Array = table[0]
             return first
-        return table[np.sum(above, axis=0)].T
+        each: Array = table[np.sum(above, axis=0)].T
+        return each
 
     def heat_capacity(self, temperature: Array) -> Array:
         """c_p [J/(kg*K)] at T [K]."""
