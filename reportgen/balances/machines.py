@@ -89,7 +89,6 @@ def isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
         enthalpy,
         rf"h\left({token(pressure)},\,{token(entropy)}\right)",
         fluids=(piece.fluid_id(inlet),),
-        tolerant=True,
         reason="the isentropic outlet state lies outside the range of the fluid's equation",
     )
     h1, h2, hs, eta = token(first), token(second), token(ideal), token(efficiency)
@@ -199,7 +198,6 @@ def polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
         rf"\frac{{{top}}}{{{bottom}}}",
         inverses,
         fluids=(piece.fluid_id(inlet),),
-        tolerant=True,
         reason="the path between the two states leaves the range of the fluid's equation, or has no length",
     )
 

@@ -40,12 +40,11 @@ def exergy_ratio(
         tuple(inputs),
         lambda *arrays: ratio_of(gained(*arrays), spent(*arrays)),
         latex,
-        tolerant=True,
         reason="no exergy is spent, so that the ratio has no meaning",
     )
 
 
-def entropy_number_by_power(piece: Piece, reference: str, name: str, sign: float = 1.0) -> Formula:
+def entropy_number_by_power(piece: Piece, reference: str, name: str) -> Formula:
     """N_s = T0 Ṡgen / |reference|, the lost work in parts of a power or a heat flow."""
     lost = piece.path("lost_work")
     return Formula(
@@ -58,7 +57,6 @@ def entropy_number_by_power(piece: Piece, reference: str, name: str, sign: float
         (lost, reference),
         lambda work, scale: ratio_of(work, abs(scale)),
         rf"\frac{{{token(lost)}}}{{\left|{token(reference)}\right|}}",
-        tolerant=True,
         reason=f"the {name} is zero or unknown",
     )
 
@@ -79,6 +77,5 @@ def entropy_number_by_flow(piece: Piece, state: str) -> Formula:
         lambda generation, mass: ratio_of(generation, mass * constant),
         rf"\frac{{{token(generated)}}}{{{token(flow)}\,R}}",
         fluids=(piece.fluid_id(state),),
-        tolerant=True,
         reason="there is no flow",
     )

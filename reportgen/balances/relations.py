@@ -222,9 +222,8 @@ class Formula:
 
     ``evaluate`` takes the inputs in order. ``inverses`` give an input in closed form: they take the arrays in the
     order of ``inputs`` with the output in the place of the input asked for. ``solvable_inputs`` are the inputs the
-    relation may be solved for in any way (None: all). ``fluids`` are the fluids whose properties it uses.
-    ``tolerant``: when it cannot be evaluated, the value is left out with a warning instead of an error.
-    ``lower_bound`` keeps the unknown of an inversion above a value, e.g. 0 for a pressure.
+    relation may be solved for in any way (None: all). ``fluids`` are the fluids whose properties it uses. ``reason``
+    says why the value may be missing.
     """
 
     key: str
@@ -239,7 +238,6 @@ class Formula:
     inverses: Mapping[str, Inverse] = field(default_factory=dict)
     solvable_inputs: tuple[str, ...] | None = None
     fluids: tuple[str, ...] = ()
-    tolerant: bool = False
     reason: str = ""
 
     @property

@@ -84,7 +84,7 @@ class _Run:
         self.plant = solution.plant
         self.columns = columns
         self.network = network
-        self.assumed = {default.relation.key: default for default in network.defaults}
+        self.assumed = network.assumed
         self.starts = Starts(self.plant, solution.pieces, self.values)
         self.needed = _needed(network.blocks)
         self.simultaneous = 0
@@ -97,6 +97,7 @@ class _Run:
             affects = (*known.affects, *default.affects) if known else default.affects
             listed[default.key] = Assumption(default.key, default.text, default.owner, affects)
         self.solution.assumptions.extend(listed.values())
+        self.solution.assumptions.extend(_neglected(self.solution))
         for number, block in enumerate(self.network.blocks):
             self._block(block, number in self.needed)
         for state in self.plant.states:
@@ -199,8 +200,8 @@ class _Run:
         self.values[unknown] = array
         default = self.assumed.get(relation.key)
         uses = (*others, *(f"fluids.{fluid}" for fluid in fluids))
-        if default and not others:
-            uses = (f"assumptions.{default.key}",)
+        if default:
+            uses = (*uses, f"assumptions.{default.key}")
         if not np.isnan(array[0]):
             self.solution.steps.append(
                 Step(
@@ -208,7 +209,7 @@ class _Run:
                     relation.owner,
                     relation.name,
                     relation.words(unknown),
-                    f"assumption: {default.text}" if default else relation.basis,
+                    f"assumption: {default.text}" if relation.basis == "assumption" and default else relation.basis,
                     (unknown,),
                     uses,
                     (equation,),
@@ -245,21 +246,23 @@ class _Run:
         solves = tuple(path for path in block.unknowns if path not in self.values)
         self.values.update((path, found[path]) for path in solves)
         uses = [path for relation in block.relations for path in relation.variables if path not in block.unknowns]
-        fluids: list[str] = []
+        others: list[str] = []
         equations = []
         owners: list[str] = []
         for relation in block.relations:
             if isinstance(relation, PropertyRelation):
                 prefix = f"states.{relation.state}."
-                fluids.append(f"fluids.{self.plant.states[relation.state]}")
+                others.append(f"fluids.{self.plant.states[relation.state]}")
                 symbol = NAMES[relation.output].symbol
                 arguments = rf"{token(prefix + 'pressure')},\,{token(prefix + 'specific_enthalpy')}"
                 equations.append(Equation(token(relation.path), rf"{symbol}\left({arguments}\right)"))
             else:
                 if isinstance(relation, Formula):
-                    fluids.extend(f"fluids.{fluid}" for fluid in relation.fluids)
+                    others.extend(f"fluids.{fluid}" for fluid in relation.fluids)
                 equations.append(relation.balanced())
                 owners.append(relation.owner)
+            if relation.key in self.assumed:
+                others.append(f"assumptions.{self.assumed[relation.key].key}")
         self.simultaneous += 1
         single = len(block.relations) == 1
         names = ", ".join(dict.fromkeys(owner.split(".", 1)[-1] for owner in owners))
@@ -278,7 +281,7 @@ class _Run:
                 sentence,
                 method,
                 solves,
-                tuple(dict.fromkeys([*uses, *fluids])),
+                tuple(dict.fromkeys([*uses, *others])),
                 tuple(equations),
             )
         )
@@ -299,6 +302,24 @@ class _Run:
 
     def _fluid_of(self, state: str) -> Any:
         return self.plant.fluids[self.plant.states[state]]
+
+
+def _neglected(solution: Solution) -> list[Assumption]:
+    """Kinetic and potential energy left out at one stream of a piece while another stream of it states them."""
+    found = {}
+    for piece in solution.pieces.values():
+        states = dict.fromkeys(state for _, _, state in piece.connections())
+        for name, words in (
+            ("velocity", "The kinetic energy of stream {} is neglected."),
+            ("elevation", "Stream {} is at the datum of elevations."),
+        ):
+            silent = [state for state in states if f"states.{state}.{name}" not in piece.given]
+            if silent and len(silent) < len(states):
+                for state in silent:
+                    key = f"states.{state}.no_{name}"
+                    affects = (f"states.{state}.{name}",)
+                    found[key] = Assumption(key, words.format(state), f"states.{state}", affects)
+    return list(found.values())
 
 
 def _number(value: float, name: str) -> str:

@@ -76,6 +76,8 @@ class Network:
     defaults: list[Default]
     unknowns: list[str]
     implied: list[Balance] = field(default_factory=list)
+    #: Key of a relation to the assumption that added or rewrote it.
+    assumed: dict[str, Default] = field(default_factory=dict)
 
 
 def state_properties(state: str, given: frozenset[str], flows: Iterable[str]) -> list[str]:
@@ -203,6 +205,7 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
     _refuse_excess(matching, table, given)
 
     taken: list[Default] = []
+    assumed: dict[str, Default] = {}
     candidates = [default for piece in pieces.values() for default in piece.kind.defaults(piece)]
     for default in sorted(candidates, key=lambda entry: entry.rank):
         if all(path in given for path in default.relation.variables):
@@ -221,6 +224,8 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
         taken.append(default)
         table[default.relation.key] = default.relation
         table.update(rewritten)
+        assumed[default.relation.key] = default
+        assumed.update(dict.fromkeys(rewritten, default))
     _refuse_lack(matching, list(unknowns), pieces)
 
     needs = {
@@ -233,7 +238,7 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
         Block(tuple(table[key] for key in keys), tuple(matching.unknown_of[key] for key in keys))
         for keys in blocks_in_order(_reading_order(table, pieces), needs)
     ]
-    return Network(blocks, taken, list(unknowns), implied)
+    return Network(blocks, taken, list(unknowns), implied, assumed)
 
 
 def _reading_order(table: Mapping[str, AnyRelation], pieces: Mapping[str, Piece]) -> list[str]:

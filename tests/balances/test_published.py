@@ -65,7 +65,7 @@ def test_steam_water_mixer() -> None:
 
 
 def test_condenser_with_the_flow_of_air_unknown() -> None:
-    """The book counts kelvins from 273: with 293.15 K and 303.15 K the result, a difference of large terms, is 0.736."""
+    """The book counts kelvins from 273; from 273.15 the result, a difference of large terms, would be 0.736 kW/K."""
     water, air = CoolPropFluid("Water"), CoolPropFluid("Air")
     flow = 10000 / 3600
     saturated = CP.PropsSI("P", "T", 35 + KELVIN, "Q", 1, "Water")

@@ -93,13 +93,16 @@ def results(piece: Piece) -> list[Formula]:
         return np.maximum(hot, 0.0) + np.maximum(cold, 0.0), np.maximum(-hot, 0.0) + np.maximum(-cold, 0.0)
 
     mh, eh1, eh2, mc, ec1, ec2 = (token(path) for path in paths)
+    hot = rf"\left[{mh}\left({eh2} - {eh1}\right)\right]"
+    cold = rf"\left[{mc}\left({ec2} - {ec1}\right)\right]"
     efficiency = exergy_ratio(
         piece,
-        "exergy gained by one stream over exergy given up by the other.",
+        "exergy gained by one stream over exergy given up by the other "
+        "(⁺ and ⁻: the size of what is positive or negative, else nothing).",
         paths,
         lambda *arrays: changes(*arrays)[0],
         lambda *arrays: changes(*arrays)[1],
-        rf"\left[\frac{{{mc}\left({ec2} - {ec1}\right)}}{{{mh}\left({eh1} - {eh2}\right)}}\right]^{{\pm 1}}",
+        rf"\frac{{{cold}^+ + {hot}^+}}{{{cold}^- + {hot}^-}}",
     )
     return [efficiency, entropy_number_by_power(piece, piece.path("duty"), "duty")]
 
