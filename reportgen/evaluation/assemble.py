@@ -11,8 +11,6 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
-import numpy as np
-
 from reportgen import balances
 from reportgen.errors import ReportgenError
 from reportgen.evaluation.assumptions import (
@@ -21,6 +19,7 @@ from reportgen.evaluation.assumptions import (
     assumption_list,
     boundary_temperature_test,
     fluid_assumptions,
+    stream_assumption,
 )
 from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit
 from reportgen.evaluation.budget import budgets
@@ -146,6 +145,8 @@ def _automatic(
 ) -> list[AutomaticAssumption]:
     """Assumptions of the property models, then those the balances took, each with its test where there is one."""
     found = fluid_assumptions(plant, calculation.fluids, variant, real_counterpart, property_model)
+    streams = stream_assumption(plant)
+    found += [] if streams is None else [streams]
     for item in solution.assumptions:
         port = next(
             (port for ports in plant.heats.values() for port in ports if port.entropy in item.affects),
@@ -172,4 +173,9 @@ def _summary(calculation: Calculation, plant: EvaluatedPlant, totals: list[str])
         if owner.startswith("equipment.") and f"{owner}.isentropic_efficiency" not in calculation.inputs:
             names.append("isentropic_efficiency")
         found += [path for name in names if (path := f"{owner}.{name}") in plant.values]
-    return [path for path in found if np.isfinite(plant.samples(path)[0]) or path.endswith("entropy_generation")]
+    # A generation that could not be evaluated must be seen to be missing; a power of zero says nothing.
+    return [
+        path
+        for path in found
+        if path.endswith("entropy_generation") or (plant.has(path) and plant.samples(path)[0] != 0.0)
+    ]

@@ -6,6 +6,7 @@ compares the results. How much a difference weighs is said by ``decisions.MAGNIT
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
@@ -13,7 +14,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from reportgen.errors import ReportgenError
-from reportgen.evaluation.decisions import MAGNITUDE_RULE, magnitude
+from reportgen.evaluation.decisions import MAGNITUDE_RULE, NEGLIGIBLE_PART_OF_UNCERTAINTY, magnitude
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.names import NAMES
 
@@ -28,6 +29,7 @@ __all__ = [
     "boundary_temperature_test",
     "compare",
     "fluid_assumptions",
+    "stream_assumption",
 ]
 
 #: Results that a test compares, the most telling first.
@@ -152,6 +154,35 @@ def fluid_assumptions(
     return found
 
 
+def stream_assumption(plant: EvaluatedPlant) -> AutomaticAssumption | None:
+    """Kinetic and potential energy left out of streams without velocity; None when every stream states its own.
+
+    The basis says up to which velocity that is negligible: V = √(2 U(h)/3), where V²/2 reaches a third of the expanded
+    uncertainty of the specific enthalpy, for the stream where this is lowest.
+    """
+    streams = [
+        state
+        for state in plant.state_fluids
+        if plant.has(f"states.{state}.mass_flow") and f"states.{state}.velocity" not in plant.axis.givens
+    ]
+    if not streams:
+        return None
+    basis = "neither velocity nor elevation stated in the file"
+    bounds = []
+    for state in streams:
+        uncertainty = plant.estimate(f"states.{state}.specific_enthalpy").expanded_uncertainty
+        if uncertainty > 0.0:
+            bounds.append((math.sqrt(2.0 * NEGLIGIBLE_PART_OF_UNCERTAINTY * uncertainty), state))
+    if bounds:
+        velocity, state = min(bounds)
+        basis += (
+            f"; up to {velocity:.2g} m/s (state {state}) kinetic energy stays below a third of the expanded "
+            "uncertainty of the specific enthalpy"
+        )
+    text = "Kinetic and potential energy are left out of streams that state no velocity or elevation."
+    return AutomaticAssumption("streams.kinetic-energy", text, basis, ())
+
+
 def boundary_temperature_test(
     plant: EvaluatedPlant, tag: str, temperature_path: str, variant: Variant
 ) -> dict[str, Any] | None:
@@ -214,8 +245,8 @@ def compare(plant: EvaluatedPlant, other: Mapping[str, float], condition: str) -
     heaviest = best[1]
     words = {
         "negligible": "no result changes noticeably",
-        "noticeable": "one result or more changes noticeably",
-        "decisive": "one result or more changes by more than its uncertainty",
+        "noticeable": "a result changes noticeably",
+        "decisive": "a result changes decisively",
     }
     finding = f"{condition} {words[heaviest['verdict']]}; shown is the one that changes most."
     return {

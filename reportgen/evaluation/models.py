@@ -22,7 +22,7 @@ def property_model(specification: FluidSpec, heat_capacity: float | None = None)
     ``heat_capacity`` [J/(kg·K)] for an ideal gas; None for a variable one.
     """
     if specification.model == "real-fluid":
-        return fluids.real_fluid(specification.substance, reference_state=specification.reference_state)
+        return fluids.real_fluid(specification.substance or "", reference_state=specification.reference_state)
     return fluids.ideal_gas(
         specification.substance if specification.substance is not None else dict(specification.composition or {}),
         basis=specification.basis or "mole",

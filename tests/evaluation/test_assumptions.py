@@ -16,6 +16,7 @@ from reportgen.evaluation.assumptions import (
     boundary_temperature_test,
     compare,
     fluid_assumptions,
+    stream_assumption,
 )
 
 
@@ -30,7 +31,7 @@ def test_the_change_that_weighs_most_is_shown() -> None:
     assert (result["path"], result["verdict"]) == ("equipment.M.power", "decisive")
     assert (result["model_value"], result["other_value"], result["difference"]) == (500.0, 506.0, 6.0)
     assert (result["unit"], result["dimension"]) == ("W", "power")
-    assert result["finding"].startswith("With something else one result or more")
+    assert result["finding"].startswith("With something else a result changes decisively")
     assert [entry["verdict"] for entry in result["results"]] == ["negligible", "decisive"]
 
 
@@ -132,3 +133,18 @@ def test_open_assumptions_come_first() -> None:
         ("x", "by default"),
         ("z", "tested"),
     ]
+
+
+def stream(**values: object) -> dict[str, object]:
+    return {f"states.1.{name}": value for name, value in values.items()}
+
+
+def test_streams_without_velocity_say_up_to_which_one_it_is_negligible() -> None:
+    """U(h) = 2 · 300 J/kg: a third of it is V²/2 at 20 m/s."""
+    found = stream_assumption(plant(stream(mass_flow=1.0, specific_enthalpy=samples(3e6, 300.0)), inputs=1))
+    assert found is not None
+    assert "up to 20 m/s (state 1)" in found.basis
+    exact = stream_assumption(plant(stream(mass_flow=1.0, specific_enthalpy=3e6)))
+    assert exact is not None
+    assert "m/s" not in exact.basis
+    assert stream_assumption(plant(stream(specific_enthalpy=3e6))) is None
