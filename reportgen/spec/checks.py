@@ -12,16 +12,16 @@ from collections.abc import Mapping
 from reportgen.errors import InputError
 from reportgen.quantities import Quantity
 from reportgen.spec.fields import QuantityOf, shown
+from reportgen.spec.fluid_tables import check_fluids
 from reportgen.spec.network import check_network
 from reportgen.spec.paths import input_locations, result_dimensions
 from reportgen.spec.schema import MOST_CORRELATIONS, NARRATIVES
 from reportgen.spec.source import Location, Source, path_of
 from reportgen.spec.states import check_states, givens_of
 
-__all__ = ["check", "criterion_limit", "read_quantity"]
+__all__ = ["check", "criterion_limit"]
 
 _TO_BE_VERIFIED = "to be verified"
-_FRACTION_TOLERANCE = 1e-6
 
 
 def check(source: Source, context: Mapping[str, float]) -> None:
@@ -30,26 +30,13 @@ def check(source: Source, context: Mapping[str, float]) -> None:
         source.miss((), "The file holds nothing to evaluate.", expected="[states.<name>] and [equipment.<tag>]")
     _check_title_block(source)
     _check_confirmed(source)
-    _check_fluids(source, context)
+    check_fluids(source, context)
     check_states(source)
     check_network(source)
     _check_limits(source, context)
     _check_criteria(source, context)
     _check_correlations(source)
     _check_cautions(source)
-
-
-def read_quantity(
-    source: Source, location: Location, marker: QuantityOf, context: Mapping[str, float]
-) -> Quantity | None:
-    """The quantity at a location; None, without a word, when there is none that can be read."""
-    node = source.node(location)
-    if node is None or node.broken:
-        return None
-    try:
-        return marker.read(node.plain(), context["atmosphere"], context["coverage_factor"])
-    except InputError:
-        return None
 
 
 # --- the document ---------------------------------------------------------------------------------------------------
@@ -114,54 +101,6 @@ def _check_confirmed(source: Source) -> None:
         )
 
 
-# --- fluids ---------------------------------------------------------------------------------------------------------
-
-
-def _check_fluids(source: Source, context: Mapping[str, float]) -> None:
-    for fluid, node in source.table("fluids").items():
-        if source.text("fluids", fluid, "model") != "ideal-gas":
-            continue
-        has_substance, has_composition = "substance" in node.table, "composition" in node.table
-        either = "either substance or composition with basis"
-        if has_substance and has_composition:
-            both = "Both substance and composition are given."
-            source.report(("fluids", fluid, "composition"), both, at="key", expected=either)
-        elif not has_substance and not has_composition:
-            source.miss(("fluids", fluid), "No substance is given.", expected=either)
-        if has_composition and "basis" not in node.table:
-            source.miss(
-                ("fluids", fluid, "composition"),
-                "The composition does not say what its fractions count.",
-                expected='basis = "mole" or basis = "mass"',
-            )
-        if has_substance and not has_composition and "basis" in node.table:
-            source.report(
-                ("fluids", fluid, "basis"),
-                "A single substance has no basis.",
-                at="key",
-                found="basis",
-                expected="basis with composition only",
-            )
-        _check_sum(source, fluid, context)
-
-
-def _check_sum(source: Source, fluid: str, context: Mapping[str, float]) -> None:
-    location = ("fluids", fluid, "composition")
-    fractions = source.table(*location)
-    marker = QuantityOf(("ratio",))
-    read = [read_quantity(source, (*location, name), marker, context) for name in fractions]
-    total = sum(quantity.value for quantity in read if quantity is not None)
-    node = source.node(location)
-    complete = node is not None and len(fractions) == len(node.table) and None not in read
-    if isinstance(node.value if node else None, dict) and complete and abs(total - 1.0) > _FRACTION_TOLERANCE:
-        source.report(
-            location,
-            "The fractions do not add up to 1.",
-            found=f"a sum of {total:.7g}",
-            expected=f"1 within {_FRACTION_TOLERANCE:g}",
-        )
-
-
 # --- limits, criteria, cautions -------------------------------------------------------------------------------------
 
 
@@ -178,8 +117,8 @@ def _check_limits(source: Source, context: Mapping[str, float]) -> None:
                 "The limits hold no limit.",
                 expected="pressure, temperature or minimum_temperature",
             )
-        highest = read_quantity(source, (*location, "temperature"), marker, context)
-        lowest = read_quantity(source, (*location, "minimum_temperature"), marker, context)
+        highest = marker.read_at(source, (*location, "temperature"), context)
+        lowest = marker.read_at(source, (*location, "minimum_temperature"), context)
         if highest is not None and lowest is not None and lowest.value >= highest.value:
             source.report(
                 (*location, "minimum_temperature"),

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime
 import math
 import re
+from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import Annotated, Any
 
@@ -22,6 +23,7 @@ from pydantic_core import CoreSchema, core_schema
 from reportgen.errors import Fault, InputError
 from reportgen.names import DIMENSIONS, NAMES
 from reportgen.quantities import Quantity, parse
+from reportgen.spec.source import Location, Source
 
 __all__ = [
     "Bounds",
@@ -144,6 +146,16 @@ class QuantityOf:
                 )
             )
         return quantity
+
+    def read_at(self, source: Source, location: Location, context: Mapping[str, float]) -> Quantity | None:
+        """The quantity at a location; None, without a word, when there is none that can be read."""
+        node = source.node(location)
+        if node is None or node.broken:
+            return None
+        try:
+            return self.read(node.plain(), context["atmosphere"], context["coverage_factor"])
+        except InputError:
+            return None
 
     def validate(self, raw: object, info: ValidationInfo) -> Quantity | str:
         """For pydantic: InputError is a ValueError and reaches the caller inside the validation error."""

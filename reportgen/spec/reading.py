@@ -17,7 +17,6 @@ from reportgen.spec.calculation import (
     Correlation,
     Criterion,
     EquipmentSpec,
-    FluidSpec,
     Input,
     Limits,
     Narrative,
@@ -28,6 +27,7 @@ from reportgen.spec.calculation import (
     Uncertainty,
 )
 from reportgen.spec.checks import check, criterion_limit
+from reportgen.spec.fluid_tables import FluidCheck, ask_the_models, fluid_spec
 from reportgen.spec.folder import CALCULATION_FILE, read_bytes, read_text
 from reportgen.spec.paths import input_locations, kind_of
 from reportgen.spec.schema import NARRATIVES
@@ -39,8 +39,11 @@ from reportgen.spec.validation import context_of, validate
 __all__ = ["read"]
 
 
-def read(folder: Path) -> Calculation:
+def read(folder: Path, check_fluid: FluidCheck | None = None) -> Calculation:
     """Read the calculation of a folder.
+
+    ``check_fluid`` makes the property model of a fluid or raises InputError; with it, substances that are not
+    carried are reported together with all other faults. Without it, only their making reports them.
 
     Raises InputError with all faults of the file, each with file (relative to the folder), line, column and path.
     """
@@ -54,6 +57,8 @@ def read(folder: Path) -> Calculation:
     context = context_of(source)
     document = validate(source, context)
     check(source, context)
+    if check_fluid is not None:
+        ask_the_models(source, context, check_fluid)
     narratives = _narratives(source, folder, files)
     if document is None or source.faults:
         raise InputError(source.sorted_faults())
@@ -112,7 +117,7 @@ class _Builder:
             approver=title.approver,
             narratives=narratives,
             inputs=self.inputs(),
-            fluids={name: self.fluid(name, table) for name, table in self.document.fluids.items()},
+            fluids={name: fluid_spec(self.source, name, table) for name, table in self.document.fluids.items()},
             states={
                 name: StateSpec(name, fluid_of(self.source, name) or "", table.title, self.line("states", name))
                 for name, table in self.document.states.items()
@@ -178,22 +183,6 @@ class _Builder:
             found = getattr(found, str(part)) if isinstance(found, BaseModel) else found[part]
         assert isinstance(found, Quantity)  # the schema has a quantity wherever input_locations points
         return found
-
-    def fluid(self, name: str, table: Any) -> FluidSpec:
-        line = self.line("fluids", name)
-        if table.model == "real-fluid":
-            return FluidSpec(name, table.model, line, substance=table.substance, reference_state=table.reference_state)
-        constant = isinstance(table.heat_capacity, Quantity)
-        composition = table.composition and {part: fraction.value for part, fraction in table.composition.items()}
-        return FluidSpec(
-            name,
-            table.model,
-            line,
-            substance=table.substance,
-            composition=composition,
-            basis=table.basis,
-            heat_capacity=table.heat_capacity.value if constant else None,
-        )
 
     def equipment(self, tag: str, table: Any) -> EquipmentSpec:
         kind = kind_of(self.source, tag)

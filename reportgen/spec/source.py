@@ -120,10 +120,14 @@ class Source:
         """Note a fault that does not know its place yet."""
         self.faults.append(replace(fault, path=path_of(location) or None).at(self.file, *self.place(location, at)))
 
+    @property
+    def crowded(self) -> bool:
+        """Whether there are more faults than will be listed: then slow searches for more are left out."""
+        return len(self.faults) > MOST_FAULTS
+
     def nearest(self, name: str, choices: Iterable[str]) -> str | None:
         """The valid name most like the one found, or None when none is like it."""
-        if len(self.faults) > MOST_FAULTS:
-            # Comparing names is slow, and these faults will not be listed.
+        if self.crowded:
             return None
         by_folded = {choice.casefold(): choice for choice in islice(choices, _MOST_CHOICES)}
         found = difflib.get_close_matches(name.casefold()[:100], by_folded, n=1, cutoff=0.6)

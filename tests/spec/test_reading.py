@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 
 from reportgen import spec
-from reportgen.errors import InputError
+from reportgen.errors import Fault, InputError
 from reportgen.spec import Correlation
 from tests.spec.writing import FLUIDS, HEAD, SURROUNDINGS, TITLE, faults, read, write
 
@@ -302,3 +302,36 @@ def test_a_confirmed_document_with_everything_verified_is_accepted(tmp_path: Pat
     text = HEAD.replace('"preliminary"', '"confirmed"') + TWO_STATES + history
     assert faults(tmp_path, text) == []
     assert write(tmp_path, text) == tmp_path
+
+
+def test_what_the_property_models_refuse_is_reported_with_the_other_faults(tmp_path: Path) -> None:
+    def refuse(fluid: spec.FluidSpec) -> None:
+        if fluid.composition is not None:
+            raise InputError(Fault("This gas is not carried.", found="O2"))
+        raise InputError(
+            Fault("This reference state is not known." if fluid.id == "oil" else "No such fluid.", found="x")
+        )
+
+    more = """
+[fluids.oil]
+model           = "real-fluid"
+substance       = "oil"
+reference_state = "NPB"
+
+[fluids.bad]
+model = "real-fluid"
+
+[states.1]
+fluid = "stem"
+"""
+    write(tmp_path, HEAD + more)
+    with pytest.raises(InputError) as caught:
+        spec.read(tmp_path, refuse)
+    assert [fault.path for fault in caught.value.faults] == [
+        "fluids.steam.substance",
+        "fluids.air.composition.O2",
+        "fluids.oil.reference_state",
+        "fluids.bad.substance",
+        "states.1.fluid",
+    ]
+    assert [fault.line for fault in caught.value.faults] == [15, 20, 25, 27, 31]
