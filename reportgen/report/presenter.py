@@ -18,11 +18,16 @@ from reportgen.record import Record
 from reportgen.report.formulae import mathml
 from reportgen.report.links import Links
 
-__all__ = ["NO_VALUE", "Presenter", "in_order", "natural"]
+__all__ = ["NO_VALUE", "Presenter", "in_order", "natural", "significant"]
 
 NO_VALUE = "—"
 _QUALIFIED = re.compile(r"[,:]| at the | of a two-phase| relative to| p v ")
 _PIECES = re.compile(r"(\d+)")
+
+
+def significant(value: float, digits: int) -> float:
+    """Rounded to so many significant digits, for numbers that carry no uncertainty of their own."""
+    return float(f"{value:.{digits}g}")
 
 
 def natural(text: str) -> list[tuple[int, int, str]]:
@@ -127,6 +132,15 @@ class Presenter:
             return Markup('<span class="n">{}</span>').format(text)
         return Markup('<a class="n" href="#{}">{}</a>').format(target, text)
 
+    def symbol_link(self, path: str) -> Markup:
+        """The symbol of a value as a link to where it comes from, named in words for those who do not see it."""
+        target = self.links.target(path)
+        if target is None:
+            return self.symbol(path)
+        return Markup('<a class="n" href="#{}" aria-label="{}">{}</a>').format(
+            target, self.label(path), self.symbol(path)
+        )
+
     def caution_facts(self, caution: Mapping[str, Any]) -> list[tuple[str, str]]:
         """Value, limit and margin of a caution as (word, text), as far as it has them."""
         dimension, uncertainty = caution["dimension"], caution["expanded_uncertainty"]
@@ -152,7 +166,7 @@ class Presenter:
         return Markup(mathml(latex))
 
     def owner(self, path: str) -> str:
-        """What a path belongs to, in words: ``state 2``, ``PRV-3``, ``in total``."""
+        """What a path belongs to, in words: ``state 2``, ``PRV-3``, ``total``."""
         parts = path.split(".")
         name = ".".join(parts[1:-1])
         trains = self.record.data["plant"].get("trains", {})
@@ -162,7 +176,7 @@ class Presenter:
             return name
         if parts[0] == "trains":
             return str(trains.get(name, {}).get("title") or name)
-        return {"total": "in total", "surroundings": "surroundings"}.get(parts[0], name)
+        return {"total": "total", "surroundings": "surroundings"}.get(parts[0], name)
 
     @staticmethod
     def meaning(path: str) -> str:

@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import Any
 
 from reportgen.report.figures.canvas import GENERATION, GREY, INK, SMALL, TINT, Drawing
-from reportgen.report.presenter import Presenter
+from reportgen.report.presenter import Presenter, significant
 
 __all__ = ["draw_entropy_account", "draw_lost_work"]
 
@@ -66,8 +66,8 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         axes.barh(row, entering, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
         axes.barh(row, generated, height=height, left=entering, color=GENERATION, edgecolor=INK, linewidth=0.7)
         texts = (
-            f"in {presenter.with_unit(_short(bar['entering']), 'entropy_flow')}",
-            f"generated {presenter.with_unit(_short(bar['generated']), 'entropy_flow')}",
+            f"in {presenter.with_unit(significant(bar['entering'], 4), 'entropy_flow')}",
+            f"generated {presenter.with_unit(significant(bar['generated'], 4), 'entropy_flow')}",
         )
         start, middle = (float(value) for value in axes.transData.transform((0.0, row)))
         end = float(axes.transData.transform((entering + generated, row))[0])
@@ -78,11 +78,6 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
     _finish(drawing, axes, f"entropy rate in {presenter.display.unit_text('entropy_flow')}")
     drawing.description = f"Horizontal bars from zero. {'; '.join(described)}."
     return drawing
-
-
-def _short(value: float) -> float:
-    """Four significant digits: a label beside a bar, the account has the rest."""
-    return float(f"{value:.4g}")
 
 
 def _finish(drawing: Drawing, axes: Any, name: str) -> None:

@@ -9,7 +9,7 @@ import numpy as np
 
 from reportgen.report.figures.canvas import GREY, INK, PAPER, SMALL, TEAL, Drawing, finite
 from reportgen.report.figures.placement import Box, Label, Placed, Placement
-from reportgen.report.presenter import Presenter
+from reportgen.report.presenter import Presenter, significant
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -18,9 +18,10 @@ __all__ = ["draw"]
 
 _WIDTH, _HEIGHT = 432.0, 292.0
 _HEIGHT_ABOVE_DETAIL = 228.0
-_MARGINS = (46.0, 38.0, 10.0, 12.0)  # left, bottom, right, top
+_MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
+_APART = 1.1
 #: Part of both axes below which the processes get a panel of their own.
 _CROWDED = 0.4
 
@@ -61,8 +62,8 @@ class _Curves:
 
         self.dome = line(figure.get("dome"))
         self.isobars = [
-            (presenter.with_unit(float(f"{entry['pressure']:.3g}"), "pressure"), line(entry))
-            for entry in figure.get("isobars", [])
+            (presenter.with_unit(significant(entry["pressure"], 3), "pressure"), line(entry))
+            for entry in _apart(figure.get("isobars", []))
         ]
         self.paths = [(entry["equipment"], line(entry)) for entry in figure.get("paths", [])]
         self.points = [
@@ -115,6 +116,15 @@ class _Curves:
         if self.paths:
             parts.append("Paths: " + ", ".join(dict.fromkeys(name for name, _ in self.paths)) + ".")
         return " ".join(parts)
+
+
+def _apart(isobars: list[dict[str, Any]]) -> list[dict[str, Any]]:
+    """Isobars whose pressures differ by more than a tenth; of closer ones, which would run together, the lowest."""
+    kept: list[dict[str, Any]] = []
+    for entry in sorted(isobars, key=lambda entry: float(entry["pressure"])):
+        if not kept or entry["pressure"] > _APART * kept[-1]["pressure"]:
+            kept.append(entry)
+    return kept
 
 
 def _plain(figure: float) -> str:
@@ -224,7 +234,7 @@ def _labels(drawing: Drawing, curves: _Curves, pen: _Pen, detail: Box | None) ->
             if anchors:
                 width, height = drawing.text_size(name)
                 _set(drawing, pen.placement.place(Label(name, width, height, anchors, 0.0)), color=TEAL)
-    for text, line in curves.isobars:
+    for text, line in curves.isobars if detail is None else ():
         anchors = _spread(pen.visible(line), (1.0, 0.97, 0.9, 0.8, 0.6, 0.4))
         if anchors:
             width, height = drawing.text_size(text, SMALL)
@@ -275,4 +285,4 @@ def _axis_names(drawing: Drawing, axes: Axes, margins: tuple[float, float, float
     drawing.write(
         drawing.width - right, bottom - 30, f"specific entropy in {entropy}", ha="right", va="baseline", color=INK
     )
-    drawing.write(left - 40, drawing.height - top + 3, f"temperature in {temperature}", ha="left", color=INK)
+    drawing.write(left - 40, drawing.height - top + 8, f"temperature in {temperature}", ha="left", color=INK)

@@ -7,7 +7,7 @@ from typing import Any
 
 from markupsafe import Markup
 
-from reportgen.report.presenter import NO_VALUE, Presenter, in_order
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order, significant
 
 __all__ = ["accounts", "closure"]
 
@@ -97,7 +97,7 @@ def _audit(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
         "number": presenter.link(entry["path"], presenter.with_unit(entry["value"], "entropy_flow", uncertainty)),
         "interval": f"{low} to {high}" if uncertainty else NO_VALUE,
         "verdict": entry["verdict"],
-        "heaviest": [presenter.link(path, presenter.symbol(path)) for path in entry["heaviest_inputs"]],
+        "heaviest": [presenter.symbol_link(path) for path in entry["heaviest_inputs"]],
     }
 
 
@@ -108,9 +108,9 @@ def closure(presenter: Presenter) -> dict[str, Any] | None:
         {
             "owner": presenter.owner_title(entry["owner"]),
             "quantity": entry["quantity"],
-            "value": presenter.with_unit(entry["value"], dimensions[entry["quantity"]]),
-            "scale": presenter.with_unit(entry["scale"], dimensions[entry["quantity"]]),
-            "relative": presenter.show(entry["relative"], "ratio").number,
+            "value": presenter.with_unit(significant(entry["value"], 2), dimensions[entry["quantity"]]),
+            "scale": presenter.with_unit(significant(entry["scale"], 4), dimensions[entry["quantity"]]),
+            "relative": presenter.show(significant(entry["relative"], 2), "ratio").number,
         }
         for entry in presenter.record.data["audits"].get("closure", [])
     ]

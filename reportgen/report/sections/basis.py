@@ -7,7 +7,7 @@ from typing import Any
 
 from reportgen.report.links import anchor
 from reportgen.report.narrative import render_narrative
-from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural, significant
 
 __all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
 
@@ -159,16 +159,11 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
             ("otherwise", presenter.with_unit(test["other_value"], dimension, uncertainty)),
         ]
         if test["difference"] is not None:
-            facts.append(("difference", presenter.difference(two_digits(test["difference"]), dimension)))
+            facts.append(("difference", presenter.difference(significant(test["difference"], 2), dimension)))
         if uncertainty:
-            facts.append(("U", presenter.difference(two_digits(uncertainty), dimension)))
+            facts.append(("U", presenter.difference(significant(uncertainty, 2), dimension)))
     label = presenter.label(test["path"]) if test["path"] else ""
     return {**test, "facts": facts, "label": label}
-
-
-def two_digits(value: float) -> float:
-    """Rounded to two significant digits, as befits a difference or an uncertainty."""
-    return float(f"{value:.2g}")
 
 
 def method(presenter: Presenter) -> dict[str, Any]:

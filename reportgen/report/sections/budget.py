@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from reportgen.report.presenter import NO_VALUE, Presenter
+from reportgen.report.presenter import NO_VALUE, Presenter, significant
 
 __all__ = ["uncertainty_budget"]
 
@@ -30,7 +30,7 @@ def _budget(path: str, budget: dict[str, Any], presenter: Presenter) -> dict[str
         "number": presenter.number(path, uncertainty=True),
         "unit": presenter.display.unit_text(dimension),
         "rows": [_row(row, dimension, presenter) for row in budget["contributions"]],
-        "combined": presenter.show(_digits(budget["standard_uncertainty"], 3), dimension).number,
+        "combined": presenter.show(significant(budget["standard_uncertainty"], 3), dimension).number,
         "expanded": presenter.difference(budget["expanded_uncertainty"], dimension, budget["expanded_uncertainty"]),
         "freedom": "infinite" if freedom is None else f"{freedom:.3g}",
         "probability": None if probability is None else f"{100.0 * probability:.3g}\N{NO-BREAK SPACE}%",
@@ -47,15 +47,11 @@ def _row(row: dict[str, Any], dimension: str, presenter: Presenter) -> dict[str,
     step = presenter.display.convert(row["standard_uncertainty"], given)
     sensitivity = presenter.display.convert(row["contribution"], dimension) / step if step else float("nan")
     return {
-        "link": presenter.link(path, presenter.symbol(path)),
+        "link": presenter.symbol_link(path),
         "label": presenter.label(path),
-        "standard": presenter.with_unit(_digits(row["standard_uncertainty"], 3), given),
-        "sensitivity": presenter.show(_digits(sensitivity, 3), "ratio").number,
+        "standard": presenter.with_unit(significant(row["standard_uncertainty"], 3), given),
+        "sensitivity": presenter.show(significant(sensitivity, 3), "ratio").number,
         "sensitivity_unit": f"{unit or '1'} per {given_unit or '1'}",
-        "contribution": presenter.show(_digits(row["contribution"], 3), dimension).number,
+        "contribution": presenter.show(significant(row["contribution"], 3), dimension).number,
         "share": f"{100.0 * row['share']:.1f}".replace("-", "−") if row["share"] is not None else NO_VALUE,
     }
-
-
-def _digits(value: float, digits: int) -> float:
-    return float(f"{value:.{digits}g}")

@@ -152,5 +152,5 @@ def _uses(paths: Iterable[str], presenter: Presenter) -> list[Markup]:
         elif path.startswith("assumptions."):
             found.append(presenter.link(path, "assumption"))
         else:
-            found.append(presenter.link(path, presenter.symbol(path)))
+            found.append(presenter.symbol_link(path))
     return found
