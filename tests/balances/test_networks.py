@@ -10,13 +10,14 @@ import pytest
 from scipy.optimize import brentq
 
 from reportgen.balances import Plant, Train, solve
+from reportgen.fluids import real_fluid
 from tests.balances.cases import CASES, SURROUNDINGS, VALVE, chain, one_piece
-from tests.balances.models import CoolPropFluid, SimpleGas
+from tests.balances.models import SimpleGas
 from tests.balances.test_structure import CYCLE, _cycle
 
 
 def test_flow_of_a_refrigeration_cycle_from_any_of_its_duties() -> None:
-    plant = _cycle(CoolPropFluid("R134a"))
+    plant = _cycle(real_fluid("R134a"))
     base = solve(plant, {**CYCLE, "states.1.mass_flow": 0.05})
     for path in ("equipment.E.heat", "equipment.C.heat", "equipment.K.power"):
         other = solve(plant, {**CYCLE, path: float(base.values[path][0])})
@@ -25,7 +26,7 @@ def test_flow_of_a_refrigeration_cycle_from_any_of_its_duties() -> None:
 
 def test_condensing_pressure_from_duty_and_power_stays_on_the_saturation_line() -> None:
     """Heat and power given, the pressure of the saturated liquid unknown: iterated along saturation."""
-    plant = _cycle(CoolPropFluid("R134a"))
+    plant = _cycle(real_fluid("R134a"))
     base = solve(plant, {**CYCLE, "states.1.mass_flow": 0.05, "states.3.pressure": 0.7e6})
     givens = {path: float(base.values[path][0]) for path in ("equipment.E.heat", "equipment.K.power")}
     back = solve(plant, {**CYCLE, **givens})
@@ -64,7 +65,7 @@ RECUPERATED = {
 def test_a_recuperator_couples_heater_and_turbine() -> None:
     """Heat given, turbine inlet unknown: heater, turbine and recuperator are one block; against a scalar search."""
     heat = 700e3
-    values = solve(_recuperated(CoolPropFluid("Air")), {**RECUPERATED, "equipment.B.heat": heat}).values
+    values = solve(_recuperated(real_fluid("air")), {**RECUPERATED, "equipment.B.heat": heat}).values
 
     def at(key: str, first: str, a: float, second: str, b: float) -> float:
         return float(CP.PropsSI(key, first, a, second, b, "Air"))
@@ -132,7 +133,7 @@ def test_extraction_of_a_regenerative_steam_cycle() -> None:
         ("D", "mixer", {"inlets": ("3", "7"), "outlet": ("8",)}),
         ("P2", "pump", {"inlet": ("8",), "outlet": ("9",)}),
         ("B", "heater", {"inlet": ("9",), "outlet": ("1",)}),
-        fluid=CoolPropFluid("Water"),
+        fluid=real_fluid("water"),
     )
     givens = {
         **SURROUNDINGS,
@@ -209,7 +210,7 @@ def test_alternatives_share_an_inlet_and_only_one_counts_in_the_total() -> None:
     plant = chain(
         ("V", "throttling-valve", {"inlet": ("1",), "outlet": ("2",)}),
         ("T", "turbine", {"inlet": ("1",), "outlet": ("3",)}),
-        fluid=CoolPropFluid("Water"),
+        fluid=real_fluid("water"),
         trains={"valve": Train("Valve", ("V",)), "turbine": Train("Turbine", ("T",), "valve")},
     )
     solution = solve(

@@ -13,8 +13,8 @@ from scipy.integrate import quad
 from scipy.optimize import brentq
 
 from reportgen.balances import EquipmentDefinition, Plant, solve
+from reportgen.fluids import real_fluid
 from tests.balances.cases import SURROUNDINGS, THROUGH, chain, one_piece
-from tests.balances.models import CoolPropFluid
 
 KELVIN = 273.15
 
@@ -28,7 +28,7 @@ def test_throttle() -> None:
         "throttling-valve",
         THROUGH,
         {"1.pressure": 7e6, "1.temperature": 450 + KELVIN, "2.pressure": 3e6, "1.mass_flow": 1.0},
-        {"steam": CoolPropFluid("Water")},
+        {"steam": real_fluid("water")},
     )
     generated = case.solve().values["equipment.X.entropy_generation"][0]
     h, s = (CP.PropsSI(key, "P", 7e6, "T", 450 + KELVIN, "Water") for key in ("H", "S"))
@@ -51,7 +51,7 @@ def test_steam_water_mixer() -> None:
             "heat": -180 * btu / 60,
             "boundary_temperature": fahrenheit(70),
         },
-        {"water": CoolPropFluid("Water")},
+        {"water": real_fluid("water")},
     )
     values = case.solve().values
     h, s = ([CP.PropsSI(key, "P", 20 * psi, "T", fahrenheit(t), "Water") for t in (50, 240, 130)] for key in ("H", "S"))
@@ -66,7 +66,7 @@ def test_steam_water_mixer() -> None:
 
 def test_condenser_with_the_flow_of_air_unknown() -> None:
     """The book counts kelvins from 273; from 273.15 the result, a difference of large terms, would be 0.736 kW/K."""
-    water, air = CoolPropFluid("Water"), CoolPropFluid("Air")
+    water, air = real_fluid("water"), real_fluid("air")
     flow = 10000 / 3600
     saturated = CP.PropsSI("P", "T", 35 + KELVIN, "Q", 1, "Water")
     case = one_piece(
@@ -109,7 +109,7 @@ def test_air_compressor() -> None:
             "2.pressure": 8e5,
             "isentropic_efficiency": 0.8,
         },
-        {"air": CoolPropFluid("Air")},
+        {"air": real_fluid("air")},
     )
     values = case.solve().values
     h1, s1 = (CP.PropsSI(key, "P", 1e5, "T", 12 + KELVIN, "Air") for key in ("H", "S"))
@@ -126,7 +126,7 @@ def test_refrigeration_cycle_is_a_closed_loop() -> None:
         ("C", "cooler", {"inlet": ("2",), "outlet": ("3",)}),
         ("V", "throttling-valve", {"inlet": ("3",), "outlet": ("4",)}),
         ("E", "heater", {"inlet": ("4",), "outlet": ("1",)}),
-        fluid=CoolPropFluid("R134a"),
+        fluid=real_fluid("R134a"),
     )
     solution = solve(
         plant,
@@ -160,7 +160,7 @@ def test_refrigeration_cycle_is_a_closed_loop() -> None:
 
 
 def test_brayton_cycle_with_efficiencies() -> None:
-    air = CoolPropFluid("Air")
+    air = real_fluid("air")
     plant = chain(
         ("C", "compressor", {"inlet": ("1",), "outlet": ("2",)}),
         ("B", "heater", {"inlet": ("2",), "outlet": ("3",)}),
@@ -225,7 +225,7 @@ def test_polytropic_efficiency_of_steam_against_the_path_of_constant_efficiency(
         "turbine",
         THROUGH,
         {"1.pressure": p1, "1.temperature": t1, "1.mass_flow": 1.0, "2.pressure": p2, "polytropic_efficiency": eta},
-        {"steam": CoolPropFluid("Water")},
+        {"steam": real_fluid("water")},
     )
     values = case.solve().values
     drop = values["states.1.specific_enthalpy"][0] - values["states.2.specific_enthalpy"][0]
@@ -252,7 +252,7 @@ def test_polytropic_efficiency_of_an_ideal_gas_is_exact() -> None:
 
 
 def test_outlet_pressure_of_a_steam_turbine_from_its_power() -> None:
-    steam = CoolPropFluid("Water")
+    steam = real_fluid("water")
     h1, s1 = (CP.PropsSI(key, "P", 40e5, "T", 673.15, "Water") for key in ("H", "S"))
     wanted = 600e3
     pressure = brentq(lambda p: 0.8 * (h1 - CP.PropsSI("H", "P", p, "S", s1, "Water")) - wanted, 1e4, 40e5, xtol=1e-8)
@@ -276,7 +276,7 @@ def test_entropy_along_an_isobar_is_the_integral_of_heat_over_temperature() -> N
         "heater",
         THROUGH,
         {"1.pressure": 2e5, "1.temperature": 300.0, "1.mass_flow": 1.0, "2.temperature": 380.0},
-        {"water": CoolPropFluid("Water")},
+        {"water": real_fluid("water")},
     )
     values = case.solve().values
     integral, _ = quad(lambda t: CP.PropsSI("C", "P", 2e5, "T", t, "Water") / t, 300.0, 380.0)

@@ -8,6 +8,7 @@ import pytest
 
 from reportgen.balances import EquipmentDefinition, Plant, Train, solve
 from reportgen.errors import InputError, SolutionError
+from reportgen.fluids import real_fluid
 from tests.balances.cases import (
     COMPRESSOR,
     HEAT_EXCHANGER,
@@ -19,7 +20,7 @@ from tests.balances.cases import (
     chain,
     long,
 )
-from tests.balances.models import CoolPropFluid, SimpleGas
+from tests.balances.models import SimpleGas
 
 TOO_LITTLE = [
     (VALVE, "1.mass_flow", {}, "Nothing fixes the flow of states 1, 2.", ["1.mass_flow", "2.mass_flow"]),
@@ -193,12 +194,12 @@ CYCLE = {
 
 def test_a_closed_loop_without_a_flow_says_so() -> None:
     with pytest.raises(SolutionError, match="Nothing fixes the flow of states 1, 2, 3, 4"):
-        solve(_cycle(CoolPropFluid("R134a")), CYCLE)
+        solve(_cycle(real_fluid("R134a")), CYCLE)
 
 
 def test_two_flows_in_a_closed_loop_are_one_too_many() -> None:
     with pytest.raises(SolutionError, match=r"one value too many among states\.1\.mass_flow, states\.3\.mass_flow"):
-        solve(_cycle(CoolPropFluid("R134a")), {**CYCLE, "states.1.mass_flow": 0.1, "states.3.mass_flow": 0.1})
+        solve(_cycle(real_fluid("R134a")), {**CYCLE, "states.1.mass_flow": 0.1, "states.3.mass_flow": 0.1})
 
 
 def test_defaults_that_are_determined_otherwise_are_not_taken() -> None:
