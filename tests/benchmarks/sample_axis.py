@@ -84,7 +84,8 @@ def main() -> None:
         base, whole, times = ratio(fluid)
         print(
             f"{name}: {2 * STAGES} pieces, {UNCERTAIN} uncertain inputs, {2 * UNCERTAIN + 1} columns: "
-            f"base {base * 1e3:.1f} ms, sample axis {whole * 1e3:.1f} ms, ratio {times:.2f} (median of {PAIRS}); bar 3.0"
+            f"base {base * 1e3:.1f} ms, sample axis {whole * 1e3:.1f} ms, "
+            f"ratio {times:.2f} (median of {PAIRS}); bar 3.0"
         )
 
 

@@ -115,6 +115,7 @@ def test_t09_two_phase_suction() -> None:
     saturated = machine("compressor", "in", state(373.0, 1e5, "two-phase", quality=1.0))
     assert summary("T09", saturated) == []
     assert summary("T09", machine("turbine", "in", state(373.0, 1e5, "two-phase", quality=0.9))) == []
+    assert summary("T09", machine("pump", "in", state(373.0, 1e5, "two-phase", quality=0.9))) == []
     assert summary("T09", machine("compressor", "out", state(373.0, 1e5, "two-phase", quality=0.9))) == []
 
 

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from reportgen.balances import kinds
 from reportgen.evaluation.cautions.entry import Finding, caution
 from reportgen.evaluation.evaluated import Array, EvaluatedPlant
 from reportgen.evaluation.sampling import ATMOSPHERE
@@ -24,12 +25,13 @@ TEMPERATURE_MARGIN = 10.0
 
 @caution("T09", "stop", "Liquid at compressor suction", source="common practice")
 def liquid_at_compressor_suction(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Quality below 1 at the inlet of a compressor; for single-phase inlets, superheat below 0 or not resolved from 0.
+    """Quality below 1 at the inlet of a machine that compresses gas.
 
+    For inlets of one phase the superheat is looked at instead: below 0, or not resolved from 0.
     Ideal gases have no liquid and are passed over.
     """
     for tag, kind in plant.kinds.items():
-        if kind != "compressor":
+        if not _compresses_gas(kind):
             continue
         for state in plant.states_at(tag, "in"):
             text = f"Liquid at the suction of {tag} (state {state}): liquid slugs break compressors."
@@ -57,9 +59,9 @@ def liquid_at_compressor_suction(plant: EvaluatedPlant, _limit: float) -> Iterat
 
 @caution("T10", "warning", "Wet turbine exhaust", source="common practice", limit=0.12, dimension="ratio")
 def wet_turbine_exhaust(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
-    """Moisture 1 − x above 12 % at the outlet of a turbine."""
+    """Moisture 1 − x above 12 % at the outlet of a machine that delivers power."""
     for tag, kind in plant.kinds.items():
-        if kind != "turbine":
+        if kinds()[kind].power_sign >= 0:
             continue
         for state in plant.states_at(tag, "out"):
             phase = plant.phase(state)
@@ -156,6 +158,13 @@ def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]
             )
             text = f"State {state} comes within {limit:g} K of the minimum temperature of {tag}."
             yield Finding(path, temperature, minimum + limit, "above", text, "temperature", owner=owner, source=source)
+
+
+def _compresses_gas(kind: str) -> bool:
+    """Whether a kind absorbs power and compresses in small steps of density, which is what its polytropic efficiency
+    says: kinds are told by what they declare, so that a new one needs no entry here."""
+    declared = kinds()[kind]
+    return declared.power_sign > 0 and any(item.name == "polytropic_efficiency" for item in declared.parameters)
 
 
 def _states_with_limits(plant: EvaluatedPlant) -> Iterator[tuple[str, str, Limits]]:
