@@ -6,23 +6,25 @@ from collections.abc import Iterator
 
 from reportgen.balances.kinds import Kind, kinds
 from reportgen.names import NAMES
-from reportgen.spec.fields import dimensions_for
-from reportgen.spec.schema import FLOWS, INTENSIVE, MOST_ENTRIES, STATE_KEYS
+from reportgen.spec.schema import INTENSIVE, MOST_ENTRIES, STATE_KEYS
 from reportgen.spec.source import Source
+from reportgen.spec.states import givens_of
 
 __all__ = ["input_locations", "kind_of", "result_dimensions"]
 
+#: Known of a state only where they are given.
+_ONLY_WHERE_GIVEN = ("volume_flow", "velocity", "elevation")
 _STATE_RESULTS = (
     *INTENSIVE,
-    *FLOWS,
+    "mass_flow",
+    "molar_flow",
+    "entropy_flow",
     "specific_internal_energy",
     "compressibility_factor",
     "isobaric_heat_capacity",
     "isochoric_heat_capacity",
     "speed_of_sound",
     "specific_exergy",
-    "velocity",
-    "elevation",
 )
 _TOTAL_RESULTS = (
     "entropy_generation",
@@ -32,18 +34,13 @@ _TOTAL_RESULTS = (
     "entropy_with_heat",
     "energy_imbalance",
     "mass_imbalance",
-    "entropy_imbalance",
     "closure",
 )
-#: Beside what its kind declares.
+#: Of every piece, beside what its kind declares.
 _EQUIPMENT_RESULTS = (
-    "power",
     "heat",
     "entropy_generation",
     "lost_work",
-    "isentropic_efficiency",
-    "polytropic_efficiency",
-    "pressure_ratio",
     "exergetic_efficiency",
     "entropy_generation_number",
     "energy_imbalance",
@@ -95,7 +92,7 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
         names = _names_of(source, parts[0], owner)
         rest = parts[2:]
     elif parts[0] in ("total", "surroundings") and len(parts) == 2:
-        names = {name: dimensions_for(name) for name in (_TOTAL_RESULTS if parts[0] == "total" else _SURROUNDINGS)}
+        names = {name: (NAMES[name].dimension,) for name in (_TOTAL_RESULTS if parts[0] == "total" else _SURROUNDINGS)}
         rest = parts[1:]
     else:
         return "A path is states.<id>.<name>, equipment.<tag>.<name>, trains.<id>.<name> or total.<name>."
@@ -108,13 +105,14 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
     )
 
 
-def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str, ...]]:
+def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]:
     """Names of the results of one state, piece or train with their dimensions."""
     if section == "states":
-        return {name: dimensions_for(name) for name in _STATE_RESULTS}
+        given = [name for name in _ONLY_WHERE_GIVEN if name in givens_of(source, owner)]
+        return {name: (NAMES[name].dimension,) for name in (*_STATE_RESULTS, *given)}
     if section == "trains":
-        return {name: dimensions_for(name) for name in _TOTAL_RESULTS}
-    names: dict[str, tuple[str, ...]] = {name: (NAMES[name].dimension,) for name in _EQUIPMENT_RESULTS}
+        return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}
+    names = {name: (NAMES[name].dimension,) for name in _EQUIPMENT_RESULTS}
     kind = kind_of(source, owner)
     if kind is not None:
         names |= {parameter.name: (parameter.dimension,) for parameter in kind.parameters}
