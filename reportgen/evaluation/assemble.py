@@ -162,7 +162,7 @@ def _automatic(
 def _summary(calculation: Calculation, plant: EvaluatedPlant, totals: list[str]) -> list[str]:
     """Headline results: generation, lost work and power of each piece, then of trains and the whole.
 
-    Sums over a single piece repeat what the piece says and are left out.
+    Sums over a single piece repeat what the piece says and are left out. Without equipment, states are the results.
     """
     owners = [f"equipment.{tag}" for tag in plant.kinds]
     owners += [f"trains.{name}" for name, tags in plant.trains.items() if len(tags) > 1]
@@ -173,6 +173,10 @@ def _summary(calculation: Calculation, plant: EvaluatedPlant, totals: list[str])
         if owner.startswith("equipment.") and f"{owner}.isentropic_efficiency" not in calculation.inputs:
             names.append("isentropic_efficiency")
         found += [path for name in names if (path := f"{owner}.{name}") in plant.values]
+    if not plant.kinds:
+        found = [
+            f"states.{state}.{name}" for state in plant.state_fluids for name in ("temperature", "specific_entropy")
+        ]
     # A generation that could not be evaluated must be seen to be missing; a power of zero says nothing.
     return [
         path

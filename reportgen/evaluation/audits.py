@@ -48,11 +48,8 @@ def second_law_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[
         Record entries. Owners without an entropy generation (heat enters through a boundary of unknown temperature)
         are left out; a warning of the solution says so.
     """
-    owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
-    owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
-    owners.append(("total", totals))
     entries = []
-    for owner, tags in owners:
+    for owner, tags in _owners(plant, totals):
         path = f"{owner}.entropy_generation"
         if not plant.has(path):
             continue
@@ -93,12 +90,9 @@ def closure_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str
     boundary sees less the sum over the parts. Quantities that cannot be computed (no flow, no boundary temperature)
     are left out.
     """
-    owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
-    owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
-    owners.append(("total", totals))
     units = {"mass": "kg/s", "energy": "W", "entropy": "W/K"}
     entries = []
-    for owner, tags in owners:
+    for owner, tags in _owners(plant, totals):
         for quantity, (residual, scale) in balance_round(plant, tags).items():
             if np.isfinite(residual):
                 entries.append(
@@ -170,6 +164,13 @@ def counted_pieces(plant: EvaluatedPlant, alternatives: Iterable[str]) -> list[s
     """Tags that count in the total: every piece but those of trains that are alternatives to another."""
     left_out = {tag for train in alternatives for tag in plant.trains[train]}
     return [tag for tag in plant.kinds if tag not in left_out]
+
+
+def _owners(plant: EvaluatedPlant, totals: Sequence[str]) -> list[tuple[str, Sequence[str]]]:
+    """Pieces, trains and the total, each with its tags."""
+    owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
+    owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
+    return [*owners, ("total", totals)] if totals else owners
 
 
 def _base(plant: EvaluatedPlant, path: str, absent: float = np.nan) -> float:

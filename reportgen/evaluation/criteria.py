@@ -32,10 +32,11 @@ def decided_criteria(
         comparison, limit = (
             ("at_most", criterion.at_most) if criterion.at_most is not None else ("at_least", criterion.at_least)
         )
-        if criterion.value not in plant.values or limit is None:
+        known = plant.values.get(criterion.value)
+        if known is None or known.dtype.kind != "f" or limit is None:
             faults.append(
                 Fault(
-                    "The calculation has no such value.",
+                    "The calculation has no such number.",
                     f"criteria.{identifier}.value",
                     file,
                     criterion.line,

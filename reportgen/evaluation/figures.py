@@ -61,7 +61,7 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             if curve.fluid == identifier
         ]
         dome = saturation_dome(fluid)
-        parts = ["Temperature against specific entropy", f"entropy zero: {fluid.entropy_zero}"]
+        parts = ["Temperature against specific entropy", f"entropy zero: {fluid.entropy_zero.rstrip('.')}"]
         parts += ["the dome is the saturation line, closed at the critical point"] if dome else []
         parts += ["thin lines are isobars through the states, thick lines the states passed on the way"]
         figures.append(

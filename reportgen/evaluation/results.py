@@ -69,7 +69,8 @@ def relations_section(plant: EvaluatedPlant, solution: Solution, display: Displa
     """Every step with its sentence and its formulae in symbols and in numbers.
 
     ``latex_lines`` holds for each equation [left side, right side in symbols, right side in numbers, result]. Where
-    the left side is a sum (relations solved together), numbers stand for both sides, and there is no result.
+    the left side is a sum (relations solved together), numbers stand for both sides, and there is no result. Where the
+    right side is a single value or a constant, there are no numbers but the result.
     """
 
     def number(path: str) -> str:
@@ -110,9 +111,12 @@ def _origins(steps: list[Step], inputs: Mapping[str, Input]) -> tuple[dict[str, 
 
 def _line(equation: Equation, number: Any, plant: EvaluatedPlant, display: Display) -> list[str]:
     symbols, numbers = with_symbols(equation.right), with_numbers(equation.right, number)
+    if TOKEN.search(equation.right) is None or TOKEN.fullmatch(equation.right.strip()):
+        numbers = ""  # a constant, or one value taken over: the result repeats it
     solved = TOKEN.fullmatch(equation.left.strip())
     if solved is None:
-        return [with_symbols(equation.left), symbols, f"{with_numbers(equation.left, number)} = {numbers}", ""]
+        both = " = ".join(filter(None, (with_numbers(equation.left, number), numbers)))
+        return [with_symbols(equation.left), symbols, both, ""]
     path = solved.group(1)
     return [with_symbols(equation.left), symbols, numbers, _number(plant, display, path, with_uncertainty=True)]
 

@@ -46,7 +46,7 @@ class Finding:
         dimension: key of names.DIMENSIONS.
         owner: equipment that the finding is about, as ``equipment.<tag>``; None for the owner of the path.
         severity: overrides the severity of the caution.
-        source: added before the source of the caution, such as a named data sheet.
+        source: stands in the place of the source of the caution, such as a named data sheet.
     """
 
     path: str
@@ -207,6 +207,6 @@ def _entry(item: Caution, finding: Finding, plant: EvaluatedPlant, reason: str |
         "expanded_uncertainty": margin.expanded_uncertainty,
         "dimension": finding.dimension,
         "decided": decision == "not met",
-        "source": "; ".join(part for part in (finding.source, item.source) if part),
+        "source": finding.source or item.source,
         "adjusted": reason,
     }

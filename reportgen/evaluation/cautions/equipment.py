@@ -19,6 +19,7 @@ __all__ = ["liquid_at_compressor_suction", "maximum_pressure", "temperature_limi
 
 #: A quality closer to 1 than this is saturated vapour as far as a flash resolves it.
 QUALITY_RESOLUTION = 1e-9
+PRESSURE_SOURCE = "see ASME BPVC Section VIII and API 520, current edition"
 #: Distance to a temperature limit below which a warning is raised [K].
 TEMPERATURE_MARGIN = 10.0
 
@@ -83,7 +84,7 @@ def wet_turbine_exhaust(plant: EvaluatedPlant, limit: float) -> Iterator[Finding
     "T19",
     "warning",
     "Maximum allowable pressure",
-    source="see ASME BPVC Section VIII and API 520, current edition",
+    source=PRESSURE_SOURCE,
     limit=0.90,
     dimension="ratio",
 )
@@ -100,6 +101,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
         atmosphere = plant.samples(ATMOSPHERE)
         pressure = plant.samples(f"states.{state}.pressure")
         allowable = plant.limit_samples(table.pressure)
+        source = "; ".join(part for part in (table.source, PRESSURE_SOURCE) if part)
         yield Finding(
             f"states.{state}.pressure",
             pressure,
@@ -109,7 +111,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             "pressure",
             owner=f"equipment.{tag}",
             severity="stop",
-            source=table.source,
+            source=source,
         )
         yield Finding(
             f"states.{state}.pressure",
@@ -120,7 +122,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             "(both as gauge pressures): little is left between operation and relief. The limit shown is that part.",
             "pressure",
             owner=f"equipment.{tag}",
-            source=table.source,
+            source=source,
         )
 
 
@@ -128,7 +130,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
     "T32",
     "warning",
     "Temperature limits of the equipment",
-    source="margin of 10 K: common practice",
+    source="the data sheet of the equipment; margin of 10 K: common practice",
     limit=TEMPERATURE_MARGIN,
     dimension="temperature_difference",
 )
@@ -141,6 +143,7 @@ def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]
         temperature = plant.samples(f"states.{state}.temperature")
         path = f"states.{state}.temperature"
         source = table.source or f"limits of {tag}"
+        warned = f"{source}; margin of {limit:g} K: common practice"
         owner = f"equipment.{tag}"
         if table.temperature is not None:
             maximum = table.temperature.value
@@ -149,7 +152,7 @@ def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]
                 path, temperature, maximum, "below", text, "temperature", owner=owner, severity="stop", source=source
             )
             text = f"State {state} comes within {limit:g} K of the maximum temperature of {tag}."
-            yield Finding(path, temperature, maximum - limit, "below", text, "temperature", owner=owner, source=source)
+            yield Finding(path, temperature, maximum - limit, "below", text, "temperature", owner=owner, source=warned)
         if table.minimum_temperature is not None:
             minimum = table.minimum_temperature.value
             text = f"State {state} is colder than the minimum temperature of {tag}: brittle fracture."
@@ -157,7 +160,7 @@ def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]
                 path, temperature, minimum, "above", text, "temperature", owner=owner, severity="stop", source=source
             )
             text = f"State {state} comes within {limit:g} K of the minimum temperature of {tag}."
-            yield Finding(path, temperature, minimum + limit, "above", text, "temperature", owner=owner, source=source)
+            yield Finding(path, temperature, minimum + limit, "above", text, "temperature", owner=owner, source=warned)
 
 
 def _compresses_gas(kind: str) -> bool:
