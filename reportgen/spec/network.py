@@ -75,8 +75,9 @@ def _check_trains(source: Source) -> dict[str, str]:
             else:
                 train_of[tag] = train
         _check_alternative(source, train)
-    broken = any(source.is_broken(("trains", train, "equipment")) for train in trains)
-    if trains and not broken and source.names_are_complete:
+    members = [source.node(("trains", train, "equipment")) for train in trains]
+    readable = all(node is not None and isinstance(node.value, list) for node in members)
+    if trains and readable and source.names_are_complete:
         for tag in equipment:
             if tag not in train_of:
                 source.report(

@@ -164,8 +164,12 @@ class Cursor:
                     expected="letters, digits, _ and -; a comment starts with #",
                 )
             if len(name) > _LONGEST_KEY or len(keys) >= MAXIMUM_DEPTH:
-                limits = f"{_LONGEST_KEY} characters and {MAXIMUM_DEPTH} parts"
-                raise Mistake(begin, f"The key is longer than {limits}.", found=self.glance(begin))
+                raise Mistake(
+                    begin,
+                    "The key is too long.",
+                    found=self.glance(begin),
+                    expected=f"at most {_LONGEST_KEY} characters in a part and {MAXIMUM_DEPTH} parts",
+                )
             keys.append((name, begin))
             self.skip(BLANK)
             if not self.text.startswith(".", self.offset):
