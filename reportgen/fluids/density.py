@@ -38,7 +38,7 @@ class DensitySolver:
     ) -> None:
         self._equation = equation
         self._curves = curves
-        self._maximum_density = maximum_density
+        self.maximum_density = maximum_density
         self._kappa = 0.37464 + 1.54226 * acentric_factor - 0.26992 * acentric_factor**2
 
     def solve(
@@ -64,7 +64,7 @@ class DensitySolver:
         rt = equation.gas_constant * temperature
         start = pressure / rt
         low = start * 1e-3
-        high = np.full_like(start, self._maximum_density)
+        high = np.full_like(start, self.maximum_density)
         below = temperature < self._curves.top_temperature
         above = ~below
         if below.any():
@@ -80,7 +80,7 @@ class DensitySolver:
                 full = np.empty_like(start)
                 full[below] = saturated.dew_pressure
                 edge, full = edge[gas], full[gas]
-                share = pressure[gas] / full
+                share = np.minimum(pressure[gas] / full, 1)
                 start[gas] /= 1 - (1 - full / (edge * rt[gas])) * share
                 high[gas] = edge * (1 + 1e-9)
         if above.all():
@@ -105,7 +105,7 @@ class DensitySolver:
         big = np.cbrt(-q2 - np.copysign(root, q2))
         z = big - p3 / np.where(big == 0, 1, big) - third
         start: FloatArray = pressure / (np.maximum(z, b * 1.02) * rt)
-        return np.minimum(start, 0.98 * self._maximum_density)
+        return np.minimum(start, 0.98 * self.maximum_density)
 
     def _iterate(
         self, temperature: FloatArray, pressure: FloatArray, density: FloatArray, low: FloatArray, high: FloatArray
@@ -129,9 +129,9 @@ class DensitySolver:
             done = (size <= 1e-9 * np.minimum(slope / rt, 1)) & (slope > 0)
             done |= np.abs(gap) <= _ROUNDING * density * rt
             trial = density * (1 + step)
+            # Where the gap is rounding and the slope small, the step means nothing.
+            settled = np.where(size < 1e-6, trial, density)
             if done.all():
-                # a last step that is all rounding must not leave the bracket
-                settled = np.where(size < 1e-6, trial, density)
                 if where is None:
                     return settled, done
                 result[where], found[where] = settled, True
@@ -145,8 +145,8 @@ class DensitySolver:
                 bad |= narrower > 0.5 * width
                 width = narrower
             if bad.any():
-                trial = np.where(bad & ~done, np.sqrt(low * high), np.where(bad, density, trial))
-            density = trial
+                trial = np.where(bad, np.sqrt(low * high), trial)
+            density = np.where(done, settled, trial)
             if done.any() and 2 * np.count_nonzero(done) > done.size:
                 keep = ~done
                 where = np.arange(result.size) if where is None else where

@@ -18,6 +18,8 @@ BoolArray = NDArray[np.bool_]
 
 _NEWTON_ITERATIONS = 14
 _SEARCH_ITERATIONS = 120
+#: Relative step after which Newton's method has converged: it doubles the digits with each step.
+_SETTLED = 1e-7
 
 
 class Caloric(NamedTuple):
@@ -141,15 +143,16 @@ class PressureFlash:
         cp = np.where(cold_side, heat_capacity[:n], heat_capacity[n:])
         start = t0 * np.exp(gap / cp) if entropy else t0 + gap / cp
         start = np.minimum(np.maximum(start, self._lowest), self._highest)
-        edge = np.where(cold_side, start, t0)
         low[where] = np.where(cold_side, low[where], t0 * (1 - 1e-12))
         high[where] = np.where(cold_side, t0 * (1 + 1e-12), high[where])
         liquid[where] = cold_side
         x = result.quality[where]
         with np.errstate(invalid="ignore"):
             overall = 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))
-        # density guess: a gas keeps its compressibility, a liquid its density
-        guess = np.where(cold_side, rho0, rho0 * t0 / np.maximum(start, edge))
+        # density to start from: a gas keeps its compressibility, a liquid is as if saturated
+        guess = rho0 * t0 / start
+        if cold_side.any():
+            guess[cold_side] = self._curves.at_temperature(start[cold_side]).liquid_density
         result.temperature[where] = np.where(
             mixed, t0 if not self._curves.pseudo_pure else np.where(x == 0, t_l, t_v), start
         )
@@ -180,23 +183,28 @@ class PressureFlash:
         lo, hi = low[todo], high[todo]
         for _ in range(_NEWTON_ITERATIONS):
             found = equation.properties(t, rho)
-            slope = found.pressure_density
             p_gap = p - found.pressure
+            p_rho, p_t = found.pressure_density, found.pressure_temperature
+            # s_T = c_v/T, s_ρ = −p_T/ρ²; h_T = c_v + p_T/ρ, h_ρ = T s_ρ + p_ρ/ρ
+            if entropy:
+                gap = wanted - found.entropy
+                y_t, y_rho = found.isochoric_heat_capacity / t, -p_t / rho**2
+            else:
+                gap = wanted - found.enthalpy
+                y_t, y_rho = found.isochoric_heat_capacity + p_t / rho, (p_rho - t * p_t / rho) / rho
             with np.errstate(invalid="ignore", divide="ignore", over="ignore"):
-                beta = found.pressure_temperature / rho**2
-                cp = found.isochoric_heat_capacity + t * (beta * rho) ** 2 / slope
-                # along the isobar: dρ = (Δp − p_T dT)/p_ρ; s_ρ = −p_T/ρ², h_ρ = T s_ρ + p_ρ/ρ
-                if entropy:
-                    step_t = t / cp * (wanted - found.entropy + beta * p_gap / slope)
-                else:
-                    step_t = (wanted - found.enthalpy - (slope / rho - t * beta) * p_gap / slope) / cp
-                step_t = np.minimum(np.maximum(step_t, -0.4 * t), 0.8 * t)
-                trial_t = np.minimum(np.maximum(t + step_t, lo), hi)
-                step_t = trial_t - t
-                ratio = (p_gap - found.pressure_temperature * step_t) / (slope * rho)
-                small = (np.abs(step_t) <= 1e-9 * t) & (np.abs(ratio) <= 1e-9 * np.minimum(1, slope / (p / rho)))
-                good = (slope > 0) & np.isfinite(ratio)
-                done = small & good & (slope * rho > 1e-3 * p)
+                # regular at the critical point too, where p_ρ = 0
+                determinant = p_t * y_rho - p_rho * y_t
+                step_t = (y_rho * p_gap - p_rho * gap) / determinant
+                ratio = (p_t * gap - y_t * p_gap) / (determinant * rho)
+                limited = np.minimum(np.maximum(step_t, -0.4 * t), 0.8 * t)
+                trial_t = np.minimum(np.maximum(t + limited, lo), hi)
+                cut = np.abs(trial_t - t - step_t) > 1e-12 * t
+                if cut.any():
+                    # a shortened step in T: the density that goes with it at this pressure
+                    ratio = np.where(cut & (p_rho > 0), (p_gap - p_t * (trial_t - t)) / (p_rho * rho), ratio)
+                good = (determinant < 0) & np.isfinite(ratio) & np.isfinite(trial_t)
+                done = good & ~cut & (np.abs(step_t) <= _SETTLED * t) & (np.abs(ratio) <= _SETTLED)
                 ratio = np.where(ratio > 0, ratio / (1 + 0.5 * ratio), np.maximum(ratio, -0.6))
             t = np.where(good, trial_t, t)
             rho = np.where(good, rho * (1 + ratio), rho)
@@ -217,6 +225,7 @@ class PressureFlash:
     ) -> BoolArray:
         """Whether a root lies on the stable side of the saturation line, and inside the temperatures allowed."""
         good = (temperature > self._lowest * (1 - 1e-9)) & (temperature < self._highest * (1 + 1e-9))
+        good &= density < self._solver.maximum_density
         below = temperature < self._curves.top_temperature
         if below.any():
             saturated = self._curves.at_temperature(temperature[below])

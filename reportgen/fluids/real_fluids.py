@@ -150,16 +150,18 @@ class RealFluid:
     def _solution(self, temperature: FloatArray, pressure: FloatArray, density: FloatArray, **more: Any) -> Solution:
         return Solution(self._equation, self._curves, self._triple_pressure, temperature, pressure, density, **more)
 
+    def _harmless(
+        self, pressure: FloatArray, temperature: FloatArray, elements: Elements
+    ) -> tuple[FloatArray, FloatArray]:
+        """Pressure and temperature with a dilute hot gas in place of rejected elements, so that nothing is searched there."""
+        rejected = elements.rejected
+        return np.where(rejected, 1e4, pressure), np.where(rejected, self.limits.maximum_temperature, temperature)
+
     def _pressure_temperature(self, pressure: FloatArray, temperature: FloatArray, elements: Elements) -> Solution:
         guard, curves = self._guard, self._curves
         guard.pressure(pressure, elements)
         guard.temperature(temperature, elements)
-        usable = ~elements.rejected
-        p, t = (
-            (pressure, temperature)
-            if usable.all()
-            else (np.where(usable, pressure, 1e5), np.where(usable, temperature, self.limits.maximum_temperature))
-        )
+        p, t = self._harmless(pressure, temperature, elements) if elements.rejected.any() else (pressure, temperature)
         liquid = np.zeros(p.size, dtype=np.bool_)
         below = t < curves.top_temperature
         if below.any():
@@ -172,6 +174,8 @@ class RealFluid:
                 on_line[below] = band
                 elements.reject(on_line, lambda i: guard.on_saturation(p[i], t[i], self.pseudo_pure))
         guard.melting(p, t, elements)
+        if elements.rejected.any():
+            p, t = self._harmless(p, t, elements)
         density, found = self._solver.solve(t, p, liquid)
         elements.reject(~found, lambda i: guard.not_found("pressure", p[i], "temperature", t[i]))
         return self._solution(temperature, pressure, density)

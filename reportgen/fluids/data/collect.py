@@ -2,8 +2,8 @@
 
     python -m reportgen.fluids.data.collect [NAME ...]
 
-Reads the coefficients and bibliography that the CoolProp wheel (MIT licence) carries, names the publication of each, and
-adds what is computed here from the equation alone: the true critical point, saturation curves, entropy zero in words.
+Reads the coefficients and bibliography that the CoolProp wheel (MIT licence) carries, names the publication of each,
+and adds what is computed here from the equation alone: true critical point, saturation curves, entropy zero in words.
 Nothing of that library's own fits, code or reference-state choices is carried over. See NOTICE.md.
 """
 
@@ -33,8 +33,8 @@ FLUIDS = (
     ("Methane", "methane", "Methane"),
     ("n-Propane", "propane", "Propane"),
     ("Ammonia", "ammonia", "Ammonia"),
-    ("R134a", "R134a", "R134a (1,1,1,2-tetrafluoroethane)"),
-    ("Air", "air", "Air (dry, as a pseudo-pure fluid)"),
+    ("R134a", "R134a", "R134a"),
+    ("Air", "air", "Air"),
 )
 
 #: Kinds of terms: name in the source -> name here (terms.py) and the columns carried.
@@ -100,8 +100,6 @@ def plain_text(text: str) -> str:
     accents = {'"': "\u0308", "'": "\u0301", "`": "\u0300", "^": "\u0302", "c": "\u0327", "v": "\u030c"}
 
     def compose(match: re.Match[str]) -> str:
-        import unicodedata
-
         letter = {r"\i": "i", r"\o": "ø"}.get(match[2], match[2])
         return unicodedata.normalize("NFC", letter + accents[match[1]])
 
@@ -141,6 +139,11 @@ def publications(keys: str, library: dict[str, dict[str, str]]) -> list[dict[str
             }
         )
     return found
+
+
+def formula_of(info: dict[str, Any]) -> str:
+    """Chemical formula in one line, such as CO2; empty for mixtures."""
+    return re.sub(r"[_{}]", "", re.sub(r"_\{1\}", "", info.get("FORMULA", "")))
 
 
 def melting_line(source: dict[str, Any] | None, triple: float) -> dict[str, Any] | None:
@@ -280,9 +283,9 @@ def collect(source_name: str, name: str, title: str, library: dict[str, dict[str
         "format": "reportgen-fluid/1",
         "name": name,
         "title": title,
-        "formula": re.sub(r"[_{}]", "", info.get("FORMULA", "")),
+        "formula": formula_of(info),
         "cas": info.get("CAS", ""),
-        "aliases": sorted({alias for alias in [*info["ALIASES"], source_name, info.get("FORMULA", "")] if "{" not in alias}),
+        "aliases": sorted({*info["ALIASES"], source_name}),
         "pseudo_pure": pseudo_pure,
         "molar_mass": mass,
         "molar_gas_constant": equation_data["gas_constant"],
@@ -342,7 +345,8 @@ def main(chosen: list[str]) -> None:
             continue
         data = collect(source_name, name, title, library)
         path = HERE / f"{name.replace(' ', '-')}.json"
-        path.write_text(json.dumps(data, indent=None, separators=(",", ":"), ensure_ascii=False) + "\n", encoding="utf-8")
+        text = json.dumps(data, separators=(",", ":"), ensure_ascii=False)
+        path.write_text(text + "\n", encoding="utf-8", newline="\n")
         intervals = len(data["saturation"]["edges"]) - 1
         critical = data["critical_point"]
         print(

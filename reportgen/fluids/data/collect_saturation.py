@@ -95,7 +95,8 @@ def chebyshev(values: Array) -> Array:
     k = np.arange(n)
     matrix = np.cos(np.pi * np.outer(k, k + 0.5) / n).astype(Extended) * 2 / n
     matrix[0] /= 2
-    return values @ matrix.T
+    coefficients: Array = values @ matrix.T
+    return coefficients
 
 
 def nodes(low: Any, high: Any, count: int = DEGREE + 1) -> Array:
