@@ -331,7 +331,7 @@ def shown(value: object) -> str:
     return text if len(text) <= 60 else text[:59] + "…"
 
 
-ShortText = Annotated[str, StringConstraints(max_length=300), AfterValidator(_printable)]
+ShortText = Annotated[str, StringConstraints(max_length=500), AfterValidator(_printable)]
 LongText = Annotated[str, StringConstraints(max_length=100_000)]
 # The patterns for editors are a little wider than the checks: regular expressions differ between languages there.
 Identifier = Annotated[

@@ -16,7 +16,7 @@ from reportgen.spec.schema import LATER, document
 from reportgen.spec.source import Location, Source
 from reportgen.spec.toml_cursor import Node
 
-__all__ = ["refuse_later", "validate"]
+__all__ = ["context_of", "validate"]
 
 STANDARD_ATMOSPHERE = 101_325.0
 
@@ -74,7 +74,7 @@ def validate(source: Source, context: Mapping[str, float]) -> BaseModel | None:
         return None
 
 
-def refuse_later(source: Source, location: Location, table: str, word: str, *, at: Literal["key", "value"]) -> bool:
+def _refuse_later(source: Source, location: Location, table: str, word: str, *, at: Literal["key", "value"]) -> bool:
     """Whether a word belongs to what this version does not carry; then that is noted."""
     subject = LATER.get(table, {}).get(word)
     if subject is None:
@@ -139,7 +139,7 @@ def _note_choice(source: Source, location: Location, choices: Sequence[str]) -> 
     node = source.node(location)
     value = node.value if node is not None else None
     table = ".".join(str(part) for part in (location[0], location[-1]))
-    if isinstance(value, str) and refuse_later(source, location, table, value, at="value"):
+    if isinstance(value, str) and _refuse_later(source, location, table, value, at="value"):
         return
     source.report(
         location,
@@ -157,7 +157,7 @@ def _note_unknown(source: Source, detail: Any) -> list[Location]:
     choices = _keys_of(tagged[:-1])
     key = str(location[-1])
     table = str(location[0]) if len(location) > 1 else ""
-    if refuse_later(source, location, table, key, at="key"):
+    if _refuse_later(source, location, table, key, at="key"):
         return []
     meant = source.nearest(key, choices)
     source.report(
