@@ -20,6 +20,8 @@ __all__ = ["estimated_total", "estimated_width", "mathml", "pieces", "split"]
 
 _LARGE_OPERATORS = {"∑", "∏"}
 _ACCENTS = {"˙", "¨", "¯", "―", "^", "ˆ", "~", "˜", "→"}
+_SIGNS = {"+", "−", "±"}
+_CLOSING = {")", "]", "}", "|", "!", "%"}
 _CHILDREN = {"mfrac": 2, "msub": 2, "msup": 2, "msubsup": 3, "mover": 2, "munder": 2, "munderover": 3}
 _FUNCTIONS = {"ln", "log", "exp", "sin", "cos", "tan", "max", "min"}
 _WORD = re.compile(r"\\mathrm\{([^{}\\^]*)\}")
@@ -82,8 +84,13 @@ def _mend(element: ElementTree.Element) -> None:
         element.tag = {"msub": "munder", "msup": "mover", "msubsup": "munderover"}[element.tag]
     _unwrap(element)
     _join_letters(element)
+    if element.tag == "msup" and [part.tag for part in element[1]] == ["mo", "mn"] and element[1][0].text == "−":
+        exponent = ElementTree.Element("mn")
+        exponent.text = f"−{element[1][1].text}"
+        element[1] = exponent
     if element.tag in ("math", "mrow"):
         _space_functions(element)
+        _mark_signs(element)
 
 
 def _strip_defaults(root: ElementTree.Element) -> None:
@@ -144,6 +151,18 @@ def _join_letters(element: ElementTree.Element) -> None:
         base.text = letters + joined
         element.remove(element[index])
         index = max(index - 1, 0)
+
+
+def _mark_signs(element: ElementTree.Element) -> None:
+    """A + or − after another operator or an opening bracket is a sign: no space between it and its number."""
+    before: ElementTree.Element | None = None
+    for child in element:
+        if child.tag == "mspace":
+            continue
+        sign = child.tag == "mo" and child.text in _SIGNS
+        if sign and before is not None and before.tag == "mo" and before.text not in _CLOSING:
+            child.set("form", "prefix")
+        before = child
 
 
 def _space_functions(element: ElementTree.Element) -> None:

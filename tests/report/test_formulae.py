@@ -104,6 +104,18 @@ def test_signs_are_not_broken_from_their_numbers() -> None:
     assert split(r"2 \times 10^{-5}") == [r"2 \times 10^{-5}"]
 
 
+@pytest.mark.parametrize("latex", ["= -4.62", r"\left(-4.62\right)", r"a \cdot \, -4.62", "x, -4.62"])
+def test_a_sign_stands_close_to_its_number(latex: str) -> None:
+    sign = next(element for element in parsed(latex).iter("mo") if element.text == "−")
+    assert sign.get("form") == "prefix"
+
+
+@pytest.mark.parametrize("latex", ["a - 4.62", r"\left(a\right) - 4.62", r"25\,\% - 4"])
+def test_a_minus_between_terms_is_no_sign(latex: str) -> None:
+    operator = next(element for element in parsed(latex).iter("mo") if element.text == "−")
+    assert operator.get("form") is None
+
+
 def test_a_piece_that_goes_on_spaces_its_operator_between_terms() -> None:
     first, second = pieces("a - b", "=")
     assert first.startswith("<math")
