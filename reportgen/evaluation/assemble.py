@@ -21,7 +21,7 @@ from reportgen.evaluation.assumptions import (
     fluid_assumptions,
     stream_assumption,
 )
-from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit
+from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit, settle_zeros
 from reportgen.evaluation.budget import budgets
 from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, raised, unevaluated
 from reportgen.evaluation.criteria import decided_criteria
@@ -76,6 +76,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
         raise placed(calculation, error, models) from error
     plant = _evaluated(calculation, models, axis, solution)
     totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
+    settle_zeros(plant, totals)
     criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
     automatic = _automatic(calculation, plant, solution, _variant(definition, axis))
     accounts = accounts_section(calculation, solution)

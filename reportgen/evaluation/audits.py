@@ -24,6 +24,7 @@ __all__ = [
     "counted_pieces",
     "heaviest_inputs",
     "second_law_audit",
+    "settle_zeros",
 ]
 
 Array = npt.NDArray[np.float64]
@@ -31,10 +32,34 @@ Array = npt.NDArray[np.float64]
 #: Standard acceleration of free fall [m/s2], exact by convention: ISO 80000-3.
 FREE_FALL = 9.80665
 
-#: What iterations may leave of an entropy balance, as a part of the entropy flows in it.
+#: What arithmetic and iterations may leave of an entropy balance, as a part of the entropy flows in it.
 BALANCE_RESOLUTION = 1e-9
+#: The same for heat that an energy balance leaves, as a part of the energy flows in it.
+HEAT_RESOLUTION = 1e-10
 
 HEAVIEST = 3
+
+
+def settle_zeros(plant: EvaluatedPlant, totals: Sequence[str]) -> None:
+    """Put an exact 0 where only rounding stands, in place.
+
+    A splitter takes up no heat and generates nothing, but differences of its flows leave some 1e-16 of them; shown,
+    such a number would pretend to a meaning. Concerned are heat below HEAT_RESOLUTION of the energy flows through its
+    owner and entropy generation below BALANCE_RESOLUTION of the entropy flows, in every column, with the values
+    derived from them.
+    """
+    for owner, tags in _owners(plant, totals):
+        for quantity, part, names in (
+            ("energy", HEAT_RESOLUTION, ("heat", "entropy_with_heat")),
+            ("entropy", BALANCE_RESOLUTION, ("entropy_generation", "lost_work", "entropy_generation_number")),
+        ):
+            samples = plant.samples(f"{owner}.{names[0]}")
+            scale = balance_round(plant, tags)[quantity][1]
+            known = samples[np.isfinite(samples)]
+            if known.size and np.any(known != 0.0) and np.all(np.abs(known) <= part * scale):
+                for name in names:
+                    if plant.has(f"{owner}.{name}"):
+                        plant.values[f"{owner}.{name}"][:] = 0.0
 
 
 def second_law_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str, Any]]:

@@ -90,3 +90,46 @@ def project(name: str) -> Record:
     """Record of a demo project; not to be changed."""
     folder = PROJECTS / name
     return evaluate(spec.read(folder), folder)
+
+
+RECYCLE = (
+    HEAD
+    + AIR
+    + """
+[states.1]
+fluid       = "air"
+pressure    = "1.2 bar(a)"
+temperature = "20 degC ± 1 K"
+mass_flow   = "1.0 kg/s ± 1 %"
+
+[states.2]
+fluid = "air"
+
+[states.3]
+fluid = "air"
+
+[states.4]
+fluid     = "air"
+
+[states.5]
+fluid     = "air"
+mass_flow = "0.4 kg/s ± 2 %"
+
+[equipment.M-1]
+kind   = "mixer"
+inlets = ["1", "5"]
+outlet = "2"
+
+[equipment.H-1]
+kind                 = "heater"
+inlet                = "2"
+outlet               = "3"
+heat                 = "50 kW ± 1 kW"
+boundary_temperature = "150 degC"
+
+[equipment.S-1]
+kind    = "splitter"
+inlet   = "3"
+outlets = ["4", "5"]
+"""
+)

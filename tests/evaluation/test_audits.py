@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from handmade_plants import plant, samples
 
-from reportgen.evaluation.audits import balance_round, boundary_streams, closure_audit, second_law_audit
+from reportgen.evaluation.audits import balance_round, boundary_streams, closure_audit, second_law_audit, settle_zeros
 from reportgen.evaluation.evaluated import EvaluatedPlant
 
 
@@ -107,3 +109,20 @@ def test_a_zero_of_the_arithmetic_is_no_entropy_generation() -> None:
     case = two_machines(**{"equipment.A.entropy_generation": -1e-7})
     entries = {entry["owner"]: entry for entry in second_law_audit(case, ["A", "B"])}
     assert entries["equipment.A"]["verdict"] == "not resolved from reversible"
+
+
+def test_what_rounding_leaves_becomes_zero_and_nothing_else() -> None:
+    case = two_machines(
+        **{
+            "equipment.A.entropy_generation": np.full(5, 3e-8),
+            "equipment.A.lost_work": np.full(5, 9e-6),
+            "equipment.B.entropy_generation": samples(80.0, 1.0, 1.0),
+            "equipment.A.heat": np.full(5, -1e-9),
+        }
+    )
+    case = replace(case, values={path: np.array(array) for path, array in case.values.items()})
+    settle_zeros(case, ["A", "B"])
+    for path in ("equipment.A.entropy_generation", "equipment.A.lost_work", "equipment.A.heat"):
+        assert case.values[path].tolist() == [0.0] * 5
+    assert case.values["equipment.B.entropy_generation"][0] == 80.0
+    assert case.values["equipment.B.heat"][0] == -150e3

@@ -11,7 +11,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
-from calculations import COMPRESSOR, HEAD, PROJECTS, VALVE, evaluated, project
+from calculations import COMPRESSOR, HEAD, PROJECTS, RECYCLE, VALVE, evaluated, project
 
 from reportgen.errors import InputError, SolutionError
 from reportgen.names import DIMENSIONS, NAMES
@@ -129,6 +129,37 @@ def test_the_letdown_station() -> None:
     assert record.data["assumptions"][0]["status"] == "to be verified"
     assert record.value("total.lost_work") == record.value("equipment.PRV-3.lost_work")
     assert record.value("trains.turbine.power") == record.value("equipment.TG-2.power")
+
+
+def test_a_loop_is_solved_together_and_every_number_of_it_is_shown() -> None:
+    """Fresh air takes up all heat whatever recirculates: T4 = T1 + Q/(m cp), with its closed-form uncertainty."""
+    record = evaluated(RECYCLE)
+    rise = 50e3 / 1005.0
+    assert record.value("states.4.temperature") == pytest.approx(293.15 + rise, rel=1e-9)
+    expected = math.hypot(0.5, rise * 0.01, rise * 0.005)
+    assert record.values["states.4.temperature"]["standard_uncertainty"] == pytest.approx(expected, rel=1e-4)
+    together = [key for key in record.data["solution_order"] if key.startswith("simultaneous")]
+    assert together
+    for key in together:
+        assert all("⟦" not in part for line in record.data["relations"][key]["latex_lines"] for part in line)
+    assert record.value("equipment.S-1.entropy_generation") == 0.0
+    assert record.values["equipment.S-1.entropy_generation"]["standard_uncertainty"] is None
+    verdicts = {entry["owner"]: entry["verdict"] for entry in record.data["audits"]["second_law"]}
+    assert verdicts["equipment.S-1"] == "not resolved from reversible"
+    assert verdicts["equipment.M-1"] == "generates entropy"
+
+
+def test_other_units_for_the_same_inputs_give_the_same_values() -> None:
+    other = VALVE.replace("8.0 bar(a) ± 0.1 bar", "800 kPa ± 10 kPa").replace("40 degC ± 1 K", "313.15 K ± 1 K")
+    other = other.replace("0.5 kg/s ± 2 %", "1800 kg/h ± 36 kg/h").replace("2.0 bar(a)", "0.2 MPa")
+    first, second = evaluated(VALVE), evaluated(other)
+    for path, entry in first.values.items():
+        value = second.value(path)
+        if isinstance(entry["value"], float):
+            # Rounding of the conversions, on differences of entropies that are a tenth of their size.
+            assert value == pytest.approx(entry["value"], rel=1e-9, abs=1e-9), path
+        else:
+            assert value == entry["value"], path
 
 
 # Uncertainty
