@@ -60,8 +60,18 @@ class DensitySolver:
     def _solve(
         self, temperature: FloatArray, pressure: FloatArray, liquid: NDArray[np.bool_]
     ) -> tuple[FloatArray, NDArray[np.bool_]]:
-        equation = self._equation
-        rt = equation.gas_constant * temperature
+        start, low, high = self._start(temperature, pressure, liquid)
+        return self._iterate(temperature, pressure, start, low, high)
+
+    def guess(self, temperature: FloatArray, pressure: FloatArray, liquid: NDArray[np.bool_]) -> FloatArray:
+        """The density that :meth:`solve` starts from [kg/m3]."""
+        return self._start(temperature, pressure, liquid)[0]
+
+    def _start(
+        self, temperature: FloatArray, pressure: FloatArray, liquid: NDArray[np.bool_]
+    ) -> tuple[FloatArray, FloatArray, FloatArray]:
+        """Starting density and the ends of its bracket [kg/m3]."""
+        rt = self._equation.gas_constant * temperature
         start = pressure / rt
         low = start * 1e-3
         high = np.full_like(start, self.maximum_density)
@@ -87,7 +97,7 @@ class DensitySolver:
             start = self._cubic_start(temperature, pressure, rt)
         elif above.any():
             start[above] = self._cubic_start(temperature[above], pressure[above], rt[above])
-        return self._iterate(temperature, pressure, start, low, high)
+        return start, low, high
 
     def _cubic_start(self, temperature: FloatArray, pressure: FloatArray, rt: FloatArray) -> FloatArray:
         """Density of the Peng-Robinson equation above the critical temperature, where it has one real root."""

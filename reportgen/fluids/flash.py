@@ -99,7 +99,7 @@ class PressureFlash:
                 dense, np.minimum(top * (p / self._curves.top_pressure) ** 0.13, self._highest), self._lowest
             )
             liquid[rest] = dense
-            result.density[rest] = self._solver.solve(result.temperature[rest], p, dense)[0]
+            result.density[rest] = self._solver.guess(result.temperature[rest], p, dense)
         todo = np.flatnonzero(~result.found & ~result.between)
         if todo.size:
             self._single_phase(pressure, target, entropy, result, todo, low, high, liquid)

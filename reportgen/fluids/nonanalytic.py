@@ -8,6 +8,7 @@ Wagner and Pruß, J. Phys. Chem. Ref. Data 31 (2002) 387, doi:10.1063/1.1461829,
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from typing import Any
 
@@ -18,8 +19,9 @@ __all__ = ["NonAnalytic"]
 
 FloatArray = NDArray[Any]
 
-#: Beyond C(δ−1)² + D(τ−1)² = 40 the terms are below e⁻⁴⁰ = 4e-18 and are left out.
-_CUTOFF = 40.0
+#: Where nδψ is below e^(−33) = 5e-15 the terms are left out: next to 1, the compressibility factor of the ideal gas, they
+#: change a pressure by less than 1e-13 on the dilute side and by less than 1e-12 on the dense one.
+_CUTOFF = 33.0
 
 #: Nearest approach to the critical isochore and to the critical point, where higher derivatives are singular.
 _SMALLEST = {np.dtype(np.float64): 1e-30, np.dtype(np.longdouble): 1e-36}
@@ -41,13 +43,15 @@ class NonAnalytic:
         self._n, self._a, self._b, self._beta = (column(name) for name in ("n", "a", "b", "beta"))
         self._big_a, self._big_b, self._big_c, self._big_d = (column(name) for name in ("A", "B", "C", "D"))
         self._least_c, self._least_d = float(self._big_c.min()), float(self._big_d.min())
+        self._cutoff = _CUTOFF + math.log(float(np.abs(self._n).max()))
         self._smallest = _SMALLEST[np.dtype(dtype)]
 
     def matters(self, delta: FloatArray, tau: FloatArray) -> NDArray[np.intp]:
         """Indices of the elements where the terms are not negligible."""
         exponent = self._least_d * (tau - 1) ** 2
         exponent += self._least_c * (delta - 1) ** 2
-        return np.flatnonzero(exponent < _CUTOFF)
+        exponent -= np.log(delta)
+        return np.flatnonzero(exponent < self._cutoff)
 
     def values(self, delta: FloatArray, tau: FloatArray, *, density_only: bool = False) -> tuple[FloatArray, ...]:
         """(δφ_δ, δ²φ_δδ) and, unless ``density_only``, also φ, τφ_τ, τ²φ_ττ, δτφ_δτ; each of shape (N,)."""
@@ -81,7 +85,7 @@ class NonAnalytic:
         weight = psi + delta * psi_d
 
         def total(terms: FloatArray) -> FloatArray:
-            summed: FloatArray = (n * terms).sum(axis=0)
+            summed: FloatArray = np.add.reduce(n * terms, axis=0)
             return summed
 
         first = delta * total(power * weight + f_d * delta * psi)
