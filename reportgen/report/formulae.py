@@ -166,15 +166,18 @@ def _mark_signs(element: ElementTree.Element) -> None:
 
 
 def _space_functions(element: ElementTree.Element) -> None:
-    """A thin space after ln, exp and their like when no bracket follows."""
-    for index in reversed(range(len(element) - 1)):
-        child, follower = element[index], element[index + 1]
-        if child.tag == "mi" and child.text in _FUNCTIONS:
+    """A thin space before ln, exp and their like when a factor stands there, and after when no bracket follows."""
+    for index in reversed(range(len(element))):
+        child = element[index]
+        if child.tag != "mi" or child.text not in _FUNCTIONS:
+            continue
+        follower = element[index + 1] if index + 1 < len(element) else None
+        if follower is not None:
             opening = follower[0] if follower.tag == "mrow" and len(follower) else follower
-            if opening.tag == "mspace" or (opening.tag == "mo" and opening.text == "("):
-                continue
-            space = ElementTree.Element("mspace", {"width": "0.167em"})
-            element.insert(index + 1, space)
+            if opening.tag not in ("mspace", "mo"):
+                element.insert(index + 1, ElementTree.Element("mspace", {"width": "0.167em"}))
+        if index and element[index - 1].tag not in ("mspace", "mo"):
+            element.insert(index, ElementTree.Element("mspace", {"width": "0.167em"}))
 
 
 def split(latex: str) -> list[str]:

@@ -171,7 +171,7 @@ class Presenter:
         name = ".".join(parts[1:-1])
         trains = self.record.data["plant"].get("trains", {})
         if parts[0] == "states":
-            return f"state {name}"
+            return f"state\N{NO-BREAK SPACE}{name}"
         if parts[0] == "equipment":
             return name
         if parts[0] == "trains":

@@ -82,5 +82,7 @@ def _open_items(data: dict[str, Any]) -> str:
 
 
 def _counted(counts: dict[str, int]) -> str:
-    """``1 stop, 2 warning``; a dash when all are zero."""
-    return ", ".join(f"{count} {word}" for word, count in counts.items() if count) or NO_VALUE
+    """``1 stop, 2 warnings``; a dash when all are zero."""
+    plural = {word: f"{word}s" for word in _SEVERITIES}
+    found = (f"{count} {plural.get(word, word) if count > 1 else word}" for word, count in counts.items() if count)
+    return ", ".join(found) or NO_VALUE

@@ -73,7 +73,7 @@ def test_fractions_roots_logarithms_and_powers_of_ten() -> None:
     assert parsed(r"\frac{a}{b}").find("mfrac") is not None
     assert parsed(r"\sqrt{x}").find("msqrt") is not None
     logarithm = parsed(r"R \ln\frac{p_2}{p_1}")
-    assert [child.tag for child in logarithm] == ["mi", "mi", "mspace", "mfrac"]
+    assert [child.tag for child in logarithm] == ["mi", "mspace", "mi", "mspace", "mfrac"]
     power = parsed(r"2.3 \times 10^{-12}\,\mathrm{kW}").find("msup")
     assert power is not None
     assert "".join(power.itertext()) == "10−12"

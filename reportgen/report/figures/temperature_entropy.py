@@ -22,6 +22,7 @@ _MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
 _APART = 1.1
+_LEGIBLE = 6.0  # points between a labelled isobar and any other line
 #: Part of both axes below which the processes get a panel of their own.
 _CROWDED = 0.4
 
@@ -235,7 +236,9 @@ def _labels(drawing: Drawing, curves: _Curves, pen: _Pen, detail: Box | None) ->
                 width, height = drawing.text_size(name)
                 _set(drawing, pen.placement.place(Label(name, width, height, anchors, 0.0)), color=TEAL)
     for text, line in curves.isobars if detail is None else ():
-        anchors = _spread(pen.visible(line), (1.0, 0.97, 0.9, 0.8, 0.6, 0.4))
+        others = [other for _, other in curves.isobars if other is not line]
+        apart = _away(pen.visible(line), [pen.display(other) for other in [*others, curves.dome] if other])
+        anchors = _spread(apart, (1.0, 0.97, 0.9, 0.8, 0.6, 0.4))
         if anchors:
             width, height = drawing.text_size(text, SMALL)
             placed = pen.placement.place(Label(text, width, height, anchors, 180.0))
@@ -251,6 +254,15 @@ def _labels(drawing: Drawing, curves: _Curves, pen: _Pen, detail: Box | None) ->
         width, height = drawing.text_size("enlarged below", SMALL)
         placed = pen.placement.place(Label("enlarged below", width, height, foot, 270.0))
         _set(drawing, placed, color=GREY, size=SMALL)
+
+
+def _away(points: Line, others: list[Line]) -> Line:
+    """Points that stand clear of other lines: where an isobar runs along another, no label could say which it means."""
+    if not others or not points:
+        return points
+    crowd = np.concatenate([np.asarray(line, dtype=float) for line in others])
+    distances = np.sqrt(((np.asarray(points)[:, None, :] - crowd[None, :, :]) ** 2).sum(axis=2)).min(axis=1)
+    return [point for point, distance in zip(points, distances, strict=True) if distance > _LEGIBLE]
 
 
 def _spread(points: Line, parts: tuple[float, ...]) -> Line:
