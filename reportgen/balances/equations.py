@@ -140,7 +140,8 @@ def adiabatic(piece: Piece, energy: Balance | None = None, kept: Balance | None 
     sentence = f"{piece.title} is taken as adiabatic."
     relation = zero(heat, piece.path("heat.assumed"), piece.owner, "Adiabatic", sentence)
     rewrites = {energy.key: lambda _: kept} if energy and kept else {}
-    return Default(f"{piece.owner}.adiabatic", piece.owner, text, (heat,), relation, rewrites)
+    rank = 0 if rewrites else 3
+    return Default(f"{piece.owner}.adiabatic", piece.owner, text, (heat,), relation, rewrites, rank)
 
 
 def pressure_drop(piece: Piece, inlet: str, outlet: str, name: str = "pressure_drop") -> Balance:

@@ -269,7 +269,9 @@ class Default:
     """An assumption that stands in when neither the givens nor another relation determine a quantity.
 
     It adds ``relation`` to the network, and rewrites the relations named in ``rewrites`` (a valve without heat exchange
-    keeps its enthalpy, whatever its flow). ``rank``: lower ones are tried first.
+    keeps its enthalpy, whatever its flow). ``rank``: lower ones are tried first: 0 a valve without heat exchange,
+    1 pressures that are kept, 2 pressures of mixed streams, 3 other heats and powers. Pressure losses come before the
+    heat of exchangers, since nobody means a pressure to be found from a temperature and an enthalpy.
     """
 
     key: str
@@ -278,7 +280,7 @@ class Default:
     affects: tuple[str, ...]
     relation: Relation
     rewrites: Mapping[str, Callable[[Any], Relation]] = field(default_factory=dict)
-    rank: int = 0
+    rank: int = 3
 
 
 @dataclass(frozen=True)

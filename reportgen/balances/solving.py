@@ -263,6 +263,7 @@ class _Run:
                 owners.append(relation.owner)
             if relation.key in self.assumed:
                 others.append(f"assumptions.{self.assumed[relation.key].key}")
+        self._doubt_pressures(block)
         self.simultaneous += 1
         single = len(block.relations) == 1
         names = ", ".join(dict.fromkeys(owner.split(".", 1)[-1] for owner in owners))
@@ -285,6 +286,20 @@ class _Run:
                 tuple(equations),
             )
         )
+
+    def _doubt_pressures(self, block: Block) -> None:
+        """Warn where a pressure was found from temperature and enthalpy only, which hardly depend on it."""
+        for relation, path in zip(block.relations, block.unknowns, strict=True):
+            if (
+                isinstance(relation, PropertyRelation)
+                and relation.output == "temperature"
+                and path.endswith("pressure")
+            ):
+                text = (
+                    f"The pressure of state {relation.state} is not given; it was found from temperature and enthalpy, "
+                    "which hardly depend on it."
+                )
+                self.solution.warnings.append(Fault(text, path, hint="State the pressure or the pressure loss."))
 
     def _unsolved(self, block: Block, failure: NoSolution) -> Fault:
         relations = ", ".join(relation.key for relation in block.relations[:8])

@@ -20,8 +20,23 @@ _USUAL = {
 }
 #: Distance between starts of enthalpies that would otherwise be equal [J/kg]: equal ones make differences vanish.
 _APART = 2.0e3
-#: Scale of the starting pressure and offset of the starting enthalpy [J/kg], tried in turn.
-_ATTEMPTS = ((1.0, 0.0), (1.0, 1.0e5), (1.0, -1.0e5), (3.0, 0.0), (0.4, 0.0), (1.0, 6.0e5))
+#: Relative distance between starts of pressures that would otherwise be equal.
+_PRESSURES_APART = 0.02
+#: Scale of the pressures, offset of the enthalpies [J/kg] and temperature in parts of the surroundings' (0: from
+#: states nearby) to start from, tried in turn.
+_ATTEMPTS = (
+    (1.0, 0.0, 0.0),
+    (1.0, 1.0e5, 0.0),
+    (1.0, -1.0e5, 0.0),
+    (0.5, 0.0, 0.0),
+    (2.0, 0.0, 0.0),
+    (1.0, 0.0, 1.0),
+    (1.0, 0.0, 1.8),
+    (1.0, 0.0, 3.0),
+    (1.0, 0.0, 0.6),
+    (4.0, 0.0, 0.0),
+    (0.2, 0.0, 0.0),
+)
 
 
 class Starts:
@@ -38,7 +53,8 @@ class Starts:
 
     def attempts(self, unknowns: Sequence[str]) -> Iterator[dict[str, float]]:
         """Starts in the order in which to try them."""
-        for pressure_factor, enthalpy_offset in _ATTEMPTS:
+        ambient = self._base("surroundings.temperature", 298.15)
+        for pressure_factor, enthalpy_offset, relative in _ATTEMPTS:
             found: dict[str, float] = {}
             for number, path in enumerate(sorted(unknowns, key=self._pressures_first)):
                 name = path.rsplit(".", 1)[-1]
@@ -46,9 +62,11 @@ class Starts:
                 if path.startswith("states."):
                     if name == "pressure":
                         near = self._nearest(state, name, self._base("surroundings.pressure", 1e5))
-                        found[path] = pressure_factor * near
+                        found[path] = pressure_factor * near * (1.0 + _PRESSURES_APART * (number % 5 + 1))
                     elif name == "specific_enthalpy":
-                        found[path] = self._enthalpy(state, found) + enthalpy_offset + _APART * (number % 7)
+                        at_temperature = relative * ambient if relative else None
+                        enthalpy = self._enthalpy(state, found, at_temperature)
+                        found[path] = enthalpy + enthalpy_offset + _APART * (number % 7)
                     else:
                         found[path] = self._nearest(state, name, 1.0)
                 else:
@@ -78,11 +96,11 @@ class Starts:
                     queue.append(other)
         return otherwise
 
-    def _enthalpy(self, state: str, found: Mapping[str, float]) -> float:
-        """From the state's own temperature when known, else the nearest enthalpy of the fluid, else at ambient."""
+    def _enthalpy(self, state: str, found: Mapping[str, float], at_temperature: float | None) -> float:
+        """From a temperature asked for or the state's own, else the nearest enthalpy of the fluid, else at ambient."""
         fluid = self._plant.fluids[self._plant.states[state]]
         pressure = found.get(f"states.{state}.pressure", self._base(f"states.{state}.pressure", 1e5))
-        temperature = self._base(f"states.{state}.temperature", np.nan)
+        temperature = self._base(f"states.{state}.temperature", at_temperature or np.nan)
         if not np.isfinite(temperature):
             near = self._nearest(state, "specific_enthalpy", np.nan, same_fluid=True)
             if np.isfinite(near):

@@ -70,11 +70,11 @@ def defaults(piece: Piece) -> list[Default]:
         found.append(Default(f"{piece.owner}.divides", piece.owner, text, (other,), equal, rank=1))
         enthalpy = f"states.{state}.specific_enthalpy"
         kept = _equal_energy(piece, outlets[0], state)
-        found.append(Default(f"{piece.owner}.divides", piece.owner, text, (enthalpy,), kept, rank=1))
+        found.append(Default(f"{piece.owner}.divides", piece.owner, text, (enthalpy,), kept))
     enthalpy = f"states.{outlets[0]}.specific_enthalpy"
     text = f"{piece.title} exchanges no heat with its surroundings (adiabatic)."
     kept = _equal_energy(piece, inlet, outlets[0])
-    found.append(Default(f"{piece.owner}.adiabatic", piece.owner, text, (enthalpy, piece.path("heat")), kept, rank=1))
+    found.append(Default(f"{piece.owner}.adiabatic", piece.owner, text, (enthalpy, piece.path("heat")), kept))
     return found
 
 
