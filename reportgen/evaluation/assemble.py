@@ -15,7 +15,6 @@ from reportgen import balances
 from reportgen.errors import ReportgenError
 from reportgen.evaluation.assumptions import (
     AutomaticAssumption,
-    Variant,
     assumption_list,
     boundary_temperature_test,
     fluid_assumptions,
@@ -39,6 +38,7 @@ from reportgen.evaluation.sections import (
     plant_section,
     train_of,
 )
+from reportgen.evaluation.trials import Trial, Variant
 from reportgen.quantities import Display
 from reportgen.record import Record
 from reportgen.spec import CALCULATION_FILE
@@ -78,7 +78,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
     totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
     settle_zeros(plant, totals)
     criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
-    automatic = _automatic(calculation, plant, solution, _variant(definition, axis))
+    automatic = _automatic(calculation, solution, Trial(plant, _variant(definition, axis), criteria))
     accounts = accounts_section(calculation, solution)
     summary = _summary(calculation, plant, totals)
     relations = relations_section(plant, solution, Display(calculation.units))
@@ -141,21 +141,19 @@ def _variant(definition: Plant, axis: SampleAxis) -> Variant:
     return solve
 
 
-def _automatic(
-    calculation: Calculation, plant: EvaluatedPlant, solution: Solution, variant: Variant
-) -> list[AutomaticAssumption]:
+def _automatic(calculation: Calculation, solution: Solution, trial: Trial) -> list[AutomaticAssumption]:
     """Assumptions of the property models, then those the balances took, each with its test where there is one."""
-    found = fluid_assumptions(plant, calculation.fluids, variant, real_counterpart, property_model)
-    streams = stream_assumption(plant)
+    found = fluid_assumptions(trial, calculation.fluids, real_counterpart, property_model)
+    streams = stream_assumption(trial.plant)
     found += [] if streams is None else [streams]
     for item in solution.assumptions:
         port = next(
-            (port for ports in plant.heats.values() for port in ports if port.entropy in item.affects),
+            (port for ports in trial.plant.heats.values() for port in ports if port.entropy in item.affects),
             None,
         )
         test = None
         if port is not None and item.owner.startswith("equipment."):
-            test = boundary_temperature_test(plant, item.owner.split(".", 1)[1], port.temperature, variant)
+            test = boundary_temperature_test(trial, item.owner.split(".", 1)[1], port.temperature)
         found.append(AutomaticAssumption(item.id, item.text, "not stated in the file", item.affects, test))
     return found
 

@@ -1,7 +1,7 @@
 """Assumptions, the author's and the program's, in one list; those that can be tested are tested.
 
-A test solves the plant again with the assumption replaced by something better or by a plausible other extreme, and
-compares the results. How much a difference weighs is said by ``decisions.MAGNITUDE_RULE``.
+A test (:mod:`reportgen.evaluation.trials`) solves the plant again with the assumption replaced by something better or
+by a plausible other extreme.
 """
 
 from __future__ import annotations
@@ -13,10 +13,9 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from reportgen.errors import ReportgenError
-from reportgen.evaluation.decisions import MAGNITUDE_RULE, NEGLIGIBLE_PART_OF_UNCERTAINTY, magnitude
+from reportgen.evaluation.decisions import NEGLIGIBLE_PART_OF_UNCERTAINTY
 from reportgen.evaluation.evaluated import EvaluatedPlant
-from reportgen.names import NAMES
+from reportgen.evaluation.trials import Trial, untested
 
 if TYPE_CHECKING:
     from reportgen.fluids.model import Fluid
@@ -24,16 +23,11 @@ if TYPE_CHECKING:
 
 __all__ = [
     "AutomaticAssumption",
-    "Variant",
     "assumption_list",
     "boundary_temperature_test",
-    "compare",
     "fluid_assumptions",
     "stream_assumption",
 ]
-
-#: Results that a test compares, the most telling first.
-COMPARED = ("entropy_generation", "lost_work", "power", "temperature")
 
 #: Given on a state, these tie a calculation to the zero of one property model.
 TIED_TO_A_ZERO = ("specific_enthalpy", "specific_entropy")
@@ -44,9 +38,6 @@ COMPRESSIBILITY_REMARK = 0.02
 OPEN = "to be verified"
 BY_DEFAULT = "by default"
 TESTED = "tested"
-
-#: Solves the base case again: (fluids to replace, givens to add or replace) to values by path.
-Variant = Callable[[Mapping[str, Any], Mapping[str, float]], Mapping[str, float]]
 
 
 @dataclass(frozen=True)
@@ -102,18 +93,16 @@ def assumption_list(
 
 
 def fluid_assumptions(
-    plant: EvaluatedPlant,
+    trial: Trial,
     specifications: Mapping[str, FluidSpec],
-    variant: Variant,
     real_counterpart: Callable[[Fluid], Fluid | None],
     with_variable_heat_capacity: Callable[[FluidSpec], Fluid],
 ) -> list[AutomaticAssumption]:
     """Ideal gas and constant heat capacity, for every fluid that is one or has one.
 
     Args:
-        plant: the solved plant.
+        trial: the solved plant, which can be solved otherwise.
         specifications: fluid id to what the file says.
-        variant: solves the base case again.
         real_counterpart: the real fluid of the same substance, None where none is carried.
         with_variable_heat_capacity: the same ideal gas with its variable heat capacity.
     """
@@ -121,17 +110,16 @@ def fluid_assumptions(
     for identifier, specification in specifications.items():
         if specification.model != "ideal-gas":
             continue
-        model = plant.fluids[identifier]
+        model = trial.plant.fluids[identifier]
         counterpart = real_counterpart(model)
         text = f"{model.title} ({identifier}) is an ideal gas."
         if counterpart is None:
             test = None
             basis = "property model chosen in the file; no real fluid of this composition is carried to test it"
         else:
-            remark = _compressibility_remark(plant, identifier, counterpart)
-            test = _model_test(
-                plant, identifier, counterpart, variant, f"With the equation of state of the real fluid {remark}"
-            )
+            remark = _compressibility_remark(trial.plant, identifier, counterpart)
+            condition = f"With the equation of state of the real fluid {remark}"
+            test = _model_test(trial, identifier, counterpart, condition)
             basis = "property model chosen in the file"
         found.append(
             AutomaticAssumption(f"fluids.{identifier}.ideal-gas", text, basis, (f"fluids.{identifier}",), test)
@@ -141,7 +129,7 @@ def fluid_assumptions(
                 f"{model.title} ({identifier}) has the constant heat capacity {specification.heat_capacity:g} J/(kg K)."
             )
             other = with_variable_heat_capacity(specification)
-            test = _model_test(plant, identifier, other, variant, "With the heat capacity as a function of temperature")
+            test = _model_test(trial, identifier, other, "With the heat capacity as a function of temperature")
             found.append(
                 AutomaticAssumption(
                     f"fluids.{identifier}.constant-heat-capacity",
@@ -183,83 +171,23 @@ def stream_assumption(plant: EvaluatedPlant) -> AutomaticAssumption | None:
     return AutomaticAssumption("streams.kinetic-energy", text, basis, ())
 
 
-def boundary_temperature_test(
-    plant: EvaluatedPlant, tag: str, temperature_path: str, variant: Variant
-) -> dict[str, Any] | None:
+def boundary_temperature_test(trial: Trial, tag: str, temperature_path: str) -> dict[str, Any] | None:
     """What changes when heat leaves at the mean temperature of the fluid instead of that of the surroundings.
 
     The two are the extremes: drawn close to the fluid, the boundary leaves the drop of temperature towards the
     surroundings outside; drawn in the surroundings, it takes it in. None when the temperatures are not known.
     """
+    plant = trial.plant
     temperatures = [plant.samples(f"states.{state}.temperature")[0] for state in plant.states_at(tag)]
     if not temperatures or not np.all(np.isfinite(temperatures)):
         return None
     mean = float(np.mean(temperatures))
-    return _test(
-        plant,
-        lambda: variant({}, {temperature_path: mean}),
-        f"With the boundary at the mean temperature of the fluid in {tag}, {mean:.4g} K,",
-    )
+    condition = f"With the boundary at the mean temperature of the fluid in {tag}, {mean:.4g} K,"
+    return trial.run(condition, givens={temperature_path: mean})
 
 
-def compare(plant: EvaluatedPlant, other: Mapping[str, float], condition: str) -> dict[str, Any] | None:
-    """The result that changes most, weighed against its uncertainty, as the ``test`` entry of a record.
-
-    Compared are entropy generation, lost work, power and temperature of every owner. The gravest verdict counts;
-    among equal ones the largest change in parts of U (or of the value). None when nothing can be compared.
-
-    Args:
-        plant: the solved plant, column 0.
-        other: values of the plant solved otherwise.
-        condition: opening of the finding, such as "With the equation of state of the real fluid".
-    """
-    rank = {"negligible": 0, "noticeable": 1, "decisive": 2}
-    best: tuple[tuple[float, ...], dict[str, Any]] | None = None
-    results: list[dict[str, Any]] = []
-    for path in plant.values:
-        name = path.rsplit(".", 1)[-1]
-        if name not in COMPARED or not plant.has(path) or not np.isfinite(other.get(path, np.nan)):
-            continue
-        estimate, changed = plant.estimate(path), float(other[path])
-        difference = changed - estimate.value
-        if abs(difference) <= 1e-9 * max(abs(changed), abs(estimate.value)):
-            difference = 0.0
-        verdict = magnitude(difference, estimate.expanded_uncertainty, estimate.value)
-        measure = estimate.expanded_uncertainty if estimate.expanded_uncertainty > 0.0 else abs(estimate.value)
-        entry: dict[str, Any] = {
-            "path": path,
-            "model_value": estimate.value,
-            "other_value": changed,
-            "difference": difference,
-            "unit": NAMES[name].unit,
-            "dimension": NAMES[name].dimension,
-            "verdict": verdict,
-        }
-        results.append({key: entry[key] for key in ("path", "model_value", "other_value", "difference", "verdict")})
-        weight = abs(difference) / measure if measure > 0.0 else 0.0
-        weighed = (rank[verdict], round(weight, 9), -COMPARED.index(name))
-        if best is None or weighed > best[0]:
-            best = (weighed, entry)
-    if best is None:
-        return None
-    heaviest = best[1]
-    words = {
-        "negligible": "no result changes noticeably",
-        "noticeable": "a result changes noticeably",
-        "decisive": "a result changes decisively",
-    }
-    finding = f"{condition} {words[heaviest['verdict']]}; shown is the one that changes most."
-    return {
-        **heaviest,
-        "finding": finding,
-        "text": f"Rule: {MAGNITUDE_RULE}.",
-        "results": sorted(results, key=lambda item: item["path"]),
-    }
-
-
-def _model_test(
-    plant: EvaluatedPlant, identifier: str, other: Any, variant: Variant, condition: str
-) -> dict[str, Any] | None:
+def _model_test(trial: Trial, identifier: str, other: Any, condition: str) -> dict[str, Any] | None:
+    plant = trial.plant
     tied = [
         path
         for path in plant.axis.givens
@@ -268,21 +196,8 @@ def _model_test(
         and plant.state_fluids.get(path.split(".")[1]) == identifier
     ]
     if tied:
-        return _untested(f"Not tested: {tied[0]} is given, and the other model has another zero.")
-    return _test(plant, lambda: variant({identifier: other}, {}), condition)
-
-
-def _test(plant: EvaluatedPlant, solve: Callable[[], Mapping[str, float]], condition: str) -> dict[str, Any] | None:
-    try:
-        values = solve()
-    except ReportgenError as error:
-        return _untested(f"Could not be tested. {condition} the plant has no solution: {error.faults[0].message}")
-    return compare(plant, values, condition)
-
-
-def _untested(finding: str) -> dict[str, Any]:
-    empty = dict.fromkeys(("model_value", "other_value", "difference", "unit", "dimension", "path", "verdict"))
-    return {**empty, "finding": finding, "text": "", "results": []}
+        return untested(f"Not tested: {tied[0]} is given, and the other model has another zero.")
+    return trial.run(condition, fluids={identifier: other})
 
 
 def _compressibility_remark(plant: EvaluatedPlant, identifier: str, counterpart: Any) -> str:

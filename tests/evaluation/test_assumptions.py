@@ -14,19 +14,23 @@ from reportgen.evaluation.assumptions import (
     AutomaticAssumption,
     assumption_list,
     boundary_temperature_test,
-    compare,
     fluid_assumptions,
     stream_assumption,
 )
+from reportgen.evaluation.trials import Trial
 
 
 def machine(**values: object) -> dict[str, object]:
     return {f"equipment.M.{name}": value for name, value in values.items()}
 
 
+def no_solution(fluids: object, givens: object) -> dict[str, float]:
+    raise SolutionError("No convergence.")
+
+
 def test_the_change_that_weighs_most_is_shown() -> None:
     case = plant(machine(entropy_generation=samples(10.0, 1.0), power=samples(500.0, 2.0)), inputs=1)
-    result = compare(case, machine(entropy_generation=10.5, power=506.0), "With something else")
+    result = Trial(case, no_solution).compare(machine(entropy_generation=10.5, power=506.0), "With something else")
     assert result is not None
     assert (result["path"], result["verdict"]) == ("equipment.M.power", "decisive")
     assert (result["model_value"], result["other_value"], result["difference"]) == (500.0, 506.0, 6.0)
@@ -38,21 +42,39 @@ def test_the_change_that_weighs_most_is_shown() -> None:
 @pytest.mark.parametrize(("changed", "verdict"), [(10.6, "negligible"), (11.0, "noticeable"), (12.1, "decisive")])
 def test_verdict_by_expanded_uncertainty(changed: float, verdict: str) -> None:
     case = plant(machine(entropy_generation=samples(10.0, 1.0)), inputs=1)
-    result = compare(case, machine(entropy_generation=changed), "x")
+    result = Trial(case, no_solution).compare(machine(entropy_generation=changed), "x")
     assert result is not None
     assert result["verdict"] == verdict
 
 
+@pytest.mark.parametrize(("limit", "verdict"), [(104.0, "negligible"), (102.1, "decisive")])
+def test_a_difference_that_turns_a_criterion_is_decisive(limit: float, verdict: str) -> None:
+    """100 ± 2 against at most 102.1 is met; 100.3 would not be decided. Against 104 both are met."""
+    case = plant(machine(power=samples(100.0, 1.0)), inputs=1)
+    criterion = {
+        "id": "C7",
+        "path": "equipment.M.power",
+        "comparison": "at_most",
+        "limit": limit,
+        "expanded_uncertainty": 2.0,
+        "decision": "met",
+    }
+    result = Trial(case, no_solution, [criterion]).compare(machine(power=100.3), "x")
+    assert result is not None
+    assert result["verdict"] == verdict
+    assert ("Criterion C7 would be not decided instead of met." in result["finding"]) == (verdict == "decisive")
+
+
 def test_what_a_solver_leaves_is_no_change() -> None:
     case = plant(machine(entropy_generation=10.0))
-    result = compare(case, machine(entropy_generation=10.0 * (1 + 1e-12)), "x")
+    result = Trial(case, no_solution).compare(machine(entropy_generation=10.0 * (1 + 1e-12)), "x")
     assert result is not None
     assert result["difference"] == 0.0
 
 
 def test_nothing_to_compare() -> None:
-    assert compare(plant(machine(heat=3.0)), machine(heat=4.0), "x") is None
-    assert compare(plant(machine(power=3.0)), machine(power=math.nan), "x") is None
+    assert Trial(plant(machine(heat=3.0)), no_solution).compare(machine(heat=4.0), "x") is None
+    assert Trial(plant(machine(power=3.0)), no_solution).compare(machine(power=math.nan), "x") is None
 
 
 def gas_case(values: dict, heat_capacity: float | None = None, solve: object = None) -> list[AutomaticAssumption]:
@@ -62,11 +84,10 @@ def gas_case(values: dict, heat_capacity: float | None = None, solve: object = N
     case = plant({"states.1.temperature": 300.0, "states.1.pressure": 5e5, **values}, fluids={"f": fluid("Air")})
     specification = SimpleNamespace(model="ideal-gas", heat_capacity=heat_capacity)
     return fluid_assumptions(
-        case,
-        {"f": specification},  # type: ignore[dict-item]
-        solve or (lambda fluids, givens: machine(power=103.0)),  # type: ignore[arg-type, return-value]
-        lambda model: counterpart,  # type: ignore[arg-type, return-value]
-        lambda specification: counterpart,  # type: ignore[arg-type, return-value]
+        Trial(case, solve or (lambda fluids, givens: machine(power=103.0))),
+        {"f": specification},
+        lambda model: counterpart,
+        lambda specification: counterpart,
     )
 
 
@@ -86,10 +107,7 @@ def test_constant_heat_capacity_is_an_assumption_of_its_own() -> None:
 
 
 def test_a_variant_without_solution_is_told_not_hidden() -> None:
-    def fail(fluids: object, givens: object) -> dict[str, float]:
-        raise SolutionError("No convergence.")
-
-    test = gas_case(machine(power=100.0), solve=fail)[0].test
+    test = gas_case(machine(power=100.0), solve=no_solution)[0].test
     assert test is not None
     assert test["verdict"] is None
     assert "Could not be tested" in test["finding"]
@@ -101,14 +119,14 @@ def test_boundary_temperature_is_tried_at_the_mean_of_the_fluid() -> None:
 
     def solve(fluids: object, givens: dict[str, float]) -> dict[str, float]:
         asked.append(givens)
-        return machine(entropy_generation=8.0)  # type: ignore[return-value]
+        return machine(entropy_generation=8.0)
 
     case = plant(
         {"states.1.temperature": 300.0, "states.2.temperature": 400.0, **machine(entropy_generation=10.0)},
         kinds={"M": "compressor"},
         connections={"M": [("inlet", "in", "1"), ("outlet", "out", "2")]},
     )
-    test = boundary_temperature_test(case, "M", "equipment.M.boundary_temperature", solve)  # type: ignore[arg-type]
+    test = boundary_temperature_test(Trial(case, solve), "M", "equipment.M.boundary_temperature")
     assert asked == [{"equipment.M.boundary_temperature": 350.0}]
     assert test is not None
     assert (test["difference"], test["verdict"]) == (-2.0, "decisive")
@@ -123,7 +141,7 @@ def test_open_assumptions_come_first() -> None:
         return AutomaticAssumption(identifier, "t", "b", (), None if verdict is None else {"verdict": verdict})
 
     entries = assumption_list(
-        {"A1": author("accepted"), "A2": author("to be verified")},  # type: ignore[dict-item]
+        {"A1": author("accepted"), "A2": author("to be verified")},
         [automatic("x", None), automatic("y", "decisive"), automatic("z", "negligible")],
     )
     assert [(entry["id"], entry["status"]) for entry in entries] == [
