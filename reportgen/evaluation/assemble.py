@@ -22,7 +22,7 @@ from reportgen.evaluation.assumptions import (
 )
 from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit, settle_zeros
 from reportgen.evaluation.budget import budgets
-from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, raised, unevaluated
+from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, lost_samples, raised, unevaluated
 from reportgen.evaluation.criteria import decided_criteria
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
@@ -92,7 +92,11 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             "solution_order": list(relations),
             "assumptions": assumption_list(calculation.assumptions, automatic),
             "cautions": in_order(
-                [*raised(catalogue(), plant, calculation.cautions), *map(unevaluated, solution.warnings)]
+                [
+                    *raised(catalogue(), plant, calculation.cautions),
+                    *unevaluated(plant, solution.warnings),
+                    *lost_samples(plant),
+                ]
             ),
             "audits": {
                 "second_law": second_law_audit(plant, totals),

@@ -240,6 +240,34 @@ def test_an_efficiency_at_one_is_propagated_from_one_side() -> None:
     assert record.values["equipment.C.power"]["standard_uncertainty"] > 0.0
 
 
+STEAM = (
+    VALVE.replace('model         = "ideal-gas"', 'model = "real-fluid"')
+    .replace('substance     = "air"', 'substance = "water"')
+    .replace('heat_capacity = "1.005 kJ/(kg*K)"', "")
+)
+
+
+def test_an_input_that_reaches_out_of_the_model_is_named() -> None:
+    """A quality of 0.995 ± 0.02 (k = 2) exists at 0.985 and not at 1.005."""
+    record = evaluated(STEAM.replace('temperature = "40 degC ± 1 K"', 'quality = "0.995 ± 0.02"'))
+    told = [entry for entry in record.data["cautions"] if entry["id"] == "N/E"]
+    assert [(entry["severity"], entry["path"]) for entry in told] == [("note", "states.1.quality")]
+    assert "raised by its standard uncertainty there is no value for states 1, 2" in told[0]["text"]
+    rows = record.data["uncertainty_budget"]["equipment.V.entropy_generation"]["contributions"]
+    assert "states.1.quality" in {row["input"] for row in rows}
+
+
+def test_an_uncertainty_that_leaves_the_model_on_both_sides_is_unknown_and_told() -> None:
+    """Steam at 700 degC ± 2600 K: no model reaches to either side, and no result may claim an uncertainty."""
+    record = evaluated(STEAM.replace("40 degC ± 1 K", "700 degC ± 2600 K"))
+    told = [entry for entry in record.data["cautions"] if entry["id"] == "N/E"]
+    assert [(entry["severity"], entry["path"]) for entry in told] == [("warning", "states.1.temperature")]
+    assert record.values["equipment.V.entropy_generation"]["standard_uncertainty"] is None
+    audit = {entry["owner"]: entry for entry in record.data["audits"]["second_law"]}
+    assert audit["equipment.V"]["verdict"] == "not resolved from reversible"
+    assert audit["equipment.V"]["expanded_uncertainty"] is None
+
+
 # Second law, defaults, what is not evaluated
 
 

@@ -18,10 +18,20 @@ from reportgen.evaluation.cautions.entry import (
     check_adjustments,
     in_order,
     raised,
-    unevaluated,
 )
+from reportgen.evaluation.cautions.left_out import lost_samples, unevaluated
 
-__all__ = ["Caution", "Finding", "catalogue", "caution", "check_adjustments", "in_order", "raised", "unevaluated"]
+__all__ = [
+    "Caution",
+    "Finding",
+    "catalogue",
+    "caution",
+    "check_adjustments",
+    "in_order",
+    "lost_samples",
+    "raised",
+    "unevaluated",
+]
 
 
 @cache

@@ -22,13 +22,10 @@ from reportgen.evaluation.evaluated import EvaluatedPlant
 if TYPE_CHECKING:
     from reportgen.spec.calculation import CautionAdjustment
 
-__all__ = ["Caution", "Finding", "Severity", "caution", "check_adjustments", "in_order", "raised", "unevaluated"]
+__all__ = ["Caution", "Finding", "Severity", "caution", "check_adjustments", "in_order", "raised"]
 
 Severity = Literal["stop", "warning", "note"]
 
-
-#: Id of entries that no caution of the catalogue raised.
-UNEVALUATED = "N/E"
 
 ORDER: dict[Severity, int] = {"stop": 0, "warning": 1, "note": 2}
 
@@ -161,23 +158,6 @@ def raised(
             if known is None or ORDER[entry["severity"]] < ORDER[known["severity"]]:
                 entries[key] = entry
     return in_order(entries.values())
-
-
-def unevaluated(fault: Fault) -> dict[str, Any]:
-    """A warning of the solution as an entry beside the cautions: what is left out, and what to state for it."""
-    path = fault.path or ""
-    empty = dict.fromkeys(("value", "limit", "margin", "expanded_uncertainty", "dimension", "adjusted"))
-    return {
-        **empty,
-        "id": UNEVALUATED,
-        "severity": "warning",
-        "gist": "Not evaluated",
-        "text": " ".join(part for part in (fault.message, fault.hint) if part),
-        "owner": ".".join(path.split(".")[:2]),
-        "path": path,
-        "decided": True,
-        "source": "solution of the balances",
-    }
 
 
 def in_order(entries: Iterable[dict[str, Any]]) -> list[dict[str, Any]]:
