@@ -56,7 +56,10 @@ class Name:
 
 
 _INTO = "positive into the fluid"
-_POWER = "positive in the natural direction of the kind: absorbed by compressors and pumps, delivered by turbines"
+_POWER = (
+    "positive in the natural direction of the kind: absorbed by compressors and pumps, delivered by turbines; "
+    "of several machines the net power delivered, or, where none delivers, the power absorbed"
+)
 
 _ENTRIES = (
     # states
@@ -87,7 +90,7 @@ _ENTRIES = (
     Name("power", r"\dot W", "power", "Power", _POWER),
     Name("heat", r"\dot Q", "heat_flow", "Heat flow rate", _INTO),
     Name("boundary_temperature", "T_b", "temperature", "Temperature of the boundary where heat crosses"),
-    Name("duty", r"\dot Q", "heat_flow", "Heat flow from the hot to the cold side", "positive from hot to cold"),
+    Name("duty", r"\dot Q_\mathrm{duty}", "heat_flow", "Heat flow from the hot to the cold side", "positive from hot to cold"),
     Name("isentropic_efficiency", r"\eta_s", "efficiency", "Isentropic efficiency"),
     Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
     Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Specific enthalpy at outlet pressure and inlet entropy"),

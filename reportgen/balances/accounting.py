@@ -306,9 +306,13 @@ class _Book:
             terms = [Term(1.0, (piece.path(name),)) for piece in pieces]
             words = f"{title}: sum over {', '.join(piece.tag for piece in pieces)}."
             self.balance(f"{owner}.{name}", owner, heading, words, basis, terms)
-        powers = [Term(-float(p.kind.power_sign), (p.path("power"),)) for p in pieces if p.kind.power_sign]
-        if powers:
-            words = f"{title}: net power delivered, what is absorbed counted negative."
+        machines = [piece for piece in pieces if piece.kind.power_sign]
+        if machines:
+            absorbs = all(piece.kind.power_sign > 0 for piece in machines)
+            sign = 1.0 if absorbs else -1.0
+            powers = [Term(sign * piece.kind.power_sign, (piece.path("power"),)) for piece in machines]
+            net = "power absorbed." if absorbs else "net power delivered, what is absorbed counted negative."
+            words = f"{title}: {net}"
             self.balance(f"{owner}.power", owner, "Net power", words, "sum of the parts", powers)
         self._lost_work(owner, title)
         self._imbalances(owner, title, pieces, inlets, outlets)

@@ -81,8 +81,8 @@ def isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
         piece.path("isentropic_outlet_enthalpy"),
         piece.owner,
         "Isentropic change",
-        f"{piece.title}: without entropy generation the stream would reach the pressure of {outlet} "
-        f"with the entropy of {inlet}.",
+        f"{piece.title}: without entropy generation the stream would reach the pressure of state {outlet} "
+        f"with the entropy of state {inlet}.",
         f"equation of state, {fluid.title}",
         ideal,
         (pressure, entropy),

@@ -190,11 +190,22 @@ class Balance:
             return self.forms[path]
         slope = [term.without(path) for term in self.terms if path in term.factors]
         rest = [term for term in self.terms if path not in term.factors]
-        sign = 1.0 if slope[0].coefficient > 0 else -1.0
+        sign = self._orientation(slope, rest)
         numerator = sum_latex(rest, -sign)
         if len(slope) == 1 and not slope[0].factors and not slope[0].label:
             return Equation(token(path), numerator)
         return Equation(token(path), rf"\frac{{{numerator}}}{{{sum_latex(slope, sign)}}}")
+
+    @staticmethod
+    def _orientation(slope: Sequence[Term], rest: Sequence[Term]) -> float:
+        """Sign that makes the divisor positive, or, where it is a difference, as many products above it as can be."""
+        signs = {term.coefficient > 0 for term in slope}
+        if len(signs) == 1:
+            return 1.0 if True in signs else -1.0
+        above = sum(-1 if term.coefficient > 0 else 1 for term in rest)
+        if above:
+            return 1.0 if above > 0 else -1.0
+        return 1.0 if slope[0].coefficient > 0 else -1.0
 
     def balanced(self) -> Equation:
         """The equation with positive products on the left and negative ones on the right."""
