@@ -5,12 +5,11 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
-from reportgen.report.figures.canvas import GENERATION, GREY, INK, SMALL, TINT, Drawing
+from reportgen.report.figures.canvas import GENERATION, GREY, INK, SMALL, TINT, WIDTH, Drawing
 from reportgen.report.presenter import Presenter, significant
 
 __all__ = ["draw_entropy_account", "draw_lost_work"]
 
-_WIDTH = 432.0
 _ROW, _BAR = 26.0, 13.0
 _FOOT, _HEAD = 34.0, 6.0
 _GAP = 6.0
@@ -20,7 +19,7 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
     """One bar a piece, longest first, its value with U at its end and a whisker of ± U."""
     bars = [bar for bar in figure["bars"] if bar["value"] is not None]
     bars = sorted(bars, key=lambda bar: -bar["value"])
-    drawing = Drawing(_WIDTH, _HEAD + _FOOT + _ROW * max(len(bars), 1), fonts)
+    drawing = Drawing(WIDTH, _HEAD + _FOOT + _ROW * max(len(bars), 1), fonts)
     texts = [presenter.show(bar["value"], "power", bar["expanded_uncertainty"]).text for bar in bars]
     values = [presenter.display.convert(bar["value"], "power") for bar in bars]
     spreads = [
@@ -32,7 +31,7 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
     axes = drawing.axes(left, _FOOT, 8.0, _HEAD)
     lowest = min([0.0, *(value - spread for value, spread in zip(values, spreads, strict=True))])
     highest = max([0.0, *(value + spread for value, spread in zip(values, spreads, strict=True))]) or 1.0
-    inner = _WIDTH - left - 8.0
+    inner = WIDTH - left - 8.0
     axes.set(xlim=(lowest, lowest + (highest - lowest) * inner / max(inner - room, 40.0)), ylim=(len(bars) - 0.5, -0.5))
     for row, (bar, value, spread, text) in enumerate(zip(bars, values, spreads, texts, strict=True)):
         axes.barh(row, value, height=_BAR / _ROW, left=0.0, color=TINT, edgecolor=INK, linewidth=0.7)
@@ -50,7 +49,7 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
 def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
     """One bar a train: entropy entering, then generated; the two end where what leaves ends."""
     bars = [bar for bar in figure["bars"] if bar["entering"] is not None and bar["generated"] is not None]
-    drawing = Drawing(_WIDTH, _HEAD + _FOOT + 2 * _ROW * max(len(bars), 1), fonts)
+    drawing = Drawing(WIDTH, _HEAD + _FOOT + 2 * _ROW * max(len(bars), 1), fonts)
     left = 12.0 + max((drawing.text_size(bar["label"])[0] for bar in bars), default=0.0)
     axes = drawing.axes(left, _FOOT, 8.0, _HEAD)
     sums = [presenter.display.convert(bar["entering"] + bar["generated"], "entropy_flow") for bar in bars]
@@ -72,7 +71,7 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         start, middle = (float(value) for value in axes.transData.transform((0.0, row)))
         end = float(axes.transData.transform((entering + generated, row))[0])
         drawing.write(left - _GAP, middle - 3.0, bar["label"], ha="right")
-        drawing.write(start, middle - _BAR / 2 - 11.0, texts[0], size=SMALL, color=GREY)
+        drawing.write(start + 3.0, middle - _BAR / 2 - 11.0, texts[0], size=SMALL, color=GREY)
         drawing.write(end, middle + _BAR / 2 + 4.0, texts[1], size=SMALL, color=GENERATION, ha="right")
         described.append(f"{bar['label']}: {texts[0]}, {texts[1]}")
     _finish(drawing, axes, f"entropy rate in {presenter.display.unit_text('entropy_flow')}")

@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.font_manager import FontProperties
 
-__all__ = ["GENERATION", "GREY", "INK", "PAPER", "TEAL", "TINT", "Drawing"]
+__all__ = ["GENERATION", "GREY", "INK", "PAPER", "TEAL", "TINT", "WIDTH", "Drawing"]
 
 #: Colours as drawn; each stands for a custom property of the style sheet, which the page's scheme sets.
 INK, GREY, TINT, PAPER, TEAL, GENERATION = "#1b2224", "#6b7577", "#dfe4e4", "#fdfdfc", "#0d5c66", "#b3341c"
@@ -28,6 +28,8 @@ _PROPERTIES = {
     GENERATION: "var(--generation)",
 }
 FAMILY = "Ledger Pagella"
+#: Points across: a phone shows the whole at a legible size, a sheet of paper at half as much again.
+WIDTH = 376.0
 SIZE = 9.5
 SMALL = 8.5
 _SETTINGS: Any = {

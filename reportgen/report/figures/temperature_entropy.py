@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from reportgen.report.figures.canvas import GREY, INK, PAPER, SMALL, TEAL, Drawing, finite
+from reportgen.report.figures.canvas import GREY, INK, PAPER, SMALL, TEAL, WIDTH, Drawing, finite
 from reportgen.report.figures.placement import Box, Label, Placed, Placement
 from reportgen.report.presenter import Presenter, significant
 
@@ -16,8 +16,8 @@ if TYPE_CHECKING:
 
 __all__ = ["draw"]
 
-_WIDTH, _HEIGHT = 432.0, 292.0
-_HEIGHT_ABOVE_DETAIL = 228.0
+_HEIGHT = 262.0
+_HEIGHT_ABOVE_DETAIL = 204.0
 _MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
@@ -35,11 +35,11 @@ def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
     detail = curves.detail()
     left, bottom, right, top = _MARGINS
     if detail:
-        drawing = Drawing(_WIDTH, _HEIGHT + _HEIGHT_ABOVE_DETAIL, fonts)
+        drawing = Drawing(WIDTH, _HEIGHT + _HEIGHT_ABOVE_DETAIL, fonts)
         _panel(drawing, curves, (left, bottom + _HEIGHT, right, top), curves.whole(), detail, presenter)
         _panel(drawing, curves, (left, bottom, right, top + _HEIGHT_ABOVE_DETAIL), detail, None, presenter)
     else:
-        drawing = Drawing(_WIDTH, _HEIGHT, fonts)
+        drawing = Drawing(WIDTH, _HEIGHT, fonts)
         _panel(drawing, curves, _MARGINS, curves.whole(), None, presenter)
     drawing.description = curves.description(presenter)
     return drawing
