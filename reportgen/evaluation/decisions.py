@@ -1,8 +1,9 @@
 """Decision rules: when a limit is kept, when it is broken, and when the uncertainty leaves it open.
 
 One rule serves criteria, cautions and the second-law audit: a statement is made only when the interval
-value ± expanded uncertainty lies wholly on one side of the limit (cf. JCGM 106:2012, 8.3, guarded acceptance with a
-guard band of U on both sides). https://doi.org/10.59161/JCGM106-2012
+value ± expanded uncertainty lies wholly on one side of the limit. That is guarded acceptance, and guarded rejection,
+with a guard band of U, in the words of JCGM 106:2012, The role of measurement uncertainty in conformity assessment.
+https://doi.org/10.59161/JCGM106-2012
 """
 
 from __future__ import annotations

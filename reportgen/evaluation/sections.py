@@ -180,7 +180,10 @@ def _fluid(model: Fluid, position: int) -> dict[str, Any]:
 
 
 def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, Any]:
-    """Entropy accounts of the trains, or of the whole plant where the file has no trains [W/K]."""
+    """Entropy accounts of the trains, or of the whole plant where the file has no trains [W/K].
+
+    Amounts are taken from the values, so that they agree with them; heat that came out as zero has no line.
+    """
     owners = {f"trains.{identifier}": identifier for identifier in calculation.trains} or {"total": "total"}
     section = {}
     for owner, identifier in owners.items():
@@ -189,8 +192,9 @@ def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, 
             continue
         sides: dict[str, list[dict[str, Any]]] = {
             name: [
-                {"label": entry.label, "path": entry.path, "value": float(entry.amount[0])}
+                {"label": entry.label, "path": entry.path, "value": entry.sign * float(solution.values[entry.path][0])}
                 for entry in account.side(side)
+                if solution.values[entry.path][0] != 0.0 or not entry.path.endswith(".entropy_with_heat")
             ]
             for name, side in (("entering", "in"), ("generated", "generated"), ("leaving", "out"))
         }

@@ -147,6 +147,8 @@ def test_a_loop_is_solved_together_and_every_number_of_it_is_shown() -> None:
     verdicts = {entry["owner"]: entry["verdict"] for entry in record.data["audits"]["second_law"]}
     assert verdicts["equipment.S-1"] == "not resolved from reversible"
     assert verdicts["equipment.M-1"] == "generates entropy"
+    labels = {line["path"] for side in ("entering", "leaving") for line in record.data["accounts"]["total"][side]}
+    assert labels == {"states.1.entropy_flow", "equipment.H-1.entropy_with_heat", "states.4.entropy_flow"}
 
 
 def test_other_units_for_the_same_inputs_give_the_same_values() -> None:
