@@ -17,7 +17,7 @@ import pytest
 
 from reportgen.errors import InputError, ReportgenError
 from reportgen.record import Record
-from reportgen.report import folders, page_path, register, render
+from reportgen.report import folders, page_path, register, render, terminal
 from reportgen.report.links import anchor
 from reportgen.report.page import page
 from reportgen.report.templates import css_string, lower_first, raised
@@ -203,6 +203,34 @@ def test_us_customary_units_are_shown_throughout() -> None:
     text = Outline(page(Record(data))).text
     for unit in ("psia", "°F", "Btu/lb", "Btu/(h·°R)", "hp"):
         assert unit in text
+
+
+def test_a_budget_shows_contributions_shares_and_what_first_order_leaves_out(outline: Outline) -> None:
+    text = outline.text[outline.text.index("Combined standard uncertainty") - 900 :].replace("\xa0", " ")
+    for part in (
+        "kW/K per kg/s",
+        "90.0",
+        "10.0",
+        "effective degrees of freedom infinite",
+        "coverage probability 95.5 %",
+    ):
+        assert part in text
+    assert "Largest term that first order leaves out" in text
+
+
+def test_the_terminal_shows_the_same_numbers(capsys: pytest.CaptureFixture[str]) -> None:
+    terminal.print_summary(invented_record())
+    printed = capsys.readouterr().out.replace("\xa0", " ")
+    for part in ("0.895 kW/K", "± 0.019", "STOP T32 states.2.temperature", "margin −26.5 ± 1.6 K", "not decided", "A1"):
+        assert part in printed
+
+
+def test_the_terminal_takes_no_markup_from_the_record(capsys: pytest.CaptureFixture[str]) -> None:
+    data = invented_data()
+    data["calculation"]["title"] = "[red]x[/red] [/]"
+    data["cautions"][0]["text"] = "[link=https://example.org]y[/link]"
+    terminal.print_summary(Record(data))
+    assert "[red]x[/red] [/]" in capsys.readouterr().out
 
 
 HOSTILE = """<b>"x'&amp;</style></title><script>alert(1)</script>{{ 7*7 }}"""

@@ -188,6 +188,23 @@ def test_bars_of_negative_values_keep_zero_in_sight() -> None:
     assert high >= 9.0
 
 
+@pytest.mark.parametrize(("entering", "generated"), [(9.8e3, 9e2), (-2e3, 5e2), (1.0, 9e2), (5e3, -3e2)])
+def test_account_bars_keep_zero_in_sight_and_their_labels_apart(entering: float, generated: float) -> None:
+    names = ("label", "entering", "generated", "leaving")
+    rows = [("A long title of an account", entering, generated, entering + generated), ("B", 1e4, 10.0, 10010.0)]
+    figure = {"id": "x", "bars": [dict(zip(names, row, strict=True)) for row in rows]}
+    drawing = bars.draw_entropy_account(figure, Presenter(invented_record()), fonts_folder())
+    low, high = drawing.figure.axes[0].get_xlim()
+    assert low <= min(0.0, entering / 1e3)
+    assert high >= 10.0
+    texts = {text.get_text(): text for text in drawing.figure.texts}
+    carried = next(text for name, text in texts.items() if name.startswith("in "))
+    made = next(text for name, text in texts.items() if name.startswith("generated "))
+    right = carried.get_position()[0] * drawing.width + drawing.text_size(carried.get_text(), 8.5)[0]
+    left = made.get_position()[0] * drawing.width - drawing.text_size(made.get_text(), 8.5)[0]
+    assert right < left
+
+
 def test_the_dome_is_drawn_as_one_closed_line() -> None:
     figure = FIGURES["temperature-entropy"]
     drawing = temperature_entropy.draw(figure, Presenter(invented_record()), fonts_folder())

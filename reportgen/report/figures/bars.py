@@ -10,7 +10,7 @@ from reportgen.report.presenter import Presenter, significant
 
 __all__ = ["draw_entropy_account", "draw_lost_work"]
 
-_ROW, _BAR = 26.0, 13.0
+_ROW, _ACCOUNT_ROW, _BAR = 26.0, 50.0, 13.0
 _FOOT, _HEAD = 34.0, 6.0
 _GAP = 6.0
 
@@ -47,33 +47,30 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
 
 
 def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
-    """One bar a train: entropy entering, then generated; the two end where what leaves ends."""
+    """One bar an account: entropy entering, then generated; the two end where what leaves ends."""
     bars = [bar for bar in figure["bars"] if bar["entering"] is not None and bar["generated"] is not None]
-    drawing = Drawing(WIDTH, _HEAD + _FOOT + 2 * _ROW * max(len(bars), 1), fonts)
-    left = 12.0 + max((drawing.text_size(bar["label"])[0] for bar in bars), default=0.0)
-    axes = drawing.axes(left, _FOOT, 8.0, _HEAD)
-    sums = [presenter.display.convert(bar["entering"] + bar["generated"], "entropy_flow") for bar in bars]
-    starts = [presenter.display.convert(bar["entering"], "entropy_flow") for bar in bars]
-    lowest, highest = min([0.0, *sums, *starts]), max([0.0, *sums, *starts])
+    drawing = Drawing(WIDTH, _HEAD + _FOOT + _ACCOUNT_ROW * max(len(bars), 1), fonts)
+    axes = drawing.axes(10.0, _FOOT, 8.0, _HEAD)
+    entering = [presenter.display.convert(bar["entering"], "entropy_flow") for bar in bars]
+    generated = [presenter.display.convert(bar["generated"], "entropy_flow") for bar in bars]
+    ends = [start + more for start, more in zip(entering, generated, strict=True)]
+    lowest, highest = min([0.0, *entering, *ends]), max([0.0, *entering, *ends])
     reach = (highest - lowest) or 1.0
     axes.set(xlim=(lowest, lowest + 1.02 * reach), ylim=(len(bars) - 0.5, -0.5))
     described = []
-    for row, bar in enumerate(bars):
-        entering = presenter.display.convert(bar["entering"], "entropy_flow")
-        generated = presenter.display.convert(bar["generated"], "entropy_flow")
-        height = _BAR / _ROW / 2
-        axes.barh(row, entering, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
-        axes.barh(row, generated, height=height, left=entering, color=GENERATION, edgecolor=INK, linewidth=0.7)
-        texts = (
-            f"in {presenter.with_unit(significant(bar['entering'], 4), 'entropy_flow')}",
-            f"generated {presenter.with_unit(significant(bar['generated'], 4), 'entropy_flow')}",
-        )
-        start, middle = (float(value) for value in axes.transData.transform((0.0, row)))
-        end = float(axes.transData.transform((entering + generated, row))[0])
-        drawing.write(left - _GAP, middle - 3.0, bar["label"], ha="right")
-        drawing.write(start + 3.0, middle - _BAR / 2 - 11.0, texts[0], size=SMALL, color=GREY)
-        drawing.write(end, middle + _BAR / 2 + 4.0, texts[1], size=SMALL, color=GENERATION, ha="right")
-        described.append(f"{bar['label']}: {texts[0]}, {texts[1]}")
+    for row, (bar, start, more) in enumerate(zip(bars, entering, generated, strict=True)):
+        height = _BAR / _ACCOUNT_ROW
+        axes.barh(row, start, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
+        axes.barh(row, more, height=height, left=start, color=GENERATION, edgecolor=INK, linewidth=0.7)
+        carried = f"in {presenter.with_unit(significant(bar['entering'], 4), 'entropy_flow')}"
+        made = f"generated {presenter.with_unit(significant(bar['generated'], 4), 'entropy_flow')}"
+        zero, middle = (float(value) for value in axes.transData.transform((lowest, row)))
+        end = float(axes.transData.transform((start + more, row))[0])
+        room = sum(drawing.text_size(text, SMALL)[0] for text in (carried, made)) + 4 * _GAP
+        drawing.write(zero + 3.0, middle + _BAR / 2 + 4.0, bar["label"])
+        drawing.write(zero + 3.0, middle - _BAR / 2 - 11.0, carried, size=SMALL, color=GREY)
+        drawing.write(max(end, zero + room), middle - _BAR / 2 - 11.0, made, size=SMALL, color=GENERATION, ha="right")
+        described.append(f"{bar['label']}: {carried}, {made}")
     _finish(drawing, axes, f"entropy rate in {presenter.display.unit_text('entropy_flow')}")
     drawing.description = f"Horizontal bars from zero. {'; '.join(described)}."
     return drawing
