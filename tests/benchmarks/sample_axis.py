@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import statistics
 import time
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from typing import Any
 
 import numpy as np
@@ -17,11 +17,15 @@ from reportgen import balances, fluids
 
 PAIRS = 7
 STAGES = 7
+LOOPS = 9
 UNCERTAIN = 30
+
+#: Fluid to plant and base values of its givens; the first UNCERTAIN givens are the uncertain ones.
+Network = Callable[[Any], tuple[balances.Plant, dict[str, float]]]
 
 
 def compressor_train(fluid: Any) -> tuple[balances.Plant, dict[str, float]]:
-    """Compressors with coolers between them: plant and base values of its givens; the first UNCERTAIN are uncertain."""
+    """Compressors with coolers between them: solved piece by piece."""
     states, equipment = {"0": "gas"}, {}
     givens = {"states.0.pressure": 1e5, "states.0.temperature": 300.0, "states.0.mass_flow": 2.0}
     pressure = 1e5
@@ -46,6 +50,30 @@ def compressor_train(fluid: Any) -> tuple[balances.Plant, dict[str, float]]:
     return balances.Plant(fluids={"gas": fluid}, states=states, equipment=equipment, trains={}), givens
 
 
+def recycle_loops(fluid: Any) -> tuple[balances.Plant, dict[str, float]]:
+    """Heaters with part of their outlet led back to their inlet: every loop is solved together by iteration."""
+    states, equipment = {"0": "gas"}, {}
+    givens = {"states.0.temperature": 300.0, "states.0.mass_flow": 1.0, "surroundings.temperature": 288.15}
+    before = "0"
+    for loop in range(1, LOOPS + 1):
+        mixed, hot, after, back = (f"{loop}{letter}" for letter in "abcd")
+        states |= dict.fromkeys((mixed, hot, after, back), "gas")
+        equipment[f"M-{loop}"] = balances.EquipmentDefinition("mixer", {"inlets": (before, back), "outlet": (mixed,)})
+        equipment[f"H-{loop}"] = balances.EquipmentDefinition("heater", {"inlet": (mixed,), "outlet": (hot,)})
+        equipment[f"S-{loop}"] = balances.EquipmentDefinition("splitter", {"inlet": (hot,), "outlets": (after, back)})
+        givens |= {
+            f"equipment.H-{loop}.heat": 2e4,
+            f"states.{back}.mass_flow": 0.4,
+            f"equipment.H-{loop}.boundary_temperature": 700.0,
+        }
+        before = after
+    givens |= {f"states.{state}.pressure": 3e5 for state in states} | {"surroundings.pressure": 101325.0}
+    return balances.Plant(fluids={"gas": fluid}, states=states, equipment=equipment, trains={}), givens
+
+
+NETWORKS: dict[str, Network] = {"compressor train": compressor_train, "recycle loops": recycle_loops}
+
+
 def columns(givens: Mapping[str, float], uncertain: int) -> dict[str, np.ndarray]:
     """Base column, then each uncertain input raised and lowered by 0.1 %."""
     samples = {path: np.full(2 * uncertain + 1, value) for path, value in givens.items()}
@@ -55,9 +83,9 @@ def columns(givens: Mapping[str, float], uncertain: int) -> dict[str, np.ndarray
     return samples
 
 
-def ratio(fluid: Any, pairs: int = PAIRS) -> tuple[float, float, float]:
+def ratio(network: Network, fluid: Any, pairs: int = PAIRS) -> tuple[float, float, float]:
     """Median seconds of the base case, of the whole sample axis, and median ratio of the pairs."""
-    plant, givens = compressor_train(fluid)
+    plant, givens = network(fluid)
     single, axis = columns(givens, 0), columns(givens, UNCERTAIN)
     assert next(iter(axis.values())).shape == (2 * UNCERTAIN + 1,)
     seconds = [(_seconds(plant, single), _seconds(plant, axis)) for _ in range(pairs + 1)][1:]
@@ -77,16 +105,16 @@ def _seconds(plant: balances.Plant, givens: Mapping[str, np.ndarray]) -> float:
 
 
 def main() -> None:
-    for name, fluid in (
-        ("air, ideal gas", fluids.ideal_gas("air")),
-        ("nitrogen, real fluid", fluids.real_fluid("nitrogen")),
-    ):
-        base, whole, times = ratio(fluid)
-        print(
-            f"{name}: {2 * STAGES} pieces, {UNCERTAIN} uncertain inputs, {2 * UNCERTAIN + 1} columns: "
-            f"base {base * 1e3:.1f} ms, sample axis {whole * 1e3:.1f} ms, "
-            f"ratio {times:.2f} (median of {PAIRS}); bar 3.0"
-        )
+    models = {"air, ideal gas": fluids.ideal_gas("air"), "nitrogen, real fluid": fluids.real_fluid("nitrogen")}
+    print(f"{UNCERTAIN} uncertain inputs, {2 * UNCERTAIN + 1} columns, median of {PAIRS} pairs; bar 3.0")
+    for title, network in NETWORKS.items():
+        for name, fluid in models.items():
+            base, whole, times = ratio(network, fluid)
+            pieces = len(network(fluid)[0].equipment)
+            print(
+                f"{title}, {pieces} pieces, {name}: "
+                f"base {base * 1e3:.1f} ms, sample axis {whole * 1e3:.1f} ms, ratio {times:.2f}"
+            )
 
 
 if __name__ == "__main__":

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import pytest
+
 from reportgen import fluids
-from tests.benchmarks.sample_axis import ratio
+from tests.benchmarks.sample_axis import NETWORKS, ratio
 
 
-def test_thirty_uncertain_inputs_cost_at_most_three_base_cases() -> None:
-    """Measured 1.0 for this ideal gas and 1.6 for a real fluid on two cores; the bar is 3."""
-    _, _, times = ratio(fluids.ideal_gas("air"), pairs=5)
+@pytest.mark.parametrize("network", NETWORKS)
+def test_thirty_uncertain_inputs_cost_at_most_three_base_cases(network: str) -> None:
+    """Measured on two cores: 1.0 to 1.1 for this ideal gas, 1.1 to 1.6 for a real fluid; the bar is 3."""
+    _, _, times = ratio(NETWORKS[network], fluids.ideal_gas("air"), pairs=3)
     assert times <= 3.0
