@@ -103,16 +103,20 @@ temperature = "20 degC ± 1 K"
 mass_flow   = "1.0 kg/s ± 1 %"
 
 [states.2]
-fluid = "air"
+fluid    = "air"
+pressure = "1.2 bar(a)"
 
 [states.3]
-fluid = "air"
+fluid    = "air"
+pressure = "1.2 bar(a)"
 
 [states.4]
 fluid     = "air"
+pressure  = "1.2 bar(a)"
 
 [states.5]
 fluid     = "air"
+pressure  = "1.2 bar(a)"
 mass_flow = "0.4 kg/s ± 2 %"
 
 [equipment.M-1]
