@@ -20,6 +20,7 @@ __all__ = ["estimated_total", "estimated_width", "mathml", "pieces", "split"]
 
 _LARGE_OPERATORS = {"∑", "∏"}
 _ACCENTS = {"˙", "¨", "¯", "―", "^", "ˆ", "~", "˜", "→"}
+_THIN = ".17em"
 _SIGNS = {"+", "−", "±"}
 _CLOSING = {")", "]", "}", "|", "!", "%"}
 _CHILDREN = {"mfrac": 2, "msub": 2, "msup": 2, "msubsup": 3, "mover": 2, "munder": 2, "munderover": 3}
@@ -68,7 +69,7 @@ def mathml(latex: str, infix_start: bool = False) -> str:
         first = next((element for element in root.iter() if element.tag not in ("math", "mrow")), None)
         if first is not None and first.tag == "mo":
             first.set("form", "infix")
-    return ElementTree.tostring(root, encoding="unicode")
+    return ElementTree.tostring(root, encoding="unicode").replace(" />", "/>")
 
 
 def _mend(element: ElementTree.Element) -> None:
@@ -96,7 +97,9 @@ def _mend(element: ElementTree.Element) -> None:
 def _strip_defaults(root: ElementTree.Element) -> None:
     """Drop attributes that only repeat what MathML takes anyway; capital Greek letters stand upright (ISO 80000-2)."""
     for element in root.iter():
-        if element.tag == "mo" and element.get("fence") == "true":
+        if element.get("width") == "0.167em":
+            element.set("width", _THIN)
+        elif element.tag == "mo" and element.get("fence") == "true":
             element.attrib.clear()
         elif element.tag == "mi" and len(element.text or "") > 1:
             element.attrib.pop("mathvariant", None)
@@ -175,9 +178,9 @@ def _space_functions(element: ElementTree.Element) -> None:
         if follower is not None:
             opening = follower[0] if follower.tag == "mrow" and len(follower) else follower
             if opening.tag not in ("mspace", "mo"):
-                element.insert(index + 1, ElementTree.Element("mspace", {"width": "0.167em"}))
+                element.insert(index + 1, ElementTree.Element("mspace", {"width": _THIN}))
         if index and element[index - 1].tag not in ("mspace", "mo"):
-            element.insert(index, ElementTree.Element("mspace", {"width": "0.167em"}))
+            element.insert(index, ElementTree.Element("mspace", {"width": _THIN}))
 
 
 def split(latex: str) -> list[str]:

@@ -84,7 +84,7 @@ def page(record: Record) -> str:
         .get_template("report.html.jinja")
         .render(
             calculation=calculation,
-            title_block=head.title_block(record),
+            title_block=head.title_block(record, presenter.content_hash),
             sections=sections,
             numbers={section["id"]: section["number"] for section in sections},
             steps=working.step_anchors(presenter),

@@ -5,9 +5,11 @@ Everything that a section shows goes through here, so that a number looks and li
 
 from __future__ import annotations
 
+import hashlib
 import re
 from collections.abc import Mapping
 from dataclasses import replace
+from functools import cached_property
 from typing import Any
 
 from markupsafe import Markup
@@ -53,6 +55,11 @@ class Presenter:
         self.links = Links(record)
         self.display = Display(calculation["units"])
         self.coverage_factor: float = calculation["coverage_factor"]
+
+    @cached_property
+    def content_hash(self) -> str:
+        """SHA-256 of the canonical record, in hexadecimal: of the bytes of the ``record.json`` beside the page."""
+        return hashlib.sha256(self.record.to_json()).hexdigest()
 
     @property
     def coverage(self) -> str:

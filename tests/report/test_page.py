@@ -197,6 +197,16 @@ def test_a_record_with_little_in_it_still_makes_a_page() -> None:
     assert outline.fragments - set(outline.ids) == set()
 
 
+def test_a_two_phase_state_shows_its_quality() -> None:
+    data = invented_data()
+    template = data["values"]["states.2.temperature"]
+    data["values"]["states.2.quality"] = {**template, "value": 0.91, "dimension": "ratio", "symbol": "x_2"}
+    data["values"]["states.2.phase"]["value"] = "two-phase"
+    html = page(Record(data))
+    assert "two-phase, " in html
+    assert 'href="#value-states.2.quality">0.9' in html
+
+
 def test_us_customary_units_are_shown_throughout() -> None:
     data = invented_data()
     data["calculation"]["units"] = "US"

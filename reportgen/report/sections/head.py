@@ -2,26 +2,22 @@
 
 from __future__ import annotations
 
-import hashlib
 from typing import Any
 
 from reportgen.record import Record
 from reportgen.report.presenter import NO_VALUE
 
-__all__ = ["content_hash", "missing_for_confirmed", "title_block"]
+__all__ = ["missing_for_confirmed", "title_block"]
 
 _ROLES = ("originator", "checker", "approver")
 
 
-def content_hash(record: Record) -> str:
-    """SHA-256 of the canonical record, in hexadecimal: the bytes of the ``record.json`` beside the page."""
-    return hashlib.sha256(record.to_json()).hexdigest()
+def title_block(record: Record, digest: str) -> dict[str, Any]:
+    """Fields of the title block in the words of ISO 7200, the sign-off rows and the line on what is missing.
 
-
-def title_block(record: Record) -> dict[str, Any]:
-    """Fields of the title block in the words of ISO 7200, the sign-off rows and the line on what is missing."""
+    ``digest`` is the content hash of the record.
+    """
     calculation = record.data["calculation"]
-    digest = content_hash(record)
 
     def field(key: str) -> str:
         return str(calculation.get(key) or NO_VALUE)

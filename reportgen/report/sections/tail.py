@@ -6,7 +6,6 @@ from typing import Any
 
 from reportgen.report.links import anchor
 from reportgen.report.presenter import Presenter
-from reportgen.report.sections.head import content_hash
 
 __all__ = ["provenance", "references", "revisions"]
 
@@ -32,7 +31,7 @@ def provenance(presenter: Presenter) -> dict[str, Any]:
     git = entry.get("git") or {}
     tree = {True: "clean", False: "with changes that were not committed", None: "state not known"}[git.get("clean")]
     return {
-        "hash": content_hash(presenter.record),
+        "hash": presenter.content_hash,
         "program": entry.get("program"),
         "python": entry.get("python"),
         "packages": entry.get("packages", {}),
