@@ -120,7 +120,9 @@ class DensitySolver:
     def _iterate(
         self, temperature: FloatArray, pressure: FloatArray, density: FloatArray, low: FloatArray, high: FloatArray
     ) -> tuple[FloatArray, NDArray[np.bool_]]:
-        """Newton's method in ρ with the bulk modulus taken to grow with density as in a liquid, bisecting if need be."""
+        """Newton's method in ρ with the bulk modulus taken to grow with density as in a liquid, bisecting if need
+        be.
+        """
         equation = self._equation
         result = density.copy()
         found = np.zeros(density.size, dtype=np.bool_)

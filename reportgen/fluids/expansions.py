@@ -19,7 +19,8 @@ class Expansions:
     Parameters
     ----------
     edges : ends of the intervals, ascending, shape (intervals + 1,).
-    coefficients : for each function, for each interval, c_0 ... c_n; nested lists or shape (functions, intervals, n + 1).
+    coefficients : for each function, for each interval, c_0 ... c_n; nested lists or shape (functions, intervals, n +
+    1).
     """
 
     def __init__(self, edges: Sequence[float], coefficients: Sequence[Any]) -> None:

@@ -26,8 +26,8 @@ class Caloric(NamedTuple):
     """Result of a flash, arrays of shape (N,): temperature [K], density [kg/m3], quality [1] (NaN in single phase),
     densities of the phases [kg/m3], and whether a state was found.
 
-    ``between`` marks elements between the bubble and the dew line of a pseudo-pure fluid, ``cold`` those that would lie below
-    the lowest temperature, ``hot`` those above the highest.
+    ``between`` marks elements between the bubble and the dew line of a pseudo-pure fluid, ``cold`` those that would
+    lie below the lowest temperature, ``hot`` those above the highest.
     """
 
     temperature: FloatArray

@@ -189,7 +189,9 @@ class Guard:
 
     @property
     def _floor(self) -> float:
-        """Pressure [Pa] below which nothing is under the melting line at allowed temperatures: that of the triple point."""
+        """Pressure [Pa] below which nothing is under the melting line at allowed temperatures: that of the triple
+        point.
+        """
         triple = self._limits.triple_point
         return 0.0 if triple is None else triple.pressure
 

@@ -19,8 +19,8 @@ __all__ = ["NonAnalytic"]
 
 FloatArray = NDArray[Any]
 
-#: Where nδψ is below e^(−33) = 5e-15 the terms are left out: next to 1, the compressibility factor of the ideal gas, they
-#: change a pressure by less than 1e-13 on the dilute side and by less than 1e-12 on the dense one.
+#: Where nδψ is below e^(−33) = 5e-15 the terms are left out: next to 1, the compressibility factor of the ideal gas,
+#: they change a pressure by less than 1e-13 on the dilute side and by less than 1e-12 on the dense one.
 _CUTOFF = 33.0
 
 #: Nearest approach to the critical isochore and to the critical point, where higher derivatives are singular.

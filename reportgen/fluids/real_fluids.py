@@ -32,13 +32,16 @@ _SATURATION_BAND = 1e-9
 class RealFluid:
     """One substance, by its published equation of state: SI units, mass basis, vectorised.
 
-    Equation: a(T, ρ) = RT [φ°(δ, τ) + φʳ(δ, τ)], see helmholtz.py; publication and DOI in ``sources``; range in ``limits``.
+    Equation: a(T, ρ) = RT [φ°(δ, τ) + φʳ(δ, τ)], see helmholtz.py; publication and DOI in ``sources``; range in
+    ``limits``.
 
     Parameters
     ----------
     name : canonical name, alias, formula or CAS number.
-    reference_state : "published" (zero of the publication), "IIR" (h = 200 kJ/kg, s = 1 kJ/(kg·K) for the saturated liquid at
-        0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C) or "NBP" (h = s = 0 for the saturated liquid at 101 325 Pa).
+    reference_state : "published" (zero of the publication), "IIR" (h = 200 kJ/kg, s = 1 kJ/(kg·K) for the saturated
+    liquid at
+        0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C) or "NBP" (h = s = 0 for the saturated liquid at
+        101 325 Pa).
 
     Raises
     ------
@@ -98,9 +101,9 @@ class RealFluid:
     def at(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
         """State fixed by two properties; see ``fluids.model.Fluid.at``.
 
-        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, quality, superheat or subcooling; temperature
-        with quality or density (or specific_volume). Pressure and temperature within 1e-9 of saturation are refused, since they do not tell
-        liquid from vapour: give the quality.
+        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, quality, superheat or subcooling;
+        temperature with quality or density (or specific_volume). Pressure and temperature within 1e-9 of saturation
+        are refused, since they do not tell liquid from vapour: give the quality.
         """
         given = read_pair(pair, self._pairs, self.title)
         if errors not in ("raise", "mask"):
@@ -153,7 +156,9 @@ class RealFluid:
     def _harmless(
         self, pressure: FloatArray, temperature: FloatArray, elements: Elements
     ) -> tuple[FloatArray, FloatArray]:
-        """Pressure and temperature with a dilute hot gas in place of rejected elements, so that nothing is searched there."""
+        """Pressure and temperature with a dilute hot gas in place of rejected elements, so that nothing is searched
+        there.
+        """
         rejected = elements.rejected
         return np.where(rejected, 1e4, pressure), np.where(rejected, self.limits.maximum_temperature, temperature)
 

@@ -13,7 +13,8 @@ from reportgen.fluids.saturation import SaturationCurves
 
 __all__ = ["REFERENCE_STATES", "zero_of"]
 
-#: Conventions by name: temperature [K] of the saturated liquid (None: at 101 325 Pa), its h [J/kg] and s [J/(kg*K)], in words.
+#: Conventions by name: temperature [K] of the saturated liquid (None: at 101 325 Pa), its h [J/kg] and s [J/(kg*K)],
+#: in words.
 REFERENCE_STATES: dict[str, tuple[float | None, float, float, str]] = {
     "IIR": (273.15, 2e5, 1e3, "s = 1 kJ/(kg K) and h = 200 kJ/kg for the saturated liquid at 0 degC (IIR)."),
     "ASHRAE": (233.15, 0.0, 0.0, "s = 0 and h = 0 for the saturated liquid at -40 degC (ASHRAE)."),

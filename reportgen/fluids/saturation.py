@@ -1,8 +1,10 @@
-"""Saturation curves of one fluid: what a vapour in equilibrium with its liquid looks like at a temperature or a pressure.
+"""Saturation curves of one fluid: what a vapour in equilibrium with its liquid looks like at a temperature or a
+pressure.
 
-Curves are Chebyshev expansions in x = (1 − T/T_top)^(1/2), fitted to the equation of state itself (data/collect_saturation.py).
-For a pure fluid T_top is the critical temperature and both phases have one pressure; for a pseudo-pure fluid (air) the bubble
-and the dew line have pressures of their own and meet at the highest temperature of the envelope.
+Curves are Chebyshev expansions in x = (1 − T/T_top)^(1/2), fitted to the equation of state itself
+(data/collect_saturation.py). For a pure fluid T_top is the critical temperature and both phases have one pressure;
+for a pseudo-pure fluid (air) the bubble and the dew line have pressures of their own and meet at the highest
+temperature of the envelope.
 """
 
 from __future__ import annotations

@@ -30,9 +30,9 @@ _CALORIC = (
 class Solution:
     """Flat arrays of equal length that fix the states of a batch; NaN in elements without a state.
 
-    ``density`` [kg/m3] is the overall one. ``quality`` is NaN in single-phase states off the saturation line; where it lies
-    strictly between 0 and 1, ``liquid_density`` and ``vapour_density`` hold those of the phases (else None or NaN).
-    ``known`` holds properties that were given, so that they are returned unchanged.
+    ``density`` [kg/m3] is the overall one. ``quality`` is NaN in single-phase states off the saturation line; where
+    it lies strictly between 0 and 1, ``liquid_density`` and ``vapour_density`` hold those of the phases (else None or
+    NaN). ``known`` holds properties that were given, so that they are returned unchanged.
     """
 
     equation: Helmholtz
@@ -96,7 +96,8 @@ class Solution:
     def _caloric(self) -> dict[str, FloatArray]:
         """Enthalpy, entropy, internal energy, heat capacities and speed of sound.
 
-        Single phase: ``c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ)``, ``w² = (c_p/c_v) ∂p/∂ρ``. Two phases: h and s by the lever rule.
+        Single phase: ``c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ)``, ``w² = (c_p/c_v) ∂p/∂ρ``. Two phases: h and s by the
+        lever rule.
         """
         t, p, rho = self.temperature, self.pressure, self.density
         mixed = None if self.quality is None else np.flatnonzero(self._two_phase())

@@ -1,6 +1,7 @@
 """Values of other fluids' reference equations.
 
-Sources beside each; where a value was not read in the publication it says so. Computed values round to the digits given.
+Sources beside each; where a value was not read in the publication it says so. Computed values round to the digits
+given.
 """
 
 from __future__ import annotations
@@ -14,8 +15,8 @@ from reportgen.fluids import real_fluid
 def test_propane_check_point_of_lemmon_mclinden_wagner_2009() -> None:
     """doi:10.1021/je900217v, from memory: 300 K, 12 mol/L.
 
-    The ideal part is carried with its temperatures divided by the critical one and rounded to seven digits, which leaves
-    heat capacities 6e-8 off the printed ones; the residual part, seen in the pressure, is exact.
+    The ideal part is carried with its temperatures divided by the critical one and rounded to seven digits, which
+    leaves heat capacities 6e-8 off the printed ones; the residual part, seen in the pressure, is exact.
     """
     fluid = real_fluid("propane")
     state = fluid.at(temperature=300.0, density=12e3 * fluid.molar_mass)
@@ -40,7 +41,9 @@ def test_nitrogen_of_span_et_al_2000() -> None:
 
 
 def test_carbon_dioxide_of_span_wagner_1996() -> None:
-    """doi:10.1063/1.555991; values of an independent library, not read in the paper. Zero: ideal gas, 298.15 K, 101 325 Pa."""
+    """doi:10.1063/1.555991; values of an independent library, not read in the paper. Zero: ideal gas, 298.15 K, 101
+    325 Pa.
+    """
     fluid = real_fluid("carbon dioxide")
     liquid, _ = fluid.saturation(temperature=300.0)
     assert liquid.pressure / 1e6 == pytest.approx(6.71308, abs=5e-6)

@@ -1,6 +1,7 @@
 """IAPWS R6-95(2018), "Revised Release on the IAPWS Formulation 1995", Tables 6, 7 and 8, to every printed digit.
 
-The printed values stand here from memory; each is also confirmed against two independent programs (`iapws`, `CoolProp`).
+The printed values stand here from memory; each is also confirmed against two independent programs (`iapws`,
+`CoolProp`).
 """
 
 from __future__ import annotations

@@ -198,7 +198,7 @@ def largest_density(equation: Helmholtz, data: dict[str, Any], liquid: float) ->
 
 def zero_in_words(equation: Helmholtz, data: dict[str, Any], saturated: Any) -> str:
     """Where the published equation has its zeros, found by evaluating it."""
-    title, constant = data["title"], equation.gas_constant
+    constant = equation.gas_constant
 
     def liquid(t: float) -> tuple[float, float] | None:
         if not data["triple_point"]["temperature"] <= t < data["critical_point"]["temperature"]:
@@ -228,8 +228,8 @@ def zero_in_words(equation: Helmholtz, data: dict[str, Any], saturated: Any) -> 
     if abs(h) < tolerance_h and abs(s) < tolerance_s:
         return "s = 0 and h = 0 for the ideal gas at 298.15 K and 101 325 Pa, as published."
     return (
-        f"as the constants of the equation put it: the ideal gas at 298.15 K and 101 325 Pa has "
-        f"s = {s * mass:.3f} J/(mol K) and h = {h * mass:.2f} J/mol ({title})."
+        f"fixed by the constants of the equation, as published: the ideal gas at 298.15 K and 101 325 Pa has "
+        f"s = {s * mass:.3f} J/(mol K) and h = {h * mass:.2f} J/mol."
     )
 
 
@@ -264,8 +264,7 @@ def collect(source_name: str, name: str, title: str, library: dict[str, dict[str
         highest = next(s for key, s in equation_data["STATES"].items() if key == "temperature_max_sat")
         apex = {"temperature": highest["T"], "pressure": highest["p"], "density": highest["rhomolar"] * mass}
     else:
-        singular = any(term["kind"] == "non-analytic" for term in residual)
-        pieces = saturation.pure_curves(extended, critical, triple, start_l, start_v, singular=singular)
+        pieces = saturation.pure_curves(extended, critical, triple, start_l, start_v)
         names = ("log_pressure", "liquid_density", "log_vapour_density")
         apex = {
             "temperature": float(critical.temperature),

@@ -5,9 +5,10 @@ and equal Gibbs energy (Newton's method: Akasaka, J. Therm. Sci. Technol. 3 (200
 extended precision. Curves are fitted by Chebyshev polynomials of x = (1 − T/T_c)^(1/2), halving intervals until the
 tail is small (idea: Bell and Alpert, Ind. Eng. Chem. Res. 60 (2021) 9983, doi:10.1021/acs.iecr.1c00847).
 
-Why the square root: densities of an equation analytic at its critical point are analytic in it, the vapour being the
-branch x < 0; so the innermost interval is fitted across x = 0 from both sides, where solving directly would
-lose all digits. With a cube root as many intervals are needed (measured: 11-13 either way).
+Why the square root: coexisting densities of an equation analytic at its critical point are analytic in it; a cube root
+needs as many intervals (measured: 11-13 either way) and costs more to take. Closer to the critical point than
+T_c - T = 1e-6 T_c, where even extended precision leaves densities uncertain by 1e-9, a fourth-degree polynomial joins
+the curves to the critical point.
 """
 
 from __future__ import annotations
@@ -27,9 +28,8 @@ Extended = np.longdouble
 DEGREE = 14
 TOLERANCE = 1e-13
 DEEPEST = 10
-#: x below which the innermost interval begins: analytic equations, and those with non-analytic terms.
-INNER_ANALYTIC, INNER_SINGULAR = 0.03, 0.001
-INNER_COUNT = 20
+#: x below which the innermost interval begins.
+INNER = 0.001
 #: Extended precision leaves coexisting densities uncertain by about this over θ^(3/2).
 NOISE = 1e-17
 
@@ -83,7 +83,7 @@ def coexistence(equation: Helmholtz, temperature: Array, liquid: Array, vapour: 
         liquid += damping * step_l
         vapour += damping * step_v
         largest = float(relative.max())
-        if largest < 1e-17 or (largest < 1e-9 and largest >= last):
+        if largest < 1e-17 or (largest < 1e-7 and largest >= last):
             return liquid, vapour, equation.properties(temperature, vapour).pressure
         last = largest
     raise ArithmeticError(f"no coexistence found near T = {temperature[0]} K (step {largest:.1e})")
@@ -116,7 +116,9 @@ class Piece:
     coefficients: Array
 
 
-def fit(function: Callable[[Array], Array], low: Any, high: Any, scale: Array, noise: float = 0.0, depth: int = 0) -> list[Piece]:
+def fit(
+    function: Callable[[Array], Array], low: Any, high: Any, scale: Array, noise: float = 0.0, depth: int = 0
+) -> list[Piece]:
     """Expansions of functions (x -> shape (functions, N)), intervals halved until the tail is below the tolerance."""
     c = chebyshev(function(nodes(low, high)))
     tail = float(np.max(np.abs(c[:, -2:]).max(axis=1) / scale))
@@ -151,9 +153,7 @@ def march(
     return x[::-1], logs[0, ::-1], logs[1, ::-1]
 
 
-def pure_curves(
-    equation: Helmholtz, critical: Critical, triple: float, liquid: float, vapour: float, *, singular: bool
-) -> list[Piece]:
+def pure_curves(equation: Helmholtz, critical: Critical, triple: float, liquid: float, vapour: float) -> list[Piece]:
     """ln p, ρ_L, ln ρ_V as functions of x from the critical to the triple point."""
     seed_x, seed_l, seed_v = march(equation, critical, triple, liquid, vapour)
     seeds = [np.asarray(a, dtype=float) for a in (seed_x, seed_l, seed_v)]
@@ -169,30 +169,17 @@ def pure_curves(
         return np.array([np.log(p), rho_l, np.log(rho_v)])
 
     outer = np.sqrt(1 - Extended(triple) / critical.temperature)
-    inner = Extended(INNER_SINGULAR if singular else INNER_ANALYTIC)
+    inner = Extended(INNER)
     scale = np.array([1.0, float(critical.density), 1.0])
     pieces = fit(solve, inner, outer, scale, NOISE)
     ends = np.array([np.log(critical.pressure), critical.density, np.log(critical.density)])
-    if singular:
-        # T within 1e-6 T_c of critical: fourth degree through the critical point, least squares beyond 1e-7 T_c
-        at = np.linspace(np.sqrt(1e-7), float(inner), 40).astype(Extended)
-        powers = np.array([(at / inner) ** k for k in range(1, 5)], dtype=float).T
-        found = np.linalg.lstsq(powers, np.asarray(solve(at) - ends[:, None], dtype=float).T, rcond=None)[0].astype(Extended)
-        span = nodes(Extended(0), inner)
-        values = ends[:, None] + sum(found[k - 1][:, None] * (span / inner) ** k for k in range(1, 5))
-        return [Piece(Extended(0), inner, chebyshev(values)), *pieces]
-    # Both branches are one function of x: liquid for x > 0, vapour for x < 0.
-    at = nodes(-inner, inner, INNER_COUNT)
-    solved = solve(abs(at))
-    both = chebyshev(np.array([solved[0], np.where(at > 0, solved[1], np.exp(solved[2]))]))
-    order = np.arange(INNER_COUNT)
+    # from 1e-7 to 1e-6 T_c below critical: least squares through the critical point
+    at = np.linspace(np.sqrt(1e-7), INNER, 40).astype(Extended)
+    powers = np.array([(at / inner) ** k for k in range(1, 5)], dtype=float).T
+    rises = np.asarray(solve(at) - ends[:, None], dtype=float).T
+    found = np.linalg.lstsq(powers, rises, rcond=None)[0].astype(Extended)
     span = nodes(Extended(0), inner)
-
-    def evaluate(c: Array, x: Array) -> Array:
-        value: Array = c @ np.cos(order[:, None] * np.arccos(np.asarray(x / inner, dtype=Extended))[None, :])
-        return value
-
-    values = np.array([evaluate(both[0], span), evaluate(both[1], span), np.log(evaluate(both[1], -span))])
+    values = ends[:, None] + sum(found[k - 1][:, None] * (span / inner) ** k for k in range(1, 5))
     return [Piece(Extended(0), inner, chebyshev(values)), *pieces]
 
 
@@ -209,15 +196,23 @@ def pseudo_pure_curves(
 ) -> list[Piece]:
     """ln p_bubble, ρ_L, ln ρ_V, ln p_dew as functions of x = (1 − T/T_top)^(1/2).
 
-    ``bubble`` and ``dew`` give the published pressures [Pa] of T [K]; ``liquid`` and ``vapour`` are densities near those at
-    the triple point; ``critical`` is the temperature above which the equation's isotherms rise throughout.
+    ``bubble`` and ``dew`` give the published pressures [Pa] of T [K]; ``liquid`` and ``vapour`` are densities near
+    those at the triple point; ``critical`` is the temperature above which the equation's isotherms rise throughout.
     """
 
     def solve(x: Array) -> Array:
         t = Extended(top) * (1 - x * x)
         p_l, p_v = bubble(t), dew(t)
-        rho_l = np.array([_branch_density(equation, a, b, 1.05 * liquid, 0.3 * liquid) for a, b in zip(t, p_l, strict=True)])
-        rho_v = np.array([_branch_density(equation, a, b, 0.1 * vapour, 0.4 * liquid) for a, b in zip(t, p_v, strict=True)])
+        lines = zip(t, p_l, p_v, strict=True)
+        rho_l, rho_v = np.array(
+            [
+                (
+                    _branch_density(equation, a, b, 1.05 * liquid, 0.3 * liquid),
+                    _branch_density(equation, a, c, 0.1 * vapour, 0.4 * liquid),
+                )
+                for a, b, c in lines
+            ]
+        ).T
         return np.array([np.log(p_l), rho_l, np.log(rho_v), np.log(p_v)])
 
     outer = np.sqrt(1 - Extended(triple) / top)
@@ -266,7 +261,7 @@ def outermost_crossing(pieces: list[Piece], function: int, log_top: Any) -> floa
 
 
 def inverse(pieces: list[Piece], function: int, log_top: Any, start: Any) -> list[Piece]:
-    """x as a function of y = (ln(p_top/p))^(1/2), by bisection in the fitted pressure; x runs from ``start`` outwards."""
+    """x as a function of y = (ln(p_top/p))^(1/2), by bisection in the fitted pressure, from ``start`` outwards."""
     outer = pieces[-1].high
     deepest = np.sqrt(log_top - evaluate_pieces(pieces, function, np.array([outer]))[0])
 
