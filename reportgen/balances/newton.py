@@ -25,8 +25,10 @@ __all__ = ["Coupled", "NoSolution"]
 Array = NDArray[np.float64]
 Derivatives = dict[str, Array]
 
-_MOST_ITERATIONS = 80
+_MOST_ITERATIONS = 40
 _MOST_HALVINGS = 14
+#: Starts that led somewhere but not to a solution, after which no more are tried.
+_MOST_TRAVELS = 4
 #: Relative size of a step below which a column has converged; the iteration after it is quadratic, hence at rounding.
 _TOLERANCE = 1e-10
 #: Relative displacement for differences: the square root of the rounding of property models (about 1e-13).
@@ -51,12 +53,13 @@ _TYPICAL = {
 
 
 class NoSolution(ArithmeticError):
-    """The base column has no solution: why, and the unknowns that stand in the way."""
+    """The base column has no solution: why, the unknowns that stand in the way, and whether a step was ever taken."""
 
-    def __init__(self, reason: str, paths: Sequence[str]) -> None:
+    def __init__(self, reason: str, paths: Sequence[str], travelled: bool = True) -> None:
         super().__init__(reason)
         self.reason = reason
         self.paths = tuple(paths)
+        self.travelled = travelled
 
 
 def _typical(path: str) -> float:
@@ -116,12 +119,16 @@ class Coupled:
     def solve(self, starts: Sequence[Mapping[str, float]], columns: int) -> dict[str, Array]:
         """Values of all unknowns, shape (N,), NaN in columns that do not converge; NoSolution for the base column."""
         failure: NoSolution | None = None
+        travelled = 0
         for start in starts:
             x = np.array([[start[path]] for path in self.tears], dtype=float)
             try:
                 base = self._iterate(x, np.array([0]), strict=True)
             except NoSolution as problem:
-                failure = failure or problem
+                failure = problem if failure is None or not failure.travelled else failure
+                travelled += problem.travelled
+                if travelled == _MOST_TRAVELS:
+                    break
                 continue
             x = np.repeat(base, columns, axis=1)
             if columns > 1:
@@ -228,7 +235,7 @@ class Coupled:
         failed = np.zeros(columns.size, dtype=bool)
         residual, values = self._residual(x, columns)
         if strict and not np.isfinite(residual).all():
-            raise NoSolution("the values to start from lie outside the range of the fluid", self.tears[:6])
+            raise NoSolution("the values to start from lie outside the range of the fluid", self.tears[:6], False)
         previous = np.full(columns.size, np.inf)
         for _ in range(_MOST_ITERATIONS):
             rows = self._jacobian(values)

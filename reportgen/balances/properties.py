@@ -9,15 +9,16 @@ from reportgen.errors import Fault, InputError
 
 __all__ = ["known_pair", "state_from", "why_missing"]
 
-#: Pairs in the order of preference; those a model does not carry are found out once and remembered.
+#: Pairs in the order of preference; those a model does not carry are found out once and remembered. What places a state
+#: on or off saturation comes first; pressure and temperature come after pairs that also tell two-phase states apart.
 PAIRS = (
     ("pressure", "quality"),
     ("temperature", "quality"),
-    ("pressure", "temperature"),
-    ("pressure", "specific_enthalpy"),
-    ("pressure", "specific_entropy"),
     ("pressure", "superheat"),
     ("pressure", "subcooling"),
+    ("pressure", "specific_enthalpy"),
+    ("pressure", "specific_entropy"),
+    ("pressure", "temperature"),
     ("pressure", "density"),
     ("pressure", "specific_volume"),
     ("temperature", "density"),

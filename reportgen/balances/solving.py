@@ -88,6 +88,8 @@ class _Run:
         self.starts = Starts(self.plant, solution.pieces, self.values)
         self.needed = _needed(network.blocks)
         self.simultaneous = 0
+        #: States whose pressure was found from temperature and enthalpy, which hardly depend on it in a single phase.
+        self.doubtful: set[str] = set()
 
     def blocks(self) -> None:
         """Solve all blocks in order and list the assumptions taken."""
@@ -140,6 +142,11 @@ class _Run:
             text = f"State {state} has no value in {int(missing.sum())} of {self.columns} columns: "
             text += why_missing(result, int(np.argmax(missing)))
             self.solution.warnings.append(Fault(text, f"states.{state}"))
+        if state in self.doubtful and str(np.asarray(result.phase).flat[0]) != "two-phase":
+            text = f"The pressure of state {state} is not given; it was found from temperature and enthalpy, "
+            text += "which hardly depend on it."
+            hint = "State the pressure or the pressure loss."
+            self.solution.warnings.append(Fault(text, f"{prefix}pressure", hint=hint))
         solved = []
         for name in REPORTED:
             path = prefix + name
@@ -288,18 +295,14 @@ class _Run:
         )
 
     def _doubt_pressures(self, block: Block) -> None:
-        """Warn where a pressure was found from temperature and enthalpy only, which hardly depend on it."""
+        """Note states whose pressure was found from temperature and enthalpy."""
         for relation, path in zip(block.relations, block.unknowns, strict=True):
             if (
                 isinstance(relation, PropertyRelation)
                 and relation.output == "temperature"
                 and path.endswith("pressure")
             ):
-                text = (
-                    f"The pressure of state {relation.state} is not given; it was found from temperature and enthalpy, "
-                    "which hardly depend on it."
-                )
-                self.solution.warnings.append(Fault(text, path, hint="State the pressure or the pressure loss."))
+                self.doubtful.add(relation.state)
 
     def _unsolved(self, block: Block, failure: NoSolution) -> Fault:
         relations = ", ".join(relation.key for relation in block.relations[:8])

@@ -34,6 +34,73 @@ def test_condensing_pressure_from_duty_and_power_stays_on_the_saturation_line() 
     assert back.values["states.1.mass_flow"][0] == pytest.approx(0.05, rel=1e-9)
 
 
+def _with_suction_line_exchanger() -> Plant:
+    return chain(
+        ("K", "compressor", {"inlet": ("1",), "outlet": ("2",)}),
+        ("C", "cooler", {"inlet": ("2",), "outlet": ("3",)}),
+        (
+            "X",
+            "heat-exchanger",
+            {"hot_inlet": ("3",), "hot_outlet": ("4",), "cold_inlet": ("6",), "cold_outlet": ("1",)},
+        ),
+        ("V", "throttling-valve", {"inlet": ("4",), "outlet": ("5",)}),
+        ("E", "heater", {"inlet": ("5",), "outlet": ("6",)}),
+        fluid=real_fluid("R134a"),
+    )
+
+
+SUCTION_LINE = {
+    **SURROUNDINGS,
+    "states.3.temperature": 313.15,
+    "states.3.quality": 0.0,
+    "states.6.temperature": 263.15,
+    "states.6.quality": 1.0,
+    "equipment.K.isentropic_efficiency": 0.75,
+    "equipment.E.heat": 1e4,
+    "equipment.E.boundary_temperature": 268.0,
+}
+
+
+@pytest.mark.parametrize(
+    "path",
+    ["states.1.temperature", "states.1.superheat", "states.2.temperature", "states.4.temperature", "equipment.X.duty"],
+)
+def test_a_cycle_with_a_suction_line_exchanger_from_any_one_measurement(path: str) -> None:
+    plant = _with_suction_line_exchanger()
+    base = solve(plant, {**SUCTION_LINE, "states.1.temperature": 283.15})
+    h3, h6 = CP.PropsSI("H", "T", 313.15, "Q", 0, "R134a"), CP.PropsSI("H", "T", 263.15, "Q", 1, "R134a")
+    h1 = CP.PropsSI("H", "T", 283.15, "P", CP.PropsSI("P", "T", 263.15, "Q", 1, "R134a"), "R134a")
+    # Evaporator and exchanger together: ṁ (h1 − h3) = Q̇.
+    flow = 1e4 / (h1 - h3)
+    assert base.values["states.1.mass_flow"][0] == pytest.approx(flow, rel=1e-7)
+    assert base.values["equipment.X.duty"][0] == pytest.approx(flow * (h1 - h6), rel=1e-6)
+    other = solve(plant, {**SUCTION_LINE, path: float(base.values[path][0])})
+    assert other.values["equipment.K.power"][0] == pytest.approx(base.values["equipment.K.power"][0], rel=1e-9)
+
+
+def test_a_valve_outlet_in_the_dome_is_found_from_its_temperature() -> None:
+    case = one_piece(
+        "throttling-valve",
+        {"inlet": ("1",), "outlet": ("2",)},
+        {"1.pressure": 1e6, "1.subcooling": 5.0, "1.mass_flow": 1.0, "2.temperature": 260.0},
+        {"f": real_fluid("R134a")},
+    )
+    solution = case.solve()
+    saturation = CP.PropsSI("P", "T", 260.0, "Q", 0, "R134a")
+    assert solution.values["states.2.pressure"][0] == pytest.approx(saturation, rel=1e-7)
+    assert 0.0 < solution.values["states.2.quality"][0] < 1.0
+    assert not solution.warnings
+
+
+def test_a_pressure_found_from_temperature_and_enthalpy_of_one_phase_raises_a_warning() -> None:
+    givens = {"1.pressure": 5e5, "1.temperature": 600.0, "1.mass_flow": 1.0, "2.pressure": 1e5}
+    case = one_piece("throttling-valve", {"inlet": ("1",), "outlet": ("2",)}, givens, {"f": real_fluid("water")})
+    measured = float(case.solve().values["states.2.temperature"][0])
+    back = case.solve(("states.2.pressure",), {"states.2.temperature": measured})
+    assert back.values["states.2.pressure"][0] == pytest.approx(1e5, rel=1e-6)
+    assert [warning.path for warning in back.warnings] == ["states.2.pressure"]
+
+
 def _recuperated(fluid: Any) -> Plant:
     return chain(
         ("C", "compressor", {"inlet": ("1",), "outlet": ("2",)}),
