@@ -72,6 +72,7 @@ class Kind:
     results : formulae for values that are only reported (efficiencies, numbers of merit).
     heats : heat ports with the paths of their heat and their boundary temperature.
     stretches : how each stream changes between two states, for process curves.
+    doubts : (path, text) for base-case values that cannot be meant although all balances hold; ``base`` gives a value.
     power_sign : +1 when positive power is absorbed, -1 when it is delivered, 0 when there is no power.
     exergetic_efficiency, entropy_generation_number : their definitions in words.
     """
@@ -87,6 +88,7 @@ class Kind:
     heats: Callable[[Piece], Sequence[HeatPort]]
     stretches: Callable[[Piece], Sequence[Stretch]]
     groups: tuple[Group, ...] = ()
+    doubts: Callable[[Piece, Callable[[str], float]], Sequence[tuple[str, str]]] = lambda piece, base: ()
     power_sign: int = 0
     exergetic_efficiency: str = ""
     entropy_generation_number: str = ""

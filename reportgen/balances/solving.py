@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.balances.accounting import add_results
+from reportgen.balances.doubts import doubts
 from reportgen.balances.newton import Coupled, NoSolution
 from reportgen.balances.plant import Plant, pieces_of
 from reportgen.balances.properties import known_pair, state_from, why_missing
@@ -72,6 +73,7 @@ def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
     solution = Solution(plant, pieces, values)
     _Run(solution, network, columns).blocks()
     add_results(solution, network)
+    solution.warnings.extend(doubts(solution))
     return solution
 
 

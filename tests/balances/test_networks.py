@@ -417,3 +417,55 @@ def test_curves_begin_and_end_in_the_states_they_join() -> None:
         for index, state in ((0, curve.start), (-1, curve.end)):
             entropy = solution.values[f"states.{state}.specific_entropy"][0]
             assert curve.entropy[index] == pytest.approx(entropy, rel=1e-9)
+
+
+DOUBTFUL = [
+    ("mixer", ("states.2.mass_flow",), {"states.3.temperature": 550.0}, "states.2.mass_flow", "negative"),
+    (
+        "compressor",
+        ("states.2.pressure",),
+        {"states.2.pressure": 0.5e5},
+        "equipment.X.pressure_ratio",
+        "natural direction",
+    ),
+    ("throttling-valve", ("states.2.pressure",), {"states.2.pressure": 2e5}, "equipment.X.pressure_drop", "rises"),
+    ("heat-exchanger", ("states.2.temperature",), {"states.2.temperature": 620.0}, "equipment.X.duty", "exchanged"),
+    (
+        "heat-exchanger",
+        ("states.2.temperature",),
+        {"states.2.temperature": 280.0},
+        "equipment.X.duty",
+        "At the cold end",
+    ),
+    ("heat-exchanger", ("states.3.mass_flow",), {"states.3.mass_flow": 0.8}, "equipment.X.duty", "At the hot end"),
+]
+
+
+@pytest.mark.parametrize(("kind", "drop", "give", "path", "text"), DOUBTFUL)
+def test_solutions_that_cannot_be_meant_raise_a_warning(
+    kind: str, drop: tuple[str, ...], give: dict[str, float], path: str, text: str
+) -> None:
+    assert not CASES[kind].solve().warnings
+    warnings = CASES[kind].solve(drop, give).warnings
+    assert any(warning.path == path and text in warning.message for warning in warnings), warnings
+
+
+def test_temperatures_that_cross_inside_an_evaporator_are_found() -> None:
+    """Gas cooled from 600 to 380 K raises steam at 10 bar (453 K) from 300 K: both ends are right, the pinch is not."""
+    case = one_piece(
+        "heat-exchanger",
+        {"hot_inlet": ("1",), "hot_outlet": ("2",), "cold_inlet": ("3",), "cold_outlet": ("4",)},
+        {
+            "1.pressure": 1e5,
+            "1.temperature": 600.0,
+            "1.mass_flow": 10.0,
+            "2.temperature": 380.0,
+            "3.pressure": 10e5,
+            "3.temperature": 300.0,
+            "4.superheat": 20.0,
+        },
+        {"gas": SimpleGas(), "water": real_fluid("water")},
+        {"1": "gas", "2": "gas", "3": "water", "4": "water"},
+    )
+    (warning,) = case.solve().warnings
+    assert "Inside, in counterflow," in warning.message

@@ -13,6 +13,7 @@ Entropy generation number: lost work over duty.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import Any
 
 from reportgen.balances.equations import (
@@ -31,6 +32,8 @@ from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Balance, Default, Formula, Relation, Stretch, Term, token
 
 SIDES = ("hot", "cold")
+_PROFILE_POINTS = 33
+_ROUNDING_OF_TEMPERATURE = 1e-6  # K
 
 
 def relations(piece: Piece) -> list[Relation]:
@@ -114,6 +117,36 @@ def stretches(piece: Piece) -> list[Stretch]:
     ]
 
 
+def doubts(piece: Piece, base: Callable[[str], float]) -> list[tuple[str, str]]:
+    """Temperatures that cross: at an end in any arrangement, or inside one in counterflow.
+
+    The streams are compared at equal shares of the duty, pressures changing evenly with it.
+    """
+    import numpy as np
+
+    share = np.linspace(0.0, 1.0, _PROFILE_POINTS)
+    profiles = []
+    for side, first, last in (("hot", "outlet", "inlet"), ("cold", "inlet", "outlet")):
+        states = [piece.one(f"{side}_{end}") for end in (first, last)]
+        ends = {name: [base(f"states.{s}.{name}") for s in states] for name in ("pressure", "specific_enthalpy")}
+        if not np.isfinite([*ends["pressure"], *ends["specific_enthalpy"]]).all():
+            return []
+        along = {name: pair[0] + (pair[1] - pair[0]) * share for name, pair in ends.items()}
+        profiles.append(np.asarray(piece.fluid(states[0]).at(errors="mask", **along).temperature, dtype=float))
+    difference = profiles[0] - profiles[1]
+    if not np.nanmin(difference) < -_ROUNDING_OF_TEMPERATURE:
+        return []
+    place = int(np.nanargmin(difference))
+    where = (
+        "at the cold end" if place == 0 else "at the hot end" if place == share.size - 1 else "inside, in counterflow,"
+    )
+    text = (
+        f"{piece.title}: the temperatures cross. {where[0].upper()}{where[1:]} the hot stream would be "
+        f"{-difference[place]:.3g} K colder than the cold one; heat cannot flow there as stated."
+    )
+    return [(piece.path("duty"), text)]
+
+
 KIND = Kind(
     name="heat-exchanger",
     title="Heat exchanger",
@@ -145,6 +178,7 @@ KIND = Kind(
     results=results,
     heats=heat_ports,
     stretches=stretches,
+    doubts=doubts,
     exergetic_efficiency="Exergy gained by one stream over exergy given up by the other.",
     entropy_generation_number="Lost work over duty.",
 )
