@@ -36,7 +36,7 @@ def register(site: Path, records: Iterable[Record] = ()) -> Path:
 
     ``records`` that have no page in the site yet are rendered first.
     """
-    from reportgen.report.register import register_page
+    from reportgen.report.listing import register_page
 
     for record in records:
         path = page_path(record, site)

@@ -15,6 +15,7 @@ from typing import Any
 
 import pytest
 
+from reportgen import report
 from reportgen.errors import InputError, ReportgenError
 from reportgen.record import Record
 from reportgen.report import folders, page_path, register, render, terminal
@@ -207,6 +208,19 @@ def test_a_two_phase_state_shows_its_quality() -> None:
     assert 'href="#value-states.2.quality">0.9' in html
 
 
+def test_columns_that_would_be_empty_are_left_out() -> None:
+    data = invented_data()
+    assert Outline(page(Record(data))).text.count("U (k\xa0=\xa02)") == 2
+    data["criteria"] = []
+    for entry in (*data["values"].values(), *data["inputs"].values()):
+        entry["standard_uncertainty"] = None
+    for entry in data["inputs"].values():
+        entry["expanded_uncertainty"] = None
+    text = Outline(page(Record(data))).text
+    assert "U (k\xa0=\xa02)" not in text
+    assert "Criterion" not in text
+
+
 def test_us_customary_units_are_shown_throughout() -> None:
     data = invented_data()
     data["calculation"]["units"] = "US"
@@ -356,6 +370,11 @@ def test_render_writes_page_and_record_and_the_register_lists_them(tmp_path: Pat
 def test_the_register_renders_records_that_have_no_page_yet(tmp_path: Path) -> None:
     register(tmp_path, [invented_record()])
     assert page_path(invented_record(), tmp_path).is_file()
+
+
+def test_the_register_can_be_written_again_in_the_same_process(tmp_path: Path) -> None:
+    assert report.register(tmp_path) == report.register(tmp_path)
+    assert "0 documents" in Outline((tmp_path / "index.html").read_text("utf-8")).text
 
 
 def test_the_register_passes_over_what_is_no_record(tmp_path: Path) -> None:

@@ -63,8 +63,7 @@ class _Curves:
 
         self.dome = line(figure.get("dome"))
         self.isobars = [
-            (presenter.with_unit(significant(entry["pressure"], 3), "pressure"), line(entry))
-            for entry in _apart(figure.get("isobars", []))
+            (_pressure_text(entry["pressure"], presenter), line(entry)) for entry in _apart(figure.get("isobars", []))
         ]
         self.paths = [(entry["equipment"], line(entry)) for entry in figure.get("paths", [])]
         self.points = [
@@ -117,6 +116,13 @@ class _Curves:
         if self.paths:
             parts.append("Paths: " + ", ".join(dict.fromkeys(name for name, _ in self.paths)) + ".")
         return " ".join(parts)
+
+
+def _pressure_text(pressure: float, presenter: Presenter) -> str:
+    """A pressure to three digits of the unit shown."""
+    return (
+        f"{significant(presenter.display.convert(pressure, 'pressure'), 3):g} {presenter.display.unit_text('pressure')}"
+    )
 
 
 def _apart(isobars: list[dict[str, Any]]) -> list[dict[str, Any]]:

@@ -110,7 +110,7 @@ def inputs(presenter: Presenter) -> dict[str, Any] | None:
                 "more_steps": len(steps[_STEPS_SHOWN:]),
             }
         )
-    return {"rows": rows} if rows else None
+    return {"rows": rows, "uncertain": any(row["uncertainty"] for row in rows)} if rows else None
 
 
 def _place_in_file(item: tuple[str, dict[str, Any]]) -> tuple[str, int, list[tuple[int, int, str]]]:

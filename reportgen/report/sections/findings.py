@@ -33,7 +33,12 @@ def found(presenter: Presenter) -> dict[str, Any]:
             }
         )
     groups = [(owner, list(group)) for owner, group in groupby(rows, key=lambda row: str(row["owner"]))]
-    return {"groups": groups, "conclusion": render_narrative("conclusion", presenter)}
+    return {
+        "groups": groups,
+        "uncertain": any(row["uncertainty"] != NO_VALUE for row in rows),
+        "judged": bool(data["criteria"]),
+        "conclusion": render_narrative("conclusion", presenter),
+    }
 
 
 def _criterion(entry: dict[str, Any]) -> dict[str, Any]:

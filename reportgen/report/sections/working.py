@@ -63,7 +63,12 @@ def states(presenter: Presenter) -> dict[str, Any] | None:
     for name in columns:
         dimension = NAMES[name].dimension
         heads.append((presenter.math(NAMES[name].symbol), NAMES[name].text, presenter.display.unit_text(dimension)))
-    return {"heads": heads, "rows": rows, "several_fluids": len(plant["fluids"]) > 1}
+    return {
+        "heads": heads,
+        "rows": rows,
+        "several_fluids": len(plant["fluids"]) > 1,
+        "uncertain": any(spread for row in rows for _, spread in row["cells"]),
+    }
 
 
 def _order(presenter: Presenter) -> list[str]:
