@@ -1,0 +1,143 @@
+"""What follows from a solved plant: energies that are stated, entropy with heat, exergy, curves, doubts."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+
+from reportgen.fluids import real_fluid
+from tests.balances.cases import CASES, VALVE, one_piece
+from tests.balances.models import SimpleGas
+
+
+def test_velocity_and_elevation_enter_the_energy_balance() -> None:
+    case = one_piece(
+        "throttling-valve",
+        {"inlet": ("1",), "outlet": ("2",)},
+        {
+            "1.pressure": 2e5,
+            "1.temperature": 300.0,
+            "1.mass_flow": 1.0,
+            "2.pressure": 1e5,
+            "1.velocity": 20.0,
+            "2.velocity": 120.0,
+            "2.elevation": 30.0,
+        },
+    )
+    solution = case.solve()
+    drop = solution.values["states.1.specific_enthalpy"][0] - solution.values["states.2.specific_enthalpy"][0]
+    assert drop == pytest.approx(0.5 * (120.0**2 - 20.0**2) + 9.80665 * 30.0, rel=1e-9)
+    assert abs(solution.values["equipment.X.energy_imbalance"][0]) < 1e-8
+    assert "states.1.no_elevation" in {assumption.id for assumption in solution.assumptions}
+    assert "states.1.no_velocity" not in {assumption.id for assumption in solution.assumptions}
+
+
+def test_volume_and_molar_flow_give_the_mass_flow() -> None:
+    gas = SimpleGas()
+    density = 1e5 / (gas.gas_constant * 300.0)
+    by_volume = VALVE.solve(("states.1.mass_flow",), {"states.1.volume_flow": 2.0})
+    assert by_volume.values["states.2.mass_flow"][0] == pytest.approx(2.0 * density, rel=1e-12)
+    by_amount = VALVE.solve(("states.1.mass_flow",), {"states.2.molar_flow": 50.0})
+    assert by_amount.values["states.1.mass_flow"][0] == pytest.approx(50.0 * gas.molar_mass, rel=1e-12)
+
+
+def test_heat_that_enters_needs_the_temperature_of_its_boundary() -> None:
+    solution = CASES["heater"].solve(("equipment.X.boundary_temperature",))
+    for path in ("equipment.X.entropy_generation", "total.entropy_generation", "total.lost_work", "total.closure"):
+        assert np.isnan(solution.values[path][0])
+        assert "boundary_temperature is not stated" in solution.reasons[path]
+    assert solution.warnings[0].path == "equipment.X.boundary_temperature"
+    assert not solution.accounts["total"].complete
+
+
+def test_heat_that_leaves_without_a_boundary_temperature_leaves_at_the_surroundings() -> None:
+    solution = CASES["cooler"].solve()
+    values = solution.values
+    assert values["equipment.X.entropy_with_heat"][0] == pytest.approx(-5e4 / 288.15, rel=1e-12)
+    assert "equipment.X.heat.leaves_at_surroundings" in {assumption.id for assumption in solution.assumptions}
+
+
+def test_exergy_is_left_out_where_the_dead_state_is_outside_the_range_of_the_fluid() -> None:
+    cold = {"surroundings.temperature": 40.0}
+    solution = VALVE.solve((), cold)
+    assert np.isnan(solution.values["states.1.specific_exergy"][0])
+    assert "outside 50 to 3000 K" in solution.reasons["states.1.specific_exergy"]
+    assert any("no state at the surroundings" in warning.message for warning in solution.warnings)
+    assert np.isfinite(solution.values["equipment.X.entropy_generation"][0])
+
+
+def test_exergy_destroyed_is_the_lost_work() -> None:
+    """Gouy–Stodola: exergy in with streams and power less exergy out equals T0 Ṡgen, for every kind."""
+    for kind, case in CASES.items():
+        solution = case.solve()
+        values = {path: array[0] for path, array in solution.values.items()}
+        piece = solution.pieces["X"]
+        balance = 0.0
+        for _, direction, state in piece.connections():
+            exergy = values[f"states.{state}.mass_flow"] * values[f"states.{state}.specific_exergy"]
+            balance += exergy if direction == "in" else -exergy
+        balance += piece.kind.power_sign * values.get("equipment.X.power", 0.0)
+        balance += values["equipment.X.heat"] - 288.15 * values["equipment.X.entropy_with_heat"]
+        assert values["equipment.X.lost_work"] == pytest.approx(balance, rel=1e-9, abs=1e-6), kind
+
+
+def test_curves_begin_and_end_in_the_states_they_join() -> None:
+    solution = CASES["heat-exchanger"].solve()
+    curves = solution.curves(11)
+    assert {curve.role for curve in curves} == {"hot stream", "cold stream"}
+    for curve in curves:
+        for index, state in ((0, curve.start), (-1, curve.end)):
+            entropy = solution.values[f"states.{state}.specific_entropy"][0]
+            assert curve.entropy[index] == pytest.approx(entropy, rel=1e-9)
+
+
+DOUBTFUL = [
+    ("mixer", ("states.2.mass_flow",), {"states.3.temperature": 550.0}, "states.2.mass_flow", "negative"),
+    (
+        "compressor",
+        ("states.2.pressure",),
+        {"states.2.pressure": 0.5e5},
+        "equipment.X.pressure_ratio",
+        "natural direction",
+    ),
+    ("throttling-valve", ("states.2.pressure",), {"states.2.pressure": 2e5}, "equipment.X.pressure_drop", "rises"),
+    ("heat-exchanger", ("states.2.temperature",), {"states.2.temperature": 620.0}, "equipment.X.duty", "exchanged"),
+    (
+        "heat-exchanger",
+        ("states.3.mass_flow",),
+        {"states.2.temperature": 280.0, "states.3.mass_flow": 9.0},
+        "equipment.X.duty",
+        "At the cold end",
+    ),
+    ("heat-exchanger", ("states.3.mass_flow",), {"states.3.mass_flow": 0.8}, "equipment.X.duty", "At the hot end"),
+]
+
+
+@pytest.mark.parametrize(("kind", "drop", "give", "path", "text"), DOUBTFUL)
+def test_solutions_that_cannot_be_meant_raise_a_warning(
+    kind: str, drop: tuple[str, ...], give: dict[str, float], path: str, text: str
+) -> None:
+    assert not CASES[kind].solve().warnings
+    warnings = CASES[kind].solve(drop, give).warnings
+    assert any(warning.path == path and text in warning.message for warning in warnings), warnings
+
+
+def test_temperatures_that_cross_inside_an_evaporator_are_found() -> None:
+    """Gas cooled from 600 to 380 K raises steam at 10 bar (453 K) from 300 K: both ends are right, the pinch is not."""
+    case = one_piece(
+        "heat-exchanger",
+        {"hot_inlet": ("1",), "hot_outlet": ("2",), "cold_inlet": ("3",), "cold_outlet": ("4",)},
+        {
+            "1.pressure": 1e5,
+            "1.temperature": 600.0,
+            "1.mass_flow": 10.0,
+            "2.temperature": 380.0,
+            "3.pressure": 10e5,
+            "3.temperature": 300.0,
+            "4.superheat": 20.0,
+        },
+        {"gas": SimpleGas(), "water": real_fluid("water")},
+        {"1": "gas", "2": "gas", "3": "water", "4": "water"},
+    )
+    (warning,) = case.solve().warnings
+    assert "Inside, in counterflow," in warning.message
