@@ -31,6 +31,10 @@ _sum = np.add.reduce
 #: Elements worked on at a time, so that the temporaries stay in the cache.
 CHUNK = 2048
 
+#: Multiplications in one matrix product up to which the common linear algebra libraries stay in one thread. Waiting for
+#: others on a busy machine costs more than they bring (measured: fifty times), and sums must not depend on their number.
+_SINGLE_THREAD_PRODUCT = 250_000
+
 
 class Reduced(NamedTuple):
     """Reduced Helmholtz energy and scaled derivatives, each of shape (N,), dimensionless.
@@ -105,6 +109,7 @@ class Helmholtz:
         ):
             weights[row, column] += dtype(product.coefficient)
         self._weights = weights
+        self._block = max(1, _SINGLE_THREAD_PRODUCT // weights.size)
         self._non_analytic = [NonAnalytic(term, dtype) for term in residual if term["kind"] == NON_ANALYTIC]
         total = ideal_sum(list(ideal), reducing_temperature)
         self._constant, self._linear, self._logarithm = total.constant, total.linear, total.logarithm
@@ -113,6 +118,18 @@ class Helmholtz:
         einstein = np.array(total.einstein, dtype=dtype).reshape(-1, 4, 1)
         self._einstein_n, self._einstein_theta = einstein[:, 0], einstein[:, 1]
         self._einstein_c, self._einstein_d = einstein[:, 2], einstein[:, 3]
+
+    def _collect(self, g: FloatArray) -> FloatArray:
+        """C = W·G for temperature factors G of shape (factors, N)."""
+        size = g.shape[1]
+        if size <= self._block:
+            result: FloatArray = self._weights @ g
+            return result
+        result = np.empty((self._weights.shape[0], size), dtype=g.dtype)
+        for start in range(0, size, self._block):
+            part = slice(start, start + self._block)
+            np.matmul(self._weights, g[:, part], out=result[:, part])
+        return result
 
     def ideal(self, delta: FloatArray, tau: FloatArray) -> Reduced:
         """φ° and its scaled derivatives at δ, τ of shape (N,)."""
@@ -152,7 +169,7 @@ class Helmholtz:
     def isotherm(self, temperature: FloatArray) -> Isotherm:
         """What depends on temperature T [K] alone, for repeated evaluation at different densities."""
         tau = self.reducing_temperature / temperature
-        collected = self._weights @ self._temperature_factors.values(tau, np.log(tau))[0]
+        collected = self._collect(self._temperature_factors.values(tau, np.log(tau))[0])
         near = bool(self._non_analytic) and any(
             term.matters(np.ones_like(tau), tau).size > 0 for term in self._non_analytic
         )
@@ -179,9 +196,9 @@ class Helmholtz:
         """φʳ and its scaled derivatives at δ, τ of shape (N,)."""
         g, g_first, g_second = self._temperature_factors.values(tau, np.log(tau))
         f, f_first, f_second = self._density_factors.values(delta, np.log(delta))
-        collected = self._weights @ g
-        collected_first = self._weights @ g_first
-        collected_second = self._weights @ g_second
+        collected = self._collect(g)
+        collected_first = self._collect(g_first)
+        collected_second = self._collect(g_second)
         sums = [
             _sum(f * collected, axis=0),
             _sum(f_first * collected, axis=0),

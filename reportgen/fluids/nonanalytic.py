@@ -40,9 +40,19 @@ class NonAnalytic:
         def column(name: str) -> FloatArray:
             return np.array(term[name], dtype=dtype).reshape(-1, 1)
 
-        self._n, self._a, self._b, self._beta = (column(name) for name in ("n", "a", "b", "beta"))
-        self._big_a, self._big_b, self._big_c, self._big_d = (column(name) for name in ("A", "B", "C", "D"))
-        self._least_c, self._least_d = float(self._big_c.min()), float(self._big_d.min())
+        n, a, b, beta = (column(name) for name in ("n", "a", "b", "beta"))
+        big_a, big_b, big_c, big_d = (column(name) for name in ("A", "B", "C", "D"))
+        q = dtype(0.5) / beta
+        self._n, self._b = n, b
+        self._theta_power, self._distance_power = q - 1, a - 1
+        self._big_a, self._big_b = big_a, big_b
+        self._twice_c, self._twice_d = 2 * big_c, 2 * big_d
+        # coefficients of θ y^(q−1), y^(a−1) and y^(2q−1) in Δ_δ/(δ−1) and in Δ_δδ, with y = (δ−1)², q = 1/(2β)
+        self._slope_theta, self._slope_distance = 2 / beta * big_a, 2 * big_b * a
+        self._bend_theta = self._slope_theta * (2 * q - 1)
+        self._bend_distance = self._slope_distance * (2 * a - 1)
+        self._bend_square = 2 * (big_a / beta) ** 2
+        self._least_c, self._least_d = float(big_c.min()), float(big_d.min())
         self._cutoff = _CUTOFF + math.log(float(np.abs(self._n).max()))
         self._smallest = _SMALLEST[np.dtype(dtype)]
 
@@ -55,57 +65,38 @@ class NonAnalytic:
 
     def values(self, delta: FloatArray, tau: FloatArray, *, density_only: bool = False) -> tuple[FloatArray, ...]:
         """(δφ_δ, δ²φ_δδ) and, unless ``density_only``, also φ, τφ_τ, τ²φ_ττ, δτφ_δτ; each of shape (N,)."""
-        n, a, b, beta = self._n, self._a, self._b, self._beta
-        big_a, big_b, big_c, big_d = self._big_a, self._big_b, self._big_c, self._big_d
-        x = delta - 1
-        y = np.maximum(x * x, self._smallest)
-        q = 0.5 / beta
-        y_q1 = y ** (q - 1)
-        y_a1 = y ** (a - 1)
-        theta = (1 - tau) + big_a * y_q1 * y
-        distance = theta * theta + big_b * y_a1 * y
+        # With W = n Δ^b ψ, logarithmic derivatives g = (ln Δ^b ψ)_δ, h = (ln Δ^b ψ)_τ: φ_δ = Σ W (1 + δ g) and so on.
+        b = self._b
+        x, z = delta - 1, tau - 1
+        x2 = x * x
+        y = np.maximum(x2, self._smallest)
+        u = y**self._theta_power
+        v = y**self._distance_power
+        theta = self._big_a * (u * y) - z
+        distance = theta * theta + self._big_b * (v * y)
         np.maximum(distance, self._smallest, out=distance)
-        psi = np.exp(-big_c * (x * x) - big_d * (tau - 1) ** 2)
-        # Derivatives of Δ without negative powers of (δ−1).
-        brace = 2 / beta * big_a * theta * y_q1 + 2 * big_b * a * y_a1
-        d_delta = x * brace
-        d_delta2 = (
-            brace
-            + 4 * big_b * a * (a - 1) * y_a1
-            + 2 * (big_a / beta * y_q1) ** 2 * y
-            + 4 / beta * big_a * theta * (q - 1) * y_q1
-        )
-        power = distance**b
-        power1 = b * power / distance
-        power2 = (b - 1) * power1 / distance
-        f_d = power1 * d_delta
-        f_dd = power1 * d_delta2 + power2 * d_delta**2
-        psi_d = -2 * big_c * x * psi
-        psi_dd = (2 * big_c * x * x - 1) * 2 * big_c * psi
-        weight = psi + delta * psi_d
-
-        def total(terms: FloatArray) -> FloatArray:
-            summed: FloatArray = np.add.reduce(n * terms, axis=0)
-            return summed
-
-        first = delta * total(power * weight + f_d * delta * psi)
-        second = delta**2 * total(
-            power * (2 * psi_d + delta * psi_dd) + 2 * f_d * weight + f_dd * delta * psi,
-        )
+        log_weight = b * np.log(distance)
+        log_weight -= 0.5 * (self._twice_c * x2 + self._twice_d * (z * z))
+        weight = self._n * np.exp(log_weight)
+        over = b / distance
+        w = theta * u
+        d_delta = (self._slope_theta * w + self._slope_distance * v) * x
+        relative = d_delta / distance
+        bend = self._bend_theta * w + self._bend_distance * v + self._bend_square * (u * u * y)
+        g = b * relative - self._twice_c * x
+        g_d = over * bend - b * (relative * relative) - self._twice_c
+        total = np.add.reduce
+        growth = 1 + delta * g
+        first = delta * total(weight * growth, axis=0)
+        second = delta**2 * total(weight * (2 * g + delta * (g * g + g_d)), axis=0)
         if density_only:
             return first, second
-        f_t = -2 * theta * power1
-        f_tt = 2 * power1 + 4 * theta**2 * power2
-        f_dt = -2 / beta * big_a * power1 * x * y_q1 - 2 * theta * power2 * d_delta
-        psi_t = -2 * big_d * (tau - 1) * psi
-        psi_tt = (2 * big_d * (tau - 1) ** 2 - 1) * 2 * big_d * psi
-        psi_dt = 4 * big_c * big_d * x * (tau - 1) * psi
-        value = delta * total(power * psi)
-        tau_first = tau * delta * total(f_t * psi + power * psi_t)
-        tau_second = tau**2 * delta * total(f_tt * psi + 2 * f_t * psi_t + power * psi_tt)
-        mixed = (
-            delta
-            * tau
-            * total(power * (psi_t + delta * psi_dt) + delta * f_d * psi_t + f_t * weight + f_dt * delta * psi)
-        )
+        slope = 2 * theta * over
+        h = -self._twice_d * z - slope
+        h_t = 2 * over - slope * (2 * theta / distance) - self._twice_d
+        g_t = slope * relative - self._slope_theta * (over * (x * u))
+        value = delta * total(weight, axis=0)
+        tau_first = tau * delta * total(weight * h, axis=0)
+        tau_second = tau**2 * delta * total(weight * (h * h + h_t), axis=0)
+        mixed = delta * tau * total(weight * (h * growth + delta * g_t), axis=0)
         return first, second, value, tau_first, tau_second, mixed
