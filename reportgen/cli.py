@@ -23,7 +23,9 @@ if TYPE_CHECKING:
 __all__ = ["main"]
 
 _FOLDER = click.Path(path_type=Path, file_okay=False)
-_STRICT = click.option("--strict", is_flag=True, help="Exit with status 1 when a stop caution or a failed criterion stands.")
+_STRICT = click.option(
+    "--strict", is_flag=True, help="Exit with 1 while a stop caution or failed criterion stands."
+)
 
 
 @contextmanager
@@ -79,7 +81,7 @@ def _folders(given: tuple[Path, ...]) -> list[Path]:
     from reportgen import spec
 
     found: dict[Path, None] = {}
-    faults = []
+    faults: list[Fault] = []
     for folder in given:
         try:
             found.update(dict.fromkeys(spec.find(folder)))
@@ -94,7 +96,7 @@ def _evaluated(folder: Path) -> Record:
     """The Record of one folder, its narratives checked."""
     from reportgen import evaluation, report, spec
 
-    record = evaluation.evaluate(spec.read(folder), folder)
+    record = evaluation.evaluate(spec.read(folder, evaluation.property_model), folder)
     report.check_narratives(record)
     return record
 
@@ -222,11 +224,7 @@ def fluids(name: str | None) -> None:
     from reportgen import fluids as models
 
     with _reported():
-        if name is None:
-            for key in models.names():
-                click.echo(key)
-        else:
-            click.echo(models.describe(name))
+        click.echo(models.listing() if name is None else models.describe(name))
 
 
 @main.command()

@@ -86,7 +86,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
         {
             "calculation": calculation_section(calculation),
             "plant": plant_section(calculation, models, solution.values),
-            "inputs": inputs_section(calculation),
+            "inputs": inputs_section(calculation, solution),
             "values": values_section(plant, solution, calculation.inputs),
             "relations": relations,
             "solution_order": list(relations),

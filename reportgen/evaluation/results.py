@@ -28,8 +28,9 @@ RESIDUALS = ("closure", "energy_imbalance", "entropy_imbalance", "mass_imbalance
 def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[str, Input]) -> dict[str, Any]:
     """Every value of the base case with unit, symbol, uncertainty and the paths it was computed from.
 
-    The ``from`` chains end in inputs, in fluids (``fluids.<id>``) and in listed assumptions (``assumptions.<id>``). A
-    value that is an input itself has an empty ``from``, or, as a gauge reading, the atmosphere.
+    The ``from`` chains end in inputs and in fluids (``fluids.<id>``). A value that is an input itself, written in the
+    file or taken by default, has an empty ``from``, or, as a gauge reading, the atmosphere. Which assumptions a value
+    rests on is told by the ``uses`` of its relation.
     """
     origins, relations = _origins(solution.steps, inputs)
     numbers = [path for path, array in solution.values.items() if array.dtype.kind == "f"]
@@ -104,7 +105,7 @@ def _origins(steps: list[Step], inputs: Mapping[str, Input]) -> tuple[dict[str, 
             origins[path] = atmosphere if path == item.path else (item.path, *atmosphere)
     for step in steps:
         for path in step.solves:
-            origins.setdefault(path, step.uses)
+            origins.setdefault(path, tuple(use for use in step.uses if not use.startswith("assumptions.")))
             relations.setdefault(path, step.key)
     return origins, relations
 

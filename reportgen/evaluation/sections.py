@@ -8,11 +8,13 @@ from typing import TYPE_CHECKING, Any
 
 from reportgen.balances import kinds
 from reportgen.evaluation.evaluated import Connection
+from reportgen.names import DIMENSIONS, NAMES
+from reportgen.quantities import Quantity
+from reportgen.spec.calculation import Input
 
 if TYPE_CHECKING:
     from reportgen.balances import Solution
     from reportgen.fluids.model import Fluid
-    from reportgen.quantities import Quantity
     from reportgen.spec.calculation import Calculation, EquipmentSpec, Limits
 
 __all__ = ["accounts_section", "calculation_section", "connections_of", "inputs_section", "plant_section", "train_of"]
@@ -49,12 +51,36 @@ def calculation_section(calculation: Calculation) -> dict[str, Any]:
     }
 
 
-def inputs_section(calculation: Calculation) -> dict[str, Any]:
-    """Every given quantity as written and in SI, with its place in the file."""
-    return {path: _input(item.quantity, item) for path, item in calculation.inputs.items()}
+def inputs_section(calculation: Calculation, solution: Solution) -> dict[str, Any]:
+    """Every given quantity as written and in SI, with its place in the file; then what was taken by default."""
+    written = {path: _input(item.quantity, item) for path, item in calculation.inputs.items()}
+    return {**written, **_taken_by_default(calculation, solution)}
 
 
-def _input(quantity: Quantity, item: Any) -> dict[str, Any]:
+def _taken_by_default(calculation: Calculation, solution: Solution) -> dict[str, Any]:
+    """Values that rest on an assumption of the program alone, such as no heat; their line is that of their owner."""
+    texts = {f"assumptions.{item.id}": item.text for item in solution.assumptions}
+    section = {}
+    for step in solution.steps:
+        if len(step.solves) != 1 or not step.uses or any(use not in texts for use in step.uses):
+            continue
+        path = step.solves[0]
+        dimension = NAMES[path.rsplit(".", 1)[-1]].dimension
+        quantity = Quantity(
+            text="not stated",
+            value=float(solution.values[path][0]),
+            dimension=dimension,
+            unit=DIMENSIONS[dimension],
+            source=" ".join(texts[use] for use in step.uses),
+            supplied_by="taken by the program",
+            status="by default",
+        )
+        file, line, column = calculation.locate(path)
+        section[path] = _input(quantity, Input(path, quantity, (path,), file, line, column))
+    return section
+
+
+def _input(quantity: Quantity, item: Input) -> dict[str, Any]:
     freedom = quantity.degrees_of_freedom
     return {
         "text": quantity.text,

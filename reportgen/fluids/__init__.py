@@ -18,7 +18,7 @@ from reportgen.fluids.ideal_gases import ideal_gas
 if TYPE_CHECKING:
     from reportgen.fluids.real_fluids import RealFluid
 
-__all__ = ["describe", "ideal_gas", "ideal_gas_names", "names", "real_fluid"]
+__all__ = ["describe", "ideal_gas", "ideal_gas_names", "listing", "names", "real_fluid"]
 
 
 def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
@@ -48,6 +48,13 @@ def ideal_gas_names() -> tuple[str, ...]:
     from reportgen.fluids import gas_catalogue
 
     return gas_catalogue.names()
+
+
+def listing() -> str:
+    """Every fluid carried, with range and source, as lines of text."""
+    from reportgen.fluids.description import list_all
+
+    return list_all()
 
 
 def describe(name: str) -> str:

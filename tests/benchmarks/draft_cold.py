@@ -1,7 +1,8 @@
 """Cold ``reportgen draft`` of the letdown station against a floor: ``python -m tests.benchmarks.draft_cold``.
 
-The floor is a script that imports the same libraries (every public third-party module the draft itself loads) and saves
-as many plain figures as SVG; nothing else. Both run in fresh processes, in turn (A B A B ...), after one uncounted pair.
+The floor is a script that imports the same libraries (every public third-party module the draft itself loads) and
+saves as many plain figures as SVG; nothing else. Both run in fresh processes, in turn (A B A B ...), after one
+uncounted pair.
 """
 
 from __future__ import annotations
@@ -18,7 +19,12 @@ ROOT = Path(__file__).parents[2]
 PROJECT = ROOT / "projects" / "letdown-station"
 PAIRS = 5
 
-DRAFT = "import sys; from reportgen.cli import main; sys.argv = ['reportgen', 'draft', {project!r}, '--site', {site!r}]; main()"
+DRAFT = """
+import sys
+from reportgen.cli import main
+sys.argv = ['reportgen', 'draft', {project!r}, '--site', {site!r}]
+main()
+"""
 
 LIST_MODULES = """
 import json, sys
@@ -78,7 +84,8 @@ def main() -> None:
     print(f"figures saved by each: {figures}")
     print(f"draft, median of {PAIRS}: {statistics.median(a for a, _ in pairs):.2f} s")
     print(f"floor, median of {PAIRS}: {statistics.median(b for _, b in pairs):.2f} s")
-    print(f"ratio, median of {PAIRS} pairs: {statistics.median(ratios):.2f} (from {ratios[0]:.2f} to {ratios[-1]:.2f}); bar 2.0")
+    spread = f"from {ratios[0]:.2f} to {ratios[-1]:.2f}"
+    print(f"ratio, median of {PAIRS} pairs: {statistics.median(ratios):.2f} ({spread}); bar 2.0")
 
 
 if __name__ == "__main__":
