@@ -29,6 +29,9 @@ _MOST_ITERATIONS = 40
 _MOST_HALVINGS = 14
 #: Starts that led somewhere but not to a solution, after which no more are tried.
 _MOST_TRAVELS = 4
+#: A mass flow [kg/s] taken for none.
+_NO_FLOW = 1e-12
+_EXTENSIVE = ("mass_flow", "power", "heat", "duty")
 #: Relative size of a step below which a column has converged; the iteration after it is quadratic, hence at rounding.
 _TOLERANCE = 1e-10
 #: Relative displacement for differences: the square root of the rounding of property models (about 1e-13).
@@ -130,6 +133,7 @@ class Coupled:
                 if travelled == _MOST_TRAVELS:
                     break
                 continue
+            self._refuse_no_flow(base)
             x = np.repeat(base, columns, axis=1)
             if columns > 1:
                 x[:, 1:] = self._iterate(x[:, 1:], np.arange(1, columns), strict=False)
@@ -137,6 +141,12 @@ class Coupled:
             return {path: full[path] for path in full if path not in self.known}
         assert failure is not None
         raise failure
+
+    def _refuse_no_flow(self, base: Array) -> None:
+        """NoSolution where every flow of the block comes out as nothing: then nothing fixed their size."""
+        flows = [number for number, path in enumerate(self.tears) if path.endswith(".mass_flow")]
+        if flows and np.max(np.abs(base[flows])) < _NO_FLOW:
+            raise NoSolution("only with no flow at all would they hold, so nothing fixes the flow", self.tears)
 
     def _complete(self, x: Array, columns: NDArray[np.intp]) -> tuple[dict[str, Array], dict[str, Array]]:
         """Values of tears, properties and formulae; and what the properties come to, known ones too."""
@@ -309,6 +319,8 @@ class Coupled:
             return
         weights = np.abs(right[-1])
         paths = [path for path, weight in zip(self.tears, weights, strict=True) if weight > 0.1 * weights.max()]
+        if all(path.rsplit(".", 1)[-1] in _EXTENSIVE for path in paths):
+            raise NoSolution("nothing fixes the flow, all these may grow in proportion", paths)
         raise NoSolution("the relations leave these values free to change together", paths)
 
     def _search(

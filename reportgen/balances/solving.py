@@ -144,6 +144,8 @@ class _Run:
             text = f"State {state} has no value in {int(missing.sum())} of {self.columns} columns: "
             text += why_missing(result, int(np.argmax(missing)))
             self.solution.warnings.append(Fault(text, f"states.{state}"))
+        if pair == ("temperature", "specific_enthalpy"):
+            self.doubtful.add(state)
         if state in self.doubtful and str(np.asarray(result.phase).flat[0]) != "two-phase":
             text = f"The pressure of state {state} is not given; it was found from temperature and enthalpy, "
             text += "which hardly depend on it."

@@ -10,6 +10,7 @@ import pytest
 from scipy.optimize import brentq
 
 from reportgen.balances import Plant, Train, solve
+from reportgen.errors import SolutionError
 from reportgen.fluids import real_fluid
 from tests.balances.cases import CASES, SURROUNDINGS, VALVE, chain, one_piece
 from tests.balances.models import SimpleGas
@@ -336,3 +337,17 @@ def test_generation_is_additive_and_independent_of_where_the_boundary_is_drawn()
     values = whole.solve().values
     assert values["equipment.X.heat"][0] == pytest.approx(split["total.heat"][0], rel=1e-12)
     assert values["equipment.X.entropy_generation"][0] == pytest.approx(split["total.entropy_generation"][0], rel=1e-12)
+
+
+@pytest.mark.parametrize(("miss", "text"), [(0.0, "grow in proportion"), (1.0, "no flow at all")])
+def test_temperatures_alone_do_not_fix_a_flow_even_where_they_are_one_too_many(miss: float, text: str) -> None:
+    """All temperatures of a recuperator between equal flows, but no flow: counting alone finds nothing wrong."""
+    plant = _recuperated(SimpleGas())
+    base = solve(plant, {**RECUPERATED, "states.4.temperature": 1300.0})
+    givens = {**RECUPERATED, "states.4.temperature": 1300.0}
+    del givens["states.1.mass_flow"]
+    givens["states.3.temperature"] = float(base.values["states.3.temperature"][0]) + miss
+    with pytest.raises(SolutionError, match="nothing fixes the flow"):
+        solve(plant, givens)
+    with pytest.raises(SolutionError, match=text):
+        solve(plant, givens)
