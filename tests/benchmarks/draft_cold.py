@@ -1,6 +1,6 @@
 """Cold ``reportgen draft`` of the letdown station against a floor: ``python -m tests.benchmarks.draft_cold``.
 
-The floor is a script that imports the same libraries (every public third-party module the draft itself loads) and
+The floor is a script that imports the same libraries (every third-party package the draft itself loads) and
 saves as many plain figures as SVG; nothing else. Both run in fresh processes, in turn (A B A B ...), after one
 uncounted pair.
 """
@@ -27,20 +27,19 @@ main()
 """
 
 LIST_MODULES = """
-import json, sys
+import importlib.machinery, json, sys
 from reportgen.cli import main
 sys.argv = ['reportgen', 'draft', {project!r}, '--site', {site!r}]
 try:
     main()
 except SystemExit as ended:
     assert not ended.code
-own = {{'reportgen', '__main__'}}
-loaded = [
-    name for name, module in sorted(sys.modules.items())
-    if name.count('.') < 2 and not any(part.startswith('_') for part in name.split('.'))
-    and name.split('.')[0] not in own | set(sys.stdlib_module_names)
-    and getattr(module, '__spec__', None) is not None
-]
+own = {{'reportgen', '__main__'}} | set(sys.stdlib_module_names)
+loaded = sorted({{
+    name for name in sys.modules
+    if '.' not in name and not name.startswith('_') and name not in own
+    and importlib.machinery.PathFinder.find_spec(name)
+}})
 print('LOADED ' + json.dumps(loaded))
 """
 
@@ -80,7 +79,7 @@ def main() -> None:
         floor = FLOOR.format(modules=modules, figures=figures, site=folder)
         pairs = [(_seconds(draft), _seconds(floor)) for _ in range(PAIRS + 1)][1:]
     ratios = sorted(a / b for a, b in pairs)
-    print(f"libraries imported by the floor: {sorted({name.split('.')[0] for name in modules})}")
+    print(f"libraries imported by the floor: {', '.join(modules)}")
     print(f"figures saved by each: {figures}")
     print(f"draft, median of {PAIRS}: {statistics.median(a for a, _ in pairs):.2f} s")
     print(f"floor, median of {PAIRS}: {statistics.median(b for _, b in pairs):.2f} s")
