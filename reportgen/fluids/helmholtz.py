@@ -32,7 +32,8 @@ _sum = np.add.reduce
 CHUNK = 2048
 
 #: Multiplications in one matrix product up to which the common linear algebra libraries stay in one thread. Waiting for
-#: others on a busy machine costs more than they bring (measured: fifty times), and sums must not depend on their number.
+#: others on a busy machine costs more than they bring (measured: fifty times), and sums must not depend on their
+#: number.
 _SINGLE_THREAD_PRODUCT = 250_000
 
 

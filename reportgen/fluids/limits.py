@@ -26,19 +26,25 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
     """Limits from a data file."""
     limits, critical, triple = data["limits"], data["critical_point"], data["triple_point"]
     remarks = []
+    published = limits.get("published_maximum_temperature")
+    if published is not None and published < limits["maximum_temperature"]:
+        remarks.append(
+            f"The publication claims validity up to {published:g} K; from there to "
+            f"{limits['maximum_temperature']:g} K the equation is extrapolated."
+        )
     if data["melting_line"]:
         remarks.append("Bounded by the melting line: states under it are refused.")
     else:
         remarks.append("No melting line is carried: that a compressed liquid is not solid is not checked.")
     if data["pseudo_pure"]:
         remarks.append(
-            "Pseudo-pure: bubble and dew lines differ, and there is no state between them. The critical point given is the "
-            "point of the highest temperature of the two-phase region."
+            "Pseudo-pure: bubble and dew lines differ, and there is no state between them. The critical point given is "
+            "the point of the highest temperature of the two-phase region."
         )
     return Limits(
-        minimum_temperature=limits["minimum_temperature"],
-        maximum_temperature=limits["maximum_temperature"],
-        maximum_pressure=limits["maximum_pressure"],
+        minimum_temperature=float(limits["minimum_temperature"]),
+        maximum_temperature=float(limits["maximum_temperature"]),
+        maximum_pressure=float(limits["maximum_pressure"]),
         triple_point=Point(triple["temperature"], triple["pressure"]),
         critical_point=Point(critical["temperature"], critical["pressure"], critical["density"]),
         remarks=tuple(remarks),
@@ -70,6 +76,11 @@ class Guard:
         self._limits = limits
         self._line = MeltingLine(melting_line) if melting_line else None
 
+    @property
+    def _between(self) -> str:
+        line = f"between the bubble and the dew line of {self._title}, a pseudo-pure fluid"
+        return f"{line} whose equation gives no state there"
+
     def _reject(self, where: BoolArray, elements: Elements, name: str, values: FloatArray, limit: str) -> None:
         elements.reject(
             where,
@@ -97,10 +108,6 @@ class Guard:
         self._reject(pressure <= 0, elements, "pressure", pressure, "not above zero (absolute pressure is needed)")
         self._reject(~inside & (pressure > 0), elements, "pressure", pressure, f"above the maximum, {high:g} Pa,")
 
-    def resulting_pressure(self, pressure: FloatArray, elements: Elements) -> None:
-        """Refuse pressures [Pa] that came out of temperature and density beyond the range."""
-        self.pressure(pressure, elements)
-
     def density(self, density: FloatArray, elements: Elements, highest: float) -> None:
         """Refuse densities [kg/m3] not positive, or beyond any state within the limits."""
         self._reject(~(density > 0), elements, "density", density, "not above zero")
@@ -119,8 +126,7 @@ class Guard:
             elements.reject(
                 (quality > 0) & (quality < 1),
                 lambda i: Fault(
-                    f"Quality {quality[i]:g} lies between the bubble and the dew line of {self._title}, a pseudo-pure fluid, whose "
-                    "equation gives no state there.",
+                    f"Quality {quality[i]:g} lies {self._between}.",
                     found=_value("quality", quality[i]),
                     expected="quality 0 (bubble line) or 1 (dew line)",
                 ),
@@ -181,7 +187,8 @@ class Guard:
         elements.reject(
             pressure > melting * (1 + 1e-6),
             lambda i: Fault(
-                f"{self._title} is solid at {pressure[i]:.9g} Pa and {temperature[i]:.9g} K: it melts there at {melting[i]:.6g} Pa.",
+                f"{self._title} is solid at {pressure[i]:.9g} Pa and {temperature[i]:.9g} K: "
+                f"the melting pressure at this temperature is {melting[i]:.6g} Pa.",
                 found=f"{_value('pressure', pressure[i])}, {_value('temperature', temperature[i])}",
                 expected="a state on the fluid side of the melting line",
             ),
@@ -199,28 +206,31 @@ class Guard:
         """Pressure [Pa] and temperature [K] do not fix a state."""
         if pseudo_pure:
             return Fault(
-                f"{pressure:.9g} Pa and {temperature:.9g} K lie on or between the bubble and the dew line of {self._title}, a "
-                "pseudo-pure fluid, whose equation gives no state between them.",
+                f"{pressure:.9g} Pa and {temperature:.9g} K lie on one of the lines or {self._between}.",
                 hint="On a line, give the quality: 0 (bubble) or 1 (dew).",
             )
         return Fault(
-            f"{pressure:.9g} Pa and {temperature:.9g} K are a point of the saturation line of {self._title}: they do not tell liquid "
-            "from vapour.",
+            f"{pressure:.9g} Pa and {temperature:.9g} K are a point of the saturation line of {self._title}: "
+            "they do not tell liquid from vapour.",
             hint="Give the quality with one of them.",
         )
 
-    def between_lines(self, pressure: float, name: str, value: float) -> Fault:
-        """A pseudo-pure fluid between its lines, from pressure [Pa] and another property."""
+    def between_lines(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
+        """A pseudo-pure fluid between its lines, from two properties."""
+        return Fault(f"{_sentence(first, first_value)} and {_value(second, second_value)} lie {self._between}.")
+
+    def several(self, first: str, first_value: float, second: str, second_value: float, count: int) -> Fault:
+        """Two properties that more than one state shares."""
         return Fault(
-            f"{_value('pressure', pressure)} and {_value(name, value)} lie between the bubble and the dew line of {self._title}, a "
-            "pseudo-pure fluid, whose equation gives no state there.",
+            f"{self._title} has {count} states at {_value(first, first_value)} and {_value(second, second_value)}.",
+            hint="Give another pair, such as pressure and temperature.",
         )
 
-    def between_lines_density(self, temperature: float, density: float) -> Fault:
-        """The same from temperature [K] and density [kg/m3]."""
+    def none(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
+        """Two properties that no state within the limits has."""
         return Fault(
-            f"{_value('temperature', temperature)} and {_value('density', density)} lie between the bubble and the dew line of "
-            f"{self._title}, a pseudo-pure fluid, whose equation gives no state there.",
+            f"No state of {self._title} within its limits was found at {_value(first, first_value)} and "
+            f"{_value(second, second_value)}.",
         )
 
     def too_cold(self, pressure: float, name: str, value: float) -> Fault:

@@ -18,6 +18,7 @@ from reportgen.fluids.model import Errors
 from reportgen.fluids.pairs import Elements, read_pair
 from reportgen.fluids.reference import zero_of
 from reportgen.fluids.saturation import SaturationCurves
+from reportgen.fluids.searches import Found, SearchFlash
 from reportgen.fluids.solution import Solution
 from reportgen.fluids.state import State
 
@@ -39,9 +40,8 @@ class RealFluid:
     ----------
     name : canonical name, alias, formula or CAS number.
     reference_state : "published" (zero of the publication), "IIR" (h = 200 kJ/kg, s = 1 kJ/(kg·K) for the saturated
-    liquid at
-        0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C) or "NBP" (h = s = 0 for the saturated liquid at
-        101 325 Pa).
+        liquid at 0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C) or "NBP" (h = s = 0 for the saturated
+        liquid at 101 325 Pa).
 
     Raises
     ------
@@ -84,6 +84,15 @@ class RealFluid:
             self.limits.maximum_temperature,
             self._triple_pressure,
         )
+        self._search = SearchFlash(
+            equation,
+            self._curves,
+            self._solver,
+            self.limits.minimum_temperature,
+            self.limits.maximum_temperature,
+            self.limits.maximum_pressure,
+            self._triple_pressure,
+        )
         self._pairs: dict[tuple[str, str], Callable[[FloatArray, FloatArray, Elements], Solution]] = {
             ("pressure", "temperature"): self._pressure_temperature,
             ("pressure", "specific_enthalpy"): self._pressure_enthalpy,
@@ -91,6 +100,9 @@ class RealFluid:
             ("pressure", "quality"): self._pressure_quality,
             ("temperature", "quality"): self._temperature_quality,
             ("temperature", "density"): self._temperature_density,
+            ("pressure", "density"): self._pressure_density,
+            ("temperature", "specific_entropy"): self._temperature_entropy,
+            ("temperature", "specific_enthalpy"): self._temperature_enthalpy,
             ("pressure", "superheat"): self._pressure_superheat,
             ("pressure", "subcooling"): self._pressure_subcooling,
         }
@@ -101,9 +113,11 @@ class RealFluid:
     def at(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
         """State fixed by two properties; see ``fluids.model.Fluid.at``.
 
-        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, quality, superheat or subcooling;
-        temperature with quality or density (or specific_volume). Pressure and temperature within 1e-9 of saturation
-        are refused, since they do not tell liquid from vapour: give the quality.
+        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, quality, density, superheat or
+        subcooling; temperature with quality, density, specific_entropy or specific_enthalpy (specific_volume stands
+        for density). Temperature with enthalpy and pressure with density can have several states: these are refused.
+        Pressure and temperature within 1e-9 of saturation are refused, since they do not tell liquid from vapour:
+        give the quality.
         """
         given = read_pair(pair, self._pairs, self.title)
         if errors not in ("raise", "mask"):
@@ -200,7 +214,7 @@ class RealFluid:
             else np.where(elements.rejected, self._curves.top_pressure / 2, pressure)
         )
         result = self._flash.solve(p, target, entropy=name == "specific_entropy")
-        elements.reject(result.between, lambda i: guard.between_lines(p[i], name, target[i]))
+        elements.reject(result.between, lambda i: guard.between_lines("pressure", p[i], name, target[i]))
         elements.reject(result.cold, lambda i: guard.too_cold(p[i], name, target[i]))
         elements.reject(result.hot, lambda i: guard.too_hot(p[i], name, target[i]))
         elements.reject(~result.found, lambda i: guard.not_found("pressure", p[i], name, target[i]))
@@ -263,12 +277,67 @@ class RealFluid:
             if self.pseudo_pure:
                 inside = np.zeros(t.size, dtype=np.bool_)
                 inside[below] = mixed & (x > 0) & (x < 1)
-                elements.reject(inside, lambda i: guard.between_lines_density(t[i], rho[i]))
+                elements.reject(inside, lambda i: guard.between_lines("temperature", t[i], "density", rho[i]))
                 pressure[below] = np.where(mixed & (x == 1), saturated.dew_pressure, pressure[below])
-        guard.resulting_pressure(pressure, elements)
+        guard.pressure(pressure, elements)
         guard.melting(pressure, t, elements)
         return self._solution(
             temperature, pressure, density, quality=quality, liquid_density=rho_l, vapour_density=rho_v
+        )
+
+    def _pressure_density(self, pressure: FloatArray, density: FloatArray, elements: Elements) -> Solution:
+        guard = self._guard
+        guard.pressure(pressure, elements)
+        guard.density(density, elements, self._maximum_density)
+        p, rho = np.where(elements.rejected, 1e5, pressure), np.where(elements.rejected, 1.0, density)
+        found = self._search.pressure_density(p, rho)
+        return self._searched(found, elements, "pressure", p, "density", rho)
+
+    def _temperature_entropy(self, temperature: FloatArray, entropy: FloatArray, elements: Elements) -> Solution:
+        return self._temperature_caloric(temperature, entropy, elements, "specific_entropy")
+
+    def _temperature_enthalpy(self, temperature: FloatArray, enthalpy: FloatArray, elements: Elements) -> Solution:
+        return self._temperature_caloric(temperature, enthalpy, elements, "specific_enthalpy")
+
+    def _temperature_caloric(
+        self, temperature: FloatArray, target: FloatArray, elements: Elements, name: str
+    ) -> Solution:
+        self._guard.temperature(temperature, elements)
+        t = np.where(elements.rejected, self.limits.maximum_temperature, temperature)
+        found = self._search.temperature_caloric(t, target, entropy=name == "specific_entropy")
+        return self._searched(found, elements, "temperature", t, name, target, known={name: target})
+
+    def _searched(
+        self,
+        found: Found,
+        elements: Elements,
+        first: str,
+        first_value: FloatArray,
+        second: str,
+        second_value: FloatArray,
+        known: dict[str, FloatArray] | None = None,
+    ) -> Solution:
+        """Check what a search has found: exactly one state, fluid, not between the lines of a pseudo-pure fluid."""
+        guard = self._guard
+        elements.reject(
+            found.seen > 1,
+            lambda i: guard.several(first, first_value[i], second, second_value[i], int(found.seen[i])),
+        )
+        elements.reject(found.seen == 0, lambda i: guard.none(first, first_value[i], second, second_value[i]))
+        if self.pseudo_pure:
+            elements.reject(
+                (found.quality > 0) & (found.quality < 1),
+                lambda i: guard.between_lines(first, first_value[i], second, second_value[i]),
+            )
+        guard.melting(found.pressure, found.temperature, elements)
+        return self._solution(
+            found.temperature,
+            found.pressure,
+            found.density,
+            quality=found.quality,
+            liquid_density=found.liquid_density,
+            vapour_density=found.vapour_density,
+            known=known or {},
         )
 
     def _pressure_superheat(self, pressure: FloatArray, superheat: FloatArray, elements: Elements) -> Solution:

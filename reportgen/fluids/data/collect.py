@@ -37,6 +37,38 @@ FLUIDS = (
     ("Air", "air", "Air"),
 )
 
+#: Highest temperature [K] the publication claims, from its title (water: IAPWS R6-95(2018), section 4). The source's
+#: own limit is often higher; between the two the equation is extrapolated, which the limits say.
+PUBLISHED_MAXIMUM = {
+    "air": 2000.0,
+    "ammonia": 725.0,
+    "argon": 700.0,
+    "carbon dioxide": 1100.0,
+    "methane": 625.0,
+    "nitrogen": 1000.0,
+    "oxygen": 300.0,
+    "propane": 650.0,
+    "R134a": 455.0,
+    "water": 1273.0,
+}
+
+#: Entries of the bibliography that are incomplete or misprinted in the source.
+CORRECTIONS = {
+    "Gao-JPCRD-2020": {
+        "author": "K. Gao and J. Wu and I. H. Bell and A. H. Harvey and E. W. Lemmon",
+        "year": "2023",
+        "title": "A Reference Equation of State with an Associating Term for the Thermodynamic Properties of Ammonia",
+        "volume": "52",
+        "pages": "013102",
+        "doi": "10.1063/5.0128269",
+    },
+    "TillnerRoth-JPCRD-1994": {
+        "title": "An International Standard Formulation for the Thermodynamic Properties of 1,1,1,2-Tetrafluoroethane "
+        "(HFC-134a) for Temperatures from 170 K to 455 K and Pressures up to 70 MPa"
+    },
+    "IAPWS-Melting-2011": {"institution": "IAPWS R14-08(2011)"},
+}
+
 #: Kinds of terms: name in the source -> name here (terms.py) and the columns carried.
 RESIDUAL = {
     "Power": ("power", "ndtl"),
@@ -122,7 +154,7 @@ def publications(keys: str, library: dict[str, dict[str, str]]) -> list[dict[str
     """Authors, year, title, where published and DOI of each comma-joined key."""
     found = []
     for key in filter(None, (part.strip() for part in keys.split(","))):
-        entry = library[key]
+        entry = library[key] | CORRECTIONS.get(key, {})
         where = entry.get("journal") or entry.get("institution") or entry.get("publisher") or entry.get("school") or ""
         if entry.get("volume"):
             where += f" {entry['volume']}"
@@ -295,6 +327,7 @@ def collect(source_name: str, name: str, title: str, library: dict[str, dict[str
             "minimum_temperature": triple,
             "maximum_temperature": equation_data["T_max"],
             "maximum_pressure": equation_data["p_max"],
+            "published_maximum_temperature": PUBLISHED_MAXIMUM.get(name),
         },
         "triple_point": {"temperature": triple, "pressure": float(np.exp(at_triple))},
         "critical_point": apex,
