@@ -111,6 +111,11 @@ class Coupled:
         self.index = {path: number for number, path in enumerate(self.tears)}
         involved = {path for relation in relations for path in relation.variables}
         self.known: dict[str, Array] = {path: values[path] for path in involved if path in values}
+        for state in self.outputs:
+            # The temperature of an ideal gas may be asked for before its pressure is known; any pressure will do.
+            pressure = f"states.{state}.pressure"
+            if pressure not in free:
+                self.known[pressure] = values.get(pressure, values["surroundings.pressure"])
 
     @property
     def is_linear(self) -> bool:

@@ -119,6 +119,9 @@ class _Run:
                 self._state(state, pair)
                 return
         relation, unknown = block.relations[0], block.unknowns[0]
+        if len(block.relations) == 1 and isinstance(relation, PropertyRelation) and len(relation.inputs) == 1:
+            self._caloric(relation, unknown)
+            return
         if len(block.relations) == 1 and self._direct(relation, unknown, needed):
             return
         self._together(block)
@@ -183,6 +186,39 @@ class _Run:
                 tuple(solved),
                 uses,
                 equations,
+            )
+        )
+
+    def _caloric(self, relation: PropertyRelation, unknown: str) -> None:
+        """Enthalpy from temperature or the reverse, for an ideal gas whose pressure is not known yet."""
+        fluid_id = self.plant.states[relation.state]
+        fluid = self.plant.fluids[fluid_id]
+        (known,) = (path for path in relation.variables if path != unknown)
+        name, given = (path.rsplit(".", 1)[-1] for path in (unknown, known))
+        ambient = self.values["surroundings.pressure"]
+        result = fluid.at(errors="mask", pressure=ambient, **{given: self.values[known]})
+        array = np.array(getattr(result, name), dtype=float)
+        if np.isnan(array[0]):
+            told = f"{given.replace('_', ' ')} = {_number(self.values[known][0], given)}"
+            message = (
+                f"State {relation.state} ({fluid.title}) cannot be evaluated with {told}: {why_missing(result, 0)}"
+            )
+            raise SolutionError(Fault(message, f"states.{relation.state}"))
+        self.values[unknown] = array
+        equation = Equation(token(unknown), rf"{NAMES[name].symbol}\left({token(known)}\right)")
+        sentence = (
+            f"State {relation.state}: temperature and enthalpy of an ideal gas fix each other, whatever the pressure."
+        )
+        self.solution.steps.append(
+            Step(
+                relation.key,
+                f"states.{relation.state}",
+                f"State {relation.state}",
+                sentence,
+                f"equation of state, {fluid.title}",
+                (unknown,),
+                (known, f"fluids.{fluid_id}"),
+                (equation,),
             )
         )
 
@@ -265,7 +301,7 @@ class _Run:
                 prefix = f"states.{relation.state}."
                 others.append(f"fluids.{self.plant.states[relation.state]}")
                 symbol = NAMES[relation.output].symbol
-                arguments = rf"{token(prefix + 'pressure')},\,{token(prefix + 'specific_enthalpy')}"
+                arguments = r",\,".join(token(prefix + name) for name in relation.inputs)
                 equations.append(Equation(token(relation.path), rf"{symbol}\left({arguments}\right)"))
             else:
                 if isinstance(relation, Formula):

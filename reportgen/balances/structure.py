@@ -31,10 +31,13 @@ SURROUNDINGS = ("surroundings.temperature", "surroundings.pressure")
 
 @dataclass(frozen=True)
 class PropertyRelation:
-    """One property of a state as a function of pressure and specific enthalpy."""
+    """One property of a state as a function of pressure and specific enthalpy; of an ideal gas, the temperature
+    as a function of specific enthalpy alone.
+    """
 
     state: str
     output: str
+    inputs: tuple[str, ...] = ("pressure", "specific_enthalpy")
 
     @property
     def key(self) -> str:
@@ -48,12 +51,12 @@ class PropertyRelation:
 
     @property
     def variables(self) -> tuple[str, ...]:
-        """Property, pressure, specific enthalpy."""
-        return (self.path, f"states.{self.state}.pressure", f"states.{self.state}.specific_enthalpy")
+        """Property and what it is a function of."""
+        return (self.path, *(f"states.{self.state}.{name}" for name in self.inputs))
 
     @property
     def solvable(self) -> tuple[str, ...]:
-        """Any of the three."""
+        """Any of them."""
         return self.variables
 
 
@@ -162,7 +165,9 @@ def _all_relations(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[s
     for state in plant.states:
         flows = [name for name in FLOWS if f"states.{state}.{name}" in given]
         for name in state_properties(state, given, flows):
-            if name not in ("pressure", "specific_enthalpy"):
+            if name == "temperature" and plant.fluids[plant.states[state]].kind == "ideal-gas":
+                relations.append(PropertyRelation(state, name, ("specific_enthalpy",)))
+            elif name not in ("pressure", "specific_enthalpy"):
                 relations.append(PropertyRelation(state, name))
         if flows or state in connected:
             relations += _flow_relations(plant, state, flows)
@@ -228,17 +233,37 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
         assumed.update(dict.fromkeys(rewritten, default))
     _refuse_lack(matching, list(unknowns), pieces)
 
-    needs = {
-        key: [
-            owner for path in table[key].variables if path not in given and (owner := matching.relation_of[path]) != key
-        ]
-        for key in table
-    }
     blocks = [
         Block(tuple(table[key] for key in keys), tuple(matching.unknown_of[key] for key in keys))
-        for keys in blocks_in_order(_reading_order(table, pieces), needs)
+        for keys in _solution_order(table, matching, pieces, given)
     ]
     return Network(blocks, taken, list(unknowns), implied, assumed)
+
+
+def _solution_order(
+    table: Mapping[str, AnyRelation], matching: Matching, pieces: Mapping[str, Piece], given: frozenset[str]
+) -> list[list[str]]:
+    """Keys of relations, block by block.
+
+    The temperature of an ideal gas waits for the pressure too, so that a state is one step, unless that would make
+    relations simultaneous that are not.
+    """
+    needs: dict[str, list[str]] = {}
+    waiting: dict[str, str] = {}
+    for key, relation in table.items():
+        unknowns = (path for path in relation.variables if path not in given)
+        needs[key] = [owner for path in unknowns if (owner := matching.relation_of[path]) != key]
+        if isinstance(relation, PropertyRelation) and "pressure" not in relation.inputs:
+            pressure = matching.relation_of.get(f"states.{relation.state}.pressure")
+            if pressure is not None and pressure not in needs[key]:
+                waiting[key] = pressure
+    order = _reading_order(table, pieces)
+    patient = {key: [*owners, waiting[key]] if key in waiting else owners for key, owners in needs.items()}
+    blocks = blocks_in_order(order, patient)
+    hasty = {key for block in blocks if len(block) > 1 for key in block if key in waiting}
+    if hasty:
+        blocks = blocks_in_order(order, {key: needs[key] if key in hasty else patient[key] for key in needs})
+    return blocks
 
 
 def _reading_order(table: Mapping[str, AnyRelation], pieces: Mapping[str, Piece]) -> list[str]:

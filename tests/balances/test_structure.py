@@ -24,7 +24,7 @@ from tests.balances.models import SimpleGas
 
 TOO_LITTLE = [
     (VALVE, "1.mass_flow", {}, "Nothing fixes the flow of states 1, 2.", ["1.mass_flow", "2.mass_flow"]),
-    (VALVE, "2.pressure", {}, "Nothing determines", ["2.pressure", "2.temperature", "pressure_drop"]),
+    (VALVE, "2.pressure", {}, "Nothing determines", ["2.pressure", "2.specific_entropy", "pressure_drop"]),
     (VALVE, "1.temperature", {}, "Nothing determines", ["1.temperature", "2.temperature"]),
     (
         COMPRESSOR,
@@ -212,3 +212,22 @@ def test_defaults_that_are_determined_otherwise_are_not_taken() -> None:
     assert [assumption.id for assumption in cooled.assumptions] == ["equipment.X.heat.leaves_at_surroundings"]
     measured = VALVE.solve((), {"states.2.temperature": 295.0})
     assert measured.values["equipment.X.heat"][0] == pytest.approx(-2.0 * 1004.5 * 5.0)
+
+
+def test_the_temperature_of_an_ideal_gas_says_nothing_about_its_pressure() -> None:
+    with pytest.raises(SolutionError, match="too many"):
+        COMPRESSOR.solve((), {"states.2.specific_enthalpy": 2e5, "states.2.temperature": 500.0})
+    with pytest.raises(SolutionError, match=r"Nothing determines states\.2\.pressure"):
+        COMPRESSOR.solve(
+            ("states.2.pressure", "equipment.X.isentropic_efficiency"),
+            {"states.2.temperature": 500.0, "equipment.X.power": 4e5},
+        )
+
+
+def test_enthalpy_of_an_ideal_gas_is_found_before_its_pressure() -> None:
+    forward = COMPRESSOR.solve()
+    outlet = float(forward.values["states.2.temperature"][0])
+    back = COMPRESSOR.solve(("states.2.pressure",), {"states.2.temperature": outlet})
+    assert back.values["states.2.pressure"][0] == pytest.approx(6e5, rel=1e-10)
+    assert "whatever the pressure" in " ".join(step.sentence for step in back.steps)
+    assert not back.warnings
