@@ -9,6 +9,7 @@ from numpy.typing import NDArray
 
 from reportgen.fluids.density import DensitySolver
 from reportgen.fluids.helmholtz import Helmholtz, Properties
+from reportgen.fluids.melting import MeltingLine
 from reportgen.fluids.saturation import Saturated, SaturationCurves
 
 __all__ = ["Caloric", "PressureFlash"]
@@ -51,6 +52,7 @@ class PressureFlash:
     equation, curves, solver : the equation, its saturation curves, its density solver.
     lowest, highest : temperatures [K] between which states are sought.
     triple_pressure : lowest pressure with a liquid [Pa].
+    melting_line : the melting line, or None; liquids are sought above it.
     """
 
     def __init__(
@@ -61,12 +63,14 @@ class PressureFlash:
         lowest: float,
         highest: float,
         triple_pressure: float,
+        melting_line: MeltingLine | None,
     ) -> None:
         self._equation = equation
         self._curves = curves
         self._solver = solver
         self._lowest, self._highest = lowest, highest
         self._triple_pressure = triple_pressure
+        self._line = melting_line
 
     def solve(self, pressure: FloatArray, target: FloatArray, *, entropy: bool) -> Caloric:
         """State at p [Pa] and h [J/kg], or s [J/(kg*K)] if ``entropy``; shape (N,), finite."""
@@ -251,6 +255,10 @@ class PressureFlash:
         """Bracketed Newton's method in T with the density solved at each step."""
         p, wanted, side = pressure[todo], target[todo], liquid[todo]
         lo, hi = low[todo].copy(), high[todo].copy()
+        if self._line is not None:
+            # deep in the solid the equation may have no density at this pressure
+            lo = np.where(side, np.maximum(lo, self._line.temperature(p) * (1 - 1e-9)), lo)
+        coldest = lo
 
         def evaluate(t: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray, BoolArray]:
             rho, ok = self._solver.solve(t, p, side)
@@ -282,4 +290,5 @@ class PressureFlash:
                 width = hi - lo
             t = np.where(settled, t, np.where(bad, 0.5 * (lo + hi), trial))
         result.temperature[todo], result.density[todo] = t, rho
+        result.cold[todo] |= ~settled & ~result.hot[todo] & (t <= coldest * (1 + 1e-6))
         result.found[todo] = settled & ~result.cold[todo] & ~result.hot[todo]

@@ -20,6 +20,9 @@ BoolArray = NDArray[np.bool_]
 
 #: Rounding granted at the ends of the range.
 _ROUNDING = 1e-9
+#: Least pressure [Pa] and density [kg/m3] taken: far below any triple point, and far above where numbers underflow.
+_LOWEST_PRESSURE = 1e-12
+_LOWEST_DENSITY = 1e-18
 
 
 def limits_of(data: Mapping[str, Any]) -> Limits:
@@ -74,7 +77,7 @@ class Guard:
     def __init__(self, title: str, limits: Limits, melting_line: Mapping[str, Any] | None) -> None:
         self._title = title
         self._limits = limits
-        self._line = MeltingLine(melting_line) if melting_line else None
+        self.melting_line = MeltingLine(melting_line) if melting_line else None
 
     @property
     def _between(self) -> str:
@@ -102,15 +105,19 @@ class Guard:
     def pressure(self, pressure: FloatArray, elements: Elements) -> None:
         """Refuse pressures [Pa] not positive or above the maximum."""
         high = self._limits.maximum_pressure
-        inside = (pressure > 0) & (pressure <= high * (1 + _ROUNDING))
+        inside = (pressure >= _LOWEST_PRESSURE) & (pressure <= high * (1 + _ROUNDING))
         if inside.all():
             return
         self._reject(pressure <= 0, elements, "pressure", pressure, "not above zero (absolute pressure is needed)")
-        self._reject(~inside & (pressure > 0), elements, "pressure", pressure, f"above the maximum, {high:g} Pa,")
+        low = pressure < _LOWEST_PRESSURE
+        self._reject(low, elements, "pressure", pressure, f"below {_LOWEST_PRESSURE:g} Pa, the lowest computed,")
+        self._reject(~inside & ~low, elements, "pressure", pressure, f"above the maximum, {high:g} Pa,")
 
     def density(self, density: FloatArray, elements: Elements, highest: float) -> None:
         """Refuse densities [kg/m3] not positive, or beyond any state within the limits."""
         self._reject(~(density > 0), elements, "density", density, "not above zero")
+        low = density < _LOWEST_DENSITY
+        self._reject(low, elements, "density", density, f"below {_LOWEST_DENSITY:g} kg/m3, the lowest computed,")
         self._reject(
             density > highest,
             elements,
@@ -175,15 +182,15 @@ class Guard:
 
     def melting(self, pressure: FloatArray, temperature: FloatArray, elements: Elements) -> None:
         """Refuse states under the melting line: p [Pa] above the melting pressure at T [K]."""
-        if self._line is None:
+        if self.melting_line is None:
             return
         with np.errstate(invalid="ignore"):
-            candidates = (temperature <= self._line.maximum_temperature) & (pressure > self._floor)
+            candidates = (temperature <= self.melting_line.maximum_temperature) & (pressure > self._floor)
         if not candidates.any():
             return
         at = np.flatnonzero(candidates)
         melting = np.full_like(pressure, np.inf)
-        melting[at] = self._line.pressure(np.maximum(temperature[at], self._line.minimum_temperature))
+        melting[at] = self.melting_line.pressure(np.maximum(temperature[at], self.melting_line.minimum_temperature))
         elements.reject(
             pressure > melting * (1 + 1e-6),
             lambda i: Fault(
@@ -237,7 +244,7 @@ class Guard:
         """Below the lowest temperature."""
         return Fault(
             f"{self._title} at {pressure:.9g} Pa with {_value(name, value)} would be below the minimum temperature, "
-            f"{self._limits.minimum_temperature:g} K (triple point).",
+            f"{self._limits.minimum_temperature:g} K (triple point), or solid.",
             found=_value(name, value),
         )
 

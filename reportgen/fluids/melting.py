@@ -45,6 +45,18 @@ class MeltingLine:
                 result[inside] = self._part(part, temperature[inside])
         return result
 
+    def temperature(self, pressure: FloatArray) -> FloatArray:
+        """Melting temperature [K] at pressure p [Pa] of shape (N,), by bisection; at the ends of the line where p is
+        beyond.
+        """
+        low = np.full_like(pressure, self.minimum_temperature)
+        high = np.full_like(pressure, self.maximum_temperature)
+        for _ in range(50):
+            middle = 0.5 * (low + high)
+            under = self.pressure(middle) < pressure
+            low, high = np.where(under, middle, low), np.where(under, high, middle)
+        return high
+
     def _part(self, part: Mapping[str, Any], temperature: FloatArray) -> FloatArray:
         ratio = temperature / part["temperature"]
         start: float = part["pressure"]

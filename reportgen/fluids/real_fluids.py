@@ -15,7 +15,7 @@ from reportgen.fluids.flash import PressureFlash
 from reportgen.fluids.helmholtz import Helmholtz
 from reportgen.fluids.limits import Guard, limits_of
 from reportgen.fluids.model import Errors
-from reportgen.fluids.pairs import Elements, read_pair
+from reportgen.fluids.pairs import Elements, Pair, read_pair
 from reportgen.fluids.reference import zero_of
 from reportgen.fluids.saturation import SaturationCurves
 from reportgen.fluids.searches import Found, SearchFlash
@@ -83,6 +83,7 @@ class RealFluid:
             self.limits.minimum_temperature,
             self.limits.maximum_temperature,
             self._triple_pressure,
+            self._guard.melting_line,
         )
         self._search = SearchFlash(
             equation,
@@ -130,6 +131,12 @@ class RealFluid:
             np.isinf(given.first) | np.isinf(given.second),
             lambda _: Fault(f"{given.names[0]} or {given.names[1]} is infinite."),
         )
+        # Far from a solution, searches may overflow; what they return is checked for each element.
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+            return self._solved(given, valid, elements, errors)
+
+    def _solved(self, given: Pair, valid: NDArray[np.bool_], elements: Elements, errors: Errors) -> State:
+        """The state of the valid elements, NaN in the others."""
         solve = self._pairs[given.names]
         if valid.all():
             solution = solve(given.first, given.second, elements)
@@ -143,7 +150,7 @@ class RealFluid:
         elements.faults |= {int(positions[index]): fault for index, fault in inner.faults.items()}
         elements.finish(errors)
         solution.masked(inner.rejected)
-        return State(given.shape, solution.spread(positions, size), solution.fill, elements.faults)
+        return State(given.shape, solution.spread(positions, valid.size), solution.fill, elements.faults)
 
     def saturation(
         self, *, temperature: ArrayLike | None = None, pressure: ArrayLike | None = None, errors: Errors = "raise"
@@ -366,7 +373,9 @@ class RealFluid:
         t = np.where(elements.rejected, base, temperature)
         density, found = self._solver.solve(t, p, liquid)
         edge = saturated.vapour_density if end else saturated.liquid_density
-        density = np.where(gap == 0, edge, density)
-        elements.reject(~found & (gap != 0), lambda i: guard.not_found("pressure", p[i], name, distance[i]))
+        # so close that the branch ends in rounding: the saturated density
+        near = gap <= _SATURATION_BAND * base
+        density = np.where(near, edge, density)
+        elements.reject(~found & ~near, lambda i: guard.not_found("pressure", p[i], name, distance[i]))
         quality = np.where(gap == 0, end, np.nan)
         return self._solution(temperature, pressure, density, quality=quality, known={name: distance})
