@@ -7,8 +7,7 @@ import json
 import re
 from difflib import get_close_matches
 from functools import cache
-from importlib.resources import files
-from importlib.resources.abc import Traversable
+from pathlib import Path
 from typing import Any
 
 from reportgen.errors import Fault, InputError
@@ -18,20 +17,18 @@ __all__ = ["FORMAT", "digest", "find", "names", "source_lines"]
 #: Format of the data files of real fluids; other files beside them have another.
 FORMAT = "reportgen-fluid/1"
 
+_FOLDER = Path(__file__).parent / "data"
+
 
 def _plain(name: str) -> str:
     """Name as compared: without case, spaces, hyphens, underscores."""
     return re.sub(r"[\s_-]+", "", name).casefold()
 
 
-def _folder() -> Traversable:
-    return files("reportgen.fluids") / "data"
-
-
 @cache
 def _read(file: str) -> tuple[dict[str, Any], str]:
     """Content of a data file and the sha-256 of its bytes."""
-    raw = (_folder() / file).read_bytes()
+    raw = (_FOLDER / file).read_bytes()
     # digest over LF line ends, so that a checkout on any system gives the same
     digest = hashlib.sha256(raw.replace(b"\r\n", b"\n")).hexdigest()
     return json.loads(raw), digest
@@ -40,8 +37,7 @@ def _read(file: str) -> tuple[dict[str, Any], str]:
 @cache
 def _files() -> dict[str, str]:
     """Plain form of each data file's name -> file."""
-    listed = (entry.name for entry in _folder().iterdir() if entry.name.endswith(".json"))
-    return {_plain(name.removesuffix(".json")): name for name in sorted(listed)}
+    return {_plain(path.stem): path.name for path in sorted(_FOLDER.glob("*.json"))}
 
 
 @cache
