@@ -1,5 +1,20 @@
 """Mass, energy and entropy relations of each kind of equipment; the network and its solution.
 
+    plant = Plant(
+        fluids={"steam": fluids.real_fluid("water")},
+        states={"1": "steam", "2": "steam"},
+        equipment={"PRV-3": EquipmentDefinition("throttling-valve", {"inlet": ("1",), "outlet": ("2",)})},
+    )
+    solution = solve(plant, {"surroundings.temperature": 288.15, "surroundings.pressure": 1.013e5,
+                             "states.1.pressure": 40e5, "states.1.temperature": [673.15, 674.15],
+                             "states.1.mass_flow": 1.44, "states.2.pressure": 10e5})
+    solution.values["equipment.PRV-3.entropy_generation"]        # [W/K], one element a column
+
+Whatever is not given is solved for, in any direction; ``solution.steps`` is the working in order. The way there:
+``plant`` checks the structure, ``structure`` collects the relations of every piece and decides with ``matching`` what
+determines what, what must be assumed and in which order, ``solving`` takes the blocks one by one, directly or by
+``newton``, and ``accounting`` adds exergies, accounts, lost work, totals and closures.
+
 ``kinds()`` declares what a calculation file may say about equipment and needs no numerical library. ``solve`` and what
 it returns are loaded when first asked for.
 """

@@ -32,14 +32,11 @@ _ROUNDING = 1e-10
 
 def add_results(solution: Solution, network: Network) -> None:
     """Add every value that is only reported, with its step, to a solution whose network is solved."""
-    book = _Book(solution)
+    book = _Book(solution, {balance.owner for balance in network.implied})
     book.exergies()
     book.entropy_flows()
     for piece in solution.pieces.values():
         book.piece(piece)
-    for balance in network.implied:
-        loop = "The mass balances round the closed loop hold together; this one follows from the others."
-        solution.reasons.setdefault(balance.key, loop)
     groups = {f"trains.{name}": (train.title, train.equipment) for name, train in solution.plant.trains.items()}
     if solution.pieces:
         groups["total"] = ("Whole plant", trains_of(solution.plant, tuple(solution.pieces)))
@@ -50,8 +47,10 @@ def add_results(solution: Solution, network: Network) -> None:
 class _Book:
     """Adds steps and values one by one."""
 
-    def __init__(self, solution: Solution) -> None:
+    def __init__(self, solution: Solution, implied: set[str]) -> None:
         self.solution = solution
+        #: Owners of mass balances that were not needed, since they follow from the others of a closed loop.
+        self.implied = implied
         self.values = solution.values
         self.columns = self.values[AMBIENT].size
 
@@ -226,6 +225,8 @@ class _Book:
         terms = [Term(1.0, (f"states.{state}.mass_flow",)) for state in inlets]
         terms += [Term(-1.0, (f"states.{state}.mass_flow",)) for state in outlets]
         sentence = f"{title}: what is left of the mass balance; zero but for rounding."
+        if owner in self.implied:
+            sentence += " In a closed loop this balance follows from the others and was not used: here it checks them."
         self.balance(f"{owner}.mass_imbalance", owner, "Check of mass", sentence, "conservation of mass", terms)
         energy: list[Term] = []
         for states, sign in ((inlets, 1.0), (outlets, -1.0)):
