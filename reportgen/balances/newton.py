@@ -10,7 +10,7 @@ solved first and all others start from its solution; each column has its own ste
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from typing import Any
 
 import numpy as np
@@ -124,7 +124,7 @@ class Coupled:
             isinstance(relation, Balance) and relation.is_linear_in(self.tears) for relation in self.residuals
         )
 
-    def solve(self, starts: Sequence[Mapping[str, float]], columns: int) -> dict[str, Array]:
+    def solve(self, starts: Iterable[Mapping[str, float]], columns: int) -> dict[str, Array]:
         """Values of all unknowns, shape (N,), NaN in columns that do not converge; NoSolution for the base column."""
         failure: NoSolution | None = None
         travelled = 0

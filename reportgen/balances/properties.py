@@ -27,20 +27,19 @@ PAIRS = (
     ("temperature", "specific_enthalpy"),
 )
 
-_refused: set[tuple[type, tuple[str, str]]] = set()
+_carried: dict[tuple[type, tuple[str, str]], bool] = {}
 
 
 def _carries(fluid: Any, pair: tuple[str, str]) -> bool:
     """Whether a model takes a pair: asked with NaN, which no model may object to."""
     key = (type(fluid), pair)
-    if key in _refused:
-        return False
-    try:
-        fluid.at(errors="mask", **{name: float("nan") for name in pair})
-    except InputError:
-        _refused.add(key)
-        return False
-    return True
+    if key not in _carried:
+        try:
+            fluid.at(errors="mask", **{name: float("nan") for name in pair})
+            _carried[key] = True
+        except InputError:
+            _carried[key] = False
+    return _carried[key]
 
 
 def known_pair(fluid: Any, known: Iterable[str]) -> tuple[str, str] | None:

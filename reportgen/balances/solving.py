@@ -283,7 +283,7 @@ class _Run:
         """Solve several relations at once."""
         problem = Coupled(block.relations, block.unknowns, self.values, self._fluid_of)
         try:
-            found = problem.solve(list(self.starts.attempts(problem.tears)), self.columns)
+            found = problem.solve(self.starts.attempts(problem.tears), self.columns)
         except NoSolution as failure:
             raise SolutionError(self._unsolved(block, failure)) from None
         lost = int(np.isnan(np.array([found[path] for path in block.unknowns])).any(axis=0).sum())
