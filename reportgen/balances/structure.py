@@ -235,17 +235,21 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
 
     blocks = [
         Block(tuple(table[key] for key in keys), tuple(matching.unknown_of[key] for key in keys))
-        for keys in _solution_order(table, matching, pieces, given)
+        for keys in _solution_order(table, matching, pieces, given, assumed)
     ]
     return Network(blocks, taken, list(unknowns), implied, assumed)
 
 
 def _solution_order(
-    table: Mapping[str, AnyRelation], matching: Matching, pieces: Mapping[str, Piece], given: frozenset[str]
+    table: Mapping[str, AnyRelation],
+    matching: Matching,
+    pieces: Mapping[str, Piece],
+    given: frozenset[str],
+    assumed: Mapping[str, Default],
 ) -> list[list[str]]:
     """Keys of relations, block by block.
 
-    The temperature of an ideal gas waits for the pressure too, so that a state is one step, unless that would make
+    A relation that an assumption rewrote comes after the assumption. The temperature of an ideal gas waits for the pressure too, so that a state is one step, unless that would make
     relations simultaneous that are not.
     """
     needs: dict[str, list[str]] = {}
@@ -253,6 +257,8 @@ def _solution_order(
     for key, relation in table.items():
         unknowns = (path for path in relation.variables if path not in given)
         needs[key] = [owner for path in unknowns if (owner := matching.relation_of[path]) != key]
+        if key in assumed and len(assumed[key].relation.variables) == 1 and key != assumed[key].relation.key:
+            needs[key].append(assumed[key].relation.key)
         if isinstance(relation, PropertyRelation) and "pressure" not in relation.inputs:
             pressure = matching.relation_of.get(f"states.{relation.state}.pressure")
             if pressure is not None and pressure not in needs[key]:

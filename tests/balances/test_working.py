@@ -112,6 +112,11 @@ def test_a_wrong_equation_would_be_noticed() -> None:
     assert computed(r"\tfrac{1}{2}\,\left(⟦b⟧\right)^{2}", values, {}) == 4.5
 
 
+def test_an_assumption_is_stated_before_what_follows_from_it() -> None:
+    steps = [step.key for step in CASES["throttling-valve"].solve().steps]
+    assert steps.index("equipment.X.heat.assumed") < steps.index("equipment.X.energy_balance")
+
+
 def test_a_closed_loop_says_which_balance_checks_the_others() -> None:
     solution = solve(_cycle(CASES["compressor"].plant.fluids["gas"]), {**SURROUNDINGS, **LOOP})
     sentences = [step.sentence for step in solution.steps if step.name == "Check of mass"]
