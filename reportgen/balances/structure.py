@@ -249,8 +249,8 @@ def _solution_order(
 ) -> list[list[str]]:
     """Keys of relations, block by block.
 
-    A relation that an assumption rewrote comes after the assumption. The temperature of an ideal gas waits for the pressure too, so that a state is one step, unless that would make
-    relations simultaneous that are not.
+    A relation that an assumption rewrote comes after the assumption. The temperature of an ideal gas waits for the
+    pressure too, so that a state is one step, unless that would make relations simultaneous that are not.
     """
     needs: dict[str, list[str]] = {}
     waiting: dict[str, str] = {}
