@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
+from reportgen.errors import InputError
 from reportgen.fluids import real_fluid
 from tests.balances.cases import CASES, VALVE, one_piece
 from tests.balances.models import SimpleGas
@@ -141,3 +142,47 @@ def test_temperatures_that_cross_inside_an_evaporator_are_found() -> None:
     )
     (warning,) = case.solve().warnings
     assert "Inside, in counterflow," in warning.message
+
+
+def test_one_fluid_under_two_names_may_mix_but_not_with_another_zero() -> None:
+    givens = {
+        "1.pressure": 2e5,
+        "1.temperature": 300.0,
+        "1.mass_flow": 1.0,
+        "2.pressure": 2e5,
+        "2.temperature": 350.0,
+        "2.mass_flow": 1.0,
+    }
+    ports = {"inlets": ("1", "2"), "outlet": ("3",)}
+    names = {"1": "a", "2": "b", "3": "a"}
+    alike = {"a": real_fluid("water"), "b": real_fluid("water")}
+    values = one_piece("mixer", ports, givens, alike, names).solve().values
+    assert values["states.3.mass_flow"][0] == pytest.approx(2.0)
+    apart = {"a": real_fluid("R134a"), "b": real_fluid("R134a", "NBP")}
+    with pytest.raises(InputError, match="different zeros"):
+        one_piece("mixer", ports, givens, apart, names).solve()
+
+
+def test_a_boundary_without_temperature_among_several_leaves_the_generation_out() -> None:
+    case = one_piece(
+        "control-volume",
+        {"inlets": ("1",), "outlets": ("2",)},
+        {
+            "1.pressure": 2e5,
+            "1.temperature": 300.0,
+            "1.mass_flow": 1.0,
+            "2.pressure": 2e5,
+            "2.temperature": 320.0,
+            "heat_ports.1.heat": 3e4,
+            "heat_ports.2.temperature": 290.0,
+        },
+        options={"heat_ports": [{}, {}]},
+    )
+    solution = case.solve()
+    lost = 3e4 - 1004.5 * 20.0
+    assert solution.values["equipment.X.heat_ports.2.heat"][0] == pytest.approx(-lost, rel=1e-9)
+    assert np.isnan(solution.values["equipment.X.entropy_generation"][0])
+    assert solution.warnings[0].path == "equipment.X.heat_ports.1.temperature"
+    stated = case.solve((), {"equipment.X.heat_ports.1.temperature": 400.0})
+    change = 1004.5 * np.log(320.0 / 300.0)
+    assert stated.values["equipment.X.entropy_generation"][0] == pytest.approx(change - 3e4 / 400.0 + lost / 290.0)
