@@ -3,7 +3,7 @@
     plant = Plant(
         fluids={"steam": fluids.real_fluid("water")},
         states={"1": "steam", "2": "steam"},
-        equipment={"PRV-3": EquipmentDefinition("throttling-valve", {"inlet": ("1",), "outlet": ("2",)})},
+        equipment={"PRV-3": EquipmentDefinition(kind, {"inlet": ("1",), "outlet": ("2",)})},   # kind: a key of kinds()
     )
     solution = solve(plant, {"surroundings.temperature": 288.15, "surroundings.pressure": 1.013e5,
                              "states.1.pressure": 40e5, "states.1.temperature": [673.15, 674.15],
