@@ -134,7 +134,9 @@ class PressureFlash:
         mixed = (from_liquid >= 0) & (from_vapour <= 0)
         cold_side = from_liquid < 0
         if mixed.any():
-            x = from_liquid / (value[n:] - value[:n])
+            span = value[n:] - value[:n]
+            # next to the critical point the phases can be equal to the last digit
+            x = np.where(span > 0, from_liquid / np.where(span > 0, span, 1), 0.0)
             if self._curves.pseudo_pure:
                 x = np.where(np.abs(x) < 1e-12, 0.0, np.where(np.abs(x - 1) < 1e-12, 1.0, x))
                 result.between[where] = mixed & (x > 0) & (x < 1)

@@ -56,11 +56,11 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
 
 def _value(name: str, value: float) -> str:
     unit = PROPERTIES[name]
-    return f"{name} {value:.9g}" + ("" if unit == "1" else f" {unit}")
+    return f"{name.replace('_', ' ')} {value:.9g}" + ("" if unit == "1" else f" {unit}")
 
 
 def _sentence(name: str, value: float) -> str:
-    text = _value(name, value).replace("_", " ", 1)
+    text = _value(name, value)
     return text[0].upper() + text[1:]
 
 

@@ -71,7 +71,7 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
         raise InputError(Fault(f"A state of {title} is fixed by exactly two properties.", found=found))
     values = {}
     for name, value in given.items():
-        array = np.asarray(value, dtype=np.float64)
+        array = np.array(value, dtype=np.float64)  # a copy: a State does not change when its givens do
         if name == "specific_volume":
             with np.errstate(divide="ignore"):
                 array = 1.0 / array

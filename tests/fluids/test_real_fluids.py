@@ -283,6 +283,16 @@ class TestLimits:
         assert WATER.at(pressure=liquid.pressure * (1 + 1e-8), temperature=450.0).phase == "liquid"
         assert WATER.at(pressure=liquid.pressure * (1 - 1e-8), temperature=450.0).phase == "vapour"
 
+    def test_at_the_critical_point_itself(self) -> None:
+        for name in (name for name in NAMES if name != "air"):
+            fluid = real_fluid(name)
+            critical = fluid.limits.critical_point
+            for factor in (1 - 1e-13, 1.0, 1 + 1e-13):
+                state = fluid.at(temperature=critical.temperature, density=critical.density)
+                again = fluid.at(pressure=critical.pressure * factor, specific_entropy=state.specific_entropy)
+                assert again.temperature == pytest.approx(critical.temperature, rel=1e-6)
+                assert again.density == pytest.approx(critical.density, rel=1e-3)
+
     def test_quality_and_distances(self) -> None:
         with pytest.raises(RangeError, match="not between 0 and 1"):
             WATER.at(pressure=1e5, quality=1.2)
@@ -383,6 +393,13 @@ class TestShapesAndMasks:
             state.density = 1.0
         with pytest.raises(ValueError, match="read-only"):
             state.density[0] = 1.0
+
+    def test_changing_what_was_given_does_not_change_the_state(self) -> None:
+        pressure = np.array([1e5, 2e5])
+        state = WATER.at(pressure=pressure, temperature=500.0)
+        pressure[:] = 0.0
+        assert state.pressure.tolist() == [1e5, 2e5]
+        assert (state.specific_entropy > 0).all()
 
     def test_phases_by_name(self) -> None:
         state = WATER.at(pressure=[1e5, 1e5, 30e6, 30e6, 1e5], temperature=[300.0, 500.0, 500.0, 800.0, 1000.0])
