@@ -29,8 +29,9 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
     """Limits from a data file."""
     limits, critical, triple = data["limits"], data["critical_point"], data["triple_point"]
     remarks = []
-    published = limits.get("published_maximum_temperature")
-    if published is not None and published < limits["maximum_temperature"]:
+    published = limits["published_maximum_temperature"]
+    extrapolated = published < limits["maximum_temperature"]
+    if extrapolated:
         remarks.append(
             f"The publication claims validity up to {published:g} K; from there to "
             f"{limits['maximum_temperature']:g} K the equation is extrapolated."
@@ -50,6 +51,7 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
         maximum_pressure=float(limits["maximum_pressure"]),
         triple_point=Point(triple["temperature"], triple["pressure"]),
         critical_point=Point(critical["temperature"], critical["pressure"], critical["density"]),
+        published_maximum_temperature=float(published) if extrapolated else None,
         remarks=tuple(remarks),
     )
 

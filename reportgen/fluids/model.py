@@ -33,8 +33,9 @@ class Limits:
     """Range in which a model may be used.
 
     ``minimum_temperature``, ``maximum_temperature`` [K]; ``maximum_pressure`` [Pa], infinite where the model sets none.
-    ``triple_point`` and ``critical_point`` are None for models without them. ``remarks`` are sentences for the reader:
-    what bounds the range, and what is not checked.
+    ``triple_point`` and ``critical_point`` are None for models without them. ``published_maximum_temperature`` [K] is
+    what the publication claims, where the model goes further by extrapolation; else None. ``remarks`` are sentences
+    for the reader: what bounds the range, and what is not checked.
     """
 
     minimum_temperature: float
@@ -42,6 +43,7 @@ class Limits:
     maximum_pressure: float
     triple_point: Point | None = None
     critical_point: Point | None = None
+    published_maximum_temperature: float | None = None
     remarks: tuple[str, ...] = ()
 
 

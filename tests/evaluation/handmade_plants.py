@@ -33,6 +33,7 @@ def fluid(
     substance: str = "Water",
     *,
     limits: tuple[float, float, float] = (273.16, 2000.0, 1e9),
+    published_maximum: float | None = None,
     critical: tuple[float, float] | None = (647.096, 22.064e6),
     saturation_temperature: float = 373.0,
 ) -> SimpleNamespace:
@@ -45,6 +46,7 @@ def fluid(
             minimum_temperature=limits[0],
             maximum_temperature=limits[1],
             maximum_pressure=limits[2],
+            published_maximum_temperature=published_maximum,
             critical_point=None if critical is None else SimpleNamespace(temperature=critical[0], pressure=critical[1]),
         ),
         saturation=lambda pressure, errors: (

@@ -239,6 +239,13 @@ def test_t31_a_model_without_a_pressure_limit() -> None:
     assert summary("T31", plant(state(300.0, 1e12, "gas"), fluids=unlimited)) == []
 
 
+@pytest.mark.parametrize(("temperature", "count"), [(1273.1, 1), (1272.9, 0)])
+def test_t31_beyond_what_the_publication_claims(temperature: float, count: int) -> None:
+    extrapolated = {"f": fluid(published_maximum=1273.0)}
+    found = summary("T31", plant(state(temperature, 1e5), fluids=extrapolated))
+    assert found == [("stop", "states.1.temperature", True)] * count
+
+
 # T32: temperature limits of the equipment
 
 

@@ -105,15 +105,16 @@ def near_the_critical_point(plant: EvaluatedPlant, limit: float) -> Iterator[Fin
 def outside_the_model(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
     """State outside the temperature or pressure range of its property model, or within its uncertainty of the edge.
 
-    Models refuse most states outside their range outright (the calculation then stops with an error); this caution
-    is for the rest, and for readings whose uncertainty reaches across the edge.
+    Models refuse states outside their range outright (the calculation then stops with an error); this caution is for
+    states beyond what the publication claims, where the equation is extrapolated, and for readings whose uncertainty
+    reaches across an edge.
     """
     for state in plant.state_fluids:
         fluid = plant.fluid_of(state)
         limits = fluid.limits
         edges = (
             ("temperature", limits.minimum_temperature, "above", "minimum"),
-            ("temperature", limits.maximum_temperature, "below", "maximum"),
+            ("temperature", limits.published_maximum_temperature or limits.maximum_temperature, "below", "maximum"),
             ("pressure", limits.maximum_pressure, "below", "maximum"),
         )
         for name, edge, keep, word in edges:
