@@ -28,8 +28,9 @@ def _safety(presenter: Presenter) -> dict[str, Any]:
 
 
 def _figures(presenter: Presenter) -> dict[str, Any] | None:
+    """Bars first: they go with the account above and are low, so that a tall diagram leaves no gap on the sheet."""
     drawn = []
-    for figure in presenter.record.data["figures"]:
+    for figure in sorted(presenter.record.data["figures"], key=lambda figure: figure["kind"] == "temperature-entropy"):
         svg = figures.draw(figure, presenter, fonts_folder())
         if svg is not None:
             drawn.append(

@@ -19,6 +19,7 @@ from reportgen.quantities import Display, Shown
 from reportgen.record import Record
 from reportgen.report.formulae import mathml
 from reportgen.report.links import Links
+from reportgen.report.passages import Part, arrange
 
 __all__ = ["NO_VALUE", "Presenter", "in_order", "natural", "significant"]
 
@@ -60,6 +61,11 @@ class Presenter:
     def content_hash(self) -> str:
         """SHA-256 of the canonical record, in hexadecimal: of the bytes of the ``record.json`` beside the page."""
         return hashlib.sha256(self.record.to_json()).hexdigest()
+
+    @cached_property
+    def parts(self) -> list[Part]:
+        """The working in the order in which it is told."""
+        return arrange(self.record.data)
 
     @property
     def coverage(self) -> str:
@@ -185,12 +191,15 @@ class Presenter:
             return str(trains.get(name, {}).get("title") or name)
         return {"total": "total", "surroundings": "surroundings"}.get(parts[0], name)
 
-    @staticmethod
-    def meaning(path: str) -> str:
-        """What a value is, without its owner: the glossary's words up to where they begin to explain."""
+    def meaning(self, path: str) -> str:
+        """What a value is, without its owner: the glossary's words up to where they begin to explain.
+
+        A power says which way it is positive.
+        """
         entry = name_of(path)
         text = entry.text if entry else path.rsplit(".", 1)[-1].replace("_", " ").capitalize()
-        return _QUALIFIED.split(text, maxsplit=1)[0]
+        direction = self.record.values.get(path, {}).get("direction")
+        return " ".join(filter(None, (_QUALIFIED.split(text, maxsplit=1)[0], direction)))
 
     def label(self, path: str) -> str:
         """A value in words: ``Entropy generation rate, PRV-3``."""

@@ -128,7 +128,13 @@ def test_every_headline_number_leads_to_its_step(html: str) -> None:
 
 
 def test_inputs_say_as_written_source_place_and_where_they_are_used(outline: Outline) -> None:
-    for text in ("39.0 bar(g) ± 0.3 bar", "PT-301, calibration certificate 2026-0117", "calculation.toml:22", "9.1"):
+    for text in (
+        "39.0 bar(g) ± 0.3 bar",
+        "PT-301, calibration certificate 2026-0117",
+        "path and line in calculation.toml",
+        "line 22",
+        "9.1",
+    ):
         assert text in outline.text
 
 
@@ -239,7 +245,7 @@ def test_a_budget_shows_contributions_shares_and_what_first_order_leaves_out(out
         "coverage probability 95.5 %",
     ):
         assert part in text
-    assert "Largest term that first order leaves out" in text
+    assert "largest term that first order leaves out" in text
 
 
 def test_the_terminal_shows_the_same_numbers(capsys: pytest.CaptureFixture[str]) -> None:

@@ -16,8 +16,8 @@ if TYPE_CHECKING:
 
 __all__ = ["draw"]
 
-_HEIGHT = 262.0
-_HEIGHT_ABOVE_DETAIL = 204.0
+_HEIGHT = 236.0
+_HEIGHT_ABOVE_DETAIL = 170.0
 _MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured

@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
+from collections import defaultdict
 from itertools import zip_longest
 from typing import Any
 
 from markupsafe import Markup
 
+from reportgen.report.formulae import pieces
+from reportgen.report.links import anchor
+from reportgen.report.passages import residuals
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order, significant
+from reportgen.report.sections.working import step_anchors
 
 __all__ = ["accounts", "closure"]
 
@@ -101,17 +106,56 @@ def _audit(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     }
 
 
+#: (dimension, quantity that says what is left) of the balances that are closed.
+_BALANCES = {
+    "mass": ("mass_flow", "mass_imbalance"),
+    "energy": ("power", "energy_imbalance"),
+    "entropy": ("entropy_flow", "closure"),
+}
+
+
 def closure(presenter: Presenter) -> dict[str, Any] | None:
-    """What is left of the balances, against their size."""
-    dimensions = {"mass": "mass_flow", "energy": "power", "entropy": "entropy_flow"}
-    rows = [
-        {
-            "owner": presenter.owner_title(entry["owner"]),
-            "quantity": entry["quantity"],
-            "value": presenter.with_unit(significant(entry["value"], 2), dimensions[entry["quantity"]]),
-            "scale": presenter.with_unit(significant(entry["scale"], 4), dimensions[entry["quantity"]]),
-            "relative": presenter.show(significant(entry["relative"], 2), "ratio").number,
-        }
-        for entry in presenter.record.data["audits"].get("closure", [])
-    ]
-    return {"rows": rows} if rows else None
+    """What each balance leaves, its equation in symbols, and its size; one group an owner."""
+    data = presenter.record.data
+    rest = {path: key for key in residuals(data) for path in data["relations"][key]["solves"]}
+    groups: dict[str, list[dict[str, Any]]] = defaultdict(list)
+    for entry in data["audits"].get("closure", []):
+        dimension, name = _BALANCES[entry["quantity"]]
+        path = f"{entry['owner']}.{name}"
+        groups[entry["owner"]].append(
+            {
+                "quantity": entry["quantity"],
+                **_residual(path, rest.pop(path, None), presenter),
+                "step": _entropy_step(entry, presenter),
+                "value": presenter.with_unit(significant(entry["value"], 2), dimension),
+                "scale": presenter.with_unit(significant(entry["scale"], 4), dimension),
+                "relative": presenter.show(significant(entry["relative"], 2), "ratio").number,
+            }
+        )
+    for path, key in rest.items():  # balances that the record closes without an audit
+        owner = data["relations"][key]["owner"]
+        number = {"value": presenter.text(path), "scale": NO_VALUE, "relative": NO_VALUE, "step": None}
+        groups[owner].append({"quantity": presenter.meaning(path), **_residual(path, key, presenter), **number})
+    rows = [(presenter.owner_title(owner), entries) for owner, entries in groups.items()]
+    return {"groups": rows} if rows else None
+
+
+def _residual(path: str, key: str | None, presenter: Presenter) -> dict[str, Any]:
+    """Anchor and equation of what is left of a balance; both empty where the record has no relation for it."""
+    if key is None:
+        return {"anchor": None, "equation": []}
+    relation = presenter.record.data["relations"][key]
+    symbol = presenter.record.values.get(path, {}).get("symbol")
+    line = next((line for line in relation["latex_lines"] if line[0] == symbol), None)
+    known = path in presenter.record.values and path not in presenter.record.inputs
+    return {
+        "anchor": anchor("value", path) if known else None,
+        "equation": [Markup(piece) for piece in pieces(line[1])] if line and len(line) > 1 else [],
+    }
+
+
+def _entropy_step(entry: dict[str, Any], presenter: Presenter) -> tuple[int, str] | None:
+    """The step whose entropy balance the closure of a piece puts to the test."""
+    path = f"{entry['owner']}.entropy_generation"
+    value = presenter.record.values.get(path)
+    return step_anchors(presenter).get(value["relation"]) if value and entry["quantity"] == "entropy" else None

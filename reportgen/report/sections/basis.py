@@ -8,6 +8,7 @@ from typing import Any
 from reportgen.report.links import anchor
 from reportgen.report.narrative import render_narrative
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural, significant
+from reportgen.report.sections.working import step_anchors
 
 __all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
 
@@ -20,6 +21,8 @@ _LIMITS = (
     ("maximum_temperature", "to", "temperature"),
     ("maximum_pressure", "up to", "pressure"),
 )
+#: Status of an input that the program took because the file states nothing.
+_TAKEN = "by default"
 #: Steps named in the table of inputs; the temperature of the surroundings is used almost everywhere.
 _STEPS_SHOWN = 6
 
@@ -57,11 +60,12 @@ def boundary(presenter: Presenter) -> dict[str, Any] | None:
 
 def _piece(tag: str, piece: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     crossing = []
-    for name, word in (("heat", "heat"), ("power", "power")):
+    for name in ("heat", "power"):
         path = f"equipment.{tag}.{name}"
         value = presenter.record.value(path)
         if isinstance(value, float) and value != 0.0:
-            crossing.append((word, presenter.number(path)))
+            direction = presenter.record.values[path].get("direction")
+            crossing.append((" ".join(filter(None, (name, direction))), presenter.number(path)))
     ports = {"in": [], "out": []}  # type: dict[str, list[dict[str, str]]]
     for port in piece["ports"]:
         ports[port["direction"]].append(
@@ -79,17 +83,20 @@ def _piece(tag: str, piece: dict[str, Any], presenter: Presenter) -> dict[str, A
 
 
 def inputs(presenter: Presenter) -> dict[str, Any] | None:
-    """Every input as written, in SI display units, with uncertainty, origin and place in the file."""
+    """Every input as written, in display units, with uncertainty, origin and place in the file; then the defaults."""
     record = presenter.record
     used: dict[str, list[str]] = defaultdict(list)
-    for key in record.data["solution_order"]:
+    for key in step_anchors(presenter):
         for path in record.data["relations"][key]["uses"]:
             used[path].append(key)
-    rows = []
+    files = {entry["file"] for entry in record.inputs.values()}
+    stated: list[dict[str, Any]] = []
+    taken: list[dict[str, Any]] = []
     for path, entry in sorted(record.inputs.items(), key=_place_in_file):
         others = [other for other in entry["applies_to"] if other != path]
         steps = list(dict.fromkeys(key for target in {path: None, **dict.fromkeys(others)} for key in used[target]))
-        rows.append(
+        group = taken if entry["status"] == _TAKEN else stated
+        group.append(
             {
                 "anchor": anchor("value", path),
                 "label": presenter.label(path),
@@ -102,15 +109,22 @@ def inputs(presenter: Presenter) -> dict[str, Any] | None:
                 ),
                 "distribution": _distribution(entry),
                 "source": entry["source"],
-                "supplied_by": entry["supplied_by"],
-                "status": entry["status"],
+                "supplied_by": entry["supplied_by"] if group is stated else None,
+                "status": entry["status"] if group is stated else None,
                 "others": [presenter.label(other) for other in others],
-                "place": f"{entry['file']}:{entry['line']}",
+                "place": f"line {entry['line']}" if len(files) == 1 else f"{entry['file']}:{entry['line']}",
                 "steps": steps[:_STEPS_SHOWN],
                 "more_steps": len(steps[_STEPS_SHOWN:]),
             }
         )
-    return {"rows": rows, "uncertain": any(row["uncertainty"] for row in rows)} if rows else None
+    if not stated and not taken:
+        return None
+    return {
+        "stated": stated,
+        "taken": taken,
+        "file": next(iter(files)) if len(files) == 1 else None,
+        "uncertain": any(row["uncertainty"] for row in stated + taken),
+    }
 
 
 def _place_in_file(item: tuple[str, dict[str, Any]]) -> tuple[str, int, list[tuple[int, int, str]]]:

@@ -8,34 +8,68 @@ from reportgen.report.presenter import NO_VALUE, Presenter, significant
 
 __all__ = ["uncertainty_budget"]
 
+_AMBIENT = "surroundings.temperature"
+#: Part of the variance below which several inputs share one row.
+_SMALL = 1e-3
+#: Relative difference of contributions that agree but for rounding.
+_ROUNDING = 1e-6
+
 
 def uncertainty_budget(presenter: Presenter) -> dict[str, Any] | None:
     """One budget a result, headline results first: contributions, the combined uncertainty, what is left out."""
     budgets = presenter.record.data["uncertainty_budget"]
     order = [path for path in presenter.record.data["summary"] if path in budgets]
     paths = [*order, *sorted(set(budgets) - set(order))]
-    found = [_budget(path, budgets[path], presenter) for path in paths]
-    return {"budgets": found} if found else None
+    found = [_budget(path, budgets, presenter) for path in paths]
+    if not found:
+        return None
+    usual = {(budget["effective_degrees_of_freedom"], budget["coverage_probability"]) for budget in budgets.values()}
+    return {"budgets": found, "common": _coverage(*usual.pop()) if len(usual) == 1 else None}
 
 
-def _budget(path: str, budget: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+def _budget(path: str, budgets: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+    budget = budgets[path]
     entry = presenter.record.values[path]
     dimension = presenter.difference_dimension(entry["dimension"])
-    freedom, probability = budget["effective_degrees_of_freedom"], budget["coverage_probability"]
     left_out = max(
         (abs(row["curvature"]) for row in budget["contributions"] if row["curvature"] is not None), default=0.0
     )
+    small = [row for row in budget["contributions"] if row["share"] is not None and abs(row["share"]) < _SMALL]
+    if len(small) == 1:
+        small = []  # its name takes no more room than a count
+    large = [row for row in budget["contributions"] if row not in small]
+    repeated = _is_repeated(path, budgets, presenter)
     return {
         "label": presenter.label(path),
         "number": presenter.number(path, uncertainty=True),
         "unit": presenter.display.unit_text(dimension),
-        "rows": [_row(row, dimension, presenter) for row in budget["contributions"]],
+        "times": presenter.symbol_link(_AMBIENT) if repeated else None,
+        "rows": [] if repeated else [_row(row, dimension, presenter) for row in large],
+        "further": len(small),
+        "further_share": f"{100.0 * sum(row['share'] for row in small):.2g}".replace("-", "−"),
         "combined": presenter.show(significant(budget["standard_uncertainty"], 3), dimension).number,
         "expanded": presenter.difference(budget["expanded_uncertainty"], dimension, budget["expanded_uncertainty"]),
-        "freedom": "infinite" if freedom is None else f"{freedom:.3g}",
-        "probability": None if probability is None else f"{100.0 * probability:.3g}\N{NO-BREAK SPACE}%",
+        "coverage": _coverage(budget["effective_degrees_of_freedom"], budget["coverage_probability"]),
         "left_out": presenter.difference(left_out, dimension, left_out) if left_out else None,
     }
+
+
+def _coverage(freedom: float | None, probability: float | None) -> str:
+    text = f"effective degrees of freedom {'infinite' if freedom is None else f'{freedom:.3g}'}"
+    return text if probability is None else f"{text}, coverage probability {100.0 * probability:.3g}\N{NO-BREAK SPACE}%"
+
+
+def _is_repeated(path: str, budgets: dict[str, Any], presenter: Presenter) -> bool:
+    """Whether a lost work has the budget of the entropy generation, times a certain temperature of the surroundings."""
+    owner, _, name = path.rpartition(".")
+    source = budgets.get(f"{owner}.entropy_generation")
+    ambient = presenter.record.entry(_AMBIENT)
+    if name != "lost_work" or source is None or ambient is None or ambient["standard_uncertainty"]:
+        return False
+    scaled = {row["input"]: ambient["value"] * row["contribution"] for row in source["contributions"]}
+    found = {row["input"]: row["contribution"] for row in budgets[path]["contributions"]}
+    room = _ROUNDING * budgets[path]["standard_uncertainty"]
+    return all(abs(scaled.get(key, 0.0) - found.get(key, 0.0)) <= room for key in {*scaled, *found})
 
 
 def _row(row: dict[str, Any], dimension: str, presenter: Presenter) -> dict[str, Any]:

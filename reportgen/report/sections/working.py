@@ -1,16 +1,18 @@
-"""States, and the working step by step in the order of the solution."""
+"""States, and the working step by step."""
 
 from __future__ import annotations
 
+import re
 from collections import defaultdict
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from typing import Any
 
-from markupsafe import Markup
+from markupsafe import Markup, escape
 
 from reportgen.names import NAMES
 from reportgen.report.formulae import estimated_total, estimated_width, pieces
 from reportgen.report.links import anchor
+from reportgen.report.passages import Passage
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order
 
 __all__ = ["states", "step_anchors", "working"]
@@ -26,9 +28,10 @@ _STATE_COLUMNS = (
 )
 #: Characters of one piece of an equation that still fit beside the margin of a narrow screen.
 _NARROW = 30
-_GROUPS = {"trains": "Trains", "total": "The whole"}
-#: Characters of a whole equation that stay on one line.
-_SHORT = 62
+#: Characters of a right side that takes more than a line anyway: the result then follows on its last line.
+_LONG = 68
+#: Steps of a passage that one sheet of paper holds together.
+_TOGETHER = 2
 
 
 def states(presenter: Presenter) -> dict[str, Any] | None:
@@ -71,41 +74,75 @@ def states(presenter: Presenter) -> dict[str, Any] | None:
     }
 
 
-def _order(presenter: Presenter) -> list[str]:
-    """Keys of all relations: in solution order, then any that the order leaves out."""
-    relations = presenter.record.data["relations"]
-    return list(dict.fromkeys([*presenter.record.data["solution_order"], *sorted(relations)]))
-
-
 def step_anchors(presenter: Presenter) -> dict[str, tuple[int, str]]:
-    """Number and anchor of the step of each relation."""
-    return {key: (index, f"step-{index}") for index, key in enumerate(_order(presenter), start=1)}
+    """Number and anchor of the step of each relation that the working shows."""
+    keys = [key for part in presenter.parts for passage in part.passages for key in passage.keys]
+    return {key: (index, f"step-{index}") for index, key in enumerate(keys, start=1)}
 
 
 def working(presenter: Presenter) -> dict[str, Any] | None:
-    """Steps in solution order: sentence, equation in symbols, numbers and result, basis, and what it used."""
+    """Parts, passages and steps: sentence, equations in symbols, numbers and result, basis, and what was used."""
+    steps = step_anchors(presenter)
+    results = _results(presenter)
+    parts = [
+        {
+            "title": part.title,
+            "passages": [_passage(passage, steps, results, presenter) for passage in part.passages],
+        }
+        for part in presenter.parts
+    ]
+    return {"parts": parts} if parts else None
+
+
+def _results(presenter: Presenter) -> dict[str, list[str]]:
+    """Values that each relation gives: those it solves, then all others that name it."""
     relations = presenter.record.data["relations"]
+    values = presenter.record.values
     results: dict[str, list[str]] = defaultdict(list)
     for key, relation in relations.items():
-        results[key] = [path for path in relation["solves"] if path in presenter.record.values]
-    for path, entry in presenter.record.values.items():
+        results[key] = [path for path in relation["solves"] if path in values]
+    for path, entry in values.items():
         if entry["relation"] in relations and path not in results[entry["relation"]]:
             results[entry["relation"]].append(path)
-    steps = [
-        _step(number, name, relations[key], results[key], presenter)
-        for key, (number, name) in step_anchors(presenter).items()
-    ]
-    return {"groups": _grouped(steps)} if steps else None
+    return results
 
 
-def _grouped(steps: list[dict[str, Any]]) -> list[dict[str, Any]]:
-    """Runs of steps under one heading; pieces with their states, each train, the whole. The order stays."""
-    groups: list[dict[str, Any]] = []
-    for step in steps:
-        if not groups or groups[-1]["title"] != step["group"]:
-            groups.append({"title": step["group"], "steps": []})
-        groups[-1]["steps"].append(step)
-    return groups
+def _passage(
+    passage: Passage,
+    steps: Mapping[str, tuple[int, str]],
+    results: Mapping[str, list[str]],
+    presenter: Presenter,
+) -> dict[str, Any]:
+    """One sentence and its steps. A basis stands once; in a run it stands once for all, as does what was used."""
+    relations = presenter.record.data["relations"]
+    shown = []
+    before = None
+    for key in passage.keys:
+        step = _step(*steps[key], relations[key], results[key], presenter)
+        basis = step["basis"]
+        step["basis"] = None if basis == before else basis
+        before = basis
+        shown.append(step)
+    used = [path for key in passage.keys for path in relations[key]["uses"]]
+    own = {path for key in passage.keys for path in relations[key]["solves"]}
+    return {
+        "sentence": _unbroken_tags(passage.sentence, presenter),
+        "steps": shown,
+        "together": len(shown) <= _TOGETHER or passage.run,
+        "run": passage.run and len(shown) > 1,
+        "basis": "; ".join(dict.fromkeys(step["basis"] for step in shown if step["basis"])),
+        "uses": _uses((path for path in used if path not in own), presenter) if passage.run else [],
+    }
+
+
+def _unbroken_tags(sentence: str, presenter: Presenter) -> Markup:
+    """A sentence in which no line ends within a tag such as ``TG-2``."""
+    tags = sorted((tag for tag in presenter.record.data["plant"]["equipment"] if "-" in tag), key=len, reverse=True)
+    text = escape(sentence)
+    if not tags:
+        return text
+    pattern = "|".join(re.escape(str(escape(tag))) for tag in tags)
+    return Markup(re.sub(pattern, lambda found: f'<span class="unbroken">{found[0]}</span>', str(text)))
 
 
 def _step(number: int, name: str, relation: dict[str, Any], results: list[str], presenter: Presenter) -> dict[str, Any]:
@@ -116,14 +153,14 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
         path = next((path for path in results if values[path].get("symbol") == line[0]), None)
         if path is not None:
             shown.add(path)
-        lines.append(_line(line, path))
+        # A value taken by default stands among the inputs: there its links lead.
+        lines.append(_line(line, None if path in presenter.record.inputs else path))
     others = [path for path in results if path not in shown and values[path]["value"] is not None]
+    assumed = any(path.startswith("assumptions.") for path in relation["uses"])
     return {
         "number": number,
-        "group": _GROUPS.get(relation["owner"].split(".")[0], "States and pieces"),
         "anchor": name,
-        "sentence": relation["sentence"],
-        "basis": relation["basis"],
+        "basis": "by assumption" if assumed and relation["basis"].startswith("assumption: ") else relation["basis"],
         "lines": lines,
         "others": [
             (anchor("value", path), presenter.symbol(path), presenter.text(path), presenter.plus_minus(path))
@@ -139,11 +176,13 @@ def _line(line: list[str], path: str | None) -> dict[str, Any]:
     if len(rights) > 1 and rights[0].strip() == "0":
         rights = rights[1:]
     distinct = [right for index, right in enumerate(rights) if right and right not in rights[:index]]
+    shown = [[Markup(piece) for piece in pieces(right, "=")] for right in distinct]
+    if len(shown) > 1 and estimated_total(distinct[-2]) > _LONG:
+        shown[-2:] = [[*shown[-2], *shown[-1]]]
     return {
         "anchor": anchor("value", path) if path else None,
         "left": Markup(pieces(left)[0]) if left else "",
-        "rights": [[Markup(piece) for piece in pieces(right, "=")] for right in distinct],
-        "short": estimated_total(left) + sum(estimated_total(right) + 2 for right in distinct) <= _SHORT,
+        "rights": shown,
         "wide": max((estimated_width(right) for right in distinct), default=0) > _NARROW,
     }
 
@@ -155,7 +194,9 @@ def _uses(paths: Iterable[str], presenter: Presenter) -> list[Markup]:
         if path.startswith("fluids."):
             found.append(presenter.link(path, path.removeprefix("fluids.")))
         elif path.startswith("assumptions."):
-            found.append(presenter.link(path, "assumption"))
+            family, _, name = path.removeprefix("assumptions.").partition(".")
+            piece = name.partition(".")[0] if family == "equipment" else ""
+            found.append(presenter.link(path, f"assumption on {piece}" if piece else "assumption"))
         else:
             found.append(presenter.symbol_link(path))
     return found
