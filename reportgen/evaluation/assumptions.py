@@ -15,6 +15,7 @@ import numpy as np
 
 from reportgen.evaluation.decisions import NEGLIGIBLE_PART_OF_UNCERTAINTY
 from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.models import fluid_name
 from reportgen.evaluation.trials import Trial, untested
 
 if TYPE_CHECKING:
@@ -112,7 +113,8 @@ def fluid_assumptions(
             continue
         model = trial.plant.fluids[identifier]
         counterpart = real_counterpart(model)
-        text = f"{model.title} ({identifier}) is an ideal gas."
+        name = fluid_name(identifier, model.title)
+        text = f"Fluid {name} is an ideal gas."
         if counterpart is None:
             test = None
             basis = "property model chosen in the file; no real fluid of this composition is carried to test it"
@@ -125,9 +127,7 @@ def fluid_assumptions(
             AutomaticAssumption(f"fluids.{identifier}.ideal-gas", text, basis, (f"fluids.{identifier}",), test)
         )
         if specification.heat_capacity is not None:
-            text = (
-                f"{model.title} ({identifier}) has the constant heat capacity {specification.heat_capacity:g} J/(kg K)."
-            )
+            text = f"Fluid {name} has the constant heat capacity {specification.heat_capacity:g} J/(kg K)."
             other = with_variable_heat_capacity(specification)
             test = _model_test(trial, identifier, other, "With the heat capacity as a function of temperature")
             found.append(

@@ -14,6 +14,7 @@ import numpy as np
 import numpy.typing as npt
 
 from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.models import fluid_name
 
 if TYPE_CHECKING:
     from reportgen.balances import Solution
@@ -31,6 +32,10 @@ PATH_SAMPLES = 60
 CLOSEST_TO_CRITICAL = 1e-5
 #: Pressures closer than this part of each other share one isobar.
 SAME_PRESSURE = 1e-3
+_LINES = (
+    "Temperature against specific entropy: thin lines are isobars through the states, thick lines the states passed "
+    "on the way."
+)
 #: Room left and right of the states for isobars, as a part of the entropy span of the states.
 MARGIN = 0.35
 
@@ -61,16 +66,16 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             if curve.fluid == identifier
         ]
         dome = saturation_dome(fluid)
-        parts = ["Temperature against specific entropy", f"entropy zero: {fluid.entropy_zero.rstrip('.')}"]
-        parts += ["the dome is the saturation line, closed at the critical point"] if dome else []
-        parts += ["thin lines are isobars through the states, thick lines the states passed on the way"]
+        parts = [_LINES]
+        parts += ["The dome is the saturation line, closed at the critical point."] if dome else []
+        parts += [_zero(fluid.entropy_zero)]
         figures.append(
             {
                 "id": f"temperature-entropy-{identifier}",
                 "kind": "temperature-entropy",
                 "fluid": identifier,
-                "title": f"Temperature and entropy of {fluid.title}",
-                "caption": "; ".join(parts) + ".",
+                "title": f"Temperature and entropy of {fluid_name(identifier, fluid.title)}",
+                "caption": " ".join(parts),
                 "dome": dome,
                 "isobars": [{"pressure": float(pressure), **isobar(fluid, pressure, *span)} for pressure in pressures],
                 "paths": paths,
@@ -78,6 +83,12 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             }
         )
     return figures
+
+
+def _zero(text: str) -> str:
+    """Where the entropy of a model is zero, as a sentence."""
+    entropy = text.partition(" Enthalpy: ")[0].rstrip(".")
+    return f"{entropy}." if entropy.startswith("Entropy") else f"Entropy zero: {entropy}."
 
 
 def bar_figures(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import copy
 from collections.abc import Mapping
 from dataclasses import replace
 from typing import TYPE_CHECKING, Any
@@ -13,7 +14,7 @@ from reportgen.evaluation.cautions.fluid_states import freezing_hint
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Calculation, FluidSpec
 
-__all__ = ["located", "placed", "plant_of", "property_model", "property_models", "real_counterpart"]
+__all__ = ["fluid_name", "located", "placed", "plant_of", "property_model", "property_models", "real_counterpart"]
 
 
 def property_model(specification: FluidSpec, heat_capacity: float | None = None) -> Any:
@@ -35,13 +36,27 @@ def property_models(calculation: Calculation) -> dict[str, Any]:
     models, faults = {}, []
     for identifier, specification in calculation.fluids.items():
         try:
-            models[identifier] = property_model(specification, specification.heat_capacity)
+            models[identifier] = _titled(identifier, property_model(specification, specification.heat_capacity))
         except ReportgenError as error:
             path = f"fluids.{identifier}"
             faults += [located(calculation, replace(fault, path=fault.path or path)) for fault in error.faults]
     if faults:
         raise InputError(faults)
     return models
+
+
+def _titled(identifier: str, model: Any) -> Any:
+    """The model; a mixture without a name of its own goes by the name that the file gives it."""
+    if model.substance is not None or len(model.composition or {}) < 2:
+        return model
+    named = copy.copy(model)
+    named.title = f"{identifier} (gas mixture)"
+    return named
+
+
+def fluid_name(identifier: str, title: str) -> str:
+    """A fluid by its id in the file and what it is: ``steam (Water)``; once where the two are the same."""
+    return title if title.casefold().startswith(identifier.casefold()) else f"{identifier} ({title})"
 
 
 def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Plant:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -30,7 +30,7 @@ def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[st
 
     The ``from`` chains end in inputs and in fluids (``fluids.<id>``). A value that is an input itself, written in the
     file or taken by default, has an empty ``from``, or, as a gauge reading, the atmosphere. Which assumptions a value
-    rests on is told by the ``uses`` of its relation.
+    rests on is told by the ``uses`` of its relation. ``direction`` says which way a power is positive.
     """
     origins, relations = _origins(solution.steps, inputs)
     numbers = [path for path, array in solution.values.items() if array.dtype.kind == "f"]
@@ -58,12 +58,21 @@ def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[st
                 "dimension": "ratio" if name is None else name.dimension,
                 "standard_uncertainty": deviation if known else None,
             }
+            if path.endswith(".power"):
+                entry["direction"] = _direction(path, entry["from"], plant)
             if np.isnan(value):
                 entry["reason"] = solution.reasons.get(path, "the property has no meaning in this state")
         else:
             entry |= {"value": str(array.flat[0]), "unit": "", "dimension": None, "standard_uncertainty": None}
         section[path] = entry
     return section
+
+
+def _direction(path: str, origins: Iterable[str], plant: EvaluatedPlant) -> str:
+    """``absorbed`` or ``delivered``: which way a power is positive. A sum is absorbed where all its machines absorb."""
+    powers = [path] if path.startswith("equipment.") else [source for source in origins if source.endswith(".power")]
+    signs = [plant.power_signs.get(power.split(".", 1)[1].rpartition(".")[0], 0) for power in powers]
+    return "absorbed" if all(sign > 0 for sign in signs) else "delivered"
 
 
 def relations_section(plant: EvaluatedPlant, solution: Solution, display: Display) -> dict[str, Any]:
