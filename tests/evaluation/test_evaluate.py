@@ -5,6 +5,7 @@ from __future__ import annotations
 import json
 import math
 import os
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -450,3 +451,27 @@ def test_bars_repeat_the_values() -> None:
     assert {bar["label"]: bar["value"] for bar in bars} == {
         tag: record.value(f"equipment.{tag}.lost_work") for tag in ("C-210A", "E-210", "C-210B", "E-211")
     }
+
+
+def test_a_mixture_goes_by_the_name_the_file_gives_it() -> None:
+    record = project("instrument-air")
+    told = json.dumps([record.data[name] for name in ("figures", "assumptions", "relations", "plant")])
+    assert "Gas mixture (" not in told
+    assert record.data["plant"]["fluids"]["air"]["title"] == "air (gas mixture)"
+    titles = [figure["title"] for figure in record.data["figures"] if figure["kind"] == "temperature-entropy"]
+    assert titles == ["Temperature and entropy of air (gas mixture)", "Temperature and entropy of Water"]
+    assert any(entry["text"] == "Fluid air (gas mixture) is an ideal gas." for entry in record.data["assumptions"])
+
+
+@pytest.mark.parametrize("name", ["letdown-station", "instrument-air"])
+def test_captions_are_whole_sentences(name: str) -> None:
+    for figure in project(name).data["figures"]:
+        assert figure["caption"].endswith(".")
+        assert not re.search(r"[.;:]\s*[.;:]|: [^.]*: ", figure["caption"]), figure["caption"]
+
+
+def test_a_power_says_which_way_it_is_positive() -> None:
+    air, steam = project("instrument-air").values, project("letdown-station").values
+    assert air["equipment.C-210A.power"]["direction"] == air["total.power"]["direction"] == "absorbed"
+    assert steam["equipment.TG-2.power"]["direction"] == steam["trains.turbine.power"]["direction"] == "delivered"
+    assert not any("direction" in entry for path, entry in air.items() if not path.endswith(".power"))

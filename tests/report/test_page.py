@@ -248,6 +248,67 @@ def test_a_budget_shows_contributions_shares_and_what_first_order_leaves_out(out
     assert "largest term that first order leaves out" in text
 
 
+def budget_section(data: dict[str, Any]) -> str:
+    text = Outline(page(Record(data))).text.replace("\xa0", " ")
+    return text[text.index("Result and inputs") : text.index("The record holds every contribution")]
+
+
+def test_small_contributions_share_a_row_and_a_single_one_keeps_its_name() -> None:
+    data = invented_data()
+    path = "equipment.TG-2.entropy_generation"
+    (first, *_) = data["uncertainty_budget"].values()
+    budget = data["uncertainty_budget"][path] = json.loads(json.dumps(first))
+    small = {**budget["contributions"][-1], "share": 4e-4}
+    budget["contributions"] += [small, {**small, "input": "states.2.pressure", "share": -1e-4}]
+    text = budget_section(data)
+    assert "2 further inputs, together 0.03 %" in text
+    budget["contributions"].pop()
+    assert "further inputs" not in budget_section(data)
+
+
+def repeated_budget(data: dict[str, Any]) -> dict[str, Any]:
+    """Makes the budget of a lost work T0 times that of its entropy generation."""
+    source = data["uncertainty_budget"]["equipment.PRV-3.entropy_generation"]
+    found = data["uncertainty_budget"]["equipment.PRV-3.lost_work"] = json.loads(json.dumps(source))
+    found["standard_uncertainty"] *= 288.15
+    for row in found["contributions"]:
+        row["contribution"] *= 288.15
+    return found  # type: ignore[no-any-return]
+
+
+def test_a_lost_work_with_the_budget_of_its_entropy_generation_takes_one_line() -> None:
+    data = invented_data()
+    found = repeated_budget(data)
+    line = "that of the entropy generated, times T0, which has no uncertainty"
+    assert line in budget_section(data)
+    found["contributions"][0]["contribution"] *= 1.001
+    assert line not in budget_section(data)
+    repeated_budget(data)
+    data["inputs"]["surroundings.temperature"]["standard_uncertainty"] = 0.5
+    data["values"]["surroundings.temperature"]["standard_uncertainty"] = 0.5
+    assert line not in budget_section(data)
+
+
+def test_what_the_program_took_stands_last_among_the_inputs() -> None:
+    data = invented_data()
+    head = "Taken by the program where the file states nothing"
+    assert head not in page(Record(data))
+    template = data["inputs"]["surroundings.temperature"]
+    taken = {"text": "not stated", "status": "by default", "source": "No heat is exchanged.", "line": 1}
+    path = "equipment.PRV-3.heat"
+    data["inputs"][path] = {**template, **taken, "dimension": "heat_flow", "value": 0.0, "applies_to": [path]}
+    text = Outline(page(Record(data))).text
+    inputs = text[text.index("As written") : text.index("Assumptions", text.index("As written"))]
+    assert inputs.index("39.0 bar(g)") < inputs.index(head) < inputs.index("No heat is exchanged.")
+    assert "by default" not in inputs
+
+
+def test_a_power_says_on_the_page_which_way_it_is_positive() -> None:
+    data = invented_data()
+    data["values"]["equipment.TG-2.power"]["direction"] = "delivered"
+    assert "Power delivered" in Outline(page(Record(data))).text
+
+
 def test_the_terminal_shows_the_same_numbers(capsys: pytest.CaptureFixture[str]) -> None:
     terminal.print_summary(invented_record())
     printed = capsys.readouterr().out.replace("\xa0", " ")
