@@ -22,26 +22,23 @@ from typing import Any
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
+    INLET,
+    OUTLET,
     adiabatic,
     energy_balance,
+    heat_ports,
     mass_balances,
     pressure_ratio,
+    stream_stretches,
 )
-from reportgen.balances.kinds import Parameter
+from reportgen.balances.kinds import Kind, Parameter
 from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Balance, Default, Equation, Formula, Inverse, Relation, Term, token
+from reportgen.balances.relations import Balance, Equation, Formula, Inverse, Relation, Term, token
 
-__all__ = [
-    "POLYTROPIC",
-    "isentropic_relations",
-    "machine_defaults",
-    "machine_parameters",
-    "machine_relations",
-    "machine_results",
-]
+__all__ = ["machine_kind"]
 
-POLYTROPIC = Parameter(
+_POLYTROPIC = Parameter(
     "polytropic_efficiency",
     "efficiency",
     "Efficiency of an infinitely small step of pressure, constant along the path.",
@@ -52,7 +49,33 @@ _NODES = (0.06943184420297371, 0.33000947820757187, 0.6699905217924281, 0.930568
 _WEIGHTS = (0.17392742256872692, 0.32607257743127307, 0.32607257743127307, 0.17392742256872692)
 
 
-def machine_parameters(verb: str) -> tuple[Parameter, ...]:
+def machine_kind(name: str, title: str, text: str, *, absorbs: bool, polytropic: bool) -> Kind:
+    """A machine with one inlet and one outlet that absorbs power, or delivers it.
+
+    ``polytropic``: whether a polytropic efficiency has a meaning for it.
+    """
+    verb = "absorbed" if absorbs else "delivered"
+    merit = (
+        f"Exergy gained by the stream over the power {verb}." if absorbs else f"Power {verb} over the exergy given up."
+    )
+    return Kind(
+        name=name,
+        title=title,
+        text=text,
+        ports=(INLET, OUTLET),
+        parameters=(*_parameters(verb), _POLYTROPIC) if polytropic else _parameters(verb),
+        relations=lambda piece: _relations(piece, absorbs, polytropic),
+        defaults=lambda piece: [adiabatic(piece)],
+        results=lambda piece: _results(piece, absorbs),
+        heats=heat_ports,
+        stretches=lambda piece: stream_stretches(piece, "entropy"),
+        power_sign=1 if absorbs else -1,
+        exergetic_efficiency=merit,
+        entropy_generation_number=f"Lost work over the power {verb}.",
+    )
+
+
+def _parameters(verb: str) -> tuple[Parameter, ...]:
     """Parameters of every machine; ``verb`` says which way power is positive ("absorbed" or "delivered")."""
     return (
         Parameter("power", "power", f"Power {verb}."),
@@ -65,7 +88,7 @@ def machine_parameters(verb: str) -> tuple[Parameter, ...]:
     )
 
 
-def isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
+def _isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
     """Enthalpy of the isentropic change, and the definition of the isentropic efficiency."""
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
     fluid = piece.fluid(inlet)
@@ -146,7 +169,7 @@ def _path_integral(fluid: Any) -> Callable[[Any, Any, Any, Any], Any]:
     return ideal if fluid.kind == "ideal-gas" else real
 
 
-def polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
+def _polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
     """The polytropic efficiency from the end states."""
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
     fluid = piece.fluid(inlet)
@@ -202,23 +225,23 @@ def polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
     )
 
 
-def machine_relations(piece: Piece, absorbs: bool, polytropic: bool) -> list[Relation]:
+def _relations(piece: Piece, absorbs: bool, polytropic: bool) -> list[Relation]:
     """Mass, energy, pressure ratio and efficiencies of a machine with one inlet and one outlet."""
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
     low, high = (inlet, outlet) if absorbs else (outlet, inlet)
     energy = energy_balance(piece, piece.path("heat"), piece.path("power"), 1 if absorbs else -1)
-    relations = [*mass_balances(piece), pressure_ratio(piece, low, high), *isentropic_relations(piece, absorbs), energy]
+    relations = [
+        *mass_balances(piece),
+        pressure_ratio(piece, low, high),
+        *_isentropic_relations(piece, absorbs),
+        energy,
+    ]
     if polytropic:
-        relations.append(polytropic_relation(piece, absorbs))
+        relations.append(_polytropic_relation(piece, absorbs))
     return relations
 
 
-def machine_defaults(piece: Piece) -> list[Default]:
-    """Adiabatic by custom."""
-    return [adiabatic(piece)]
-
-
-def machine_results(piece: Piece, absorbs: bool) -> list[Formula]:
+def _results(piece: Piece, absorbs: bool) -> list[Formula]:
     """Exergetic efficiency and entropy generation number.
 
     Absorbing machine ε = ṁ (e_2 − e_1)/Ẇ, delivering machine ε = Ẇ/(ṁ (e_1 − e_2)); N_s = T0 Ṡgen/|Ẇ|.

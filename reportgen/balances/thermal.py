@@ -4,13 +4,23 @@ from __future__ import annotations
 
 from typing import Any
 
-from reportgen.balances.equations import energy_balance, mass_balances, no_pressure_drop, pressure_drop
-from reportgen.balances.kinds import Parameter
+from reportgen.balances.equations import (
+    BOUNDARY_TEMPERATURE,
+    INLET,
+    OUTLET,
+    energy_balance,
+    heat_ports,
+    mass_balances,
+    no_pressure_drop,
+    pressure_drop,
+    stream_stretches,
+)
+from reportgen.balances.kinds import Kind, Parameter
 from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Default, Formula, Relation, token
+from reportgen.balances.relations import Formula, Relation, token
 
-__all__ = ["PRESSURE_DROP", "heat_number", "stream_defaults", "stream_exergy_efficiency", "stream_relations"]
+__all__ = ["PRESSURE_DROP", "heat_kind"]
 
 PRESSURE_DROP = Parameter(
     "pressure_drop",
@@ -20,18 +30,34 @@ PRESSURE_DROP = Parameter(
 )
 
 
-def stream_relations(piece: Piece) -> list[Relation]:
+def heat_kind(name: str, title: str, text: str, *, heat: str, takes_up: bool, exergetic_efficiency: str) -> Kind:
+    """A kind with one stream and its heat; ``heat`` describes that parameter, ``takes_up`` tells its direction."""
+    return Kind(
+        name=name,
+        title=title,
+        text=text,
+        ports=(INLET, OUTLET),
+        parameters=(Parameter("heat", "heat_flow", heat), BOUNDARY_TEMPERATURE, PRESSURE_DROP),
+        relations=_relations,
+        defaults=lambda piece: [no_pressure_drop(piece)],
+        results=lambda piece: [
+            _exergy_efficiency(piece, takes_up),
+            entropy_number_by_power(piece, piece.path("heat"), "heat flow"),
+        ],
+        heats=heat_ports,
+        stretches=lambda piece: stream_stretches(piece, "enthalpy"),
+        exergetic_efficiency=exergetic_efficiency,
+        entropy_generation_number="Lost work over heat.",
+    )
+
+
+def _relations(piece: Piece) -> list[Relation]:
     """Mass, pressure loss and energy of a stream that exchanges heat only."""
     drop = pressure_drop(piece, piece.one("inlet"), piece.one("outlet"))
     return [*mass_balances(piece), drop, energy_balance(piece, piece.path("heat"))]
 
 
-def stream_defaults(piece: Piece) -> list[Default]:
-    """No pressure loss; nothing is assumed about the heat."""
-    return [no_pressure_drop(piece)]
-
-
-def stream_exergy_efficiency(piece: Piece, gains: bool) -> Formula:
+def _exergy_efficiency(piece: Piece, gains: bool) -> Formula:
     """Exergy of stream and heat, gained over spent."""
     paths = [
         f"states.{piece.one('inlet')}.mass_flow",
@@ -62,8 +88,3 @@ def stream_exergy_efficiency(piece: Piece, gains: bool) -> Formula:
         lambda *arrays: -change(*arrays),
         rf"\frac{{{of_heat}}}{{{stream}}}",
     )
-
-
-def heat_number(piece: Piece) -> Formula:
-    """N_s = T0 Ṡgen/|Q̇|."""
-    return entropy_number_by_power(piece, piece.path("heat"), "heat flow")

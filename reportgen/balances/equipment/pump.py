@@ -6,22 +6,8 @@ Entropy generation number: lost work over power.
 
 from __future__ import annotations
 
-from reportgen.balances.equations import INLET, OUTLET, heat_ports, stream_stretches
-from reportgen.balances.kinds import Kind
-from reportgen.balances.machines import machine_defaults, machine_parameters, machine_relations, machine_results
+from reportgen.balances.machines import machine_kind
 
-KIND = Kind(
-    name="pump",
-    title="Pump",
-    text="Raises the pressure of a liquid by absorbing power.",
-    ports=(INLET, OUTLET),
-    parameters=machine_parameters("absorbed"),
-    relations=lambda piece: machine_relations(piece, absorbs=True, polytropic=False),
-    defaults=machine_defaults,
-    results=lambda piece: machine_results(piece, absorbs=True),
-    heats=heat_ports,
-    stretches=lambda piece: stream_stretches(piece, "entropy"),
-    power_sign=1,
-    exergetic_efficiency="Exergy gained by the stream over the power absorbed.",
-    entropy_generation_number="Lost work over the power absorbed.",
+KIND = machine_kind(
+    "pump", "Pump", "Raises the pressure of a liquid by absorbing power.", absorbs=True, polytropic=False
 )
