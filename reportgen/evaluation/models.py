@@ -56,7 +56,9 @@ def _titled(identifier: str, model: Any) -> Any:
 
 def fluid_name(identifier: str, title: str) -> str:
     """A fluid by its id in the file and what it is: ``steam (Water)``; once where the two are the same."""
-    return title if title.casefold().startswith(identifier.casefold()) else f"{identifier} ({title})"
+    if title.casefold() == identifier.casefold():
+        return identifier
+    return title if title.startswith(f"{identifier} ") else f"{identifier} ({title})"
 
 
 def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Plant:

@@ -56,6 +56,7 @@ def environment() -> Environment:
         finalize=raised,
         trim_blocks=True,
         lstrip_blocks=True,
+        optimized=False,  # each template runs a few times only: folding constants costs more than it saves
     )
     jinja.filters["css_string"] = css_string
     jinja.filters["font_data"] = _font_data

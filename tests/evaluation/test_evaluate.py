@@ -459,7 +459,7 @@ def test_a_mixture_goes_by_the_name_the_file_gives_it() -> None:
     assert "Gas mixture (" not in told
     assert record.data["plant"]["fluids"]["air"]["title"] == "air (gas mixture)"
     titles = [figure["title"] for figure in record.data["figures"] if figure["kind"] == "temperature-entropy"]
-    assert titles == ["Temperature and entropy of air (gas mixture)", "Temperature and entropy of Water"]
+    assert titles == ["Temperature and entropy of air (gas mixture)", "Temperature and entropy of water"]
     assert any(entry["text"] == "Fluid air (gas mixture) is an ideal gas." for entry in record.data["assumptions"])
 
 

@@ -78,6 +78,5 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
 
 def _finish(drawing: Drawing, axes: Any, name: str) -> None:
     """Axis name and ticks; only the foot and the zero line are drawn."""
-    axes.tick_params(left=False, labelleft=False)
-    drawing.dress_ticks(axes)
+    drawing.ticks(axes, upright=False)
     drawing.write(drawing.width - 8.0, 4.0, name, ha="right")

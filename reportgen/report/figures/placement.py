@@ -18,7 +18,7 @@ __all__ = ["Box", "Label", "Placed", "Placement"]
 _DISTANCES = (5.0, 8.0, 12.0, 17.0)
 _LEADER_DISTANCES = (24.0, 34.0, 46.0, 60.0, 80.0, 105.0, 135.0)
 _DIRECTIONS = 16
-_CLEARANCE = 1.5
+_CLEARANCE = 2.2
 
 
 @dataclass(frozen=True)

@@ -16,8 +16,8 @@ if TYPE_CHECKING:
 
 __all__ = ["draw"]
 
-_HEIGHT = 236.0
-_HEIGHT_ABOVE_DETAIL = 170.0
+_HEIGHT = 232.0
+_HEIGHT_ABOVE_DETAIL = 160.0
 _MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
@@ -299,7 +299,7 @@ def _axis_names(drawing: Drawing, axes: Axes, margins: tuple[float, float, float
     left, bottom, right, top = margins
     entropy = presenter.display.unit_text("specific_entropy")
     temperature = presenter.display.unit_text("temperature")
-    drawing.dress_ticks(axes)
+    drawing.ticks(axes)
     drawing.write(
         drawing.width - right, bottom - 30, f"specific entropy in {entropy}", ha="right", va="baseline", color=INK
     )

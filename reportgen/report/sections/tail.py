@@ -28,6 +28,7 @@ def revisions(presenter: Presenter) -> dict[str, Any] | None:
 def provenance(presenter: Presenter) -> dict[str, Any]:
     """What was computed from what, by which versions."""
     entry = presenter.record.data["provenance"]
+    fluid_data = entry.get("fluid_data", [])
     git = entry.get("git") or {}
     tree = {True: "clean", False: "with changes that were not committed", None: "state not known"}[git.get("clean")]
     return {
@@ -36,7 +37,16 @@ def provenance(presenter: Presenter) -> dict[str, Any]:
         "python": entry.get("python"),
         "packages": entry.get("packages", {}),
         "files": entry.get("files", []),
-        "fluid_data": entry.get("fluid_data", []),
+        "fluid_data": [{**item, "source": _unless_shown(item.get("source"), presenter)} for item in fluid_data],
         "commit": git.get("commit"),
         "tree": tree,
     }
+
+
+def _unless_shown(source: str | None, presenter: Presenter) -> str | None:
+    """The source of a data file, None when the method already names all of it beside its fluid."""
+    rest = source or ""
+    for fluid in presenter.record.data["plant"]["fluids"].values():
+        for shown in fluid["sources"]:
+            rest = rest.replace(shown, "")
+    return source if rest.strip(" ;") else None
