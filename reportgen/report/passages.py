@@ -132,7 +132,7 @@ def _passages(part: int, keys: Sequence[str], data: Mapping[str, Any]) -> list[P
         found[index].keys.append(key)
         place.update(dict.fromkeys(relation["solves"], index))
     for passage in found:
-        _word(passage, [relations[key] for key in passage.keys], data)
+        _word(passage, [relations[key] for key in passage.keys])
     return found
 
 
@@ -171,7 +171,7 @@ def _is_long(passage: Passage, relation: Relation, relations: Mapping[str, Relat
     return len(_joined([*(relations[key]["sentence"] for key in passage.keys), relation["sentence"]])) > _SENTENCE
 
 
-def _word(passage: Passage, members: Sequence[Relation], data: Mapping[str, Any]) -> None:
+def _word(passage: Passage, members: Sequence[Relation]) -> None:
     """Give a passage its sentence, and say whether its equations run on in a line."""
     passage.run = all(_is_adiabatic(member) for member in members) or all(_is_kept_flow(member) for member in members)
     sentences = [member["sentence"] for member in members]
@@ -194,9 +194,9 @@ def _word(passage: Passage, members: Sequence[Relation], data: Mapping[str, Any]
         passage.sentence = "A stream carries its flow times its specific entropy."
     elif any(_last(path) == "specific_exergy" for member in members for path in member["solves"]):
         fluid = next((member["owner"].partition(".")[2] for member in members if member["owner"][:7] == "fluids."), "")
-        title = data["plant"]["fluids"].get(fluid, {}).get("title")
-        passage.sentence = "Work that could be had from a stream on its way to equilibrium with the surroundings" + (
-            f"; there, {title} has the enthalpy and entropy that stand first." if title else "."
+        stream = f"a stream of {fluid}" if fluid else "a stream"
+        passage.sentence = f"Work that could be had from {stream} on its way to equilibrium with the surroundings" + (
+            ", where its enthalpy and entropy are those that stand first." if fluid else "."
         )
     else:
         passage.sentence = _joined(sentences)

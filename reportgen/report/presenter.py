@@ -86,6 +86,12 @@ class Presenter:
         shown = self.show(value, dimension, uncertainty)
         return f"{shown.number}\N{NO-BREAK SPACE}{shown.unit}" if shown.unit else shown.number
 
+    def rough(self, value: float, dimension: str, digits: int, unit: bool = True) -> str:
+        """A number without uncertainty of its own, to so many significant digits of the unit shown."""
+        number = self.show(significant(self.display.convert(value, dimension), digits), "ratio").number
+        name = self.display.unit_text(dimension) if unit else ""
+        return f"{number}\N{NO-BREAK SPACE}{name}" if name else number
+
     def difference(self, value: float | None, dimension: str, uncertainty: float | None = None) -> str:
         """A difference of two values of a dimension, with its unit: kelvins for temperatures."""
         return self.with_unit(value, self.difference_dimension(dimension), uncertainty)

@@ -21,6 +21,7 @@ from reportgen.record import Record
 from reportgen.report import folders, page_path, register, render, terminal
 from reportgen.report.links import anchor
 from reportgen.report.page import page
+from reportgen.report.presenter import Presenter
 from reportgen.report.templates import css_string, lower_first, raised
 from tests.report.invented import invented_data, invented_record
 
@@ -233,6 +234,14 @@ def test_us_customary_units_are_shown_throughout() -> None:
     text = Outline(page(Record(data))).text
     for unit in ("psia", "°F", "Btu/lb", "Btu/(h·°R)", "hp"):
         assert unit in text
+
+
+def test_rough_numbers_are_rounded_in_the_unit_shown() -> None:
+    presenter = Presenter(invented_record())
+    assert presenter.rough(1234.56, "pressure_difference", 3).replace("\xa0", " ") == "0.0123 bar"
+    data = invented_data()
+    data["calculation"]["units"] = "US"
+    assert Presenter(Record(data)).rough(5000.0, "pressure_difference", 3).replace("\xa0", " ") == "0.725 psi"
 
 
 def test_a_budget_shows_contributions_shares_and_what_first_order_leaves_out(outline: Outline) -> None:

@@ -6,7 +6,7 @@ from pathlib import Path
 from typing import Any
 
 from reportgen.report.figures.canvas import GENERATION, GREY, INK, SMALL, TINT, WIDTH, Drawing
-from reportgen.report.presenter import Presenter, significant
+from reportgen.report.presenter import Presenter
 
 __all__ = ["draw_entropy_account", "draw_lost_work"]
 
@@ -62,8 +62,8 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         height = _BAR / _ACCOUNT_ROW
         axes.barh(row, start, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
         axes.barh(row, more, height=height, left=start, color=GENERATION, edgecolor=INK, linewidth=0.7)
-        carried = f"in {presenter.with_unit(significant(bar['entering'], 4), 'entropy_flow')}"
-        made = f"generated {presenter.with_unit(significant(bar['generated'], 4), 'entropy_flow')}"
+        carried = f"in {presenter.rough(bar['entering'], 'entropy_flow', 4)}"
+        made = f"generated {presenter.rough(bar['generated'], 'entropy_flow', 4)}"
         zero, middle = (float(value) for value in axes.transData.transform((lowest, row)))
         end = float(axes.transData.transform((start + more, row))[0])
         room = sum(drawing.text_size(text, SMALL)[0] for text in (carried, made)) + 4 * _GAP

@@ -11,7 +11,7 @@ from markupsafe import Markup
 from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.passages import residuals
-from reportgen.report.presenter import NO_VALUE, Presenter, in_order, significant
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order
 from reportgen.report.sections.working import step_anchors
 
 __all__ = ["accounts", "closure"]
@@ -52,7 +52,10 @@ def _account(name: str, entry: dict[str, Any], presenter: Presenter) -> dict[str
         return fixed(presenter.display.convert(value, "entropy_flow"), places)
 
     def line_of(line: dict[str, Any]) -> tuple[str, Markup]:
-        return line["label"], presenter.link(line["path"], amount(line["value"]))
+        label = line["label"]
+        if line in entry["generated"] and not label.startswith("generated"):
+            label = f"generated in {label}"
+        return label, presenter.link(line["path"], amount(line["value"]))
 
     rows = []
     for entering, leaving in zip_longest(left, right):
@@ -127,9 +130,9 @@ def closure(presenter: Presenter) -> dict[str, Any] | None:
                 "quantity": entry["quantity"],
                 **_residual(path, rest.pop(path, None), presenter),
                 "step": _entropy_step(entry, presenter),
-                "value": presenter.with_unit(significant(entry["value"], 2), dimension),
-                "scale": presenter.with_unit(significant(entry["scale"], 4), dimension),
-                "relative": presenter.show(significant(entry["relative"], 2), "ratio").number,
+                "value": presenter.rough(entry["value"], dimension, 2),
+                "scale": presenter.rough(entry["scale"], dimension, 4),
+                "relative": presenter.rough(entry["relative"], "ratio", 2),
             }
         )
     for path, key in rest.items():  # balances that the record closes without an audit

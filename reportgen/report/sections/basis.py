@@ -7,7 +7,7 @@ from typing import Any
 
 from reportgen.report.links import anchor
 from reportgen.report.narrative import render_narrative
-from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural, significant
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural
 from reportgen.report.sections.working import step_anchors
 
 __all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
@@ -172,10 +172,11 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
             ),
             ("otherwise", presenter.with_unit(test["other_value"], dimension, uncertainty)),
         ]
+        apart = presenter.difference_dimension(dimension)
         if test["difference"] is not None:
-            facts.append(("difference", presenter.difference(significant(test["difference"], 2), dimension)))
+            facts.append(("difference", presenter.rough(test["difference"], apart, 2)))
         if uncertainty:
-            facts.append(("U", presenter.difference(significant(uncertainty, 2), dimension)))
+            facts.append(("U", presenter.rough(uncertainty, apart, 2)))
     label = presenter.label(test["path"]) if test["path"] else ""
     return {**test, "facts": facts, "label": label}
 

@@ -46,12 +46,19 @@ def _budget(path: str, budgets: dict[str, Any], presenter: Presenter) -> dict[st
         "times": presenter.symbol_link(_AMBIENT) if repeated else None,
         "rows": [] if repeated else [_row(row, dimension, presenter) for row in large],
         "further": len(small),
-        "further_share": f"{100.0 * sum(row['share'] for row in small):.2g}".replace("-", "−"),
-        "combined": presenter.show(significant(budget["standard_uncertainty"], 3), dimension).number,
+        "further_share": _percent(sum(row["share"] for row in small)),
+        "combined": presenter.rough(budget["standard_uncertainty"], dimension, 3, unit=False),
         "expanded": presenter.difference(budget["expanded_uncertainty"], dimension, budget["expanded_uncertainty"]),
         "coverage": _coverage(budget["effective_degrees_of_freedom"], budget["coverage_probability"]),
         "left_out": presenter.difference(left_out, dimension, left_out) if left_out else None,
     }
+
+
+def _percent(share: float | None) -> str:
+    """A part in per cent: one decimal place, small ones to one digit."""
+    if share is None:
+        return NO_VALUE
+    return f"{100.0 * share:{'.1f' if abs(share) >= _SMALL else '.1g'}}".replace("-", "−")
 
 
 def _coverage(freedom: float | None, probability: float | None) -> str:
@@ -83,9 +90,9 @@ def _row(row: dict[str, Any], dimension: str, presenter: Presenter) -> dict[str,
     return {
         "link": presenter.symbol_link(path),
         "label": presenter.label(path),
-        "standard": presenter.with_unit(significant(row["standard_uncertainty"], 3), given),
+        "standard": presenter.rough(row["standard_uncertainty"], given, 3),
         "sensitivity": presenter.show(significant(sensitivity, 3), "ratio").number,
         "sensitivity_unit": f"{unit or '1'} per {given_unit or '1'}",
-        "contribution": presenter.show(significant(row["contribution"], 3), dimension).number,
-        "share": f"{100.0 * row['share']:.1f}".replace("-", "−") if row["share"] is not None else NO_VALUE,
+        "contribution": presenter.rough(row["contribution"], dimension, 3, unit=False),
+        "share": _percent(row["share"]),
     }

@@ -120,7 +120,7 @@ def _passage(
     for key in passage.keys:
         step = _step(*steps[key], relations[key], results[key], presenter)
         basis = step["basis"]
-        step["basis"] = None if basis == before else basis
+        step["basis"] = "" if basis == before else basis
         before = basis
         shown.append(step)
     used = [path for key in passage.keys for path in relations[key]["uses"]]
@@ -156,11 +156,11 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
         # A value taken by default stands among the inputs: there its links lead.
         lines.append(_line(line, None if path in presenter.record.inputs else path))
     others = [path for path in results if path not in shown and values[path]["value"] is not None]
-    assumed = any(path.startswith("assumptions.") for path in relation["uses"])
     return {
         "number": number,
         "anchor": name,
-        "basis": "by assumption" if assumed and relation["basis"].startswith("assumption: ") else relation["basis"],
+        # An assumption is linked below, where its text stands.
+        "basis": "" if relation["basis"].startswith("assumption: ") else relation["basis"],
         "lines": lines,
         "others": [
             (anchor("value", path), presenter.symbol(path), presenter.text(path), presenter.plus_minus(path))
