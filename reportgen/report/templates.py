@@ -56,6 +56,7 @@ def environment() -> Environment:
         finalize=raised,
         trim_blocks=True,
         lstrip_blocks=True,
+        auto_reload=False,
         optimized=False,  # each template runs a few times only: folding constants costs more than it saves
     )
     jinja.filters["css_string"] = css_string

@@ -110,7 +110,7 @@ def test_no_label_of_the_figure_lies_on_a_line_or_another_label(count: int, watc
     temperature_entropy.draw(crowded(count), Presenter(invented_record()), fonts_folder())
     assert watched.made
     for placement in watched.made:
-        starts, ends = numpy.concatenate(placement._starts), numpy.concatenate(placement._ends)
+        starts, ends = placement._starts, placement._ends
         for placed in placement.placed:
             assert not crosses(starts, ends, placed.box).any(), placed.label.text
             assert placed.box.inside(placement.frame)
@@ -156,6 +156,24 @@ def test_the_same_data_give_the_same_bytes_and_ids_of_their_own(kind: str) -> No
     assert not first & second
     svg = svg_of(FIGURES[kind])
     assert set(re.findall(r'(?:url\(|href=")#([^")]+)', svg)) <= first
+
+
+@pytest.mark.parametrize("kind", sorted(FIGURES))
+def test_a_drawing_carries_no_name_that_nothing_refers_to_and_no_idle_group(kind: str) -> None:
+    svg = svg_of(FIGURES[kind])
+    named = {name for name in re.findall(r' id="([^"]+)"', svg) if not name.endswith((".title", ".desc"))}
+    assert named == set(re.findall(r'(?:url\(|href=")#([^")]+)', svg))
+    assert "rotate(" not in svg
+    assert "\n" not in svg[svg.index("</desc>") :].strip()
+    assert not re.search(r"<g>(?:(?!<g\b).)*?</g>", svg)
+
+
+def test_ticks_stand_at_round_numbers_within_the_limits() -> None:
+    svg = svg_of(FIGURES["lost-work-bars"])
+    labels = [float(text) for text in re.findall(r">(\d+)</text>", svg)]
+    assert labels[0] == 0.0
+    assert len(labels) >= 4
+    assert len({after - before for before, after in itertools.pairwise(labels)}) == 1
 
 
 def test_the_colour_of_generation_is_for_generation_only() -> None:

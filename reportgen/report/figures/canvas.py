@@ -52,12 +52,14 @@ def _rounded(match: re.Match[str]) -> str:
 
 
 def _compact(body: str) -> str:
-    """The same drawing in fewer bytes: no line breaks, no groups and names that nothing refers to, no idle turns."""
+    """The same drawing in fewer bytes: no groups and names that nothing refers to, the face named once."""
     referred = set(re.findall(r'(?:url\(|href=")#([^")]+)', body))
     body = re.sub(r' id="([^"]*)"', lambda name: name[0] if name[1] in referred else "", body)
     body = re.sub(r' transform="rotate\(-?0 [^"]*\)"', "", body)
-    body = re.sub(r'(?<= d=")[^"]*', lambda path: re.sub(r"\s*([MLCQZz])\s*", r"\1", path[0]), body)
-    body = re.sub(r">\s+<", "><", body)
+    body = re.sub(r'(?<= d=")[^"]*', lambda path: re.sub(r"\s*([MLCQZz])\s*", r"\1", path[0]).strip(), body)
+    body = re.sub(r'<path d="[^"]*" style="fill: none"/>', "", body)  # backgrounds that are not painted
+    body = body.replace(f"font-family: '{FAMILY}'; ", "")
+    body = re.sub(r">\s+<", "><", body.strip())
     while (plain := re.sub(r"<g>((?:(?!</?g\b).)*)</g>", r"\1", body, flags=re.DOTALL)) != body:
         body = plain
     return body
@@ -178,7 +180,7 @@ class Drawing:
         body = _compact(body)
         return (
             f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {self.width:g} {self.height:g}" role="img" '
-            'stroke-linejoin="round" stroke-linecap="butt" '
+            f'stroke-linejoin="round" stroke-linecap="butt" font-family="{FAMILY}" '
             f'aria-labelledby="{prefix}.title {prefix}.desc">'
             f'<title id="{prefix}.title">{escape(title)}</title>'
             f'<desc id="{prefix}.desc">{escape(description)}</desc>{body}</svg>'

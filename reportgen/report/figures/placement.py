@@ -77,15 +77,15 @@ class Placement:
     frame: Box
     boxes: list[Box] = field(default_factory=list)
     placed: list[Placed] = field(default_factory=list)
-    _starts: list[npt.NDArray[np.float64]] = field(default_factory=list)
-    _ends: list[npt.NDArray[np.float64]] = field(default_factory=list)
+    _starts: npt.NDArray[np.float64] = field(default_factory=lambda: np.empty((0, 2)))
+    _ends: npt.NDArray[np.float64] = field(default_factory=lambda: np.empty((0, 2)))
 
     def add_line(self, points: Iterable[tuple[float, float]]) -> None:
         """A polyline that no label may touch."""
         array = np.asarray(list(points), dtype=float)
         if len(array) > 1:
-            self._starts.append(array[:-1])
-            self._ends.append(array[1:])
+            self._starts = np.concatenate([self._starts, array[:-1]])
+            self._ends = np.concatenate([self._ends, array[1:]])
 
     def add_box(self, box: Box) -> None:
         """An area that no label may touch."""
@@ -96,12 +96,7 @@ class Placement:
         grown = box.grown(_CLEARANCE)
         if not box.inside(self.frame) or any(grown.overlaps(other) for other in self.boxes):
             return False
-        return not self._crossed(grown)
-
-    def _crossed(self, box: Box) -> bool:
-        if not self._starts:
-            return False
-        return bool(np.any(crosses(np.concatenate(self._starts), np.concatenate(self._ends), box)))
+        return not np.any(crosses(self._starts, self._ends, grown))
 
     def place(self, label: Label) -> Placed | None:
         """Set a label; None when even far out there is no free place (the caption then has to name it)."""
