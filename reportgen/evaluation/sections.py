@@ -41,7 +41,7 @@ def calculation_section(calculation: Calculation) -> dict[str, Any]:
         "coverage_factor": calculation.uncertainty.coverage_factor,
         "method": calculation.uncertainty.method,
         "narratives": {
-            name: {"text": narrative.text, "file": narrative.file, "line": narrative.line}
+            name: vars(narrative)
             for name, narrative in calculation.narratives.items()
         },
         "references": [{"id": identifier, "text": item.text} for identifier, item in calculation.references.items()],

@@ -24,11 +24,15 @@ class Refused(Exception):
 _EXAMPLES = {
     "temperature": "400 degC",
     "temperature_difference": "10 K",
-    "pressure": "7.2 bar(g)",
+    "pressure": '7.2 bar(g)" or "8.2 bar(a)',
     "pressure_difference": "0.3 bar",
     "efficiency": "85 %",
     "ratio": "3.2",
 }
+
+
+#: Degrees without the sign of degrees, as often typed.
+_DEGREES = {"C": "degC", "F": "degF", "R": "degR"}
 
 
 def words(dimension: str) -> str:
@@ -60,6 +64,8 @@ def quoted(content: object) -> str:
 def nearest(text: object, choices: Collection[str]) -> str | None:
     """A hint that names the closest choice, first without regard to case."""
     wanted = short(text)
+    if _DEGREES.get(wanted.upper(), "") in choices:
+        return f'Nearest: "{_DEGREES[wanted.upper()]}".'
     same = [choice for choice in choices if choice.lower() == wanted.lower()]
     close = same or difflib.get_close_matches(wanted, list(choices), n=1, cutoff=0.6)
     return f'Nearest: "{close[0]}".' if close else None

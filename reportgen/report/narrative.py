@@ -11,7 +11,7 @@ from __future__ import annotations
 import difflib
 import re
 from collections.abc import Iterator, Mapping
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, NamedTuple
 
 from markupsafe import Markup
 
@@ -20,18 +20,28 @@ from reportgen.record import Record
 
 if TYPE_CHECKING:
     from jinja2 import nodes
+    from jinja2.sandbox import SandboxedEnvironment
 
     from reportgen.report.presenter import Presenter
 
 __all__ = ["LONGEST_RESULT", "check_narratives", "render_narrative"]
 
 LONGEST_RESULT = 200_000
+#: Longest piece of the author's text that a message repeats.
+_SHORT = 60
 _OPTIONS = {"uncertainty", "unit"}
 _TAGS = {
     "p", "em", "strong", "code", "pre", "ul", "ol", "li", "blockquote", "a", "sup", "sub", "br", "hr", "h3",
     "table", "thead", "tbody", "tr", "th", "td", "div", "span",
 }  # fmt: skip
 _WOULD_DO = 'text, and values as {{ value("path") }} with the options uncertainty=True and unit=False'
+
+
+class Place(NamedTuple):
+    """Line and column in a narrative's own text, from 1."""
+
+    line: int
+    column: int
 
 
 def check_narratives(record: Record) -> None:
@@ -62,7 +72,7 @@ def render_narrative(name: str, presenter: Presenter) -> Markup | None:
             text += str(presenter.number(path, options.get("unit", True), options.get("uncertainty", False)))
         if len(text) > LONGEST_RESULT:
             raise InputError(
-                _fault(f"The text grows beyond {LONGEST_RESULT} characters.", narrative, name, narrative["line"])
+                _fault(f"The text grows beyond {LONGEST_RESULT} characters.", narrative, name, Place(1, 1))
             )
     if faults:
         raise InputError(faults)
@@ -77,31 +87,51 @@ def _parts(
     from jinja2.sandbox import SandboxedEnvironment
 
     environment = SandboxedEnvironment(keep_trailing_newline=True)
+    text = narrative["text"]
     try:
-        template = environment.parse(narrative["text"])
+        template = environment.parse(text)
     except TemplateSyntaxError as error:
         message = f"The text cannot be read as a template: {error.message}."
-        faults.append(_fault(message, narrative, name, narrative["line"] + error.lineno - 1, expected=_WOULD_DO))
+        faults.append(_fault(message, narrative, name, Place(error.lineno, 1), expected=_WOULD_DO))
         return
     except RecursionError:
-        faults.append(_fault("The text is nested too deeply.", narrative, name, narrative["line"], expected=_WOULD_DO))
+        faults.append(_fault("The text is nested too deeply.", narrative, name, Place(1, 1), expected=_WOULD_DO))
         return
+    tags = _tags(environment, text)
     for statement in template.body:
         for node in statement.nodes if isinstance(statement, nodes.Output) else [statement]:
-            line = narrative["line"] + node.lineno - 1
             if isinstance(node, nodes.TemplateData):
                 yield node.data
                 continue
+            # A statement such as a loop holds tags of its own: go on to the next one on the node's line or below.
+            place, written = next((tag for tag in tags if tag[0].line >= node.lineno), (Place(node.lineno, 1), ""))
             call = _value_call(node)
             if call is None:
                 message = "Only values can be put into the text."
-                faults.append(_fault(message, narrative, name, line, expected=_WOULD_DO))
+                faults.append(_fault(message, narrative, name, place, found=written, expected=_WOULD_DO))
             elif record.entry(call[0]) is None:
                 message = "The calculation has no value of this path."
                 hint = _nearest(call[0], record)
-                faults.append(_fault(message, narrative, name, line, found=repr(call[0]), hint=hint))
+                faults.append(_fault(message, narrative, name, place, found=written, hint=hint))
             else:
                 yield call
+
+
+def _tags(environment: SandboxedEnvironment, text: str) -> Iterator[tuple[Place, str]]:
+    """Place and wording of everything in double braces or brace-percent signs, in order."""
+    offset = begin = line_start = 0
+    line = 1
+    place = Place(1, 1)
+    for _, kind, wording in environment.lex(text):
+        if kind in {"variable_begin", "block_begin"}:
+            begin, place = offset, Place(line, offset - line_start + 1)
+        offset += len(wording)
+        if "\n" in wording:
+            line += wording.count("\n")
+            line_start = text.rfind("\n", 0, offset) + 1
+        if kind in {"variable_end", "block_end"}:
+            written = " ".join(text[begin : min(offset, begin + 4 * _SHORT)].split())
+            yield place, written if len(written) <= _SHORT else written[:_SHORT] + "…"
 
 
 def _value_call(node: nodes.Node) -> tuple[str, dict[str, bool]] | None:
@@ -124,8 +154,11 @@ def _value_call(node: nodes.Node) -> tuple[str, dict[str, bool]] | None:
     return path.value, options
 
 
-def _fault(message: str, narrative: Mapping[str, Any], name: str, line: int, **more: Any) -> Fault:
-    return Fault(message, path=f"calculation.{name}", file=narrative["file"], line=line, **more)
+def _fault(message: str, narrative: Mapping[str, Any], name: str, place: Place, **more: Any) -> Fault:
+    """A fault at a place of the text, with that place in the file."""
+    column = place.column + (narrative["column"] - 1 if place.line == 1 else 0)
+    line = narrative["line"] + place.line - 1
+    return Fault(message, f"calculation.{name}", narrative["file"], line, column, **more)
 
 
 def _nearest(path: str, record: Record) -> str:

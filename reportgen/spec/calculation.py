@@ -29,11 +29,12 @@ __all__ = [
 
 @dataclass(frozen=True)
 class Narrative:
-    """Markdown text; ``line`` of ``file`` is where its first line stands."""
+    """Markdown text; ``line`` and ``column`` of ``file`` are where it begins."""
 
     text: str
     file: str
     line: int
+    column: int
 
 
 @dataclass(frozen=True)

@@ -74,11 +74,11 @@ def _narratives(source: Source, folder: Path, files: dict[str, bytes]) -> dict[s
         if text is not None:
             node = source.node(("calculation", key))
             assert node is not None  # there is a text
-            narratives[key] = Narrative(text, source.file, node.first_line_of_text)
+            narratives[key] = Narrative(text, source.file, node.text_line, node.text_column)
         elif name is not None:
             try:
                 content = read_bytes(folder, name)
-                narratives[key] = Narrative(read_text(content, name), name, 1)
+                narratives[key] = Narrative(read_text(content, name), name, 1, 1)
                 files[name] = content
             except InputError as error:
                 for fault in error.faults:

@@ -35,8 +35,8 @@ class Node:
     ``line`` and ``column`` (from 1) are those of the value, ``key_line`` and ``key_column`` those of its key; for a
     table with a header both are the place of the last part of the header. ``broken`` marks a value that stands in
     the text but could not be read, so that nobody calls it missing.
-    ``defined`` is set by a header or by brackets: no second header may open it. ``first_line_of_text`` is where the
-    text of a scalar begins, a line further down than the quotation marks when these stand alone.
+    ``defined`` is set by a header or by brackets: no second header may open it. ``text_line`` and
+    ``text_column`` are where the text inside quotation marks begins: a line further down when these stand alone.
     """
 
     value: object
@@ -46,7 +46,8 @@ class Node:
     key_column: int
     broken: bool = False
     defined: bool = False
-    first_line_of_text: int = 0
+    text_line: int = 0
+    text_column: int = 0
 
     @property
     def table(self) -> dict[str, Node]:
@@ -196,7 +197,8 @@ class Cursor:
         result = self.node(self.decoded(match[0], begin), begin, key_offset)
         # A line break right behind the three quotation marks is not part of the text.
         line_break = block and self.text.startswith("\n", begin + 3)
-        result.first_line_of_text = result.line + (1 if line_break else 0)
+        result.text_line = result.line + (1 if line_break else 0)
+        result.text_column = 1 if line_break else result.column + (3 if block else 1)
         return result
 
     def decoded(self, token: str, begin: int) -> str:

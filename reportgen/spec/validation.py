@@ -94,7 +94,10 @@ def _note(source: Source, detail: Any) -> None:
         for fault in cause.faults:
             _note_value(source, location, fault, about_key)
     elif kind == "missing":
-        source.miss(location, f'"{location[-1]}" is missing.', expected=_description(tagged))
+        what = _description(tagged)
+        if len(location) == 1:
+            what = f"a table [{location[0]}]: {what[:1].lower()}{what[1:]}"
+        source.miss(location, f'"{location[-1]}" is missing.', expected=what)
     elif kind in ("union_tag_not_found", "union_tag_invalid"):
         _note_tag(source, location, context)
     elif kind == "literal_error":

@@ -106,17 +106,20 @@ def _data() -> dict[str, Any]:
                     "The review asks what the valve forgoes, and what turbine **TG-2** would win in its place.",
                     "file": "calculation.toml",
                     "line": 12,
+                    "column": 1,
                 },
                 "method": {
                     "text": "Steady-flow balances of mass, energy and entropy round each piece.",
                     "file": "method.md",
                     "line": 1,
+                    "column": 1,
                 },
                 "conclusion": {
                     "text": 'The valve generates {{ value("equipment.PRV-3.entropy_generation") }}; in its place the '
                     'turbine would deliver {{ value("equipment.TG-2.power", uncertainty=True) }}.',
                     "file": "calculation.toml",
                     "line": 16,
+                    "column": 1,
                 },
             },
             "references": [

@@ -16,7 +16,9 @@ from tests.report.invented import invented_data
 
 def record_with(text: str, line: int = 40) -> Record:
     data = invented_data()
-    data["calculation"]["narratives"] = {"conclusion": {"text": text, "file": "conclusion.md", "line": line}}
+    data["calculation"]["narratives"] = {
+        "conclusion": {"text": text, "file": "conclusion.md", "line": line, "column": 1}
+    }
     return Record(data)
 
 
@@ -50,22 +52,22 @@ def test_temperatures_take_their_uncertainty_in_kelvins() -> None:
 
 def test_an_unknown_path_is_named_with_line_and_nearest_name() -> None:
     (message,) = faults('One.\n\nTwo {{ value("equipment.PRV-3.entropy_generaton") }}')
-    assert message.startswith("conclusion.md:42: calculation.conclusion: ")
+    assert message.startswith("conclusion.md:42:5: calculation.conclusion: ")
     assert "Nearest: equipment.PRV-3.entropy_generation" in message
 
 
 def test_all_faults_are_reported_at_once() -> None:
     messages = faults('{{ value("a.b") }}\n{{ 1 + 1 }}\n{% if x %}{% endif %}')
     assert [message.split(": ")[0] for message in messages] == [
-        "conclusion.md:40",
-        "conclusion.md:41",
-        "conclusion.md:42",
+        "conclusion.md:40:1",
+        "conclusion.md:41:1",
+        "conclusion.md:42:1",
     ]
 
 
 def test_a_broken_template_is_a_fault_with_its_line() -> None:
     (message,) = faults("fine\n{{ value( }}")
-    assert message.startswith("conclusion.md:41: ")
+    assert message.startswith("conclusion.md:41:1: ")
 
 
 @pytest.mark.parametrize(
