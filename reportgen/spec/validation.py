@@ -95,7 +95,7 @@ def _note(source: Source, detail: Any) -> None:
             _note_value(source, location, fault, about_key)
     elif kind == "missing":
         what = _description(tagged)
-        if len(location) == 1:
+        if len(location) == 1 and what:
             what = f"a table [{location[0]}]: {what[:1].lower()}{what[1:]}"
         source.miss(location, f'"{location[-1]}" is missing.', expected=what)
     elif kind in ("union_tag_not_found", "union_tag_invalid"):
