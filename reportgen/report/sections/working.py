@@ -28,6 +28,8 @@ _STATE_COLUMNS = (
 )
 #: Characters of one piece of an equation that still fit beside the margin of a narrow screen.
 _NARROW = 30
+#: Characters of one piece, both parts of its fractions counted, that reaches into the column of the basis.
+_STACKED = 110
 #: Characters of a right side that takes more than a line anyway: the result then follows on its last line.
 _LONG = 68
 #: Steps of a passage that one sheet of paper holds together.
@@ -162,6 +164,7 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
         # An assumption is linked below, where its text stands.
         "basis": "" if relation["basis"].startswith("assumption: ") else relation["basis"],
         "lines": lines,
+        "stacked": any(line["stacked"] for line in lines),
         "others": [
             (anchor("value", path), presenter.symbol(path), presenter.text(path), presenter.plus_minus(path))
             for path in others
@@ -179,11 +182,13 @@ def _line(line: list[str], path: str | None) -> dict[str, Any]:
     shown = [[Markup(piece) for piece in pieces(right, "=")] for right in distinct]
     if len(shown) > 1 and estimated_total(distinct[-2]) > _LONG:
         shown[-2:] = [[*shown[-2], *shown[-1]]]
+    widest = max((estimated_width(right) for right in distinct), default=0)
     return {
         "anchor": anchor("value", path) if path else None,
         "left": Markup(pieces(left)[0]) if left else "",
         "rights": shown,
-        "wide": max((estimated_width(right) for right in distinct), default=0) > _NARROW,
+        "wide": widest > _NARROW,
+        "stacked": widest > _STACKED,
     }
 
 
