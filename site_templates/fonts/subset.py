@@ -15,6 +15,7 @@ renamed; a subset is such a change, so each file gets a family name of its own.
 from __future__ import annotations
 
 import argparse
+import sys
 from pathlib import Path
 
 from fontTools import subset
@@ -91,7 +92,7 @@ def main() -> None:
     folder = parser.parse_args().folder
     for name, (source, family, characters) in FACES.items():
         make(folder / source, HERE / name, family, characters)
-        print(f"{name}: {(HERE / name).stat().st_size / 1000:.0f} kB")
+        sys.stdout.write(f"{name}: {(HERE / name).stat().st_size / 1000:.0f} kB\n")
 
 
 if __name__ == "__main__":
