@@ -9,13 +9,14 @@ import sys
 from decimal import Decimal
 from pathlib import Path
 
+import pint
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from reportgen.errors import InputError
 from reportgen.names import DIMENSIONS
-from reportgen.quantities import Display, Quantity, parse, units_of, usual_units
+from reportgen.quantities import Display, Quantity, parse, units, units_of, usual_units
 from reportgen.quantities.units import conversion, find_unit
 
 ATMOSPHERE = 101_300.0  # Pa
@@ -368,8 +369,8 @@ def test_a_gauge_pressure_is_the_absolute_one_above_the_atmosphere(gauge, atmosp
 def test_every_dimension_can_be_read_and_shown(dimension):
     for spelling in usual_units(dimension):
         assert find_unit(spelling, dimension) is not None
-    for units in ("SI", "US"):
-        assert Display(units).show(1.0, dimension).number
+    for system in ("SI", "US"):
+        assert Display(system).show(1.0, dimension).number
 
 
 @given(st.sampled_from(sorted(set(DIMENSIONS) - {"efficiency"})), st.floats(0.05, 5e6), st.sampled_from(["SI", "US"]))
@@ -500,3 +501,22 @@ def test_only_one_module_imports_pint():
 def test_importing_does_not_import_pint():
     code = "import sys, reportgen.quantities; sys.exit('pint' in sys.modules)"
     assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0
+
+
+def test_our_definitions_of_units_are_those_of_the_full_list_of_pint() -> None:
+    full = pint.UnitRegistry()
+    compared = 0
+    for dimension, table in units._UNITS.items():
+        si_unit = units._SI_EXPRESSIONS[DIMENSIONS[dimension]]
+        for unit in table:
+            found = units.conversion(unit.expression, dimension)
+            if unit.expression in ("degC", "degF"):
+                step = full.Quantity(1.0, f"delta_{unit.expression}").to("kelvin").magnitude
+                zero = full.Quantity(0.0, unit.expression).to("kelvin").magnitude
+                assert found.offset == pytest.approx(zero, rel=1e-15)
+            else:
+                step = full.Quantity(full.parse_expression(unit.expression)).to(si_unit).magnitude
+                assert found.offset == 0.0
+            assert found.factor == pytest.approx(step, rel=1e-15), unit
+            compared += 1
+    assert compared > 500

@@ -1,8 +1,8 @@
 """The units a calculation file may use, by dimension, and their conversion to SI.
 
 Every dimension has a closed list of spellings, so that a unit is either known or refused with the nearest one
-named; no expression written in a file ever reaches the unit library. The conversion numbers themselves come from
-pint's definitions, asked for once a spelling. This is the only module that imports pint.
+named; no expression written in a file ever reaches the unit library. pint works the conversions out from
+``definitions.txt``, once a spelling. This is the only module that imports pint.
 
 Chosen where the trade is ambiguous:
 
@@ -20,6 +20,7 @@ import unicodedata
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import lru_cache
+from importlib.resources import files
 from typing import Any, Literal
 
 from reportgen.names import DIMENSIONS
@@ -315,9 +316,11 @@ def dimensions_of(spelling: str) -> list[str]:
 
 @lru_cache(maxsize=1)
 def _registry() -> Any:
-    from pint import UnitRegistry  # imported when the first conversion is asked for: it costs 0.2 s
+    from pint import UnitRegistry  # imported when the first conversion is asked for: it costs 0.1 s
 
-    return UnitRegistry()
+    registry = UnitRegistry(None)
+    registry.load_definitions((files(__package__) / "definitions.txt").read_text("utf-8").splitlines())
+    return registry
 
 
 @lru_cache(maxsize=512)
