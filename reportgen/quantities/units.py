@@ -318,7 +318,7 @@ def dimensions_of(spelling: str) -> list[str]:
 def _registry() -> Any:
     from pint import UnitRegistry  # imported when the first conversion is asked for: it costs 0.1 s
 
-    registry: UnitRegistry = UnitRegistry(None)
+    registry: Any = UnitRegistry(None)
     registry.load_definitions((files(__package__) / "definitions.txt").read_text("utf-8").splitlines())
     return registry
 
