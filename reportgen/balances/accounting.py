@@ -9,7 +9,7 @@ through one has no entropy that could be stated: the entropy generation of that 
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
 import numpy as np
@@ -64,6 +64,7 @@ class _Book:
         self.values[path] = array
         if np.isnan(array[0]):
             self.solution.reasons.setdefault(path, self._cause(step.uses) or reason or "it has no value here")
+            self.solution.lacking.setdefault(path, step.uses)
         else:
             self.solution.steps.append(step)
         return array
@@ -93,9 +94,10 @@ class _Book:
     ) -> Array:
         """Enter a value that is a sum of products."""
         uses = tuple(dict.fromkeys(factor for term in terms for factor in term.factors))
-        total: Any = 0.0
-        for term in terms:
-            total = total + term.value({factor: self._array(factor) for factor in term.factors})
+
+        def total(values: Mapping[str, Any]) -> Any:
+            return sum(term.value(values) for term in terms)
+
         step = Step(
             path,
             owner,
@@ -104,9 +106,9 @@ class _Book:
             basis,
             (path,),
             (*uses, *(f"assumptions.{key}" for key in assumptions)),
-            (Equation(token(path), sum_latex(terms)),),
+            (Equation(token(path), sum_latex(terms), total),),
         )
-        return self.put(step, total)
+        return self.put(step, total({factor: self._array(factor) for factor in uses}))
 
     def formula(self, formula: Formula) -> Array:
         """Enter the output of a formula."""
@@ -121,7 +123,7 @@ class _Book:
             formula.basis,
             (formula.output,),
             uses,
-            (Equation(token(formula.output), formula.latex),),
+            (formula.balanced(),),
         )
         return self.put(step, result, formula.reason)
 
@@ -262,8 +264,9 @@ class _Book:
                 reason = f"heat enters {port.label} and {port.temperature} is not stated"
                 self.values[port.entropy] = np.full(self.columns, np.nan)
                 self.solution.reasons[port.entropy] = reason
+                self.solution.lacking[port.entropy] = (port.heat,)
                 text = (
-                    f"{heat[0]:.6g} W of heat enters {port.label} through a boundary of unstated temperature; "
+                    f"Heat enters {port.label} through a boundary of unstated temperature; "
                     "the entropy generation of this piece and of the totals it belongs to is not reported."
                 )
                 hint = f"State {port.temperature}."
@@ -283,7 +286,13 @@ class _Book:
             basis,
             (port.entropy,),
             (port.heat, temperature, *(f"assumptions.{key}" for key in assumptions)),
-            (Equation(token(port.entropy), rf"\frac{{{token(port.heat)}}}{{{token(temperature)}}}"),),
+            (
+                Equation(
+                    token(port.entropy),
+                    rf"\frac{{{token(port.heat)}}}{{{token(temperature)}}}",
+                    lambda values: values[port.heat] / values[temperature],
+                ),
+            ),
         )
         self.put(step, heat / self._array(temperature))
 

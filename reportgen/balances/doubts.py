@@ -1,55 +1,154 @@
-"""Solutions that satisfy every balance and still cannot be meant: flows that run backwards, pressures that rise."""
+"""What a solution may come to although every balance holds: flows that run backwards, pressures that rise.
+
+Each is a value with the side on which it cannot be meant, along the sample axis; whoever reads them decides with the
+uncertainty whether one stands, and how grave it is.
+"""
 
 from __future__ import annotations
 
-import math
 from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any, Literal
 
-from reportgen.balances.plant import Piece
-from reportgen.balances.solution import Solution
-from reportgen.errors import Fault
+from reportgen.names import NAMES
 
-__all__ = ["doubts"]
+if TYPE_CHECKING:
+    from reportgen.balances.plant import Piece
+    from reportgen.balances.solution import Solution
 
-#: Last part of a path, smallest value that makes sense, and what a smaller one says.
-_SMALLEST: dict[str, tuple[float, str]] = {
-    "pressure_drop": (0.0, "{title}: the pressure rises from inlet to outlet."),
-    "hot_pressure_drop": (0.0, "{title}: the pressure of the hot stream rises from inlet to outlet."),
-    "cold_pressure_drop": (0.0, "{title}: the pressure of the cold stream rises from inlet to outlet."),
-    "pressure_ratio": (1.0, "{title}: the pressure changes against the natural direction of the machine."),
-    "power": (0.0, "{title}: the power runs against the natural direction of the machine."),
-    "duty": (0.0, "{title}: heat flows from the cold to the hot stream; the sides may be exchanged."),
-    "split_fraction": (0.0, "{title}: the first outlet takes a negative share."),
+__all__ = ["Doubt", "doubts"]
+
+
+@dataclass(frozen=True)
+class Doubt:
+    """One value, and the side of a limit on which it makes sense.
+
+    ``key`` tells what kind of doubt it is and stays the same from version to version. ``text`` is a full sentence
+    without the numbers; ``⟦rises|may rise⟧`` holds the words for a value that is beyond the limit for certain and for
+    one that may be. ``measured`` [SI unit of ``dimension``], shape (N,), is None where the doubt itself is the news.
+    """
+
+    key: str
+    owner: str
+    path: str
+    text: str
+    measured: Any = None
+    limit: float = 0.0
+    keep: Literal["above", "below"] = "above"
+    dimension: str = "ratio"
+
+    @property
+    def stands(self) -> bool:
+        """Whether the base case is on the wrong side of the limit."""
+        if self.measured is None:
+            return True
+        value = float(self.measured[0])
+        return value < self.limit if self.keep == "above" else value > self.limit
+
+
+#: Last part of a path, key, smallest value that makes sense, and what a smaller one says.
+_SMALLEST: dict[str, tuple[str, float, str]] = {
+    "pressure_drop": ("pressure-rises", 0.0, "the pressure ⟦rises|may rise⟧ from inlet to outlet"),
+    "hot_pressure_drop": ("pressure-rises", 0.0, "the pressure of the hot stream ⟦rises|may rise⟧"),
+    "cold_pressure_drop": ("pressure-rises", 0.0, "the pressure of the cold stream ⟦rises|may rise⟧"),
+    "pressure_ratio": ("pressure-against-machine", 1.0, "the pressure ⟦changes|may change⟧ the wrong way"),
+    "power": ("power-against-machine", 0.0, "the power ⟦runs|may run⟧ against the natural direction of the machine"),
+    "duty": ("heat-against-direction", 0.0, "heat ⟦flows|may flow⟧ from the cold to the hot stream"),
 }
-#: A value this far below the smallest one, in parts of its own scale, is more than rounding.
+_WHY = {
+    "pressure-rises": "nothing in it does work on the stream.",
+    "power-against-machine": "what is given makes it the opposite of what it is called.",
+    "heat-against-direction": "the sides may be exchanged.",
+}
+_EFFICIENCIES = ("isentropic_efficiency", "polytropic_efficiency", "exergetic_efficiency")
+#: A value this close to its limit, in parts of its own scale, is rounding.
 _ROUNDING = 1e-9
+#: The same for pressure differences [Pa], far below what any gauge shows.
+_ROUNDING_OF_PRESSURE = 1e-3
 
 
-def doubts(solution: Solution) -> Iterator[Fault]:
-    """Warnings about the base case."""
+def doubts(solution: Solution) -> Iterator[Doubt]:
+    """Every value of a solved plant that could come out where it cannot be meant."""
+    import numpy as np
 
-    def base(path: str) -> float:
-        array = solution.values.get(path)
-        return math.nan if array is None else float(array[0])
+    absent = np.full(solution.values["surroundings.temperature"].shape, np.nan)
+
+    def samples(path: str) -> Any:
+        return solution.values.get(path, absent)
 
     for state in solution.plant.states:
         path = f"states.{state}.mass_flow"
-        if base(path) < -_ROUNDING:
-            text = f"The flow of stream {state} comes out negative, {base(path):.6g} kg/s: it would run the other way."
-            yield Fault(text, path, hint="What is given cannot hold together as drawn.")
+        if path in solution.values:
+            text = f"The flow of stream {state} ⟦comes|may come⟧ out negative: it would run the other way. "
+            text += "What is given cannot hold together as drawn."
+            measured = _snapped(samples(path), 0.0, _ROUNDING)
+            yield Doubt("negative-flow", f"states.{state}", path, text, measured, dimension="mass_flow")
     for piece in solution.pieces.values():
-        yield from _of_piece(piece, base)
+        yield from _of_piece(piece, samples)
 
 
-def _of_piece(piece: Piece, base: Callable[[str], float]) -> Iterator[Fault]:
+def _of_piece(piece: Piece, samples: Callable[[str], Any]) -> Iterator[Doubt]:
+    scale = _energy_scale(piece, samples)
     for parameter in piece.kind.parameters:
-        if parameter.name not in _SMALLEST:
-            continue
-        smallest, text = _SMALLEST[parameter.name]
-        if parameter.name == "power" and any(port.many for port in piece.kind.ports):
+        name = parameter.name
+        if name not in _SMALLEST or (name == "power" and any(port.many for port in piece.kind.ports)):
             continue  # a control volume may absorb or deliver
-        value = base(piece.path(parameter.name))
-        if value < smallest - _ROUNDING * max(1.0, abs(value)):
-            yield Fault(f"{text.format(title=piece.title)} Found: {value:.6g}.", piece.path(parameter.name))
-    for path, text in piece.kind.doubts(piece, base):
-        yield Fault(text, path)
+        key, smallest, words = _SMALLEST[name]
+        rounding = {"pressure_difference": _ROUNDING_OF_PRESSURE, "ratio": _ROUNDING}.get(parameter.dimension, scale)
+        text = f"{piece.title}: {words}; {_WHY.get(key) or _machine(piece)}"
+        measured = _snapped(samples(piece.path(name)), smallest, rounding)
+        yield Doubt(key, piece.owner, piece.path(name), text, measured, smallest, dimension=parameter.dimension)
+    for name in _EFFICIENCIES:
+        yield _efficiency(piece, name, samples, scale)
+    yield from piece.kind.doubts(piece, samples)
+
+
+def _machine(piece: Piece) -> str:
+    does = "raises" if piece.kind.power_sign > 0 else "lowers"
+    return f"a {piece.kind.title.lower()} {does} it."
+
+
+def _efficiency(piece: Piece, name: str, samples: Callable[[str], Any], scale: float) -> Doubt:
+    """An efficiency above 1: impossible without heat, and without a meaning where the machine is cooled.
+
+    Exergies are counted without kinetic and potential energy, so that an exergetic efficiency may pass 1 where
+    velocities or elevations are stated.
+    """
+    import numpy as np
+
+    heats = np.array([samples(port.heat)[0] for port in piece.kind.heats(piece)])
+    stated = [
+        f"states.{state}.{energy}" in piece.given
+        for _, _, state in piece.connections()
+        for energy in ("velocity", "elevation")
+    ]
+    words = NAMES[name].text.partition(":")[0].lower()
+    text = f"{piece.title}: the {words} ⟦is|may be⟧ above 100 %"
+    if name == "exergetic_efficiency" and any(stated):
+        key = "efficiency"
+        text += "; kinetic and potential energy, which it leaves out, may be the cause, or wrong data."
+    elif np.all(np.abs(heats) <= scale):
+        key = "efficiency-without-heat"
+        text += " although no heat crosses the boundary: what is given cannot be true together."
+    else:
+        key = "efficiency"
+        text += ": either heat through the boundary helps, as in a cooled compressor, and the number says nothing of "
+        text += "the losses, or the data are wrong."
+    measured = _snapped(samples(piece.path(name)), 1.0, _ROUNDING)
+    return Doubt(key, piece.owner, piece.path(name), text, measured, 1.0, "below", "efficiency")
+
+
+def _snapped(measured: Any, limit: float, rounding: float) -> Any:
+    """The samples, with the limit itself where only rounding parts them from it."""
+    import numpy as np
+
+    return np.where(np.abs(measured - limit) <= rounding, limit, measured)
+
+
+def _energy_scale(piece: Piece, samples: Callable[[str], Any]) -> float:
+    """What rounding may leave of the energy that flows through a piece, base case [W]."""
+    parts = [0.0]
+    for _, _, state in piece.connections():
+        energy = float(samples(f"states.{state}.mass_flow")[0] * samples(f"states.{state}.specific_enthalpy")[0])
+        parts.append(abs(energy) if energy == energy else 0.0)
+    return _ROUNDING * max(parts)

@@ -12,9 +12,10 @@ import pkgutil
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from functools import cache
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Any, Literal
 
 if TYPE_CHECKING:
+    from reportgen.balances.doubts import Doubt
     from reportgen.balances.plant import Piece
     from reportgen.balances.relations import Default, Formula, HeatPort, Relation, Stretch
 
@@ -72,7 +73,8 @@ class Kind:
     results : formulae for values that are only reported (efficiencies, numbers of merit).
     heats : heat ports with the paths of their heat and their boundary temperature.
     stretches : how each stream changes between two states, for process curves.
-    doubts : (path, text) for base-case values that cannot be meant although all balances hold; ``base`` gives a value.
+    doubts : values that could come out where they cannot be meant although all balances hold, beside those that
+        parameters tell; called with the piece and a function from path to samples, shape (N,).
     power_sign : +1 when positive power is absorbed, -1 when it is delivered, 0 when there is no power.
     exergetic_efficiency, entropy_generation_number : their definitions in words.
     """
@@ -88,7 +90,7 @@ class Kind:
     heats: Callable[[Piece], Sequence[HeatPort]]
     stretches: Callable[[Piece], Sequence[Stretch]]
     groups: tuple[Group, ...] = ()
-    doubts: Callable[[Piece, Callable[[str], float]], Sequence[tuple[str, str]]] = lambda piece, base: ()
+    doubts: Callable[[Piece, Callable[[str], Any]], Sequence[Doubt]] = lambda piece, samples: ()
     power_sign: int = 0
     exergetic_efficiency: str = ""
     entropy_generation_number: str = ""

@@ -28,6 +28,7 @@ def exergy_ratio(
     gained: Any,
     spent: Any,
     latex: str,
+    reason: str = "no exergy is spent, so that the ratio has no meaning",
 ) -> Formula:
     """Exergetic efficiency as ``gained(*inputs) / spent(*inputs)``, NaN where nothing is spent."""
     return Formula(
@@ -40,7 +41,7 @@ def exergy_ratio(
         tuple(inputs),
         lambda *arrays: ratio_of(gained(*arrays), spent(*arrays)),
         latex,
-        reason="no exergy is spent, so that the ratio has no meaning",
+        reason=reason,
     )
 
 

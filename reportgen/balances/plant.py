@@ -9,7 +9,7 @@ from typing import Any
 from reportgen.balances.kinds import Kind, kinds
 from reportgen.errors import Fault, InputError
 
-__all__ = ["EquipmentDefinition", "Piece", "Plant", "Train"]
+__all__ = ["EquipmentDefinition", "Piece", "Plant", "Train", "balance_groups", "pieces_of", "refuse_half_elevations"]
 
 
 @dataclass(frozen=True)
@@ -159,6 +159,30 @@ def balance_groups(piece: Piece) -> list[tuple[tuple[str, ...], tuple[str, ...]]
             else:
                 groups.append((port.side, fluid, *(([state], []) if port.direction == "in" else ([], [state]))))
     return [(tuple(entering), tuple(leaving)) for _, _, entering, leaving in groups]
+
+
+def refuse_half_elevations(pieces: Mapping[str, Piece], values: Mapping[str, Any]) -> None:
+    """InputError where a stream states an elevation and one it turns into does not: 0 m would be taken for it.
+
+    ``values`` holds what is given, shape (N,). An elevation of 0 is the datum itself and asks for nothing.
+    """
+    faults: dict[str, Fault] = {}
+    for piece in pieces.values():
+        for inlets, outlets in balance_groups(piece):
+            states = (*inlets, *outlets)
+            stated = [state for state in states if f"states.{state}.elevation" in values]
+            above = [state for state in stated if values[f"states.{state}.elevation"][0] != 0.0]
+            for state in states:
+                if above and state not in stated:
+                    path = f"states.{state}.elevation"
+                    faults[path] = Fault(
+                        f"The elevation is stated for state {', '.join(above)} but not for state {state} of "
+                        f"{piece.title}; to leave it out would count it as zero.",
+                        path,
+                        expected="an elevation above the same datum for every state of the piece, or for none",
+                    )
+    if faults:
+        raise InputError(faults.values())
 
 
 def _shared_states(pieces: Mapping[str, Piece], plant: Plant) -> list[Fault]:

@@ -12,7 +12,7 @@ of that value there.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 __all__ = [
@@ -40,10 +40,14 @@ def token(path: str) -> str:
 
 @dataclass(frozen=True)
 class Equation:
-    """One line of the working: left and right side as LaTeX templates."""
+    """One line of the working: left and right side as LaTeX templates.
+
+    ``evaluate`` computes the right side from values by path where that is plain arithmetic, else it is None.
+    """
 
     left: str
     right: str
+    evaluate: Callable[[Mapping[str, Array]], Array] | None = field(default=None, compare=False, repr=False)
 
     @property
     def latex(self) -> str:
@@ -186,6 +190,9 @@ class Balance:
 
     def solved(self, path: str) -> Equation:
         """The equation written for one variable."""
+        return replace(self._written(path), evaluate=lambda values: self.direct(path, values))
+
+    def _written(self, path: str) -> Equation:
         if path in self.forms:
             return self.forms[path]
         slope = [term.without(path) for term in self.terms if path in term.factors]
@@ -263,7 +270,21 @@ class Formula:
 
     def balanced(self) -> Equation:
         """The equation as it stands."""
-        return Equation(token(self.output), self.latex)
+        return self._equation(self.output, self.latex, self.evaluate, self.inputs)
+
+    def turned(self, path: str) -> Equation:
+        """The equation written for an input that has an inverse."""
+        inverse = self.inverses[path]
+        return self._equation(path, inverse.latex, inverse.evaluate, self.turned_inputs(path))
+
+    def turned_inputs(self, path: str) -> tuple[str, ...]:
+        """What the inverse of an input takes, in order."""
+        return tuple(self.output if known == path else known for known in self.inputs)
+
+    def _equation(self, path: str, latex: str, evaluate: Callable[..., Array], inputs: tuple[str, ...]) -> Equation:
+        if self.fluids:  # a property model stands in it
+            return Equation(token(path), latex)
+        return Equation(token(path), latex, lambda values: evaluate(*(values[known] for known in inputs)))
 
     def words(self, path: str) -> str:
         """The sentence when the relation is solved for a path."""

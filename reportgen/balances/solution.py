@@ -9,6 +9,7 @@ from typing import Any, Literal
 import numpy as np
 from numpy.typing import NDArray
 
+from reportgen.balances.doubts import Doubt
 from reportgen.balances.plant import Piece, Plant
 from reportgen.balances.relations import Equation
 from reportgen.errors import Fault
@@ -106,7 +107,9 @@ class Solution:
 
     ``values``: path to samples; phases are arrays of text. ``reasons``: why a value is NaN in the base case.
     ``states``: state id to the property model's own State. ``accounts``: by owner (``equipment.X``, ``trains.T``,
-    ``total``). ``warnings``: faults that do not stop the evaluation, each with its path.
+    ``total``). ``warnings``: faults that do not stop the evaluation, each with its path: what has no value and why.
+    ``doubts``: values that could come out where they cannot be meant. ``lacking``: path of a value that is NaN in the
+    base case to the paths it would have been made from.
     """
 
     plant: Plant
@@ -117,6 +120,8 @@ class Solution:
     accounts: dict[str, Account] = field(default_factory=dict)
     warnings: list[Fault] = field(default_factory=list)
     reasons: dict[str, str] = field(default_factory=dict)
+    lacking: dict[str, tuple[str, ...]] = field(default_factory=dict)
+    doubts: list[Doubt] = field(default_factory=list)
     states: dict[str, Any] = field(default_factory=dict)
 
     def curves(self, points: int = 41) -> list[Curve]:

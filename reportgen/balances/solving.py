@@ -9,9 +9,9 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.balances.accounting import add_results
-from reportgen.balances.doubts import doubts
+from reportgen.balances.doubts import Doubt, doubts
 from reportgen.balances.newton import Coupled, NoSolution
-from reportgen.balances.plant import Plant, pieces_of
+from reportgen.balances.plant import Plant, balance_groups, pieces_of, refuse_half_elevations
 from reportgen.balances.properties import known_pair, state_from, why_missing
 from reportgen.balances.relations import Balance, Equation, Formula, token
 from reportgen.balances.solution import Assumption, Solution, Step
@@ -69,11 +69,12 @@ def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
         path: np.array(np.broadcast_to(np.asarray(value, dtype=float), (columns,))) for path, value in givens.items()
     }
     pieces = pieces_of(plant, frozenset(values))
+    refuse_half_elevations(pieces, values)
     network = build_network(plant, pieces, frozenset(values))
     solution = Solution(plant, pieces, values)
     _Run(solution, network, columns).blocks()
     add_results(solution, network)
-    solution.warnings.extend(doubts(solution))
+    solution.doubts.extend(doubts(solution))
     return solution
 
 
@@ -151,9 +152,8 @@ class _Run:
             self.doubtful.add(state)
         if state in self.doubtful and str(np.asarray(result.phase).flat[0]) != "two-phase":
             text = f"The pressure of state {state} is not given; it was found from temperature and enthalpy, "
-            text += "which hardly depend on it."
-            hint = "State the pressure or the pressure loss."
-            self.solution.warnings.append(Fault(text, f"{prefix}pressure", hint=hint))
+            text += "which hardly depend on it. State the pressure or the pressure loss."
+            self.solution.doubts.append(Doubt("pressure-from-enthalpy", f"states.{state}", f"{prefix}pressure", text))
         solved = []
         for name in REPORTED:
             path = prefix + name
@@ -231,12 +231,11 @@ class _Run:
                 equation = relation.solved(unknown)
             elif isinstance(relation, Formula) and relation.output == unknown:
                 result = relation.evaluate(*(self.values[path] for path in relation.inputs))
-                equation, fluids = Equation(token(unknown), relation.latex), relation.fluids
+                equation, fluids = relation.balanced(), relation.fluids
             elif isinstance(relation, Formula) and unknown in relation.inverses:
-                inverse = relation.inverses[unknown]
-                inputs = [relation.output if path == unknown else path for path in relation.inputs]
-                result = inverse.evaluate(*(self.values[path] for path in inputs))
-                equation, fluids = Equation(token(unknown), inverse.latex), relation.fluids
+                inputs = relation.turned_inputs(unknown)
+                result = relation.inverses[unknown].evaluate(*(self.values[path] for path in inputs))
+                equation, fluids = relation.turned(unknown), relation.fluids
             else:
                 return False
         array = np.array(np.broadcast_to(np.asarray(result, dtype=float), (self.columns,)))
@@ -278,6 +277,7 @@ class _Run:
             message = f"{relation.name} of {relation.owner} cannot be solved for {unknown}: {reason}."
             raise SolutionError(Fault(message, unknown, found=numbers or None))
         self.solution.reasons[unknown] = reason
+        self.solution.lacking[unknown] = tuple(others)
 
     def _together(self, block: Block) -> None:
         """Solve several relations at once."""
@@ -363,16 +363,18 @@ class _Run:
 
 
 def _neglected(solution: Solution) -> list[Assumption]:
-    """Kinetic and potential energy left out at one stream of a piece while another stream of it states them."""
+    """Kinetic and potential energy left out at one stream of a piece while another it passes into states them."""
     found = {}
     for piece in solution.pieces.values():
-        states = dict.fromkeys(state for _, _, state in piece.connections())
-        for name, words in (
-            ("velocity", "The kinetic energy of stream {} is neglected."),
-            ("elevation", "Stream {} is at the datum of elevations."),
-        ):
-            silent = [state for state in states if f"states.{state}.{name}" not in piece.given]
-            if silent and len(silent) < len(states):
+        for inlets, outlets in balance_groups(piece):
+            states = dict.fromkeys((*inlets, *outlets))
+            for name, words in (
+                ("velocity", "The kinetic energy of stream {} is neglected."),
+                ("elevation", "Stream {} is at the datum of elevations."),
+            ):
+                silent = [state for state in states if f"states.{state}.{name}" not in piece.given]
+                if len(silent) == len(states):
+                    continue
                 for state in silent:
                     key = f"states.{state}.no_{name}"
                     affects = (f"states.{state}.{name}",)

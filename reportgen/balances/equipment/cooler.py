@@ -1,7 +1,7 @@
 """Cooler: a stream that gives up heat to the outside. The heat is positive into the fluid, hence negative here.
 
-Exergetic efficiency: exergy of the heat given off over that given up by the stream,
-ε = −(1 − T0/T_b) Q̇/(ṁ (e_1 − e_2)); zero when the heat leaves at the surroundings' temperature.
+Exergetic efficiency: exergy gained over exergy given up by stream and heat, ε = −(1 − T0/T_b) Q̇/(ṁ (e_1 − e_2)), and
+its reciprocal below the surroundings' temperature; zero when the heat leaves at the surroundings' temperature.
 Entropy generation number: lost work over heat.
 """
 
@@ -15,5 +15,4 @@ KIND = heat_kind(
     "A stream that gives up heat.",
     heat="Heat flow into the fluid: negative, as the fluid gives it up.",
     takes_up=False,
-    exergetic_efficiency="Exergy of the heat given off over exergy given up by the stream.",
 )

@@ -16,6 +16,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any
 
+from reportgen.balances.doubts import Doubt
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
@@ -117,34 +118,47 @@ def stretches(piece: Piece) -> list[Stretch]:
     ]
 
 
-def doubts(piece: Piece, base: Callable[[str], float]) -> list[tuple[str, str]]:
+def doubts(piece: Piece, samples: Callable[[str], Any]) -> list[Doubt]:
     """Temperatures that cross: at an end in any arrangement, or inside one in counterflow.
 
-    The streams are compared at equal shares of the duty, pressures changing evenly with it.
+    The streams are compared at equal shares of the duty, pressures changing evenly with it. The place where they come
+    closest is looked for in the base case; the difference there is taken along the sample axis.
     """
     import numpy as np
 
-    share = np.linspace(0.0, 1.0, _PROFILE_POINTS)
-    profiles = []
+    sides = []
     for side, first, last in (("hot", "outlet", "inlet"), ("cold", "inlet", "outlet")):
         states = [piece.one(f"{side}_{end}") for end in (first, last)]
-        ends = {name: [base(f"states.{s}.{name}") for s in states] for name in ("pressure", "specific_enthalpy")}
-        if not np.isfinite([*ends["pressure"], *ends["specific_enthalpy"]]).all():
-            return []
-        along = {name: pair[0] + (pair[1] - pair[0]) * share for name, pair in ends.items()}
-        profiles.append(np.asarray(piece.fluid(states[0]).at(errors="mask", **along).temperature, dtype=float))
-    difference = profiles[0] - profiles[1]
-    if not np.nanmin(difference) < -_ROUNDING_OF_TEMPERATURE:
+        ends = {name: [samples(f"states.{s}.{name}") for s in states] for name in ("pressure", "specific_enthalpy")}
+        sides.append((piece.fluid(states[0]), ends))
+
+    def difference(share: Any, columns: Any) -> Any:
+        hot, cold = (
+            fluid.at(
+                errors="mask",
+                **{name: a[columns] + (b[columns] - a[columns]) * share for name, (a, b) in ends.items()},
+            ).temperature
+            for fluid, ends in sides
+        )
+        return np.asarray(hot, dtype=float) - np.asarray(cold, dtype=float)
+
+    share = np.linspace(0.0, 1.0, _PROFILE_POINTS)
+    profile = difference(share, 0)
+    if not np.isfinite(profile).any():
         return []
-    place = int(np.nanargmin(difference))
+    place = int(np.nanargmin(profile))
+    measured = difference(share[place], slice(None))
     where = (
-        "at the cold end" if place == 0 else "at the hot end" if place == share.size - 1 else "inside, in counterflow,"
+        "At the cold end" if place == 0 else "At the hot end" if place == share.size - 1 else "Inside, in counterflow,"
     )
     text = (
-        f"{piece.title}: the temperatures cross. {where[0].upper()}{where[1:]} the hot stream would be "
-        f"{-difference[place]:.3g} K colder than the cold one; heat cannot flow there as stated."
+        f"{piece.title}: the temperatures ⟦cross|may cross⟧. {where} the hot stream ⟦would|may⟧ be colder than the "
+        "cold one; heat cannot flow there as stated. The value is the difference of the two temperatures."
     )
-    return [(piece.path("duty"), text)]
+    measured = np.where(np.abs(measured) <= _ROUNDING_OF_TEMPERATURE, 0.0, measured)
+    return [
+        Doubt("temperature-cross", piece.owner, piece.path("duty"), text, measured, dimension="temperature_difference")
+    ]
 
 
 KIND = Kind(
