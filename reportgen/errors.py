@@ -25,6 +25,7 @@ class Fault:
 
     ``message`` is a full sentence without the place. ``path`` is the value's path (``states.1.pressure``),
     ``found`` what was found there, ``expected`` what would do, ``hint`` the next step or the nearest valid name.
+    ``numbers`` are values that were found, by path [SI]; who knows the units of display writes them into ``found``.
     """
 
     message: str
@@ -35,6 +36,7 @@ class Fault:
     found: str | None = None
     expected: str | None = None
     hint: str | None = None
+    numbers: tuple[tuple[str, float], ...] = ()
 
     def at(self, file: str | None, line: int | None, column: int | None = None) -> Fault:
         """The same fault with its place in a file filled in."""
@@ -54,8 +56,9 @@ class Fault:
     def __str__(self) -> str:
         head = ": ".join(part for part in (self.place, self.path) if part)
         text = f"{head}: {self.message}" if head else self.message
-        if self.found is not None:
-            text += f" Found: {self.found}."
+        found = self.found or ", ".join(f"{path} = {value:.6g}" for path, value in self.numbers)
+        if found:
+            text += f" Found: {found}."
         if self.expected is not None:
             text += f" Would do: {self.expected}."
         if self.hint is not None:

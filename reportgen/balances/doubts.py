@@ -132,8 +132,11 @@ def _efficiency(piece: Piece, name: str, samples: Callable[[str], Any], scale: f
         text += " although no heat crosses the boundary: what is given cannot be true together."
     else:
         key = "efficiency"
-        text += ": either heat through the boundary helps, as in a cooled compressor, and the number says nothing of "
-        text += "the losses, or the data are wrong."
+        if name == "exergetic_efficiency":
+            text += ": either heat brings exergy that this efficiency leaves out, or the data are wrong."
+        else:
+            text += ": either the machine is cooled, or heated, and the number says nothing of its losses, or the data "
+            text += "are wrong."
     measured = _snapped(samples(piece.path(name)), 1.0, _ROUNDING)
     return Doubt(key, piece.owner, piece.path(name), text, measured, 1.0, "below", "efficiency")
 

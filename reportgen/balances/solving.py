@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
 import numpy as np
@@ -137,13 +137,15 @@ class _Run:
         enthalpy = np.asarray(result.specific_enthalpy)
         missing = ~np.isfinite(enthalpy)
         if missing[0]:
-            told = " and ".join(f"{name.replace('_', ' ')} = {_number(inputs[name][0], name)}" for name in pair)
             absent = [prefix + name for name in pair if not np.isfinite(inputs[name][0])]
             reason = self.solution.reasons.get(absent[0]) if absent else None
             if reason is None:
                 reason = f"it depends on {absent[0]}, which has no value" if absent else why_missing(result, 0)
-            message = f"State {state} ({fluid.title}) cannot be evaluated with {told}: {reason}"
-            raise SolutionError(Fault(message, f"states.{state}"))
+            told = " and ".join(name.replace("_", " ") for name in pair)
+            message = f"State {state} ({fluid.title}) cannot be evaluated from its {told}: {reason}"
+            raise SolutionError(
+                Fault(message, f"states.{state}", numbers=self._numbers(prefix + name for name in pair))
+            )
         if missing.any():
             text = f"State {state} has no value in {int(missing.sum())} of {self.columns} columns: "
             text += why_missing(result, int(np.argmax(missing)))
@@ -199,11 +201,10 @@ class _Run:
         result = fluid.at(errors="mask", pressure=ambient, **{given: self.values[known]})
         array = np.array(getattr(result, name), dtype=float)
         if np.isnan(array[0]):
-            told = f"{given.replace('_', ' ')} = {_number(self.values[known][0], given)}"
-            message = (
-                f"State {relation.state} ({fluid.title}) cannot be evaluated with {told}: {why_missing(result, 0)}"
-            )
-            raise SolutionError(Fault(message, f"states.{relation.state}"))
+            told = given.replace("_", " ")
+            message = f"State {relation.state} ({fluid.title}) cannot be evaluated from its {told}: "
+            message += why_missing(result, 0)
+            raise SolutionError(Fault(message, f"states.{relation.state}", numbers=self._numbers([known])))
         self.values[unknown] = array
         equation = Equation(token(unknown), rf"{NAMES[name].symbol}\left({token(known)}\right)")
         sentence = (
@@ -273,9 +274,8 @@ class _Run:
         else:
             reason = f"the factor of {unknown} in the equation is zero, so that any value would satisfy it"
         if needed:
-            numbers = ", ".join(f"{path} = {self.values[path][0]:.6g}" for path in others)
             message = f"{relation.name} of {relation.owner} cannot be solved for {unknown}: {reason}."
-            raise SolutionError(Fault(message, unknown, found=numbers or None))
+            raise SolutionError(Fault(message, unknown, numbers=self._numbers(others)))
         self.solution.reasons[unknown] = reason
         self.solution.lacking[unknown] = tuple(others)
 
@@ -335,12 +335,20 @@ class _Run:
         )
 
     def _doubt_pressures(self, block: Block) -> None:
-        """Note states whose pressure was found from temperature and enthalpy."""
+        """Note states whose pressure was found from temperature and enthalpy, with nothing else known of them."""
+        settled = {
+            relation.state
+            for relation in block.relations
+            if isinstance(relation, PropertyRelation)
+            and relation.path not in block.unknowns
+            and relation.output not in ("temperature", "specific_enthalpy")
+        }
         for relation, path in zip(block.relations, block.unknowns, strict=True):
             if (
                 isinstance(relation, PropertyRelation)
                 and relation.output == "temperature"
                 and path.endswith("pressure")
+                and relation.state not in settled
             ):
                 self.doubtful.add(relation.state)
 
@@ -350,13 +358,15 @@ class _Run:
         known = dict.fromkeys(
             path for relation in block.relations for path in relation.variables if path in self.values
         )
-        numbers = ", ".join(f"{path} = {self.values[path][0]:.6g}" for path in list(known)[:8])
         return Fault(
             f"The relations {relations}{more} have no common solution that could be found: {failure.reason}.",
             failure.paths[0] if failure.paths else block.unknowns[0],
-            found=numbers or None,
+            numbers=self._numbers(list(known)[:8]),
             hint=f"Unknown together: {', '.join(failure.paths)}.",
         )
+
+    def _numbers(self, paths: Iterable[str]) -> tuple[tuple[str, float], ...]:
+        return tuple((path, float(self.values[path][0])) for path in paths if np.isfinite(self.values[path][0]))
 
     def _fluid_of(self, state: str) -> Any:
         return self.plant.fluids[self.plant.states[state]]
@@ -380,12 +390,6 @@ def _neglected(solution: Solution) -> list[Assumption]:
                     affects = (f"states.{state}.{name}",)
                     found[key] = Assumption(key, words.format(state), f"states.{state}", affects)
     return list(found.values())
-
-
-def _number(value: float, name: str) -> str:
-    entry = NAMES[name]
-    unit = "" if entry.unit == "1" else f" {entry.unit}"
-    return f"{value:.6g}{unit}"
 
 
 def _needed(blocks: Sequence[Block]) -> set[int]:

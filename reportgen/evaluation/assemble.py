@@ -38,6 +38,7 @@ from reportgen.evaluation.sections import (
     plant_section,
     train_of,
 )
+from reportgen.evaluation.summary import summary
 from reportgen.evaluation.trials import Trial, Variant
 from reportgen.quantities import Display
 from reportgen.record import Record
@@ -78,10 +79,11 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
     totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
     settle_zeros(plant, totals)
     criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
-    automatic = _automatic(calculation, solution, Trial(plant, _variant(definition, axis), criteria))
+    display = Display(calculation.units)
+    automatic = _automatic(calculation, solution, Trial(plant, _variant(definition, axis), criteria), display)
     accounts = accounts_section(calculation, solution)
-    summary = _summary(calculation, plant, totals)
-    relations = relations_section(plant, solution, Display(calculation.units))
+    headlines = summary(plant, solution, totals)
+    relations = relations_section(plant, solution, display)
     return Record(
         {
             "calculation": calculation_section(calculation),
@@ -93,7 +95,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             "assumptions": assumption_list(calculation.assumptions, automatic),
             "cautions": in_order(
                 [
-                    *raised(catalogue(), plant, calculation.cautions),
+                    *raised(catalogue(), replace(plant, assumptions=automatic), calculation.cautions),
                     *unevaluated(plant, solution.warnings),
                     *lost_samples(plant),
                 ]
@@ -104,8 +106,8 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             },
             "accounts": accounts,
             "criteria": criteria,
-            "summary": summary,
-            "uncertainty_budget": budgets(plant, dict.fromkeys([*summary, *(entry["path"] for entry in criteria)])),
+            "summary": headlines,
+            "uncertainty_budget": budgets(plant, dict.fromkeys([*headlines, *(entry["path"] for entry in criteria)])),
             "figures": [
                 *temperature_entropy_figures(plant, solution),
                 *bar_figures(plant, train_of(calculation), accounts),
@@ -130,6 +132,7 @@ def _evaluated(
         heats={tag: tuple(piece.kind.heats(piece)) for tag, piece in pieces.items()},
         limits={tag: piece.limits for tag, piece in calculation.equipment.items() if piece.limits is not None},
         trains={identifier: train.equipment for identifier, train in calculation.trains.items()},
+        doubts=solution.doubts,
     )
 
 
@@ -145,7 +148,9 @@ def _variant(definition: Plant, axis: SampleAxis) -> Variant:
     return solve
 
 
-def _automatic(calculation: Calculation, solution: Solution, trial: Trial) -> list[AutomaticAssumption]:
+def _automatic(
+    calculation: Calculation, solution: Solution, trial: Trial, display: Display
+) -> list[AutomaticAssumption]:
     """Assumptions of the property models, then those the balances took, each with its test where there is one."""
     found = fluid_assumptions(trial, calculation.fluids, real_counterpart, property_model)
     streams = stream_assumption(trial.plant)
@@ -157,32 +162,6 @@ def _automatic(calculation: Calculation, solution: Solution, trial: Trial) -> li
         )
         test = None
         if port is not None and item.owner.startswith("equipment."):
-            test = boundary_temperature_test(trial, item.owner.split(".", 1)[1], port.temperature)
+            test = boundary_temperature_test(trial, item.owner.split(".", 1)[1], port.temperature, display)
         found.append(AutomaticAssumption(item.id, item.text, "not stated in the file", item.affects, test))
     return found
-
-
-def _summary(calculation: Calculation, plant: EvaluatedPlant, totals: list[str]) -> list[str]:
-    """Headline results: generation, lost work and power of each piece, then of trains and the whole.
-
-    Sums over a single piece repeat what the piece says and are left out. Without equipment, states are the results.
-    """
-    owners = [f"equipment.{tag}" for tag in plant.kinds]
-    owners += [f"trains.{name}" for name, tags in plant.trains.items() if len(tags) > 1]
-    owners += ["total"] if len(totals) > 1 else []
-    found = []
-    for owner in owners:
-        names = ["entropy_generation", "lost_work", "power"]
-        if owner.startswith("equipment.") and f"{owner}.isentropic_efficiency" not in calculation.inputs:
-            names.append("isentropic_efficiency")
-        found += [path for name in names if (path := f"{owner}.{name}") in plant.values]
-    if not plant.kinds:
-        found = [
-            f"states.{state}.{name}" for state in plant.state_fluids for name in ("temperature", "specific_entropy")
-        ]
-    # A generation that could not be evaluated must be seen to be missing; a power of zero says nothing.
-    return [
-        path
-        for path in found
-        if path.endswith("entropy_generation") or (plant.has(path) and plant.samples(path)[0] != 0.0)
-    ]

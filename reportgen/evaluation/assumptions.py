@@ -6,6 +6,7 @@ by a plausible other extreme.
 
 from __future__ import annotations
 
+import functools
 import math
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
@@ -13,13 +14,16 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from reportgen.evaluation.audits import entropy_resolution
 from reportgen.evaluation.decisions import NEGLIGIBLE_PART_OF_UNCERTAINTY
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.models import fluid_name
+from reportgen.evaluation.phases import is_resolved
 from reportgen.evaluation.trials import Trial, untested
 
 if TYPE_CHECKING:
     from reportgen.fluids.model import Fluid
+    from reportgen.quantities import Display
     from reportgen.spec.calculation import Assumption, FluidSpec
 
 __all__ = [
@@ -27,6 +31,7 @@ __all__ = [
     "assumption_list",
     "boundary_temperature_test",
     "fluid_assumptions",
+    "mean_fluid_temperature",
     "stream_assumption",
 ]
 
@@ -43,13 +48,17 @@ TESTED = "tested"
 
 @dataclass(frozen=True)
 class AutomaticAssumption:
-    """An assumption that the program took, with the result of its test (None: there is none for it)."""
+    """An assumption that the program took, with the result of its test (None: there is none for it).
+
+    ``against_better`` says that the test puts something better in its place, and not only another plausible extreme.
+    """
 
     id: str
     text: str
     basis: str
     affects: tuple[str, ...]
     test: dict[str, Any] | None = None
+    against_better: bool = False
 
 
 def assumption_list(
@@ -124,7 +133,7 @@ def fluid_assumptions(
             test = _model_test(trial, identifier, counterpart, condition)
             basis = "property model chosen in the file"
         found.append(
-            AutomaticAssumption(f"fluids.{identifier}.ideal-gas", text, basis, (f"fluids.{identifier}",), test)
+            AutomaticAssumption(f"fluids.{identifier}.ideal-gas", text, basis, (f"fluids.{identifier}",), test, True)
         )
         if specification.heat_capacity is not None:
             text = f"Fluid {name} has the constant heat capacity {specification.heat_capacity:g} J/(kg K)."
@@ -137,6 +146,7 @@ def fluid_assumptions(
                     "heat capacity given in the file",
                     (f"fluids.{identifier}",),
                     test,
+                    True,
                 )
             )
     return found
@@ -146,7 +156,8 @@ def stream_assumption(plant: EvaluatedPlant) -> AutomaticAssumption | None:
     """Kinetic and potential energy left out of streams without velocity; None when every stream states its own.
 
     The basis says up to which velocity that is negligible: V = √(2 U(h)/3), where V²/2 reaches a third of the expanded
-    uncertainty of the specific enthalpy, for the stream where this is lowest.
+    uncertainty of the specific enthalpy, for the stream where this is lowest. Streams whose phase is not resolved have
+    no such uncertainty and are passed over.
     """
     streams = [
         state
@@ -157,33 +168,64 @@ def stream_assumption(plant: EvaluatedPlant) -> AutomaticAssumption | None:
         return None
     basis = "neither velocity nor elevation stated in the file"
     bounds = []
-    for state in streams:
+    for state in filter(functools.partial(is_resolved, plant), streams):
         uncertainty = plant.estimate(f"states.{state}.specific_enthalpy").expanded_uncertainty
         if uncertainty > 0.0:
             bounds.append((math.sqrt(2.0 * NEGLIGIBLE_PART_OF_UNCERTAINTY * uncertainty), state))
     if bounds:
         velocity, state = min(bounds)
+        words = f"{float(f'{velocity:.2g}'):g} m/s (state {state})"
         basis += (
-            f"; up to {velocity:.2g} m/s (state {state}) kinetic energy stays below a third of the expanded "
-            "uncertainty of the specific enthalpy"
+            f"; up to {words} kinetic energy stays below a third of the expanded uncertainty of the specific enthalpy"
         )
     text = "Kinetic and potential energy are left out of streams that state no velocity or elevation."
     return AutomaticAssumption("streams.kinetic-energy", text, basis, ())
 
 
-def boundary_temperature_test(trial: Trial, tag: str, temperature_path: str) -> dict[str, Any] | None:
+def boundary_temperature_test(trial: Trial, tag: str, temperature_path: str, display: Display) -> dict[str, Any] | None:
     """What changes when heat leaves at the mean temperature of the fluid instead of that of the surroundings.
 
     The two are the extremes: drawn close to the fluid, the boundary leaves the drop of temperature towards the
-    surroundings outside; drawn in the surroundings, it takes it in. None when the temperatures are not known.
+    surroundings outside; drawn in the surroundings, it takes it in. None when the temperatures are not known. A
+    boundary by which the piece would destroy entropy is told to be none, and not compared.
     """
     plant = trial.plant
-    temperatures = [plant.samples(f"states.{state}.temperature")[0] for state in plant.states_at(tag)]
-    if not temperatures or not np.all(np.isfinite(temperatures)):
+    mean = mean_fluid_temperature(plant, tag)
+    if not math.isfinite(mean):
         return None
-    mean = float(np.mean(temperatures))
-    condition = f"With the boundary at the mean temperature of the fluid in {tag}, {mean:.4g} K,"
-    return trial.run(condition, givens={temperature_path: mean})
+    words = f"the mean temperature of the fluid in {tag}, {display.show(mean, 'temperature').text}"
+    generated = f"equipment.{tag}.entropy_generation"
+    resolution = entropy_resolution(plant, (tag,))
+    return trial.run(
+        f"With the boundary at {words},",
+        givens={temperature_path: mean},
+        impossible=lambda values: (
+            f"Not compared: a boundary at {words}, would have {tag} destroy entropy, so it lies at a lower one."
+            if values.get(generated, math.nan) < -resolution
+            else None
+        ),
+    )
+
+
+def mean_fluid_temperature(plant: EvaluatedPlant, tag: str) -> float:
+    """Temperature at which the fluid in a piece gives off or takes up its heat, in the mean [K]; NaN when not known.
+
+    For one stream without work this is the entropic mean T = Δh/Δs, by which heat at changing temperature carries
+    its entropy, as long as it lies between the temperatures of the states (a change of pressure changes the entropy
+    too). Otherwise it is the arithmetic mean over all states.
+    """
+    states = plant.states_at(tag)
+    temperatures = [float(plant.samples(f"states.{state}.temperature")[0]) for state in states]
+    if not temperatures or not np.all(np.isfinite(temperatures)):
+        return math.nan
+    if len(states) == 2 and not plant.power_signs[tag]:
+        heat, entropy = (
+            float(np.subtract(*(plant.samples(f"states.{state}.{name}")[0] for state in states)))
+            for name in ("specific_enthalpy", "specific_entropy")
+        )
+        if entropy != 0.0 and min(temperatures) <= heat / entropy <= max(temperatures):
+            return heat / entropy
+    return float(np.mean(temperatures))
 
 
 def _model_test(trial: Trial, identifier: str, other: Any, condition: str) -> dict[str, Any] | None:

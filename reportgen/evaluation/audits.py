@@ -13,7 +13,7 @@ import numpy as np
 import numpy.typing as npt
 
 from reportgen.evaluation import uncertainty
-from reportgen.evaluation.decisions import second_law
+from reportgen.evaluation.decisions import SecondLaw, second_law
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.sampling import SampleAxis
 
@@ -36,6 +36,10 @@ FREE_FALL = 9.80665
 BALANCE_RESOLUTION = 1e-9
 #: The same for heat that an energy balance leaves, as a part of the energy flows in it.
 HEAT_RESOLUTION = 1e-10
+#: The same for what is left of the balances themselves, as a part of the terms of each.
+RESIDUAL_RESOLUTION = 1e-10
+#: Values that hold what is left of a balance.
+RESIDUALS = {"mass": ("mass_imbalance",), "energy": ("energy_imbalance",), "entropy": ("entropy_imbalance", "closure")}
 
 HEAVIEST = 3
 
@@ -46,7 +50,7 @@ def settle_zeros(plant: EvaluatedPlant, totals: Sequence[str]) -> None:
     A splitter takes up no heat and generates nothing, but differences of its flows leave some 1e-16 of them; shown,
     such a number would pretend to a meaning. Concerned are heat below HEAT_RESOLUTION of the energy flows through its
     owner and entropy generation below BALANCE_RESOLUTION of the entropy flows, in every column, with the values
-    derived from them.
+    derived from them; and what is left of each balance below RESIDUAL_RESOLUTION of its terms, column by column.
     """
     for owner, tags in _owners(plant, totals):
         for quantity, part, names in (
@@ -60,6 +64,11 @@ def settle_zeros(plant: EvaluatedPlant, totals: Sequence[str]) -> None:
                 for name in names:
                     if plant.has(f"{owner}.{name}"):
                         plant.values[f"{owner}.{name}"][:] = 0.0
+        for quantity, (_, scale) in balance_round(plant, tags).items():
+            for name in RESIDUALS[quantity]:
+                left = plant.values.get(f"{owner}.{name}")
+                if left is not None:
+                    left[np.abs(left) <= RESIDUAL_RESOLUTION * scale] = 0.0
 
 
 def second_law_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str, Any]]:
@@ -88,11 +97,26 @@ def second_law_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[
                 "expanded_uncertainty": estimate.expanded_uncertainty,
                 "interval": list(estimate.interval),
                 "resolution": resolution,
-                "verdict": second_law(estimate.value, estimate.expanded_uncertainty, resolution),
+                "verdict": (verdict := second_law(estimate.value, estimate.expanded_uncertainty, resolution)),
+                "text": _VERDICTS[verdict].format(owner=_owner_words(owner)),
                 "heaviest_inputs": heaviest_inputs(plant.axis, plant.samples(path)),
             }
         )
     return entries
+
+
+_VERDICTS: dict[SecondLaw, str] = {
+    "generates entropy": "{owner} generates entropy: the whole interval lies above zero.",
+    "not resolved from reversible": "{owner} is not resolved from reversible: the interval of its entropy generation "
+    "reaches across zero.",
+    "impossible as given": "{owner} is impossible as given: the whole interval of its entropy generation lies below "
+    "zero.",
+}
+
+
+def _owner_words(owner: str) -> str:
+    place, _, name = owner.partition(".")
+    return {"equipment": name, "trains": f"Train {name}"}.get(place, "The whole")
 
 
 def entropy_resolution(plant: EvaluatedPlant, tags: Sequence[str]) -> float:
@@ -113,13 +137,15 @@ def closure_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str
 
     For trains and the whole the balance is drawn round the outer boundary, and what it leaves is the entropy the
     boundary sees less the sum over the parts. Quantities that cannot be computed (no flow, no boundary temperature)
-    are left out.
+    are left out; what is left of a balance by rounding is 0, as among the values.
     """
     units = {"mass": "kg/s", "energy": "W", "entropy": "W/K"}
     entries = []
     for owner, tags in _owners(plant, totals):
         for quantity, (residual, scale) in balance_round(plant, tags).items():
             if np.isfinite(residual):
+                if abs(residual) <= RESIDUAL_RESOLUTION * scale:
+                    residual = 0.0
                 entries.append(
                     {
                         "owner": owner,

@@ -5,7 +5,7 @@ The class holds and looks up; it computes nothing of its own.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any, Literal, NamedTuple
 
@@ -15,7 +15,9 @@ import numpy.typing as npt
 from reportgen.evaluation.sampling import ATMOSPHERE, Estimate, SampleAxis
 
 if TYPE_CHECKING:
+    from reportgen.balances.doubts import Doubt
     from reportgen.balances.relations import HeatPort
+    from reportgen.evaluation.assumptions import AutomaticAssumption
     from reportgen.fluids.model import Fluid
     from reportgen.quantities import Quantity
     from reportgen.spec.calculation import Limits
@@ -48,6 +50,8 @@ class EvaluatedPlant:
         heats: equipment tag to its heat ports (``balances.HeatPort``: paths of heat, temperature, entropy).
         limits: equipment tag to its ``limits`` table, only where it has one.
         trains: train id to the tags of its pieces; empty when the file has no trains.
+        doubts: values that could come out where they cannot be meant, as the balances found them.
+        assumptions: those of the program, with their tests; empty until they are tested.
     """
 
     axis: SampleAxis
@@ -60,6 +64,8 @@ class EvaluatedPlant:
     heats: Mapping[str, tuple[HeatPort, ...]]
     limits: Mapping[str, Limits]
     trains: Mapping[str, tuple[str, ...]]
+    doubts: Sequence[Doubt] = ()
+    assumptions: Sequence[AutomaticAssumption] = ()
 
     def samples(self, path: str) -> Array:
         """Samples of a value, shape (N,); all NaN when the plant has no such value."""

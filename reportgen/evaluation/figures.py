@@ -7,6 +7,7 @@ evenly in entropy, with the saturated states put in; processes evenly along the 
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
@@ -94,7 +95,10 @@ def _zero(text: str) -> str:
 def bar_figures(
     plant: EvaluatedPlant, train_of: Mapping[str, str | None], accounts: Mapping[str, Mapping[str, Any]]
 ) -> list[dict[str, Any]]:
-    """Lost work piece by piece, and entropy entering, generated and leaving account by account."""
+    """Lost work piece by piece, and entropy entering, generated and leaving account by account.
+
+    A figure without anything to draw is left out: no entropy generation that could be stated, no work lost anywhere.
+    """
     figures: list[dict[str, Any]] = []
     bars = []
     for tag in plant.kinds:
@@ -110,7 +114,7 @@ def bar_figures(
                     "train": train_of.get(tag),
                 }
             )
-    if bars:
+    if any(bar["value"] != 0.0 for bar in bars):
         figures.append(
             {
                 "id": "lost-work",
@@ -128,7 +132,7 @@ def bar_figures(
             "leaving": account["sum_leaving"],
         }
         for account in accounts.values()
-        if account["generated"] and all(line["value"] is not None for line in account["generated"])
+        if account["generated"] and all(math.isfinite(line["value"]) for line in account["generated"])
     ]
     if complete:
         figures.append(

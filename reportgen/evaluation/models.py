@@ -10,6 +10,8 @@ from typing import TYPE_CHECKING, Any
 from reportgen import balances, fluids
 from reportgen.errors import Fault, InputError, ReportgenError
 from reportgen.evaluation.cautions.fluid_states import freezing_hint
+from reportgen.names import name_of
+from reportgen.quantities import Display
 
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Calculation, FluidSpec
@@ -88,16 +90,25 @@ def real_counterpart(model: Any) -> Any:
 def placed(calculation: Calculation, error: ReportgenError, models: Mapping[str, Any]) -> ReportgenError:
     """The same error with file, line and column put to every fault that names a path.
 
-    Faults of carbon dioxide states without a hint of their own get that of its freezing.
+    Numbers found are written in the units of display. Faults of carbon dioxide states without a hint of their own get
+    that of its freezing.
     """
+    display = Display(calculation.units)
     faults = []
     for fault in error.faults:
+        if fault.numbers and fault.found is None:
+            fault = replace(fault, found=", ".join(_shown(display, *number) for number in fault.numbers))
         parts = (fault.path or "").split(".")
         state = calculation.states.get(parts[1]) if parts[0] == "states" and len(parts) > 1 else None
         if state is not None and fault.hint is None:
             fault = replace(fault, hint=freezing_hint(models[state.fluid]))
         faults.append(located(calculation, fault))
     return type(error)(faults)
+
+
+def _shown(display: Display, path: str, value: float) -> str:
+    name = name_of(path)
+    return f"{path} = {display.show(value, 'ratio' if name is None else name.dimension).text}"
 
 
 def located(calculation: Calculation, fault: Fault) -> Fault:

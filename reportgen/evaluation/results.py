@@ -9,12 +9,12 @@ import numpy as np
 
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.sampling import ATMOSPHERE
-from reportgen.evaluation.working import TOKEN, with_numbers, with_symbols
+from reportgen.evaluation.working import FEWEST_DIGITS, TOKEN, enough_digits, with_numbers, with_symbols
 from reportgen.names import name_of, symbol_of
 from reportgen.quantities import Display
 
 if TYPE_CHECKING:
-    from reportgen.balances import Equation, Solution, Step
+    from reportgen.balances import Equation, Solution
     from reportgen.spec.calculation import Input
 
 __all__ = ["relations_section", "values_section"]
@@ -30,9 +30,10 @@ def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[st
 
     The ``from`` chains end in inputs and in fluids (``fluids.<id>``). A value that is an input itself, written in the
     file or taken by default, has an empty ``from``, or, as a gauge reading, the atmosphere. Which assumptions a value
-    rests on is told by the ``uses`` of its relation. ``direction`` says which way a power is positive.
+    rests on is told by the ``uses`` of its relation. A value that could not be had names those it would have come from.
+    ``direction`` says which way a power is positive.
     """
-    origins, relations = _origins(solution.steps, inputs)
+    origins, relations = _origins(solution, inputs)
     numbers = [path for path, array in solution.values.items() if array.dtype.kind == "f"]
     deviations = dict(
         zip(
@@ -83,12 +84,9 @@ def relations_section(plant: EvaluatedPlant, solution: Solution, display: Displa
     right side is a single value or a constant, there are no numbers but the result.
     """
 
-    def number(path: str) -> str:
-        return _number(plant, display, path)
-
     section = {}
     for step in solution.steps:
-        lines = [_line(equation, number, plant, display) for equation in step.equations]
+        lines = [_line(equation, plant, display) for equation in step.equations]
         section[step.key] = {
             "owner": step.owner,
             "equipment": step.owner.split(".", 1)[1] if step.owner.startswith("equipment.") else None,
@@ -104,7 +102,7 @@ def relations_section(plant: EvaluatedPlant, solution: Solution, display: Displa
     return section
 
 
-def _origins(steps: list[Step], inputs: Mapping[str, Input]) -> tuple[dict[str, tuple[str, ...]], dict[str, str]]:
+def _origins(solution: Solution, inputs: Mapping[str, Input]) -> tuple[dict[str, tuple[str, ...]], dict[str, str]]:
     """Path to the paths it came from, and path to the key of its relation."""
     origins: dict[str, tuple[str, ...]] = {}
     relations: dict[str, str] = {}
@@ -112,14 +110,22 @@ def _origins(steps: list[Step], inputs: Mapping[str, Input]) -> tuple[dict[str, 
         for path in item.applies_to:
             atmosphere = (ATMOSPHERE,) if item.quantity.gauge and path != ATMOSPHERE else ()
             origins[path] = atmosphere if path == item.path else (item.path, *atmosphere)
-    for step in steps:
+    for step in solution.steps:
         for path in step.solves:
             origins.setdefault(path, tuple(use for use in step.uses if not use.startswith("assumptions.")))
             relations.setdefault(path, step.key)
+    for path, uses in solution.lacking.items():
+        known = (use for use in uses if use in solution.values or use.startswith("fluids."))
+        origins.setdefault(path, tuple(known))
     return origins, relations
 
 
-def _line(equation: Equation, number: Any, plant: EvaluatedPlant, display: Display) -> list[str]:
+def _line(equation: Equation, plant: EvaluatedPlant, display: Display) -> list[str]:
+    digits = _operand_digits(equation, plant, display)
+
+    def number(path: str) -> str:
+        return display.show(_base(plant, path), _dimension(path), digits=digits.get(path, FEWEST_DIGITS)).latex
+
     symbols, numbers = with_symbols(equation.right), with_numbers(equation.right, number)
     if TOKEN.search(equation.right) is None or TOKEN.fullmatch(equation.right.strip()):
         numbers = ""  # a constant, or one value taken over: the result repeats it
@@ -127,15 +133,36 @@ def _line(equation: Equation, number: Any, plant: EvaluatedPlant, display: Displ
     if solved is None:
         both = " = ".join(filter(None, (with_numbers(equation.left, number), numbers)))
         return [with_symbols(equation.left), symbols, both, ""]
-    path = solved.group(1)
-    return [with_symbols(equation.left), symbols, numbers, _number(plant, display, path, with_uncertainty=True)]
+    return [with_symbols(equation.left), symbols, numbers, _result(plant, display, solved.group(1))]
 
 
-def _number(plant: EvaluatedPlant, display: Display, path: str, *, with_uncertainty: bool = False) -> str:
-    """LaTeX of a value with its unit; results with as many digits as their uncertainty allows."""
-    name = name_of(path)
-    dimension = "ratio" if name is None else name.dimension
-    if not with_uncertainty or path.rsplit(".", 1)[-1] in RESIDUALS:
-        return display.show(float(plant.samples(path)[0]), dimension).latex
+def _operand_digits(equation: Equation, plant: EvaluatedPlant, display: Display) -> dict[str, int]:
+    """Digits of each number in an equation by which a reader who computes it comes to the result shown."""
+    solved = TOKEN.fullmatch(equation.left.strip())
+    if solved is None or equation.evaluate is None or solved.group(1).rsplit(".", 1)[-1] in RESIDUALS:
+        return {}
+    evaluate, result = equation.evaluate, solved.group(1)
+    shown = _result(plant, display, result)
+    return enough_digits(
+        {path: _base(plant, path) for path in TOKEN.findall(equation.right)},
+        lambda path, value, digits: display.in_formula(value, _dimension(path), digits),
+        evaluate,
+        lambda value: _result(plant, display, result, value) == shown,
+    )
+
+
+def _result(plant: EvaluatedPlant, display: Display, path: str, value: float | None = None) -> str:
+    """LaTeX of a result with its unit, with as many digits as its uncertainty allows; ``value`` in its place."""
     estimate = plant.estimate(path)
-    return display.show(estimate.value, dimension, estimate.expanded_uncertainty or None).latex
+    residual = path.rsplit(".", 1)[-1] in RESIDUALS
+    uncertainty = None if residual else estimate.expanded_uncertainty or None
+    return display.show(estimate.value if value is None else value, _dimension(path), uncertainty).latex
+
+
+def _base(plant: EvaluatedPlant, path: str) -> float:
+    return float(plant.samples(path)[0])
+
+
+def _dimension(path: str) -> str:
+    name = name_of(path)
+    return "ratio" if name is None else name.dimension

@@ -40,10 +40,7 @@ def calculation_section(calculation: Calculation) -> dict[str, Any]:
         **{name: getattr(calculation, name) for name in fields},
         "coverage_factor": calculation.uncertainty.coverage_factor,
         "method": calculation.uncertainty.method,
-        "narratives": {
-            name: vars(narrative)
-            for name, narrative in calculation.narratives.items()
-        },
+        "narratives": {name: vars(narrative) for name, narrative in calculation.narratives.items()},
         "references": [{"id": identifier, "text": item.text} for identifier, item in calculation.references.items()],
         "revisions": [
             {"index": item.index, "date": item.date, "description": item.description} for item in calculation.revisions

@@ -56,16 +56,19 @@ class Trial:
         condition: str,
         fluids: Mapping[str, Any] | None = None,
         givens: Mapping[str, float] | None = None,
+        impossible: Callable[[Mapping[str, float]], str | None] = lambda values: None,
     ) -> dict[str, Any] | None:
         """Solve with some fluids and givens replaced and compare; a plant without solution is told, not hidden.
 
-        ``condition`` opens the finding, such as "With the equation of state of the real fluid".
+        ``condition`` opens the finding, such as "With the equation of state of the real fluid". ``impossible`` says
+        of the other solution why it is none to compare with, or None.
         """
         try:
             values = self.solve(fluids or {}, givens or {})
         except ReportgenError as error:
             return untested(f"Could not be tested. {condition} the plant has no solution: {error.faults[0].message}")
-        return self.compare(values, condition)
+        refused = impossible(values)
+        return self.compare(values, condition) if refused is None else untested(refused)
 
     def compare(self, other: Mapping[str, float], condition: str) -> dict[str, Any] | None:
         """The result that changes most, weighed against its uncertainty, as the ``test`` entry of a record.
@@ -107,7 +110,10 @@ class Trial:
     def _compared_entry(self, path: str, changed: float, turns_a_criterion: bool) -> tuple[dict[str, Any], float]:
         estimate = self.plant.estimate(path)
         difference = changed - estimate.value
-        if abs(difference) <= RESOLUTION * max(abs(changed), abs(estimate.value)):
+        scale = max(abs(changed), abs(estimate.value))
+        if abs(changed) <= RESOLUTION * scale:
+            changed = 0.0
+        if abs(difference) <= RESOLUTION * scale:
             difference = 0.0
         verdict = magnitude(difference, estimate.expanded_uncertainty, estimate.value)
         measure = estimate.expanded_uncertainty if estimate.expanded_uncertainty > 0.0 else abs(estimate.value)

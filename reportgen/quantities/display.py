@@ -149,20 +149,27 @@ class Display:
         # Dividing keeps round numbers round: 101325 Pa / 1e5 is 1.01325 bar exactly, times 1e-5 it is not.
         return (value - scale.offset) / scale.factor
 
-    def show(self, value: float | None, dimension: str, expanded_uncertainty: float | None = None) -> Shown:
+    def show(
+        self,
+        value: float | None,
+        dimension: str,
+        expanded_uncertainty: float | None = None,
+        digits: int = _DIGITS,
+    ) -> Shown:
         """A value [SI] with the expanded uncertainty [SI, same dimension] as the reader sees it.
 
-        None, NaN and infinity are shown as a dash without unit.
+        ``digits`` are the significant digits without uncertainty. None, NaN and infinity are shown as a dash without
+        unit.
         """
         if value is None or not math.isfinite(value):
             return Shown(_MISSING, "", None, r"\text{" + _MISSING + "}")
         unit = self._table[dimension]
-        number, spread, exponent = self._digits(float(value), expanded_uncertainty, dimension, unit)
+        number, spread, exponent = self._digits(float(value), expanded_uncertainty, dimension, unit, digits)
         formula_number, formula_exponent, formula_unit = number, exponent, unit
         if dimension == "temperature":
             formula_unit = _ABSOLUTE[self.units]
             formula_number, _, formula_exponent = self._digits(
-                float(value), expanded_uncertainty, "temperature_difference", formula_unit
+                float(value), expanded_uncertainty, "temperature_difference", formula_unit, digits
             )
         latex = _write(formula_number, formula_exponent, _write_latex)
         return Shown(
@@ -172,9 +179,18 @@ class Display:
             latex=rf"{latex}\,{formula_unit.latex}" if formula_unit.latex else latex,
         )
 
+    def in_formula(self, value: float, dimension: str, digits: int) -> float:
+        """The SI value that a formula shows when it is rounded to so many significant digits of its unit there."""
+        unit = self._table[dimension]
+        if dimension == "temperature":
+            dimension, unit = "temperature_difference", _ABSOLUTE[self.units]
+        scale = conversion(unit.expression, dimension)
+        number, _, _ = self._digits(float(value), None, dimension, unit, digits)
+        return float(number) * scale.factor + scale.offset
+
     @staticmethod
     def _digits(
-        value: float, expanded_uncertainty: float | None, dimension: str, unit: _DisplayUnit
+        value: float, expanded_uncertainty: float | None, dimension: str, unit: _DisplayUnit, digits: int
     ) -> tuple[Decimal, Decimal | None, int]:
         """Rounded value and uncertainty in the unit, with the power of ten to set apart."""
         scale = conversion(unit.expression, dimension)
@@ -184,7 +200,7 @@ class Display:
             spread = _significant(_decimal(float(expanded_uncertainty) / scale.factor), 2)
             number = _to_place(number, spread)
         else:
-            number = _without_end_zeros(_significant(number, _DIGITS))
+            number = _without_end_zeros(_significant(number, digits))
         return number, spread, _shown_exponent(number, spread)
 
 

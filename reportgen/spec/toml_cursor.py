@@ -9,6 +9,7 @@ import re
 import tomllib
 from bisect import bisect_right
 from dataclasses import dataclass
+from typing import Any
 
 from reportgen.errors import Fault
 
@@ -106,7 +107,7 @@ class Cursor:
         """A node with the places of two offsets."""
         return Node(value, *self.place(offset), *self.place(key_offset))
 
-    def report(self, offset: int, message: str, path: tuple[str, ...] = (), **details: str | None) -> None:
+    def report(self, offset: int, message: str, path: tuple[str, ...] = (), **details: Any) -> None:
         """Note a fault at an offset; raises TooMuch when there are very many already."""
         if len(self.faults) >= _MAXIMUM_FAULTS:
             raise TooMuch

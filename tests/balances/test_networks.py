@@ -103,6 +103,15 @@ def test_a_pressure_found_from_temperature_and_enthalpy_of_one_phase_raises_a_wa
     assert [doubt.path for doubt in back.doubts if doubt.stands] == ["states.2.pressure"]
 
 
+def test_a_pressure_found_from_temperature_and_superheat_is_no_cause_for_doubt() -> None:
+    givens = {"1.temperature": 350.0, "1.superheat": 8.0, "1.mass_flow": 1.0, "2.pressure": 1e5}
+    case = one_piece("throttling-valve", {"inlet": ("1",), "outlet": ("2",)}, givens, {"f": real_fluid("R134a")})
+    solution = case.solve()
+    saturation = CP.PropsSI("P", "T", 342.0, "Q", 1, "R134a")
+    assert solution.values["states.1.pressure"][0] == pytest.approx(saturation, rel=1e-6)
+    assert not [doubt for doubt in solution.doubts if doubt.stands]
+
+
 def _recuperated(fluid: Any) -> Plant:
     return chain(
         ("C", "compressor", {"inlet": ("1",), "outlet": ("2",)}),

@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from types import SimpleNamespace
 
 import numpy as np
 
+from reportgen.balances.doubts import Doubt
 from reportgen.balances.relations import HeatPort
 from reportgen.evaluation.evaluated import Connection, EvaluatedPlant
 from reportgen.evaluation.sampling import SampleAxis
@@ -66,12 +68,14 @@ def plant(
     trains: dict[str, tuple[str, ...]] | None = None,
     power_signs: dict[str, int] | None = None,
     inputs: int = 0,
+    given: tuple[str, ...] = (),
+    doubts: tuple[Doubt, ...] = (),
 ) -> EvaluatedPlant:
-    """A solved plant: every state is of the first fluid."""
+    """A solved plant: every state is of the first fluid; ``given`` are the paths that were inputs."""
     kinds = kinds or {}
     fluids = fluids or {"f": fluid()}
     states = {path.split(".")[1] for path in values if path.startswith("states.")}
-    sample_axis = axis(inputs)
+    sample_axis = replace(axis(inputs), givens={path: np.asarray(values[path], dtype=float) for path in given})
     return EvaluatedPlant(
         axis=sample_axis,
         values={
@@ -95,4 +99,5 @@ def plant(
         },
         limits=limits or {},
         trains=trains or {},
+        doubts=doubts,
     )

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from types import SimpleNamespace
 
 import numpy as np
@@ -18,6 +19,7 @@ from reportgen.evaluation.assumptions import (
     stream_assumption,
 )
 from reportgen.evaluation.trials import Trial
+from reportgen.quantities import Display
 
 
 def machine(**values: object) -> dict[str, object]:
@@ -114,22 +116,58 @@ def test_a_variant_without_solution_is_told_not_hidden() -> None:
     assert "No convergence." in test["finding"]
 
 
-def test_boundary_temperature_is_tried_at_the_mean_of_the_fluid() -> None:
-    asked = []
+def tried_boundary(
+    kind: str, generated: float, **more: float
+) -> tuple[list[dict[str, float]], dict[str, object] | None]:
+    asked: list[dict[str, float]] = []
 
     def solve(fluids: object, givens: dict[str, float]) -> dict[str, float]:
         asked.append(givens)
-        return machine(entropy_generation=8.0)
+        return machine(entropy_generation=generated)
 
+    states = {"states.1.temperature": 300.0, "states.2.temperature": 400.0}
     case = plant(
-        {"states.1.temperature": 300.0, "states.2.temperature": 400.0, **machine(entropy_generation=10.0)},
-        kinds={"M": "compressor"},
+        {
+            **states,
+            **{path.replace("_", ".", 2): value for path, value in more.items()},
+            **machine(entropy_generation=10.0),
+        },
+        kinds={"M": kind},
         connections={"M": [("inlet", "in", "1"), ("outlet", "out", "2")]},
+        power_signs={"M": 1 if kind == "compressor" else 0},
     )
-    test = boundary_temperature_test(Trial(case, solve), "M", "equipment.M.boundary_temperature")
+    trial = Trial(case, solve)
+    return asked, boundary_temperature_test(trial, "M", "equipment.M.boundary_temperature", Display("SI"))
+
+
+def test_boundary_temperature_is_tried_at_the_mean_of_the_fluid() -> None:
+    asked, test = tried_boundary("compressor", 8.0)
     assert asked == [{"equipment.M.boundary_temperature": 350.0}]
     assert test is not None
     assert (test["difference"], test["verdict"]) == (-2.0, "decisive")
+    assert "76.85 °C" in str(test["finding"])
+
+
+ENTHALPIES = {"states_1_specific_enthalpy": 0.0, "states_2_specific_enthalpy": 1005.0 * 100.0}
+
+
+def test_heat_at_changing_temperature_leaves_at_the_entropic_mean() -> None:
+    """T = Δh/Δs = (T2 − T1)/ln(T2/T1) for a gas of constant heat capacity at constant pressure."""
+    change = 1005.0 * math.log(400.0 / 300.0)
+    asked, _ = tried_boundary(
+        "cooler", 8.0, **ENTHALPIES, states_1_specific_entropy=0.0, states_2_specific_entropy=change
+    )
+    assert asked[0]["equipment.M.boundary_temperature"] == pytest.approx(100.0 / math.log(400.0 / 300.0))
+    outside = {"states_1_specific_entropy": 0.0, "states_2_specific_entropy": 0.7 * change}
+    asked, _ = tried_boundary("cooler", 8.0, **ENTHALPIES, **outside)
+    assert asked == [{"equipment.M.boundary_temperature": 350.0}]
+
+
+def test_a_boundary_that_would_destroy_entropy_is_told_to_be_none() -> None:
+    _, test = tried_boundary("compressor", -0.5)
+    assert test is not None
+    assert test["verdict"] is None
+    assert "would have M destroy entropy" in str(test["finding"])
 
 
 def author(status: str) -> SimpleNamespace:
@@ -166,3 +204,15 @@ def test_streams_without_velocity_say_up_to_which_one_it_is_negligible() -> None
     assert exact is not None
     assert "m/s" not in exact.basis
     assert stream_assumption(plant(stream(specific_enthalpy=3e6))) is None
+
+
+def test_a_state_whose_phase_is_not_resolved_claims_no_velocity() -> None:
+    phases = {"states.1.phase": np.array(["vapour", "vapour", "liquid"])}
+    enthalpy = stream(mass_flow=1.0, specific_enthalpy=samples(2e6, 7e5))
+    case = plant(enthalpy, inputs=1)
+    apart = replace(case, values={**case.values, **phases})
+    found, unresolved = stream_assumption(case), stream_assumption(apart)
+    assert found is not None
+    assert unresolved is not None
+    assert "up to 970 m/s" in found.basis
+    assert "m/s" not in unresolved.basis

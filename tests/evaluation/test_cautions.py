@@ -48,7 +48,8 @@ def table(**limits: str) -> dict[str, SimpleNamespace]:
 
 
 def test_the_catalogue_carries_these_cautions() -> None:
-    assert [item.id for item in catalogue()] == ["T01", "T02", "T09", "T10", "T19", "T22", "T31", "T32"]
+    plausible = [f"P{number:02}" for number in range(1, 14)]
+    assert [item.id for item in catalogue()] == [*plausible, "T01", "T02", "T09", "T10", "T19", "T22", "T31", "T32"]
     assert all(item.source and item.gist and item.find.__doc__ for item in catalogue())
 
 
@@ -142,16 +143,24 @@ def test_t09_superheat_not_resolved_from_zero() -> None:
 )
 def test_t10(quality: object, raised_entries: list) -> None:
     inputs = 1 if isinstance(quality, np.ndarray) else 0
-    case = machine("turbine", "out", state(320.0, 1e4, "two-phase", quality=quality), inputs=inputs)
-    assert summary("T10", case) == raised_entries
+    assert summary("T10", machine("turbine", "out", exhaust(quality), inputs=inputs)) == raised_entries
+
+
+def exhaust(quality: object, power: float = 1e5) -> dict:
+    return {**state(320.0, 1e4, "two-phase", quality=quality), "equipment.M.power": power}
 
 
 def test_t10_only_turbine_exhausts() -> None:
-    assert summary("T10", machine("throttling-valve", "out", state(320.0, 1e4, "two-phase", quality=0.5))) == []
-    assert summary("T10", machine("turbine", "in", state(320.0, 1e4, "two-phase", quality=0.5))) == []
-    assert summary("T10", machine("turbine", "out", state(300.0, 1e4, "liquid"))) == [
-        ("warning", "states.1.quality", True)
-    ]
+    assert summary("T10", machine("throttling-valve", "out", exhaust(0.6))) == []
+    assert summary("T10", machine("turbine", "in", exhaust(0.6))) == []
+    assert summary("T10", machine("control-volume", "out", exhaust(0.6))) == [("warning", "states.1.quality", True)]
+
+
+def test_t10_needs_power_and_an_exhaust_that_is_mostly_vapour() -> None:
+    assert summary("T10", machine("control-volume", "out", exhaust(0.6, power=0.0))) == []
+    assert summary("T10", machine("turbine", "out", exhaust(0.6, power=-1e5))) == []
+    assert summary("T10", machine("control-volume", "out", exhaust(0.0))) == []
+    assert summary("T10", machine("turbine", "out", {**state(300.0, 1e4, "liquid"), "equipment.M.power": 1e5})) == []
 
 
 # T19: maximum allowable pressure, as gauge
@@ -269,11 +278,33 @@ def test_t32(celsius: object, raised_entries: list) -> None:
     assert summary("T32", machine("cooler", "out", values, limits=limits, inputs=inputs)) == raised_entries
 
 
+# Wording
+
+
+def test_an_undecided_caution_says_that_it_may_be_so() -> None:
+    def text(value: object) -> str:
+        inputs = 1 if isinstance(value, np.ndarray) else 0
+        case = machine("cooler", "out", state(value, 1e5), limits=table(temperature="400 degC"), inputs=inputs)
+        return str(entries("T32", case)[0]["text"])
+
+    assert text(680.0) == "State 1 is hotter than the maximum temperature of M."
+    assert text(samples(670.0, 2.0)).startswith("State 1 may be hotter than the maximum temperature of M.")
+    assert text(samples(670.0, 2.0)).endswith("This is not decided within the uncertainty.")
+
+
+def test_every_text_has_its_alternatives_resolved() -> None:
+    values = state(samples(647.0, 1.0), samples(22.0e6, 1e4))
+    limits = table(temperature="300 degC", pressure="230 bar(a)", minimum_temperature="373 degC")
+    found = raised(catalogue(), machine("throttling-valve", "in", values, limits=limits, inputs=1), {})
+    assert {entry["decided"] for entry in found} == {True, False}
+    assert not any("⟦" in entry["text"] for entry in found)
+
+
 # Adjustments, order
 
 
 def test_a_limit_moves_with_its_reason() -> None:
-    case = machine("turbine", "out", state(320.0, 1e4, "two-phase", quality=0.87))
+    case = machine("turbine", "out", exhaust(0.87))
     adjusted = {"T10": SimpleNamespace(limit=parse("14 %", "ratio", atmosphere=None), reason="Stellite blades", line=3)}
     assert entries("T10", case, adjusted) == []
     answered = {"T10": SimpleNamespace(limit=None, reason="Accepted by the vendor", line=3)}

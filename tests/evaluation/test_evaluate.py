@@ -249,7 +249,7 @@ STEAM = (
 def test_an_input_that_reaches_out_of_the_model_is_named() -> None:
     """A quality of 0.995 ± 0.02 (k = 2) exists at 0.985 and not at 1.005."""
     record = evaluated(STEAM.replace('temperature = "40 degC ± 1 K"', 'quality = "0.995 ± 0.02"'))
-    told = [entry for entry in record.data["cautions"] if entry["id"] == "N/E"]
+    told = [entry for entry in record.data["cautions"] if entry["id"] == "not evaluated"]
     assert [(entry["severity"], entry["path"]) for entry in told] == [("note", "states.1.quality")]
     assert "raised by its standard uncertainty there is no value for states 1, 2" in told[0]["text"]
     rows = record.data["uncertainty_budget"]["equipment.V.entropy_generation"]["contributions"]
@@ -259,7 +259,7 @@ def test_an_input_that_reaches_out_of_the_model_is_named() -> None:
 def test_an_uncertainty_that_leaves_the_model_on_both_sides_is_unknown_and_told() -> None:
     """Steam at 700 degC ± 2600 K: no model reaches to either side, and no result may claim an uncertainty."""
     record = evaluated(STEAM.replace("40 degC ± 1 K", "700 degC ± 2600 K"))
-    told = [entry for entry in record.data["cautions"] if entry["id"] == "N/E"]
+    told = [entry for entry in record.data["cautions"] if entry["id"] == "not evaluated"]
     assert [(entry["severity"], entry["path"]) for entry in told] == [("warning", "states.1.temperature")]
     assert record.values["equipment.V.entropy_generation"]["standard_uncertainty"] is None
     audit = {entry["owner"]: entry for entry in record.data["audits"]["second_law"]}
@@ -279,9 +279,11 @@ def test_data_against_the_second_law_stop_and_name_the_inputs() -> None:
     record = evaluated(text)
     audit = {entry["owner"]: entry for entry in record.data["audits"]["second_law"]}
     assert audit["equipment.C"]["verdict"] == "impossible as given"
-    stops = [entry for entry in record.data["cautions"] if entry["severity"] == "stop"]
-    assert [entry["id"] for entry in stops] == ["T01"]
-    assert audit["equipment.C"]["heaviest_inputs"][0] in stops[0]["text"]
+    stops = {entry["id"]: entry for entry in record.data["cautions"] if entry["severity"] == "stop"}
+    assert list(stops) == ["P07", "T01"]
+    assert audit["equipment.C"]["heaviest_inputs"][0] in stops["T01"]["text"]
+    assert stops["T01"]["limit"] == 0.0
+    assert "impossible as given" in audit["equipment.C"]["text"]
 
 
 def test_heat_that_enters_without_a_boundary_temperature_is_told() -> None:
@@ -293,9 +295,13 @@ def test_heat_that_enters_without_a_boundary_temperature_is_told() -> None:
     assert entry["value"] is None
     assert "boundary_temperature" in entry["reason"]
     assert record.values["total.entropy_generation"]["value"] is None
-    told = [caution for caution in record.data["cautions"] if caution["id"] == "N/E"]
+    told = [caution for caution in record.data["cautions"] if caution["id"] == "not evaluated"]
     assert len(told) == 1
     assert "State equipment.V.boundary_temperature" in told[0]["text"]
+    assert " W " not in told[0]["text"]
+    assert record.values["equipment.V.entropy_with_heat"]["from"] == ["equipment.V.heat"]
+    assert "equipment.V.entropy_with_heat" in entry["from"]
+    assert not [figure for figure in record.data["figures"] if figure["kind"].endswith("bars")]
     stated = evaluated(text.replace('kind   = "heater"', 'kind   = "heater"\nboundary_temperature = "120 degC"'))
     assert stated.value("equipment.V.entropy_generation") > 0.0
 

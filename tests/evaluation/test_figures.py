@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+from calculations import VALVE, evaluated
 
 from reportgen.evaluation.figures import isobar, saturation_dome
 from reportgen.fluids.ideal_gases import ideal_gas
@@ -35,3 +36,26 @@ def test_an_isobar_ends_where_the_model_ends() -> None:
     curve = isobar(AIR, 5e5, low - 5000.0, low)
     assert 0 < len(curve["entropy"]) < 90
     assert min(curve["temperature"]) >= AIR.limits.minimum_temperature - 1e-6
+
+
+SPLITTER = (
+    VALVE[: VALVE.index("[states.2]")]
+    + """
+[states.2]
+fluid     = "air"
+mass_flow = "0.2 kg/s"
+
+[states.3]
+fluid = "air"
+
+[equipment.S]
+kind    = "splitter"
+inlet   = "1"
+outlets = ["2", "3"]
+"""
+)
+
+
+def test_no_bars_are_drawn_where_no_work_is_lost() -> None:
+    assert "lost-work-bars" in {figure["kind"] for figure in evaluated(VALVE).data["figures"]}
+    assert "lost-work-bars" not in {figure["kind"] for figure in evaluated(SPLITTER).data["figures"]}

@@ -8,6 +8,7 @@ whether the finding stands, is open, or is none.
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any, Literal
@@ -25,7 +26,11 @@ if TYPE_CHECKING:
 __all__ = ["Caution", "Finding", "Severity", "caution", "check_adjustments", "in_order", "raised"]
 
 Severity = Literal["stop", "warning", "note"]
+Undecided = Literal["always", "beyond", "never"]
 
+
+NOT_DECIDED = "This is not decided within the uncertainty."
+ALTERNATIVES = re.compile("⟦([^⟦⟧|]*)\\|([^⟦⟧|]*)⟧")
 
 ORDER: dict[Severity, int] = {"stop": 0, "warning": 1, "note": 2}
 
@@ -36,10 +41,11 @@ class Finding:
 
     Args:
         path: value that the finding is about.
-        measured: shape (N,) or scalar [SI unit of ``dimension``].
-        limit: shape (N,) or scalar [same unit].
+        measured: shape (N,) or scalar [SI unit of ``dimension``]; None where there is no number to it.
+        limit: shape (N,) or scalar [same unit]; None where the finding stands as it is.
         keep: the good side of the limit.
-        text: one full sentence on what it means here, without the numbers of value, limit and margin.
+        text: full sentences on what it means here, without the numbers of value, limit and margin. Words between ⟦
+            and ⟧ are those for a finding that is decided and, after a bar, those for one that is not: ``⟦is|may be⟧``.
         dimension: key of names.DIMENSIONS.
         owner: equipment that the finding is about, as ``equipment.<tag>``; None for the owner of the path.
         severity: overrides the severity of the caution.
@@ -47,11 +53,11 @@ class Finding:
     """
 
     path: str
-    measured: npt.ArrayLike
-    limit: npt.ArrayLike
+    measured: npt.ArrayLike | None
+    limit: npt.ArrayLike | None
     keep: Literal["below", "above"]
     text: str
-    dimension: str
+    dimension: str | None
     owner: str | None = None
     severity: Severity | None = None
     source: str | None = None
@@ -68,7 +74,8 @@ class Caution:
         source: on whose word; clauses that were not read are cited as "see …, current edition".
         limit: the number that a calculation file may adjust with a reason [SI], or None when there is none.
         dimension: of ``limit``, key of names.DIMENSIONS.
-        undecided: whether a finding inside its uncertainty is raised as "not decided".
+        undecided: whether a finding inside its uncertainty is raised as "not decided": ``always``; only when the value
+            itself is ``beyond`` the limit, and then as a warning at most; or ``never``.
         find: (plant, limit) to findings.
     """
 
@@ -78,7 +85,7 @@ class Caution:
     source: str
     limit: float | None
     dimension: str | None
-    undecided: bool
+    undecided: Undecided
     find: Callable[[EvaluatedPlant, float], Iterable[Finding]]
 
 
@@ -90,7 +97,7 @@ def caution(
     source: str,
     limit: float | None = None,
     dimension: str | None = None,
-    undecided: bool = True,
+    undecided: Undecided = "always",
 ) -> Callable[[Callable[[EvaluatedPlant, float], Iterable[Finding]]], Caution]:
     """Turn a finding function into an entry of the catalogue."""
 
@@ -166,27 +173,43 @@ def in_order(entries: Iterable[dict[str, Any]]) -> list[dict[str, Any]]:
 
 
 def _entry(item: Caution, finding: Finding, plant: EvaluatedPlant, reason: str | None) -> dict[str, Any] | None:
-    measured = np.asarray(finding.measured, dtype=float)
-    limit = np.asarray(finding.limit, dtype=float)
-    margin = plant.axis.estimate(limit - measured if finding.keep == "below" else measured - limit)
-    if math.isnan(margin.value):
-        return None
-    decision = decide(margin.value, margin.expanded_uncertainty)
-    if decision == "met" or (decision == "not decided" and not item.undecided):
-        return None
-    return {
+    entry: dict[str, Any] = {
         "id": item.id,
         "severity": finding.severity or item.severity,
         "gist": item.gist,
-        "text": finding.text,
+        "text": _worded(finding.text, decided=True),
         "owner": finding.owner or ".".join(finding.path.split(".")[:-1]),
         "path": finding.path,
-        "value": float(measured.flat[0]),
-        "limit": float(limit.flat[0]),
-        "margin": margin.value,
-        "expanded_uncertainty": margin.expanded_uncertainty,
+        "value": None if finding.measured is None else float(np.asarray(finding.measured, dtype=float).flat[0]),
+        "limit": None,
+        "margin": None,
+        "expanded_uncertainty": None,
         "dimension": finding.dimension,
-        "decided": decision == "not met",
+        "decided": True,
         "source": finding.source or item.source,
         "adjusted": reason,
     }
+    if finding.measured is None or finding.limit is None:
+        return entry
+    measured, limit = (np.asarray(part, dtype=float) for part in (finding.measured, finding.limit))
+    margin = plant.axis.estimate(limit - measured if finding.keep == "below" else measured - limit)
+    decision = decide(margin.value, margin.expanded_uncertainty)
+    if math.isnan(margin.value) or decision == "met":
+        return None
+    if decision == "not decided":
+        if item.undecided == "never" or (item.undecided == "beyond" and margin.value >= 0.0):
+            return None
+        if item.undecided == "beyond" and entry["severity"] == "stop":
+            entry["severity"] = "warning"
+        entry["text"] = f"{_worded(finding.text, decided=False)} {NOT_DECIDED}"
+    return entry | {
+        "limit": float(limit.flat[0]),
+        "margin": margin.value,
+        "expanded_uncertainty": margin.expanded_uncertainty,
+        "decided": decision == "not met",
+    }
+
+
+def _worded(text: str, *, decided: bool) -> str:
+    """The text with the words for a decided or an undecided finding put in their places."""
+    return ALTERNATIVES.sub(lambda match: match.group(1 if decided else 2), text)

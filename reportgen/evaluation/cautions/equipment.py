@@ -1,24 +1,31 @@
-"""Cautions on equipment: wet suction, wet exhaust, and the limits its data sheet sets."""
+"""Cautions on equipment: what it draws in, wet exhaust, and the limits its data sheet sets."""
 
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import TYPE_CHECKING, Any
-
-import numpy as np
+from typing import TYPE_CHECKING
 
 from reportgen.balances import kinds
 from reportgen.evaluation.cautions.entry import Finding, caution
-from reportgen.evaluation.evaluated import Array, EvaluatedPlant
+from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.phases import saturation_temperature
 from reportgen.evaluation.sampling import ATMOSPHERE
 
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Limits
 
-__all__ = ["liquid_at_compressor_suction", "maximum_pressure", "temperature_limits", "wet_turbine_exhaust"]
+__all__ = [
+    "liquid_at_compressor_suction",
+    "maximum_pressure",
+    "temperature_limits",
+    "vapour_at_pump_suction",
+    "wet_turbine_exhaust",
+]
 
 #: A quality closer to 1 than this is saturated vapour as far as a flash resolves it.
 QUALITY_RESOLUTION = 1e-9
+#: Quality from which a two-phase outlet is an exhaust and no condensate.
+MOSTLY_VAPOUR = 0.5
 PRESSURE_SOURCE = "see ASME BPVC Section VIII and API 520, current edition"
 #: Distance to a temperature limit below which a warning is raised [K].
 TEMPERATURE_MARGIN = 10.0
@@ -35,7 +42,7 @@ def liquid_at_compressor_suction(plant: EvaluatedPlant, _limit: float) -> Iterat
         if not _compresses_gas(kind):
             continue
         for state in plant.states_at(tag, "in"):
-            text = f"Liquid at the suction of {tag} (state {state}): liquid slugs break compressors."
+            text = f"There ⟦is|may be⟧ liquid at the suction of {tag} (state {state}): liquid slugs break compressors."
             if plant.phase(state) == "two-phase":
                 yield Finding(
                     f"states.{state}.quality",
@@ -50,7 +57,7 @@ def liquid_at_compressor_suction(plant: EvaluatedPlant, _limit: float) -> Iterat
                 yield Finding(
                     f"states.{state}.temperature",
                     plant.samples(f"states.{state}.temperature"),
-                    _dew_temperature(plant, state),
+                    saturation_temperature(plant, state),
                     "above",
                     text + " The limit is the saturation temperature at the same pressure.",
                     "temperature",
@@ -58,22 +65,48 @@ def liquid_at_compressor_suction(plant: EvaluatedPlant, _limit: float) -> Iterat
                 )
 
 
+@caution("P08", "warning", "Vapour at pump suction", source="common practice")
+def vapour_at_pump_suction(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
+    """Vapour at the inlet of a machine that pumps liquid: a quality above 0, superheat, or a gas altogether.
+
+    For inlets of one phase the temperature is held against saturation at the same pressure.
+    """
+    for tag, kind in plant.kinds.items():
+        if not _pumps_liquid(kind):
+            continue
+        for state in plant.states_at(tag, "in"):
+            text = f"There ⟦is|may be⟧ vapour at the suction of {tag} (state {state}): pumps lose their prime by it."
+            owner, phase = f"equipment.{tag}", plant.phase(state)
+            if phase in {"two-phase", "gas"}:
+                path = f"states.{state}.quality"
+                quality = plant.samples(path) if phase == "two-phase" else 1.0
+                yield Finding(path, quality, QUALITY_RESOLUTION, "below", text, "ratio", owner=owner)
+            elif phase in {"vapour", "liquid"}:
+                path = f"states.{state}.temperature"
+                text += " The limit is the saturation temperature at the same pressure."
+                boiling = saturation_temperature(plant, state)
+                yield Finding(path, plant.samples(path), boiling, "below", text, "temperature", owner=owner)
+
+
 @caution("T10", "warning", "Wet turbine exhaust", source="common practice", limit=0.12, dimension="ratio")
 def wet_turbine_exhaust(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
-    """Moisture 1 − x above 12 % at the outlet of a machine that delivers power."""
+    """Moisture 1 − x above 12 % at an outlet of a piece that does deliver power.
+
+    Looked at are outlets that are mostly vapour: what is mostly liquid is a condensate and drives no blades.
+    """
     for tag, kind in plant.kinds.items():
-        if kinds()[kind].power_sign >= 0:
+        if kinds()[kind].power_sign >= 0 or not plant.samples(f"equipment.{tag}.power")[0] > 0.0:
             continue
         for state in plant.states_at(tag, "out"):
-            phase = plant.phase(state)
-            if phase in {"two-phase", "liquid"}:
-                quality = plant.samples(f"states.{state}.quality") if phase == "two-phase" else 0.0
+            path = f"states.{state}.quality"
+            quality = plant.samples(path)
+            if plant.phase(state) == "two-phase" and quality[0] >= MOSTLY_VAPOUR:
                 yield Finding(
-                    f"states.{state}.quality",
-                    1.0 - np.asarray(quality),
+                    path,
+                    1.0 - quality,
                     limit,
                     "below",
-                    f"Moisture at the exhaust of {tag} (state {state}) erodes the last blades. "
+                    f"The exhaust of {tag} (state {state}) ⟦is|may be⟧ too wet: moisture erodes the last blades. "
                     "Value and limit are mass fractions of liquid, 1 − x.",
                     "ratio",
                     owner=f"equipment.{tag}",
@@ -107,7 +140,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             pressure,
             allowable,
             "below",
-            f"The pressure of state {state} is above the maximum allowable pressure of {tag}.",
+            f"The pressure of state {state} ⟦is|may be⟧ above the maximum allowable pressure of {tag}.",
             "pressure",
             owner=f"equipment.{tag}",
             severity="stop",
@@ -118,8 +151,9 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             pressure,
             atmosphere + limit * (allowable - atmosphere),
             "below",
-            f"The pressure of state {state} is above {100 * limit:g} % of the maximum allowable pressure of {tag} "
-            "(both as gauge pressures): little is left between operation and relief. The limit shown is that part.",
+            f"The pressure of state {state} ⟦is|may be⟧ above {100 * limit:g} % of the maximum allowable pressure of "
+            f"{tag} (both as gauge pressures): little is left between operation and relief. The limit shown is that "
+            "part.",
             "pressure",
             owner=f"equipment.{tag}",
             source=source,
@@ -147,19 +181,19 @@ def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]
         owner = f"equipment.{tag}"
         if table.temperature is not None:
             maximum = table.temperature.value
-            text = f"State {state} is hotter than the maximum temperature of {tag}."
+            text = f"State {state} ⟦is|may be⟧ hotter than the maximum temperature of {tag}."
             yield Finding(
                 path, temperature, maximum, "below", text, "temperature", owner=owner, severity="stop", source=source
             )
-            text = f"State {state} comes within {limit:g} K of the maximum temperature of {tag}."
+            text = f"State {state} ⟦comes|may come⟧ within {limit:g} K of the maximum temperature of {tag}."
             yield Finding(path, temperature, maximum - limit, "below", text, "temperature", owner=owner, source=warned)
         if table.minimum_temperature is not None:
             minimum = table.minimum_temperature.value
-            text = f"State {state} is colder than the minimum temperature of {tag}: brittle fracture."
+            text = f"State {state} ⟦is|may be⟧ colder than the minimum temperature of {tag}: brittle fracture."
             yield Finding(
                 path, temperature, minimum, "above", text, "temperature", owner=owner, severity="stop", source=source
             )
-            text = f"State {state} comes within {limit:g} K of the minimum temperature of {tag}."
+            text = f"State {state} ⟦comes|may come⟧ within {limit:g} K of the minimum temperature of {tag}."
             yield Finding(path, temperature, minimum + limit, "above", text, "temperature", owner=owner, source=warned)
 
 
@@ -170,14 +204,12 @@ def _compresses_gas(kind: str) -> bool:
     return declared.power_sign > 0 and any(item.name == "polytropic_efficiency" for item in declared.parameters)
 
 
+def _pumps_liquid(kind: str) -> bool:
+    """Whether a kind absorbs power and has no polytropic efficiency: see ``_compresses_gas``."""
+    return kinds()[kind].power_sign > 0 and not _compresses_gas(kind)
+
+
 def _states_with_limits(plant: EvaluatedPlant) -> Iterator[tuple[str, str, Limits]]:
     for tag, table in plant.limits.items():
         for state in plant.states_at(tag):
             yield tag, state, table
-
-
-def _dew_temperature(plant: EvaluatedPlant, state: str) -> Array:
-    """Saturation temperature at the pressure of a state [K], shape (N,); NaN above the critical pressure."""
-    fluid: Any = plant.fluid_of(state)
-    _, vapour = fluid.saturation(pressure=plant.samples(f"states.{state}.pressure"), errors="mask")
-    return np.asarray(vapour.temperature, dtype=float)

@@ -45,8 +45,8 @@ def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Find
             plant.samples(f"states.{state}.temperature"),
             np.nextafter(limit, np.inf),  # freezing already at the triple point itself
             "above",
-            f"Carbon dioxide in state {state} is at or below its triple point: dry ice forms and may plug lines and "
-            "relief paths. The property model is not valid here.",
+            f"Carbon dioxide in state {state} ⟦is|may be⟧ at or below its triple point: there dry ice forms and may "
+            "plug lines and relief paths, and the property model is not valid.",
             "temperature",
         )
         if plant.phase(state) in {"liquid", "two-phase"}:
@@ -55,8 +55,8 @@ def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Find
                 plant.samples(f"states.{state}.pressure"),
                 CO2_TRIPLE_PRESSURE,
                 "above",
-                f"Liquid carbon dioxide in state {state} is below its triple-point pressure: it turns to dry ice, "
-                "which may plug lines and relief paths.",
+                f"Liquid carbon dioxide in state {state} ⟦is|may be⟧ below its triple-point pressure: there it turns "
+                "to dry ice, which may plug lines and relief paths.",
                 "pressure",
             )
 
@@ -94,9 +94,10 @@ def near_the_critical_point(plant: EvaluatedPlant, limit: float) -> Iterator[Fin
             ),
             limit,
             "above",
-            f"State {state} lies near the critical point (T/Tc = {temperature[0]:.3f}, p/pc = {pressure[0]:.3f}), "
-            "where properties change steeply and small errors of temperature or pressure weigh heavily. The value is "
-            "the distance from it in units of the band of 5 % in temperature and 10 % in pressure.",
+            f"State {state} ⟦lies|may lie⟧ near the critical point (T/Tc = {temperature[0]:.3f}, "
+            f"p/pc = {pressure[0]:.3f}), where properties change steeply and small errors of temperature or pressure "
+            "weigh heavily. The value is the distance from it in units of the band of 5 % in temperature and 10 % in "
+            "pressure.",
             "ratio",
         )
 
@@ -124,8 +125,8 @@ def outside_the_model(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]
                     plant.samples(f"states.{state}.{name}"),
                     edge,
                     "above" if keep == "above" else "below",
-                    f"The {name} of state {state} is at or beyond the {word} for which the model of {fluid.title} "
-                    "was published: properties there would be extrapolated.",
+                    f"The {name} of state {state} ⟦is|may be⟧ at or beyond the {word} for which the model of "
+                    f"{fluid.title} was published: properties there are extrapolated.",
                     name,
                     source="; ".join(fluid.sources),
                 )

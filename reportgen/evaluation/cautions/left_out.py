@@ -1,6 +1,6 @@
 """What could not be evaluated, told beside the cautions: results left out, and inputs that reach out of a model.
 
-These entries have the id ``N/E`` and no limit; no adjustment answers them.
+These entries have the id ``not evaluated`` and no limit; no adjustment answers them.
 """
 
 from __future__ import annotations
@@ -15,7 +15,7 @@ from reportgen.evaluation.evaluated import EvaluatedPlant
 
 __all__ = ["lost_samples", "unevaluated"]
 
-ID = "N/E"
+ID = "not evaluated"
 
 
 def unevaluated(plant: EvaluatedPlant, warnings: Iterable[Fault]) -> list[dict[str, Any]]:

@@ -11,22 +11,33 @@ from reportgen.evaluation.evaluated import EvaluatedPlant
 __all__ = ["negative_entropy_generation"]
 
 
-@caution("T01", "stop", "Impossible by the second law", source="second law of thermodynamics", undecided=False)
+#: Doubts by which a piece destroys entropy for a reason that can be named.
+PRESSURE_DOUBTS = ("pressure-rises", "pressure-against-machine")
+
+
+@caution("T01", "stop", "Impossible by the second law", source="second law of thermodynamics", undecided="never")
 def negative_entropy_generation(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
     """Entropy generation of a piece below zero by more than its uncertainty.
 
-    An interval that reaches across zero is the matter of the second-law audit, and no caution.
+    An interval that reaches across zero is the matter of the second-law audit, and no caution; so is what the
+    arithmetic leaves of a zero.
     """
     for tag in plant.kinds:
         path = f"equipment.{tag}.entropy_generation"
         samples = plant.samples(path)
+        if abs(samples[0]) <= entropy_resolution(plant, (tag,)):
+            continue
         heaviest = ", ".join(heaviest_inputs(plant.axis, samples))
-        yield Finding(
-            path,
-            samples,
-            -entropy_resolution(plant, (tag,)),
-            "above",
-            f"{tag} would destroy entropy: what is given cannot be true together. "
-            + (f"Look first at {heaviest}." if heaviest else "Look at the readings, the boundary and the assumptions."),
-            "entropy_flow",
-        )
+        pressures = [
+            doubt.path
+            for doubt in plant.doubts
+            if doubt.owner == f"equipment.{tag}" and doubt.key in PRESSURE_DOUBTS and doubt.stands
+        ]
+        text = f"{tag} would destroy entropy: what is given cannot be true together. "
+        if pressures:
+            text += "Its pressure changes the wrong way from inlet to outlet; look at the two pressures first."
+        elif heaviest:
+            text += f"Look first at {heaviest}."
+        else:
+            text += "Look at the readings, the boundary and the assumptions."
+        yield Finding(path, samples, 0.0, "above", text, "entropy_flow")

@@ -1,0 +1,91 @@
+"""The headline results: what a reader looks for first, a handful for each piece."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+from reportgen.balances import kinds
+from reportgen.evaluation.evaluated import EvaluatedPlant
+
+if TYPE_CHECKING:
+    from reportgen.balances import Solution
+
+__all__ = ["summary"]
+
+#: Of a piece and of sums over pieces, in this order.
+SUMS = ("entropy_generation", "lost_work", "power")
+OF_PIECES = (*SUMS, "isentropic_efficiency", "duty", "heat")
+FLOWS = ("mass_flow", "volume_flow", "molar_flow")
+
+
+def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) -> list[str]:
+    """Paths of the headline results: those of each piece, flows that were solved for, then sums over trains and all.
+
+    Plain inputs are left out, and zeros, but for an entropy generation: one that could not be evaluated, or is none,
+    must be seen. Sums over a single piece repeat what the piece says and are left out. Without equipment, states are
+    the results.
+    """
+    if not plant.kinds:
+        return [
+            f"states.{state}.{name}" for state in plant.state_fluids for name in ("temperature", "specific_entropy")
+        ]
+    found = []
+    for tag in plant.kinds:
+        found += [f"equipment.{tag}.{name}" for name in OF_PIECES]
+        found += _outlet_pressures(plant, solution, tag)
+    found += _solved_flows(plant)
+    owners = [f"trains.{name}" for name, tags in plant.trains.items() if len(tags) > 1]
+    owners += ["total"] if len(totals) > 1 else []
+    found += [f"{owner}.{name}" for owner in owners for name in SUMS]
+    return [path for path in found if _tells(plant, path)]
+
+
+def _tells(plant: EvaluatedPlant, path: str) -> bool:
+    if path not in plant.values or path in plant.axis.givens:
+        return False
+    return path.endswith("entropy_generation") or (plant.has(path) and plant.samples(path)[0] != 0.0)
+
+
+def _outlet_pressures(plant: EvaluatedPlant, solution: Solution, tag: str) -> list[str]:
+    """Outlet pressures of a machine that its power or efficiency determines, and no given ratio or other piece."""
+    if not plant.power_signs[tag]:
+        return []
+    owner = f"equipment.{tag}."
+    found = []
+    for state in plant.states_at(tag, "out"):
+        path = f"states.{state}.pressure"
+        step = next((step for step in solution.steps if path in step.solves), None)
+        own = [] if step is None else [use for use in step.uses if use.startswith(owner)]
+        if own and f"{owner}pressure_ratio" not in plant.axis.givens:
+            found.append(path)
+    return found
+
+
+def _solved_flows(plant: EvaluatedPlant) -> list[str]:
+    """The first mass flow of every stream of which no state has a given flow.
+
+    States belong to one stream when a piece has one of them in and the other out and mixes neither.
+    """
+    stream = {state: state for state in plant.state_fluids}
+
+    def root(state: str) -> str:
+        while stream[state] != state:
+            state = stream[state]
+        return state
+
+    for tag, kind in plant.kinds.items():
+        sides = {port.name: port.side for port in kinds()[kind].ports}
+        groups: dict[tuple[str, str], tuple[list[str], list[str]]] = {}
+        for port, direction, state in plant.connections[tag]:
+            group = groups.setdefault((sides.get(port, ""), plant.state_fluids[state]), ([], []))
+            group[direction == "out"].append(state)
+        for inlets, outlets in groups.values():
+            if len(inlets) == len(outlets) == 1:
+                stream[root(outlets[0])] = root(inlets[0])
+    given = {root(state) for state in stream if any(f"states.{state}.{name}" in plant.axis.givens for name in FLOWS)}
+    connected = dict.fromkeys(connection.state for entry in plant.connections.values() for connection in entry)
+    firsts = {root(state): state for state in reversed(connected)}
+    return [
+        f"states.{state}.mass_flow" for state in connected if firsts[root(state)] == state and root(state) not in given
+    ]
