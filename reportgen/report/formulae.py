@@ -4,8 +4,9 @@ The conversion proper is latex2mathml's; what it leaves rough for a browser is m
 word are joined (``\mathrm{kg}`` comes as two identifiers), dots are marked as accents, limits of sums go below and
 above, words in subscripts become text, so that the hyphen of a tag is no minus sign.
 
-Long equations are broken into pieces, each a ``<math>`` of its own, before relations and before + and − that stand
-outside all brackets. The page sets them one after the other like words, so that an equation wraps at any width.
+Long equations are broken into pieces, each a ``<math>`` of its own, which the page sets one after the other like
+words, so that an equation wraps at any width. The parts of a long piece stand in a span that keeps together wherever
+there is room for all of them. Where formulae may be cut is told by ``reportgen.report.breaking``.
 """
 
 from __future__ import annotations
@@ -15,8 +16,9 @@ from functools import lru_cache
 from xml.etree import ElementTree
 
 from reportgen.errors import Fault, InputError
+from reportgen.report.breaking import parts_of, split
 
-__all__ = ["estimated_total", "estimated_width", "mathml", "pieces", "split"]
+__all__ = ["mathml", "pieces"]
 
 _LARGE_OPERATORS = {"∑", "∏"}
 _ACCENTS = {"˙", "¨", "¯", "―", "^", "ˆ", "~", "˜", "→"}
@@ -26,8 +28,6 @@ _CLOSING = {")", "]", "}", "|", "!", "%"}
 _CHILDREN = {"mfrac": 2, "msub": 2, "msup": 2, "msubsup": 3, "mover": 2, "munder": 2, "munderover": 3}
 _FUNCTIONS = {"ln", "log", "exp", "sin", "cos", "tan", "max", "min"}
 _WORD = re.compile(r"\\mathrm\{([^{}\\^]*)\}")
-_BREAKS = ("=", "+", "-", r"\approx", r"\leq", r"\geq", r"\le", r"\ge", r"\pm")
-_COMMAND = re.compile(r"\\[A-Za-z]+|\\.|.", re.DOTALL)
 
 
 def _words_as_text(latex: str) -> str:
@@ -183,43 +183,10 @@ def _space_functions(element: ElementTree.Element) -> None:
             element.insert(index, ElementTree.Element("mspace", {"width": _THIN}))
 
 
-def split(latex: str) -> list[str]:
-    """Cut a formula before each relation, + and − that stands outside all braces and brackets, never at a sign."""
-    parts: list[str] = []
-    current: list[str] = []
-    depth = 0
-    for token in _COMMAND.findall(latex):
-        if depth == 0 and token in _BREAKS and _is_term("".join(current)):
-            parts.append("".join(current).strip())
-            current = []
-        depth += {"{": 1, "(": 1, "[": 1, "}": -1, ")": -1, "]": -1}.get(token, 0)
-        current.append(token)
-    parts.append("".join(current).strip())
-    return [part for part in parts if part]
-
-
-def _is_term(text: str) -> bool:
-    """Whether what stands before an operator is a term, so that the operator joins and is no sign."""
-    stripped = re.sub(r"(\\[,;:! ]|\s)+$", "", text)
-    return bool(stripped) and not re.search(r"(=|\+|-|\(|,|\\cdot|\\times|\\approx|\\left|\\right|\^|_)$", stripped)
-
-
 def pieces(latex: str, relation: str = "") -> list[str]:
-    """MathML of the pieces of a formula, the relation sign (``=``) before the first."""
-    parts = split(f"{relation} {latex}".strip())
-    return [mathml(part, infix_start=index > 0) for index, part in enumerate(parts)]
-
-
-def estimated_width(latex: str) -> int:
-    """Rough number of characters of the widest piece, to tell whether a narrow screen can hold it."""
-    return max((estimated_total(part) for part in split(latex)), default=0)
-
-
-def estimated_total(latex: str) -> int:
-    """Rough number of characters of a formula set in one line; both parts of a fraction count."""
-    return len(re.sub(r"[{}\s^_]", "", _drop_commands(latex)))
-
-
-def _drop_commands(latex: str) -> str:
-    text = re.sub(r"\\(mathrm|text|left|right|frac|dot|bar|overline|,|;|:|!)", "", latex)
-    return re.sub(r"\\[A-Za-z]+", "x", text)
+    """MathML of the pieces of a formula, the relation sign (``=``) before the first; long ones in a span of parts."""
+    found = []
+    for index, piece in enumerate(split(f"{relation} {latex}".strip())):
+        parts = [mathml(part, infix_start=index > 0 or place > 0) for place, part in enumerate(parts_of(piece))]
+        found.append(parts[0] if len(parts) == 1 else f'<span class="term">{"<wbr>".join(parts)}</span>')
+    return found

@@ -8,7 +8,8 @@ import pytest
 
 from reportgen.errors import InputError
 from reportgen.names import NAMES
-from reportgen.report.formulae import estimated_width, mathml, pieces, split
+from reportgen.report.breaking import estimated_total, estimated_width, parts_of, split
+from reportgen.report.formulae import mathml, pieces
 
 
 def parsed(latex: str) -> ElementTree.Element:
@@ -127,3 +128,55 @@ def test_a_piece_that_goes_on_spaces_its_operator_between_terms() -> None:
 
 def test_the_widest_piece_counts() -> None:
     assert estimated_width(r"\mathrm{abc} + \mathrm{a}") == 3
+
+
+def test_of_a_fraction_the_longer_part_counts() -> None:
+    assert estimated_total(r"\frac{a}{b + c + d}") == 5
+    assert estimated_total(r"\frac{\frac{abcd}{e}}{f}") == 4
+
+
+ENTROPY = r"\,\mathrm{kJ\,kg^{-1}\,K^{-1}}"
+LONG = rf"= 288.15\,\mathrm{{K}}\cdot \left(6.77136{ENTROPY} - 0.224448{ENTROPY}\right)"
+
+
+def test_a_long_bracket_breaks_at_its_operators_and_keeps_together_where_there_is_room() -> None:
+    first, second = parts_of(LONG)
+    assert first.endswith(r"(6.77136\,\mathrm{kJ\,kg^{-1}\,K^{-1}}")
+    assert second == r"- 0.224448\,\mathrm{kJ\,kg^{-1}\,K^{-1}})"
+    (piece,) = pieces(LONG)
+    assert piece.startswith('<span class="term"><math')
+    assert piece.count("<wbr>") == 1
+
+
+def test_arguments_of_a_long_function_break_after_their_commas() -> None:
+    long = r"h\left(1.01325\,\mathrm{bar},\,4403.8625\,\mathrm{kJ\,kg^{-1}\,K^{-1}}\right)"
+    assert parts_of(long)[0].endswith(",")
+    assert len(parts_of(long)) == 2
+
+
+@pytest.mark.parametrize(
+    "latex",
+    [
+        r"\left(s_2 - s_1\right)",  # short
+        LONG.replace(r"\left(", r"\sqrt{").replace(r"\right)", "}"),  # within braces
+        LONG.replace("0.224448", r"\frac{1}{2}"),  # its brackets stretch
+        LONG.replace("-", "").replace(r"^{1}", ""),  # nothing to break at
+    ],
+)
+def test_what_is_short_or_must_stay_whole_does_not_break(latex: str) -> None:
+    assert parts_of(latex) == [latex]
+
+
+def test_signs_within_long_brackets_stay_with_their_numbers() -> None:
+    inner = r"\left(-3.14159265\,\mathrm{kJ\,kg^{-1}}\right)"
+    assert parts_of(rf"x\left({inner} - {inner}\right)") == [rf"x({inner}", rf"- {inner})"]
+    assert len(parts_of(r"\left[aaaaaaaaaaaaaaaaaaaa\right]^+ + \left(bbbbbbbbbbb + c\right)^- / 4")) == 3
+
+
+def test_a_fraction_wider_than_a_sheet_is_written_in_the_line() -> None:
+    sum_of = " + ".join(["1.4444\\,\\mathrm{kg\\,s^{-1}}"] * 8)
+    parts = parts_of(rf"= \frac{{{sum_of}}}{{2}}")
+    assert not any("frac" in part for part in parts)
+    assert parts[0] == r"= (1.4444\,\mathrm{kg\,s^{-1}}"
+    assert parts[-1] == "/2"
+    assert max(estimated_total(part) for part in parts) < 20

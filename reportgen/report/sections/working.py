@@ -10,7 +10,8 @@ from typing import Any
 from markupsafe import Markup, escape
 
 from reportgen.names import NAMES
-from reportgen.report.formulae import estimated_total, estimated_width, pieces
+from reportgen.report.breaking import NARROW, estimated_total, estimated_width
+from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.passages import Passage
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order
@@ -26,10 +27,8 @@ _STATE_COLUMNS = (
     "density",
     "mass_flow",
 )
-#: Characters of one piece of an equation that still fit beside the margin of a narrow screen.
-_NARROW = 30
-#: Characters of one piece, both parts of its fractions counted, that reaches into the column of the basis.
-_STACKED = 110
+#: Characters of one piece that reaches into the column of the basis.
+_STACKED = 60
 #: Characters of a right side that takes more than a line anyway: the result then follows on its last line.
 _LONG = 68
 #: Steps of a passage that one sheet of paper holds together.
@@ -152,7 +151,11 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
     lines = []
     shown = set()
     for line in relation["latex_lines"]:
-        path = next((path for path in results if values[path].get("symbol") == line[0]), None)
+        left, *rights = line
+        if left and not rights[-1] and len(rights) > 1 and rights[1]:
+            lines.append(_balance(left, rights[0], rights[1], relation, presenter))
+            continue
+        path = next((path for path in results if values[path].get("symbol") == left), None)
         if path is not None:
             shown.add(path)
         # A value taken by default stands among the inputs: there its links lead.
@@ -179,15 +182,44 @@ def _line(line: list[str], path: str | None) -> dict[str, Any]:
     if len(rights) > 1 and rights[0].strip() == "0":
         rights = rights[1:]
     distinct = [right for index, right in enumerate(rights) if right and right not in rights[:index]]
-    shown = [[Markup(piece) for piece in pieces(right, "=")] for right in distinct]
-    if len(shown) > 1 and estimated_total(distinct[-2]) > _LONG:
-        shown[-2:] = [[*shown[-2], *shown[-1]]]
-    widest = max((estimated_width(right) for right in distinct), default=0)
+    if len(distinct) > 1 and estimated_total(distinct[-2]) > _LONG:
+        distinct[-2:] = [f"{distinct[-2]} = {distinct[-1]}"]
     return {
         "anchor": anchor("value", path) if path else None,
-        "left": Markup(pieces(left)[0]) if left else "",
-        "rights": shown,
-        "wide": widest > _NARROW,
+        "left": [Markup(piece) for piece in pieces(left)] if left else [],
+        "left_characters": estimated_total(left),
+        "is_balance": False,
+        **_sides(f"= {right}" for right in distinct),
+    }
+
+
+def _balance(left: str, right: str, numbers: str, relation: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+    """An equation of several unknowns: both sides in symbols, below them both in numbers, for a checker to compare."""
+    if "=" not in numbers:  # the right side is one value, or a constant
+        numbers = f"{numbers} = {_number_of(right, relation, presenter)}"
+    sides = _sides([f"{left} = {right}", numbers])
+    return {"anchor": None, "left": [], "left_characters": 0, "is_balance": True, **sides}
+
+
+def _number_of(symbol: str, relation: dict[str, Any], presenter: Presenter) -> str:
+    """LaTeX of the value of a relation that a symbol stands for; what is no symbol stands for itself."""
+    for path in (*relation["solves"], *relation["uses"]):
+        entry = presenter.record.entry(path)
+        if entry is not None and presenter.record.values.get(path, {}).get("symbol") == symbol:
+            return presenter.display.show(entry["value"], entry["dimension"]).latex
+    return symbol
+
+
+def _sides(sides: Iterable[str]) -> dict[str, Any]:
+    """Each side in pieces; a wide one with its characters, that it be set smaller where the line cannot hold them."""
+    widths = {side: estimated_width(side) for side in sides}
+    widest = max(widths.values(), default=0)
+    return {
+        "rights": [
+            ([Markup(piece) for piece in pieces(side)], width if width > NARROW else None)
+            for side, width in widths.items()
+        ],
+        "wide": widest > NARROW,
         "stacked": widest > _STACKED,
     }
 
