@@ -169,5 +169,5 @@ class DensitySolver:
                 isotherm = isotherm.take(keep)
         if where is None:
             return density, done
-        result[where] = density
+        result[where], found[where] = density, done
         return result, found

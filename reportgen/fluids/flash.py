@@ -21,6 +21,9 @@ _NEWTON_ITERATIONS = 14
 _SEARCH_ITERATIONS = 120
 #: Relative step after which Newton's method has converged: it doubles the digits with each step.
 _SETTLED = 1e-7
+#: What may be left of the target, in parts of R T or R, where a bracket has closed: a bracket without a root in it
+#: closes too. The rest covers the rounding of densities next to the critical point.
+_LEFT_OVER = 1e-7
 
 
 class Caloric(NamedTuple):
@@ -277,12 +280,16 @@ class PressureFlash:
         t = np.minimum(np.maximum(result.temperature[todo], lo), hi)
         t = np.where(np.isfinite(t), t, 0.5 * (lo + hi))
         width = hi - lo
+        # Outside the limits there is nothing to find: the bracket only closes on its end.
+        outside = result.cold[todo] | result.hot[todo]
         settled = np.zeros(todo.size, dtype=np.bool_)
         for iteration in range(_SEARCH_ITERATIONS):
             rho, gap, slope, ok = evaluate(t)
             step = gap / slope
-            settled = ok & ((np.abs(step) <= 1e-13 * t) | (np.abs(gap) <= rounding) | (hi - lo <= 1e-15 * t))
-            if settled.all():
+            closed = hi - lo <= 1e-15 * t
+            settled = ok & ((np.abs(step) <= 1e-13 * t) | (np.abs(gap) <= rounding))
+            settled |= ok & closed & (np.abs(gap) <= _LEFT_OVER * scale)
+            if (settled | closed | outside).all():
                 break
             lo, hi = np.where(gap > 0, t, lo), np.where(gap > 0, hi, t)
             trial = t + step
@@ -294,3 +301,8 @@ class PressureFlash:
         result.temperature[todo], result.density[todo] = t, rho
         result.cold[todo] |= ~settled & ~result.hot[todo] & (t <= coldest * (1 + 1e-6))
         result.found[todo] = settled & ~result.cold[todo] & ~result.hot[todo]
+        if self._curves.pseudo_pure:
+            # below the highest temperature of the envelope, the bubble line rises a little above the pressure there
+            saturated = self._curves.at_temperature(np.minimum(t, self._curves.top_temperature))
+            inside = (p > saturated.dew_pressure) & (p < saturated.bubble_pressure) & (t < self._curves.top_temperature)
+            result.between[todo] = inside & ~result.found[todo] & ~result.cold[todo] & ~result.hot[todo]

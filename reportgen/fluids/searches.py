@@ -226,8 +226,11 @@ class SearchFlash:
             liquid, vapour = saturated.liquid_density, saturated.vapour_density
             ends = self._equation.properties(np.concatenate([t, t]), np.concatenate([liquid, vapour]))
             value = ends.entropy if entropy else ends.enthalpy
-            x = (target[below] - value[: t.size]) / (value[t.size :] - value[: t.size])
-            x = np.where(np.abs(x) < 1e-9, 0.0, np.where(np.abs(x - 1) < 1e-9, 1.0, x))
+            from_liquid, from_vapour = target[below] - value[: t.size], target[below] - value[t.size :]
+            # a saturated state given back: its value differs from the one computed here by rounding at most
+            rounding = 1e-13 * self._equation.gas_constant * (1.0 if entropy else t)
+            x = from_liquid / (value[t.size :] - value[: t.size])
+            x = np.where(np.abs(from_liquid) <= rounding, 0.0, np.where(np.abs(from_vapour) <= rounding, 1.0, x))
             mixed = (x >= 0) & (x <= 1)
             result.quality[below] = np.where(mixed, x, np.nan)
             result.liquid_density[below], result.vapour_density[below] = liquid, vapour
