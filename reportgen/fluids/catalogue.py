@@ -75,7 +75,9 @@ def find(name: str) -> tuple[dict[str, Any], str]:
         near = get_close_matches(plain, _aliases(), n=1, cutoff=0.6)
         hint = f"Did you mean {_read(_aliases()[near[0]])[0]['name']!r}?" if near else None
         raise InputError(
-            Fault("No real fluid of this name is carried.", found=repr(name), expected=", ".join(names()), hint=hint)
+            Fault(
+                "No real fluid of this name is carried.", found=repr(name[:80]), expected=", ".join(names()), hint=hint
+            )
         )
     return _read(file)[0], file
 

@@ -20,7 +20,7 @@ from reportgen.errors import Fault, InputError
 from reportgen.fluids.caloric import LIMIT_SLACK, CaloricLaw, ConstantHeatCapacity, Nasa9
 from reportgen.fluids.gas_species import DATA_FILE, Basis, GasMixture, library, mole_fractions, resolve
 from reportgen.fluids.model import Errors, Limits
-from reportgen.fluids.pairs import PROPERTIES, Elements, Pair, read_pair
+from reportgen.fluids.pairs import Elements, Pair, check_errors, in_words, read_pair
 from reportgen.fluids.state import State
 
 __all__ = ["MOLAR_GAS_CONSTANT", "IdealGas", "ideal_gas"]
@@ -167,6 +167,7 @@ class IdealGas:
             ``Fluid.at``.
         RangeError : temperature outside the limits, a pressure or density that is not above zero.
         """
+        check_errors(errors)
         self._refuse_meaningless(pair)
         given = read_pair(pair, _PAIRS, self.title)
         elements = Elements(given.first.size)
@@ -205,12 +206,13 @@ class IdealGas:
     def _known(self, given: Pair, elements: Elements) -> dict[str, Array]:
         """The two properties by name, elements that cannot be met marked."""
         known = {given.names[0]: given.first, given.names[1]: given.second}
+        unknown = np.isnan(given.first) | np.isnan(given.second)
         for name in ("pressure", "density"):
             if name in known:
                 array = known[name]
                 elements.reject(
-                    ~((array > 0.0) & np.isfinite(array)) & ~np.isnan(array),
-                    lambda i, name=name, array=array: _fault(name, array[i], self.title, "a number above 0"),  # type: ignore[misc]
+                    ~((array > 0.0) & np.isfinite(array)) & ~unknown,
+                    lambda i, name=name, array=array: _fault(name, array[i], self.title, "a finite number above 0"),  # type: ignore[misc]
                 )
         return known
 
@@ -264,8 +266,8 @@ class IdealGas:
                 value = float(temperature[index])
                 side = f"below the minimum {low:g} K" if value < low else f"above the maximum {high:g} K"
                 return Fault(
-                    f"Temperature {value:.6g} K is {side} of {self.title} as an ideal gas.",
-                    found=f"{value:.6g} K",
+                    f"Temperature {in_words('temperature', value)} is {side} of {self.title} as an ideal gas.",
+                    found=in_words("temperature", value),
                     expected=f"{low:g} K to {high:g} K",
                 )
             return _fault(
@@ -308,10 +310,9 @@ def _speed_of_sound(heat_capacity: Array, gas_constant: float, temperature: Arra
 
 
 def _fault(name: str, value: float, title: str, expected: str) -> Fault:
-    words, unit = name.replace("_", " ").capitalize(), PROPERTIES[name]
-    return Fault(
-        f"{words} {value:.6g} {unit} is outside the range of {title}.", found=f"{value:.6g} {unit}", expected=expected
-    )
+    written = in_words(name, value)
+    words = name.replace("_", " ").capitalize()
+    return Fault(f"{words} {written} is outside the range of {title}.", found=written, expected=expected)
 
 
 # --- making one -------------------------------------------------------------------------------------------------------

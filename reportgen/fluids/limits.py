@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from reportgen.errors import Fault
 from reportgen.fluids.melting import MeltingLine
 from reportgen.fluids.model import Limits, Point
-from reportgen.fluids.pairs import PROPERTIES, Elements
+from reportgen.fluids.pairs import Elements, in_words
 
 __all__ = ["Guard", "limits_of"]
 
@@ -57,8 +57,11 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
 
 
 def _value(name: str, value: float) -> str:
-    unit = PROPERTIES[name]
-    return f"{name.replace('_', ' ')} {value:.9g}" + ("" if unit == "1" else f" {unit}")
+    return f"{name.replace('_', ' ')} {in_words(name, value)}"
+
+
+def _both(pressure: float, temperature: float) -> str:
+    return f"{in_words('pressure', pressure)} and {in_words('temperature', temperature)}"
 
 
 def _sentence(name: str, value: float) -> str:
@@ -94,6 +97,10 @@ class Guard:
             ),
         )
 
+    def infinite(self, where: BoolArray, elements: Elements, name: str, values: FloatArray) -> None:
+        """Refuse the elements of a property that are infinite."""
+        self._reject(where, elements, name, values, "not a finite number")
+
     def temperature(self, temperature: FloatArray, elements: Elements) -> None:
         """Refuse temperatures [K] outside the range."""
         low, high = self._limits.minimum_temperature, self._limits.maximum_temperature
@@ -113,7 +120,9 @@ class Guard:
         self._reject(pressure <= 0, elements, "pressure", pressure, "not above zero (absolute pressure is needed)")
         low = pressure < _LOWEST_PRESSURE
         self._reject(low, elements, "pressure", pressure, f"below {_LOWEST_PRESSURE:g} Pa, the lowest computed,")
-        self._reject(~inside & ~low, elements, "pressure", pressure, f"above the maximum, {high:g} Pa,")
+        self._reject(
+            ~inside & ~low, elements, "pressure", pressure, f"above the maximum, {in_words('pressure', high)},"
+        )
 
     def density(self, density: FloatArray, elements: Elements, highest: float) -> None:
         """Refuse densities [kg/m3] not positive, or beyond any state within the limits."""
@@ -154,14 +163,14 @@ class Guard:
             elements,
             "pressure",
             pressure,
-            f"below that of the triple point, {triple:.6g} Pa: no liquid there, so no saturation",
+            f"below that of the triple point, {in_words('pressure', triple, 6)}: no liquid there, so no saturation",
         )
         self._reject(
             pressure > top * (1 + _ROUNDING),
             elements,
             "pressure",
             pressure,
-            f"above the critical pressure, {top:.8g} Pa: no saturation",
+            f"above the critical pressure, {in_words('pressure', top)}: no saturation",
         )
 
     def saturation_temperature(self, temperature: FloatArray, elements: Elements, top: float) -> None:
@@ -179,7 +188,7 @@ class Guard:
             elements,
             "temperature",
             temperature,
-            f"above the critical temperature, {top:.8g} K: no saturation",
+            f"above the critical temperature, {in_words('temperature', top)}: no saturation",
         )
 
     def melting(self, pressure: FloatArray, temperature: FloatArray, elements: Elements) -> None:
@@ -196,8 +205,8 @@ class Guard:
         elements.reject(
             pressure > melting * (1 + 1e-6),
             lambda i: Fault(
-                f"{self._title} is solid at {pressure[i]:.9g} Pa and {temperature[i]:.9g} K: "
-                f"the melting pressure at this temperature is {melting[i]:.6g} Pa.",
+                f"{self._title} is solid at {_both(pressure[i], temperature[i])}: "
+                f"the melting pressure at this temperature is {in_words('pressure', melting[i], 6)}.",
                 found=f"{_value('pressure', pressure[i])}, {_value('temperature', temperature[i])}",
                 expected="a state on the fluid side of the melting line",
             ),
@@ -215,11 +224,11 @@ class Guard:
         """Pressure [Pa] and temperature [K] do not fix a state."""
         if pseudo_pure:
             return Fault(
-                f"{pressure:.9g} Pa and {temperature:.9g} K lie on one of the lines or {self._between}.",
+                f"{_both(pressure, temperature)} lie on one of the lines or {self._between}.",
                 hint="On a line, give the quality: 0 (bubble) or 1 (dew).",
             )
         return Fault(
-            f"{pressure:.9g} Pa and {temperature:.9g} K are a point of the saturation line of {self._title}: "
+            f"{_both(pressure, temperature)} are a point of the saturation line of {self._title}: "
             "they do not tell liquid from vapour.",
             hint="Give the quality with one of them.",
         )
@@ -245,16 +254,16 @@ class Guard:
     def too_cold(self, pressure: float, name: str, value: float) -> Fault:
         """Below the lowest temperature."""
         return Fault(
-            f"{self._title} at {pressure:.9g} Pa with {_value(name, value)} would be below the minimum temperature, "
-            f"{self._limits.minimum_temperature:g} K (triple point), or solid.",
+            f"{self._title} at {in_words('pressure', pressure)} with {_value(name, value)} would be below the minimum "
+            f"temperature, {self._limits.minimum_temperature:g} K (triple point), or solid.",
             found=_value(name, value),
         )
 
     def too_hot(self, pressure: float, name: str, value: float) -> Fault:
         """Above the highest temperature."""
         return Fault(
-            f"{self._title} at {pressure:.9g} Pa with {_value(name, value)} would be above the maximum temperature, "
-            f"{self._limits.maximum_temperature:g} K.",
+            f"{self._title} at {in_words('pressure', pressure)} with {_value(name, value)} would be above the maximum "
+            f"temperature, {self._limits.maximum_temperature:g} K.",
             found=_value(name, value),
         )
 

@@ -12,7 +12,7 @@ from numpy.typing import ArrayLike, NDArray
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids.model import Errors
 
-__all__ = ["PROPERTIES", "Elements", "Pair", "read_pair"]
+__all__ = ["PROPERTIES", "Elements", "Pair", "check_errors", "in_words", "read_pair"]
 
 #: Properties that may be given, with their SI unit.
 PROPERTIES: dict[str, str] = {
@@ -26,6 +26,15 @@ PROPERTIES: dict[str, str] = {
     "superheat": "K",
     "subcooling": "K",
 }
+
+#: SI value of one of the units in which messages speak of a property, and that unit.
+_SPOKEN = {
+    "pressure": (1e5, "bar"),
+    "specific_enthalpy": (1e3, "kJ/kg"),
+    "specific_entropy": (1e3, "kJ/(kg*K)"),
+}
+#: Pressures [Pa] below this are told in Pa: there bar gives only zeros.
+_LEAST_BAR = 100.0
 
 #: Faults named in full when an error is raised; the rest is counted.
 _NAMED_FAULTS = 3
@@ -55,7 +64,8 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
 
     Raises
     ------
-    InputError : unknown or repeated property, not exactly two, unsupported pair, shapes that do not broadcast.
+    InputError : unknown or repeated property, not exactly two, unsupported pair, values that are no numbers, shapes
+        that do not broadcast.
     """
     for name in given:
         if name not in PROPERTIES:
@@ -71,7 +81,7 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
         raise InputError(Fault(f"A state of {title} is fixed by exactly two properties.", found=found))
     values = {}
     for name, value in given.items():
-        array = np.array(value, dtype=np.float64)  # a copy: a State does not change when its givens do
+        array = _numbers(name, value)
         if name == "specific_volume":
             with np.errstate(divide="ignore"):
                 array = 1.0 / array
@@ -96,6 +106,45 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
                 )
             ) from None
     return Pair((names[0], names[1]), first.reshape(-1), second.reshape(-1), first.shape)
+
+
+def in_words(name: str, value: float, digits: int = 9) -> str:
+    """A property with the unit in which an engineer reads it: bar (absolute), kJ/kg; K with degC behind it.
+
+    Parameters
+    ----------
+    name : one of PROPERTIES; value : in its SI unit; digits : significant digits.
+    """
+    if name == "temperature" and np.isfinite(value):
+        return f"{value:.{digits}g} K ({value - 273.15:.6g} degC)"
+    factor, unit = _SPOKEN.get(name, (1.0, PROPERTIES[name]))
+    if name == "pressure" and abs(value) < _LEAST_BAR:
+        factor, unit = 1.0, "Pa"
+    return f"{value / factor:.{digits}g}" + ("" if unit == "1" else f" {unit}")
+
+
+def _numbers(name: str, value: ArrayLike) -> NDArray[np.float64]:
+    """A copy as floats, since a State does not change when its givens do; zero without a sign."""
+    try:
+        array = np.array(value)
+    except ValueError:  # rows of unequal length
+        array = np.empty(0, dtype=object)
+    # Complex numbers would lose their imaginary part, truth values and texts would pass for numbers.
+    if array.dtype.kind not in "iuf":
+        raise InputError(
+            Fault(
+                f"The {name.replace('_', ' ')} is not a number or an array of numbers.",
+                found=repr(value)[:80],
+                expected=f"numbers in {PROPERTIES[name]}",
+            )
+        )
+    return array.astype(np.float64, copy=False) + 0.0
+
+
+def check_errors(errors: str) -> None:
+    """Refuse anything but the two ways to treat elements that cannot be evaluated. Raises InputError."""
+    if errors not in ("raise", "mask"):
+        raise InputError(Fault("Errors are raised or masked.", found=repr(errors), expected='"raise", "mask"'))
 
 
 class Elements:

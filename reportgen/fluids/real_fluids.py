@@ -15,7 +15,7 @@ from reportgen.fluids.flash import PressureFlash
 from reportgen.fluids.helmholtz import Helmholtz
 from reportgen.fluids.limits import Guard, limits_of
 from reportgen.fluids.model import Errors
-from reportgen.fluids.pairs import Elements, Pair, read_pair
+from reportgen.fluids.pairs import Elements, Pair, check_errors, read_pair
 from reportgen.fluids.reference import zero_of
 from reportgen.fluids.saturation import SaturationCurves
 from reportgen.fluids.searches import Found, SearchFlash
@@ -120,17 +120,15 @@ class RealFluid:
         Pressure and temperature within 1e-9 of saturation are refused, since they do not tell liquid from vapour:
         give the quality.
         """
+        check_errors(errors)
         given = read_pair(pair, self._pairs, self.title)
-        if errors not in ("raise", "mask"):
-            raise InputError(Fault("Errors are raised or masked.", found=repr(errors), expected='"raise", "mask"'))
         size = given.first.size
+        known = ~(np.isnan(given.first) | np.isnan(given.second))
         valid = np.isfinite(given.first) & np.isfinite(given.second)
         elements = Elements(size)
         # An infinite value is a mistake, NaN is a value not known.
-        elements.reject(
-            np.isinf(given.first) | np.isinf(given.second),
-            lambda _: Fault(f"{given.names[0]} or {given.names[1]} is infinite."),
-        )
+        for name, values in ((given.names[0], given.first), (given.names[1], given.second)):
+            self._guard.infinite(np.isinf(values) & known, elements, name, values)
         # Far from a solution, searches may overflow; what they return is checked for each element.
         with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
             return self._solved(given, valid, elements, errors)

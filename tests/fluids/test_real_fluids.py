@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import numpy as np
 import pytest
 from hypothesis import given, settings
@@ -9,7 +11,7 @@ from hypothesis import strategies as st
 
 from reportgen import fluids
 from reportgen.errors import InputError, RangeError
-from reportgen.fluids import real_fluid
+from reportgen.fluids import ideal_gas, real_fluid
 from reportgen.fluids.model import Fluid
 from reportgen.fluids.state import FIELDS
 
@@ -147,11 +149,15 @@ def test_round_trip_of_pairs_that_need_a_search(name: str) -> None:
 def test_several_states_are_told_apart_not_picked() -> None:
     """Water at 1 atm has its largest density at 4 degC: two temperatures share each density around it."""
     cold = WATER.at(pressure=101325.0, temperature=275.0)
-    with pytest.raises(RangeError, match="Water has 2 states at pressure 101325 Pa and density"):
+    with pytest.raises(RangeError, match=r"Water has 2 states at pressure 1\.01325 bar and density"):
         WATER.at(pressure=101325.0, density=cold.density)
     two_phase = WATER.at(pressure=1e5, density=5.0)
     assert two_phase.phase == "two-phase"
     assert WATER.at(pressure=1e5, specific_volume=0.2).quality == pytest.approx(two_phase.quality, rel=1e-12)
+    # very little vapour, at a pressure where it takes up nearly all the room
+    wet = real_fluid("propane").at(temperature=88.5, quality=7e-10)
+    again = real_fluid("propane").at(temperature=88.5, specific_entropy=wet.specific_entropy)
+    assert again.density == pytest.approx(wet.density, rel=1e-5)
     vapour = WATER.saturation(temperature=400.0)[1]
     again = WATER.at(temperature=400.0, specific_entropy=vapour.specific_entropy)
     assert again.pressure == pytest.approx(vapour.pressure, rel=1e-9)
@@ -226,7 +232,9 @@ def test_clapeyron_equation_along_the_saturation_line() -> None:
 
 class TestLimits:
     def test_below_the_triple_point(self) -> None:
-        with pytest.raises(RangeError, match=r"Temperature 270 K is below the minimum, 273.16 K \(triple point\)"):
+        with pytest.raises(
+            RangeError, match=r"Temperature 270 K \(-3\.15 degC\) is below the minimum, 273.16 K \(triple point\)"
+        ):
             WATER.at(pressure=1e5, temperature=270.0)
         with pytest.raises(RangeError, match="no liquid there, so no saturation"):
             real_fluid("carbon dioxide").saturation(pressure=101325.0)
@@ -252,7 +260,7 @@ class TestLimits:
     def test_maxima(self) -> None:
         with pytest.raises(RangeError, match=r"above the maximum, 2000 K"):
             WATER.at(pressure=1e5, temperature=2000.1)
-        with pytest.raises(RangeError, match=r"above the maximum, 1e\+09 Pa"):
+        with pytest.raises(RangeError, match="above the maximum, 10000 bar"):
             WATER.at(pressure=1.01e9, temperature=500.0)
         with pytest.raises(RangeError, match="above the maximum temperature, 2000 K"):
             WATER.at(pressure=1e5, specific_enthalpy=1e7)
@@ -302,8 +310,23 @@ class TestLimits:
             WATER.at(pressure=1e5, subcooling=-1.0)
 
     def test_infinite_is_refused(self) -> None:
-        with pytest.raises(RangeError, match="infinite"):
+        with pytest.raises(RangeError, match="Pressure inf bar is not a finite number for Water"):
             WATER.at(pressure=np.inf, temperature=300.0)
+        with pytest.raises(RangeError, match="Temperature inf K is not a finite number for Water"):
+            WATER.at(pressure=1e5, temperature=np.inf)
+        # what is not known cannot be wrong
+        assert not WATER.at(pressure=np.nan, temperature=np.inf).faults
+
+    def test_messages_speak_in_units_people_use(self) -> None:
+        with pytest.raises(RangeError, match=r"Pressure 20000 bar is above the maximum, 10000 bar"):
+            WATER.at(pressure=2e9, temperature=500.0)
+        with pytest.raises(RangeError, match=r"Water at 39 bar with specific enthalpy 9000 kJ/kg would be above"):
+            WATER.at(pressure=39e5, specific_enthalpy=9e6)
+        with pytest.raises(RangeError, match=r"specific entropy 20 kJ/\(kg\*K\)"):
+            WATER.at(pressure=39e5, specific_entropy=2e4)
+        liquid, _ = WATER.saturation(temperature=500.0)
+        with pytest.raises(RangeError, match=re.escape(f"{liquid.pressure / 1e5:.9g} bar and 500 K (226.85 degC) are")):
+            WATER.at(pressure=liquid.pressure, temperature=500.0)
 
 
 class TestPseudoPure:
@@ -324,6 +347,11 @@ class TestPseudoPure:
         assert vapour.temperature > liquid.temperature
         with pytest.raises(RangeError, match="between the bubble and the dew line"):
             self.AIR.at(pressure=5e5, specific_enthalpy=(liquid.specific_enthalpy + vapour.specific_enthalpy) / 2)
+
+    def test_between_the_lines_above_the_pressure_where_they_meet(self) -> None:
+        """The bubble line rises to 37.92 bar, the point of the highest temperature lies at 37.85 bar."""
+        with pytest.raises(RangeError, match="between the bubble and the dew line"):
+            self.AIR.at(pressure=3785286.0, specific_entropy=4413.78)
 
     def test_on_the_lines_and_outside_them(self) -> None:
         liquid, vapour = self.AIR.saturation(pressure=5e5)
@@ -351,6 +379,52 @@ class TestShapesAndMasks:
         for index in range(base.density.size):
             alone = WATER.at(pressure=base.pressure[index], specific_enthalpy=base.specific_enthalpy[index])
             assert alone.temperature == pytest.approx(base.temperature[index], rel=1e-11)
+
+    def test_what_else_is_in_the_batch_does_not_matter(self) -> None:
+        """Beyond the hottest state, next to a neighbour on the saturation line, where no density may be found at the
+        end of its bracket: the one above the limits must not be answered with the limit.
+        """
+        fluid = real_fluid("carbon dioxide")
+        pressure = np.array([2.12453879e5, 2.94772208e5, 1.89909238e8, 2.64333523e5, 7.37679127e6])
+        entropy = np.array([2085.20831873, -1271.97846713, 762.40470865, -1837.46852011, -2288.93805143])
+        together = fluid.at(pressure=pressure, specific_entropy=entropy, errors="mask")
+        for index in range(pressure.size):
+            alone = fluid.at(pressure=pressure[index], specific_entropy=entropy[index], errors="mask")
+            assert bool(alone.faults) == (index in together.faults)
+        assert "above the maximum temperature, 2000 K" in together.faults[2].message
+
+    @pytest.mark.parametrize("name", NAMES)
+    def test_states_from_pressure_and_entropy_or_enthalpy_have_them(self, name: str) -> None:
+        """Over the whole rectangle, a little beyond its sides too: what is answered is the state asked for."""
+        fluid = real_fluid(name)
+        limits, random = fluid.limits, np.random.default_rng(3)
+        lowest = max(0.1 * limits.triple_point.pressure, 1e-2)
+        pressure = np.concatenate(
+            [
+                np.geomspace(lowest, limits.maximum_pressure, 700),
+                limits.critical_point.pressure
+                * (1 + random.choice([-1, 1], 700) * 10 ** random.uniform(-6, -0.5, 700)),
+            ]
+        )
+        random.shuffle(pressure)
+        hottest = fluid.at(pressure=pressure, temperature=limits.maximum_temperature, errors="mask")
+        coldest, _ = fluid.saturation(temperature=limits.minimum_temperature)
+        for key in ("specific_enthalpy", "specific_entropy"):
+            low, high = getattr(coldest, key), getattr(hottest, key)
+            target = low + random.uniform(-0.02, 1.02, pressure.size) * (high - low)
+            state = fluid.at(pressure=pressure, errors="mask", **{key: target})
+            answered = np.isfinite(state.temperature)
+            assert np.count_nonzero(answered) > 1000
+            assert not any("fault of the program" in str(fault) for fault in state.faults.values())
+            density, temperature = state.density[answered], state.temperature[answered]
+            again = fluid.at(temperature=temperature, density=density)
+            rt = fluid.gas_constant * temperature
+            # a liquid's pressure is only as good as the last digit of its density
+            slope = np.where(again.phase == "two-phase", 0.0, np.nan_to_num(again.speed_of_sound) ** 2)
+            error = np.abs(again.pressure - pressure[answered])
+            assert (error <= 1e-8 * pressure[answered] + 1e-12 * density * (slope + rt)).all()
+            scale = rt if key == "specific_enthalpy" else fluid.gas_constant
+            assert np.max(np.abs(getattr(again, key) - target[answered]) / scale) < 1e-8
 
     def test_long_batches_are_worked_in_pieces_without_a_seam(self) -> None:
         temperature = np.linspace(300.0, 1500.0, 5000)
@@ -404,6 +478,25 @@ class TestShapesAndMasks:
     def test_phases_by_name(self) -> None:
         state = WATER.at(pressure=[1e5, 1e5, 30e6, 30e6, 1e5], temperature=[300.0, 500.0, 500.0, 800.0, 1000.0])
         assert state.phase.tolist() == ["liquid", "vapour", "liquid", "supercritical", "vapour"]
+
+    @pytest.mark.parametrize(
+        "number", [True, None, "1 bar", 1e5 + 0j, np.array([1e5 + 1j]), [[1e5], [1e5, 2e5]], 10**400]
+    )
+    def test_what_is_no_number_is_refused(self, number: object) -> None:
+        for fluid in (WATER, ideal_gas("N2")):
+            with pytest.raises(InputError, match="The pressure is not a number or an array of numbers"):
+                fluid.at(pressure=number, temperature=400.0)
+            with pytest.raises(InputError, match="raised or masked"):
+                fluid.at(pressure=1e5, temperature=400.0, errors="ignore")
+
+    def test_integers_and_single_precision_become_double_and_zero_has_no_sign(self) -> None:
+        exact = WATER.at(pressure=100_000, temperature=400)
+        assert exact.density == WATER.at(pressure=1e5, temperature=400.0).density
+        single = WATER.at(pressure=np.float32(1e5), temperature=np.float32(400.0))
+        assert single.density.dtype == np.float64
+        assert single.density == exact.density
+        assert str(WATER.at(pressure=1e5, quality=-0.0).quality) == "0.0"
+        assert str(WATER.at(pressure=1e5, superheat=-0.0).superheat) == "0.0"
 
     def test_wrong_pairs(self) -> None:
         with pytest.raises(InputError, match="Did you mean pressure"):
