@@ -90,9 +90,7 @@ _ENTRIES = (
     Name("power", r"\dot W", "power", "Power", _POWER),
     Name("heat", r"\dot Q", "heat_flow", "Heat flow rate", _INTO),
     Name("boundary_temperature", "T_b", "temperature", "Temperature of the boundary where heat crosses"),
-    Name(
-        "duty", r"\dot Q_\mathrm{duty}", "heat_flow", "Heat from hot to cold side", "positive from hot to cold"
-    ),
+    Name("duty", r"\dot Q_\mathrm{duty}", "heat_flow", "Heat from hot to cold side", "positive from hot to cold"),
     Name("isentropic_efficiency", r"\eta_s", "efficiency", "Isentropic efficiency"),
     Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
     Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Enthalpy at outlet pressure and inlet entropy"),
@@ -123,7 +121,8 @@ def name_of(path: str) -> Name | None:
 def symbol_of(path: str) -> str:
     """LaTeX symbol of a value, with the state or the tag as its subscript.
 
-    ``states.2.specific_entropy`` gives ``s_{\\mathrm{2}}``. A path that ends in no known name gives its own text.
+    ``states.2.specific_entropy`` gives ``s_{\\mathrm{2}}``, ``equipment.CV.heat_ports.1.heat`` the heat over boundary 1
+    of CV, ``\\dot Q_{\\mathrm{CV},1}``. A path that ends in no known name gives its own text.
     """
     parts = path.split(".")
     entry = NAMES.get(parts[-1])
@@ -133,6 +132,8 @@ def symbol_of(path: str) -> str:
         owner = ",".join(["0", *(r"\mathrm{" + part + "}" for part in parts[1:-1])])
     elif parts[0] == "total":
         owner = r"\mathrm{total}"
+    elif len(parts) > 3 and parts[-3] == "heat_ports":
+        owner = r"\mathrm{" + ".".join(parts[1:-3]) + "}," + parts[-2]
     else:
         owner = r"\mathrm{" + ".".join(parts[1:-1]) + "}"
     base, _, inner = entry.symbol.partition("_")

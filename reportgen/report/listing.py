@@ -9,6 +9,7 @@ from urllib.parse import quote
 from reportgen.errors import InputError
 from reportgen.record import Record
 from reportgen.report.presenter import NO_VALUE, Presenter, natural
+from reportgen.report.sections.head import is_decisive, is_open
 from reportgen.report.templates import environment, style
 
 __all__ = ["records_in", "register_page"]
@@ -74,7 +75,8 @@ def _count(entries: list[dict[str, Any]], key: str, value: str) -> int:
 def _open_items(data: dict[str, Any]) -> str:
     return _counted(
         {
-            "to be verified": _count(data["assumptions"], "status", "to be verified"),
+            "decisive": sum(is_decisive(entry) for entry in data["assumptions"]),
+            "to be verified": sum(is_open(entry) and not is_decisive(entry) for entry in data["assumptions"]),
             "not met": _count(data["criteria"], "decision", "not met"),
             "not decided": _count(data["criteria"], "decision", "not decided"),
         }

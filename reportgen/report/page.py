@@ -11,7 +11,7 @@ from reportgen.record import Record
 from reportgen.report import figures
 from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
-from reportgen.report.presenter import Presenter
+from reportgen.report.presenter import Presenter, prose
 from reportgen.report.sections import account, basis, budget, findings, head, tail, working
 from reportgen.report.templates import environment, fonts_folder, style
 
@@ -38,7 +38,7 @@ def _figures(presenter: Presenter) -> dict[str, Any] | None:
                     "anchor": anchor("drawing", figure["id"]),
                     "svg": svg,
                     "title": figure["title"].rstrip("."),
-                    "caption": figure.get("caption"),
+                    "caption": prose(figure.get("caption")),
                 }
             )
     return {"figures": drawn} if drawn else None

@@ -11,7 +11,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
-__all__ = ["Part", "Passage", "arrange", "is_residual", "residuals"]
+__all__ = ["RESIDUALS", "Part", "Passage", "arrange", "is_residual", "residuals"]
 
 _STATES, _ENTROPY, _EXERGY, _TRAINS, _WHOLE = range(5)
 _TITLES = (
@@ -34,7 +34,9 @@ _TOLD = {
     "exergetic_efficiency": _EXERGY,
     "entropy_generation_number": _EXERGY,
 }
-_RESIDUALS = {"mass_imbalance", "energy_imbalance", "closure"}
+#: Names of what is left of each balance.
+RESIDUALS = {"mass": ("mass_imbalance",), "energy": ("energy_imbalance",), "entropy": ("entropy_imbalance", "closure")}
+_RESIDUALS = {name for names in RESIDUALS.values() for name in names}
 _FIXED = re.compile(r"State (?P<state>\S+) is fixed by its (?P<how>.+)", re.DOTALL)
 #: Characters of sentences on one piece that are still read as one.
 _SENTENCE = 215

@@ -19,11 +19,16 @@ from reportgen.quantities import Display, Shown
 from reportgen.record import Record
 from reportgen.report.formulae import mathml
 from reportgen.report.links import Links
-from reportgen.report.passages import Part, arrange
+from reportgen.report.passages import RESIDUALS, Part, arrange
 
-__all__ = ["NO_VALUE", "Presenter", "in_order", "natural", "significant"]
+__all__ = ["NO_VALUE", "Presenter", "in_order", "natural", "prose", "significant"]
 
 NO_VALUE = "—"
+#: Part of the terms of a balance below which what is left of it is rounding.
+_ROUNDING = 1e-10
+_DEGREES = re.compile(r"(?<=\d )deg([CF])\b")
+_PRODUCT_OF_UNITS = re.compile(r"\((k?g|lb|mol|kmol) (K|°R)\)")
+_HEAT_PORT = re.compile(r"(.+)\.heat_ports\.(\d+)")
 _QUALIFIED = re.compile(r"[,:]| at the | of a two-phase| relative to| p v ")
 _PIECES = re.compile(r"(\d+)")
 
@@ -36,6 +41,11 @@ def significant(value: float, digits: int) -> float:
 def natural(text: str) -> list[tuple[int, int, str]]:
     """Key that sorts names as people do: ``2`` before ``10``, ``HX-2`` before ``HX-10``."""
     return [(0, int(part), "") if part.isdecimal() else (1, 0, part) for part in _PIECES.split(text) if part]
+
+
+def prose(text: str | None) -> str:
+    """The program's own sentences with units as the page sets them (°C, kJ/(kg·K)); never what an author wrote."""
+    return _PRODUCT_OF_UNITS.sub(r"(\1·\2)", _DEGREES.sub(r"°\1", text or ""))
 
 
 def in_order(entries: Mapping[str, dict[str, Any]]) -> list[tuple[str, dict[str, Any]]]:
@@ -92,6 +102,19 @@ class Presenter:
         name = self.display.unit_text(dimension) if unit else ""
         return f"{number}\N{NO-BREAK SPACE}{name}" if name else number
 
+    def residual(self, value: float, scale: float, dimension: str) -> str:
+        """What is left of a balance whose terms add up to ``scale``; 0 where that is rounding of the arithmetic."""
+        return self.rough(0.0 if abs(value) <= _ROUNDING * scale else value, dimension, 2)
+
+    @cached_property
+    def residual_scales(self) -> dict[str, float]:
+        """Size of the terms of each audited balance, by the path of what is left of it."""
+        return {
+            f"{entry['owner']}.{name}": entry["scale"]
+            for entry in self.record.data["audits"].get("closure", [])
+            for name in RESIDUALS[entry["quantity"]]
+        }
+
     def difference(self, value: float | None, dimension: str, uncertainty: float | None = None) -> str:
         """A difference of two values of a dimension, with its unit: kelvins for temperatures."""
         return self.with_unit(value, self.difference_dimension(dimension), uncertainty)
@@ -126,6 +149,9 @@ class Presenter:
             return NO_VALUE
         if isinstance(entry["value"], str):
             return entry["value"]
+        if path in self.residual_scales:
+            number = self.residual(entry["value"], self.residual_scales[path], entry["dimension"])
+            return number if unit else number.split("\N{NO-BREAK SPACE}")[0]
         uncertainty = self.record.expanded_uncertainty(path)
         if unit:
             return self.with_unit(entry["value"], entry["dimension"], uncertainty)
@@ -174,6 +200,13 @@ class Presenter:
             )
         return facts
 
+    def limit(self, criterion: Mapping[str, Any]) -> str:
+        """``at most 40 °C``: the limit of a criterion in display units; as written where the record has no number."""
+        words = {"at_most": "at most", "at_least": "at least"}[criterion["comparison"]]
+        if not isinstance(criterion["limit"], float | int):
+            return f"{words} {criterion['limit_text']}"
+        return f"{words} {self.with_unit(criterion['limit'], criterion['dimension'])}"
+
     def symbol(self, path: str) -> Markup:
         """Symbol of a value as MathML, the record's own where it gives one."""
         entry = self.record.values.get(path, {})
@@ -192,7 +225,8 @@ class Presenter:
         if parts[0] == "states":
             return f"state\N{NO-BREAK SPACE}{name}"
         if parts[0] == "equipment":
-            return name
+            port = _HEAT_PORT.fullmatch(name)
+            return f"heat port\N{NO-BREAK SPACE}{port[2]} of {port[1]}" if port else name
         if parts[0] == "trains":
             return str(trains.get(name, {}).get("title") or name)
         return {"total": "total", "surroundings": "surroundings"}.get(parts[0], name)

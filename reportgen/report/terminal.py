@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from reportgen.record import Record
-from reportgen.report.presenter import Presenter
+from reportgen.report.presenter import Presenter, prose
+from reportgen.report.sections.head import is_decisive, is_open
 
 __all__ = ["print_summary"]
 
@@ -32,19 +33,21 @@ def print_summary(record: Record) -> None:
     if table.row_count:
         console.print(table)
     for caution in data["cautions"]:
+        text = prose(caution["text"])
+        if not caution["decided"] and "not decided" not in text:
+            text += " This is not decided within the uncertainty."
         facts = ", ".join(f"{name} {text}" for name, text in presenter.caution_facts(caution))
         style = {"stop": "bold", "warning": "", "note": "dim"}[caution["severity"]]
-        say(
-            f"{caution['severity'].upper()} {caution['id']} {caution['path']}: {caution['text']} {facts}".rstrip(),
-            style,
-        )
+        say(f"{caution['severity'].upper()} {caution['id']} {caution['path']}: {text} {facts}".rstrip(), style)
+    for audit in data["audits"].get("second_law", []):
+        if audit["verdict"] != "generates entropy":
+            generated = presenter.show(audit["value"], "entropy_flow", audit["expanded_uncertainty"]).text
+            say(f"Second law, {presenter.owner_title(audit['owner'])}: {audit['verdict']}, generates {generated}")
     for criterion in data["criteria"]:
-        limit = criterion["comparison"].replace("_", " ")
-        value = presenter.text(criterion["path"])
         say(
-            f"{criterion['id']} {presenter.label(criterion['path'])} {limit} {criterion['limit_text']}: "
-            f"{value}, {criterion['decision']}"
+            f"{criterion['id']} {presenter.label(criterion['path'])} {presenter.limit(criterion)}: "
+            f"{presenter.text(criterion['path'])}, {criterion['decision']}"
         )
-    open_ones = [entry for entry in data["assumptions"] if entry["status"] == "to be verified"]
-    for entry in open_ones:
-        say(f"To be verified {entry['id']}: {entry['text']}")
+    for entry in data["assumptions"]:
+        if is_open(entry) or is_decisive(entry):
+            say(f"{'Decisive' if is_decisive(entry) else 'To be verified'} {entry['id']}: {entry['text']}")

@@ -17,7 +17,7 @@ from reportgen.report.presenter import Presenter
 
 __all__ = ["KINDS", "draw"]
 
-KINDS: dict[str, Callable[[dict[str, Any], Presenter, Path], Drawing]] = {
+KINDS: dict[str, Callable[[dict[str, Any], Presenter, Path], Drawing | None]] = {
     "temperature-entropy": temperature_entropy.draw,
     "lost-work-bars": bars.draw_lost_work,
     "entropy-account-bars": bars.draw_entropy_account,
@@ -30,7 +30,7 @@ def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Markup | 
     ``fonts`` is the folder with ``figures.otf``, by which text is measured.
     """
     kind = KINDS.get(figure["kind"])
-    if kind is None:
+    drawing = kind(figure, presenter, fonts) if kind is not None else None
+    if drawing is None:
         return None
-    drawing = kind(figure, presenter, fonts)
     return Markup(drawing.svg(figure["id"], figure["title"], drawing.description))

@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
+from reportgen.report.amounts import Amounts
 from reportgen.report.figures.canvas import GENERATION, GREY, INK, SMALL, TINT, WIDTH, Drawing
 from reportgen.report.presenter import Presenter
 
@@ -15,11 +16,13 @@ _FOOT, _HEAD = 34.0, 6.0
 _GAP = 6.0
 
 
-def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
-    """One bar a piece, longest first, its value with U at its end and a whisker of ± U."""
+def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing | None:
+    """One bar a piece, longest first, its value with U at its end and a whisker of ± U; None without any."""
     bars = [bar for bar in figure["bars"] if bar["value"] is not None]
+    if not bars:
+        return None
     bars = sorted(bars, key=lambda bar: -bar["value"])
-    drawing = Drawing(WIDTH, _HEAD + _FOOT + _ROW * max(len(bars), 1), fonts)
+    drawing = Drawing(WIDTH, _HEAD + _FOOT + _ROW * len(bars), fonts)
     texts = [presenter.show(bar["value"], "power", bar["expanded_uncertainty"]).text for bar in bars]
     values = [presenter.display.convert(bar["value"], "power") for bar in bars]
     spreads = [
@@ -46,10 +49,12 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
     return drawing
 
 
-def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
-    """One bar an account: entropy entering, then generated; the two end where what leaves ends."""
+def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing | None:
+    """One bar an account: entropy entering, then generated; the two end where what leaves ends. None without any."""
     bars = [bar for bar in figure["bars"] if bar["entering"] is not None and bar["generated"] is not None]
-    drawing = Drawing(WIDTH, _HEAD + _FOOT + _ACCOUNT_ROW * max(len(bars), 1), fonts)
+    if not bars:
+        return None
+    drawing = Drawing(WIDTH, _HEAD + _FOOT + _ACCOUNT_ROW * len(bars), fonts)
     axes = drawing.axes(10.0, _FOOT, 8.0, _HEAD)
     entering = [presenter.display.convert(bar["entering"], "entropy_flow") for bar in bars]
     generated = [presenter.display.convert(bar["generated"], "entropy_flow") for bar in bars]
@@ -57,13 +62,15 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
     lowest, highest = min([0.0, *entering, *ends]), max([0.0, *entering, *ends])
     reach = (highest - lowest) or 1.0
     axes.set(xlim=(lowest, lowest + 1.02 * reach), ylim=(len(bars) - 0.5, -0.5))
+    unit = presenter.display.unit_text("entropy_flow")
     described = []
     for row, (bar, start, more) in enumerate(zip(bars, entering, generated, strict=True)):
         height = _BAR / _ACCOUNT_ROW
         axes.barh(row, start, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
         axes.barh(row, more, height=height, left=start, color=GENERATION, edgecolor=INK, linewidth=0.7)
-        carried = f"in {presenter.rough(bar['entering'], 'entropy_flow', 4)}"
-        made = f"generated {presenter.rough(bar['generated'], 'entropy_flow', 4)}"
+        amounts = _amounts(bar, presenter)
+        carried = f"in {amounts.text(bar['entering'])} {unit}"
+        made = f"generated {amounts.text(bar['generated'])} {unit}"
         zero, middle = (float(value) for value in axes.transData.transform((lowest, row)))
         end = float(axes.transData.transform((start + more, row))[0])
         room = sum(drawing.text_size(text, SMALL)[0] for text in (carried, made)) + 4 * _GAP
@@ -71,9 +78,16 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         drawing.write(zero + 3.0, middle - _BAR / 2 - 11.0, carried, size=SMALL, color=GREY)
         drawing.write(max(end, zero + room), middle - _BAR / 2 - 11.0, made, size=SMALL, color=GENERATION, ha="right")
         described.append(f"{bar['label']}: {carried}, {made}")
-    _finish(drawing, axes, f"entropy rate in {presenter.display.unit_text('entropy_flow')}")
+    _finish(drawing, axes, f"entropy rate in {unit}")
     drawing.description = f"Horizontal bars from zero. {'; '.join(described)}."
     return drawing
+
+
+def _amounts(bar: dict[str, Any], presenter: Presenter) -> Amounts:
+    """The figures as the account of the same title shows them."""
+    own = {side: [{"value": bar[side]}] for side in ("entering", "generated", "leaving")}
+    accounts = presenter.record.data["accounts"].values()
+    return Amounts(next((account for account in accounts if account["title"] == bar["label"]), own), presenter)
 
 
 def _finish(drawing: Drawing, axes: Any, name: str) -> None:

@@ -9,7 +9,7 @@ import numpy as np
 
 from reportgen.report.figures.canvas import GREY, INK, PAPER, SMALL, TEAL, WIDTH, Drawing, finite
 from reportgen.report.figures.placement import Box, Label, Placed, Placement
-from reportgen.report.presenter import Presenter, significant
+from reportgen.report.presenter import Presenter
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -22,6 +22,7 @@ _MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
 _POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
 _APART = 1.1
+_PRESSURE_DIGITS = 4
 _LEGIBLE = 6.0  # points between a labelled isobar and any other line
 #: Part of both axes below which the processes get a panel of their own.
 _CROWDED = 0.4
@@ -29,9 +30,11 @@ _CROWDED = 0.4
 Line = list[tuple[float, float]]
 
 
-def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
+def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing | None:
     """The figure of one fluid; where the processes crowd in a corner of the dome, a second panel shows them large."""
     curves = _Curves(figure, presenter)
+    if not curves.points and not curves.paths:
+        return None
     detail = curves.detail()
     left, bottom, right, top = _MARGINS
     if detail:
@@ -41,7 +44,7 @@ def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing:
     else:
         drawing = Drawing(WIDTH, _HEIGHT, fonts)
         _panel(drawing, curves, _MARGINS, curves.whole(), None, presenter)
-    drawing.description = curves.description(presenter)
+    drawing.description = curves.description()
     return drawing
 
 
@@ -63,13 +66,33 @@ class _Curves:
 
         self.dome = line(figure.get("dome"))
         self.isobars = [
-            (_pressure_text(entry["pressure"], presenter), line(entry)) for entry in _apart(figure.get("isobars", []))
+            (presenter.rough(entry["pressure"], "pressure", _PRESSURE_DIGITS), line(entry))
+            for entry in _apart(figure.get("isobars", []))
         ]
         self.paths = [(entry["equipment"], line(entry)) for entry in figure.get("paths", [])]
-        self.points = [
-            (str(entry["label"]), line({"entropy": [entry["entropy"]], "temperature": [entry["temperature"]]})[0])
+        known = [
+            entry
             for entry in figure.get("points", [])
             if entry["entropy"] is not None and entry["temperature"] is not None
+        ]
+        self.points = [
+            (str(entry["label"]), line({"entropy": [entry["entropy"]], "temperature": [entry["temperature"]]})[0])
+            for entry in known
+        ]
+        # In words, with the digits of the table of states.
+        self.places = [
+            (
+                str(entry["label"]),
+                [
+                    presenter.with_unit(
+                        entry[name],
+                        dimension,
+                        presenter.record.expanded_uncertainty(f"states.{entry['state']}.{dimension}"),
+                    )
+                    for name, dimension in (("entropy", "specific_entropy"), ("temperature", "temperature"))
+                ],
+            )
+            for entry in known
         ]
 
     def processes(self) -> Box:
@@ -100,14 +123,9 @@ class _Curves:
             return None
         return _aired(processes, 0.3, 0.25)
 
-    def description(self, presenter: Presenter) -> str:
+    def description(self) -> str:
         """The figure in words: states and paths."""
-        entropy = presenter.display.unit_text("specific_entropy")
-        temperature = presenter.display.unit_text("temperature")
-        points = "; ".join(
-            f"state {name} at {_plain(point[0])} {entropy} and {_plain(point[1])} {temperature}"
-            for name, point in self.points
-        )
+        points = "; ".join(f"state {name} at {' and '.join(place)}" for name, place in self.places)
         parts = ["Temperature against specific entropy."]
         if self.dome:
             parts.append("The saturation line is a closed dome.")
@@ -118,13 +136,6 @@ class _Curves:
         return " ".join(parts)
 
 
-def _pressure_text(pressure: float, presenter: Presenter) -> str:
-    """A pressure to three digits of the unit shown."""
-    return (
-        f"{significant(presenter.display.convert(pressure, 'pressure'), 3):g} {presenter.display.unit_text('pressure')}"
-    )
-
-
 def _apart(isobars: list[dict[str, Any]]) -> list[dict[str, Any]]:
     """Isobars whose pressures differ by more than a tenth; of closer ones, which would run together, the lowest."""
     kept: list[dict[str, Any]] = []
@@ -132,10 +143,6 @@ def _apart(isobars: list[dict[str, Any]]) -> list[dict[str, Any]]:
         if not kept or entry["pressure"] > _APART * kept[-1]["pressure"]:
             kept.append(entry)
     return kept
-
-
-def _plain(figure: float) -> str:
-    return f"{figure:.4g}".replace("-", "−")
 
 
 def _cover(points: Line) -> Box:

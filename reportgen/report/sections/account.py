@@ -8,6 +8,7 @@ from typing import Any
 
 from markupsafe import Markup
 
+from reportgen.report.amounts import Amounts
 from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.passages import residuals
@@ -39,62 +40,37 @@ def _in_train_order(data: dict[str, Any]) -> list[tuple[str, dict[str, Any]]]:
 
 def _account(name: str, entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     """Left: entering, then generated. Right: leaving. All figures to one decimal place, that of the coarsest."""
-    left = [(line, False) for line in entry["entering"]] + [(line, True) for line in entry["generated"]]
-    right = entry["leaving"]
-    sum_left = sum(line["value"] for line, _ in left if line["value"] is not None)
-    sum_right = sum(line["value"] for line in right if line["value"] is not None)
-    figures = [line["value"] for line, _ in left] + [line["value"] for line in right] + [sum_left, sum_right]
-    places = _places([presenter.display.convert(value, "entropy_flow") for value in figures if value is not None])
+    amounts = Amounts(entry, presenter)
 
-    def amount(value: float | None) -> str:
-        if value is None:
-            return NO_VALUE
-        return fixed(presenter.display.convert(value, "entropy_flow"), places)
-
-    def line_of(line: dict[str, Any]) -> tuple[str, Markup]:
+    def line_of(line: dict[str, Any], mark: str = "") -> tuple[str, Markup]:
         label = line["label"]
-        if line in entry["generated"] and not label.startswith("generated"):
-            label = f"generated in {label}"
-        return label, presenter.link(line["path"], amount(line["value"]))
+        if mark and not label.startswith(mark):
+            label = f"{mark} {label}"
+        return label, presenter.link(line["path"], amounts.text(line["value"]))
 
+    left = [(line_of(line), False) for line in entry["entering"]]
+    left += [(line_of(line, "generated in"), True) for line in entry["generated"]]
     rows = []
-    for entering, leaving in zip_longest(left, right):
+    for index, (entering, leaving) in enumerate(zip_longest(left, entry["leaving"])):
         rows.append(
             {
-                "left": line_of(entering[0]) if entering else None,
+                "left": entering[0] if entering else None,
                 "generated": bool(entering and entering[1]),
+                "first_generated": index == len(entry["entering"]) and bool(entry["generated"]),
                 "right": line_of(leaving) if leaving else None,
             }
         )
     complete = bool(entry["generated"]) and all(line["value"] is not None for line in entry["generated"])
+    sums = amounts.text(amounts.entering + amounts.generated), amounts.text(amounts.leaving)
     return {
         "name": name,
         "title": entry["title"],
         "rows": rows,
-        "sum_left": amount(sum_left),
-        "sum_right": amount(sum_right),
+        "sum_left": sums[0],
+        "sum_right": sums[1],
         "complete": complete,
-        "balanced": amount(sum_left) == amount(sum_right),
+        "balanced": sums[0] == sums[1],
     }
-
-
-def _places(figures: list[float]) -> int:
-    """Decimal places that give the largest figure six significant digits."""
-    largest = max((abs(figure) for figure in figures), default=0.0)
-    if largest == 0.0:
-        return 1
-    digits_before = len(str(int(largest))) if largest >= 1.0 else 0
-    return max(0, min(9, 6 - digits_before))
-
-
-def fixed(figure: float, places: int) -> str:
-    """A figure with a set number of decimals, a true minus, thin spaces in threes from five digits on."""
-    text = f"{abs(figure):.{places}f}"
-    whole, point, decimals = text.partition(".")
-    if len(whole) >= 5:
-        whole = f"{int(whole):,}".replace(",", "\N{THIN SPACE}")
-    sign = "−" if figure < 0.0 and float(text) != 0.0 else ""
-    return f"{sign}{whole}{point}{decimals}"
 
 
 def _audit(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
@@ -130,7 +106,7 @@ def closure(presenter: Presenter) -> dict[str, Any] | None:
                 "quantity": entry["quantity"],
                 **_residual(path, rest.pop(path, None), presenter),
                 "step": _entropy_step(entry, presenter),
-                "value": presenter.rough(entry["value"], dimension, 2),
+                "value": presenter.residual(entry["value"], entry["scale"], dimension),
                 "scale": presenter.rough(entry["scale"], dimension, 4),
                 "relative": presenter.rough(entry["relative"], "ratio", 2),
             }

@@ -7,7 +7,7 @@ from typing import Any
 
 from reportgen.report.links import anchor
 from reportgen.report.narrative import render_narrative
-from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural, prose
 from reportgen.report.sections.working import step_anchors
 
 __all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
@@ -23,6 +23,7 @@ _LIMITS = (
 )
 #: Status of an input that the program took because the file states nothing.
 _TAKEN = "by default"
+_BY_PROGRAM = "taken by the program"
 #: Steps named in the table of inputs; the temperature of the surroundings is used almost everywhere.
 _STEPS_SHOWN = 6
 
@@ -109,7 +110,7 @@ def inputs(presenter: Presenter) -> dict[str, Any] | None:
                 ),
                 "distribution": _distribution(entry),
                 "source": entry["source"],
-                "supplied_by": entry["supplied_by"] if group is stated else None,
+                "supplied_by": _supplier(entry["supplied_by"]) if group is stated else None,
                 "status": entry["status"] if group is stated else None,
                 "others": [presenter.label(other) for other in others],
                 "place": f"line {entry['line']}" if len(files) == 1 else f"{entry['file']}:{entry['line']}",
@@ -132,6 +133,11 @@ def _place_in_file(item: tuple[str, dict[str, Any]]) -> tuple[str, int, list[tup
     return entry["file"], entry["line"], natural(path)
 
 
+def _supplier(name: str | None) -> str | None:
+    """Who gave an input, in words: a person or body, or the program itself."""
+    return f"from {name}" if name and name != _BY_PROGRAM else name or None
+
+
 def _distribution(entry: dict[str, Any]) -> str:
     """How the uncertainty was stated, when it is not the usual (normal, k of the calculation, type B)."""
     if entry["standard_uncertainty"] is None:
@@ -151,12 +157,13 @@ def assumptions(presenter: Presenter) -> dict[str, Any] | None:
         rows.append(
             {
                 **entry,
+                "text": entry["text"] if entry["origin"] == "author" else prose(entry["text"]),
                 "anchor": anchor("assumption", entry["id"]),
                 "open": entry["status"] == "to be verified",
                 "test": _test(entry["test"], presenter) if entry["test"] else None,
             }
         )
-    rules = list(dict.fromkeys(row["test"]["text"] for row in rows if row["test"] and row["test"]["text"]))
+    rules = list(dict.fromkeys(prose(row["test"]["text"]) for row in rows if row["test"] and row["test"]["text"]))
     return {"rows": rows, "rules": rules} if rows else None
 
 
@@ -178,7 +185,7 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
         if uncertainty:
             facts.append(("U", presenter.rough(uncertainty, apart, 2)))
     label = presenter.label(test["path"]) if test["path"] else ""
-    return {**test, "facts": facts, "label": label}
+    return {**test, "finding": prose(test["finding"]), "facts": facts, "label": label}
 
 
 def method(presenter: Presenter) -> dict[str, Any]:
@@ -197,7 +204,7 @@ def method(presenter: Presenter) -> dict[str, Any]:
                 "title": entry["title"],
                 "model": _MODELS.get(entry["model"], entry["model"]),
                 "composition": _composition(entry["composition"]),
-                "entropy_zero": entry["entropy_zero"],
+                "entropy_zero": prose(entry["entropy_zero"]),
                 "limits": ", ".join(limits) or NO_VALUE,
                 "sources": entry["sources"],
             }

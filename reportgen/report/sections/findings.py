@@ -6,11 +6,9 @@ from itertools import groupby
 from typing import Any
 
 from reportgen.report.narrative import render_narrative
-from reportgen.report.presenter import NO_VALUE, Presenter
+from reportgen.report.presenter import NO_VALUE, Presenter, prose
 
 __all__ = ["cautions", "found"]
-
-_COMPARISONS = {"at_most": "at most", "at_least": "at least"}
 
 
 def found(presenter: Presenter) -> dict[str, Any]:
@@ -19,7 +17,7 @@ def found(presenter: Presenter) -> dict[str, Any]:
     paths = list(dict.fromkeys([*data["summary"], *(entry["path"] for entry in data["criteria"])]))
     rows: list[dict[str, Any]] = []
     for path in paths:
-        criteria = [_criterion(entry) for entry in data["criteria"] if entry["path"] == path]
+        criteria = [_criterion(entry, presenter) for entry in data["criteria"] if entry["path"] == path]
         entry = presenter.record.entry(path)
         rows.append(
             {
@@ -41,10 +39,10 @@ def found(presenter: Presenter) -> dict[str, Any]:
     }
 
 
-def _criterion(entry: dict[str, Any]) -> dict[str, Any]:
+def _criterion(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     return {
         "id": entry["id"],
-        "limit": f"{_COMPARISONS[entry['comparison']]} {entry['limit_text']}",
+        "limit": presenter.limit(entry),
         "decision": entry["decision"],
         "basis": entry["basis"],
     }
@@ -58,4 +56,11 @@ def cautions(presenter: Presenter) -> dict[str, Any]:
 def _caution(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
     facts: list[tuple[str, str]] = presenter.caution_facts(entry)
     linked = [(name, presenter.link(entry["path"], text) if name == "value" else text) for name, text in facts]
-    return {**entry, "facts": linked}
+    text = prose(entry["text"])
+    return {
+        **entry,
+        "text": text,
+        "facts": linked,
+        # Most findings say so themselves.
+        "undecided": not entry["decided"] and "not decided" not in text,
+    }

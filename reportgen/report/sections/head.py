@@ -2,12 +2,17 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from typing import Any
 
-from reportgen.record import Record
-from reportgen.report.presenter import NO_VALUE
+from markupsafe import Markup, escape
 
-__all__ = ["missing_for_confirmed", "title_block"]
+from reportgen.record import Record
+from reportgen.report.links import anchor
+from reportgen.report.presenter import NO_VALUE
+from reportgen.report.templates import lower_first
+
+__all__ = ["is_decisive", "is_open", "missing_for_confirmed", "title_block"]
 
 _ROLES = ("originator", "checker", "approver")
 
@@ -42,18 +47,23 @@ def title_block(record: Record, digest: str) -> dict[str, Any]:
 
 
 def missing_for_confirmed(record: Record) -> list[str]:
-    """What stands between this draft and a confirmed document, each as a short clause.
+    """What stands between this draft and a confirmed document, each as a short clause, assumptions as links.
 
-    Signatures are always among them: a page cannot know whether a person has signed it.
+    Signatures are always among them: a page cannot know whether a person has signed it. Assumptions on which a
+    decision turns, or that change a result by more than its uncertainty, are named apart whatever their status.
     """
     data = record.data
     missing = ["not signed"]
     unnamed = [role for role in _ROLES if not data["calculation"].get(role)]
     if unnamed:
         missing.append("no " + _listed(unnamed, "or") + " named")
-    open_ones = [entry["id"] for entry in data["assumptions"] if entry["status"] == "to be verified"]
+    decisive = [entry for entry in data["assumptions"] if is_decisive(entry)]
+    if decisive:
+        word = "decisive assumptions" if len(decisive) > 1 else "decisive assumption"
+        missing.append(Markup("{}: {}").format(word, _listed([_named(entry) for entry in decisive])))
+    open_ones = [entry for entry in data["assumptions"] if is_open(entry) and entry not in decisive]
     if open_ones:
-        missing.append(f"to be verified: {_listed(open_ones)}")
+        missing.append(Markup("to be verified: {}").format(_listed([_named(entry) for entry in open_ones])))
     stops = sorted({entry["id"] for entry in data["cautions"] if entry["severity"] == "stop"})
     if stops:
         missing.append(f"stop {'cautions' if len(stops) > 1 else 'caution'} standing: {_listed(stops)}")
@@ -64,6 +74,25 @@ def missing_for_confirmed(record: Record) -> list[str]:
     return missing
 
 
-def _listed(words: list[str], joint: str = "and") -> str:
-    """``a, b and c``."""
-    return words[0] if len(words) == 1 else ", ".join(words[:-1]) + f" {joint} {words[-1]}"
+def is_open(assumption: Mapping[str, Any]) -> bool:
+    """Whether an assumption waits for someone to verify it."""
+    return bool(assumption["status"] == "to be verified")
+
+
+def is_decisive(assumption: Mapping[str, Any]) -> bool:
+    """Whether the test of an assumption found that results or decisions turn on it."""
+    return bool(assumption["test"]) and assumption["test"]["verdict"] == "decisive"
+
+
+def _named(assumption: Mapping[str, Any]) -> Markup:
+    """Link to an assumption: the author's by its identifier, the program's by its whole sentence."""
+    text = assumption["id"]
+    if assumption["origin"] != "author":
+        text = lower_first(assumption["text"]).rstrip(".")
+    return Markup('<a href="#{}">{}</a>').format(anchor("assumption", assumption["id"]), text)
+
+
+def _listed(words: Sequence[str], joint: str = "and") -> Markup:
+    """``a, b and c``, escaped."""
+    last = escape(words[-1])
+    return last if len(words) == 1 else Markup("{} {} {}").format(Markup(", ").join(words[:-1]), joint, last)

@@ -14,7 +14,7 @@ from reportgen.report.breaking import NARROW, estimated_total, estimated_width
 from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.passages import Passage
-from reportgen.report.presenter import NO_VALUE, Presenter, in_order
+from reportgen.report.presenter import NO_VALUE, Presenter, in_order, prose
 
 __all__ = ["states", "step_anchors", "working"]
 
@@ -127,7 +127,7 @@ def _passage(
     used = [path for key in passage.keys for path in relations[key]["uses"]]
     own = {path for key in passage.keys for path in relations[key]["solves"]}
     return {
-        "sentence": _unbroken_tags(passage.sentence, presenter),
+        "sentence": _unbroken_tags(prose(passage.sentence), presenter),
         "steps": shown,
         "together": len(shown) <= _TOGETHER or passage.run,
         "run": passage.run and len(shown) > 1,
@@ -165,7 +165,7 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
         "number": number,
         "anchor": name,
         # An assumption is linked below, where its text stands.
-        "basis": "" if relation["basis"].startswith("assumption: ") else relation["basis"],
+        "basis": "" if relation["basis"].startswith("assumption: ") else prose(relation["basis"]),
         "lines": lines,
         "stacked": any(line["stacked"] for line in lines),
         "others": [
