@@ -22,18 +22,23 @@ def find(folder: Path) -> list[Path]:
     """Calculation folders at or below a folder, in alphabetical order.
 
     A folder that holds ``calculation.toml`` is one and is not searched further. Hidden folders, issued revisions and
-    symbolic links are passed over. Raises InputError when there is none.
+    symbolic links are passed over. Raises InputError when there is none, and for each folder that cannot be looked
+    into: it may hold one.
     """
     if not folder.is_dir():
+        is_file = folder.exists()
         raise InputError(
             Fault(
-                "There is no such folder.",
+                "This is a file, not a folder." if is_file else "There is no such folder.",
                 file=folder.as_posix(),
-                expected=f"a folder with {CALCULATION_FILE}",
+                expected=f"the folder that it is in, {folder.parent.as_posix()}"
+                if is_file and folder.name == CALCULATION_FILE
+                else f"a folder with {CALCULATION_FILE}",
             )
         )
     found: list[Path] = []
-    for name, inner, files in os.walk(folder):
+    closed: list[OSError] = []
+    for name, inner, files in os.walk(folder, onerror=closed.append):
         here = Path(name)
         depth = len(here.relative_to(folder).parts)
         if CALCULATION_FILE in files:
@@ -42,6 +47,14 @@ def find(folder: Path) -> list[Path]:
         elif depth >= _DEEPEST:
             inner.clear()
         inner[:] = sorted(entry for entry in inner if not entry.startswith(".") and entry not in _PASSED_OVER)
+    if closed:
+        raise InputError(
+            Fault(
+                f"The folder cannot be looked into: {error.strerror or 'it cannot be opened'}.",
+                file=Path(error.filename or folder).as_posix(),
+            )
+            for error in closed
+        )
     if not found:
         raise InputError(
             Fault(

@@ -27,6 +27,16 @@ def start(folder: Path) -> list[Path]:
                 expected="the name of a folder that does not exist or is empty",
             )
         )
+    above = next(place for place in folder.absolute().parents if place.exists())
+    if not above.is_dir():
+        raise InputError(
+            Fault(
+                "A file is in the way; nothing was written.",
+                file=folder.as_posix(),
+                found=f"the file {above.name}",
+                expected="a place for the new folder below other folders",
+            )
+        )
     if not empty:
         folder.parent.mkdir(parents=True, exist_ok=True)
     beside = Path(tempfile.mkdtemp(prefix=".starting-", dir=folder if empty else folder.parent))

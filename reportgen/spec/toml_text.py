@@ -22,7 +22,8 @@ __all__ = ["TomlText", "parse"]
 _FILLER = re.compile(r"(?:[ \t\n]|#[^\n]*)*+")
 _STATEMENT = re.compile(r"[ \t]*(?:\[|[A-Za-z0-9_\"'-][^\n=\"]*=)")
 _OPENING = re.compile(r"\[\[?[A-Za-z]|[A-Za-z0-9_-]{1,100}[ \t]*=")
-_KEY_WITH_SPACES = re.compile(r"((?:[A-Za-z0-9_-]+[ ]+)+[A-Za-z0-9_-]+)[ \t]*=")
+#: Bounded, since what it matches is repeated in the message.
+_KEY_WITH_SPACES = re.compile(r"((?:[A-Za-z0-9_-]{1,30} {1,3}){1,4}[A-Za-z0-9_-]{1,30})[ \t]*=")
 
 
 @dataclass(frozen=True)

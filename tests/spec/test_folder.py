@@ -44,6 +44,24 @@ def test_a_circle_of_links_is_not_followed(tmp_path: Path) -> None:
     assert spec.find(tmp_path) == [tmp_path / "a"]
 
 
+def test_a_folder_that_cannot_be_looked_into_is_not_passed_over(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    make(tmp_path / "a")
+    (tmp_path / "closed").mkdir()
+    scan = os.scandir
+
+    def guarded(path: str) -> object:
+        if Path(path).name == "closed":
+            raise PermissionError(13, "Permission denied", path)
+        return scan(path)
+
+    monkeypatch.setattr(os, "scandir", guarded)
+    with pytest.raises(InputError, match="cannot be looked into: Permission denied") as caught:
+        spec.find(tmp_path)
+    assert [fault.file for fault in caught.value.faults] == [(tmp_path / "closed").as_posix()]
+
+
 @pytest.mark.parametrize("name", ["missing", "empty"])
 def test_nothing_found_says_what_was_looked_for(name: str, tmp_path: Path) -> None:
     (tmp_path / "empty").mkdir()
