@@ -1,12 +1,15 @@
 """The commands. Each one only calls the layers in order and says what came of it.
 
 Exit status: 0 done; 1 done, but ``--strict`` was asked and a stop caution or failed criterion stands; 2 the input is
-wrong; 3 it cannot be solved. Every heavy import stays inside the command that needs it.
+wrong, or a file cannot be read or written; 3 it cannot be solved; 130 stopped by the user. Every heavy import stays
+inside the command that needs it.
 """
 
 from __future__ import annotations
 
+import errno
 import gc
+import os
 import sys
 from collections.abc import Iterator
 from contextlib import contextmanager
@@ -23,23 +26,46 @@ if TYPE_CHECKING:
 
 __all__ = ["main"]
 
-_FOLDER = click.Path(path_type=Path, file_okay=False)
-_STRICT = click.option(
-    "--strict", is_flag=True, help="Exit with 1 while a stop caution or failed criterion stands."
-)
+_FOLDER = click.Path(path_type=Path)
+#: Exit status of a program that was stopped by Ctrl-C, by the custom of shells.
+_STOPPED = 130
+_STRICT = click.option("--strict", is_flag=True, help="Exit with 1 while a stop caution or failed criterion stands.")
+
+
+class _Commands(click.Group):
+    """The group of commands; what goes wrong in any of them becomes text on standard error and an exit status."""
+
+    def invoke(self, ctx: click.Context) -> object:
+        """Run the command that was asked for."""
+        try:
+            return super().invoke(ctx)
+        except ReportgenError as error:
+            _say_faults(error)
+            status = error.exit_status
+        except OSError as error:
+            click.echo(f"{error.filename or 'file'}: {error.strerror or error}", err=True)
+            status = InputError.exit_status
+        except KeyboardInterrupt:
+            click.echo("Stopped.", err=True)
+            status = _STOPPED
+        raise SystemExit(status)
 
 
 @contextmanager
-def _reported() -> Iterator[None]:
-    """Turn an error raised on purpose into its text on standard error and its exit status."""
+def _printing() -> Iterator[None]:
+    """For output alone: a reader that has seen enough, as ``head`` has, is no fault."""
     try:
         yield
-    except ReportgenError as error:
-        _say_faults(error)
-        raise SystemExit(error.exit_status) from None
+        sys.stdout.flush()
+    except SystemExit:
+        # rich leaves in this way when the pipe is closed, and has silenced standard output already
+        return
     except OSError as error:
-        click.echo(f"{error.filename or 'file'}: {error.strerror or error}", err=True)
-        raise SystemExit(InputError.exit_status) from None
+        # Python writes what is left once more on its way out: let that go nowhere.
+        with Path(os.devnull).open("wb") as nowhere:
+            os.dup2(nowhere.fileno(), sys.stdout.fileno())
+        if error.errno not in (errno.EPIPE, errno.EINVAL):  # Windows calls a closed pipe an invalid argument
+            raise InputError(Fault("The output cannot be written.", found=error.strerror)) from None
 
 
 def _say_faults(error: ReportgenError, within: Path | None = None) -> None:
@@ -55,7 +81,7 @@ def _say_faults(error: ReportgenError, within: Path | None = None) -> None:
         click.echo(f"{count} faults.", err=True)
 
 
-@click.group(context_settings={"help_option_names": ["-h", "--help"]})
+@click.group(cls=_Commands, context_settings={"help_option_names": ["-h", "--help"]})
 @click.version_option(__version__, prog_name="reportgen")
 def main() -> None:
     """Entropy calculation reports: from a plain-text calculation file to a checked, versioned HTML report."""
@@ -66,33 +92,37 @@ def main() -> None:
             stream.reconfigure(encoding="utf-8", newline="\n" if stream is sys.stdout else None)
 
 
-@main.command()
+@main.command(short_help="Write a new calculation from a starter.")
 @click.argument("folder", type=_FOLDER)
 def start(folder: Path) -> None:
-    """Write a new calculation into FOLDER from a starter that evaluates as it is."""
+    """Write a new calculation into FOLDER from a starter that evaluates as it is.
+
+    FOLDER must not exist yet, or be empty: nothing is ever overwritten.
+    """
     from reportgen import spec
 
-    with _reported():
-        written = spec.start(folder)
-    for path in written:
-        click.echo(path.as_posix())
-    click.echo(f"Next: edit {folder.as_posix()}/calculation.toml, then run: reportgen draft {folder.as_posix()}")
+    written = spec.start(folder)
+    with _printing():
+        for path in written:
+            click.echo(path.as_posix())
+        click.echo(f"Next: edit {folder.as_posix()}/calculation.toml, then run: reportgen draft {folder.as_posix()}")
 
 
 def _folders(given: tuple[Path, ...]) -> list[Path]:
     """All calculation folders below the given ones, in order, each once."""
     from reportgen import spec
 
-    found: dict[Path, None] = {}
+    found: dict[Path, Path] = {}
     faults: list[Fault] = []
     for folder in given:
         try:
-            found.update(dict.fromkeys(spec.find(folder)))
+            for place in spec.find(folder):
+                found.setdefault(place.resolve(), place)
         except InputError as error:
             faults.extend(error.faults)
     if faults:
         raise InputError(faults)
-    return list(found)
+    return list(found.values())
 
 
 def _evaluated(folder: Path) -> Record:
@@ -111,7 +141,8 @@ class _Outcome:
         self.status = 0
         self.standing = False
 
-    def failed(self, error: ReportgenError, folder: Path) -> None:
+    def failed(self, error: ReportgenError, folder: Path | None) -> None:
+        """Print the faults of one calculation; ``folder`` is None when they are not in its files."""
         _say_faults(error, folder)
         self.status = max(self.status, error.exit_status)
 
@@ -127,16 +158,20 @@ class _Outcome:
             raise SystemExit(1)
 
 
-@main.command()
+@main.command(short_help="Print results, cautions and criteria, or the Record.")
 @click.argument("folder", type=_FOLDER)
-@click.option("--json", "as_json", is_flag=True, help="Print the Record instead of a summary.")
+@click.option(
+    "--json",
+    "as_json",
+    is_flag=True,
+    help="Print the Record instead of a summary; of several calculations an array of Records, or nothing if one fails.",
+)
 @_STRICT
 def evaluate(folder: Path, as_json: bool, strict: bool) -> None:
-    """Evaluate the calculation in FOLDER; print results, cautions and criteria, or the Record."""
+    """Evaluate the calculation in FOLDER, or each one below it; print results, cautions and criteria, or the Record."""
     outcome = _Outcome()
     records = []
-    with _reported():
-        folders = _folders((folder,))
+    folders = _folders((folder,))
     for place in folders:
         try:
             record = _evaluated(place)
@@ -145,44 +180,56 @@ def evaluate(folder: Path, as_json: bool, strict: bool) -> None:
             continue
         outcome.done(record)
         records.append(record)
-    if as_json and not outcome.status:
-        texts = [record.to_json().decode("utf-8").rstrip("\n") for record in records]
-        click.echo(texts[0] if len(folders) == 1 else "[" + ",\n".join(texts) + "]")
-    elif not as_json:
-        from reportgen.report import terminal
+    with _printing():
+        if as_json and not outcome.status:
+            texts = [record.to_json().decode("utf-8").rstrip("\n") for record in records]
+            click.echo(texts[0] if len(folders) == 1 else "[" + ",\n".join(texts) + "]")
+        elif not as_json:
+            from reportgen.report import terminal
 
-        for record in records:
-            terminal.print_summary(record)
+            for record in records:
+                terminal.print_summary(record)
     outcome.leave(strict)
 
 
-@main.command()
+@main.command(short_help="Render draft reports and the register.")
 @click.argument("folders", metavar="FOLDER...", type=_FOLDER, nargs=-1, required=True)
-@click.option("--site", type=_FOLDER, default=Path("site"), show_default=True, help="Where the pages go.")
+@click.option(
+    "--site",
+    type=click.Path(path_type=Path, file_okay=False),
+    default=Path("site"),
+    show_default=True,
+    help="Where the pages go.",
+)
 @_STRICT
 def draft(folders: tuple[Path, ...], site: Path, strict: bool) -> None:
-    """Evaluate each calculation in FOLDER... and render its draft report and the register."""
+    """Evaluate each calculation in or below FOLDER... and render its draft report and the register.
+
+    A calculation that fails leaves its earlier report untouched and does not keep the others from being rendered.
+    """
     from reportgen import report
 
     outcome = _Outcome()
     written: list[Path] = []
-    with _reported():
-        places = _folders(folders)
-    for place in _with_progress(places):
+    for place in _with_progress(_folders(folders)):
         try:
             record = _evaluated(place)
             _refuse_twice(record, place, written, site)
-            written.append(report.render(record, site))
         except ReportgenError as error:
             outcome.failed(error, place)
             continue
+        try:
+            written.append(report.render(record, site))
+        except ReportgenError as error:
+            outcome.failed(error, None)
+            continue
         outcome.done(record)
     if written:
-        with _reported():
-            register = report.register(site)
-        for page in written:
-            click.echo(f"report    {page.as_posix()}")
-        click.echo(f"register  {register.as_posix()}")
+        register = report.register(site)
+        with _printing():
+            for page in written:
+                click.echo(f"report    {page.as_posix()}")
+            click.echo(f"register  {register.as_posix()}")
     outcome.leave(strict)
 
 
@@ -220,21 +267,24 @@ def _with_progress(places: list[Path]) -> Iterator[Path]:
             progress.advance(task)
 
 
-@main.command()
+@main.command(short_help="List the fluids carried, or show one.")
 @click.argument("name", required=False)
 def fluids(name: str | None) -> None:
     """List the fluids carried, with limits and sources; or show the one called NAME."""
     from reportgen import fluids as models
 
-    with _reported():
-        click.echo(models.listing() if name is None else models.describe(name))
+    text = models.listing() if name is None else models.describe(name)
+    with _printing():
+        click.echo(text)
 
 
-@main.command()
+@main.command(short_help="Print the JSON Schema of the calculation file.")
 def schema() -> None:
     """Print the JSON Schema of the calculation file, for editors that complete and check it."""
     import json
 
     from reportgen import spec
 
-    click.echo(json.dumps(spec.json_schema(), indent=2, ensure_ascii=False, sort_keys=True))
+    text = json.dumps(spec.json_schema(), indent=2, ensure_ascii=False, sort_keys=True)
+    with _printing():
+        click.echo(text)

@@ -23,6 +23,7 @@ ALLOWED = {
     "evaluation": {"errors", "names", "quantities", "record", "fluids", "balances", "spec"},
     "report": {"errors", "names", "quantities", "record"},
     "archive": {"errors", "names", "quantities", "record"},
+    "__main__": {"cli"},
     "cli": {"errors", "record", "spec", "evaluation", "report", "fluids", "archive"},
 }
 

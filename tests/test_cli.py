@@ -149,6 +149,93 @@ def test_a_folder_without_a_calculation_says_so(tmp_path: Path) -> None:
     assert not (tmp_path / "site").exists()
 
 
+def test_a_file_in_place_of_a_folder_is_told_apart(tmp_path: Path) -> None:
+    file = put(PROJECTS / "letdown-station" / "calculation.toml", tmp_path / "a") / "calculation.toml"
+    result = run("evaluate", file)
+    assert result.exit_code == 2
+    assert f"Would do: the folder that it is in, {file.parent.as_posix()}." in result.output
+    both = run("draft", file, tmp_path / "none", "--site", tmp_path / "site")
+    assert both.exit_code == 2
+    assert "not a folder" in both.output
+    assert "no such folder" in both.output
+    assert run("start", file / "new").exit_code == 2
+    assert [path.name for path in file.parent.iterdir()] == [file.name]
+
+
+def test_one_folder_named_in_several_ways_is_drafted_once(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    shutil.copytree(PROJECTS / "letdown-station", tmp_path / "in" / "a")
+    monkeypatch.chdir(tmp_path)
+    result = run("draft", "in", "in/a", tmp_path / "in", "in/../in")
+    assert result.exit_code == 0, result.output
+    assert result.output.count("report    ") == 1
+
+
+def test_a_site_that_cannot_be_written_is_named_as_the_user_named_it(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "file").write_text("", encoding="utf-8")
+    result = run("draft", PROJECTS / "letdown-station", "--site", "file/site")
+    assert result.exit_code == 2
+    assert result.output.startswith("file/site/SB-TH-014/A/")
+    assert "Traceback" not in result.output
+
+
+def test_several_calculations_as_json_are_one_array_or_nothing(tmp_path: Path) -> None:
+    result = run("evaluate", PROJECTS, "--json")
+    assert [record["format"] for record in json.loads(result.stdout)] == ["reportgen-record/1"] * 2
+    put(PROJECTS / "letdown-station" / "calculation.toml", tmp_path / "a")
+    put(MALFORMED[0], tmp_path / "b")
+    result = run("evaluate", tmp_path, "--json")
+    assert result.exit_code == 2
+    assert result.stdout == ""
+
+
+@pytest.mark.parametrize(
+    "arguments", [("fluids",), ("schema",), ("evaluate", PROJECTS), ("evaluate", PROJECTS, "--json")]
+)
+def test_output_to_a_reader_that_has_gone_is_no_fault(arguments: tuple[object, ...]) -> None:
+    """As in ``reportgen fluids | head -1``."""
+    program = [sys.executable, "-m", "reportgen", *map(str, arguments)]
+    with subprocess.Popen(program, stdout=subprocess.PIPE, stderr=subprocess.PIPE) as process:
+        assert process.stdout is not None
+        assert process.stderr is not None
+        process.stdout.close()
+        assert process.stderr.read() == b""
+    assert process.returncode == 0
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="only where the system has a device that is always full")
+def test_output_to_a_full_disk_is_told() -> None:
+    with Path("/dev/full").open("wb") as full:
+        program = [sys.executable, "-m", "reportgen", "evaluate", str(PROJECTS / "letdown-station")]
+        result = subprocess.run(program, stdout=full, stderr=subprocess.PIPE, check=False)
+    assert result.returncode == 2
+    assert result.stderr.startswith(b"The output cannot be written.")
+    assert result.stderr.count(b"\n") == 1
+
+
+def test_stopped_by_the_user(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def stop(*_: object) -> None:
+        raise KeyboardInterrupt
+
+    monkeypatch.setattr("reportgen.report.render", stop)
+    result = run("draft", PROJECTS / "letdown-station", "--site", tmp_path / "site")
+    assert result.exit_code == 130
+    assert result.output == "Stopped.\n"
+    assert not (tmp_path / "site").exists()
+
+
+@pytest.mark.parametrize("command", sorted(main.commands))
+def test_every_command_says_what_it_does(command: str) -> None:
+    overview, own = run("--help").output, run(command, "--help").output
+    line = next(line for line in overview.splitlines() if line.split()[:1] == [command])
+    assert line.endswith("."), "cut short in the overview"
+    assert own.startswith(f"Usage: main {command}") or own.startswith(f"Usage: reportgen {command}")
+    for parameter in main.commands[command].params:
+        assert getattr(parameter, "help", None) or parameter.human_readable_name in own
+
+
 def test_same_bytes_elsewhere_under_other_settings(tmp_path: Path, drafted: Path) -> None:
     """Another folder, time zone, locale and hash seed: the site must come out byte for byte the same."""
     shutil.copytree(PROJECTS, tmp_path / "elsewhere" / "projects")
@@ -161,7 +248,7 @@ def test_same_bytes_elsewhere_under_other_settings(tmp_path: Path, drafted: Path
     for place, setting in zip(("elsewhere", "here"), settings, strict=True):
         folder = tmp_path / place
         subprocess.run(
-            [sys.executable, "-c", "from reportgen.cli import main; main()", "draft", "projects"],
+            [sys.executable, "-m", "reportgen", "draft", "projects"],
             check=True,
             cwd=folder,
             env={**os.environ, **setting},
