@@ -14,6 +14,7 @@ __all__ = ["draw_entropy_account", "draw_lost_work"]
 _ROW, _ACCOUNT_ROW, _BAR = 26.0, 50.0, 13.0
 _FOOT, _HEAD = 34.0, 6.0
 _GAP = 6.0
+_LEFT = 15.0  # half of a tick label such as 0.000
 
 
 def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing | None:
@@ -55,7 +56,7 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
     if not bars:
         return None
     drawing = Drawing(WIDTH, _HEAD + _FOOT + _ACCOUNT_ROW * len(bars), fonts)
-    axes = drawing.axes(10.0, _FOOT, 8.0, _HEAD)
+    axes = drawing.axes(_LEFT, _FOOT, 8.0, _HEAD)
     entering = [presenter.display.convert(bar["entering"], "entropy_flow") for bar in bars]
     generated = [presenter.display.convert(bar["generated"], "entropy_flow") for bar in bars]
     ends = [start + more for start, more in zip(entering, generated, strict=True)]
