@@ -33,8 +33,8 @@ class Expansions:
         self._orders = np.arange(self._coefficients.shape[-1], dtype=np.float64)
 
     def __call__(self, x: FloatArray) -> FloatArray:
-        """Values of all functions at x of shape (N,): shape (functions, N). Outside the edges the last piece is used at
-        its end; NaN gives NaN.
+        """Values of all functions, in their own units, at x [1] of shape (N,): shape (functions, N). Outside the edges
+        the last piece is used at its end; NaN gives NaN.
         """
         piece = self._inner.searchsorted(x)
         place = (x - self._middle[piece]) / self._half[piece]

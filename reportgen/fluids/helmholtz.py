@@ -84,7 +84,9 @@ class Helmholtz:
     Parameters
     ----------
     ideal, residual : terms as in the data files (see terms.py).
-    reducing_temperature : T_r [K]; reducing_density : ρ_r [kg/m3]; gas_constant : R [J/(kg*K)].
+    reducing_temperature : T_r [K].
+    reducing_density : ρ_r [kg/m3].
+    gas_constant : R [J/(kg*K)].
     dtype : floating type; extended precision serves the fitting of saturation expansions.
     """
 
@@ -133,7 +135,7 @@ class Helmholtz:
         return result
 
     def ideal(self, delta: FloatArray, tau: FloatArray) -> Reduced:
-        """φ° and its scaled derivatives at δ, τ of shape (N,)."""
+        """φ° and its scaled derivatives [1] at δ, τ [1] of shape (N,)."""
         log_tau = np.log(tau)
         value = np.log(delta) + (self._constant + self._linear * tau + self._logarithm * log_tau)
         first = self._linear * tau + self._logarithm
@@ -177,7 +179,7 @@ class Helmholtz:
         return Isotherm(tau, collected, near)
 
     def density_derivatives(self, delta: FloatArray, isotherm: Isotherm) -> tuple[FloatArray, FloatArray]:
-        """δφʳ_δ and δ²φʳ_δδ at δ of shape (N,) along isotherms of N elements."""
+        """δφʳ_δ and δ²φʳ_δδ [1] at δ [1] of shape (N,) along isotherms of N elements."""
         _, first, second = self._density_factors.values(delta, np.log(delta))
         collected = isotherm.collected
         first *= collected
@@ -194,7 +196,7 @@ class Helmholtz:
         return phi_d, phi_dd
 
     def residual(self, delta: FloatArray, tau: FloatArray) -> Reduced:
-        """φʳ and its scaled derivatives at δ, τ of shape (N,)."""
+        """φʳ and its scaled derivatives [1] at δ, τ [1] of shape (N,)."""
         g, g_first, g_second = self._temperature_factors.values(tau, np.log(tau))
         f, f_first, f_second = self._density_factors.values(delta, np.log(delta))
         collected = self._collect(g)

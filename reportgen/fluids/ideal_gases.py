@@ -108,7 +108,7 @@ class IdealGas:
 
     @property
     def composition(self) -> dict[str, float] | None:
-        """Mole fractions by species, or None for a single species."""
+        """Mole fractions [1] by species, or None for a single species."""
         return dict(self._fractions) if len(self._fractions) > 1 else None
 
     @cached_property

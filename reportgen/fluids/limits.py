@@ -98,7 +98,7 @@ class Guard:
         )
 
     def infinite(self, where: BoolArray, elements: Elements, name: str, values: FloatArray) -> None:
-        """Refuse the elements of a property that are infinite."""
+        """Refuse the elements of a property [SI] that are infinite."""
         self._reject(where, elements, name, values, "not a finite number")
 
     def temperature(self, temperature: FloatArray, elements: Elements) -> None:
@@ -234,25 +234,25 @@ class Guard:
         )
 
     def between_lines(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
-        """A pseudo-pure fluid between its lines, from two properties."""
+        """A pseudo-pure fluid between its lines, from two properties [SI]."""
         return Fault(f"{_sentence(first, first_value)} and {_value(second, second_value)} lie {self._between}.")
 
     def several(self, first: str, first_value: float, second: str, second_value: float, count: int) -> Fault:
-        """Two properties that more than one state shares."""
+        """Two properties [SI] that more than one state shares."""
         return Fault(
             f"{self._title} has {count} states at {_value(first, first_value)} and {_value(second, second_value)}.",
             hint="Give another pair, such as pressure and temperature.",
         )
 
     def none(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
-        """Two properties that no state within the limits has."""
+        """Two properties [SI] that no state within the limits was found to have."""
         return Fault(
             f"No state of {self._title} within its limits was found at {_value(first, first_value)} and "
             f"{_value(second, second_value)}.",
         )
 
     def too_cold(self, pressure: float, name: str, value: float) -> Fault:
-        """Below the lowest temperature."""
+        """Pressure [Pa] and another property [SI] of a state below the lowest temperature."""
         return Fault(
             f"{self._title} at {in_words('pressure', pressure)} with {_value(name, value)} would be below the minimum "
             f"temperature, {self._limits.minimum_temperature:g} K (triple point), or solid.",
@@ -260,7 +260,7 @@ class Guard:
         )
 
     def too_hot(self, pressure: float, name: str, value: float) -> Fault:
-        """Above the highest temperature."""
+        """Pressure [Pa] and another property [SI] of a state above the highest temperature."""
         return Fault(
             f"{self._title} at {in_words('pressure', pressure)} with {_value(name, value)} would be above the maximum "
             f"temperature, {self._limits.maximum_temperature:g} K.",
@@ -268,7 +268,7 @@ class Guard:
         )
 
     def not_found(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
-        """The search did not end in a state."""
+        """Two properties [SI] for which the search did not end in a state."""
         return Fault(
             f"No state of {self._title} was found at {_value(first, first_value)} and {_value(second, second_value)}.",
             hint="If these values lie within the limits of the fluid, this is a fault of the program.",

@@ -65,7 +65,7 @@ class Fluid(Protocol):
 
     @property
     def composition(self) -> Mapping[str, float] | None:
-        """Mole fractions by species, or None for a pure substance."""
+        """Mole fractions [1] by species, or None for a pure substance."""
 
     @property
     def molar_mass(self) -> float:

@@ -57,14 +57,14 @@ class NonAnalytic:
         self._smallest = _SMALLEST[np.dtype(dtype)]
 
     def matters(self, delta: FloatArray, tau: FloatArray) -> NDArray[np.intp]:
-        """Indices of the elements where the terms are not negligible."""
+        """Indices of the elements of δ, τ [1], shape (N,), where the terms are not negligible."""
         exponent = self._least_d * (tau - 1) ** 2
         exponent += self._least_c * (delta - 1) ** 2
         exponent -= np.log(delta)
         return np.flatnonzero(exponent < self._cutoff)
 
     def values(self, delta: FloatArray, tau: FloatArray, *, density_only: bool = False) -> tuple[FloatArray, ...]:
-        """(δφ_δ, δ²φ_δδ) and, unless ``density_only``, also φ, τφ_τ, τ²φ_ττ, δτφ_δτ; each of shape (N,)."""
+        """(δφ_δ, δ²φ_δδ) and, unless ``density_only``, φ, τφ_τ, τ²φ_ττ, δτφ_δτ [1] at δ, τ [1]; each of shape (N,)."""
         # With W = n Δ^b ψ, logarithmic derivatives g = (ln Δ^b ψ)_δ, h = (ln Δ^b ψ)_τ: φ_δ = Σ W (1 + δ g) and so on.
         b = self._b
         x, z = delta - 1, tau - 1

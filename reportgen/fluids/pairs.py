@@ -58,7 +58,7 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
 
     Parameters
     ----------
-    given : keyword arguments of ``Fluid.at``; names of PROPERTIES, SI.
+    given : keyword arguments of ``Fluid.at``; names of PROPERTIES [SI].
     supported : pairs of names the model carries; ``specific_volume`` is turned into ``density`` before the look-up.
     title : name of the fluid, for messages.
 
@@ -113,7 +113,9 @@ def in_words(name: str, value: float, digits: int = 9) -> str:
 
     Parameters
     ----------
-    name : one of PROPERTIES; value : in its SI unit; digits : significant digits.
+    name : one of PROPERTIES.
+    value : the property [SI].
+    digits : significant digits.
     """
     if name == "temperature" and np.isfinite(value):
         return f"{value:.{digits}g} K ({value - 273.15:.6g} degC)"

@@ -34,7 +34,7 @@ def bracketed_root(
 
     Parameters
     ----------
-    evaluate : x -> f(x) and f′(x); x, ``start``, ``low``, ``high`` of shape (N,).
+    evaluate : x -> f(x) and f′(x); x, ``start``, ``low``, ``high`` of shape (N,), [any one unit].
 
     Returns
     -------
@@ -86,9 +86,10 @@ def crossings(
 
     Parameters
     ----------
-    temperature : T [K]; low, high : ends of a single-phase range of densities [kg/m3]; target : h [J/kg] or s
-    [J/(kg*K)];
-        all of shape (N,).
+    equation : the equation of state.
+    temperature : T [K], shape (N,) as all others.
+    low, high : ends of a single-phase range of densities [kg/m3].
+    target : h [J/kg], or s [J/(kg*K)] if ``entropy``.
     """
     size = temperature.size
     share = np.linspace(0.0, 1.0, _GRID)[:, None]
@@ -103,7 +104,7 @@ def crossings(
 
 class Found(NamedTuple):
     """Result of a search, arrays of shape (N,): temperature [K], pressure [Pa], density [kg/m3], quality [1] and the
-    densities of the phases [kg/m3] (NaN where they have no meaning); ``count`` states were seen, one means it was
+    densities of the phases [kg/m3] (NaN where they have no meaning); ``seen`` counts the states, one means it was
     found.
     """
 

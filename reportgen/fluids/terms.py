@@ -107,7 +107,7 @@ class IdealSum:
         self.einstein: list[tuple[float, float, float, float]] = []
 
     def add_power(self, n: float, t: float) -> None:
-        """Add n τ^t."""
+        """Add n τ^t [1]."""
         if t == 0:
             self.constant += n
         elif t == 1:
@@ -116,7 +116,7 @@ class IdealSum:
             self.powers.append((n, t))
 
     def add_einstein(self, n: float, theta: float, c: float = 1.0, d: float = -1.0) -> None:
-        """Add n ln(c + d e^(−θτ)); a growing exponential is turned into a decaying one."""
+        """Add n ln(c + d e^(−θτ)) [1]; a growing exponential is turned into a decaying one."""
         if theta < 0:
             self.linear += -n * theta
             c, d, theta = d, c, -theta

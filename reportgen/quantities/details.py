@@ -46,7 +46,7 @@ class Details:
 
 
 def read_details(table: Mapping[Any, Any], coverage_factor: float) -> tuple[Details, list[Fault]]:
-    """The details of a table and every fault in them; ``coverage_factor`` is the file's, unless the table has one."""
+    """The details of a table and every fault in them; ``coverage_factor`` [1] holds unless the table has its own."""
     faults: list[Fault] = []
 
     def refuse(key: str, message: str, expected: str) -> None:

@@ -180,7 +180,7 @@ class Display:
         )
 
     def in_formula(self, value: float, dimension: str, digits: int) -> float:
-        """The SI value that a formula shows when it is rounded to so many significant digits of its unit there."""
+        """The value [SI] that a formula shows when one is rounded to so many significant digits of its unit."""
         unit = self._table[dimension]
         if dimension == "temperature":
             dimension, unit = "temperature_difference", _ABSOLUTE[self.units]
