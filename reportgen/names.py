@@ -55,7 +55,10 @@ class Name:
         return DIMENSIONS[self.dimension]
 
 
+_PORTS = "never negative: the ports give the direction"
 _INTO = "positive into the fluid"
+_LOSS = "positive where the pressure falls"
+_LEFT = "positive when more enters than leaves"
 _POWER = (
     "positive in the natural direction of the kind: absorbed by compressors and pumps, delivered by turbines; "
     "of several machines the net power delivered, or, where none delivers, the power absorbed"
@@ -71,21 +74,29 @@ _ENTRIES = (
     Name("density", r"\rho", "density", "Mass density"),
     Name("specific_volume", "v", "specific_volume", "Specific volume"),
     Name("quality", "x", "ratio", "Vapour mass fraction of a two-phase state"),
-    Name("superheat", r"\Delta T_\mathrm{sup}", "temperature_difference", "Superheat above saturation"),
-    Name("subcooling", r"\Delta T_\mathrm{sub}", "temperature_difference", "Subcooling below saturation"),
+    Name(
+        "superheat", r"\Delta T_\mathrm{sup}", "temperature_difference", "Superheat above saturation", "never negative"
+    ),
+    Name(
+        "subcooling",
+        r"\Delta T_\mathrm{sub}",
+        "temperature_difference",
+        "Subcooling below saturation",
+        "never negative",
+    ),
     Name("compressibility_factor", "Z", "ratio", "Compressibility factor p v M / (R T)"),
     Name("isobaric_heat_capacity", "c_p", "specific_entropy", "Specific heat capacity at constant pressure"),
     Name("isochoric_heat_capacity", "c_v", "specific_entropy", "Specific heat capacity at constant volume"),
     Name("speed_of_sound", "w", "velocity", "Speed of sound"),
     Name("specific_exergy", "e", "specific_energy", "Specific flow exergy relative to the surroundings"),
-    Name("mass_flow", r"\dot m", "mass_flow", "Mass flow rate"),
-    Name("molar_flow", r"\dot n", "molar_flow", "Amount-of-substance flow rate"),
-    Name("volume_flow", r"\dot V", "volume_flow", "Volume flow rate at the conditions of the state"),
+    Name("mass_flow", r"\dot m", "mass_flow", "Mass flow rate", _PORTS),
+    Name("molar_flow", r"\dot n", "molar_flow", "Amount-of-substance flow rate", _PORTS),
+    Name("volume_flow", r"\dot V", "volume_flow", "Volume flow rate at the conditions of the state", _PORTS),
     Name("entropy_flow", r"\dot S", "entropy_flow", "Entropy carried by a stream, mass flow times specific entropy"),
     Name("mass", "m", "mass", "Mass"),
     Name("volume", "V", "volume", "Volume"),
     Name("velocity", "V", "velocity", "Mean velocity of the flow"),
-    Name("elevation", "z", "length", "Elevation above a common datum"),
+    Name("elevation", "z", "length", "Elevation above a common datum", "positive upwards"),
     # equipment
     Name("power", r"\dot W", "power", "Power", _POWER),
     Name("heat", r"\dot Q", "heat_flow", "Heat flow rate", _INTO),
@@ -94,19 +105,39 @@ _ENTRIES = (
     Name("isentropic_efficiency", r"\eta_s", "efficiency", "Isentropic efficiency"),
     Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
     Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Enthalpy at outlet pressure and inlet entropy"),
-    Name("pressure_drop", r"\Delta p", "pressure_difference", "Pressure loss from inlet to outlet"),
-    Name("hot_pressure_drop", r"\Delta p_\mathrm{hot}", "pressure_difference", "Pressure loss of the hot stream"),
-    Name("cold_pressure_drop", r"\Delta p_\mathrm{cold}", "pressure_difference", "Pressure loss of the cold stream"),
+    Name("pressure_drop", r"\Delta p", "pressure_difference", "Pressure loss from inlet to outlet", _LOSS),
+    Name(
+        "hot_pressure_drop", r"\Delta p_\mathrm{hot}", "pressure_difference", "Pressure loss of the hot stream", _LOSS
+    ),
+    Name(
+        "cold_pressure_drop",
+        r"\Delta p_\mathrm{cold}",
+        "pressure_difference",
+        "Pressure loss of the cold stream",
+        _LOSS,
+    ),
     Name("pressure_ratio", r"r_p", "ratio", "Higher over lower pressure of the machine"),
-    Name("entropy_generation", r"\dot S_\mathrm{gen}", "entropy_flow", "Entropy generation rate"),
+    Name(
+        "entropy_generation",
+        r"\dot S_\mathrm{gen}",
+        "entropy_flow",
+        "Entropy generation rate",
+        "never negative by the second law",
+    ),
     Name("entropy_with_heat", r"\dot S_Q", "entropy_flow", "Entropy carried by heat", _INTO),
     Name("split_fraction", r"\varphi", "ratio", "Share of the inlet flow that leaves by the first outlet"),
     Name("entropy_imbalance", r"\delta\dot S", "entropy_flow", "What is left of the entropy balance"),
-    Name("lost_work", r"\dot W_\mathrm{lost}", "power", "Work forgone, T0 times entropy generation"),
+    Name(
+        "lost_work",
+        r"\dot W_\mathrm{lost}",
+        "power",
+        "Work forgone, T0 times entropy generation",
+        "as entropy generation",
+    ),
     Name("exergetic_efficiency", r"\varepsilon", "efficiency", "Exergetic efficiency: exergy gained over spent"),
     Name("entropy_generation_number", r"N_s", "ratio", "Entropy generation over the reference stated for the kind"),
-    Name("energy_imbalance", r"\delta\dot E", "power", "What is left of the energy balance"),
-    Name("mass_imbalance", r"\delta\dot m", "mass_flow", "What is left of the mass balance"),
+    Name("energy_imbalance", r"\delta\dot E", "power", "What is left of the energy balance", _LEFT),
+    Name("mass_imbalance", r"\delta\dot m", "mass_flow", "What is left of the mass balance", _LEFT),
     Name("closure", r"\delta\dot S_\mathrm{gen}", "entropy_flow", "Sum of the parts minus the balance round the whole"),
 )
 
