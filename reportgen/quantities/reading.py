@@ -222,7 +222,8 @@ def _split(text: str, content: str, allowed: tuple[str, ...]) -> tuple[float, st
         raise Refused("There is no number where one is needed.", quoted(content), example(allowed))
     unit = text[match.end() :].strip()
     if re.match(r",[0-9]", unit):
-        raise Refused("The decimal sign is a point.", quoted(content), example(allowed))
+        hint = "A comma that sets thousands apart is left out."
+        raise Refused("The decimal sign is a point.", quoted(content), example(allowed), hint)
     if re.match(r"[0-9.,+\-−]", unit):
         raise Refused("The number cannot be read.", quoted(content), example(allowed))
     exponent = match["plain"] or (match["raised"] or "").translate(_RAISED)
@@ -304,6 +305,6 @@ def _within(value: float, dimension: str, found: str) -> float:
     if dimension in _NEVER_NEGATIVE and value < 0.0:
         raise Refused(f"{subject} cannot be negative.", found, hint="The ports give the direction.")
     if dimension == "efficiency" and not 0.0 < value <= 1.0:
-        hint = f'Did you mean "{value:g} %"?' if 1.0 < value <= 100.0 else None
+        hint = f'Did you mean "{value:g} %"?' if 1.0 < value <= 100.0 and "%" not in found else None
         raise Refused("An efficiency is above 0 and at most 1.", found, '"0.85" or "85 %"', hint)
     return value

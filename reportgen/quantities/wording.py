@@ -47,10 +47,11 @@ def example(allowed: tuple[str, ...]) -> str:
 
 
 def short(text: object) -> str:
-    """The text, cut where it is too long for a message."""
+    """The text, cut where it is too long for a message, without signs that cannot be printed."""
     if isinstance(text, int) and text.bit_length() > 4 * _SHORT:
         return f"a whole number of {text.bit_length()} bits"  # Python refuses to print very long ones
-    plain = str(text)
+    # A sign that cannot be seen, or that turns the writing round, would falsify the message on the terminal.
+    plain = "".join(sign if sign.isprintable() else "\N{REPLACEMENT CHARACTER}" for sign in str(text)[: _SHORT + 1])
     return plain if len(plain) <= _SHORT else plain[:_SHORT] + "…"
 
 
