@@ -11,7 +11,7 @@ import json
 import math
 from collections.abc import Iterator, Mapping
 from pathlib import Path
-from typing import Any, NoReturn
+from typing import Any
 
 from reportgen.errors import Fault, InputError
 
@@ -22,6 +22,9 @@ FORMAT = "reportgen-record/1"
 #: Digits to which every float of a record is rounded. Twelve stay well clear of the last bits, in which
 #: processors and numerical libraries differ, and are far more than any input carries.
 SIGNIFICANT_DIGITS = 12
+
+#: Faults of one record that are listed; a person looks at the first ones.
+_MOST_FAULTS = 20
 
 #: Every record has exactly these keys beside ``format``; the value is the type of the empty section.
 SECTIONS: dict[str, type] = {
@@ -100,12 +103,18 @@ class Record:
     def load(cls, source: Path | bytes) -> Record:
         """Read a record back from a file or from its bytes.
 
-        Raises InputError when it is not JSON, not a record of this format, or lacks a section.
+        Raises InputError when it is not JSON, not a record of this format, lacks a section, or when an entry that is
+        looked up by its path lacks what every such entry has.
         """
         file = None if isinstance(source, bytes) else source.name
         try:
             content = source if isinstance(source, bytes) else source.read_bytes()
-            data = json.loads(content.decode("utf-8"), parse_constant=_refuse_constant)
+            data = json.loads(
+                content.decode("utf-8"),
+                parse_constant=_finite,
+                parse_float=_finite,
+                object_pairs_hook=_each_key_once,
+            )
         except OSError as error:
             raise InputError(Fault("The record cannot be read.", file=file, found=error.strerror)) from error
         except (ValueError, RecursionError) as error:
@@ -120,6 +129,12 @@ class Record:
             raise InputError(
                 Fault("Sections of the record are missing or of the wrong type.", file=file, found=", ".join(wrong))
             )
+        faults = [
+            Fault("An entry of the record is incomplete.", path=path, file=file, found=found, expected=expected)
+            for path, found, expected in _incomplete(data)
+        ]
+        if faults:
+            raise InputError(faults[:_MOST_FAULTS])
         return cls(data)
 
     @property
@@ -148,7 +163,7 @@ class Record:
         return found if found is not None else self.inputs.get(path)
 
     def value(self, path: str) -> float | str | None:
-        """Number in its SI unit (text for a phase); None when undefined or when the record has no such path."""
+        """Number in its unit [SI] (text for a phase); None when undefined or when the record has no such path."""
         entry = self.entry(path)
         return None if entry is None else entry["value"]
 
@@ -171,5 +186,34 @@ class Record:
                     yield source
 
 
-def _refuse_constant(text: str) -> NoReturn:
-    raise ValueError(f"{text} is no JSON number")
+def _finite(text: str) -> float:
+    """A number of the text; NaN, Infinity and what a float cannot hold would otherwise become null unnoticed."""
+    number = float(text)
+    if not math.isfinite(number):
+        raise ValueError(f"{text[:40]} is not a finite number")
+    return number
+
+
+def _each_key_once(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
+    """An object; with a key twice, one of two values would be lost unnoticed."""
+    found = dict(pairs)
+    if len(found) < len(pairs):
+        raise ValueError("an object has a key twice")
+    return found
+
+
+def _incomplete(data: Mapping[str, Any]) -> Iterator[tuple[str, str, str]]:
+    """Path, what was found and what would do, for everything that the look-ups of a record need and do not find."""
+    title = data["calculation"]
+    for key in ("number", "revision"):
+        if not isinstance(title.get(key), str):
+            yield f"calculation.{key}", repr(title.get(key))[:40], "text"
+    factor = title.get("coverage_factor")
+    if isinstance(factor, bool) or not isinstance(factor, int | float):
+        yield "calculation.coverage_factor", repr(factor)[:40], "a number"
+    for section in ("values", "inputs"):
+        for path, entry in data[section].items():
+            if not isinstance(entry, dict) or "value" not in entry:
+                yield f"{section}: {path}", repr(entry)[:40], "a table with its value"
+            elif not isinstance(entry.get("from", []), list):
+                yield f"{section}: {path}", f"from = {entry['from']!r}"[:40], "a list of paths"

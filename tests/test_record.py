@@ -87,7 +87,9 @@ def test_look_ups() -> None:
         (b"{", "not JSON"),
         (b"\xff", "not JSON"),
         (b"[" * 100_000, "not JSON"),
-        (b'{"format": NaN}', "not JSON"),
+        (b'{"format": NaN}', "NaN is not a finite number"),
+        (b'{"format": 1e999}', "1e999 is not a finite number"),
+        (b'{"format": 1, "format": 2}', "a key twice"),
         (b"[]", "not a record"),
         (b'{"format": "other/1"}', "not a record"),
         (b'{"format": "reportgen-record/1", "values": []}', "missing or of the wrong type"),
@@ -96,6 +98,21 @@ def test_look_ups() -> None:
 def test_what_is_no_record_is_refused(content: bytes, message: str) -> None:
     with pytest.raises(InputError, match=message):
         Record.load(content)
+
+
+def test_entries_that_cannot_be_looked_up_are_named_on_loading() -> None:
+    data = small_record().data
+    data["calculation"] = {"number": 7, "revision": "A", "coverage_factor": True}
+    data["values"]["states.1.density"] = 1.2
+    data["values"]["states.1.pressure"]["from"] = "states.1.pressure"
+    with pytest.raises(InputError) as caught:
+        Record.load(canonical_json(data))
+    assert [fault.path for fault in caught.value.faults] == [
+        "calculation.number",
+        "calculation.coverage_factor",
+        "values: states.1.density",
+        "values: states.1.pressure",
+    ]
 
 
 def test_a_missing_file_is_an_input_error(tmp_path: Path) -> None:
