@@ -13,12 +13,16 @@ __all__ = ["NARROW", "estimated_total", "estimated_width", "parts_of", "split"]
 
 _BREAKS = ("=", "+", "-", r"\approx", r"\leq", r"\geq", r"\le", r"\ge", r"\pm")
 #: Characters of one piece of an equation that still fit beside the margin of a narrow screen.
-NARROW = 30
+NARROW = 29
 #: Characters of a fraction that fit across a sheet of paper.
-_LONGEST_FRACTION = 66
+_LONGEST_FRACTION = 60
 _TALL = {r"\frac", r"\sum", r"\int", r"\prod", r"\sqrt"}
 _OPEN, _CLOSE = (r"\left(", r"\left["), (r"\right)", r"\right]")
 _DEPTHS = {**dict.fromkeys(("{", "(", "[", *_OPEN), 1), **dict.fromkeys(("}", ")", "]", *_CLOSE), -1)}
+#: Size of raised and lowered characters in parts of the others.
+_SCRIPT = 0.72
+#: Characters that an operator takes with the spaces round it.
+_OPERATOR = 2
 _UNSEEN = {rf"\{name}" for name in ("mathrm", "text", "left", "right", "dot", "bar", "overline")}
 _COMMAND = re.compile(r"\\(?:left|right)[()\[\]]|\\[A-Za-z]+|\\.|.", re.DOTALL)
 
@@ -122,24 +126,24 @@ def estimated_width(latex: str) -> int:
 
 def estimated_total(latex: str) -> int:
     """Rough number of characters of a formula set in one line; of a fraction the longer part counts."""
-    return _count(_COMMAND.findall(latex))
+    return round(_count(_COMMAND.findall(latex)))
 
 
-def _count(tokens: list[str]) -> int:
-    """Characters of a run of tokens, which it takes from the list up to the brace that closes its group."""
-    total = 0
+def _count(tokens: list[str]) -> float:
+    """Characters of a run of tokens, which it takes from the list; those raised or lowered are smaller."""
+    total = 0.0
     while tokens:
         token = tokens.pop(0)
-        if token == "}":
-            break
-        if token == "{":
-            total += _count(tokens)
-        elif token == r"\frac":
+        if token in ("_", "^"):
+            total += _SCRIPT * _count(_group(tokens))
+        elif token in (r"\frac", r"\tfrac"):
             total += max(_count(_group(tokens)), _count(_group(tokens)))
         elif token.startswith("\\") and token[1:].isalpha():
             total += token not in _UNSEEN
+        elif token in _BREAKS:
+            total += _OPERATOR
         else:
-            total += token in (*_OPEN, *_CLOSE, r"\%") or (token[0] != "\\" and token not in " ^_")
+            total += token in (*_OPEN, *_CLOSE, r"\%") or (token[0] != "\\" and token not in " {}")
     return total
 
 

@@ -27,6 +27,7 @@ NO_VALUE = "—"
 #: Part of the terms of a balance below which what is left of it is rounding.
 _ROUNDING = 1e-10
 _DEGREES = re.compile(r"(?<=\d) deg([CF])\b")
+_BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:K|bar|kPa|MPa|Pa|%)(?!\w))")
 _PRODUCT_OF_UNITS = re.compile(r"\((k?g|lb|mol|kmol) (K|°R)\)")
 _HEAT_PORT = re.compile(r"(.+)\.heat_ports\.(\d+)")
 _QUALIFIED = re.compile(r"[,:]| at the | of a two-phase| relative to| p v ")
@@ -45,7 +46,8 @@ def natural(text: str) -> list[tuple[int, int, str]]:
 
 def prose(text: str | None) -> str:
     """The program's own sentences with units as the page sets them (°C, kJ/(kg·K)); never what an author wrote."""
-    return _PRODUCT_OF_UNITS.sub(r"(\1·\2)", _DEGREES.sub("\N{NO-BREAK SPACE}°\\1", text or ""))
+    set_apart = _BEFORE_UNIT.sub("\N{NO-BREAK SPACE}", _DEGREES.sub("\N{NO-BREAK SPACE}°\\1", text or ""))
+    return _PRODUCT_OF_UNITS.sub(r"(\1·\2)", set_apart)
 
 
 def in_order(entries: Mapping[str, dict[str, Any]]) -> list[tuple[str, dict[str, Any]]]:

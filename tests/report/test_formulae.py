@@ -131,7 +131,7 @@ def test_the_widest_piece_counts() -> None:
 
 
 def test_of_a_fraction_the_longer_part_counts() -> None:
-    assert estimated_total(r"\frac{a}{b + c + d}") == 5
+    assert estimated_total(r"\frac{a}{b + c + d}") == 7
     assert estimated_total(r"\frac{\frac{abcd}{e}}{f}") == 4
 
 

@@ -190,8 +190,9 @@ class Drawing:
             body = body.replace(colour, name)
         body = re.sub(r"<[^>]*>", lambda tag: _COORDINATE.sub(_rounded, tag[0]), body)
         body = _compact(body)
+        tall = ' class="tall"' if self.height > self.width else ""
         return (
-            f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {self.width:g} {self.height:g}" role="img" '
+            f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {self.width:g} {self.height:g}" role="img"{tall} '
             f'stroke-linejoin="round" stroke-linecap="butt" font-family="{FAMILY}" '
             f'aria-labelledby="{prefix}.title {prefix}.desc">'
             f'<title id="{prefix}.title">{escape(title)}</title>'

@@ -28,7 +28,7 @@ _STATE_COLUMNS = (
     "mass_flow",
 )
 #: Characters of one piece that reaches into the column of the basis.
-_STACKED = 60
+_STACKED = 48
 #: Characters of a right side that takes more than a line anyway: the result then follows on its last line.
 _LONG = 68
 #: Steps of a passage that one sheet of paper holds together.
