@@ -29,8 +29,8 @@ from reportgen.spec.calculation import (
 from reportgen.spec.checks import check, criterion_limit
 from reportgen.spec.fluid_tables import FluidCheck, ask_the_models, fluid_spec
 from reportgen.spec.folder import CALCULATION_FILE, read_bytes, read_text
+from reportgen.spec.narratives import narratives_of
 from reportgen.spec.paths import input_locations, kind_of
-from reportgen.spec.schema import NARRATIVES
 from reportgen.spec.source import Location, Source, path_of
 from reportgen.spec.states import fluid_of, givens_of
 from reportgen.spec.toml_text import parse
@@ -59,34 +59,10 @@ def read(folder: Path, check_fluid: FluidCheck | None = None) -> Calculation:
     check(source, context)
     if check_fluid is not None:
         ask_the_models(source, context, check_fluid)
-    narratives = _narratives(source, folder, files)
+    narratives = narratives_of(source, folder, files)
     if document is None or source.faults:
         raise InputError(source.sorted_faults())
     return _Builder(source, document, context).calculation(narratives, files)
-
-
-def _narratives(source: Source, folder: Path, files: dict[str, bytes]) -> dict[str, Narrative]:
-    """Texts of the title block, from the file itself or from files beside it, which are added to ``files``."""
-    narratives: dict[str, Narrative] = {}
-    for key in NARRATIVES:
-        text = source.text("calculation", key)
-        name = source.text("calculation", f"{key}_file")
-        if text is not None:
-            node = source.node(("calculation", key))
-            assert node is not None  # there is a text
-            narratives[key] = Narrative(text, source.file, node.text_line, node.text_column)
-        elif name is not None:
-            try:
-                content = read_bytes(folder, name)
-                narratives[key] = Narrative(read_text(content, name), name, 1, 1)
-                files[name] = content
-            except InputError as error:
-                for fault in error.faults:
-                    if fault.file is None:
-                        source.note(("calculation", f"{key}_file"), fault)
-                    else:
-                        source.faults.append(fault)
-    return narratives
 
 
 class _Builder:
