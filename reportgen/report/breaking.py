@@ -135,7 +135,11 @@ def _count(tokens: list[str]) -> float:
     while tokens:
         token = tokens.pop(0)
         if token in ("_", "^"):
-            total += _SCRIPT * _count(_group(tokens))
+            script = _count(_group(tokens))
+            if tokens and tokens[0] in "_^":  # both stand one above the other
+                tokens.pop(0)
+                script = max(script, _count(_group(tokens)))
+            total += _SCRIPT * script
         elif token in (r"\frac", r"\tfrac"):
             total += max(_count(_group(tokens)), _count(_group(tokens)))
         elif token.startswith("\\") and token[1:].isalpha():

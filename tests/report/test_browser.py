@@ -12,12 +12,14 @@ from typing import Any
 
 import pytest
 
+from reportgen import evaluation, spec
 from reportgen.report import register, render
 from tests.report.invented import invented_record
 
 pytestmark = pytest.mark.browser
 
 NAMES = ("chromium", "chromium-browser", "google-chrome")
+PROJECTS = Path(__file__).parents[2] / "projects"
 A4, LETTER = (8.27, 11.69), (8.5, 11.0)
 
 
@@ -33,7 +35,8 @@ def site(tmp_path_factory: pytest.TempPathFactory) -> dict[str, str]:
     """Addresses of a report and of the register, in a folder."""
     folder = tmp_path_factory.mktemp("site")
     report = render(invented_record(), folder)
-    return {"report": report.as_uri(), "register": register(folder).as_uri()}
+    air = render(evaluation.evaluate(spec.read(PROJECTS / "instrument-air")), folder)
+    return {"report": report.as_uri(), "register": register(folder).as_uri(), "air": air.as_uri()}
 
 
 @pytest.fixture(scope="module")
@@ -133,6 +136,36 @@ def test_the_page_never_scrolls_sideways(opened: Any, name: str, width: int) -> 
            }).map(e => e.outerHTML.slice(0, 80))"""
     )
     assert wide == []
+
+
+@pytest.mark.parametrize("width", [390, 820, 1440])
+def test_no_equation_scrolls_and_the_smallest_can_still_be_read(opened: Any, width: int) -> None:
+    page = opened("air", width=width).page
+    found = page.evaluate(
+        """() => [...document.querySelectorAll('.equation')]
+             .filter(e => e.scrollWidth > e.clientWidth + 1).map(e => e.textContent.slice(0, 80))"""
+    )
+    assert found == []
+    sizes = page.evaluate(
+        "[...document.querySelectorAll('.equation .right')].map(e => parseFloat(getComputedStyle(e).fontSize))"
+    )
+    assert min(sizes) > (8.5 if width == 390 else 12.0)
+
+
+def test_a_long_bracket_breaks_only_where_no_line_holds_it(opened: Any) -> None:
+    lines = """() => [...document.querySelectorAll('.term')].map(
+                 e => new Set([...e.children].map(m => Math.round(m.getBoundingClientRect().top / 12))).size)"""
+    assert max(opened("air", width=390).page.evaluate(lines)) > 1
+    wide = opened("air", width=1440).page
+    broken = wide.evaluate(
+        """() => [...document.querySelectorAll('.term')].filter(e => {
+             const parts = [...e.querySelectorAll(':scope > math')].map(m => m.getBoundingClientRect());
+             const together = parts.reduce((sum, box) => sum + box.width, 0);
+             const room = e.closest('.rights').getBoundingClientRect().width;
+             return parts.at(-1).left < parts[0].right - 1 && together < room;
+           }).map(e => e.textContent.slice(0, 80))"""
+    )
+    assert broken == []
 
 
 def test_boxes_that_scroll_can_be_reached_by_keyboard_and_have_a_name(opened: Any) -> None:
