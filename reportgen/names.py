@@ -104,6 +104,7 @@ _ENTRIES = (
     Name("duty", r"\dot Q_\mathrm{duty}", "heat_flow", "Heat from hot to cold side", "positive from hot to cold"),
     Name("isentropic_efficiency", r"\eta_s", "efficiency", "Isentropic efficiency"),
     Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
+    Name("pressure_integral", "I", "specific_entropy", "Integral of v/T over pressure along the path"),
     Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Enthalpy at outlet pressure and inlet entropy"),
     Name("pressure_drop", r"\Delta p", "pressure_difference", "Pressure loss from inlet to outlet", _LOSS),
     Name(

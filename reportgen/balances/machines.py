@@ -66,7 +66,7 @@ def machine_kind(name: str, title: str, text: str, *, absorbs: bool, polytropic:
         parameters=(*_parameters(verb), _POLYTROPIC) if polytropic else _parameters(verb),
         relations=lambda piece: _relations(piece, absorbs, polytropic),
         defaults=lambda piece: [adiabatic(piece)],
-        results=lambda piece: _results(piece, absorbs),
+        results=lambda piece: [*_results(piece, absorbs), *(_path_results(piece) if polytropic else ())],
         heats=heat_ports,
         stretches=lambda piece: stream_stretches(piece, "entropy"),
         power_sign=1 if absorbs else -1,
@@ -174,12 +174,12 @@ def _polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
     fluid = piece.fluid(inlet)
     integral = _path_integral(fluid)
-    inputs = tuple(f"states.{state}.{name}" for state in (inlet, outlet) for name in ("pressure", "specific_entropy"))
+    inputs = _ends(piece)
     p1, s1, p2, s2 = (token(path) for path in inputs)
     efficiency = piece.path("polytropic_efficiency")
     eta = token(efficiency)
     is_ideal = fluid.kind == "ideal-gas"
-    whole = rf"R\ln\frac{{{p2}}}{{{p1}}}" if is_ideal else rf"\int_{{{p1}}}^{{{p2}}}\frac{{v}}{{T}}\,\mathrm{{d}}p"
+    whole = rf"R\ln\frac{{{p2}}}{{{p1}}}" if is_ideal else token(piece.path("pressure_integral"))
 
     def evaluate(first: Any, entropy: Any, last: Any, outlet_entropy: Any) -> Any:
         import numpy as np
@@ -207,7 +207,7 @@ def _polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
     manner = (
         f"exact for an ideal gas, R = {float(fluid.gas_constant):.6g} J/(kg K)"
         if is_ideal
-        else "path on which the entropy changes evenly with ln p, four Gauss–Legendre nodes"
+        else "with the integral of v/T over pressure, given with the figures of merit"
     )
     return Formula(
         piece.path("polytropic_efficiency.definition"),
@@ -223,6 +223,40 @@ def _polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
         fluids=(piece.fluid_id(inlet),),
         reason="the path between the two states leaves the range of the fluid's equation, or has no length",
     )
+
+
+def _ends(piece: Piece) -> tuple[str, str, str, str]:
+    """Paths of pressure and entropy of inlet and outlet."""
+    inlet, outlet = (f"states.{piece.one(port)}." for port in ("inlet", "outlet"))
+    names = ("pressure", "specific_entropy")
+    return inlet + names[0], inlet + names[1], outlet + names[0], outlet + names[1]
+
+
+def _path_results(piece: Piece) -> list[Formula]:
+    """I = ∫ (v/T) dp of a real fluid, by which its polytropic efficiency can be checked."""
+    inlet = piece.one("inlet")
+    fluid = piece.fluid(inlet)
+    if fluid.kind == "ideal-gas":
+        return []
+    inputs = _ends(piece)
+    p1, _, p2, _ = (token(path) for path in inputs)
+    output = piece.path("pressure_integral")
+    return [
+        Formula(
+            output,
+            piece.owner,
+            "Integral over pressure",
+            f"{piece.title}: the integral of v/T over pressure, along a path on which the entropy changes evenly with "
+            "ln p.",
+            "four Gauss–Legendre nodes",
+            output,
+            inputs,
+            _path_integral(fluid),
+            rf"\int_{{{p1}}}^{{{p2}}}\frac{{v}}{{T}}\,\mathrm{{d}}p",
+            fluids=(piece.fluid_id(inlet),),
+            reason="the path between the two states leaves the range of the fluid's equation",
+        )
+    ]
 
 
 def _relations(piece: Piece, absorbs: bool, polytropic: bool) -> list[Relation]:

@@ -31,6 +31,7 @@ _TOLD = {
     "isentropic_outlet_enthalpy": _EXERGY,
     "isentropic_efficiency": _EXERGY,
     "polytropic_efficiency": _EXERGY,
+    "pressure_integral": _EXERGY,
     "exergetic_efficiency": _EXERGY,
     "entropy_generation_number": _EXERGY,
 }

@@ -46,6 +46,7 @@ _EQUIPMENT_RESULTS = (
     "energy_imbalance",
     "mass_imbalance",
     "entropy_with_heat",
+    "pressure_integral",
 )
 _SURROUNDINGS = ("temperature", "pressure")
 
