@@ -127,7 +127,6 @@ _ENTRIES = (
     ),
     Name("entropy_with_heat", r"\dot S_Q", "entropy_flow", "Entropy carried by heat", _INTO),
     Name("split_fraction", r"\varphi", "ratio", "Share of the inlet flow that leaves by the first outlet"),
-    Name("entropy_imbalance", r"\delta\dot S", "entropy_flow", "What is left of the entropy balance"),
     Name(
         "lost_work",
         r"\dot W_\mathrm{lost}",

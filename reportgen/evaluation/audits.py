@@ -39,7 +39,7 @@ HEAT_RESOLUTION = 1e-10
 #: The same for what is left of the balances themselves, as a part of the terms of each.
 RESIDUAL_RESOLUTION = 1e-10
 #: Values that hold what is left of a balance.
-RESIDUALS = {"mass": ("mass_imbalance",), "energy": ("energy_imbalance",), "entropy": ("entropy_imbalance", "closure")}
+RESIDUALS = {"mass": ("mass_imbalance",), "energy": ("energy_imbalance",), "entropy": ("closure",)}
 
 HEAVIEST = 3
 

@@ -22,7 +22,7 @@ __all__ = ["relations_section", "values_section"]
 #: Between the equations of one step.
 LINE_BREAK = r" \\ "
 #: Residuals of the arithmetic: what an input contributes to them is rounding, not uncertainty.
-RESIDUALS = ("closure", "energy_imbalance", "entropy_imbalance", "mass_imbalance")
+RESIDUALS = ("closure", "energy_imbalance", "mass_imbalance")
 
 
 def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[str, Input]) -> dict[str, Any]:

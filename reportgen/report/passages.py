@@ -36,7 +36,7 @@ _TOLD = {
     "entropy_generation_number": _EXERGY,
 }
 #: Names of what is left of each balance.
-RESIDUALS = {"mass": ("mass_imbalance",), "energy": ("energy_imbalance",), "entropy": ("entropy_imbalance", "closure")}
+RESIDUALS = {"mass": ("mass_imbalance",), "energy": ("energy_imbalance",), "entropy": ("closure",)}
 _RESIDUALS = {name for names in RESIDUALS.values() for name in names}
 _FIXED = re.compile(r"State (?P<state>\S+) is fixed by its (?P<how>.+)", re.DOTALL)
 #: Characters of sentences on one piece that are still read as one.
