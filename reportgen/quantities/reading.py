@@ -301,7 +301,8 @@ def _within(value: float, dimension: str, found: str) -> float:
     subject = words(dimension).capitalize()
     if dimension in _ABSOLUTE and not value > 0.0:
         zero = {"temperature": "absolute zero", "pressure": "a perfect vacuum"}.get(dimension, "zero")
-        raise Refused(f"{subject} must be above {zero}.", found)
+        hint = "A reading below the atmosphere is a gauge pressure, as in bar(g)." if dimension == "pressure" else None
+        raise Refused(f"{subject} must be above {zero}.", found, example((dimension,)), hint)
     if dimension in _NEVER_NEGATIVE and value < 0.0:
         raise Refused(f"{subject} cannot be negative.", found, hint="The ports give the direction.")
     if dimension == "efficiency" and not 0.0 < value <= 1.0:

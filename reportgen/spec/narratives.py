@@ -2,16 +2,22 @@
 
 What turns Markdown into a page looks from every opening bracket to the end of its paragraph, and from every ``<`` to
 the end of the text. Both are bounded here, far above what a person writes, so that no text keeps it busy for long.
+
+Paths that no value can have are told here too, together with the other faults of the file; whoever makes the page
+checks the rest of what stands in double braces.
 """
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator
 from pathlib import Path
 
 from reportgen.errors import Fault, InputError
+from reportgen.names import NAMES
 from reportgen.spec.calculation import Narrative
 from reportgen.spec.folder import read_bytes, read_text
+from reportgen.spec.paths import result_dimensions
 from reportgen.spec.schema import NARRATIVES
 from reportgen.spec.source import Source
 
@@ -21,6 +27,7 @@ _LONGEST_TEXT = 100_000
 _LONGEST_PARAGRAPH = 10_000
 _MOST_BRACKETS = 200
 _MOST_ANGLES = 500
+_VALUE = re.compile(r"""\{\{-?\s*value\(\s*(["'])([^"'\n]{1,200})\1""")
 
 
 def narratives_of(source: Source, folder: Path, files: dict[str, bytes]) -> dict[str, Narrative]:
@@ -45,8 +52,29 @@ def narratives_of(source: Source, folder: Path, files: dict[str, bytes]) -> dict
                     else:
                         source.faults.append(fault)
         if key in narratives:
-            source.faults.extend(_beyond_bounds(narratives[key], f"calculation.{key}"))
+            found = list(_beyond_bounds(narratives[key], f"calculation.{key}"))
+            source.faults.extend(found or _impossible_paths(source, narratives[key], f"calculation.{key}"))
     return narratives
+
+
+def _impossible_paths(source: Source, narrative: Narrative, path: str) -> Iterator[Fault]:
+    """References to values that the calculation cannot have; a known name of a known owner is left to the page."""
+    line, begin = narrative.line, 0
+    for match in _VALUE.finditer(narrative.text):
+        wanted = match[2]
+        breaks = narrative.text.count("\n", begin, match.start())
+        line, begin = line + breaks, match.start()
+        section, _, rest = wanted.partition(".")
+        owner, _, name = rest.rpartition(".")
+        if section == "surroundings" or (name in {*NAMES, "phase"} and owner in source.table(section)):
+            continue
+        wrong = result_dimensions(source, wanted)
+        if isinstance(wrong, str):
+            indent = match.start() - narrative.text.rfind("\n", 0, match.start())
+            column = indent if line > narrative.line else indent - 1 + narrative.column
+            yield Fault(f"No value can have this path. {wrong}", path, found=f'"{wanted}"').at(
+                narrative.file, line, column
+            )
 
 
 def _beyond_bounds(narrative: Narrative, path: str) -> Iterator[Fault]:

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+import shutil
 from pathlib import Path
 
 import pytest
 
+from reportgen import evaluation, spec
 from tests.spec.writing import HEAD, TITLE, faults, read
 
 STATE = '\n[states.1]\nfluid = "steam"\n'
@@ -42,3 +44,29 @@ def test_what_a_person_writes_passes(tmp_path: Path) -> None:
     (tmp_path / "purpose.md").write_text(text, encoding="utf-8", newline="\n")
     calculation = read(tmp_path, HEAD.replace(TITLE, TITLE + 'purpose_file = "purpose.md"\n') + STATE)
     assert calculation.narratives["purpose"].text == text
+
+
+def test_impossible_paths_are_told_with_the_other_faults_of_the_file(tmp_path: Path) -> None:
+    text = (
+        TITLE + 'conclusion = """\nIt is {{ value("states.1.presure") }},\n  and {{ value("total.lost_wrok") }}.\n"""\n'
+    )
+    found = faults(tmp_path, HEAD.replace(TITLE, text) + STATE + 'pressure = "7 barr"\n')
+    line = text.count("\n") - 2
+    assert [(fault.path, fault.line, fault.column) for fault in found[:2]] == [
+        ("calculation.conclusion", line, 7),
+        ("calculation.conclusion", line + 1, 7),
+    ]
+    assert 'Did you mean "pressure"' in str(found[0])
+    assert found[2].path == "states.1.pressure"
+
+
+@pytest.mark.parametrize("name", ["letdown-station", "instrument-air"])
+def test_every_value_and_input_of_an_evaluated_plant_may_be_quoted(name: str, tmp_path: Path) -> None:
+    folder = Path(__file__).parents[2] / "projects" / name
+    record = evaluation.evaluate(spec.read(folder)).data
+    paths = sorted({*record["values"], *record["inputs"]})
+    shutil.copytree(folder, tmp_path / name)
+    for begin in range(0, len(paths), 100):
+        quoted = "\n\n".join(f'{{{{ value("{path}") }}}}' for path in paths[begin : begin + 100])
+        (tmp_path / name / "purpose.md").write_text(quoted, encoding="utf-8", newline="\n")
+        spec.read(tmp_path / name)
