@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
-from reportgen.evaluation.cautions.entry import Finding, Severity, caution
+from reportgen.evaluation.cautions.entry import Caution, Finding, Severity, Undecided, caution
 from reportgen.evaluation.evaluated import EvaluatedPlant
 
 if TYPE_CHECKING:
@@ -23,40 +23,88 @@ __all__ = [
 ]
 
 
-@caution("P01", "stop", "Flow against its direction", source="conservation of mass", undecided="beyond")
-def flow_against_its_direction(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Negative mass flow of a stream."""
-    yield from _doubted(plant, "negative-flow")
+def _finding(doubt: Doubt, severity: Severity | None = None) -> Finding:
+    return Finding(
+        doubt.path,
+        doubt.measured,
+        doubt.limit,
+        doubt.keep,
+        doubt.text,
+        None if doubt.measured is None else doubt.dimension,
+        owner=doubt.owner,
+        severity=severity,
+    )
 
 
-@caution("P02", "stop", "Temperatures cross", source="second law of thermodynamics", undecided="beyond")
-def temperatures_cross(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Hot stream of an exchanger colder than the cold one, at an end or inside."""
-    yield from _doubted(plant, "temperature-cross")
+def _passed_on(
+    identifier: str, severity: Severity, gist: str, source: str, key: str, text: str, undecided: Undecided = "beyond"
+) -> Caution:
+    """The entry for doubts of one key, which the balances have put into words; ``text`` says when they arise."""
+
+    def find(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
+        yield from (_finding(doubt) for doubt in plant.doubts if doubt.key == key)
+
+    find.__doc__ = text
+    return caution(identifier, severity, gist, source=source, undecided=undecided)(find)
 
 
-@caution("P03", "stop", "Pressure against the machine", source="common practice", undecided="beyond")
-def pressure_against_a_machine(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Turbine that raises the pressure, compressor or pump that lowers it."""
-    yield from _doubted(plant, "pressure-against-machine")
-
-
-@caution("P04", "warning", "Pressure rises without work", source="common practice", undecided="beyond")
-def pressure_rises_without_work(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Outlet pressure above the inlet pressure in a piece without power."""
-    yield from _doubted(plant, "pressure-rises")
-
-
-@caution("P05", "warning", "Power against its direction", source="first law of thermodynamics", undecided="beyond")
-def power_against_its_direction(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Turbine that absorbs power, compressor or pump that delivers it."""
-    yield from _doubted(plant, "power-against-machine")
-
-
-@caution("P06", "warning", "Heat against its direction", source="first law of thermodynamics", undecided="beyond")
-def heat_against_its_direction(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Negative duty of an exchanger, heater that cools, cooler that heats."""
-    yield from _doubted(plant, "heat-against-direction")
+flow_against_its_direction = _passed_on(
+    "P01",
+    "stop",
+    "Flow against its direction",
+    "conservation of mass",
+    "negative-flow",
+    "Negative mass flow of a stream.",
+)
+temperatures_cross = _passed_on(
+    "P02",
+    "stop",
+    "Temperatures cross",
+    "second law of thermodynamics",
+    "temperature-cross",
+    "Hot stream of an exchanger colder than the cold one, at an end or inside.",
+)
+pressure_against_a_machine = _passed_on(
+    "P03",
+    "stop",
+    "Pressure against the machine",
+    "common practice",
+    "pressure-against-machine",
+    "Turbine that raises the pressure, compressor or pump that lowers it.",
+)
+pressure_rises_without_work = _passed_on(
+    "P04",
+    "warning",
+    "Pressure rises without work",
+    "common practice",
+    "pressure-rises",
+    "Outlet pressure above the inlet pressure in a piece without power.",
+)
+power_against_its_direction = _passed_on(
+    "P05",
+    "warning",
+    "Power against its direction",
+    "first law of thermodynamics",
+    "power-against-machine",
+    "Turbine that absorbs power, compressor or pump that delivers it.",
+)
+heat_against_its_direction = _passed_on(
+    "P06",
+    "warning",
+    "Heat against its direction",
+    "first law of thermodynamics",
+    "heat-against-direction",
+    "Negative duty of an exchanger, heater that cools, cooler that heats.",
+)
+pressure_from_enthalpy = _passed_on(
+    "P10",
+    "warning",
+    "Pressure found from enthalpy",
+    "equation of state",
+    "pressure-from-enthalpy",
+    "Pressure of a single phase found from temperature and enthalpy, which hardly depend on it.",
+    undecided="always",
+)
 
 
 @caution("P07", "warning", "Efficiency above 100 %", source="second law of thermodynamics", undecided="beyond")
@@ -72,26 +120,3 @@ def efficiency_above_one(plant: EvaluatedPlant, _limit: float) -> Iterator[Findi
             if doubt.key == key and doubt.stands and doubt.owner not in told:
                 told.add(doubt.owner)
                 yield _finding(doubt, severity)
-
-
-@caution("P10", "warning", "Pressure found from enthalpy", source="equation of state")
-def pressure_from_enthalpy(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Pressure of a single phase found from temperature and enthalpy, which hardly depend on it."""
-    yield from _doubted(plant, "pressure-from-enthalpy")
-
-
-def _doubted(plant: EvaluatedPlant, key: str) -> Iterator[Finding]:
-    yield from (_finding(doubt) for doubt in plant.doubts if doubt.key == key)
-
-
-def _finding(doubt: Doubt, severity: Severity | None = None) -> Finding:
-    return Finding(
-        doubt.path,
-        doubt.measured,
-        doubt.limit,
-        doubt.keep,
-        doubt.text,
-        None if doubt.measured is None else doubt.dimension,
-        owner=doubt.owner,
-        severity=severity,
-    )
