@@ -81,7 +81,7 @@ def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Pl
 
 def real_counterpart(model: Any) -> Any:
     """Real fluid that an ideal gas can be tested against, or None where none of its composition is carried."""
-    from reportgen.fluids import gas_catalogue
+    from reportgen.fluids.gases import catalogue as gas_catalogue
 
     name = gas_catalogue.real_counterpart(model, fluids.names())
     return None if name is None else fluids.real_fluid(name)

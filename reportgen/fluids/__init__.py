@@ -12,17 +12,17 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from reportgen.errors import Fault, InputError
-from reportgen.fluids import catalogue
-from reportgen.fluids.ideal_gases import ideal_gas
+from reportgen.fluids.gases.gas import ideal_gas
+from reportgen.fluids.real import catalogue
 
 if TYPE_CHECKING:
-    from reportgen.fluids.real_fluids import RealFluid
+    from reportgen.fluids.real.fluid import RealFluid
 
 __all__ = ["describe", "ideal_gas", "ideal_gas_names", "listing", "names", "real_fluid"]
 
 
 def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
-    """Real fluid by its published Helmholtz-energy equation; see :class:`fluids.real_fluids.RealFluid`.
+    """Real fluid by its published Helmholtz-energy equation; see :class:`fluids.real.fluid.RealFluid`.
 
     Parameters
     ----------
@@ -33,7 +33,7 @@ def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
     ------
     InputError : unknown fluid (with the nearest name) or reference state.
     """
-    from reportgen.fluids.real_fluids import RealFluid
+    from reportgen.fluids.real.fluid import RealFluid
 
     return RealFluid(name, reference_state)
 
@@ -45,7 +45,7 @@ def names() -> tuple[str, ...]:
 
 def ideal_gas_names() -> tuple[str, ...]:
     """Names of the ideal gases carried; their formulas and other names are taken too."""
-    from reportgen.fluids import gas_catalogue
+    from reportgen.fluids.gases import catalogue as gas_catalogue
 
     return gas_catalogue.names()
 
@@ -64,8 +64,8 @@ def describe(name: str) -> str:
     ------
     InputError : neither carries the name; hints give the nearest names.
     """
-    from reportgen.fluids import gas_catalogue
     from reportgen.fluids.description import describe_real
+    from reportgen.fluids.gases import catalogue as gas_catalogue
 
     texts = []
     faults: list[Fault] = []

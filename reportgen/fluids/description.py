@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from reportgen.fluids import catalogue, gas_catalogue
-from reportgen.fluids.ideal_gases import ideal_gas
-from reportgen.fluids.real_fluids import RealFluid
+from reportgen.fluids.gases import catalogue as gas_catalogue
+from reportgen.fluids.gases.gas import ideal_gas
+from reportgen.fluids.real import catalogue
+from reportgen.fluids.real.fluid import RealFluid
 
 __all__ = ["describe_real", "list_all"]
 

@@ -15,7 +15,7 @@ import CoolProp.CoolProp as library
 import numpy as np
 
 from reportgen.fluids import real_fluid
-from reportgen.fluids.real_fluids import RealFluid
+from reportgen.fluids.real.fluid import RealFluid
 
 FLUIDS = {"water": "Water", "carbon dioxide": "CarbonDioxide", "nitrogen": "Nitrogen", "R134a": "R134a"}
 STATES = 10_000

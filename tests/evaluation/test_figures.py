@@ -7,7 +7,7 @@ import pytest
 from calculations import VALVE, evaluated
 
 from reportgen.evaluation.figures import isobar, saturation_dome
-from reportgen.fluids.ideal_gases import ideal_gas
+from reportgen.fluids.gases.gas import ideal_gas
 
 AIR = ideal_gas({"N2": 0.7808, "O2": 0.2095, "Ar": 0.0097})
 

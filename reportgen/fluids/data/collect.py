@@ -21,7 +21,7 @@ import numpy as np
 from CoolProp.CoolProp import get_BibTeXKey, get_fluid_param_string
 
 from reportgen.fluids.data import collect_saturation as saturation
-from reportgen.fluids.helmholtz import Helmholtz
+from reportgen.fluids.real.helmholtz import Helmholtz
 
 #: What to collect: name in the source, name here (also the file), title. More fluids are more lines.
 FLUIDS = (
@@ -211,7 +211,7 @@ def ancillary(source: dict[str, Any]) -> Any:
 
 def largest_density(equation: Helmholtz, data: dict[str, Any], liquid: float) -> float:
     """Upper end for density searches [kg/m3]: beyond any state within the limits, while pressure still rises."""
-    from reportgen.fluids.melting import MeltingLine
+    from reportgen.fluids.real.melting import MeltingLine
 
     limits = data["limits"]
     line = MeltingLine(data["melting_line"]) if data["melting_line"] else None

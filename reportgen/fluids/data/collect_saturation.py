@@ -20,7 +20,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.helmholtz import Helmholtz
+from reportgen.fluids.real.helmholtz import Helmholtz
 
 Array = NDArray[Any]
 Extended = np.longdouble

@@ -17,9 +17,9 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.factors import FactorSet
-from reportgen.fluids.nonanalytic import NonAnalytic
-from reportgen.fluids.terms import NON_ANALYTIC, ideal_sum, residual_products
+from reportgen.fluids.real.factors import FactorSet
+from reportgen.fluids.real.nonanalytic import NonAnalytic
+from reportgen.fluids.real.terms import NON_ANALYTIC, ideal_sum, residual_products
 
 __all__ = ["CHUNK", "Helmholtz", "Isotherm", "Properties", "Reduced"]
 

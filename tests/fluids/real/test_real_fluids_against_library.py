@@ -12,7 +12,7 @@ import numpy as np
 import pytest
 
 from reportgen.fluids import names, real_fluid
-from reportgen.fluids.real_fluids import RealFluid
+from reportgen.fluids.real.fluid import RealFluid
 
 library = pytest.importorskip("CoolProp.CoolProp")
 

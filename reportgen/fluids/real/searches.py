@@ -10,9 +10,9 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.density import DensitySolver
-from reportgen.fluids.helmholtz import Helmholtz
-from reportgen.fluids.saturation import SaturationCurves
+from reportgen.fluids.real.density import DensitySolver
+from reportgen.fluids.real.helmholtz import Helmholtz
+from reportgen.fluids.real.saturation import SaturationCurves
 
 __all__ = ["Crossings", "Found", "SearchFlash", "bracketed_root", "crossings"]
 

@@ -7,8 +7,8 @@ import json
 import numpy as np
 import pytest
 
-from reportgen.fluids.helmholtz import CHUNK, Helmholtz
-from reportgen.fluids.terms import IDEAL_KINDS, NON_ANALYTIC, RESIDUAL_KINDS
+from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
+from reportgen.fluids.real.terms import IDEAL_KINDS, NON_ANALYTIC, RESIDUAL_KINDS
 
 library = pytest.importorskip("CoolProp.CoolProp")
 collect = pytest.importorskip("reportgen.fluids.data.collect")

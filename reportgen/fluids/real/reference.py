@@ -8,8 +8,8 @@ from typing import Any
 import numpy as np
 
 from reportgen.errors import Fault, InputError
-from reportgen.fluids.helmholtz import Helmholtz
-from reportgen.fluids.saturation import SaturationCurves
+from reportgen.fluids.real.helmholtz import Helmholtz
+from reportgen.fluids.real.saturation import SaturationCurves
 
 __all__ = ["REFERENCE_STATES", "zero_of"]
 

@@ -14,10 +14,10 @@ from hypothesis import strategies as st
 from scipy.integrate import quad
 
 from reportgen.errors import InputError, RangeError
-from reportgen.fluids.caloric import Nasa9
-from reportgen.fluids.gas_catalogue import describe, names, real_counterpart
-from reportgen.fluids.gas_species import library
-from reportgen.fluids.ideal_gases import MOLAR_GAS_CONSTANT, ideal_gas
+from reportgen.fluids.gases.caloric import Nasa9
+from reportgen.fluids.gases.catalogue import describe, names, real_counterpart
+from reportgen.fluids.gases.gas import MOLAR_GAS_CONSTANT, ideal_gas
+from reportgen.fluids.gases.species import library
 from reportgen.fluids.model import Fluid
 from reportgen.fluids.state import FIELDS
 
@@ -570,7 +570,7 @@ def test_real_counterparts():
 
 def test_no_heavy_import():
     code = (
-        "import sys; from reportgen.fluids.ideal_gases import ideal_gas;"
+        "import sys; from reportgen.fluids.gases.gas import ideal_gas;"
         "ideal_gas('air').at(pressure=1e5, temperature=300);"
         "sys.exit(any(name in sys.modules for name in ('scipy', 'pint', 'matplotlib')))"
     )

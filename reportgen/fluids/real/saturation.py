@@ -15,7 +15,7 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.expansions import Expansions
+from reportgen.fluids.real.expansions import Expansions
 
 __all__ = ["Saturated", "SaturationCurves"]
 

@@ -9,9 +9,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.errors import Fault
-from reportgen.fluids.melting import MeltingLine
 from reportgen.fluids.model import Limits, Point
 from reportgen.fluids.pairs import Elements, in_words
+from reportgen.fluids.real.melting import MeltingLine
 
 __all__ = ["Guard", "limits_of"]
 

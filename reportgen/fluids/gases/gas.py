@@ -17,8 +17,8 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError
-from reportgen.fluids.caloric import LIMIT_SLACK, CaloricLaw, ConstantHeatCapacity, Nasa9
-from reportgen.fluids.gas_species import DATA_FILE, Basis, GasMixture, library, mole_fractions, resolve
+from reportgen.fluids.gases.caloric import LIMIT_SLACK, CaloricLaw, ConstantHeatCapacity, Nasa9
+from reportgen.fluids.gases.species import DATA_FILE, Basis, GasMixture, library, mole_fractions, resolve
 from reportgen.fluids.model import Errors, Limits
 from reportgen.fluids.pairs import Elements, Pair, check_errors, in_words, read_pair
 from reportgen.fluids.state import State

@@ -7,10 +7,10 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.density import DensitySolver
-from reportgen.fluids.helmholtz import Helmholtz, Properties
-from reportgen.fluids.melting import MeltingLine
-from reportgen.fluids.saturation import Saturated, SaturationCurves
+from reportgen.fluids.real.density import DensitySolver
+from reportgen.fluids.real.helmholtz import Helmholtz, Properties
+from reportgen.fluids.real.melting import MeltingLine
+from reportgen.fluids.real.saturation import Saturated, SaturationCurves
 
 __all__ = ["Caloric", "PressureFlash"]
 

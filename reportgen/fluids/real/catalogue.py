@@ -17,7 +17,7 @@ __all__ = ["FORMAT", "digest", "find", "names", "source_lines"]
 #: Format of the data files of real fluids; other files beside them have another.
 FORMAT = "reportgen-fluid/1"
 
-_FOLDER = Path(__file__).parent / "data"
+_FOLDER = Path(__file__).parent.parent / "data"
 
 
 def _plain(name: str) -> str:

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Collection
 
-from reportgen.fluids import catalogue
-from reportgen.fluids.gas_species import GasSpecies, library, plain_name, resolve
-from reportgen.fluids.ideal_gases import IdealGas, ideal_gas
+from reportgen.fluids.gases.gas import IdealGas, ideal_gas
+from reportgen.fluids.gases.species import GasSpecies, library, plain_name, resolve
+from reportgen.fluids.real import catalogue
 
 __all__ = ["AIR_TOLERANCE", "describe", "names", "real_counterpart"]
 

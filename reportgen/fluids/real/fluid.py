@@ -9,17 +9,17 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError
-from reportgen.fluids import catalogue
-from reportgen.fluids.density import DensitySolver
-from reportgen.fluids.flash import PressureFlash
-from reportgen.fluids.helmholtz import Helmholtz
-from reportgen.fluids.limits import Guard, limits_of
 from reportgen.fluids.model import Errors
 from reportgen.fluids.pairs import Elements, Pair, check_errors, read_pair
-from reportgen.fluids.reference import zero_of
-from reportgen.fluids.saturation import SaturationCurves
-from reportgen.fluids.searches import Found, SearchFlash
-from reportgen.fluids.solution import Solution
+from reportgen.fluids.real import catalogue
+from reportgen.fluids.real.density import DensitySolver
+from reportgen.fluids.real.flash import PressureFlash
+from reportgen.fluids.real.helmholtz import Helmholtz
+from reportgen.fluids.real.limits import Guard, limits_of
+from reportgen.fluids.real.reference import zero_of
+from reportgen.fluids.real.saturation import SaturationCurves
+from reportgen.fluids.real.searches import Found, SearchFlash
+from reportgen.fluids.real.solution import Solution
 from reportgen.fluids.state import State
 
 __all__ = ["RealFluid"]

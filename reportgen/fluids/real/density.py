@@ -7,8 +7,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.helmholtz import CHUNK, Helmholtz
-from reportgen.fluids.saturation import SaturationCurves
+from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
+from reportgen.fluids.real.saturation import SaturationCurves
 
 __all__ = ["DensitySolver"]
 

@@ -82,7 +82,7 @@ class GasLibrary:
 @lru_cache(maxsize=1)
 def library() -> GasLibrary:
     """The species carried, read once from the data file."""
-    raw = (Path(__file__).parent / "data" / DATA_FILE).read_bytes()
+    raw = (Path(__file__).parent.parent / "data" / DATA_FILE).read_bytes()
     content: dict[str, Any] = json.loads(raw)
     species = {
         key: GasSpecies(

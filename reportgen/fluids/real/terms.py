@@ -9,7 +9,7 @@ import math
 from collections.abc import Callable, Mapping
 from typing import Any, NamedTuple
 
-from reportgen.fluids.factors import Factor
+from reportgen.fluids.real.factors import Factor
 
 __all__ = ["IDEAL_KINDS", "NON_ANALYTIC", "RESIDUAL_KINDS", "IdealSum", "Product", "ideal_sum", "residual_products"]
 
