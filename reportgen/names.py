@@ -24,6 +24,7 @@ DIMENSIONS: dict[str, str] = {
     "molar_flow": "mol/s",
     "volume_flow": "m3/s",
     "molar_mass": "kg/mol",
+    "molar_volume": "m3/mol",
     "power": "W",
     "heat_flow": "W",
     "entropy_flow": "W/K",

@@ -73,6 +73,7 @@ _SI_EXPRESSIONS = {
     "mol/s": "mole/second",
     "m3/s": "meter**3/second",
     "kg/mol": "kilogram/mole",
+    "m3/mol": "meter**3/mole",
     "W": "watt",
     "W/K": "watt/kelvin",
     "J": "joule",
@@ -200,6 +201,7 @@ _UNITS: dict[str, list[Unit]] = {
     "molar_flow": _molar_flows(),
     "volume_flow": _plain(_over(_VOLUME, _TIME) | {"gpm": "gallon/minute", "cfm": "foot**3/minute"}),
     "molar_mass": _plain(_over(_MASS, _AMOUNT)),
+    "molar_volume": _plain(_over(_VOLUME, _AMOUNT)),
     "power": _POWERS,
     "heat_flow": _POWERS,
     "entropy_flow": _plain(
@@ -231,6 +233,7 @@ _USUAL: dict[str, tuple[str, ...]] = {
     "molar_flow": ("mol/s", "kmol/h", "lbmol/h", "Nm3/h", "Sm3/h"),
     "volume_flow": ("m3/s", "m3/h", "L/min", "ft3/min", "cfm", "gpm"),
     "molar_mass": ("g/mol", "kg/kmol", "kg/mol", "lb/lbmol"),
+    "molar_volume": ("cm3/mol", "m3/kmol", "m3/mol", "ft3/lbmol"),
     "power": ("kW", "W", "MW", "hp", "PS", "kJ/h", "Btu/h"),
     "heat_flow": ("kW", "W", "MW", "kJ/h", "Btu/h", "MMBtu/h", "TR"),
     "entropy_flow": ("kW/K", "W/K", "kJ/(h*K)", "Btu/(h*degR)"),

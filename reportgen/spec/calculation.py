@@ -14,13 +14,18 @@ __all__ = [
     "CautionAdjustment",
     "Correlation",
     "Criterion",
+    "CriticalConstants",
     "EquipmentSpec",
     "FluidSpec",
+    "HeatPolynomial",
+    "HeatTable",
     "Input",
+    "Interaction",
     "Limits",
     "Narrative",
     "Reference",
     "Revision",
+    "SecondSource",
     "StateSpec",
     "TrainSpec",
     "Uncertainty",
@@ -54,27 +59,87 @@ class Input:
 
 
 @dataclass(frozen=True)
+class SecondSource:
+    """A second source for states, with the relative difference [1] up to which it agrees; None for the usual one."""
+
+    model: Literal["library", "ideal-gas", "real-fluid", "cubic", "statistical"]
+    tolerance: float | None = None
+
+
+@dataclass(frozen=True)
+class CriticalConstants:
+    """Critical temperature [K] and pressure [Pa], acentric factor [1]."""
+
+    temperature: float
+    pressure: float
+    acentric_factor: float
+    source: str | None = None
+
+
+@dataclass(frozen=True)
+class Interaction:
+    """Binary interaction coefficient k_ij [1] of two substances."""
+
+    first: str
+    second: str
+    coefficient: float
+    source: str | None = None
+
+
+@dataclass(frozen=True)
+class HeatPolynomial:
+    """Specific heat capacity c = Σ a_k (T − about)^k; ``coefficients`` a_k [J/(kg K^(k+1))], ``about`` [K]."""
+
+    coefficients: tuple[float, ...]
+    about: float = 0.0
+
+
+@dataclass(frozen=True)
+class HeatTable:
+    """Specific heat capacities [J/(kg K)] at rising temperatures [K], straight lines between."""
+
+    temperatures: tuple[float, ...]
+    specific_heats: tuple[float, ...]
+
+
+@dataclass(frozen=True)
 class FluidSpec:
-    """One fluid. ``heat_capacity`` [J/(kg K)] is None for a variable one; ``composition`` holds fractions [1]."""
+    """One fluid; each model uses the entries that belong to it.
+
+    ``heat_capacity`` [J/(kg K)] is None for a variable one; ``composition`` holds fractions [1]; ``volume_translation``
+    [m3/mol] by substance; ``density`` [kg/m3], ``specific_heat`` [J/(kg K)] if constant; temperatures in K.
+    ``second_sources`` are those of its states that name none of their own.
+    """
 
     id: str
-    model: Literal["ideal-gas", "real-fluid"]
+    model: Literal["ideal-gas", "real-fluid", "cubic", "incompressible"]
     line: int
     substance: str | None = None
     composition: Mapping[str, float] | None = None
     basis: Literal["mole", "mass"] | None = None
     heat_capacity: float | None = None
     reference_state: str = "published"
+    equation: Literal["Peng-Robinson", "Soave-Redlich-Kwong"] | None = None
+    critical: Mapping[str, CriticalConstants] = field(default_factory=dict)
+    interactions: tuple[Interaction, ...] = ()
+    volume_translation: Literal["Peneloux"] | Mapping[str, float] | None = None
+    density: float | None = None
+    specific_heat: float | HeatPolynomial | HeatTable | None = None
+    phase: Literal["liquid", "solid"] = "liquid"
+    temperature_range: tuple[float, float] | None = None
+    source: str | None = None
+    second_sources: tuple[SecondSource, ...] = ()
 
 
 @dataclass(frozen=True)
 class StateSpec:
-    """One state: which fluid it is of."""
+    """One state: which fluid it is of, and its second sources (those of its fluid where it names none)."""
 
     id: str
     fluid: str
     title: str | None
     line: int
+    second_sources: tuple[SecondSource, ...] = ()
 
 
 @dataclass(frozen=True)

@@ -16,6 +16,7 @@ from reportgen.spec.fluid_tables import check_fluids
 from reportgen.spec.network import check_network
 from reportgen.spec.paths import input_locations, result_dimensions
 from reportgen.spec.schema import MOST_CORRELATIONS, NARRATIVES
+from reportgen.spec.second_sources import check_second_sources
 from reportgen.spec.source import Location, Source, path_of
 from reportgen.spec.states import check_states, givens_of
 
@@ -31,7 +32,8 @@ def check(source: Source, context: Mapping[str, float]) -> None:
     _check_title_block(source)
     _check_confirmed(source)
     check_fluids(source, context)
-    check_states(source)
+    check_states(source, context)
+    check_second_sources(source)
     check_network(source)
     _check_limits(source, context)
     _check_criteria(source, context)
@@ -169,7 +171,7 @@ def _check_criteria(source: Source, context: Mapping[str, float]) -> None:
 
 def _check_cautions(source: Source) -> None:
     for caution in source.table("cautions"):
-        if not re.fullmatch(r"T[0-9]{2}", caution):
+        if not re.fullmatch(r"[TP][0-9]{2}", caution):
             source.report(
                 ("cautions", caution),
                 "This is not the number of a caution.",

@@ -52,6 +52,7 @@ _EXAMPLES = {
     "specific_entropy": "6.5 kJ/(kg*K)",
     "density": "12.5 kg/m3",
     "specific_volume": "0.08 m3/kg",
+    "molar_volume": "3.2 cm3/mol",
     "mass_flow": "5.2 t/h ± 2 %",
     "molar_flow": "1200 Nm3/h",
     "volume_flow": "350 m3/h",

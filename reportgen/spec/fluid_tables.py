@@ -1,54 +1,68 @@
-"""Fluids of the file: what their tables must hold together, and what they are read as."""
+"""Fluids of the file: what their tables must hold together, and what the property models refuse."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+import itertools
+from collections.abc import Callable, Iterable, Mapping
 from typing import Any
 
 from pydantic import TypeAdapter, ValidationError
 
 from reportgen.errors import Fault, InputError
-from reportgen.quantities import Quantity
 from reportgen.spec.calculation import FluidSpec
-from reportgen.spec.fields import QuantityOf
-from reportgen.spec.schema import FluidTable
+from reportgen.spec.fields import QuantityOf, shown
+from reportgen.spec.fluid_schema import FluidTable
+from reportgen.spec.fluid_specs import fluid_spec
 from reportgen.spec.source import Location, Source
 
-__all__ = ["FluidCheck", "ask_the_models", "check_fluids", "fluid_spec"]
+__all__ = ["FluidCheck", "ask_the_models", "check_fluids"]
 
 #: Makes the property model of a fluid, or raises InputError.
 FluidCheck = Callable[[FluidSpec], object]
 
 _FRACTION_TOLERANCE = 1e-6
+_COMPOSED = ("ideal-gas", "cubic")
 
 
 def check_fluids(source: Source, context: Mapping[str, float]) -> None:
-    """Substance or composition, and fractions that add up."""
-    for fluid, node in source.table("fluids").items():
-        if source.text("fluids", fluid, "model") != "ideal-gas":
-            continue
-        has_substance, has_composition = "substance" in node.table, "composition" in node.table
-        either = "either substance or composition with basis"
-        if has_substance and has_composition:
-            both = "Both substance and composition are given."
-            source.report(("fluids", fluid, "composition"), both, at="key", expected=either)
-        elif not has_substance and not has_composition:
-            source.miss(("fluids", fluid), "No substance is given.", expected=either)
-        if has_composition and "basis" not in node.table:
-            source.miss(
-                ("fluids", fluid, "composition"),
-                "The composition does not say what its fractions count.",
-                expected='basis = "mole" or basis = "mass"',
-            )
-        if has_substance and not has_composition and "basis" in node.table:
-            source.report(
-                ("fluids", fluid, "basis"),
-                "A single substance has no basis.",
-                at="key",
-                found="basis",
-                expected="basis with composition only",
-            )
-        _check_sum(source, fluid, context)
+    """Substance or composition, fractions that add up, constants of substances that are there, ranges in order."""
+    for fluid in source.table("fluids"):
+        model = source.text("fluids", fluid, "model")
+        if model in _COMPOSED:
+            _check_composition(source, fluid, context)
+        if model == "cubic":
+            _check_cubic(source, fluid)
+        if model == "incompressible":
+            _check_incompressible(source, fluid, context)
+
+
+# --- composition ----------------------------------------------------------------------------------------------------
+
+
+def _check_composition(source: Source, fluid: str, context: Mapping[str, float]) -> None:
+    node = source.table("fluids")[fluid]
+    has_substance, has_composition = "substance" in node.table, "composition" in node.table
+    either = "either substance or composition with basis"
+    if has_substance and has_composition:
+        both = "Both substance and composition are given."
+        source.report(("fluids", fluid, "composition"), both, at="key", expected=either)
+    elif not has_substance and not has_composition:
+        source.miss(("fluids", fluid), "No substance is given.", expected=either)
+    if has_composition and "basis" not in node.table:
+        source.miss(
+            ("fluids", fluid, "composition"),
+            "The composition does not say what its fractions count.",
+            expected='basis = "mole" or basis = "mass"',
+        )
+    if has_substance and not has_composition and "basis" in node.table:
+        source.report(
+            ("fluids", fluid, "basis"),
+            "A single substance has no basis.",
+            at="key",
+            found="basis",
+            expected="basis with composition only",
+        )
+    _check_sum(source, fluid, context)
 
 
 def _check_sum(source: Source, fluid: str, context: Mapping[str, float]) -> None:
@@ -68,22 +82,116 @@ def _check_sum(source: Source, fluid: str, context: Mapping[str, float]) -> None
         )
 
 
-def fluid_spec(source: Source, name: str, table: Any) -> FluidSpec:
-    """A fluid from its validated table."""
-    line, _ = source.place(("fluids", name), "key")
-    if table.model == "real-fluid":
-        return FluidSpec(name, table.model, line, substance=table.substance, reference_state=table.reference_state)
-    constant = isinstance(table.heat_capacity, Quantity)
-    composition = table.composition and {part: fraction.value for part, fraction in table.composition.items()}
-    return FluidSpec(
-        name,
-        table.model,
-        line,
-        substance=table.substance,
-        composition=composition,
-        basis=table.basis,
-        heat_capacity=table.heat_capacity.value if constant else None,
+# --- cubic equations of state ---------------------------------------------------------------------------------------
+
+
+def _substances_of(source: Source, fluid: str) -> list[str]:
+    """Substances of a cubic fluid as the file names them; none where they cannot be read."""
+    single = source.text("fluids", fluid, "substance")
+    return [single] if single is not None else list(source.table("fluids", fluid, "composition"))
+
+
+def _check_cubic(source: Source, fluid: str) -> None:
+    substances = _substances_of(source, fluid)
+    if not substances:
+        return
+    location = ("fluids", fluid)
+    for key in ("critical", "volume_translation"):
+        for name in source.table(*location, key):
+            _check_substance(source, (*location, key, name), name, substances, at_key=True)
+    node = source.node((*location, "interaction"))
+    pairs: dict[frozenset[str], int] = {}
+    for number, row in enumerate(node.items if node is not None else []):
+        place = (*location, "interaction", number)
+        between = source.texts(*place, "between")
+        known = [_check_substance(source, where, name, substances, at_key=False) for where, name in between]
+        if len(between) != 2 or not all(known):
+            continue
+        first, second = (name for _, name in between)
+        pair = frozenset((first, second))
+        if len(pair) == 1:
+            source.report(between[1][0], "A substance has no interaction with itself.", found=shown(first))
+        elif pair in pairs:
+            source.report(
+                (*place, "between"),
+                f"The coefficient of these two substances is already given at line {pairs[pair]}.",
+                found=f"{first} and {second}",
+                expected="each pair once",
+            )
+        pairs.setdefault(pair, row.line)
+
+
+def _check_substance(source: Source, location: Location, name: str, substances: list[str], *, at_key: bool) -> bool:
+    """Whether a name is one of the substances of its fluid; if not, that is noted."""
+    if name in substances:
+        return True
+    source.report(
+        location,
+        "This substance is not in the fluid.",
+        at="key" if at_key else "value",
+        found=shown(name),
+        expected=" or ".join(f'"{substance}"' for substance in substances[:12]),
+        hint=source.hint(name, substances),
     )
+    return False
+
+
+# --- incompressible -------------------------------------------------------------------------------------------------
+
+
+def _check_incompressible(source: Source, fluid: str, context: Mapping[str, float]) -> None:
+    """A range of temperatures that is one, inside the rows of the specific heat, which rise in temperature."""
+    location = ("fluids", fluid)
+    marker = QuantityOf(("temperature",))
+    node = source.node((*location, "specific_heat"))
+    rows = node.items if node is not None else []
+    temperatures = [
+        marker.read_at(source, (*location, "specific_heat", number, "temperature"), context)
+        for number in range(len(rows))
+    ]
+    for number, (lower, upper) in enumerate(itertools.pairwise(temperatures), start=1):
+        if lower is not None and upper is not None and upper.value <= lower.value:
+            source.report(
+                (*location, "specific_heat", number, "temperature"),
+                "The temperatures of the rows do not rise.",
+                found=f'"{upper.text}" after "{lower.text}"',
+                expected="rows in the order of their temperature, each temperature once",
+            )
+    limits = {key: marker.read_at(source, (*location, key), context) for key in _RANGE}
+    lowest, highest = limits.values()
+    if lowest is not None and highest is not None and lowest.value >= highest.value:
+        source.report(
+            (*location, "maximum_temperature"),
+            "The maximum temperature is not above the minimum temperature.",
+            found=f'"{highest.text}" and "{lowest.text}"',
+            expected="minimum_temperature below maximum_temperature",
+        )
+    if rows:
+        _check_inside_rows(source, location, temperatures, limits)
+        return
+    for key, limit in limits.items():
+        if limit is None and source.node((*location, key)) is None:
+            source.miss(location, f'"{key}" is missing.', expected="the range of temperatures for which the data hold")
+
+
+_RANGE = ("minimum_temperature", "maximum_temperature")
+
+
+def _check_inside_rows(
+    source: Source, location: Location, temperatures: Iterable[Any], limits: Mapping[str, Any]
+) -> None:
+    known = [row.value for row in temperatures if row is not None]
+    for key, limit in limits.items():
+        if limit is not None and known and not min(known) <= limit.value <= max(known):
+            source.report(
+                (*location, key),
+                "The range goes beyond the rows of the specific heat.",
+                found=f'"{limit.text}"',
+                expected=f"{min(known):g} K to {max(known):g} K, or further rows",
+            )
+
+
+# --- what the models refuse -----------------------------------------------------------------------------------------
 
 
 def ask_the_models(source: Source, context: Mapping[str, float], check_fluid: FluidCheck) -> None:
@@ -112,4 +220,4 @@ def _key_of(source: Source, name: str, fault: Fault) -> Location:
         return (*location, "composition", found)
     if named and named[0] in table:
         return (*location, named[0])
-    return (*location, "substance" if "substance" in table else "composition")
+    return next(((*location, key) for key in ("substance", "composition") if key in table), location)

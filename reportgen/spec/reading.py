@@ -17,6 +17,7 @@ from reportgen.spec.calculation import (
     Correlation,
     Criterion,
     EquipmentSpec,
+    FluidSpec,
     Input,
     Limits,
     Narrative,
@@ -27,10 +28,12 @@ from reportgen.spec.calculation import (
     Uncertainty,
 )
 from reportgen.spec.checks import check, criterion_limit
-from reportgen.spec.fluid_tables import FluidCheck, ask_the_models, fluid_spec
+from reportgen.spec.fluid_specs import fluid_spec
+from reportgen.spec.fluid_tables import FluidCheck, ask_the_models
 from reportgen.spec.folder import CALCULATION_FILE, read_bytes, read_text
 from reportgen.spec.narratives import narratives_of
 from reportgen.spec.paths import input_locations, kind_of
+from reportgen.spec.second_sources import second_sources
 from reportgen.spec.source import Location, Source, path_of
 from reportgen.spec.states import fluid_of, givens_of
 from reportgen.spec.toml_text import parse
@@ -78,6 +81,7 @@ class _Builder:
 
     def calculation(self, narratives: Mapping[str, Narrative], files: Mapping[str, bytes]) -> Calculation:
         title = self.document.calculation
+        fluids = {name: fluid_spec(self.source, name, table) for name, table in self.document.fluids.items()}
         return Calculation(
             number=title.number,
             title=title.title,
@@ -93,11 +97,8 @@ class _Builder:
             approver=title.approver,
             narratives=narratives,
             inputs=self.inputs(),
-            fluids={name: fluid_spec(self.source, name, table) for name, table in self.document.fluids.items()},
-            states={
-                name: StateSpec(name, fluid_of(self.source, name) or "", table.title, self.line("states", name))
-                for name, table in self.document.states.items()
-            },
+            fluids=fluids,
+            states={name: self.state(name, table, fluids) for name, table in self.document.states.items()},
             equipment={tag: self.equipment(tag, table) for tag, table in self.document.equipment.items()},
             trains={
                 name: TrainSpec(
@@ -132,6 +133,12 @@ class _Builder:
             files=dict(files),
             find_place=self.source.locate,
         )
+
+    def state(self, name: str, table: Any, fluids: Mapping[str, FluidSpec]) -> StateSpec:
+        fluid = fluid_of(self.source, name) or ""
+        own = second_sources(table.second_source)
+        seconds = fluids[fluid].second_sources if own is None else own
+        return StateSpec(name, fluid, table.title, self.line("states", name), seconds)
 
     def inputs(self) -> dict[str, Input]:
         """Every given quantity with the variables that it fixes."""

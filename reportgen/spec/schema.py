@@ -12,10 +12,9 @@ from typing import Annotated, Any, Literal, Union
 from pydantic import BaseModel, ConfigDict, Field, create_model
 
 from reportgen.balances.kinds import Kind, Parameter, kinds
-from reportgen.names import DIMENSIONS, NAMES
-from reportgen.quantities import Quantity, usual_units
+from reportgen.names import NAMES
+from reportgen.quantities import Quantity
 from reportgen.spec.fields import (
-    Bounds,
     CalendarDate,
     Identifier,
     LongText,
@@ -26,6 +25,8 @@ from reportgen.spec.fields import (
     bounds_for,
     dimensions_for,
 )
+from reportgen.spec.fluid_schema import FluidTable, SecondSourceField, second_source_field
+from reportgen.spec.table import Table, with_unit
 
 __all__ = [
     "FLOWS",
@@ -35,7 +36,6 @@ __all__ = [
     "MOST_ENTRIES",
     "NARRATIVES",
     "STATE_KEYS",
-    "Table",
     "document",
 ]
 
@@ -74,23 +74,7 @@ LATER: dict[str, dict[str, str]] = {
     "states": {"mass": "Closed systems are", "volume": "Closed systems are"},
     "uncertainty": {"draws": "The Monte Carlo method is", "seed": "The Monte Carlo method is"},
     "uncertainty.method": {"monte-carlo": "The Monte Carlo method is"},
-    "fluids.model": {"cubic": "Cubic equations of state are", "incompressible": "Incompressible fluids are"},
 }
-
-
-class Table(BaseModel):
-    """A table of the file: unknown keys are faults, types are not bent."""
-
-    model_config = ConfigDict(strict=True, extra="forbid", frozen=True)
-
-
-def with_unit(text: str, dimensions: tuple[str, ...]) -> str:
-    """A description with the units a value may be written in and the one it is kept in."""
-    units = [unit for dimension in dimensions for unit in usual_units(dimension)]
-    kept = " or ".join(DIMENSIONS[dimension] for dimension in dimensions)
-    if kept == "1":
-        return f"{text} [1]. A number or %."
-    return f"{text} [{kept}]. Units: {', '.join(units)}."
 
 
 def _quantity(name: str, text: str = "", sign: str = "") -> Any:
@@ -144,53 +128,15 @@ class SurroundingsTable(Table):
     )
 
 
-_Fraction = Annotated[Quantity, QuantityOf(("ratio",), Bounds(0.0, 1.0), certain=True)]
-
-
-class IdealGasTable(Table):
-    """A gas with p v = R T."""
-
-    model_config = ConfigDict(
-        json_schema_extra={
-            "oneOf": [{"required": ["substance"]}, {"required": ["composition"]}],
-            "dependentRequired": {"composition": ["basis"], "basis": ["composition"]},
-        }
-    )
-
-    model: Literal["ideal-gas"] = Field(description="Property model: ideal-gas.")
-    substance: ShortText | None = Field(None, description="Substance, as listed by: reportgen fluids.")
-    composition: dict[ShortText, _Fraction] | None = Field(
-        None, description="Fractions [1] of the substances of a mixture; they add up to 1."
-    )
-    basis: Literal["mole", "mass"] | None = Field(None, description="What the fractions of the composition count.")
-    heat_capacity: (
-        Annotated[Quantity | str, QuantityOf(("specific_entropy",), certain=True, words=("variable",))] | None
-    ) = Field(
-        None,
-        description='"variable" with temperature (default), or a constant isobaric heat capacity [J/(kg*K)]. '
-        f"Units: {', '.join(usual_units('specific_entropy'))}.",
-    )
-
-
-class RealFluidTable(Table):
-    """A pure fluid with its published equation of state."""
-
-    model: Literal["real-fluid"] = Field(description="Property model: real-fluid.")
-    substance: ShortText = Field(description="Substance, as listed by: reportgen fluids.")
-    reference_state: ShortText = Field(
-        "published", description="Where enthalpy and entropy are zero; published: as its equation of state has it."
-    )
-
-
-FluidTable = Annotated[IdealGasTable | RealFluidTable, Field(discriminator="model")]
-
-
 class StateBase(Table):
     """A state of a fluid at one place: any two independent quantities, or fewer where equipment gives the rest."""
 
     fluid: Identifier | None = Field(None, description="Name of a table of [fluids].")
     title: ShortText | None = Field(None, description="What the report calls the state.")
     like: Identifier | None = Field(None, description="Name of a state whose givens also hold here.")
+    second_source: SecondSourceField | None = second_source_field(
+        'this state is, in place of that of its fluid ("none": not)'
+    )
 
 
 class LimitsTable(Table):

@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+
+from reportgen.spec.fields import QuantityOf
 from reportgen.spec.schema import FLOWS, INTENSIVE, STATE_KEYS
 from reportgen.spec.source import Source
 
@@ -16,7 +19,7 @@ _DEPENDENT = {
     frozenset({"quality", "superheat"}): "a superheated state has no vapour fraction",
     frozenset({"quality", "subcooling"}): "a subcooled state has no vapour fraction",
 }
-_WITHOUT_SATURATION = ("quality", "superheat", "subcooling")
+_SATURATION = ("quality", "superheat", "subcooling")
 
 
 #: How often a likeness is followed; nobody could check a longer chain on paper.
@@ -54,13 +57,14 @@ def fluid_of(source: Source, state: str) -> str | None:
     return next((fluid for owner in _ancestry(source, state) if (fluid := source.text("states", owner, "fluid"))), None)
 
 
-def check_states(source: Source) -> None:
+def check_states(source: Source, context: Mapping[str, float]) -> None:
     """Fluids, likeness, and that no more is given than can be independent."""
     in_a_circle: set[str] = set()
     for state in source.table("states"):
         _check_likeness(source, state, in_a_circle)
         _check_fluid(source, state)
         _check_intensive(source, state)
+        _check_amount(source, state, context)
         flows = [key for key in source.table("states", state) if key in FLOWS]
         if len(flows) > 1:
             source.report(
@@ -136,7 +140,7 @@ def _check_intensive(source: Source, state: str) -> None:
         return  # all copied: any fault is reported at the state they are copied from
     location = ("states", state, own[min(2, len(own) - 1)] if own else "like")
     listed = ", ".join(key if owner == state else f"{key} (like {owner})" for key, owner in givens.items())
-    if _check_saturation(source, state, own):
+    if _check_meaning(source, state, own):
         return
     for pair, reason in _DEPENDENT.items():
         if pair <= givens.keys():
@@ -160,27 +164,52 @@ def _check_intensive(source: Source, state: str) -> None:
         )
 
 
-def _check_saturation(source: Source, state: str, own: list[str]) -> bool:
-    """What an ideal gas does not have; True when something was reported."""
+def _check_meaning(source: Source, state: str, own: list[str]) -> bool:
+    """What the model of the fluid does not have, or does not leave free; True when something was reported."""
     fluid = fluid_of(source, state)
-    if fluid is None or source.text("fluids", fluid, "model") != "ideal-gas":
+    model = None if fluid is None else source.text("fluids", fluid, "model")
+    if model == "ideal-gas":
+        why, instead = _NOT_IN_AN_IDEAL_GAS, "pressure, temperature or another quantity of a gas; or a real-fluid"
+        dependent, reason = {"temperature", "specific_enthalpy"}, "in an ideal gas one follows from the other"
+    elif model == "incompressible":
+        why, instead = _NOT_IN_AN_INCOMPRESSIBLE, "pressure, temperature, specific_enthalpy or specific_entropy"
+        dependent, reason = {"temperature", "specific_entropy"}, "without compression one follows from the other"
+    else:
         return False
-    wrong = [key for key in own if key in _WITHOUT_SATURATION]
+    wrong = [key for key in own if key in why]
     for key in wrong:
+        source.report(("states", state, key), why[key], at="key", found=key, expected=instead)
+    if not wrong and dependent <= set(own):
+        first, second = sorted(dependent, key=INTENSIVE.index)
         source.report(
-            ("states", state, key),
-            "An ideal gas does not condense.",
+            ("states", state, second),
+            f"{first} and {second} cannot both be given: {reason}.",
             at="key",
-            found=key,
-            expected="pressure, temperature or another quantity of a gas; or a real-fluid",
-        )
-    if not wrong and {"temperature", "specific_enthalpy"} <= set(own):
-        source.report(
-            ("states", state, "specific_enthalpy"),
-            "temperature and specific_enthalpy cannot both be given: in an ideal gas one follows from the other.",
-            at="key",
-            found="temperature, specific_enthalpy",
+            found=f"{first}, {second}",
             expected="two independent quantities, such as pressure and temperature",
         )
         return True
     return bool(wrong)
+
+
+_NOT_IN_AN_IDEAL_GAS = dict.fromkeys(_SATURATION, "An ideal gas does not condense.")
+_NOT_IN_AN_INCOMPRESSIBLE = {
+    **dict.fromkeys(_SATURATION, "An incompressible fluid does not change its phase."),
+    **dict.fromkeys(("density", "specific_volume"), "The density is given with the incompressible fluid."),
+}
+
+
+def _check_amount(source: Source, state: str, context: Mapping[str, float]) -> None:
+    """An amount of substance of a fluid whose molar mass nobody gives."""
+    fluid = fluid_of(source, state)
+    if fluid is None or source.text("fluids", fluid, "model") != "incompressible":
+        return
+    for key in ("molar_flow", "volume_flow"):
+        quantity = QuantityOf(("molar_flow",)).read_at(source, ("states", state, key), context)
+        if quantity is not None:
+            source.report(
+                ("states", state, key),
+                "An incompressible fluid has no molar mass, by which an amount of substance would become a mass.",
+                found=f'"{quantity.text}"',
+                expected="mass_flow, or volume_flow at the conditions of the state",
+            )

@@ -8,7 +8,7 @@ from collections.abc import Mapping, Sequence
 from contextlib import suppress
 from typing import Annotated, Any, Literal, Union, get_args, get_origin
 
-from pydantic import BaseModel, ValidationError
+from pydantic import BaseModel, Tag, ValidationError
 
 from reportgen.errors import Fault, InputError
 from reportgen.spec.fields import QuantityOf, shown
@@ -144,9 +144,10 @@ def _note_choice(source: Source, location: Location, choices: Sequence[str]) -> 
     table = ".".join(str(part) for part in (location[0], location[-1]))
     if isinstance(value, str) and _refuse_later(source, location, table, value, at="value"):
         return
+    key = next((part for part in reversed(location) if isinstance(part, str)), "")
     source.report(
         location,
-        f'This is not a value that "{location[-1]}" can have.',
+        f'This is not a value that "{key}" can have.',
         found=shown(value),
         expected=" or ".join(f'"{choice}"' for choice in choices),
         hint=source.hint(value, choices) if isinstance(value, str) else None,
@@ -200,10 +201,15 @@ def _choices(expected: str) -> list[str]:
 
 
 def _without_tags(tagged: Location) -> tuple[str | int, ...]:
-    """A location of pydantic without the name of the variant that it puts behind equipment and fluids."""
+    """A location of pydantic without the names of variants that it puts behind equipment, fluids and values."""
     if len(tagged) > 2 and tagged[0] in ("equipment", "fluids"):
-        return (*tagged[:2], *tagged[3:])
-    return tuple(tagged)
+        tagged = (*tagged[:2], *tagged[3:])
+    return tuple(part for part in tagged if not _is_tag(part))
+
+
+def _is_tag(part: str | int) -> bool:
+    """Whether a part of a location names one of several forms of a value: such names stand in brackets."""
+    return isinstance(part, str) and part.startswith("(")
 
 
 def _variants(annotation: Any) -> list[Any]:
@@ -218,6 +224,8 @@ def _variants(annotation: Any) -> list[Any]:
 def _step(annotation: Any, part: str | int) -> Any:
     """The annotation one key or index further inside."""
     variants = _variants(annotation)
+    if _is_tag(part):
+        return _form(annotation, part)
     for variant in variants:
         if isinstance(variant, type) and issubclass(variant, BaseModel):
             if len(variants) > 1:
@@ -228,6 +236,17 @@ def _step(annotation: Any, part: str | int) -> Any:
                 return variant.model_fields[str(part)].annotation
         elif get_origin(variant) in (dict, list):
             return get_args(variant)[-1]
+    return None
+
+
+def _form(annotation: Any, tag: str | int) -> Any:
+    """The form of a value that goes by a tag; None when it has no such form."""
+    arguments = get_args(annotation)
+    if get_origin(annotation) is Annotated:
+        tagged = any(isinstance(mark, Tag) and mark.tag == tag for mark in arguments[1:])
+        return annotation if tagged else _form(arguments[0], tag)
+    if get_origin(annotation) in (Union, types.UnionType):
+        return next((found for inner in arguments if (found := _form(inner, tag)) is not None), None)
     return None
 
 
