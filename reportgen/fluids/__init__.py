@@ -9,16 +9,29 @@ Every model has the interface of :class:`fluids.model.Fluid`.
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from importlib import import_module
+from typing import TYPE_CHECKING, Any
 
 from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases.gas import ideal_gas
 from reportgen.fluids.real import catalogue
 
 if TYPE_CHECKING:
+    from reportgen.fluids.incompressibles.making import incompressible
     from reportgen.fluids.real.fluid import RealFluid
 
-__all__ = ["describe", "ideal_gas", "ideal_gas_names", "listing", "names", "real_fluid"]
+__all__ = ["describe", "ideal_gas", "ideal_gas_names", "incompressible", "listing", "names", "real_fluid"]
+
+#: Public names loaded when they are first asked for, with their module: a water state starts without them.
+_LOADED_LATER = {
+    "incompressible": "reportgen.fluids.incompressibles.making",
+}
+
+
+def __getattr__(name: str) -> Any:
+    if name in _LOADED_LATER:
+        return getattr(import_module(_LOADED_LATER[name]), name)
+    raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
 
 
 def real_fluid(name: str, reference_state: str = "published") -> RealFluid:

@@ -14,7 +14,7 @@ from reportgen.errors import Fault
 __all__ = ["FIELDS", "PHASES", "Field", "State"]
 
 #: What ``State.phase`` may hold. The empty text stands where there is no state (NaN given, or a masked fault).
-PHASES = ("liquid", "vapour", "two-phase", "supercritical", "gas", "")
+PHASES = ("liquid", "vapour", "two-phase", "supercritical", "gas", "solid", "")
 
 #: Computes one field and, if it comes at no extra cost, others with it: name -> flat array.
 Fill = Callable[[str], Mapping[str, NDArray[Any]]]
@@ -71,7 +71,7 @@ class State:
     compressibility_factor = Field("Z = p v M/(R T) [1].")
     superheat = Field("T − T_sat(p) [K] of vapour below the critical pressure, else NaN.")
     subcooling = Field("T_sat(p) − T [K] of liquid below the critical pressure, else NaN.")
-    phase = Field('Text: "liquid", "vapour", "two-phase", "supercritical", "gas" (ideal gas), or "" for no state.')
+    phase = Field('"liquid", "vapour", "two-phase", "supercritical", "gas" (ideal gas), "solid", or "" for no state.')
 
     def __init__(
         self,

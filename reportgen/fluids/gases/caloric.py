@@ -6,12 +6,14 @@ table of the same function gives, for all elements at once.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from functools import cached_property
 from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
+
+from reportgen.fluids.inversion import Inverse
 
 __all__ = ["LIMIT_SLACK", "CaloricLaw", "ConstantHeatCapacity", "Nasa9"]
 
@@ -19,11 +21,9 @@ Array = NDArray[np.float64]
 
 #: Nodes of the table in each temperature interval; the bracket of Newton's method is one cell of it.
 _NODES = 128
-_STEPS = 8
 
 #: Relative overstepping of a temperature limit that is put down to rounding.
 LIMIT_SLACK = 1e-12
-_RELATIVE_STEP = 1e-13
 
 
 class CaloricLaw(Protocol):
@@ -46,35 +46,6 @@ class CaloricLaw(Protocol):
 
     def temperature_of_isochoric_entropy(self, entropy: Array, /) -> Array:
         """T [K] where s°(T) − R ln(T/K) [J/(kg*K)] has the value given: the entropy at a known density."""
-
-
-class _Inverse:
-    """T [K] of a function that grows with T, from its values. NaN outside the table's range."""
-
-    def __init__(self, nodes: Array, function: Callable[[Array], Array], derivative: Callable[[Array], Array]) -> None:
-        self._nodes = nodes
-        self._values = function(nodes)
-        self._function = function
-        self._derivative = derivative
-        # A value computed at a limit must lead back to the limit, whatever the last bits are.
-        self._slack = 1e-11 * float(np.ptp(self._values))
-
-    def __call__(self, value: Array, /) -> Array:
-        nodes, values = self._nodes, self._values
-        inside = (value >= values[0] - self._slack) & (value <= values[-1] + self._slack)
-        target = np.where(inside, np.clip(value, values[0], values[-1]), np.nan)
-        upper = np.clip(values.searchsorted(target), 1, len(nodes) - 1)
-        low, high = nodes[upper - 1], nodes[upper]
-        temperature = np.interp(target, values, nodes)
-        for _ in range(_STEPS):
-            step = (target - self._function(temperature)) / self._derivative(temperature)
-            stepped = np.clip(temperature + step, low, high)
-            moved = np.abs(stepped - temperature)
-            temperature = stepped
-            if not np.any(moved > _RELATIVE_STEP * temperature):
-                return temperature
-        unsettled = moved > 1e3 * _RELATIVE_STEP * temperature
-        return np.where(unsettled, np.nan, temperature)
 
 
 class Nasa9:
@@ -139,20 +110,20 @@ class Nasa9:
         return np.unique(np.concatenate(parts))
 
     @cached_property
-    def temperature_of_enthalpy(self) -> _Inverse:
+    def temperature_of_enthalpy(self) -> Inverse:
         """T [K] where h(T) [J/kg] has the value given."""
-        return _Inverse(self._nodes, self.enthalpy, self.heat_capacity)
+        return Inverse(self._nodes, self.enthalpy, self.heat_capacity)
 
     @cached_property
-    def temperature_of_entropy(self) -> _Inverse:
+    def temperature_of_entropy(self) -> Inverse:
         """T [K] where s°(T) [J/(kg*K)] has the value given."""
-        return _Inverse(self._nodes, self.entropy, lambda t: self.heat_capacity(t) / t)
+        return Inverse(self._nodes, self.entropy, lambda t: self.heat_capacity(t) / t)
 
     @cached_property
-    def temperature_of_isochoric_entropy(self) -> _Inverse:
+    def temperature_of_isochoric_entropy(self) -> Inverse:
         """T [K] where s°(T) − R ln(T/K) [J/(kg*K)] has the value given."""
         gas_constant = self._gas_constant
-        return _Inverse(
+        return Inverse(
             self._nodes,
             lambda t: self.entropy(t) - gas_constant * np.log(t),
             lambda t: (self.heat_capacity(t) - gas_constant) / t,
