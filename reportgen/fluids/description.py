@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator, Mapping
+from typing import Any
+
 from reportgen.fluids.gases import catalogue as gas_catalogue
 from reportgen.fluids.gases.gas import ideal_gas
 from reportgen.fluids.real import catalogue
@@ -21,26 +24,25 @@ def describe_real(name: str) -> str:
     data, _ = catalogue.find(name)
     limits = fluid.limits
     lines = [f"{fluid.title} (real fluid)", f"  name          {fluid.substance}"]
-    if data["formula"]:
-        lines.append(f"  formula       {data['formula']}")
-    seen = {fluid.substance.casefold(), data["formula"].casefold()}
-    others = []
-    for alias in data["aliases"]:
-        if alias.casefold() not in seen:
-            seen.add(alias.casefold())
-            others.append(alias)
-    if others:
-        lines.append(f"  other names   {', '.join(others)}")
-    triple, critical = limits.triple_point, limits.critical_point
-    assert triple is not None
+    for heading, text in (
+        ("formula", data["formula"]),
+        ("refrigerant", data["refrigerant"]),
+        ("CAS number", data["cas"]),
+        ("other names", ", ".join(data["aliases"])),
+    ):
+        if text:
+            lines.append(f"  {heading:<14}{text}")
+    lowest, critical = data["lower_end"], limits.critical_point
     assert critical is not None
+    heading = "triple point" if limits.triple_point else "lowest"
     lines += [
         f"  molar mass    {fluid.molar_mass * 1e3:.8g} g/mol",
         f"  temperature   {limits.minimum_temperature:g} K to {limits.maximum_temperature:g} K",
         f"  pressure      up to {limits.maximum_pressure / 1e6:g} MPa",
-        f"  triple point  {triple.temperature:g} K, {triple.pressure:.6g} Pa",
+        f"  {heading:<14}{lowest['temperature']:g} K, {lowest['pressure']:.6g} Pa",
         f"  critical      {critical.temperature:.8g} K, {critical.pressure / 1e6:.7g} MPa, "
         f"{critical.density:.7g} kg/m3",
+        *_melting(data["melting_line"]),
         f"  zeros         {fluid.entropy_zero}",
         *(f"  remark        {remark}" for remark in limits.remarks),
         *(f"  source        {source}" for source in fluid.sources),
@@ -48,24 +50,34 @@ def describe_real(name: str) -> str:
     return "\n".join(lines)
 
 
+def _melting(line: Mapping[str, Any] | None) -> Iterator[str]:
+    """Range of a melting line, as a line of text; nothing without one."""
+    if line:
+        low, high = line["parts"][0]["minimum_temperature"], line["parts"][-1]["maximum_temperature"]
+        yield f"  melting line  {low:g} K to {high:g} K"
+
+
 def list_all() -> str:
     """Every fluid carried with its range and source, as lines of text: real fluids first, then ideal gases."""
-    lines = ["Real fluids (published equation of state)"]
+    lines = [
+        "Real fluids (published equation of state): name, formula, refrigerant number, temperature, pressure, source"
+    ]
     for name in catalogue.names():
-        fluid = RealFluid(name)
-        limits = fluid.limits
+        data, _ = catalogue.find(name)
+        limits = data["limits"]
+        number = data["refrigerant"] if data["refrigerant"] != name else ""
         lines.append(
-            f"  {name:<22}{limits.minimum_temperature:>8.6g} K to {limits.maximum_temperature:>6g} K"
-            f"   up to {limits.maximum_pressure / 1e5:>6g} bar   {_short(fluid.sources[0])}"
+            f"  {name:<29} {data['formula']:<10} {number:<7}"
+            f"{limits['minimum_temperature']:>8.6g} K to {limits['maximum_temperature']:>6g} K"
+            f"{limits['maximum_pressure'] / 1e5:>8g} bar   {_short(catalogue.source_lines(data)[0])}"
         )
     gases = gas_catalogue.names()
     lines += ["", f"Ideal gases ({ideal_gas(gases[0]).sources[0]})"]
     for name in gases:
         gas = ideal_gas(name)
-        limits = gas.limits
+        span = gas.limits
         lines.append(
-            f"  {name:<22}{limits.minimum_temperature:>8.6g} K to {limits.maximum_temperature:>6g} K"
-            f"   {gas.sources[-1]}"
+            f"  {name:<29} {span.minimum_temperature:>8.6g} K to {span.maximum_temperature:>6g} K   {gas.sources[-1]}"
         )
     return "\n".join(lines)
 

@@ -19,10 +19,14 @@ FORMAT = "reportgen-fluid/1"
 
 _FOLDER = Path(__file__).parent.parent / "data"
 
+#: Prefixes that name the family of a refrigerant in place of R, such as HFC-134a.
+_FAMILY = re.compile(r"^(hcfc|hcfo|hfc|hfo|cfc|pfc|hc|fc)(?=\d)")
+_PARTS = re.compile(r"\d+|\D+")
+
 
 def _plain(name: str) -> str:
-    """Name as compared: without case, spaces, hyphens, underscores."""
-    return re.sub(r"[\s_-]+", "", name).casefold()
+    """Name as compared: letters and digits only, without case; a refrigerant's family prefix becomes R."""
+    return _FAMILY.sub("r", re.sub(r"[\W_]+", "", name.casefold()))
 
 
 @cache
@@ -35,29 +39,31 @@ def _read(file: str) -> tuple[dict[str, Any], str]:
 
 
 @cache
-def _files() -> dict[str, str]:
-    """Plain form of each data file's name -> file."""
-    return {_plain(path.stem): path.name for path in sorted(_FOLDER.glob("*.json"))}
+def _index() -> tuple[dict[str, str], dict[str, str], dict[str, list[str]]]:
+    """Canonical name -> file; plain form of every name -> canonical name; plain formula -> canonical names.
 
-
-@cache
-def _aliases() -> dict[str, str]:
-    """Plain form of every name, alias, formula and CAS number -> file of a real fluid."""
-    found: dict[str, str] = {}
-    for file in _files().values():
-        data, _ = _read(file)
-        if data.get("format") == FORMAT:
-            for alias in (data["name"], data["title"], data["formula"], data["cas"], *data["aliases"]):
-                if alias:
-                    found.setdefault(_plain(alias), file)
-    return found
+    From ``names.json``, which the collecting script writes, so that a look-up need not read every data file.
+    """
+    files: dict[str, str] = {}
+    known: dict[str, str] = {}
+    formulas: dict[str, list[str]] = {}
+    for file, entry in _read("names.json")[0]["files"].items():
+        name = entry["name"]
+        files[name] = file
+        for other in (name, *entry["others"]):
+            known.setdefault(_plain(other), name)
+        if entry["formula"]:
+            formulas.setdefault(_plain(entry["formula"]), []).append(name)
+    return files, known, formulas
 
 
 def names() -> tuple[str, ...]:
-    """Canonical names of the real fluids carried, sorted without regard to case."""
-    contents = (_read(file)[0] for file in _files().values())
-    carried = (data["name"] for data in contents if data.get("format") == FORMAT)
-    return tuple(sorted(carried, key=str.casefold))
+    """Canonical names of the real fluids carried, without regard to case, numbers in them by size."""
+
+    def place(name: str) -> list[tuple[bool, int, str]]:
+        return [(not part.isdigit(), int(part) if part.isdigit() else 0, part) for part in _PARTS.findall(name)]
+
+    return tuple(sorted(_index()[0], key=lambda name: place(name.casefold())))
 
 
 def find(name: str) -> tuple[dict[str, Any], str]:
@@ -65,21 +71,35 @@ def find(name: str) -> tuple[dict[str, Any], str]:
 
     Raises
     ------
-    InputError : no such fluid; the hint gives the nearest name.
+    InputError : no such fluid, with the nearest names in the hint; a formula that several fluids share.
     """
+    files, known, formulas = _index()
     plain = _plain(name)
-    file = _files().get(plain)
-    if file is None or _read(file)[0].get("format") != FORMAT:
-        file = _aliases().get(plain)
-    if file is None:
-        near = get_close_matches(plain, _aliases(), n=1, cutoff=0.6)
-        hint = f"Did you mean {_read(_aliases()[near[0]])[0]['name']!r}?" if near else None
-        raise InputError(
-            Fault(
-                "No real fluid of this name is carried.", found=repr(name[:80]), expected=", ".join(names()), hint=hint
-            )
-        )
+    canonical = known.get(plain)
+    if canonical is None:
+        shared = formulas.get(plain, [])
+        if len(shared) != 1:
+            raise InputError(_not_found(name, shared))
+        canonical = shared[0]
+    file = files[canonical]
     return _read(file)[0], file
+
+
+def _not_found(name: str, shared: list[str]) -> Fault:
+    """What to say of a name that is not carried, or of a formula that several fluids share."""
+    found = repr(name[:80])
+    if shared:
+        return Fault("Several real fluids have this formula.", found=found, expected=", ".join(shared))
+    known = _index()[1]
+    plain = _plain(name)
+    near = get_close_matches(plain, known, n=3, cutoff=0.8) or get_close_matches(plain, known, n=1, cutoff=0.6)
+    meant = " or ".join(repr(other) for other in dict.fromkeys(known[match] for match in near))
+    return Fault(
+        "No real fluid of this name is carried.",
+        found=found,
+        expected=f"one of the {len(names())} that `reportgen fluids` lists, by name, formula, number or CAS number",
+        hint=f"Did you mean {meant}?" if meant else None,
+    )
 
 
 def digest(file: str) -> str:

@@ -75,7 +75,7 @@ class RealFluid:
         self._equation = equation
         self._maximum_density: float = data["limits"]["maximum_density"]
         self._solver = DensitySolver(equation, self._curves, data["acentric_factor"], self._maximum_density)
-        self._triple_pressure: float = data["triple_point"]["pressure"]
+        self._triple_pressure: float = data["lower_end"]["pressure"]
         self._flash = PressureFlash(
             equation,
             self._curves,

@@ -116,6 +116,7 @@ class Helmholtz:
         self._non_analytic = [NonAnalytic(term, dtype) for term in residual if term["kind"] == NON_ANALYTIC]
         total = ideal_sum(list(ideal), reducing_temperature)
         self._constant, self._linear, self._logarithm = total.constant, total.linear, total.logarithm
+        self._tau_logarithm = total.tau_logarithm
         powers = np.array(total.powers, dtype=dtype).reshape(-1, 2, 1)
         self._power_n, self._power_t = powers[:, 0], powers[:, 1]
         einstein = np.array(total.einstein, dtype=dtype).reshape(-1, 4, 1)
@@ -140,6 +141,12 @@ class Helmholtz:
         value = np.log(delta) + (self._constant + self._linear * tau + self._logarithm * log_tau)
         first = self._linear * tau + self._logarithm
         second = np.full_like(tau, -self._logarithm)
+        if self._tau_logarithm:
+            rising = self._tau_logarithm * tau
+            second += rising
+            rising = rising * log_tau
+            value += rising
+            first += rising + self._tau_logarithm * tau
         if self._power_n.size:
             terms = self._power_n * np.exp(self._power_t * log_tau)
             value += _sum(terms, axis=0)

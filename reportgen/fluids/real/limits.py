@@ -23,19 +23,27 @@ _ROUNDING = 1e-9
 #: Least pressure [Pa] and density [kg/m3] taken: far below any triple point, and far above where numbers underflow.
 _LOWEST_PRESSURE = 1e-12
 _LOWEST_DENSITY = 1e-18
+#: What the lower end of most ranges is, in the words of the data files; others have no ``Limits.triple_point``.
+TRIPLE_POINT = "triple point"
 
 
 def limits_of(data: Mapping[str, Any]) -> Limits:
     """Limits from a data file."""
-    limits, critical, triple = data["limits"], data["critical_point"], data["triple_point"]
+    limits, critical, lowest = data["limits"], data["critical_point"], data["lower_end"]
     remarks = []
     published = limits["published_maximum_temperature"]
-    extrapolated = published < limits["maximum_temperature"]
+    extrapolated = published is not None and published < limits["maximum_temperature"]
     if extrapolated:
         remarks.append(
             f"The publication claims validity up to {published:g} K; from there to "
             f"{limits['maximum_temperature']:g} K the equation is extrapolated."
         )
+    if published is None:
+        remarks.append("What range the publication itself claims is not recorded here.")
+    if lowest["is"] != TRIPLE_POINT:
+        remarks.append(f"The lowest temperature is the {lowest['is']}, not the triple point.")
+    if data["remark"]:
+        remarks.append(data["remark"])
     if data["melting_line"]:
         remarks.append("Bounded by the melting line: states under it are refused.")
     else:
@@ -49,7 +57,7 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
         minimum_temperature=float(limits["minimum_temperature"]),
         maximum_temperature=float(limits["maximum_temperature"]),
         maximum_pressure=float(limits["maximum_pressure"]),
-        triple_point=Point(triple["temperature"], triple["pressure"]),
+        triple_point=Point(lowest["temperature"], lowest["pressure"]) if lowest["is"] == TRIPLE_POINT else None,
         critical_point=Point(critical["temperature"], critical["pressure"], critical["density"]),
         published_maximum_temperature=float(published) if extrapolated else None,
         remarks=tuple(remarks),
@@ -82,7 +90,12 @@ class Guard:
     def __init__(self, title: str, limits: Limits, melting_line: Mapping[str, Any] | None) -> None:
         self._title = title
         self._limits = limits
+        self._lowest = TRIPLE_POINT if limits.triple_point else "lower end of its range"
         self.melting_line = MeltingLine(melting_line) if melting_line else None
+
+    @property
+    def _no_saturation(self) -> str:
+        return "no liquid there, so no saturation" if self._limits.triple_point else "no saturation is carried there"
 
     @property
     def _between(self) -> str:
@@ -108,7 +121,7 @@ class Guard:
         if inside.all():
             return
         cold = temperature < low * (1 - _ROUNDING)
-        self._reject(cold, elements, "temperature", temperature, f"below the minimum, {low:g} K (triple point),")
+        self._reject(cold, elements, "temperature", temperature, f"below the minimum, {low:g} K ({self._lowest}),")
         self._reject(~cold & ~inside, elements, "temperature", temperature, f"above the maximum, {high:g} K,")
 
     def pressure(self, pressure: FloatArray, elements: Elements) -> None:
@@ -163,7 +176,7 @@ class Guard:
             elements,
             "pressure",
             pressure,
-            f"below that of the triple point, {in_words('pressure', triple, 6)}: no liquid there, so no saturation",
+            f"below that of the {self._lowest}, {in_words('pressure', triple, 6)}: {self._no_saturation}",
         )
         self._reject(
             pressure > top * (1 + _ROUNDING),
@@ -181,7 +194,7 @@ class Guard:
             elements,
             "temperature",
             temperature,
-            f"below the triple point, {low:g} K: no liquid there, so no saturation",
+            f"below the {self._lowest}, {low:g} K: {self._no_saturation}",
         )
         self._reject(
             temperature > top * (1 + _ROUNDING),
@@ -255,7 +268,7 @@ class Guard:
         """Pressure [Pa] and another property [SI] of a state below the lowest temperature."""
         return Fault(
             f"{self._title} at {in_words('pressure', pressure)} with {_value(name, value)} would be below the minimum "
-            f"temperature, {self._limits.minimum_temperature:g} K (triple point), or solid.",
+            f"temperature, {self._limits.minimum_temperature:g} K ({self._lowest}), or solid.",
             found=_value(name, value),
         )
 

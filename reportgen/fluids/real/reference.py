@@ -44,12 +44,12 @@ def zero_of(name: str, data: Mapping[str, Any], equation: Helmholtz, curves: Sat
             )
         )
     temperature, enthalpy, entropy, words = known
-    triple, critical = data["triple_point"], data["critical_point"]
+    lowest, critical = data["lower_end"], data["critical_point"]
     if temperature is None:
-        exists = triple["pressure"] <= _ATMOSPHERE < critical["pressure"]
+        exists = lowest["pressure"] <= _ATMOSPHERE < critical["pressure"]
         where = f"{_ATMOSPHERE:g} Pa"
     else:
-        exists = triple["temperature"] <= temperature < critical["temperature"]
+        exists = lowest["temperature"] <= temperature < critical["temperature"]
         where = f"{temperature:g} K"
     if not exists:
         raise InputError(

@@ -77,6 +77,15 @@ def _lemmon_2005(term: Columns) -> list[Product]:
     ]
 
 
+def _double_exponential(term: Columns) -> list[Product]:
+    """``n δ^d τ^t exp(−g_δ δ^l_δ − g_τ τ^l_τ)``."""
+    names = ("n", "d", "t", "density_rate", "density_power", "temperature_rate", "temperature_power")
+    return [
+        Product(n, Factor(d, rate=g_d, power=l_d), Factor(t, rate=g_t, power=l_t))
+        for n, d, t, g_d, l_d, g_t, l_t in zip(*(term[name] for name in names), strict=True)
+    ]
+
+
 #: Separable kinds of residual terms.
 RESIDUAL_KINDS: dict[str, Callable[[Columns], list[Product]]] = {
     "power": _power,
@@ -84,6 +93,7 @@ RESIDUAL_KINDS: dict[str, Callable[[Columns], list[Product]]] = {
     "gaussian": _gaussian,
     "gao-b": _gao_b,
     "lemmon-2005": _lemmon_2005,
+    "double-exponential": _double_exponential,
 }
 
 
@@ -97,12 +107,13 @@ def residual_products(terms: list[Columns]) -> list[Product]:
 
 
 class IdealSum:
-    """Ideal part as one sum: φ° = ln δ + c₀ + c₁τ + c₂ ln τ + Σ n τ^t + Σ n ln(c + d e^(−θτ)), θ > 0."""
+    """Ideal part as one sum: φ° = ln δ + c₀ + c₁τ + (c₂ + c₃τ) ln τ + Σ n τ^t + Σ n ln(c + d e^(−θτ)), θ > 0."""
 
     def __init__(self) -> None:
         self.constant = 0.0
         self.linear = 0.0
         self.logarithm = 0.0
+        self.tau_logarithm = 0.0
         self.powers: list[tuple[float, float]] = []
         self.einstein: list[tuple[float, float, float, float]] = []
 
@@ -155,13 +166,27 @@ def _planck_einstein_generalized(total: IdealSum, term: Columns, reducing_temper
         total.add_einstein(n, -t, c, d)
 
 
+def _aly_lee(total: IdealSum, term: Columns, reducing_temperature: float) -> None:
+    """c_p°/R = c₀ + c₁ [(c₂/T)/sinh(c₂/T)]² + c₃ [(c₄/T)/cosh(c₄/T)]², the constant counted from T₀ [K].
+
+    With x = c/T, x²/sinh² x is that of ln(1 − e^(−2x)), and −x²/cosh² x that of ln(1 + e^(−2x)): Aly and Lee, Fluid
+    Phase Equilib. 6 (1981) 169, doi:10.1016/0378-3812(81)85002-9.
+    """
+    constant, sinh, sinh_temperature, cosh, cosh_temperature = term["c"]
+    _cp0_constant(total, {"c": constant, "T0": term["T0"]}, reducing_temperature)
+    if sinh:
+        total.add_einstein(sinh, 2 * sinh_temperature / reducing_temperature)
+    if cosh:
+        total.add_einstein(-cosh, 2 * cosh_temperature / reducing_temperature, 1.0, 1.0)
+
+
 def _cp0_constant(total: IdealSum, term: Columns, reducing_temperature: float) -> None:
     """c_p°/R = c, counted from the temperature T₀ [K]."""
     _cp0_polynomial(total, {"c": [term["c"]], "t": [0.0], "T0": term["T0"]}, reducing_temperature)
 
 
 def _cp0_polynomial(total: IdealSum, term: Columns, reducing_temperature: float) -> None:
-    """c_p°/R = Σ c T^t (t ≠ −1), counted from the temperature T₀ [K]."""
+    """c_p°/R = Σ c T^t, counted from the temperature T₀ [K]."""
     start = term["T0"]
     for c, t in zip(term["c"], term["t"], strict=True):
         ratio = start / reducing_temperature
@@ -171,7 +196,10 @@ def _cp0_polynomial(total: IdealSum, term: Columns, reducing_temperature: float)
             total.linear -= c * ratio
             total.logarithm += c
         elif t == -1:
-            raise ValueError("A heat capacity term with T^-1 is not carried.")
+            # c [τ/T_r ln(T_r/(τ T₀)) + τ/T_r − 1/T₀]
+            total.tau_logarithm -= c / reducing_temperature
+            total.linear += c / reducing_temperature * (1.0 - math.log(ratio))
+            total.constant -= c / start
         else:
             total.add_power(-c * reducing_temperature**t / (t * (t + 1)), -t)
             total.constant += c * start**t / t
@@ -186,6 +214,7 @@ IDEAL_KINDS: dict[str, Callable[[IdealSum, Columns, float], None]] = {
     "planck-einstein": _planck_einstein,
     "planck-einstein-temperature": _planck_einstein_temperature,
     "planck-einstein-generalized": _planck_einstein_generalized,
+    "heat-capacity-aly-lee": _aly_lee,
     "heat-capacity-constant": _cp0_constant,
     "heat-capacity-polynomial": _cp0_polynomial,
 }

@@ -14,8 +14,9 @@ from reportgen.errors import InputError, RangeError
 from reportgen.fluids import ideal_gas, real_fluid
 from reportgen.fluids.model import Fluid
 from reportgen.fluids.state import FIELDS
+from tests.fluids.real import SAMPLE
 
-NAMES = fluids.names()
+NAMES = SAMPLE
 WATER = real_fluid("water")
 
 
@@ -568,7 +569,7 @@ class TestReferenceStates:
 
 class TestCatalogue:
     def test_names(self) -> None:
-        assert len(NAMES) >= 10
+        assert len(fluids.names()) >= 130
         assert {
             "water",
             "carbon dioxide",
@@ -580,7 +581,7 @@ class TestCatalogue:
             "ammonia",
             "R134a",
             "air",
-        } <= {*NAMES}
+        } <= {*fluids.names()}
 
     def test_aliases_formulas_and_numbers(self) -> None:
         for alias, name in (
@@ -596,7 +597,7 @@ class TestCatalogue:
     def test_unknown_names_get_the_nearest(self) -> None:
         with pytest.raises(InputError, match="Did you mean 'ammonia'"):
             real_fluid("amonia")
-        with pytest.raises(InputError, match="Would do: air, ammonia"):
+        with pytest.raises(InputError, match="`reportgen fluids` lists"):
             real_fluid("../../etc/passwd")
 
     @pytest.mark.parametrize("name", NAMES)

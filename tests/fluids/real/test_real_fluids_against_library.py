@@ -11,7 +11,7 @@ from typing import Any
 import numpy as np
 import pytest
 
-from reportgen.fluids import names, real_fluid
+from reportgen.fluids import real_fluid
 from reportgen.fluids.real.fluid import RealFluid
 
 library = pytest.importorskip("CoolProp.CoolProp")
@@ -61,7 +61,7 @@ def points(fluid: RealFluid, seed: int) -> tuple[np.ndarray, np.ndarray]:
     return pressure, temperature
 
 
-@pytest.mark.parametrize("name", names())
+@pytest.mark.parametrize("name", LIBRARY_NAMES)
 def test_whole_range_of_pressure_and_temperature(name: str) -> None:
     fluid = real_fluid(name)
     state, add_h, add_s = reference(fluid)
@@ -87,7 +87,7 @@ def test_whole_range_of_pressure_and_temperature(name: str) -> None:
     assert (worst < 1e-7).all(), worst
 
 
-@pytest.mark.parametrize("name", names())
+@pytest.mark.parametrize("name", LIBRARY_NAMES)
 def test_properties_from_temperature_and_density(name: str) -> None:
     fluid = real_fluid(name)
     state, add_h, add_s = reference(fluid)
@@ -129,7 +129,7 @@ def test_properties_from_temperature_and_density(name: str) -> None:
         assert worst < bar, (field, worst)
 
 
-@pytest.mark.parametrize("name", names())
+@pytest.mark.parametrize("name", LIBRARY_NAMES)
 def test_inside_and_along_the_dome(name: str) -> None:
     fluid = real_fluid(name)
     state, add_h, add_s = reference(fluid)
@@ -162,7 +162,7 @@ def test_inside_and_along_the_dome(name: str) -> None:
     assert (worst < 1e-7).all(), worst
 
 
-@pytest.mark.parametrize("name", [name for name in names() if name != "air"])
+@pytest.mark.parametrize("name", [name for name in LIBRARY_NAMES if name != "air"])
 def test_phases_are_in_equilibrium_up_to_the_critical_point(name: str) -> None:
     """Where the library is no measure: equal pressure and equal Gibbs energy by the equation itself.
 
