@@ -126,7 +126,7 @@ def cantera_phase(keys: tuple[str, ...]) -> cantera.Solution:
     return cantera.Solution(thermo="ideal-gas", species=species)
 
 
-@pytest.mark.parametrize(("fuel", "ratio"), [("CH4", 0.9), ("CH4", 1.4), ("H2", 1.0), ("NH3", 1.2)])
+@pytest.mark.parametrize(("fuel", "ratio"), [("CH4", 0.9), ("CH4", 1.4), ("H2", 0.95), ("NH3", 1.2)])
 def test_composition_agrees_with_another_method_on_the_same_data(fuel: str, ratio: float) -> None:
     flue = gas(fuel, "equilibrium")
     phase = cantera_phase(flue.species)
