@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from reportgen.errors import Fault
 
-__all__ = ["FIELDS", "PHASES", "Field", "State"]
+__all__ = ["FIELDS", "PHASES", "Field", "SingleState", "State"]
 
 #: What ``State.phase`` may hold. The empty text stands where there is no state (NaN given, or a masked fault).
 PHASES = ("liquid", "vapour", "two-phase", "supercritical", "gas", "solid", "")
@@ -118,6 +118,49 @@ class State:
         with np.printoptions(precision=6, threshold=6):
             return f"State(temperature={self.temperature!r}, pressure={self.pressure!r}, phase={self.phase!r})"
 
+
+class SingleState(State):
+    """A State of shape () that is kept as plain numbers: arrays are made only where they are asked for.
+
+    Parameters
+    ----------
+    values : fields known already.
+    fill : as for State, with plain numbers.
+    """
+
+    __slots__ = ()
+
+    def __init__(self, values: dict[str, Any], fill: Callable[[str], Mapping[str, Any]]) -> None:
+        _set_values(self, values)
+        _set_fill(self, fill)
+        _set_shape(self, ())
+        _set_faults(self, _NO_FAULTS)
+
+    def _read(self, name: str) -> Any:
+        values: dict[str, Any] = self._values  # type: ignore[attr-defined]
+        found = values.get(name)
+        if found is None:
+            for key, value in self._fill(name).items():  # type: ignore[attr-defined]
+                values.setdefault(key, value)
+            found = values[name]
+        return np.str_(found) if name == "phase" else np.float64(found)
+
+    def flat(self, name: str) -> NDArray[Any]:
+        """Field ``name`` as a read-only array of one element."""
+        if name not in FIELDS:
+            raise AttributeError(f"This State has no {name}.")
+        array = np.array([self._read(name)], dtype=_TEXT if name == "phase" else np.float64)
+        array.flags.writeable = False
+        return array
+
+
+#: How the slots of a State are set, which refuses to have its attributes set.
+_set_values, _set_fill, _set_shape, _set_faults = (
+    vars(State)[name].__set__ for name in ("_values", "_fill", "_shape", "faults")
+)
+_NO_FAULTS: Mapping[int, Fault] = MappingProxyType({})
+#: Type of the array of phases.
+_TEXT = "<U13"
 
 #: Names of all fields, in the order of the class.
 FIELDS: tuple[str, ...] = tuple(name for name, value in vars(State).items() if isinstance(value, Field))

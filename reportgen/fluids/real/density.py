@@ -39,7 +39,7 @@ class DensitySolver:
         self._equation = equation
         self._curves = curves
         self.maximum_density = maximum_density
-        self._kappa = 0.37464 + 1.54226 * acentric_factor - 0.26992 * acentric_factor**2
+        self.kappa = 0.37464 + 1.54226 * acentric_factor - 0.26992 * acentric_factor**2
 
     def solve(
         self, temperature: FloatArray, pressure: FloatArray, liquid: NDArray[np.bool_]
@@ -105,7 +105,7 @@ class DensitySolver:
         scale = pressure / self._curves.top_pressure
         ratio = temperature / top
         b = 0.07780 * scale / ratio
-        a = 0.45724 * scale / ratio**2 * (1 + self._kappa * (1 - np.sqrt(ratio))) ** 2
+        a = 0.45724 * scale / ratio**2 * (1 + self.kappa * (1 - np.sqrt(ratio))) ** 2
         # Z³ + c2 Z² + c1 Z + c0 = 0 by Cardano's formula
         c2, c1, c0 = b - 1, a - 3 * b * b - 2 * b, b * (b * b + b - a)
         third = c2 / 3

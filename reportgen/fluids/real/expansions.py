@@ -24,13 +24,13 @@ class Expansions:
     """
 
     def __init__(self, edges: Sequence[float], coefficients: Sequence[Any]) -> None:
-        self._edges = np.array(edges)
-        self._inner = self._edges[1:-1]
-        self._middle = (self._edges[1:] + self._edges[:-1]) / 2
-        self._half = (self._edges[1:] - self._edges[:-1]) / 2
+        self.edges = np.array(edges)
+        self._inner = self.edges[1:-1]
+        self._middle = (self.edges[1:] + self.edges[:-1]) / 2
+        self._half = (self.edges[1:] - self.edges[:-1]) / 2
         # (intervals, functions, n + 1): one gather fetches all that an element needs
-        self._coefficients = np.ascontiguousarray(np.moveaxis(np.array(coefficients), 0, 1))
-        self._orders = np.arange(self._coefficients.shape[-1], dtype=np.float64)
+        self.coefficients = np.ascontiguousarray(np.moveaxis(np.array(coefficients), 0, 1))
+        self._orders = np.arange(self.coefficients.shape[-1], dtype=np.float64)
 
     def __call__(self, x: FloatArray) -> FloatArray:
         """Values of all functions, in their own units, at x [1] of shape (N,): shape (functions, N). Outside the edges
@@ -40,5 +40,5 @@ class Expansions:
         place = (x - self._middle[piece]) / self._half[piece]
         angle = np.arccos(np.minimum(np.maximum(place, -1.0), 1.0))
         polynomials = np.cos(angle[:, None] * self._orders)
-        values: FloatArray = np.einsum("nfk,nk->fn", self._coefficients[piece], polynomials)
+        values: FloatArray = np.einsum("nfk,nk->fn", self.coefficients[piece], polynomials)
         return values

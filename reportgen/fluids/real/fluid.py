@@ -18,6 +18,7 @@ from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.limits import Guard, limits_of
 from reportgen.fluids.real.reference import zero_of
 from reportgen.fluids.real.saturation import SaturationCurves
+from reportgen.fluids.real.scalar.few import FewStates
 from reportgen.fluids.real.searches import Found, SearchFlash
 from reportgen.fluids.real.solution import Solution
 from reportgen.fluids.state import State
@@ -94,6 +95,9 @@ class RealFluid:
             self.limits.maximum_pressure,
             self._triple_pressure,
         )
+        self._few = FewStates(
+            equation, self._curves, self._solver, self.limits, self._triple_pressure, self._guard.melting_line
+        )
         self._pairs: dict[tuple[str, str], Callable[[FloatArray, FloatArray, Elements], Solution]] = {
             ("pressure", "temperature"): self._pressure_temperature,
             ("pressure", "specific_enthalpy"): self._pressure_enthalpy,
@@ -121,6 +125,10 @@ class RealFluid:
         give the quality.
         """
         check_errors(errors)
+        return self._few.at(pair) or self._at_once(errors, pair)
+
+    def _at_once(self, errors: Errors, pair: Mapping[str, ArrayLike]) -> State:
+        """The state of any number of elements, by the vectorised branch."""
         given = read_pair(pair, self._pairs, self.title)
         size = given.first.size
         known = ~(np.isnan(given.first) | np.isnan(given.second))
@@ -160,6 +168,9 @@ class RealFluid:
         InputError : not exactly one of the two given.
         RangeError : below the triple point or above the critical point (``errors="raise"``).
         """
+        few = self._few.saturation(temperature, pressure)
+        if few is not None:
+            return few
         if (temperature is None) == (pressure is None):
             raise InputError(Fault("Saturation is fixed by a temperature or a pressure, one of the two."))
         if temperature is not None:

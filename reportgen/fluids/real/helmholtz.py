@@ -104,6 +104,8 @@ class Helmholtz:
         self.reducing_density = reducing_density
         self.gas_constant = gas_constant
         products = residual_products(list(residual))
+        self.products = tuple(products)
+        self.singular_terms = tuple(term for term in residual if term["kind"] == NON_ANALYTIC)
         self._density_factors = FactorSet([product.density_factor for product in products], dtype)
         self._temperature_factors = FactorSet([product.temperature_factor for product in products], dtype)
         weights = np.zeros((self._density_factors.count, self._temperature_factors.count), dtype=dtype)
@@ -113,9 +115,8 @@ class Helmholtz:
             weights[row, column] += dtype(product.coefficient)
         self._weights = weights
         self._block = max(1, _SINGLE_THREAD_PRODUCT // weights.size)
-        self._non_analytic = [NonAnalytic(term, dtype) for term in residual if term["kind"] == NON_ANALYTIC]
-        total = ideal_sum(list(ideal), reducing_temperature)
-        self._constant, self._linear, self._logarithm = total.constant, total.linear, total.logarithm
+        self._non_analytic = [NonAnalytic(term, dtype) for term in self.singular_terms]
+        self.ideal_sum = total = ideal_sum(list(ideal), reducing_temperature)
         self._tau_logarithm = total.tau_logarithm
         powers = np.array(total.powers, dtype=dtype).reshape(-1, 2, 1)
         self._power_n, self._power_t = powers[:, 0], powers[:, 1]
@@ -137,10 +138,11 @@ class Helmholtz:
 
     def ideal(self, delta: FloatArray, tau: FloatArray) -> Reduced:
         """φ° and its scaled derivatives [1] at δ, τ [1] of shape (N,)."""
+        constant, linear, logarithm = self.ideal_sum.constant, self.ideal_sum.linear, self.ideal_sum.logarithm
         log_tau = np.log(tau)
-        value = np.log(delta) + (self._constant + self._linear * tau + self._logarithm * log_tau)
-        first = self._linear * tau + self._logarithm
-        second = np.full_like(tau, -self._logarithm)
+        value = np.log(delta) + (constant + linear * tau + logarithm * log_tau)
+        first = linear * tau + logarithm
+        second = np.full_like(tau, -logarithm)
         if self._tau_logarithm:
             rising = self._tau_logarithm * tau
             second += rising
@@ -173,8 +175,8 @@ class Helmholtz:
 
     def shift(self, enthalpy: float, entropy: float) -> None:
         """Raise all enthalpies [J/kg] and entropies [J/(kg*K)] by constants: adds τΔh/(R T_r) − Δs/R to φ°."""
-        self._linear += enthalpy / (self.gas_constant * self.reducing_temperature)
-        self._constant -= entropy / self.gas_constant
+        self.ideal_sum.linear += enthalpy / (self.gas_constant * self.reducing_temperature)
+        self.ideal_sum.constant -= entropy / self.gas_constant
 
     def isotherm(self, temperature: FloatArray) -> Isotherm:
         """What depends on temperature T [K] alone, for repeated evaluation at different densities."""

@@ -15,16 +15,17 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-__all__ = ["NonAnalytic"]
+__all__ = ["CUTOFF", "SMALLEST_DISTANCE", "NonAnalytic"]
 
 FloatArray = NDArray[Any]
 
 #: Where nδψ is below e^(−33) = 5e-15 the terms are left out: next to 1, the compressibility factor of the ideal gas,
 #: they change a pressure by less than 1e-13 on the dilute side and by less than 1e-12 on the dense one.
-_CUTOFF = 33.0
+CUTOFF = 33.0
 
 #: Nearest approach to the critical isochore and to the critical point, where higher derivatives are singular.
-_SMALLEST = {np.dtype(np.float64): 1e-30, np.dtype(np.longdouble): 1e-36}
+SMALLEST_DISTANCE = 1e-30
+_SMALLEST = {np.dtype(np.float64): SMALLEST_DISTANCE, np.dtype(np.longdouble): 1e-36}
 
 
 class NonAnalytic:
@@ -53,7 +54,7 @@ class NonAnalytic:
         self._bend_distance = self._slope_distance * (2 * a - 1)
         self._bend_square = 2 * (big_a / beta) ** 2
         self._least_c, self._least_d = float(big_c.min()), float(big_d.min())
-        self._cutoff = _CUTOFF + math.log(float(np.abs(self._n).max()))
+        self._cutoff = CUTOFF + math.log(float(np.abs(self._n).max()))
         self._smallest = _SMALLEST[np.dtype(dtype)]
 
     def matters(self, delta: FloatArray, tau: FloatArray) -> NDArray[np.intp]:

@@ -51,43 +51,43 @@ class SaturationCurves:
         if self.pseudo_pure:
             names.append("log_dew_pressure")
         self.top_temperature = top_temperature
-        self._curves = Expansions(data["edges"], [data[name] for name in names])
-        self._boiling = Expansions(data["boiling"]["edges"], [data["boiling"]["root"]])
-        self._condensing = self._boiling
+        self.curves = Expansions(data["edges"], [data[name] for name in names])
+        self.boiling = Expansions(data["boiling"]["edges"], [data["boiling"]["root"]])
+        self.condensing = self.boiling
         if self.pseudo_pure:
-            self._condensing = Expansions(data["condensing"]["edges"], [data["condensing"]["root"]])
-        self._log_top_pressure = float(self._curves(np.zeros(1))[0, 0])
-        self.top_pressure = float(np.exp(self._log_top_pressure))
+            self.condensing = Expansions(data["condensing"]["edges"], [data["condensing"]["root"]])
+        self.log_top_pressure = float(self.curves(np.zeros(1))[0, 0])
+        self.top_pressure = float(np.exp(self.log_top_pressure))
 
     def at_temperature(self, temperature: FloatArray) -> Saturated:
         """Saturated phases at T [K] of shape (N,), T at most T_top."""
-        found = self._curves(np.sqrt(np.maximum(1 - temperature / self.top_temperature, 0)))
+        found = self.curves(np.sqrt(np.maximum(1 - temperature / self.top_temperature, 0)))
         bubble = np.exp(found[0])
         dew = np.exp(found[3]) if self.pseudo_pure else bubble
         return Saturated(temperature, temperature, bubble, dew, found[1], np.exp(found[2]))
 
     def at_pressure(self, pressure: FloatArray) -> Saturated:
         """Saturated phases at p [Pa] of shape (N,), p at most the pressure at T_top."""
-        bubble_root = self._boiling(self._depth(pressure))[0]
+        bubble_root = self.boiling(self._depth(pressure))[0]
         bubble = self.top_temperature * (1 - bubble_root * bubble_root)
-        found = self._curves(bubble_root)
+        found = self.curves(bubble_root)
         if not self.pseudo_pure:
             return Saturated(bubble, bubble, pressure, pressure, found[1], np.exp(found[2]))
-        dew_root = self._condensing(self._depth(pressure))[0]
+        dew_root = self.condensing(self._depth(pressure))[0]
         dew = self.top_temperature * (1 - dew_root * dew_root)
-        return Saturated(bubble, dew, pressure, pressure, found[1], np.exp(self._curves(dew_root)[2]))
+        return Saturated(bubble, dew, pressure, pressure, found[1], np.exp(self.curves(dew_root)[2]))
 
     def temperatures(self, pressure: FloatArray) -> tuple[FloatArray, FloatArray]:
         """Bubble and dew temperature [K] at p [Pa] of shape (N,)."""
         depth = self._depth(pressure)
-        root = self._boiling(depth)[0]
+        root = self.boiling(depth)[0]
         bubble = self.top_temperature * (1 - root * root)
         if not self.pseudo_pure:
             return bubble, bubble
-        root = self._condensing(depth)[0]
+        root = self.condensing(depth)[0]
         return bubble, self.top_temperature * (1 - root * root)
 
     def _depth(self, pressure: FloatArray) -> FloatArray:
         """y = (ln(p_top/p))^(1/2), the variable of the inverse expansions."""
-        depth: FloatArray = np.sqrt(np.maximum(self._log_top_pressure - np.log(pressure), 0))
+        depth: FloatArray = np.sqrt(np.maximum(self.log_top_pressure - np.log(pressure), 0))
         return depth

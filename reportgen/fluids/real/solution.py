@@ -12,11 +12,12 @@ from numpy.typing import NDArray
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.saturation import SaturationCurves
 
-__all__ = ["Solution"]
+__all__ = ["CALORIC", "Solution"]
 
 FloatArray = NDArray[np.float64]
 
-_CALORIC = (
+#: Fields that the equation gives together.
+CALORIC = (
     "specific_enthalpy",
     "specific_entropy",
     "specific_internal_energy",
@@ -79,7 +80,7 @@ class Solution:
 
     def fill(self, name: str) -> Mapping[str, NDArray[Any]]:
         """The field ``name`` and those that come with it."""
-        if name in _CALORIC:
+        if name in CALORIC:
             return self._caloric()
         if name == "specific_volume":
             return {name: 1 / self.density}
@@ -123,7 +124,7 @@ class Solution:
             s[mixed] = phases.entropy[:n] + x * (phases.entropy[n:] - phases.entropy[:n])
             cv[mixed] = cp[mixed] = w[mixed] = np.nan
         h, s = self.known.get("specific_enthalpy", h), self.known.get("specific_entropy", s)
-        return dict(zip(_CALORIC, (h, s, h - p / rho, cp, cv, w), strict=True))
+        return dict(zip(CALORIC, (h, s, h - p / rho, cp, cv, w), strict=True))
 
     def _distance(self) -> dict[str, FloatArray]:
         """Superheat and subcooling: distance of a single phase from saturation at its pressure."""
