@@ -17,15 +17,16 @@ from reportgen.evaluation.assumptions import (
     AutomaticAssumption,
     assumption_list,
     boundary_temperature_test,
-    fluid_assumptions,
     stream_assumption,
 )
 from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit, settle_zeros
 from reportgen.evaluation.budget import budgets
 from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, lost_samples, raised, unevaluated
 from reportgen.evaluation.criteria import decided_criteria
+from reportgen.evaluation.cross_checks import cross_checks, second_sources
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
+from reportgen.evaluation.fluid_assumptions import fluid_assumptions
 from reportgen.evaluation.models import placed, plant_of, property_model, property_models, real_counterpart
 from reportgen.evaluation.provenance import provenance
 from reportgen.evaluation.results import relations_section, values_section
@@ -70,12 +71,14 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
         CALCULATION_FILE,
     )
     models = property_models(calculation)
+    seconds = second_sources(calculation, models)
     definition = plant_of(calculation, models)
     try:
         solution = balances.solve(definition, axis.givens)
     except ReportgenError as error:
         raise placed(calculation, error, models) from error
     plant = _evaluated(calculation, models, axis, solution)
+    plant = replace(plant, cross_checks=cross_checks(plant, calculation.states, seconds))
     totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
     settle_zeros(plant, totals)
     criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
@@ -106,13 +109,14 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             },
             "accounts": accounts,
             "criteria": criteria,
+            "cross_checks": plant.cross_checks,
             "summary": headlines,
             "uncertainty_budget": budgets(plant, dict.fromkeys([*headlines, *(entry["path"] for entry in criteria)])),
             "figures": [
                 *temperature_entropy_figures(plant, solution),
                 *bar_figures(plant, train_of(calculation), accounts),
             ],
-            "provenance": provenance(calculation.files, models.values(), folder),
+            "provenance": provenance(calculation.files, models.values(), folder, seconds.values()),
         }
     )
 

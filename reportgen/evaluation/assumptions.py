@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import functools
 import math
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -17,29 +17,20 @@ import numpy as np
 from reportgen.evaluation.audits import entropy_resolution
 from reportgen.evaluation.decisions import NEGLIGIBLE_PART_OF_UNCERTAINTY
 from reportgen.evaluation.evaluated import EvaluatedPlant
-from reportgen.evaluation.models import fluid_name
 from reportgen.evaluation.phases import is_resolved
-from reportgen.evaluation.trials import Trial, untested
+from reportgen.evaluation.trials import Trial
 
 if TYPE_CHECKING:
-    from reportgen.fluids.model import Fluid
     from reportgen.quantities import Display
-    from reportgen.spec.calculation import Assumption, FluidSpec
+    from reportgen.spec.calculation import Assumption
 
 __all__ = [
     "AutomaticAssumption",
     "assumption_list",
     "boundary_temperature_test",
-    "fluid_assumptions",
     "mean_fluid_temperature",
     "stream_assumption",
 ]
-
-#: Given on a state, these tie a calculation to the zero of one property model.
-TIED_TO_A_ZERO = ("specific_enthalpy", "specific_entropy")
-
-#: Distance of the compressibility factor from 1 from which an ideal gas deserves a remark: common practice.
-COMPRESSIBILITY_REMARK = 0.02
 
 OPEN = "to be verified"
 BY_DEFAULT = "by default"
@@ -100,56 +91,6 @@ def assumption_list(
             }
         )
     return sorted(entries, key=lambda entry: (entry["status"] != OPEN, entry["origin"] != "author"))
-
-
-def fluid_assumptions(
-    trial: Trial,
-    specifications: Mapping[str, FluidSpec],
-    real_counterpart: Callable[[Fluid], Fluid | None],
-    with_variable_heat_capacity: Callable[[FluidSpec], Fluid],
-) -> list[AutomaticAssumption]:
-    """Ideal gas and constant heat capacity, for every fluid that is one or has one.
-
-    Args:
-        trial: the solved plant, which can be solved otherwise.
-        specifications: fluid id to what the file says.
-        real_counterpart: the real fluid of the same substance, None where none is carried.
-        with_variable_heat_capacity: the same ideal gas with its variable heat capacity.
-    """
-    found = []
-    for identifier, specification in specifications.items():
-        if specification.model != "ideal-gas":
-            continue
-        model = trial.plant.fluids[identifier]
-        counterpart = real_counterpart(model)
-        name = fluid_name(identifier, model.title)
-        text = f"Fluid {name} is an ideal gas."
-        if counterpart is None:
-            test = None
-            basis = "property model chosen in the file; no real fluid of this composition is carried to test it"
-        else:
-            remark = _compressibility_remark(trial.plant, identifier, counterpart)
-            condition = f"With the equation of state of the real fluid {remark}"
-            test = _model_test(trial, identifier, counterpart, condition)
-            basis = "property model chosen in the file"
-        found.append(
-            AutomaticAssumption(f"fluids.{identifier}.ideal-gas", text, basis, (f"fluids.{identifier}",), test, True)
-        )
-        if specification.heat_capacity is not None:
-            text = f"Fluid {name} has the constant heat capacity {specification.heat_capacity:g} J/(kg K)."
-            other = with_variable_heat_capacity(specification)
-            test = _model_test(trial, identifier, other, "With the heat capacity as a function of temperature")
-            found.append(
-                AutomaticAssumption(
-                    f"fluids.{identifier}.constant-heat-capacity",
-                    text,
-                    "heat capacity given in the file",
-                    (f"fluids.{identifier}",),
-                    test,
-                    True,
-                )
-            )
-    return found
 
 
 def stream_assumption(plant: EvaluatedPlant) -> AutomaticAssumption | None:
@@ -226,37 +167,3 @@ def mean_fluid_temperature(plant: EvaluatedPlant, tag: str) -> float:
         if entropy != 0.0 and min(temperatures) <= heat / entropy <= max(temperatures):
             return heat / entropy
     return float(np.mean(temperatures))
-
-
-def _model_test(trial: Trial, identifier: str, other: Any, condition: str) -> dict[str, Any] | None:
-    plant = trial.plant
-    tied = [
-        path
-        for path in plant.axis.givens
-        if path.startswith("states.")
-        and path.rsplit(".", 1)[-1] in TIED_TO_A_ZERO
-        and plant.state_fluids.get(path.split(".")[1]) == identifier
-    ]
-    if tied:
-        return untested(f"Not tested: {tied[0]} is given, and the other model has another zero.")
-    return trial.run(condition, fluids={identifier: other})
-
-
-def _compressibility_remark(plant: EvaluatedPlant, identifier: str, counterpart: Any) -> str:
-    """ "(|Z − 1| up to 0.004)", with a word where that is more than common practice lets pass."""
-    states = [state for state, fluid in plant.state_fluids.items() if fluid == identifier]
-    pressure, temperature = (
-        np.array([plant.samples(f"states.{state}.{name}")[0] for state in states])
-        for name in ("pressure", "temperature")
-    )
-    state = counterpart.at(pressure=pressure, temperature=temperature, errors="mask")
-    distance = np.abs(np.asarray(state.compressibility_factor, dtype=float) - 1.0)
-    if not np.any(np.isfinite(distance)):
-        return "(its compressibility factor cannot be had at these states)"
-    largest = float(np.nanmax(distance))
-    more = (
-        f", beyond the {COMPRESSIBILITY_REMARK:g} that common practice lets pass"
-        if largest > COMPRESSIBILITY_REMARK
-        else ""
-    )
-    return f"(|Z − 1| up to {largest:.2g}{more})"

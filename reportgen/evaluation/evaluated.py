@@ -52,6 +52,7 @@ class EvaluatedPlant:
         trains: train id to the tags of its pieces; empty when the file has no trains.
         doubts: values that could come out where they cannot be meant, as the balances found them.
         assumptions: those of the program, with their tests; empty until they are tested.
+        cross_checks: record entries of states held against a second source; empty until they are compared.
     """
 
     axis: SampleAxis
@@ -66,6 +67,7 @@ class EvaluatedPlant:
     trains: Mapping[str, tuple[str, ...]]
     doubts: Sequence[Doubt] = ()
     assumptions: Sequence[AutomaticAssumption] = ()
+    cross_checks: Sequence[Mapping[str, Any]] = ()
 
     def samples(self, path: str) -> Array:
         """Samples of a value, shape (N,); all NaN when the plant has no such value."""
@@ -75,6 +77,11 @@ class EvaluatedPlant:
         if found is None:
             return np.full(self.axis.columns, np.nan)
         return np.broadcast_to(np.asarray(found, dtype=float), (self.axis.columns,))
+
+    def work_path(self, tag: str) -> str:
+        """Path of the power that crosses the boundary of a piece: at its shaft where losses lie before it."""
+        shaft = f"equipment.{tag}.shaft_power"
+        return shaft if shaft in self.values else f"equipment.{tag}.power"
 
     def has(self, path: str) -> bool:
         """Whether the base case has a number for the path."""

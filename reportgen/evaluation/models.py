@@ -3,15 +3,19 @@
 from __future__ import annotations
 
 import copy
-from collections.abc import Mapping
+import math
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from typing import TYPE_CHECKING, Any
+
+import numpy as np
 
 from reportgen import balances, fluids
 from reportgen.errors import Fault, InputError, ReportgenError
 from reportgen.evaluation.cautions.fluid_states import freezing_hint
 from reportgen.names import name_of
 from reportgen.quantities import Display
+from reportgen.spec.calculation import HeatPolynomial, HeatTable
 
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Calculation, FluidSpec
@@ -24,12 +28,65 @@ def property_model(specification: FluidSpec, heat_capacity: float | None = None)
 
     ``heat_capacity`` [J/(kg·K)] for an ideal gas; None for a variable one.
     """
-    if specification.model == "real-fluid":
-        return fluids.real_fluid(specification.substance or "", reference_state=specification.reference_state)
+    match specification.model:
+        case "real-fluid":
+            return fluids.real_fluid(specification.substance or "", reference_state=specification.reference_state)
+        case "cubic":
+            return _cubic(specification)
+        case "incompressible":
+            return _incompressible(specification)
     return fluids.ideal_gas(
-        specification.substance if specification.substance is not None else dict(specification.composition or {}),
+        _made_of(specification),
         basis=specification.basis or "mole",
         heat_capacity="variable" if heat_capacity is None else heat_capacity,
+    )
+
+
+def _made_of(specification: FluidSpec) -> str | dict[str, float]:
+    """Substance, or fractions by substance."""
+    if specification.substance is not None:
+        return specification.substance
+    return dict(specification.composition or {})
+
+
+def _cubic(specification: FluidSpec) -> Any:
+    return fluids.cubic(
+        _made_of(specification),
+        equation=specification.equation,
+        basis=specification.basis or "mole",
+        critical={
+            name: {
+                "temperature": constants.temperature,
+                "pressure": constants.pressure,
+                "acentric_factor": constants.acentric_factor,
+            }
+            for name, constants in specification.critical.items()
+        }
+        or None,
+        interaction={(pair.first, pair.second): pair.coefficient for pair in specification.interactions} or None,
+        volume_translation=specification.volume_translation,
+    )
+
+
+def _incompressible(specification: FluidSpec) -> Any:
+    heat = specification.specific_heat
+    given: float | tuple[Sequence[float], Sequence[float]] | list[float]
+    if isinstance(heat, HeatTable):
+        given = (heat.temperatures, heat.specific_heats)
+    elif isinstance(heat, HeatPolynomial):
+        # From powers of T − about to powers of T, as the model has them.
+        shifted = np.polynomial.Polynomial(heat.coefficients)(np.polynomial.Polynomial([-heat.about, 1.0]))
+        given = [float(coefficient) for coefficient in shifted.coef]
+    else:
+        assert heat is not None  # the schema asks for it
+        given = heat
+    return fluids.incompressible(
+        specification.substance or specification.id,
+        density=specification.density or math.nan,
+        specific_heat=given,
+        phase=specification.phase,
+        limits=specification.temperature_range,
+        source=specification.source,
     )
 
 
@@ -52,7 +109,7 @@ def _titled(identifier: str, model: Any) -> Any:
     if model.substance is not None or len(model.composition or {}) < 2:
         return model
     named = copy.copy(model)
-    named.title = f"{identifier} (gas mixture)"
+    named.title = f"{identifier} ({'gas ' if model.kind == 'ideal-gas' else ''}mixture)"
     return named
 
 
@@ -80,11 +137,21 @@ def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Pl
 
 
 def real_counterpart(model: Any) -> Any:
-    """Real fluid that an ideal gas can be tested against, or None where none of its composition is carried."""
+    """Real fluid that a simpler model can be tested against, or None where none of its substance is carried.
+
+    It counts from the zero of the ideal gases where that can be had, so that given enthalpies keep their meaning.
+    """
     from reportgen.fluids.gases import catalogue as gas_catalogue
 
+    if model.kind == "incompressible" and model.phase != "liquid":
+        return None
     name = gas_catalogue.real_counterpart(model, fluids.names())
-    return None if name is None else fluids.real_fluid(name)
+    if name is None:
+        return None
+    try:
+        return fluids.real_fluid(name, reference_state="third-law")
+    except InputError:
+        return fluids.real_fluid(name)
 
 
 def placed(calculation: Calculation, error: ReportgenError, models: Mapping[str, Any]) -> ReportgenError:

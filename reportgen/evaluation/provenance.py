@@ -12,9 +12,13 @@ import subprocess
 from collections.abc import Iterable, Mapping
 from importlib import metadata
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from reportgen import __version__
+from reportgen.fluids.library import NAME, LibraryFluid
+
+if TYPE_CHECKING:
+    from reportgen.evaluation.cross_checks import Second
 
 __all__ = ["git_state", "provenance"]
 
@@ -24,22 +28,30 @@ PACKAGES = ("jinja2", "latex2mathml", "markdown", "matplotlib", "nh3", "numpy", 
 GIT_SECONDS = 10.0
 
 
-def provenance(files: Mapping[str, bytes], fluid_models: Iterable[Any], folder: Path | None = None) -> dict[str, Any]:
+def provenance(
+    files: Mapping[str, bytes],
+    fluid_models: Iterable[Any],
+    folder: Path | None = None,
+    seconds: Iterable[Second] = (),
+) -> dict[str, Any]:
     """The record's ``provenance`` section.
 
     Args:
         files: name to content of every input file read, as read (so that a file changed meanwhile cannot differ).
         fluid_models: the property models used (``fluids.model.Fluid``).
         folder: where the input files stand, for the git commit; None leaves it out.
+        seconds: second sources that states were compared with.
     """
+    others = [second.model for second in seconds if second.model is not None]
+    packages = [*PACKAGES, *dict.fromkeys(NAME for model in others if isinstance(model, LibraryFluid))]
     data: dict[tuple[str, str], set[str]] = {}
-    for model in fluid_models:
+    for model in (*fluid_models, *others):
         for entry in model.data_files:
             data.setdefault((entry["file"], entry["sha256"]), set()).update(model.sources)
     return {
         "program": {"name": "reportgen", "version": __version__},
         "python": platform.python_version(),
-        "packages": {name: version for name in PACKAGES if (version := _version(name)) is not None},
+        "packages": {name: version for name in packages if (version := _version(name)) is not None},
         "files": [
             {"name": name, "sha256": hashlib.sha256(content).hexdigest()} for name, content in sorted(files.items())
         ],

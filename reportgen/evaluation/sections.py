@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from reportgen.balances import kinds
 from reportgen.evaluation.evaluated import Connection
+from reportgen.evaluation.model_details import model_details, stated_sources
 from reportgen.names import DIMENSIONS, NAMES
 from reportgen.quantities import Quantity
 from reportgen.spec.calculation import Input
@@ -15,7 +16,7 @@ from reportgen.spec.calculation import Input
 if TYPE_CHECKING:
     from reportgen.balances import Solution
     from reportgen.fluids.model import Fluid
-    from reportgen.spec.calculation import Calculation, EquipmentSpec, Limits
+    from reportgen.spec.calculation import Calculation, EquipmentSpec, FluidSpec, Limits
 
 __all__ = ["accounts_section", "calculation_section", "connections_of", "inputs_section", "plant_section", "train_of"]
 
@@ -133,7 +134,8 @@ def plant_section(calculation: Calculation, models: Mapping[str, Fluid], paths: 
     }
     return {
         "fluids": {
-            identifier: _fluid(models[identifier], position) for position, identifier in enumerate(calculation.fluids)
+            identifier: _fluid(models[identifier], specification, position)
+            for position, (identifier, specification) in enumerate(calculation.fluids.items())
         },
         "states": states,
         "equipment": equipment,
@@ -174,18 +176,20 @@ def _limits(limits: Limits) -> dict[str, Any]:
     }
 
 
-def _fluid(model: Fluid, position: int) -> dict[str, Any]:
+def _fluid(model: Fluid, specification: FluidSpec, position: int) -> dict[str, Any]:
     limits = model.limits
     points = {"triple_point": limits.triple_point, "critical_point": limits.critical_point}
     return {
         "title": model.title,
         "model": model.kind,
+        "details": model_details(specification),
         "substance": model.substance,
         "composition": None if model.composition is None else dict(model.composition),
         "molar_mass": model.molar_mass,
         "gas_constant": model.gas_constant,
         "entropy_zero": model.entropy_zero,
-        "sources": list(model.sources),
+        "entropy_zero_name": model.entropy_zero_name,
+        "sources": [*model.sources, *stated_sources(specification)],
         "position": position,
         "limits": {
             "minimum_temperature": limits.minimum_temperature,

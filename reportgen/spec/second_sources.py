@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Any, get_args
+from typing import Any, cast, get_args
 
 from reportgen.spec.calculation import SecondSource
 from reportgen.spec.fluid_schema import NO_SECOND_SOURCE, SecondModel
@@ -29,7 +29,7 @@ def second_sources(value: Any) -> tuple[SecondSource, ...] | None:
         return None
     items = value if isinstance(value, list) else [value]
     return tuple(
-        SecondSource(item)
+        SecondSource(cast(SecondModel, item))
         if isinstance(item, str)
         else SecondSource(item.model, item.tolerance.value if item.tolerance is not None else None)
         for item in items

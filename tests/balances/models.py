@@ -21,6 +21,7 @@ class SimpleGas:
 
     def __init__(self, substance: str = "gas", cp: float = 1004.5, constant: float = 287.0) -> None:
         self.substance = self.title = substance
+        self.entropy_zero_name = f"298.15 K:{substance}"
         self.cp, self.gas_constant = cp, constant
         self.molar_mass = 8.314462618 / constant
         self.limits = SimpleNamespace(minimum_temperature=50.0, maximum_temperature=3000.0, maximum_pressure=1e9)

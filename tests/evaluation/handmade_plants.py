@@ -43,6 +43,9 @@ def fluid(
     return SimpleNamespace(
         title=substance,
         substance=substance,
+        kind="real-fluid",
+        composition=None,
+        entropy_zero_name="third-law",
         sources=("a publication",),
         limits=SimpleNamespace(
             minimum_temperature=limits[0],

@@ -15,11 +15,12 @@ from reportgen.evaluation.assumptions import (
     AutomaticAssumption,
     assumption_list,
     boundary_temperature_test,
-    fluid_assumptions,
     stream_assumption,
 )
+from reportgen.evaluation.fluid_assumptions import fluid_assumptions
 from reportgen.evaluation.trials import Trial
 from reportgen.quantities import Display
+from reportgen.spec.calculation import FluidSpec
 
 
 def machine(**values: object) -> dict[str, object]:
@@ -81,10 +82,11 @@ def test_nothing_to_compare() -> None:
 
 def gas_case(values: dict, heat_capacity: float | None = None, solve: object = None) -> list[AutomaticAssumption]:
     counterpart = SimpleNamespace(
-        at=lambda pressure, temperature, errors: SimpleNamespace(compressibility_factor=np.full_like(pressure, 0.97))
+        entropy_zero_name="published:air",
+        at=lambda pressure, temperature, errors: SimpleNamespace(compressibility_factor=np.full_like(pressure, 0.97)),
     )
     case = plant({"states.1.temperature": 300.0, "states.1.pressure": 5e5, **values}, fluids={"f": fluid("Air")})
-    specification = SimpleNamespace(model="ideal-gas", heat_capacity=heat_capacity)
+    specification = FluidSpec("f", "ideal-gas", 1, heat_capacity=heat_capacity)
     return fluid_assumptions(
         Trial(case, solve or (lambda fluids, givens: machine(power=103.0))),
         {"f": specification},

@@ -10,7 +10,7 @@ from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.phases import APART, changes_phase, distance_from_saturation, is_read_by_temperature
 from reportgen.names import DIMENSIONS, NAMES
 
-__all__ = ["assumption_fails", "phase_not_resolved", "unused", "velocity_on_one_side"]
+__all__ = ["assumption_fails", "model_changes", "phase_not_resolved", "unused", "velocity_on_one_side"]
 
 #: What a phase that is not resolved means for the results.
 THEN = "results near it are not first-order"
@@ -100,6 +100,25 @@ def unused(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
         if fluid not in plant.state_fluids.values():
             path = f"fluids.{fluid}"
             yield Finding(path, None, None, "above", f"Fluid {fluid} is used by no state.", None, owner=path)
+
+
+@caution("P17", "note", "Property model changes", source="structure of the calculation")
+def model_changes(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
+    """Streams of one substance and one zero that a piece has by one kind of model on its way in, by another out."""
+    for tag, kind in plant.kinds.items():
+        sides = {port.name: port.side for port in kinds()[kind].ports}
+        streams: dict[tuple[str, str | None], dict[str, str]] = {}
+        for connection in plant.connections[tag]:
+            fluid = plant.fluid_of(connection.state)
+            stream = streams.setdefault((sides.get(connection.port, ""), fluid.substance), {})
+            stream.setdefault(fluid.kind, connection.state)
+        for (_, substance), models in streams.items():
+            if substance is None or len(models) < 2:
+                continue
+            told = " and ".join(f"state {state} by the model {model}" for model, state in models.items())
+            text = f"{tag} has {substance} of {told}: what the two models differ by counts as enthalpy and entropy of "
+            text += "the piece."
+            yield Finding(f"equipment.{tag}", None, None, "above", text, None, owner=f"equipment.{tag}")
 
 
 def _result(path: str) -> str:
