@@ -1,0 +1,270 @@
+"""Why a state of ours and one of a compiled library differ by more than the bar: each reason is tested, not assumed.
+
+The tests, in the order in which they are tried:
+
+* *rounding of the pressure, of c_p*: at the library's own (T, ρ) both evaluate the same formula, and what differs is
+  the last digits of a sum that nearly cancels (pressure of a liquid; (∂p/∂ρ)_T near the critical point).
+* *saturation of the library*: near the triple point of heavy fluids its saturated states are not in equilibrium: by the
+  library's own equation, ours have equal pressure and Gibbs energy, to 1e-9 and ten times better.
+* *ideal heat capacity of the library*: it is not what its data say (R123: scaled by two unequal critical temperatures).
+* *given values do not tell the two states apart*: along the straight line in (T, v) from the library's state to ours,
+  the two properties given stay what they were, within rounding and within what the library's values differ by at its
+  own (T, ρ). This is not the case for another root, however well it fulfils the pair.
+* *saturated within rounding*: a saturated liquid or vapour, given by a pair, of which ours has up to 1e-7 of the other
+  or is a single phase, all properties being equal.
+* *splines of the library*: up to 1.2e-3 Tc below critical, coexisting phases of the library are a spline of its own.
+  Ours must give the pair back from its (T, ρ), and its saturation fulfils the equation (property_identities).
+* *critical point*: the library names phases by another critical point than that of the equation; all properties agree.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any, NamedTuple
+
+import CoolProp.CoolProp as library
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.fluids.real.fluid import RealFluid
+from tests.benchmarks.property_states import Reference, library_ideal_heat_capacity, library_saturation_is_worse
+
+__all__ = [
+    "BARS",
+    "SPLINE_REGION",
+    "Base",
+    "Criticals",
+    "critical_points",
+    "deviations",
+    "explain",
+    "explain_base",
+    "rounding",
+    "scales",
+]
+
+Array = NDArray[Any]
+
+#: Largest deviation allowed without an explanation.
+BARS = {
+    "temperature": 1e-7,
+    "pressure": 1e-7,
+    "density": 1e-7,
+    "specific_enthalpy": 1e-7,
+    "specific_entropy": 1e-7,
+    "specific_internal_energy": 1e-7,
+    "isobaric_heat_capacity": 1e-5,
+    "speed_of_sound": 1e-5,
+}
+#: The library follows splines of its own where 1 − T/Tc is below this.
+SPLINE_REGION = 1.2e-3
+#: Relative rounding of a sum of some dozens of terms in double precision.
+_ROUNDING = 4e-15
+#: What of the given pair must come back from our own (T, ρ).
+_GIVEN_BACK = 1e-11
+#: Vapour fraction that a saturated state may gain or lose by rounding.
+_ON_LINE = 1e-7
+_STEPS = (0.25, 0.5, 0.75, 1.0)
+
+
+def scales(reference: Reference, gas_constant: float) -> dict[str, Array]:
+    """What deviations are measured in: the value itself; for h, s, u, whose zeros are arbitrary, at least R·T or R."""
+    rt = gas_constant * reference.temperature
+    found = {name: np.abs(getattr(reference, name)) for name in BARS}
+    for name in ("specific_enthalpy", "specific_internal_energy"):
+        found[name] = np.maximum(found[name], rt)
+    found["specific_entropy"] = np.maximum(found["specific_entropy"], gas_constant)
+    return found
+
+
+def deviations(reference: Reference, state: Any, gas_constant: float) -> dict[str, Array]:
+    """Deviation of each property of ours, in parts of its scale; NaN where either has none."""
+    measure = scales(reference, gas_constant)
+    return {name: np.abs(getattr(state, name) - getattr(reference, name)) / measure[name] for name in BARS}
+
+
+def rounding(reference: Reference, gas_constant: float) -> dict[str, Array]:
+    """Uncertainty of each property from rounding: of the value, and of the sum it comes from [SI]."""
+    found = {name: _ROUNDING * scale for name, scale in scales(reference, gas_constant).items()}
+    rt = gas_constant * reference.temperature
+    found["pressure"] = _ROUNDING * np.maximum(reference.pressure, reference.density * rt)
+    two_phase = reference.phase == "two-phase"
+    found["pressure"] = np.where(two_phase, _ROUNDING * reference.pressure, found["pressure"])
+    found["specific_volume"] = _ROUNDING / reference.density
+    found["quality"] = np.full(reference.size, 1e-12)
+    found["superheat"] = found["subcooling"] = _ROUNDING * reference.temperature
+    return found
+
+
+class Criticals(NamedTuple):
+    """Critical temperature [K] and pressure [Pa], of the library and of the equation: the lower and the higher one."""
+
+    temperature: tuple[float, float]
+    pressure: tuple[float, float]
+
+
+def critical_points(fluid: RealFluid, state: Any) -> Criticals:
+    """Both critical points; ``state`` is the library's state object."""
+    critical = fluid.limits.critical_point
+    assert critical is not None
+    temperatures = sorted((critical.temperature, float(state.T_critical())))
+    pressures = sorted((critical.pressure, float(state.p_critical())))
+    return Criticals((temperatures[0], temperatures[1]), (pressures[0], pressures[1]))
+
+
+def _critical_region(reference: Reference, criticals: Criticals) -> tuple[Array, Array]:
+    """Where the library's splines reach, and where the two critical points disagree about the name of a phase."""
+    low, high = criticals.temperature
+    t, p = reference.temperature, reference.pressure
+    splines = (t > low * (1 - SPLINE_REGION)) & (t <= high)
+    between = (t >= low * (1 - 1e-9)) & (t <= high * (1 + 1e-9))
+    low, high = criticals.pressure
+    return splines, between | ((p >= low * (1 - 1e-9)) & (p <= high * (1 + 1e-9)))
+
+
+@dataclass
+class Base:
+    """Comparison at the library's own (T, ρ), or (T, x) of saturated states.
+
+    ``reasons`` of deviations above a bar there (else empty), ``unexplained`` ones, ``difference`` |ours − theirs| by
+    property [SI], and ``saturation``: where the library's saturation temperature at p is known to be off.
+    """
+
+    reasons: Array
+    unexplained: Array
+    difference: dict[str, Array]
+    saturation: Array
+
+    def take(self, chosen: Array) -> Base:
+        """Some of the states."""
+        difference = {name: values[chosen] for name, values in self.difference.items()}
+        return Base(self.reasons[chosen], self.unexplained[chosen], difference, self.saturation[chosen])
+
+
+def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any, criticals: Criticals) -> Base:
+    """Reasons for deviations at the library's own (T, ρ).
+
+    Parameters
+    ----------
+    fluid : the fluid here. reference : the library's states. state : ours at the same T and ρ.
+    theirs : the library's state object.
+    criticals : see :func:`critical_points`.
+    """
+    gas_constant = fluid.gas_constant
+    names = (*BARS, "superheat", "subcooling", "quality")
+    difference = {name: np.nan_to_num(np.abs(getattr(state, name) - getattr(reference, name))) for name in names}
+    small = rounding(reference, gas_constant)
+    # c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ): what ∂p/∂ρ = w² c_v/c_p loses, c_p loses; c_v is not below half of R
+    slope = reference.speed_of_sound**2 * 0.5 * gas_constant / reference.isobaric_heat_capacity
+    relative = _ROUNDING * (1 + gas_constant * reference.temperature / slope)
+    small["isobaric_heat_capacity"] = relative * reference.isobaric_heat_capacity
+    over, beyond = np.zeros(reference.size, dtype=bool), np.zeros(reference.size, dtype=bool)
+    for name, scale in scales(reference, gas_constant).items():
+        with np.errstate(invalid="ignore"):
+            over |= difference[name] > BARS[name] * scale
+            beyond |= difference[name] > np.maximum(BARS[name] * scale, small[name])
+    wanted = over | (state.phase != reference.phase)
+    reasons = np.full(reference.size, "", dtype="<U80")
+    reasons[over & ~beyond & (state.phase == reference.phase)] = "rounding of a sum that cancels"
+    splines, between = _critical_region(reference, criticals)
+    reasons[wanted & (reasons == "") & splines] = "splines of the library"
+    named = (state.phase != "two-phase") & (reference.phase != "two-phase") & (state.phase != "")
+    reasons[wanted & ~over & (reasons == "") & between & named] = "critical point of the library"
+    below = reference.temperature < criticals.temperature[0]
+    for index in np.flatnonzero(wanted & (reasons == "") & below & np.isfinite(state.density)):
+        at = fluid.saturation(temperature=reference.temperature[index], errors="mask")[1].pressure
+        # a saturated state, or a single phase between the two saturation pressures
+        metastable = (state.phase[index] == "two-phase") or (state.phase[index] != reference.phase[index])
+        if np.isfinite(reference.quality[index]) or (metastable and reference.pressure[index] < 1e3 * at):
+            worse = library_saturation_is_worse(fluid, theirs, reference.temperature[index])
+            reasons[index] = "saturation of the library" if worse else ""
+    if (wanted & (reasons == "")).any() and _other_ideal_part(fluid, theirs, reference):
+        reasons[wanted & (reasons == "")] = "ideal heat capacity of the library"
+    return Base(
+        reasons, wanted & (reasons == ""), difference, _saturation_temperature(fluid, theirs, reference, difference)
+    )
+
+
+def _other_ideal_part(fluid: RealFluid, theirs: Any, reference: Reference) -> bool:
+    """Whether the library's ideal heat capacity is not that of its own data, and ours is."""
+    temperature = np.quantile(reference.temperature, [0.1, 0.5, 0.9])
+    by_data = library_ideal_heat_capacity(theirs, temperature)
+    if by_data is None:
+        return False
+    ours = fluid.at(temperature=temperature, density=1e-12).isobaric_heat_capacity
+    stated = []
+    for t in temperature:
+        theirs.update(library.DmassT_INPUTS, 1e-12, t)
+        stated.append(theirs.cp0mass())
+    return bool((np.abs(ours / by_data - 1) < 1e-9).all() and (np.abs(stated / by_data - 1) > 1e-7).any())
+
+
+def _saturation_temperature(fluid: RealFluid, theirs: Any, reference: Reference, difference: dict[str, Array]) -> Array:
+    """Where a superheat or subcooling differs because the library's saturation is worse than ours."""
+    found = np.zeros(reference.size, dtype=bool)
+    apart = difference["superheat"] + difference["subcooling"]
+    for index in np.flatnonzero(apart > 1e-11 * reference.temperature):
+        distance = np.nan_to_num(reference.superheat[index]) - np.nan_to_num(reference.subcooling[index])
+        found[index] = library_saturation_is_worse(fluid, theirs, reference.temperature[index] - distance)
+    return found
+
+
+def explain(
+    fluid: RealFluid,
+    reference: Reference,
+    state: Any,
+    given: tuple[str, str],
+    base: Base,
+    criticals: Criticals,
+) -> Array:
+    """Reasons why states found from a pair differ; empty text where none of the tests is passed.
+
+    Parameters
+    ----------
+    fluid, reference, criticals : as for :func:`explain_base`. state : ours from the pair.
+    given : names of the properties given.
+    base : result of :func:`explain_base` for the same states: its reasons stand, its differences widen the rounding.
+    """
+    reasons = base.reasons.copy()
+    if given[1] in ("superheat", "subcooling"):
+        reasons[base.saturation] = "saturation of the library"
+    small = rounding(reference, fluid.gas_constant)
+    alike = ~base.unexplained
+    amplified = np.zeros(reference.size, dtype=bool)
+    back = np.ones(reference.size, dtype=bool)
+    for step in _STEPS:
+        temperature = reference.temperature + step * (state.temperature - reference.temperature)
+        volume = 1 / reference.density + step * (1 / state.density - 1 / reference.density)
+        between = fluid.at(temperature=temperature, density=1 / volume, errors="mask")
+        for name in given:
+            target = getattr(reference, name)
+            miss = np.abs(getattr(between, name) - target)
+            if name == "quality":  # of a saturated state, with a density rounded to the other side
+                miss = np.where(np.isnan(miss), 0.0, miss)
+            wide = small[name] + 2 * base.difference.get(name, 0.0)
+            with np.errstate(invalid="ignore"):
+                alike &= miss <= wide
+                amplified |= miss > 2 * small[name]
+                if step == _STEPS[-1]:
+                    back &= miss <= np.maximum(_GIVEN_BACK * np.maximum(np.abs(target), small[name] / _ROUNDING), wide)
+    found = deviations(reference, state, fluid.gas_constant)
+    missed = np.zeros(reference.size, dtype=bool)
+    for name, values in found.items():
+        with np.errstate(invalid="ignore"):
+            missed |= values > BARS[name]
+    # the pressure of a saturated liquid, from its density, is rounding
+    by_density = _ROUNDING * reference.density * fluid.gas_constant * reference.temperature
+    quality = np.where(np.isnan(state.quality), np.round(reference.quality), state.quality)
+    with np.errstate(invalid="ignore"):
+        noise = np.abs(state.pressure - reference.pressure) <= by_density
+        rest = ~np.any([found[name] > BARS[name] for name in BARS if name != "pressure"], axis=0)
+        on_line = ~base.unexplained & (~missed | (noise & rest)) & (np.abs(quality - reference.quality) < _ON_LINE)
+    reasons[(reasons == "") & on_line] = "saturated within rounding: one phase or two"
+    splines, differ = _critical_region(reference, criticals)
+    if given in (("temperature", "density"), ("temperature", "quality")):
+        return reasons  # nothing is solved for, so nothing is amplified
+    reasons[(reasons == "") & alike & amplified] = "difference at (T, rho), amplified by the pair"
+    reasons[(reasons == "") & alike] = "pair does not tell the states apart"
+    reasons[(reasons == "") & back & splines] = "splines of the library"
+    named = (state.phase != "two-phase") & (reference.phase != "two-phase")
+    reasons[(reasons == "") & back & differ & named & ~missed] = "critical point of the library"
+    return reasons

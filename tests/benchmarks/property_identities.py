@@ -1,0 +1,341 @@
+"""Thermodynamic identities of every property model, by differences of eighth order through the public interface:
+``python -m tests.benchmarks.property_identities``.
+
+Each derivative is taken with several steps, each half of the one before; the one that agrees best with the next is
+used. Its uncertainty is that difference and the rounding of the values, found without looking at the identity. What
+stays above 1e-9 within ten such uncertainties is counted as *not resolved* in double precision, anything above is a
+violation. Residuals are in parts of the larger term of the identity:
+
+    (∂u/∂s)_v = T           of T                      (∂h/∂s)_p = T              of T
+    (∂u/∂v)_s = −p          of p or T (∂p/∂T)_v       (∂h/∂p)_s = v              of v
+    (∂s/∂v)_T = (∂p/∂T)_v   of that or ρR             (∂s/∂p)_T = −(∂v/∂T)_p     of that or v/T
+    c_v = (∂u/∂T)_v         of c_v                    (∂T/∂p)_s = (∂v/∂s)_p      of that or v/c_p
+    c_p = (∂h/∂T)_p         of c_p                    w² = −v² (∂p/∂v)_s         of w²
+
+Saturation: equal Gibbs energy of both phases (in parts of R·T), the pressure of each by the equation (of the vapour in
+parts of itself, of the liquid in parts of ρRT) and Clapeyron's dp/dT = Δs/Δv.
+"""
+
+from __future__ import annotations
+
+import argparse
+import time
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reportgen.fluids import ideal_gas, ideal_gas_names, names, real_fluid
+from reportgen.fluids.real.fluid import RealFluid
+
+__all__ = ["BAR", "Result", "check_model", "check_saturation", "check_statistical", "derivatives", "main", "models"]
+
+Array = NDArray[Any]
+
+BAR = 1e-9
+#: Residuals up to this many uncertainties of the differences are not resolved.
+_UNCERTAINTIES = 10.0
+#: First step, relative to the scale of the variable, and number of halvings.
+_FIRST_STEP = 2.0**-5
+_HALVINGS = 9
+#: Steps that must stay within the range of a model, and within one phase.
+_LEAST_STEPS = 4
+#: Relative rounding of a property: a sum of some dozens of terms.
+_ROUNDING = 2e-15
+_OFFSETS = np.array([-4, -3, -2, -1, 1, 2, 3, 4])
+_WEIGHTS = np.array([1 / 280, -4 / 105, 1 / 5, -4 / 5, 4 / 5, -1 / 5, 4 / 105, -1 / 280])
+
+
+@dataclass
+class Result:
+    """One identity of one model: states, worst residual of the resolved ones, those not resolved and their worst,
+    violations with the first state that shows one.
+    """
+
+    states: int = 0
+    worst: float = 0.0
+    unresolved: int = 0
+    worst_unresolved: float = 0.0
+    violations: int = 0
+    sample: str = ""
+
+    def add(self, other: Result) -> None:
+        """Another model's."""
+        self.states += other.states
+        self.worst = max(self.worst, other.worst)
+        self.unresolved += other.unresolved
+        self.worst_unresolved = max(self.worst_unresolved, other.worst_unresolved)
+        self.violations += other.violations
+        self.sample = self.sample or other.sample
+
+    def __str__(self) -> str:
+        text = f"{self.states:6d} states, worst {self.worst:7.1e}"
+        if self.unresolved:
+            text += f", not resolved {self.unresolved} (up to {self.worst_unresolved:.0e})"
+        return text + (f", VIOLATIONS {self.violations}: {self.sample}" if self.violations else "")
+
+
+Derivatives = dict[str, tuple[Array, Array]]
+
+
+def derivatives(evaluate: Callable[[Array], Mapping[str, Array]], point: Array, scale: Array) -> Derivatives:
+    """First derivatives of several functions with their uncertainties, by central differences of eighth order.
+
+    Parameters
+    ----------
+    evaluate : x of shape (N, K, 8) -> functions of it, same shape; NaN where a step leaves their range.
+    point, scale : where, and the length over which the functions may change much; shape (N,).
+
+    Returns
+    -------
+    name -> derivative and uncertainty, shape (N,); NaN next to an end of the range, where too few steps stay within.
+    """
+    # powers of two, so that x itself is not rounded
+    steps = 2.0 ** (np.floor(np.log2(scale * _FIRST_STEP))[:, None] - np.arange(_HALVINGS))
+    x = point[:, None, None] + steps[:, :, None] * _OFFSETS
+    found = {}
+    rows = np.arange(point.size)
+    for name, values in evaluate(x).items():
+        slope = np.sum(values * _WEIGHTS, axis=2) / steps
+        apart = np.abs(np.diff(slope, axis=1))
+        rounding = _ROUNDING * np.max(np.abs(values), axis=2)[:, 1:] / steps[:, 1:]
+        # noise can agree by chance, even exactly
+        doubt = np.where(np.isnan(apart), np.inf, apart + rounding)
+        best = np.argmin(doubt, axis=1)
+        known = np.count_nonzero(np.isfinite(doubt), axis=1) >= _LEAST_STEPS
+        found[name] = np.where(known, slope[rows, best + 1], np.nan), np.where(known, doubt[rows, best], np.nan)
+    return found
+
+
+def _evaluation(fluid: Any, first: str, second: str, held: Array, fields: tuple[str, ...]) -> Any:
+    """Function of ``first`` at a held ``second``: fields of single-phase states, NaN elsewhere."""
+
+    def evaluate(x: Array) -> dict[str, Array]:
+        state = fluid.at(**{first: x, second: np.broadcast_to(held[:, None, None], x.shape)}, errors="mask")
+        two_phase = np.isfinite(state.quality)
+        return {field: np.where(two_phase, np.nan, getattr(state, field)) for field in fields}
+
+    return evaluate
+
+
+def _result(
+    name: str, residual: Array, uncertainty: Array, state: Any, results: dict[str, Result], bar: float = BAR
+) -> None:
+    """Count one identity: residual and uncertainty in parts of its scale."""
+    known = np.isfinite(residual)
+    small = known & (residual <= bar)
+    unclear = known & ~small & (residual <= _UNCERTAINTIES * uncertainty)
+    bad = np.flatnonzero(known & ~small & ~unclear)
+    result = Result(int(known.sum()), float(residual[small].max(initial=0.0)), int(unclear.sum()))
+    result.worst_unresolved = float(residual[unclear].max(initial=0.0))
+    result.violations = int(bad.size)
+    if bad.size:
+        worst = bad[np.argmax(residual[bad])]
+        result.worst = float(residual[worst])
+        result.sample = (
+            f"{residual[worst]:.1e} (uncertain by {uncertainty[worst]:.0e}) at T = {state.temperature[worst]!r}, "
+            f"p = {state.pressure[worst]!r}, rho = {state.density[worst]!r}"
+        )
+    results.setdefault(name, Result()).add(result)
+
+
+def check_model(fluid: Any, pressure: Array, temperature: Array) -> dict[str, Result]:
+    """All identities at single-phase states of one model; those of pairs it does not carry are left out.
+
+    Parameters
+    ----------
+    fluid : any model. pressure, temperature : p [Pa] and T [K], shape (N,); what the model refuses is dropped.
+    """
+    state = fluid.at(pressure=pressure, temperature=temperature, errors="mask")
+    good = np.isfinite(state.density) & ~np.isfinite(state.quality)
+    pressure, temperature = pressure[good], temperature[good]
+    state = fluid.at(pressure=pressure, temperature=temperature)
+    results: dict[str, Result] = {}
+    if fluid.kind != "incompressible":
+        _by_temperature_and_density(fluid, state, results)
+    _by_pressure(fluid, state, results)
+    return results
+
+
+def _by_temperature_and_density(fluid: Any, state: Any, results: dict[str, Result]) -> None:
+    t, rho = state.temperature, state.density
+    gas_constant = fluid.gas_constant
+    fields = ("specific_internal_energy", "specific_entropy", "pressure")
+    heated = derivatives(_evaluation(fluid, "temperature", "density", rho, fields), t, t)
+    spread = derivatives(_evaluation(fluid, "density", "temperature", t, fields), rho, rho)
+    u_t, s_t, p_t = (heated[field] for field in fields)
+    u_v, s_v, _ = ((-(rho**2) * value, rho**2 * error) for value, error in (spread[field] for field in fields))
+    with np.errstate(invalid="ignore", divide="ignore"):
+        ratio = u_t[0] / s_t[0]
+        relative = u_t[1] / np.abs(u_t[0]) + s_t[1] / np.abs(s_t[0])
+        _result("(du/ds)_v = T", np.abs(ratio / t - 1), relative, state, results)
+        scale = np.maximum(np.abs(state.pressure), t * np.abs(p_t[0]))
+        along = u_v[0] - ratio * s_v[0]
+        error = u_v[1] + t * s_v[1] + np.abs(ratio * s_v[0]) * relative
+        _result("(du/dv)_s = -p", np.abs(along + state.pressure) / scale, error / scale, state, results)
+        scale = np.maximum(np.abs(p_t[0]), rho * gas_constant)
+        _result("(ds/dv)_T = (dp/dT)_v", np.abs(s_v[0] - p_t[0]) / scale, (s_v[1] + p_t[1]) / scale, state, results)
+        cv = state.isochoric_heat_capacity
+        _result("c_v = (du/dT)_v", np.abs(u_t[0] / cv - 1), u_t[1] / cv, state, results)
+
+
+def _by_pressure(fluid: Any, state: Any, results: dict[str, Result]) -> None:
+    t, p, s = state.temperature, state.pressure, state.specific_entropy
+    v, cp = state.specific_volume, state.isobaric_heat_capacity
+    stiffness = state.density * state.speed_of_sound**2
+    # a liquid may go down to its saturation pressure only
+    reach = np.minimum(np.where(np.isfinite(stiffness), stiffness, np.inf), 5 * p)
+    fields = ("specific_enthalpy", "specific_entropy", "specific_volume", "temperature")
+    heated = derivatives(_evaluation(fluid, "temperature", "pressure", p, fields), t, t)
+    pressed = derivatives(_evaluation(fluid, "pressure", "temperature", t, fields), p, reach)
+    h_t, s_t, v_t, _ = (heated[field] for field in fields)
+    s_p = pressed["specific_entropy"]
+    with np.errstate(invalid="ignore", divide="ignore"):
+        relative = h_t[1] / np.abs(h_t[0]) + s_t[1] / np.abs(s_t[0])
+        _result("(dh/ds)_p = T", np.abs(h_t[0] / s_t[0] / t - 1), relative, state, results)
+        scale = np.maximum(np.abs(v_t[0]), v / t)
+        _result("(ds/dp)_T = -(dv/dT)_p", np.abs(s_p[0] + v_t[0]) / scale, (s_p[1] + v_t[1]) / scale, state, results)
+        _result("c_p = (dh/dT)_p", np.abs(h_t[0] / cp - 1), h_t[1] / cp, state, results)
+        squeezed = derivatives(_evaluation(fluid, "pressure", "specific_entropy", s, fields), p, reach)
+        stirred = derivatives(_evaluation(fluid, "specific_entropy", "pressure", p, fields), s, cp)
+        h_p, _, v_p, t_p = (squeezed[field] for field in fields)
+        v_s = stirred["specific_volume"]
+        _result("(dh/dp)_s = v", np.abs(h_p[0] / v - 1), h_p[1] / v, state, results)
+        scale = np.maximum(np.abs(t_p[0]), v / cp)
+        _result("(dT/dp)_s = (dv/ds)_p", np.abs(t_p[0] - v_s[0]) / scale, (t_p[1] + v_s[1]) / scale, state, results)
+        if np.isfinite(stiffness).any():
+            squared = -(v**2) / v_p[0]
+            w2 = state.speed_of_sound**2
+            _result("w^2 = -v^2 (dp/dv)_s", np.abs(squared / w2 - 1), v_p[1] / np.abs(v_p[0]), state, results)
+
+
+def check_saturation(fluid: RealFluid, count: int = 200) -> dict[str, Result]:
+    """Both phases of a pure fluid in equilibrium, from the triple point to 1e-6 Tc below critical.
+
+    Half of the temperatures are even in T, half in ln(1 − T/Tc). The pressures come from the equation of state, since
+    ``at`` gives a saturated state the saturation pressure.
+    """
+    critical = fluid.limits.critical_point
+    assert critical is not None
+    lowest = fluid.limits.minimum_temperature
+    gap = np.geomspace(1e-6, 1 - lowest / critical.temperature, count // 2)
+    t = np.sort(
+        np.concatenate([critical.temperature * (1 - gap), np.linspace(lowest, critical.temperature, count // 2, False)])
+    )
+    liquid, vapour = fluid.saturation(temperature=t)
+    rt = fluid.gas_constant * t
+    h, s, v = (
+        getattr(vapour, field) - getattr(liquid, field)
+        for field in ("specific_enthalpy", "specific_entropy", "specific_volume")
+    )
+    none = np.zeros_like(t)
+    results: dict[str, Result] = {}
+    _result("g' = g''", np.abs(h - t * s) / rt, none, vapour, results)
+    equation = fluid._equation
+    by_vapour = equation.properties(t, vapour.density).pressure
+    by_liquid = equation.properties(t, liquid.density).pressure
+    _result("p(T, rho'') = p_sat", np.abs(by_vapour / vapour.pressure - 1), none, vapour, results)
+    rho = liquid.density
+    _result("p(T, rho') = p_sat", np.abs(by_liquid - liquid.pressure) / (rho * rt), none, liquid, results)
+
+    def logarithm(x: Array) -> dict[str, Array]:
+        return {"p": np.log(fluid.saturation(temperature=x, errors="mask")[0].pressure)}
+
+    # as near as 4 steps to the ends of the curve
+    slope, error = derivatives(logarithm, t, np.minimum(t, 8 * (critical.temperature - t)))["p"]
+    with np.errstate(invalid="ignore", divide="ignore"):
+        clapeyron = s / (v * vapour.pressure)
+        # Δs and Δv lose digits where the phases become alike
+        error = error / slope + 4e-15 * (
+            np.abs(liquid.density / (liquid.density - vapour.density)) + fluid.gas_constant / s
+        )
+        _result("dp/dT = (s''-s')/(v''-v')", np.abs(slope / clapeyron - 1), error, vapour, results)
+    return results
+
+
+def check_statistical(gas: Any, temperature: Array) -> dict[str, Result]:
+    """dH/dT = c_p and dS/dT = c_p/T of a gas from molecular constants, at T [K] of shape (N,)."""
+
+    def evaluate(x: Array) -> dict[str, Array]:
+        return {"H": gas.enthalpy(x), "S": gas.entropy(x, 1e5)}
+
+    found = derivatives(evaluate, temperature, temperature)
+    cp = gas.heat_capacity(temperature)
+    results: dict[str, Result] = {}
+    state = _Point(temperature)
+    _result("dH/dT = c_p", np.abs(found["H"][0] / cp - 1), found["H"][1] / cp, state, results)
+    _result(
+        "dS/dT = c_p/T", np.abs(found["S"][0] * temperature / cp - 1), found["S"][1] * temperature / cp, state, results
+    )
+    return results
+
+
+class _Point:
+    """Temperatures at 1 bar, as the report of a violation names them."""
+
+    def __init__(self, temperature: Array) -> None:
+        self.temperature = temperature
+        self.pressure = np.full_like(temperature, 1e5)
+        self.density = np.full_like(temperature, np.nan)
+
+
+def states(fluid: Any, count: int, seed: int) -> tuple[Array, Array]:
+    """Pressures and temperatures over the range of a model: half up to 1.3 Tc, p log-uniform from 100 Pa."""
+    random = np.random.default_rng(seed)
+    limits = fluid.limits
+    low, high = limits.minimum_temperature, limits.maximum_temperature
+    near = high if limits.critical_point is None else min(1.3 * limits.critical_point.temperature, high)
+    half = count // 2
+    temperature = np.concatenate([low * (high / low) ** random.uniform(size=half), random.uniform(low, near, half)])
+    highest = min(limits.maximum_pressure, 1e8)
+    return np.exp(random.uniform(np.log(100.0), np.log(highest), 2 * half)), temperature
+
+
+def models(chosen: str = "") -> Iterator[tuple[str, str, Any]]:
+    """(kind, name, model) of every model carried, or of the kind chosen."""
+    if chosen in ("", "real"):
+        for name in names():
+            yield "real", name, real_fluid(name)
+    if chosen in ("", "ideal"):
+        for name in ideal_gas_names():
+            yield "ideal", name, ideal_gas(name)
+        yield "ideal", "air by composition", ideal_gas({"N2": 0.7808, "O2": 0.2095, "Ar": 0.0097})
+        yield "ideal", "flue gas", ideal_gas({"N2": 0.72, "CO2": 0.1, "H2O": 0.13, "O2": 0.05})
+
+
+def main() -> int:
+    """Print the worst residual of each identity and kind of model; the exit status is 1 when any is violated."""
+    parser = argparse.ArgumentParser(description=__doc__.splitlines()[0])
+    parser.add_argument("--states", type=int, default=60, help="states a model (60)")
+    parser.add_argument("--kind", default="", help="real, ideal, cubic, incompressible or statistical (all)")
+    parser.add_argument("--full", action="store_true", help="one table a model")
+    chosen = parser.parse_args()
+    totals: dict[str, dict[str, Result]] = {}
+    counted: dict[str, int] = {}
+    start = time.perf_counter()
+    for kind, name, model in models(chosen.kind):
+        results = _check(kind, model, chosen.states)
+        counted[kind] = counted.get(kind, 0) + 1
+        for identity, result in results.items():
+            totals.setdefault(kind, {}).setdefault(identity, Result()).add(result)
+            if chosen.full or result.violations:
+                print(f"  {name[:24]:24s} {identity:26s} {result}")
+    for kind, results in totals.items():
+        print(f"{kind}: {counted[kind]} models")
+        for identity, result in results.items():
+            print(f"  {identity:26s} {result}")
+    print(f"{time.perf_counter() - start:.0f} s")
+    return int(any(result.violations for results in totals.values() for result in results.values()))
+
+
+def _check(kind: str, model: Any, count: int) -> dict[str, Result]:
+    results = check_model(model, *states(model, count, seed=3))
+    if kind == "real" and not model.pseudo_pure:
+        results |= check_saturation(model)
+    return results
+
+
+if __name__ == "__main__":
+    raise SystemExit(main())
