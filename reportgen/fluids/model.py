@@ -57,7 +57,7 @@ class Fluid(Protocol):
 
     @property
     def kind(self) -> str:
-        """``"ideal-gas"`` or ``"real-fluid"``."""
+        """``"ideal-gas"``, ``"real-fluid"``, ``"cubic"`` or ``"incompressible"``."""
 
     @property
     def substance(self) -> str | None:
@@ -84,6 +84,14 @@ class Fluid(Protocol):
         """Where specific entropy (and enthalpy) are zero, in words."""
 
     @property
+    def entropy_zero_name(self) -> str:
+        """Key of the zero: equal keys mean that entropies and enthalpies of the two models count from one zero.
+
+        ``"third-law"`` (elements in their reference states for h, perfect crystals at 0 K for s), a convention for
+        one substance such as ``"IIR"``, or what else sets it, such as ``"published:water"``.
+        """
+
+    @property
     def sources(self) -> tuple[str, ...]:
         """Publications of the equations, with their DOI."""
 
@@ -99,11 +107,12 @@ class Fluid(Protocol):
         errors : "raise" stops with a RangeError naming the first failing elements; "mask" puts NaN into the failing
             elements and a Fault for each into ``State.faults``. NaN given is NaN returned, without a fault.
         pair : exactly two of pressure [Pa], temperature [K], specific_enthalpy [J/kg], specific_entropy [J/(kg*K)],
-            quality [1], density [kg/m3], specific_volume [m3/kg], superheat [K], subcooling [K], in a combination
-            the model supports; arrays broadcast against each other.
+            specific_internal_energy [J/kg], quality [1], density [kg/m3], specific_volume [m3/kg], superheat [K],
+            subcooling [K], in a combination the model supports; arrays broadcast against each other.
 
         Raises
         ------
         InputError : an unknown property, not exactly two, an unsupported pair, shapes that do not broadcast.
-        RangeError : a state outside the limits of the model (``errors="raise"``).
+        RangeError : a state outside the limits of the model, or several states that share the two properties: that
+            fault is a ``fluids.pairs.SeveralStates``, which lists them (``errors="raise"``).
         """

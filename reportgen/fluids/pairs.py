@@ -10,9 +10,9 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError, RangeError
-from reportgen.fluids.model import Errors
+from reportgen.fluids.model import Errors, Point
 
-__all__ = ["PROPERTIES", "Elements", "Pair", "check_errors", "in_words", "read_pair"]
+__all__ = ["PROPERTIES", "Elements", "Pair", "SeveralStates", "check_errors", "in_words", "read_pair"]
 
 #: Properties that may be given, with their SI unit.
 PROPERTIES: dict[str, str] = {
@@ -20,6 +20,7 @@ PROPERTIES: dict[str, str] = {
     "temperature": "K",
     "specific_enthalpy": "J/kg",
     "specific_entropy": "J/(kg*K)",
+    "specific_internal_energy": "J/kg",
     "quality": "1",
     "density": "kg/m3",
     "specific_volume": "m3/kg",
@@ -32,12 +33,24 @@ _SPOKEN = {
     "pressure": (1e5, "bar"),
     "specific_enthalpy": (1e3, "kJ/kg"),
     "specific_entropy": (1e3, "kJ/(kg*K)"),
+    "specific_internal_energy": (1e3, "kJ/kg"),
 }
 #: Pressures [Pa] below this are told in Pa: there bar gives only zeros.
 _LEAST_BAR = 100.0
 
 #: Faults named in full when an error is raised; the rest is counted.
 _NAMED_FAULTS = 3
+
+
+@dataclass(frozen=True)
+class SeveralStates(Fault):
+    """Two properties that more than one state shares.
+
+    ``roots`` are these states, temperature [K], pressure [Pa] and density [kg/m3] of each, in the order of rising
+    density; temperature and density together tell them apart.
+    """
+
+    roots: tuple[Point, ...] = ()
 
 
 @dataclass(frozen=True)

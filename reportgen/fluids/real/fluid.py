@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
+from functools import partial
 from typing import Any
 
 import numpy as np
@@ -10,7 +11,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError
 from reportgen.fluids.model import Errors
-from reportgen.fluids.pairs import Elements, Pair, check_errors, read_pair
+from reportgen.fluids.pairs import Elements, Pair, SeveralStates, check_errors, read_pair
 from reportgen.fluids.real import catalogue
 from reportgen.fluids.real.density import DensitySolver
 from reportgen.fluids.real.flash import PressureFlash
@@ -19,9 +20,9 @@ from reportgen.fluids.real.limits import Guard, limits_of
 from reportgen.fluids.real.reference import zero_of
 from reportgen.fluids.real.saturation import SaturationCurves
 from reportgen.fluids.real.scalar.few import FewStates
-from reportgen.fluids.real.searches import Found, SearchFlash
+from reportgen.fluids.real.searches import SEARCHED_PAIRS, Searches
 from reportgen.fluids.real.solution import Solution
-from reportgen.fluids.state import State
+from reportgen.fluids.state import FIELDS, State
 
 __all__ = ["RealFluid"]
 
@@ -41,8 +42,8 @@ class RealFluid:
     ----------
     name : canonical name, alias, formula or CAS number.
     reference_state : "published" (zero of the publication), "IIR" (h = 200 kJ/kg, s = 1 kJ/(kg·K) for the saturated
-        liquid at 0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C) or "NBP" (h = s = 0 for the saturated
-        liquid at 101 325 Pa).
+        liquid at 0 °C), "ASHRAE" (h = s = 0 for the saturated liquid at −40 °C), "NBP" (h = s = 0 for the saturated
+        liquid at 101 325 Pa) or "third-law" (entropy and enthalpy of formation of the ideal gas at 298.15 K, 1 bar).
 
     Raises
     ------
@@ -61,7 +62,7 @@ class RealFluid:
         self.pseudo_pure: bool = data["pseudo_pure"]
         self.reference_state = reference_state
         self.sources = catalogue.source_lines(data)
-        self.data_files = ({"file": file, "sha256": catalogue.digest(file)},)
+        self.data_files: tuple[Mapping[str, str], ...] = ({"file": file, "sha256": catalogue.digest(file)},)
         self.limits = limits_of(data)
         self._guard = Guard(self.title, self.limits, data["melting_line"])
         self._curves = SaturationCurves(data["saturation"], data["critical_point"]["temperature"])
@@ -72,7 +73,10 @@ class RealFluid:
             reducing_density=data["reducing_molar_density"] * self.molar_mass,
             gas_constant=self.gas_constant,
         )
-        self.entropy_zero = zero_of(reference_state, data, equation, self._curves)
+        zero = zero_of(reference_state, data, equation, self._curves)
+        self.entropy_zero, self.entropy_zero_name = zero.words, zero.name
+        self.sources += zero.sources
+        self.data_files += zero.data_files
         self._equation = equation
         self._maximum_density: float = data["limits"]["maximum_density"]
         self._solver = DensitySolver(equation, self._curves, data["acentric_factor"], self._maximum_density)
@@ -86,14 +90,8 @@ class RealFluid:
             self._triple_pressure,
             self._guard.melting_line,
         )
-        self._search = SearchFlash(
-            equation,
-            self._curves,
-            self._solver,
-            self.limits.minimum_temperature,
-            self.limits.maximum_temperature,
-            self.limits.maximum_pressure,
-            self._triple_pressure,
+        self._searches = Searches(
+            equation, self._curves, self._solver, self._flash, self._guard, self.limits, self._triple_pressure
         )
         self._few = FewStates(
             equation, self._curves, self._solver, self.limits, self._triple_pressure, self._guard.melting_line
@@ -105,11 +103,9 @@ class RealFluid:
             ("pressure", "quality"): self._pressure_quality,
             ("temperature", "quality"): self._temperature_quality,
             ("temperature", "density"): self._temperature_density,
-            ("pressure", "density"): self._pressure_density,
-            ("temperature", "specific_entropy"): self._temperature_entropy,
-            ("temperature", "specific_enthalpy"): self._temperature_enthalpy,
             ("pressure", "superheat"): self._pressure_superheat,
             ("pressure", "subcooling"): self._pressure_subcooling,
+            **{names: partial(self._searched, names) for names in SEARCHED_PAIRS},
         }
 
     def __repr__(self) -> str:
@@ -118,9 +114,11 @@ class RealFluid:
     def at(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
         """State fixed by two properties; see ``fluids.model.Fluid.at``.
 
-        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, quality, density, superheat or
-        subcooling; temperature with quality, density, specific_entropy or specific_enthalpy (specific_volume stands
-        for density). Temperature with enthalpy and pressure with density can have several states: these are refused.
+        Pairs: pressure with temperature, specific_enthalpy, specific_entropy, specific_internal_energy, quality,
+        density, superheat or subcooling; temperature with quality, density or any of the three energies and entropy;
+        density with any of these three; specific_enthalpy with specific_entropy. specific_volume stands for density.
+        Temperature with enthalpy, internal energy or (water below 4 °C) entropy, and pressure with density, can have
+        several states: these are refused with a list of them, and given by :meth:`roots`.
         Pressure and temperature within 1e-9 of saturation are refused, since they do not tell liquid from vapour:
         give the quality.
         """
@@ -179,6 +177,37 @@ class RealFluid:
             assert pressure is not None
             given = {"pressure": pressure}
         return self.at(errors=errors, quality=0.0, **given), self.at(errors=errors, quality=1.0, **given)
+
+    def roots(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
+        """Every state that has two properties, where :meth:`at` would refuse several.
+
+        Takes the pairs of :meth:`at`; pressure and temperature on the saturation line give its liquid and its vapour.
+
+        Returns
+        -------
+        State : of the shape given and one axis more, along which the states lie in the order of rising density; NaN
+            where an element has fewer than others. ``faults`` holds elements without any state, by flat index of the
+            shape given (``errors="mask"``).
+
+        Raises
+        ------
+        InputError, RangeError : as :meth:`at`, but never since there are several states.
+        """
+        single = self.at(errors="mask", **pair)
+        several = {i: fault for i, fault in single.faults.items() if isinstance(fault, SeveralStates)}
+        elements = Elements(single.flat("temperature").size)
+        elements.faults = {i: fault for i, fault in single.faults.items() if i not in several}
+        elements.finish(errors)
+        size = elements.size
+        most = max((len(fault.roots) for fault in several.values()), default=1)
+        temperature, density = np.full((size, most), np.nan), np.full((size, most), np.nan)
+        temperature[:, 0], density[:, 0] = single.flat("temperature"), single.flat("density")
+        for i, fault in several.items():
+            for column, root in enumerate(fault.roots):
+                temperature[i, column], density[i, column] = root.temperature, root.density
+        state = self.at(temperature=temperature, density=density)
+        values = {name: state.flat(name) for name in FIELDS}
+        return State((*single.shape, most), values, None, elements.faults)
 
     def _solution(self, temperature: FloatArray, pressure: FloatArray, density: FloatArray, **more: Any) -> Solution:
         return Solution(self._equation, self._curves, self._triple_pressure, temperature, pressure, density, **more)
@@ -301,60 +330,12 @@ class RealFluid:
             temperature, pressure, density, quality=quality, liquid_density=rho_l, vapour_density=rho_v
         )
 
-    def _pressure_density(self, pressure: FloatArray, density: FloatArray, elements: Elements) -> Solution:
-        guard = self._guard
-        guard.pressure(pressure, elements)
-        guard.density(density, elements, self._maximum_density)
-        p, rho = np.where(elements.rejected, 1e5, pressure), np.where(elements.rejected, 1.0, density)
-        found = self._search.pressure_density(p, rho)
-        return self._searched(found, elements, "pressure", p, "density", rho)
-
-    def _temperature_entropy(self, temperature: FloatArray, entropy: FloatArray, elements: Elements) -> Solution:
-        return self._temperature_caloric(temperature, entropy, elements, "specific_entropy")
-
-    def _temperature_enthalpy(self, temperature: FloatArray, enthalpy: FloatArray, elements: Elements) -> Solution:
-        return self._temperature_caloric(temperature, enthalpy, elements, "specific_enthalpy")
-
-    def _temperature_caloric(
-        self, temperature: FloatArray, target: FloatArray, elements: Elements, name: str
-    ) -> Solution:
-        self._guard.temperature(temperature, elements)
-        t = np.where(elements.rejected, self.limits.maximum_temperature, temperature)
-        found = self._search.temperature_caloric(t, target, entropy=name == "specific_entropy")
-        return self._searched(found, elements, "temperature", t, name, target, known={name: target})
-
-    def _searched(
-        self,
-        found: Found,
-        elements: Elements,
-        first: str,
-        first_value: FloatArray,
-        second: str,
-        second_value: FloatArray,
-        known: dict[str, FloatArray] | None = None,
-    ) -> Solution:
-        """Check what a search has found: exactly one state, fluid, not between the lines of a pseudo-pure fluid."""
-        guard = self._guard
-        elements.reject(
-            found.seen > 1,
-            lambda i: guard.several(first, first_value[i], second, second_value[i], int(found.seen[i])),
-        )
-        elements.reject(found.seen == 0, lambda i: guard.none(first, first_value[i], second, second_value[i]))
-        if self.pseudo_pure:
-            elements.reject(
-                (found.quality > 0) & (found.quality < 1),
-                lambda i: guard.between_lines(first, first_value[i], second, second_value[i]),
-            )
-        guard.melting(found.pressure, found.temperature, elements)
-        return self._solution(
-            found.temperature,
-            found.pressure,
-            found.density,
-            quality=found.quality,
-            liquid_density=found.liquid_density,
-            vapour_density=found.vapour_density,
-            known=known or {},
-        )
+    def _searched(self, names: tuple[str, str], first: FloatArray, second: FloatArray, elements: Elements) -> Solution:
+        """The one state with two properties, which are given back as they were given."""
+        found: dict[str, FloatArray] = self._searches.find(names, first, second, elements)._asdict()
+        given = dict(zip(names, (first, second), strict=True))
+        known = {name: value for name, value in given.items() if name not in found}
+        return self._solution(**{name: given.get(name, value) for name, value in found.items()}, known=known)
 
     def _pressure_superheat(self, pressure: FloatArray, superheat: FloatArray, elements: Elements) -> Solution:
         return self._pressure_distance(pressure, superheat, elements, "superheat", 1.0)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -10,10 +11,10 @@ from numpy.typing import NDArray
 
 from reportgen.errors import Fault
 from reportgen.fluids.model import Limits, Point
-from reportgen.fluids.pairs import Elements, in_words
+from reportgen.fluids.pairs import Elements, SeveralStates, in_words
 from reportgen.fluids.real.melting import MeltingLine
 
-__all__ = ["Guard", "limits_of"]
+__all__ = ["LOWEST_PRESSURE", "Guard", "limits_of"]
 
 FloatArray = NDArray[np.float64]
 BoolArray = NDArray[np.bool_]
@@ -21,7 +22,7 @@ BoolArray = NDArray[np.bool_]
 #: Rounding granted at the ends of the range.
 _ROUNDING = 1e-9
 #: Least pressure [Pa] and density [kg/m3] taken: far below any triple point, and far above where numbers underflow.
-_LOWEST_PRESSURE = 1e-12
+LOWEST_PRESSURE = 1e-12
 _LOWEST_DENSITY = 1e-18
 #: What the lower end of most ranges is, in the words of the data files; others have no ``Limits.triple_point``.
 TRIPLE_POINT = "triple point"
@@ -77,6 +78,12 @@ def _sentence(name: str, value: float) -> str:
     return text[0].upper() + text[1:]
 
 
+def _apart(values: list[float]) -> bool:
+    """Whether values can be told from each other by the digits of a message."""
+    ordered = sorted(values)
+    return all(high > low * (1 + 1e-7) for low, high in pairwise(ordered))
+
+
 class Guard:
     """Checks batches against the limits of one fluid and words the faults.
 
@@ -127,12 +134,12 @@ class Guard:
     def pressure(self, pressure: FloatArray, elements: Elements) -> None:
         """Refuse pressures [Pa] not positive or above the maximum."""
         high = self._limits.maximum_pressure
-        inside = (pressure >= _LOWEST_PRESSURE) & (pressure <= high * (1 + _ROUNDING))
+        inside = (pressure >= LOWEST_PRESSURE) & (pressure <= high * (1 + _ROUNDING))
         if inside.all():
             return
         self._reject(pressure <= 0, elements, "pressure", pressure, "not above zero (absolute pressure is needed)")
-        low = pressure < _LOWEST_PRESSURE
-        self._reject(low, elements, "pressure", pressure, f"below {_LOWEST_PRESSURE:g} Pa, the lowest computed,")
+        low = pressure < LOWEST_PRESSURE
+        self._reject(low, elements, "pressure", pressure, f"below {LOWEST_PRESSURE:g} Pa, the lowest computed,")
         self._reject(
             ~inside & ~low, elements, "pressure", pressure, f"above the maximum, {in_words('pressure', high)},"
         )
@@ -250,18 +257,62 @@ class Guard:
         """A pseudo-pure fluid between its lines, from two properties [SI]."""
         return Fault(f"{_sentence(first, first_value)} and {_value(second, second_value)} lie {self._between}.")
 
-    def several(self, first: str, first_value: float, second: str, second_value: float, count: int) -> Fault:
-        """Two properties [SI] that more than one state shares."""
-        return Fault(
-            f"{self._title} has {count} states at {_value(first, first_value)} and {_value(second, second_value)}.",
-            hint="Give another pair, such as pressure and temperature.",
+    def several(
+        self,
+        first: str,
+        first_value: float,
+        second: str,
+        second_value: float,
+        roots: tuple[Point, ...],
+        single_phase: bool,
+    ) -> SeveralStates:
+        """Two properties [SI] that more than one state shares, and whether none of these is a mixture of phases."""
+        told = [
+            {"pressure": root.pressure, "temperature": root.temperature, "density": root.density or 0.0}
+            for root in roots
+        ]
+        listed = "; ".join(", ".join(in_words(name, value) for name, value in root.items()) for root in told)
+        other = {"temperature": "pressure", "pressure": "temperature"}.get(first)
+        if other is not None and single_phase and _apart([root[other] for root in told]):
+            choices = " or ".join(in_words(other, root[other]) for root in told)
+            hint = f"Give the {first} with the {other} of the one that is meant: {choices}."
+        else:
+            hint = "Give temperature and density of the one that is meant."
+        return SeveralStates(
+            f"{self._title} has {len(roots)} states at {_value(first, first_value)} and "
+            f"{_value(second, second_value)}: {listed}.",
+            hint=hint,
+            roots=roots,
         )
 
     def none(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
         """Two properties [SI] that no state within the limits was found to have."""
+        limits = self._limits
         return Fault(
             f"No state of {self._title} within its limits was found at {_value(first, first_value)} and "
             f"{_value(second, second_value)}.",
+            expected=f"a liquid or gas of {limits.minimum_temperature:g} K to {limits.maximum_temperature:g} K, up to "
+            f"{in_words('pressure', limits.maximum_pressure)}",
+        )
+
+    def beyond(
+        self, first: str, first_value: float, second: str, second_value: float, least: float, greatest: float
+    ) -> Fault:
+        """Two properties [SI], the second outside what it can be within the limits beside the first."""
+        low, high = in_words(second, least), in_words(second, greatest)
+        return Fault(
+            f"No state of {self._title} within its limits was found at {_value(first, first_value)} and "
+            f"{_value(second, second_value)}: there it lies between {low} and {high}.",
+            found=_value(second, second_value),
+            expected=f"{low} to {high}",
+        )
+
+    def vague(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
+        """Temperature and an energy [SI] of a gas so thin that they do not tell its pressure."""
+        return Fault(
+            f"{_sentence(first, first_value)} and {_value(second, second_value)} do not tell the pressure of "
+            f"{self._title}: in a gas as thin as this the energy depends on temperature alone.",
+            hint="Give the pressure with one of them.",
         )
 
     def too_cold(self, pressure: float, name: str, value: float) -> Fault:
