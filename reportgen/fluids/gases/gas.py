@@ -36,13 +36,22 @@ _PAIRS = (
     ("pressure", "temperature"),
     ("pressure", "specific_enthalpy"),
     ("pressure", "specific_entropy"),
+    ("pressure", "specific_internal_energy"),
     ("pressure", "density"),
     ("temperature", "density"),
     ("temperature", "specific_entropy"),
     ("specific_enthalpy", "specific_entropy"),
     ("specific_enthalpy", "density"),
     ("specific_entropy", "density"),
+    ("specific_internal_energy", "density"),
+    ("specific_internal_energy", "specific_entropy"),
 )
+#: What depends on temperature alone: two of these do not fix a state.
+_THERMAL = {
+    "temperature": "temperature",
+    "specific_enthalpy": "enthalpy",
+    "specific_internal_energy": "internal energy",
+}
 _NO_SATURATION = ("quality", "superheat", "subcooling")
 
 
@@ -53,6 +62,7 @@ class IdealGas:
     """
 
     kind = "ideal-gas"
+    entropy_zero_name = "third-law"
 
     def __init__(
         self,
@@ -158,12 +168,13 @@ class IdealGas:
     def at(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
         """State fixed by two independent properties; see ``Fluid.at``.
 
-        Pairs: pressure with temperature, specific enthalpy, specific entropy or density (specific volume);
-        temperature with density or specific entropy; and any two of specific enthalpy, specific entropy, density.
+        Pairs: pressure with temperature, specific enthalpy, specific internal energy, specific entropy or density
+        (specific volume); temperature with density or specific entropy; density with specific entropy; and either of
+        these two with specific enthalpy or specific internal energy.
 
         Raises
         ------
-        InputError : enthalpy with temperature (dependent), saturation properties (an ideal gas has none), and as in
+        InputError : two of temperature, enthalpy and internal energy (dependent), saturation properties (an ideal gas has none), and as in
             ``Fluid.at``.
         RangeError : temperature outside the limits, a pressure or density that is not above zero.
         """
@@ -194,10 +205,11 @@ class IdealGas:
                     expected='another property, or the model "real-fluid"',
                 )
             )
-        if set(pair) == {"temperature", "specific_enthalpy"}:
+        if len(pair) == 2 and set(pair) <= set(_THERMAL):
+            energy = next(word for name, word in _THERMAL.items() if name in pair and name != "temperature")
             raise InputError(
                 Fault(
-                    "The enthalpy of an ideal gas depends on temperature alone: the two are not independent.",
+                    f"The {energy} of an ideal gas depends on temperature alone: the two are not independent.",
                     found=" with ".join(pair),
                     expected="one of them with pressure, density or specific entropy",
                 )
@@ -221,10 +233,13 @@ class IdealGas:
         law, gas_constant = self._law, self.gas_constant
         pressure, density = known.get("pressure"), known.get("density")
         entropy, enthalpy = known.get("specific_entropy"), known.get("specific_enthalpy")
+        energy = known.get("specific_internal_energy")
         if "temperature" in known:
             temperature = known["temperature"]
         elif enthalpy is not None:
             temperature = law.temperature_of_enthalpy(enthalpy)
+        elif energy is not None:
+            temperature = law.temperature_of_internal_energy(energy)
         elif entropy is None:
             assert pressure is not None
             assert density is not None
@@ -257,9 +272,7 @@ class IdealGas:
             return
         for array in known.values():
             outside &= ~np.isnan(array)
-        source = next(
-            (name for name in ("temperature", "specific_enthalpy", "specific_entropy") if name in known), None
-        )
+        source = next((name for name in (*_THERMAL, "specific_entropy") if name in known), None)
 
         def describe(index: int) -> Fault:
             if source in (None, "temperature"):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
@@ -11,7 +12,10 @@ from reportgen.errors import Fault, InputError
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.saturation import SaturationCurves
 
-__all__ = ["REFERENCE_STATES", "zero_of"]
+__all__ = ["REFERENCE_STATES", "THIRD_LAW", "Zero", "zero_of"]
+
+#: Name of the zero that all species share: elements in their reference states for h, perfect crystals at 0 K for s.
+THIRD_LAW = "third-law"
 
 #: Conventions by name: temperature [K] of the saturated liquid (None: at 101 325 Pa), its h [J/kg] and s [J/(kg*K)],
 #: in words.
@@ -24,23 +28,35 @@ REFERENCE_STATES: dict[str, tuple[float | None, float, float, str]] = {
 _ATMOSPHERE = 101325.0
 
 
-def zero_of(name: str, data: Mapping[str, Any], equation: Helmholtz, curves: SaturationCurves) -> str:
-    """Shift ``equation`` to the zero called ``name`` and return that zero in words.
+@dataclass(frozen=True)
+class Zero:
+    """Where enthalpy and entropy count from: in words, as a key to compare by, and whose data it takes."""
+
+    words: str
+    name: str
+    sources: tuple[str, ...] = ()
+    data_files: tuple[Mapping[str, str], ...] = ()
+
+
+def zero_of(name: str, data: Mapping[str, Any], equation: Helmholtz, curves: SaturationCurves) -> Zero:
+    """Shift ``equation`` to the zero called ``name`` and return that zero.
 
     Raises
     ------
-    InputError : no such convention, or the fluid has no saturated liquid where the convention sets its zero.
+    InputError : no such convention, the fluid has no saturated liquid where the convention sets its zero, or no
+        third-law data are carried for it.
     """
     if name == "published":
-        text: str = data["entropy_zero"]
-        return text
+        return Zero(data["entropy_zero"], f"published:{data['name']}")
+    if name == THIRD_LAW:
+        return _third_law(data, equation)
     known = REFERENCE_STATES.get(name)
     if known is None:
         raise InputError(
             Fault(
                 "This reference state is not known.",
                 found=repr(name),
-                expected=", ".join(["published", *REFERENCE_STATES]),
+                expected=", ".join(["published", *REFERENCE_STATES, THIRD_LAW]),
             )
         )
     temperature, enthalpy, entropy, words = known
@@ -63,4 +79,25 @@ def zero_of(name: str, data: Mapping[str, Any], equation: Helmholtz, curves: Sat
         saturated = curves.at_temperature(np.array([temperature]))
     found = equation.properties(saturated.bubble_temperature, saturated.liquid_density)
     equation.shift(enthalpy - float(found.enthalpy[0]), entropy - float(found.entropy[0]))
-    return words
+    return Zero(words, name)
+
+
+def _third_law(data: Mapping[str, Any], equation: Helmholtz) -> Zero:
+    """Bring the ideal-gas part at 298.15 K and 1 bar to the standard entropy and the enthalpy of formation."""
+    from reportgen.fluids.real.third_law import PRESSURE, TEMPERATURE, standard_values  # other zeros start without it
+
+    standard = standard_values(data)
+    mass = data["molar_mass"]
+    density = PRESSURE / (equation.gas_constant * TEMPERATURE)
+    ideal = equation.ideal(
+        np.array([density / equation.reducing_density]), np.array([equation.reducing_temperature / TEMPERATURE])
+    )
+    enthalpy = equation.gas_constant * TEMPERATURE * (1.0 + float(ideal.tau[0]))
+    entropy = equation.gas_constant * float(ideal.tau[0] - ideal.value[0])
+    equation.shift(standard.enthalpy / mass - enthalpy, standard.entropy / mass - entropy)
+    words = (
+        f"Third law (zero for the perfect crystal at 0 K): the ideal gas at {TEMPERATURE:g} K and 1 bar has "
+        f"s = {standard.entropy:.3f} J/(mol K), and h = {standard.enthalpy / 1e3:.3f} kJ/mol, its enthalpy of "
+        "formation from the elements in their reference states."
+    )
+    return Zero(words, THIRD_LAW, standard.sources, standard.data_files)
