@@ -41,6 +41,9 @@ class CaloricLaw(Protocol):
     def temperature_of_enthalpy(self, enthalpy: Array, /) -> Array:
         """T [K] where h(T) [J/kg] has the value given."""
 
+    def temperature_of_internal_energy(self, energy: Array, /) -> Array:
+        """T [K] where u(T) = h(T) − R T [J/kg] has the value given."""
+
     def temperature_of_entropy(self, entropy: Array, /) -> Array:
         """T [K] where s°(T) [J/(kg*K)] has the value given."""
 
@@ -113,6 +116,14 @@ class Nasa9:
     def temperature_of_enthalpy(self) -> Inverse:
         """T [K] where h(T) [J/kg] has the value given."""
         return Inverse(self._nodes, self.enthalpy, self.heat_capacity)
+
+    @cached_property
+    def temperature_of_internal_energy(self) -> Inverse:
+        """T [K] where u(T) = h(T) − R T [J/kg] has the value given."""
+        gas_constant = self._gas_constant
+        return Inverse(
+            self._nodes, lambda t: self.enthalpy(t) - gas_constant * t, lambda t: self.heat_capacity(t) - gas_constant
+        )
 
     @cached_property
     def temperature_of_entropy(self) -> Inverse:
@@ -190,6 +201,12 @@ class ConstantHeatCapacity:
     def temperature_of_enthalpy(self, enthalpy: Array) -> Array:
         """T [K] where h(T) [J/kg] has the value given."""
         return self._inside(self._temperature + (enthalpy - self._enthalpy) / self._heat_capacity)
+
+    def temperature_of_internal_energy(self, energy: Array) -> Array:
+        """T [K] where u(T) = h(T) − R T [J/kg] has the value given."""
+        at_reference = self._enthalpy - self._gas_constant * self._temperature
+        isochoric = self._heat_capacity - self._gas_constant
+        return self._inside(self._temperature + (energy - at_reference) / isochoric)
 
     def temperature_of_entropy(self, entropy: Array) -> Array:
         """T [K] where s°(T) [J/(kg*K)] has the value given."""

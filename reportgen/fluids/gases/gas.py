@@ -174,8 +174,8 @@ class IdealGas:
 
         Raises
         ------
-        InputError : two of temperature, enthalpy and internal energy (dependent), saturation properties (an ideal gas has none), and as in
-            ``Fluid.at``.
+        InputError : two of temperature, enthalpy and internal energy (dependent), saturation properties (an ideal gas
+            has none), and as in ``Fluid.at``.
         RangeError : temperature outside the limits, a pressure or density that is not above zero.
         """
         check_errors(errors)

@@ -220,12 +220,16 @@ PAIRS = [
     ("pressure", "specific_entropy"),
     ("pressure", "density"),
     ("pressure", "specific_volume"),
+    ("pressure", "specific_internal_energy"),
     ("temperature", "specific_entropy"),
     ("temperature", "density"),
     ("temperature", "specific_volume"),
     ("specific_enthalpy", "specific_entropy"),
     ("specific_enthalpy", "density"),
     ("specific_entropy", "density"),
+    ("specific_internal_energy", "density"),
+    ("specific_internal_energy", "specific_volume"),
+    ("specific_internal_energy", "specific_entropy"),
 ]
 MODELS = [
     *((key, "variable") for key in ALL_SPECIES),
@@ -404,6 +408,8 @@ def test_masked_elements_carry_their_fault():
         ({"pressure": 0.0, "temperature": 300.0}, "Pressure 0 Pa"),
         ({"pressure": math.inf, "temperature": 300.0}, "Pressure inf bar"),
         ({"pressure": 1e5, "specific_enthalpy": 1e9}, "Specific enthalpy 1000000 kJ/kg"),
+        ({"pressure": 1e5, "specific_internal_energy": 1e9}, "Specific internal energy 1000000 kJ/kg"),
+        ({"density": 1.0, "specific_internal_energy": -1e9}, "Specific internal energy -1000000 kJ/kg"),
         ({"pressure": 1e5, "specific_entropy": -1e9}, "Specific entropy -1000000 kJ/(kg*K)"),
         ({"temperature": 300.0, "specific_entropy": -1e9}, "Pressure inf bar"),
         ({"temperature": 300.0, "specific_entropy": 1e9}, "Pressure 0 Pa"),
@@ -423,7 +429,9 @@ def test_out_of_range(pair, message, heat_capacity):
 @pytest.mark.parametrize(
     ("pair", "message"),
     [
-        ({"temperature": 300.0, "specific_enthalpy": 0.0}, "not independent"),
+        ({"temperature": 300.0, "specific_enthalpy": 0.0}, "enthalpy of an ideal gas depends on temperature alone"),
+        ({"temperature": 300.0, "specific_internal_energy": 0.0}, "internal energy of an ideal gas depends on"),
+        ({"specific_enthalpy": 0.0, "specific_internal_energy": 0.0}, "not independent"),
         ({"pressure": 1e5, "quality": 0.5}, "no saturation, so quality"),
         ({"pressure": 1e5, "superheat": 5.0}, "no saturation, so superheat"),
         ({"temperature": 300.0, "subcooling": 5.0}, "no saturation, so subcooling"),
