@@ -120,6 +120,7 @@ def _of_one_source(
     head = {
         "fluid": fluid_id,
         "second_model": second.name,
+        "second_title": None if second.model is None else getattr(second.model, "name", second.model.title),
         "first_source": "; ".join(fluid.sources),
         "second_source": None if second.model is None else "; ".join(second.model.sources),
     }
@@ -150,13 +151,17 @@ def _of_species(
     known: Sequence[str],
     tolerances: Mapping[str, float],
 ) -> list[dict[str, Any]]:
-    """One entry for each property of each gas of a mixture, at the state where its sources differ most."""
-    entries = []
+    """Entries for each gas of a mixture, at the state where its sources differ most."""
+    species: dict[str, list[crosscheck.Deviation]] = {}
     for item in deviations:
-        if item.species is None or not np.isfinite(item.relative).any():
-            continue
-        index = int(np.nanargmax(np.abs(item.relative)))
-        entries.append(_entry(head, known[index], item, index, tolerances[known[index]], None, None))
+        if item.species is not None:
+            species.setdefault(item.species, []).append(item)
+    entries = []
+    for items in species.values():
+        worst = np.nanmax(np.abs([item.relative for item in items]), axis=0)
+        index = int(np.nanargmax(worst))
+        tolerance = tolerances[known[index]]
+        entries += [_entry(head, known[index], item, index, tolerance, None, None) for item in items]
     return entries
 
 

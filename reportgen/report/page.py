@@ -12,7 +12,7 @@ from reportgen.report import figures
 from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.presenter import Presenter, prose
-from reportgen.report.sections import account, basis, budget, findings, head, tail, working
+from reportgen.report.sections import account, basis, budget, cross_checks, findings, head, tail, working
 from reportgen.report.templates import environment, fonts_folder, style
 
 __all__ = ["page"]
@@ -58,6 +58,7 @@ SECTIONS: tuple[tuple[str, str, Callable[[Presenter], dict[str, Any] | None]], .
     ("account", "Entropy account", account.accounts),
     ("closure", "Closure", account.closure),
     ("budget", "Uncertainty budget", budget.uncertainty_budget),
+    ("cross-checks", "Cross-checks", cross_checks.cross_checks),
     ("figures", "Figures", _figures),
     ("references", "References", tail.references),
     ("revisions", "Revision history", tail.revisions),

@@ -10,11 +10,14 @@ from reportgen.report.narrative import render_narrative
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural, prose
 from reportgen.report.sections.working import step_anchors
 
-__all__ = ["assumptions", "boundary", "inputs", "method", "purpose"]
+__all__ = ["MODELS", "assumptions", "boundary", "inputs", "method", "purpose"]
 
-_MODELS = {
+#: Property models in words.
+MODELS = {
     "ideal-gas": "ideal gas",
     "real-fluid": "real fluid, multiparameter Helmholtz-energy equation",
+    "cubic": "cubic equation of state",
+    "incompressible": "incompressible",
 }
 _LIMITS = (
     ("minimum_temperature", "from", "temperature"),
@@ -202,10 +205,13 @@ def method(presenter: Presenter) -> dict[str, Any]:
                 "anchor": anchor("fluid", name),
                 "name": name,
                 "title": entry["title"],
-                "model": _MODELS.get(entry["model"], entry["model"]),
+                "model": MODELS.get(entry["model"], entry["model"]),
                 "composition": _composition(entry["composition"]),
+                "details": [_detail(detail, presenter) for detail in entry.get("details", [])],
                 "entropy_zero": prose(entry["entropy_zero"]),
+                "zero_name": entry.get("entropy_zero_name"),
                 "limits": ", ".join(limits) or NO_VALUE,
+                "remarks": [prose(remark) for remark in entry.get("limits", {}).get("remarks", [])],
                 "sources": entry["sources"],
             }
         )
@@ -215,6 +221,13 @@ def method(presenter: Presenter) -> dict[str, Any]:
         "uncertainty_method": presenter.record.data["calculation"]["method"],
         "uncertain": any(entry["standard_uncertainty"] for entry in presenter.record.inputs.values()),
     }
+
+
+def _detail(detail: dict[str, Any], presenter: Presenter) -> str:
+    """What the author settles of a model: "density 870 kg/m³"."""
+    if detail["dimension"] is None:
+        return f"{detail['label']}: {prose(detail['text'])}"
+    return f"{detail['label']} {presenter.with_unit(detail['value'], detail['dimension'])}"
 
 
 def _composition(composition: dict[str, float] | None) -> str:

@@ -1,0 +1,151 @@
+"""States held against a second source: both values and their difference, property by property."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from typing import Any
+
+from markupsafe import Markup
+
+from reportgen.names import NAMES
+from reportgen.report.links import anchor
+from reportgen.report.presenter import Presenter, natural, prose
+
+__all__ = ["cross_checks"]
+
+_DIFFERS, _NOT_COMPARED = "differs", "not compared"
+#: Property models and other sources in a few words.
+_WORDS = {
+    "ideal-gas": "ideal gas",
+    "real-fluid": "real fluid",
+    "cubic": "cubic equation of state",
+    "incompressible": "incompressible",
+    "statistical": "statistical mechanics from molecular constants",
+}
+_DIGITS = 2
+#: Relative differences below this are those of rounding.
+_LEAST = 1e-8
+
+
+def cross_checks(presenter: Presenter) -> dict[str, Any] | None:
+    """One table for each fluid and second source; a row for each state, and for each gas that was checked alone."""
+    groups: dict[tuple[str, str], list[dict[str, Any]]] = {}
+    for entry in presenter.record.data["cross_checks"]:
+        groups.setdefault((entry["fluid"], entry["second_model"]), []).append(entry)
+    if not groups:
+        return None
+    tables = [_table(fluid, second, entries, presenter) for (fluid, second), entries in groups.items()]
+    return {"tables": tables, "counted": any(table["counted_from"] for table in tables)}
+
+
+def _table(fluid: str, second: str, entries: list[dict[str, Any]], presenter: Presenter) -> dict[str, Any]:
+    compared = [entry for entry in entries if entry["verdict"] != _NOT_COMPARED]
+    columns = list(dict.fromkeys(_column(entry) for entry in compared))
+    rows: dict[tuple[str, str], list[dict[str, Any]]] = {}
+    for entry in compared:
+        rows.setdefault((entry["species"] or "", entry["state"]), []).append(entry)
+    states = [_row(species, state, found, columns, presenter) for (species, state), found in rows.items()]
+    thresholds = sorted({entry["threshold"] for entry in entries})
+    model = presenter.record.data["plant"]["fluids"][fluid]["model"]
+    return {
+        "fluid": fluid,
+        "title": presenter.record.data["plant"]["fluids"][fluid]["title"],
+        "anchor": anchor("fluid", fluid),
+        "first": _WORDS.get(model, model),
+        "second": _second(second, entries[0].get("second_title")),
+        "source": next((entry["second_source"] for entry in entries if entry["second_source"]), None),
+        "tolerance": " or ".join(_percent(threshold, signed=False) for threshold in thresholds),
+        "heads": [_head(*column, presenter) for column in columns],
+        "rows": [row for row in states if not row["species"]] + [row for row in states if row["species"]],
+        "counted_from": next((entry["counted_from"] for entry in compared if entry["counted_from"]), None),
+        "left_out": _left_out(entries),
+        "differs": sum(entry["verdict"] == _DIFFERS for entry in entries),
+        "count": len(compared),
+    }
+
+
+def _second(name: str, title: str | None) -> str:
+    """A second source in words: a library by its own name, a real fluid with the substance it is of."""
+    if name == "library":
+        return title or "an independent library"
+    return f"{_WORDS.get(name, name)} {title}" if name == "real-fluid" and title else _WORDS.get(name, name)
+
+
+def _column(entry: Mapping[str, Any]) -> tuple[str, str]:
+    """Property and the state from which it counts, empty for a value as it stands."""
+    return entry["property"], entry["counted_from"] or ""
+
+
+def _head(name: str, counted_from: str, presenter: Presenter) -> dict[str, Any]:
+    entry = NAMES[name]
+    symbol = entry.symbol
+    text = entry.text
+    if counted_from:
+        symbol = rf"{symbol} - {symbol}_{{\mathrm{{{counted_from}}}}}"
+        text = f"{text}, counted from state {counted_from}"
+    return {
+        "symbol": presenter.math(symbol),
+        "text": text,
+        "unit": presenter.display.unit_text(entry.dimension),
+    }
+
+
+def _row(
+    species: str,
+    state: str,
+    entries: Iterable[dict[str, Any]],
+    columns: Iterable[tuple[str, str]],
+    presenter: Presenter,
+) -> dict[str, Any]:
+    found = {_column(entry): entry for entry in entries}
+    remark = next((entry["remark"] for entry in found.values() if entry["remark"]), None)
+    return {
+        "species": species,
+        "state": state,
+        "anchor": anchor("state", state),
+        "cells": [_cell(found.get(column), presenter) for column in columns],
+        "remark": prose(remark),
+    }
+
+
+def _cell(entry: dict[str, Any] | None, presenter: Presenter) -> dict[str, Any] | None:
+    if entry is None:
+        return None
+    first: str | Markup = _number(entry, "first", presenter)
+    if entry["species"] is None and entry["counted_from"] is None:
+        first = presenter.link(entry["path"], first)
+    return {
+        "first": first,
+        "second": _number(entry, "second", presenter),
+        "relative": _percent(entry["relative"]),
+        "differs": entry["verdict"] == _DIFFERS,
+    }
+
+
+def _number(entry: dict[str, Any], which: str, presenter: Presenter) -> str:
+    """The value of one source; 0 where it is rounding of what the difference is measured in."""
+    value, relative = entry[which], entry["relative"]
+    scale = abs(entry["difference"] / relative) if relative else 0.0
+    return presenter.show(0.0 if abs(value) < _LEAST * scale else value, entry["dimension"]).number
+
+
+def _left_out(entries: Iterable[dict[str, Any]]) -> list[tuple[str, str]]:
+    """States that were not compared, with the reason."""
+    reasons: dict[str, list[str]] = {}
+    for entry in entries:
+        if entry["verdict"] == _NOT_COMPARED:
+            reasons.setdefault(entry["remark"], []).append(entry["state"])
+    return [(", ".join(sorted(states, key=natural)), prose(reason)) for reason, states in reasons.items()]
+
+
+def _percent(part: float, *, signed: bool = True) -> str:
+    """A part of one in per cent, to two digits."""
+    if abs(part) < _LEAST:
+        return "0\N{NO-BREAK SPACE}%" if part == 0.0 else f"below\N{NO-BREAK SPACE}{_percent(_LEAST, signed=False)}"
+    number = f"{100.0 * part:.{_DIGITS}g}"
+    mantissa, _, exponent = number.partition("e")
+    if exponent:
+        raised = str(int(exponent)).translate(str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"))
+        number = f"{mantissa} × 10{raised}"
+    sign = "+" if signed and part > 0.0 else ""
+    return f"{sign}{number.replace('-', '−')} %".replace(" ", "\N{NO-BREAK SPACE}")
