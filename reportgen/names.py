@@ -58,7 +58,9 @@ class Name:
 
 _PORTS = "never negative: the ports give the direction"
 _INTO = "positive into the fluid"
+_INTO_PIECE = "positive into the piece"
 _LOSS = "positive where the pressure falls"
+_RISE = "positive where the pressure rises"
 _LEFT = "positive when more enters than leaves"
 _POWER = (
     "positive in the natural direction of the kind: absorbed by compressors and pumps, delivered by turbines; "
@@ -106,6 +108,40 @@ _ENTRIES = (
     Name("isentropic_efficiency", r"\eta_s", "efficiency", "Isentropic efficiency"),
     Name("polytropic_efficiency", r"\eta_p", "efficiency", "Polytropic efficiency"),
     Name("pressure_integral", "I", "specific_entropy", "Integral of v/T over pressure along the path"),
+    Name(
+        "end_point_efficiency",
+        r"\eta_\mathrm{ends}",
+        "efficiency",
+        "Polytropic efficiency by the formula of the end states alone, for comparison",
+    ),
+    Name(
+        "end_point_difference",
+        r"\delta\eta_\mathrm{ends}",
+        "efficiency",
+        "End-point formula less the efficiency by integration along the path",
+        "positive where the end-point formula gives more",
+    ),
+    Name("isothermal_efficiency", r"\eta_T", "efficiency", "Isothermal efficiency"),
+    Name("isothermal_work", "w_T", "specific_energy", "Reversible work of compression at the inlet temperature"),
+    Name("mechanical_efficiency", r"\eta_\mathrm{m}", "efficiency", "Efficiency of bearings, gear and motor"),
+    Name("shaft_power", r"\dot W_\mathrm{sh}", "power", "Power with mechanical losses counted in", _POWER),
+    Name("mechanical_heat", r"\dot Q_\mathrm{m}", "heat_flow", "Heat of the mechanical losses", _INTO_PIECE),
+    Name(
+        "mechanical_boundary_temperature",
+        r"T_\mathrm{m}",
+        "temperature",
+        "Temperature at which the heat of the mechanical losses leaves",
+    ),
+    Name("entropy_with_mechanical_heat", r"\dot S_{Q\mathrm{m}}", "entropy_flow", "Entropy with that heat", _INTO_PIECE),
+    Name("entropy_with_fluid_heat", r"\dot S_{Q\mathrm{f}}", "entropy_flow", "Entropy with heat of the stream", _INTO),
+    Name("pressure_rise", r"\Delta p_\mathrm{rise}", "pressure_difference", "Outlet pressure less inlet pressure", _RISE),
+    Name("mach_number", r"\mathit{Ma}", "ratio", "Velocity in parts of the speed of sound"),
+    Name("inlet_area", "A_1", "area", "Area of the flow at the inlet"),
+    Name("outlet_area", "A_2", "area", "Area of the flow at the outlet"),
+    Name("throat_area", r"A_\mathrm{t}", "area", "Smallest area of the flow"),
+    Name("throat_pressure", r"p_\mathrm{t}", "pressure", "Pressure at the smallest area, absolute"),
+    Name("inner_diameter", "d", "length", "Inner diameter"),
+    Name("pressure_recovery", "C_p", "ratio", "Pressure rise in parts of the dynamic pressure at the inlet"),
     Name("isentropic_outlet_enthalpy", r"h_s", "specific_energy", "Enthalpy at outlet pressure and inlet entropy"),
     Name("pressure_drop", r"\Delta p", "pressure_difference", "Pressure loss from inlet to outlet", _LOSS),
     Name(

@@ -235,10 +235,9 @@ class _Book:
             for state in states:
                 energy += elevated_enthalpy(pieces[0], state, f"states.{state}.mass_flow", sign)
         for piece in pieces:
-            if piece.path("heat") in self.values:
-                energy.append(Term(1.0, (piece.path("heat"),)))
+            energy += [term for term in _heat_terms(piece) if term.factors[0] in self.values]
             if piece.kind.power_sign:
-                energy.append(Term(float(piece.kind.power_sign), (piece.path("power"),)))
+                energy.append(Term(float(piece.kind.power_sign), (piece.kind.work(piece),)))
         sentence = f"{title}: what is left of the energy balance; zero but for rounding."
         self.balance(f"{owner}.energy_imbalance", owner, "Check of energy", sentence, "first law, steady flow", energy)
 
@@ -313,14 +312,15 @@ class _Book:
             "entropy_with_heat": ("Entropy with heat", "sum of the parts"),
         }
         for name, (heading, basis) in sums.items():
-            terms = [Term(1.0, (piece.path(name),)) for piece in pieces]
+            each = [_heat_terms(piece) if name == "heat" else [Term(1.0, (piece.path(name),))] for piece in pieces]
+            terms = [term for terms_of_one in each for term in terms_of_one]
             words = f"{title}: sum over {', '.join(piece.tag for piece in pieces)}."
             self.balance(f"{owner}.{name}", owner, heading, words, basis, terms)
         machines = [piece for piece in pieces if piece.kind.power_sign]
         if machines:
             absorbs = all(piece.kind.power_sign > 0 for piece in machines)
             sign = 1.0 if absorbs else -1.0
-            powers = [Term(sign * piece.kind.power_sign, (piece.path("power"),)) for piece in machines]
+            powers = [Term(sign * piece.kind.power_sign, (piece.kind.work(piece),)) for piece in machines]
             net = "power absorbed." if absorbs else "net power delivered, what is absorbed counted negative."
             words = f"{title}: {net}"
             self.balance(f"{owner}.power", owner, "Net power", words, "sum of the parts", powers)
@@ -371,6 +371,12 @@ def _boundary(pieces: Sequence[Piece]) -> tuple[list[str], list[str]]:
     leaving = [state for piece in pieces for state in piece.streams("out")]
     inner = set(entering) & set(leaving)
     return [state for state in entering if state not in inner], [state for state in leaving if state not in inner]
+
+
+def _heat_terms(piece: Piece) -> list[Term]:
+    """All heat into a piece: its ``heat`` and what crosses its boundary beside it."""
+    beside = [Term(1.0, (port.heat,)) for port in piece.kind.heats(piece) if port.beside]
+    return [Term(1.0, (piece.path("heat"),)), *beside]
 
 
 def _entropy_terms(piece: Piece) -> list[Term]:

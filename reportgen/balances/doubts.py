@@ -52,6 +52,7 @@ _SMALLEST: dict[str, tuple[str, float, str]] = {
     "hot_pressure_drop": ("pressure-rises", 0.0, "the pressure of the hot stream ⟦rises|may rise⟧"),
     "cold_pressure_drop": ("pressure-rises", 0.0, "the pressure of the cold stream ⟦rises|may rise⟧"),
     "pressure_ratio": ("pressure-against-machine", 1.0, "the pressure ⟦changes|may change⟧ the wrong way"),
+    "pressure_rise": ("pressure-against-machine", 0.0, "the pressure ⟦falls|may fall⟧"),
     "power": ("power-against-machine", 0.0, "the power ⟦runs|may run⟧ against the natural direction of the machine"),
     "duty": ("heat-against-direction", 0.0, "heat ⟦flows|may flow⟧ from the cold to the hot stream"),
 }
@@ -60,7 +61,13 @@ _WHY = {
     "power-against-machine": "what is given makes it the opposite of what it is called.",
     "heat-against-direction": "the sides may be exchanged.",
 }
-_EFFICIENCIES = ("isentropic_efficiency", "polytropic_efficiency", "exergetic_efficiency")
+_EFFICIENCIES = (
+    "isentropic_efficiency",
+    "polytropic_efficiency",
+    "isothermal_efficiency",
+    "mechanical_efficiency",
+    "exergetic_efficiency",
+)
 #: A value this close to its limit, in parts of its own scale, is rounding.
 _ROUNDING = 1e-9
 #: The same for pressure differences [Pa], far below what any gauge shows.

@@ -5,28 +5,35 @@ Steady flow throughout. With Σin ṁ = Σout ṁ put in, the energy balance rou
     0 = Σin ṁ (H − H*) − Σout ṁ (H − H*) + Q̇ + Ẇ_absorbed ,   H = h + V²/2 + g z
 
 for any reference H*; the stream on the side with only one state is taken for it, so that enthalpies appear as
-differences. Velocity and elevation enter for the states that state them. g = 9.80665 m/s² (exact, standard).
+differences. Velocity and elevation enter for the states that state them, and a velocity where a kind solves for it.
+g = 9.80665 m/s² (exact, standard).
+
+Heat crosses one boundary, of ``boundary_temperature``, or several, listed as ``heat_ports``; ``heat`` then is the sum.
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 
-from reportgen.balances.kinds import Parameter, Port
+from reportgen.balances.kinds import Group, Parameter, Port
 from reportgen.balances.plant import Piece, balance_groups
 from reportgen.balances.relations import Balance, Default, Equation, HeatPort, Relation, Stretch, Term, token, zero
 
 __all__ = [
     "BOUNDARY_TEMPERATURE",
     "HEAT_BY_CUSTOM",
+    "HEAT_PORTS",
     "INLET",
     "OUTLET",
+    "PRESSURE_DROP",
     "adiabatic",
     "elevated_enthalpy",
     "energy_balance",
     "heat_ports",
+    "heat_sum",
     "mass_balances",
     "no_pressure_drop",
+    "over_boundaries",
     "pressure_drop",
     "pressure_ratio",
     "stream_stretches",
@@ -46,6 +53,20 @@ BOUNDARY_TEMPERATURE = Parameter(
 HEAT_BY_CUSTOM = Parameter(
     "heat", "heat_flow", "Heat flow into the fluid (negative for a loss).", "0 when nothing else determines it"
 )
+HEAT_PORTS = Group(
+    "heat_ports",
+    (
+        Parameter("heat", "heat_flow", "Heat flow into the piece over this boundary."),
+        Parameter("temperature", "temperature", "Temperature of this boundary."),
+    ),
+    "Boundaries over which heat crosses, each with its heat flow and temperature.",
+)
+PRESSURE_DROP = Parameter(
+    "pressure_drop",
+    "pressure_difference",
+    "Pressure loss from inlet to outlet.",
+    "0 when nothing else determines it",
+)
 
 
 def elevated_enthalpy(piece: Piece, state: str, flow: str | None, sign: float = 1.0) -> list[Term]:
@@ -53,9 +74,9 @@ def elevated_enthalpy(piece: Piece, state: str, flow: str | None, sign: float = 
     prefix = (flow,) if flow else ()
     velocity, elevation = f"states.{state}.velocity", f"states.{state}.elevation"
     terms = [Term(sign, (*prefix, f"states.{state}.specific_enthalpy"))]
-    if velocity in piece.given:
+    if velocity in piece.carried:
         terms.append(Term(0.5 * sign, (*prefix, velocity, velocity), r"\tfrac{1}{2}"))
-    if elevation in piece.given:
+    if elevation in piece.carried:
         terms.append(Term(STANDARD_GRAVITY * sign, (*prefix, elevation), "g"))
     return terms
 
@@ -106,18 +127,20 @@ def mass_balances(piece: Piece) -> list[Relation]:
     return relations
 
 
-def energy_balance(piece: Piece, heat: str | None = None, power: str | None = None, power_sign: int = 0) -> Balance:
-    """The first law round the whole piece."""
+def energy_balance(piece: Piece, power: str | None = None, power_sign: int = 0) -> Balance:
+    """The first law round the whole piece, with the heat over every boundary."""
     terms: list[Term] = []
     for inlets, outlets in balance_groups(piece):
         terms += _group_energy(piece, inlets, outlets)
-    if heat:
-        terms.append(Term(1.0, (heat,)))
+    terms += over_boundaries(piece)
     if power:
         terms.append(Term(float(power_sign), (power,)))
     sentences = {}
-    if heat:
-        sentences[heat] = f"{piece.title}: the energy balance gives the heat, positive into the fluid."
+    if piece.count(HEAT_PORTS.name):
+        for number, port in enumerate(heat_ports(piece), start=1):
+            sentences[port.heat] = f"{piece.title}: the energy balance gives the heat over boundary {number}."
+    else:
+        sentences[piece.path("heat")] = f"{piece.title}: the energy balance gives the heat, positive into the fluid."
     if power:
         natural = "absorbed" if power_sign > 0 else "delivered"
         sentences[power] = f"{piece.title}: the energy balance gives the power {natural}."
@@ -128,20 +151,49 @@ def energy_balance(piece: Piece, heat: str | None = None, power: str | None = No
             )
             path = f"states.{state}.specific_enthalpy"
             sentences[path] = f"{piece.title}: the energy balance gives the enthalpy of state {state}."
+            path = f"states.{state}.velocity"
+            sentences[path] = f"{piece.title}: the energy balance gives the velocity of stream {state}."
     sentence = f"{piece.title}: energy is conserved in steady flow."
     key = piece.path("energy_balance")
     return Balance(key, piece.owner, "Energy balance", sentence, "first law, steady flow", tuple(terms), {}, sentences)
 
 
-def adiabatic(piece: Piece, energy: Balance | None = None, kept: Balance | None = None) -> Default:
-    """Heat is zero unless determined otherwise; ``kept`` then stands in the place of ``energy``."""
+def over_boundaries(piece: Piece, sign: float = 1.0) -> list[Term]:
+    """Terms of ± Q̇ over every boundary of a piece."""
+    return [Term(sign, (port.heat,)) for port in heat_ports(piece)]
+
+
+def heat_sum(piece: Piece) -> list[Relation]:
+    """Q̇ = Σ Q̇_j for a piece with several boundaries."""
+    ports = over_boundaries(piece)
+    if not piece.count(HEAT_PORTS.name):
+        return []
+    return [
+        Balance(
+            piece.path("heat.sum"),
+            piece.owner,
+            "Heat over all boundaries",
+            f"{piece.title}: the heat is the sum over all boundaries.",
+            "conservation of energy",
+            (Term(-1.0, (piece.path("heat"),)), *ports),
+        )
+    ]
+
+
+def adiabatic(piece: Piece, energy: Balance | None = None, kept: Balance | None = None) -> list[Default]:
+    """Heat is zero unless determined otherwise; ``kept`` then stands in the place of ``energy``.
+
+    Nothing is assumed of a piece that lists its boundaries.
+    """
+    if piece.count(HEAT_PORTS.name):
+        return []
     heat = piece.path("heat")
     text = f"{piece.title} exchanges no heat with its surroundings (adiabatic)."
     sentence = f"{piece.title} is taken as adiabatic."
     relation = zero(heat, piece.path("heat.assumed"), piece.owner, "Adiabatic", sentence)
     rewrites = {energy.key: lambda _: kept} if energy and kept else {}
     rank = 0 if rewrites else 3
-    return Default(f"{piece.owner}.adiabatic", piece.owner, text, (heat,), relation, rewrites, rank)
+    return [Default(f"{piece.owner}.adiabatic", piece.owner, text, (heat,), relation, rewrites, rank)]
 
 
 def pressure_drop(piece: Piece, inlet: str, outlet: str, name: str = "pressure_drop") -> Balance:
@@ -183,11 +235,22 @@ def pressure_ratio(piece: Piece, low: str, high: str) -> Balance:
     )
 
 
-def heat_ports(piece: Piece) -> list[HeatPort]:
-    """The single heat port of a piece with ``heat`` and ``boundary_temperature``."""
-    return [
-        HeatPort(piece.title, piece.path("heat"), piece.path("boundary_temperature"), piece.path("entropy_with_heat"))
-    ]
+def heat_ports(piece: Piece, entropy: str = "entropy_with_heat", into: tuple[str, ...] | None = None) -> list[HeatPort]:
+    """The boundaries of a piece: those it lists, else the one of ``heat`` and ``boundary_temperature``.
+
+    ``entropy`` names the entropy that goes over a single boundary, ``into`` the states of the stream that the heat
+    reaches (None: any).
+    """
+    count = piece.count(HEAT_PORTS.name)
+    if not count:
+        heat, temperature = piece.path("heat"), piece.path("boundary_temperature")
+        return [HeatPort(piece.title, heat, temperature, piece.path(entropy), into)]
+    found = []
+    for number in range(1, count + 1):
+        prefix = piece.path(f"{HEAT_PORTS.name}.{number}")
+        label = f"{piece.title}, boundary {number}"
+        found.append(HeatPort(label, f"{prefix}.heat", f"{prefix}.temperature", f"{prefix}.entropy_with_heat", into))
+    return found
 
 
 def stream_stretches(piece: Piece, along: str, role: str = "stream") -> list[Stretch]:

@@ -17,9 +17,9 @@ from typing import TYPE_CHECKING, Any, Literal
 if TYPE_CHECKING:
     from reportgen.balances.doubts import Doubt
     from reportgen.balances.plant import Piece
-    from reportgen.balances.relations import Default, Formula, HeatPort, Relation, Stretch
+    from reportgen.balances.relations import Default, Exchange, Formula, HeatPort, Relation, Stretch
 
-__all__ = ["Group", "Kind", "Parameter", "Port", "kinds"]
+__all__ = ["Choice", "Group", "Kind", "Parameter", "Port", "kinds"]
 
 
 @dataclass(frozen=True)
@@ -61,21 +61,35 @@ class Group:
 
 
 @dataclass(frozen=True)
+class Choice:
+    """A word that may be given for a piece, one of ``values``; the first of them holds where none is given."""
+
+    name: str
+    values: tuple[str, ...]
+    text: str
+
+
+@dataclass(frozen=True)
 class Kind:
     """One kind of equipment: what the calculation file may say about it, and the relations it obeys.
 
     Parameters
     ----------
     name, title, text : key in the file, title in a report, one sentence on what it is.
-    ports, parameters, groups : what the file may give.
+    ports, parameters, groups, choices : what the file may give.
     relations : the relations of one piece, solvable for any of their variables.
     defaults : assumptions that stand in when nothing else determines a quantity, first ones tried first.
     results : formulae for values that are only reported (efficiencies, numbers of merit).
+    reports : names of the values that relations and results give beside the parameters.
     heats : heat ports with the paths of their heat and their boundary temperature.
+    exchanges : heat that goes from one stream to another inside the piece.
+    velocities : states whose velocity is a quantity of the network, given or not.
     stretches : how each stream changes between two states, for process curves.
     doubts : values that could come out where they cannot be meant although all balances hold, beside those that
         parameters tell; called with the piece and a function from path to samples, shape (N,).
     power_sign : +1 when positive power is absorbed, -1 when it is delivered, 0 when there is no power.
+    work : path of the power that crosses the boundary of the piece; ``power`` itself unless losses lie between.
+    compresses : whether it raises the pressure of a gas, so that several in a row are stages of one compression.
     exergetic_efficiency, entropy_generation_number : their definitions in words.
     """
 
@@ -90,8 +104,14 @@ class Kind:
     heats: Callable[[Piece], Sequence[HeatPort]]
     stretches: Callable[[Piece], Sequence[Stretch]]
     groups: tuple[Group, ...] = ()
+    choices: tuple[Choice, ...] = ()
+    reports: tuple[str, ...] = ()
+    exchanges: Callable[[Piece], Sequence[Exchange]] = lambda piece: ()
+    velocities: Callable[[Piece], Sequence[str]] = lambda piece: ()
     doubts: Callable[[Piece, Callable[[str], Any]], Sequence[Doubt]] = lambda piece, samples: ()
     power_sign: int = 0
+    work: Callable[[Piece], str] = lambda piece: piece.path("power")
+    compresses: bool = False
     exergetic_efficiency: str = ""
     entropy_generation_number: str = ""
 

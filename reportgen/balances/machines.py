@@ -1,119 +1,124 @@
-r"""Relations of machines that exchange work with a stream: compressors, pumps, turbines.
-
-Efficiencies compare enthalpies of the two states; kinetic and potential energy stay outside them.
+r"""Relations of machines that exchange work with a stream: compressors, fans, pumps, turbines.
 
 Isentropic efficiency, with h_s the enthalpy at outlet pressure and inlet entropy:
     absorbing machine   η_s = (h_s − h_1)/(h_2 − h_1)
     delivering machine  η_s = (h_1 − h_2)/(h_1 − h_s)
+Kinetic and potential energy stay outside it, but for a fan, whose total efficiency counts V²/2 at both ends.
 
-Polytropic efficiency, from ds = (1/η_p − 1)(v/T) dp for an absorbing and (η_p − 1)(v/T) dp for a delivering machine,
-with I = ∫ (p v/T) d ln p taken along the path on which the entropy changes evenly with ln p:
-    absorbing machine   η_p = I/(I + s_2 − s_1)
-    delivering machine  η_p = (I + s_2 − s_1)/I
-For an ideal gas I = R ln(p_2/p_1) and the result is exact; for a real fluid I is integrated by four Gauss–Legendre
-nodes, the same way in both directions of solution.
+Polytropic efficiencies are in :mod:`reportgen.balances.polytropic`, the isothermal one in
+:mod:`reportgen.balances.isothermal`, mechanical losses in :mod:`reportgen.balances.shafts`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from typing import Any
-
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
+    HEAT_PORTS,
     INLET,
     OUTLET,
     adiabatic,
     energy_balance,
-    heat_ports,
+    heat_sum,
     mass_balances,
     pressure_ratio,
     stream_stretches,
 )
+from reportgen.balances.isentropic import isentropic_change
+from reportgen.balances.isothermal import ISOTHERMAL_EFFICIENCY, ISOTHERMAL_REPORTS, isothermal_relations
 from reportgen.balances.kinds import Kind, Parameter
 from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Balance, Equation, Formula, Inverse, Relation, Term, token
+from reportgen.balances.polytropic import (
+    POLYTROPIC_EFFICIENCY,
+    POLYTROPIC_REPORTS,
+    polytropic_relation,
+    polytropic_results,
+)
+from reportgen.balances.relations import Balance, Equation, Formula, Relation, Term, token
+from reportgen.balances.shafts import SHAFT_REPORTS, machine_heats, shaft_parameters, shaft_relations, work_path
 
 __all__ = ["machine_kind"]
 
-_POLYTROPIC = Parameter(
-    "polytropic_efficiency",
-    "efficiency",
-    "Efficiency of an infinitely small step of pressure, constant along the path.",
-)
-
-#: Gauss–Legendre nodes and weights on [0, 1], four points.
-_NODES = (0.06943184420297371, 0.33000947820757187, 0.6699905217924281, 0.9305681557970262)
-_WEIGHTS = (0.17392742256872692, 0.32607257743127307, 0.32607257743127307, 0.17392742256872692)
+_PRESSURE_RISE = Parameter("pressure_rise", "pressure_difference", "Pressure at the outlet less that at the inlet.")
 
 
-def machine_kind(name: str, title: str, text: str, *, absorbs: bool, polytropic: bool) -> Kind:
+def machine_kind(
+    name: str,
+    title: str,
+    text: str,
+    *,
+    absorbs: bool,
+    polytropic: bool = False,
+    isothermal: bool = False,
+    total: bool = False,
+) -> Kind:
     """A machine with one inlet and one outlet that absorbs power, or delivers it.
 
-    ``polytropic``: whether a polytropic efficiency has a meaning for it.
+    ``polytropic``, ``isothermal``: whether efficiencies of these names have a meaning for it. ``total``: its efficiency
+    counts kinetic energy, and its pressure rise may be given.
     """
     verb = "absorbed" if absorbs else "delivered"
     merit = (
         f"Exergy gained by the stream over the power {verb}." if absorbs else f"Power {verb} over the exergy given up."
     )
+    parameters = _parameters(verb, total)
+    parameters += (POLYTROPIC_EFFICIENCY,) if polytropic else ()
+    parameters += (ISOTHERMAL_EFFICIENCY,) if isothermal else ()
+    reports: tuple[str, ...] = ("isentropic_outlet_enthalpy", *SHAFT_REPORTS)
+    reports += POLYTROPIC_REPORTS if polytropic else ()
+    reports += ISOTHERMAL_REPORTS if isothermal else ()
+
+    def relations(piece: Piece) -> list[Relation]:
+        found = _relations(piece, absorbs, total)
+        found += [polytropic_relation(piece, absorbs)] if polytropic else []
+        found += isothermal_relations(piece) if isothermal else []
+        return [*found, *shaft_relations(piece, absorbs)]
+
     return Kind(
         name=name,
         title=title,
         text=text,
         ports=(INLET, OUTLET),
-        parameters=(*_parameters(verb), _POLYTROPIC) if polytropic else _parameters(verb),
-        relations=lambda piece: _relations(piece, absorbs, polytropic),
-        defaults=lambda piece: [adiabatic(piece)],
-        results=lambda piece: [*_results(piece, absorbs), *(_path_results(piece) if polytropic else ())],
-        heats=heat_ports,
+        parameters=(*parameters, *shaft_parameters(verb)),
+        relations=relations,
+        defaults=adiabatic,
+        results=lambda piece: [*_results(piece, absorbs), *(polytropic_results(piece, absorbs) if polytropic else ())],
+        heats=machine_heats,
         stretches=lambda piece: stream_stretches(piece, "entropy"),
+        groups=(HEAT_PORTS,),
+        reports=reports,
         power_sign=1 if absorbs else -1,
+        work=work_path,
+        compresses=absorbs and polytropic,
         exergetic_efficiency=merit,
         entropy_generation_number=f"Lost work over the power {verb}.",
     )
 
 
-def _parameters(verb: str) -> tuple[Parameter, ...]:
+def _parameters(verb: str, total: bool) -> tuple[Parameter, ...]:
     """Parameters of every machine; ``verb`` says which way power is positive ("absorbed" or "delivered")."""
+    kinetic = ", kinetic energies counted in (total efficiency)" if total else ""
     return (
         Parameter("power", "power", f"Power {verb}."),
         Parameter(
-            "isentropic_efficiency", "efficiency", "Efficiency against the isentropic change to the same pressure."
+            "isentropic_efficiency",
+            "efficiency",
+            f"Efficiency against the isentropic change to the same pressure{kinetic}.",
         ),
         Parameter("pressure_ratio", "ratio", "Higher over lower pressure."),
+        *((_PRESSURE_RISE,) if total else ()),
         HEAT_BY_CUSTOM,
         BOUNDARY_TEMPERATURE,
     )
 
 
-def _isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
+def _isentropic_relations(piece: Piece, absorbs: bool, total: bool) -> list[Relation]:
     """Enthalpy of the isentropic change, and the definition of the isentropic efficiency."""
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
-    fluid = piece.fluid(inlet)
     first, second = f"states.{inlet}.specific_enthalpy", f"states.{outlet}.specific_enthalpy"
-    pressure, entropy = f"states.{outlet}.pressure", f"states.{inlet}.specific_entropy"
     ideal, efficiency = piece.path("isentropic_outlet_enthalpy"), piece.path("isentropic_efficiency")
-
-    def enthalpy(outlet_pressure: Any, inlet_entropy: Any) -> Any:
-        state = fluid.at(pressure=outlet_pressure, specific_entropy=inlet_entropy, errors="mask")
-        return state.specific_enthalpy
-
-    change = Formula(
-        piece.path("isentropic_outlet_enthalpy"),
-        piece.owner,
-        "Isentropic change",
-        f"{piece.title}: without entropy generation the stream would reach the pressure of state {outlet} "
-        f"with the entropy of state {inlet}.",
-        f"equation of state, {fluid.title}",
-        ideal,
-        (pressure, entropy),
-        enthalpy,
-        rf"h\left({token(pressure)},\,{token(entropy)}\right)",
-        fluids=(piece.fluid_id(inlet),),
-        reason="the isentropic outlet state lies outside the range of the fluid's equation",
-    )
+    change = isentropic_change(piece)
     h1, h2, hs, eta = token(first), token(second), token(ideal), token(efficiency)
     if absorbs:
         terms = ((1.0, (efficiency, second)), (-1.0, (efficiency, first)), (-1.0, (ideal,)), (1.0, (first,)))
@@ -129,6 +134,9 @@ def _isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
             efficiency: Equation(eta, rf"\frac{{{h1} - {h2}}}{{{h1} - {hs}}}"),
             ideal: Equation(hs, rf"{h1} - \frac{{{h1} - {h2}}}{{{eta}}}"),
         }
+    kinetic = _kinetic_terms(piece, efficiency) if total else ()
+    if kinetic:  # the hand-set forms hold enthalpies only
+        forms = {}
     sentences = {
         second: f"{piece.title}: the isentropic efficiency gives the enthalpy of state {outlet}.",
         efficiency: f"{piece.title}: both states give the isentropic efficiency.",
@@ -140,139 +148,52 @@ def _isentropic_relations(piece: Piece, absorbs: bool) -> list[Relation]:
         "Isentropic efficiency",
         f"{piece.title}: the isentropic efficiency compares the change of enthalpy with the isentropic one.",
         "definition of isentropic efficiency",
-        tuple(Term(coefficient, factors) for coefficient, factors in terms),
+        (*(Term(coefficient, factors) for coefficient, factors in terms), *kinetic),
         forms,
         sentences,
     )
     return [change, definition]
 
 
-def _path_integral(fluid: Any) -> Callable[[Any, Any, Any, Any], Any]:
-    """I = ∫ (p v/T) d ln p [J/(kg K)] from (p1, s1) to (p2, s2), entropy even in ln p."""
-
-    def ideal(p1: Any, s1: Any, p2: Any, s2: Any) -> Any:
-        import numpy as np
-
-        return fluid.gas_constant * np.log(p2 / p1)
-
-    def real(p1: Any, s1: Any, p2: Any, s2: Any) -> Any:
-        import numpy as np
-
-        nodes = np.array(_NODES)[:, None]
-        p1, s1, p2, s2 = (np.atleast_1d(np.asarray(part, float)) for part in np.broadcast_arrays(p1, s1, p2, s2))
-        logarithm = np.log(p2 / p1)
-        pressure = p1 * np.exp(nodes * logarithm)
-        state = fluid.at(pressure=pressure, specific_entropy=s1 + nodes * (s2 - s1), errors="mask")
-        integrand = pressure / (state.density * state.temperature)
-        return np.array(_WEIGHTS) @ integrand * logarithm
-
-    return ideal if fluid.kind == "ideal-gas" else real
+def _kinetic_terms(piece: Piece, efficiency: str) -> tuple[Term, ...]:
+    """(η − 1)(V_2² − V_1²)/2, what kinetic energies add to the definition of an absorbing machine's efficiency."""
+    found = []
+    for state, sign in ((piece.one("outlet"), 1.0), (piece.one("inlet"), -1.0)):
+        velocity = f"states.{state}.velocity"
+        if velocity in piece.carried:
+            found.append(Term(0.5 * sign, (efficiency, velocity, velocity), r"\tfrac{1}{2}"))
+            found.append(Term(-0.5 * sign, (velocity, velocity), r"\tfrac{1}{2}"))
+    return tuple(found)
 
 
-def _polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
-    """The polytropic efficiency from the end states."""
-    inlet, outlet = piece.one("inlet"), piece.one("outlet")
-    fluid = piece.fluid(inlet)
-    integral = _path_integral(fluid)
-    inputs = _ends(piece)
-    p1, s1, p2, s2 = (token(path) for path in inputs)
-    efficiency = piece.path("polytropic_efficiency")
-    eta = token(efficiency)
-    is_ideal = fluid.kind == "ideal-gas"
-    whole = rf"R\ln\frac{{{p2}}}{{{p1}}}" if is_ideal else token(piece.path("pressure_integral"))
-
-    def evaluate(first: Any, entropy: Any, last: Any, outlet_entropy: Any) -> Any:
-        import numpy as np
-
-        path = integral(first, entropy, last, outlet_entropy)
-        change = outlet_entropy - entropy
-        with np.errstate(divide="ignore", invalid="ignore"):
-            return path / (path + change) if absorbs else (path + change) / path
-
-    inverses = {}
-    if is_ideal:
-
-        def leave(first: Any, entropy: Any, last: Any, eta_value: Any) -> Any:
-            return entropy + integral(first, entropy, last, entropy) * (
-                1.0 / eta_value - 1.0 if absorbs else eta_value - 1.0
-            )
-
-        bracket = rf"\left(\frac{{1}}{{{eta}}} - 1\right)" if absorbs else rf"\left({eta} - 1\right)"
-        inverses[inputs[3]] = Inverse(
-            leave,
-            rf"{s1} + {bracket}{whole}",
-            f"{piece.title}: the polytropic efficiency gives the entropy of state {outlet}.",
-        )
-    top, bottom = (whole, rf"{whole} + {s2} - {s1}") if absorbs else (rf"{whole} + {s2} - {s1}", whole)
-    manner = (
-        f"exact for an ideal gas, R = {float(fluid.gas_constant):.6g} J/(kg K)"
-        if is_ideal
-        else "with the integral of v/T over pressure, given with the figures of merit"
-    )
-    return Formula(
-        piece.path("polytropic_efficiency.definition"),
-        piece.owner,
-        "Polytropic efficiency",
-        f"{piece.title}: the polytropic efficiency ties the rise of entropy to the change of pressure.",
-        f"definition of polytropic efficiency ({manner})",
-        efficiency,
-        inputs,
-        evaluate,
-        rf"\frac{{{top}}}{{{bottom}}}",
-        inverses,
-        fluids=(piece.fluid_id(inlet),),
-        reason="the path between the two states leaves the range of the fluid's equation, or has no length",
-    )
-
-
-def _ends(piece: Piece) -> tuple[str, str, str, str]:
-    """Paths of pressure and entropy of inlet and outlet."""
-    inlet, outlet = (f"states.{piece.one(port)}." for port in ("inlet", "outlet"))
-    names = ("pressure", "specific_entropy")
-    return inlet + names[0], inlet + names[1], outlet + names[0], outlet + names[1]
-
-
-def _path_results(piece: Piece) -> list[Formula]:
-    """I = ∫ (v/T) dp of a real fluid, by which its polytropic efficiency can be checked."""
-    inlet = piece.one("inlet")
-    fluid = piece.fluid(inlet)
-    if fluid.kind == "ideal-gas":
-        return []
-    inputs = _ends(piece)
-    p1, _, p2, _ = (token(path) for path in inputs)
-    output = piece.path("pressure_integral")
-    return [
-        Formula(
-            output,
-            piece.owner,
-            "Integral over pressure",
-            f"{piece.title}: the integral of v/T over pressure, along a path on which the entropy changes evenly with "
-            "ln p.",
-            "four Gauss–Legendre nodes",
-            output,
-            inputs,
-            _path_integral(fluid),
-            rf"\int_{{{p1}}}^{{{p2}}}\frac{{v}}{{T}}\,\mathrm{{d}}p",
-            fluids=(piece.fluid_id(inlet),),
-            reason="the path between the two states leaves the range of the fluid's equation",
-        )
-    ]
-
-
-def _relations(piece: Piece, absorbs: bool, polytropic: bool) -> list[Relation]:
-    """Mass, energy, pressure ratio and efficiencies of a machine with one inlet and one outlet."""
+def _relations(piece: Piece, absorbs: bool, total: bool) -> list[Relation]:
+    """Mass, energy, pressure ratio and isentropic efficiency of a machine with one inlet and one outlet."""
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
     low, high = (inlet, outlet) if absorbs else (outlet, inlet)
-    energy = energy_balance(piece, piece.path("heat"), piece.path("power"), 1 if absorbs else -1)
-    relations = [
+    return [
         *mass_balances(piece),
         pressure_ratio(piece, low, high),
-        *_isentropic_relations(piece, absorbs),
-        energy,
+        *([_pressure_rise(piece, low, high)] if total else ()),
+        *_isentropic_relations(piece, absorbs, total),
+        energy_balance(piece, piece.path("power"), 1 if absorbs else -1),
+        *heat_sum(piece),
     ]
-    if polytropic:
-        relations.append(_polytropic_relation(piece, absorbs))
-    return relations
+
+
+def _pressure_rise(piece: Piece, low: str, high: str) -> Balance:
+    """Δp = p_high − p_low."""
+    return Balance(
+        piece.path("pressure_rise.definition"),
+        piece.owner,
+        "Pressure rise",
+        f"{piece.title}: the pressure rises from state {low} to state {high}.",
+        "definition of the pressure rise",
+        (
+            Term(1.0, (f"states.{high}.pressure",)),
+            Term(-1.0, (f"states.{low}.pressure",)),
+            Term(-1.0, (piece.path("pressure_rise"),)),
+        ),
+    )
 
 
 def _results(piece: Piece, absorbs: bool) -> list[Formula]:
@@ -285,7 +206,7 @@ def _results(piece: Piece, absorbs: bool) -> list[Formula]:
         f"states.{inlet}.mass_flow",
         f"states.{inlet}.specific_exergy",
         f"states.{outlet}.specific_exergy",
-        piece.path("power"),
+        work_path(piece),
     )
     m, e1, e2, power = (token(path) for path in paths)
     if absorbs:

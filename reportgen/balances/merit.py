@@ -8,7 +8,15 @@ from typing import Any
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Formula, token
 
-__all__ = ["entropy_number_by_power", "exergy_ratio", "ratio_of"]
+__all__ = [
+    "divided_exergy_ratio",
+    "entropy_number_by_flow",
+    "entropy_number_by_power",
+    "exergy_ratio",
+    "kinetic_exergy_ratio",
+    "mach_number",
+    "ratio_of",
+]
 
 
 def ratio_of(numerator: Any, denominator: Any) -> Any:
@@ -79,4 +87,63 @@ def entropy_number_by_flow(piece: Piece, state: str) -> Formula:
         rf"\frac{{{token(generated)}}}{{{token(flow)}\,R}}",
         fluids=(piece.fluid_id(state),),
         reason="there is no flow",
+    )
+
+
+def divided_exergy_ratio(piece: Piece, inlet: str, outlets: Sequence[str]) -> Formula:
+    """ε = Σout ṁ e / (ṁ e) of one stream that leaves as several."""
+    paths = []
+    for state in (inlet, *outlets):
+        paths += [f"states.{state}.mass_flow", f"states.{state}.specific_exergy"]
+    products = [rf"{token(paths[i])}\,{token(paths[i + 1])}" for i in range(0, len(paths), 2)]
+    return exergy_ratio(
+        piece,
+        "exergy of the streams that leave over exergy of the stream that enters.",
+        paths,
+        lambda *arrays: sum(arrays[i] * arrays[i + 1] for i in range(2, len(arrays), 2)),
+        lambda *arrays: arrays[0] * arrays[1],
+        rf"\frac{{{' + '.join(products[1:])}}}{{{products[0]}}}",
+    )
+
+
+def kinetic_exergy_ratio(piece: Piece) -> Formula:
+    """ε = (e_2 + V_2²/2)/(e_1 + V_1²/2) of one stream; a velocity that is neglected is left out."""
+    paths, latex, velocities = [], [], []
+    for port in ("outlet", "inlet"):
+        exergy, velocity = (f"states.{piece.one(port)}.{name}" for name in ("specific_exergy", "velocity"))
+        paths.append(exergy)
+        moving = velocity in piece.carried
+        velocities.append(moving)
+        kinetic = rf" + \tfrac{{1}}{{2}}\left({token(velocity)}\right)^{{2}}" if moving else ""
+        latex.append(token(exergy) + kinetic)
+        paths += [velocity] if moving else []
+
+    def part(number: int, arrays: Sequence[Any]) -> Any:
+        first = 0 if number == 0 else 1 + velocities[0]
+        return arrays[first] + (0.5 * arrays[first + 1] ** 2 if velocities[number] else 0.0)
+
+    return exergy_ratio(
+        piece,
+        "exergy and kinetic energy of the stream that leaves over those of the stream that enters.",
+        paths,
+        lambda *arrays: part(0, arrays),
+        lambda *arrays: part(1, arrays),
+        rf"\frac{{{latex[0]}}}{{{latex[1]}}}",
+    )
+
+
+def mach_number(piece: Piece, state: str) -> Formula:
+    """Ma = V/w of one stream."""
+    velocity, sound = f"states.{state}.velocity", f"states.{state}.speed_of_sound"
+    return Formula(
+        piece.path("mach_number"),
+        piece.owner,
+        "Mach number",
+        f"{piece.title}: velocity of stream {state} in parts of the speed of sound there.",
+        "definition of the Mach number",
+        piece.path("mach_number"),
+        (velocity, sound),
+        lambda speed, wave: ratio_of(speed, wave),
+        rf"\frac{{{token(velocity)}}}{{{token(sound)}}}",
+        reason="a two-phase state has no speed of sound that could be stated",
     )

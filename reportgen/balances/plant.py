@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from typing import Any
 
 from reportgen.balances.kinds import Kind, kinds
+from reportgen.balances.zeros import StreamGroup, conflicts, same_zero
 from reportgen.errors import Fault, InputError
 
 __all__ = ["EquipmentDefinition", "Piece", "Plant", "Train", "balance_groups", "pieces_of", "refuse_half_elevations"]
@@ -48,6 +49,8 @@ class Piece:
         self.kind = kind
         self.options = definition.options
         self.given = given
+        #: Velocities and elevations that count in the energy of a stream: given ones, and those a kind solves for.
+        self.carried = frozenset(path for path in given if path.endswith((".velocity", ".elevation")))
         self.owner = f"equipment.{tag}"
         self._plant = plant
         self._ports = {name: tuple(states) for name, states in definition.ports.items()}
@@ -94,16 +97,10 @@ class Piece:
         entries = self.options.get(group, ())
         return entries if isinstance(entries, int) else len(entries)
 
-
-def _same_zero(first: Any, second: Any) -> bool:
-    """True when two models are the same fluid with the same zero of enthalpy and entropy."""
-    return first is second or (
-        first.kind == second.kind
-        and first.substance == second.substance
-        and first.composition == second.composition
-        and first.entropy_zero == second.entropy_zero
-        and getattr(first, "constant_heat_capacity", None) == getattr(second, "constant_heat_capacity", None)
-    )
+    def choice(self, name: str) -> str:
+        """The word chosen for one of the kind's choices."""
+        values = next(choice.values for choice in self.kind.choices if choice.name == name)
+        return str(self.options.get(name) or values[0])
 
 
 def _ports_of(piece: Piece, definition: EquipmentDefinition, plant: Plant) -> list[Fault]:
@@ -125,40 +122,24 @@ def _ports_of(piece: Piece, definition: EquipmentDefinition, plant: Plant) -> li
     return faults
 
 
-def _zeros_of(piece: Piece) -> list[Fault]:
-    """Streams that leave as another fluid than they came in: their enthalpies have no common zero."""
-    faults = []
-    groups = balance_groups(piece)
-    for inlets, outlets in groups:
-        for direction, states, others in (("enters", inlets, outlets), ("leaves", outlets, inlets)):
-            if states and not others:
-                opposite = piece.streams("out" if direction == "enters" else "in")
-                names = sorted({piece.fluid_id(state) for state in opposite}) or ["nothing"]
-                faults.append(
-                    Fault(
-                        f"Fluid {piece.fluid_id(states[0])} {direction} (state {', '.join(states)}) but the other side "
-                        f"has {', '.join(names)} only: enthalpies and entropies of different fluids have different "
-                        "zeros, and no balance can be made between them.",
-                        piece.owner,
-                        hint="Give the states on both sides of a stream the same fluid.",
-                    )
-                )
-    return faults
-
-
 def balance_groups(piece: Piece) -> list[tuple[tuple[str, ...], tuple[str, ...]]]:
     """Inlets and outlets that exchange mass with each other: those of one side and one fluid."""
-    groups: list[tuple[str, Any, list[str], list[str]]] = []
+    return [(group.inlets, group.outlets) for group in _stream_groups(piece)]
+
+
+def _stream_groups(piece: Piece) -> list[StreamGroup]:
+    groups: list[tuple[str, str, Any, list[str], list[str]]] = []
     for port in piece.kind.ports:
         for state in piece.states(port.name):
             fluid = piece.fluid(state)
-            for side, model, entering, leaving in groups:
-                if side == port.side and _same_zero(model, fluid):
+            for side, _, model, entering, leaving in groups:
+                if side == port.side and same_zero(model, fluid):
                     (entering if port.direction == "in" else leaving).append(state)
                     break
             else:
-                groups.append((port.side, fluid, *(([state], []) if port.direction == "in" else ([], [state]))))
-    return [(tuple(entering), tuple(leaving)) for _, _, entering, leaving in groups]
+                sides = ([state], []) if port.direction == "in" else ([], [state])
+                groups.append((port.side, piece.fluid_id(state), fluid, *sides))
+    return [StreamGroup(side, name, model, tuple(ins), tuple(outs)) for side, name, model, ins, outs in groups]
 
 
 def refuse_half_elevations(pieces: Mapping[str, Piece], values: Mapping[str, Any]) -> None:
@@ -236,7 +217,7 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
         found = _ports_of(piece, definition, plant)
         faults += found
         if not found and not faults:
-            faults += _zeros_of(piece)
+            faults += conflicts(piece.title, piece.owner, _stream_groups(piece))
         pieces[tag] = piece
     listed: dict[str, str] = {}
     for name, train in plant.trains.items():
@@ -259,6 +240,9 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
         faults += _shared_states(pieces, plant)
     if faults:
         raise InputError(faults)
+    solved = {f"states.{state}.velocity" for piece in pieces.values() for state in piece.kind.velocities(piece)}
+    for piece in pieces.values():
+        piece.carried |= solved
     return pieces
 
 

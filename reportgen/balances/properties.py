@@ -7,7 +7,7 @@ from typing import Any
 
 from reportgen.errors import Fault, InputError
 
-__all__ = ["known_pair", "state_from", "why_missing"]
+__all__ = ["known_pair", "state_from", "what_would_do", "why_missing"]
 
 #: Pairs in the order of preference; those a model does not carry are found out once and remembered. What places a state
 #: on or off saturation comes first; pressure and temperature come after pairs that also tell two-phase states apart.
@@ -25,6 +25,11 @@ PAIRS = (
     ("temperature", "specific_volume"),
     ("temperature", "specific_entropy"),
     ("temperature", "specific_enthalpy"),
+    ("specific_enthalpy", "specific_entropy"),
+    ("density", "specific_enthalpy"),
+    ("specific_volume", "specific_enthalpy"),
+    ("density", "specific_entropy"),
+    ("specific_volume", "specific_entropy"),
 )
 
 _carried: dict[tuple[type, tuple[str, str]], bool] = {}
@@ -69,3 +74,9 @@ def why_missing(state: Any, column: int) -> str:
     """What a model says about a column it could not evaluate."""
     fault: Fault | None = state.faults.get(column)
     return fault.message if fault else "the property model gives no value."
+
+
+def what_would_do(state: Any, column: int) -> tuple[str | None, str | None]:
+    """What the model expects, and its hint (such as which of several states to name), for a column without value."""
+    fault: Fault | None = state.faults.get(column)
+    return (fault.expected, fault.hint) if fault else (None, None)

@@ -19,6 +19,7 @@ __all__ = [
     "Balance",
     "Default",
     "Equation",
+    "Exchange",
     "Formula",
     "HeatPort",
     "Inverse",
@@ -176,17 +177,30 @@ class Balance:
         wanted = set(paths)
         return all(sum(factor in wanted for factor in term.factors) <= 1 for term in self.terms)
 
+    def is_square_in(self, path: str) -> bool:
+        """True when the path occurs as its square only, as a velocity does in a kinetic energy."""
+        return all(term.factors.count(path) in (0, 2) for term in self.terms)
+
+    def is_direct_in(self, path: str) -> bool:
+        """True when ``direct`` gives the path in closed form."""
+        return self.is_linear_in((path,)) or self.is_square_in(path)
+
     def direct(self, path: str, values: Mapping[str, Array]) -> Array:
-        """The value of one linear variable from all others."""
+        """The value of one variable that occurs linearly, or as its square (then the positive root), from all others.
+
+        NaN where a square would be negative.
+        """
+        square = self.is_square_in(path)
         slope: Array = 0.0
         rest: Array = 0.0
         for term in self.terms:
             if path in term.factors:
-                slope = slope + term.without(path).value(values)
+                bare = term.without(path).without(path) if square else term.without(path)
+                slope = slope + bare.value(values)
             else:
                 rest = rest + term.value(values)
         # Adding zero turns −0.0 into 0.0.
-        return -rest / slope + 0.0
+        return (-rest / slope) ** 0.5 if square else -rest / slope + 0.0
 
     def solved(self, path: str) -> Equation:
         """The equation written for one variable."""
@@ -195,13 +209,17 @@ class Balance:
     def _written(self, path: str) -> Equation:
         if path in self.forms:
             return self.forms[path]
+        square = self.is_square_in(path)
         slope = [term.without(path) for term in self.terms if path in term.factors]
+        slope = [term.without(path) for term in slope] if square else slope
         rest = [term for term in self.terms if path not in term.factors]
         sign = self._orientation(slope, rest)
         numerator = sum_latex(rest, -sign)
         if len(slope) == 1 and not slope[0].factors and not slope[0].label:
-            return Equation(token(path), numerator)
-        return Equation(token(path), rf"\frac{{{numerator}}}{{{sum_latex(slope, sign)}}}")
+            right = numerator
+        else:
+            right = rf"\frac{{{numerator}}}{{{sum_latex(slope, sign)}}}"
+        return Equation(token(path), rf"\sqrt{{{right}}}" if square else right)
 
     @staticmethod
     def _orientation(slope: Sequence[Term], rest: Sequence[Term]) -> float:
@@ -317,12 +335,27 @@ class Default:
 
 @dataclass(frozen=True)
 class HeatPort:
-    """Heat that crosses the boundary of a piece: paths of heat, boundary temperature and entropy carried."""
+    """Heat that crosses the boundary of a piece: paths of heat, boundary temperature and entropy carried.
+
+    ``into``: the states of the stream it goes into (None: any of the piece). ``beside``: it is no part of the ``heat``
+    of the piece, as what bearings lose.
+    """
 
     label: str
     heat: str
     temperature: str
     entropy: str
+    into: tuple[str, ...] | None = None
+    beside: bool = False
+
+
+@dataclass(frozen=True)
+class Exchange:
+    """Heat at ``path`` that the stream of the states ``giver`` gives to that of the states ``taker``."""
+
+    path: str
+    giver: tuple[str, ...]
+    taker: tuple[str, ...]
 
 
 @dataclass(frozen=True)

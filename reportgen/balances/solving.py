@@ -12,7 +12,7 @@ from reportgen.balances.accounting import add_results
 from reportgen.balances.doubts import Doubt, doubts
 from reportgen.balances.newton import Coupled, NoSolution
 from reportgen.balances.plant import Plant, balance_groups, pieces_of, refuse_half_elevations
-from reportgen.balances.properties import known_pair, state_from, why_missing
+from reportgen.balances.properties import known_pair, state_from, what_would_do, why_missing
 from reportgen.balances.relations import Balance, Equation, Formula, token
 from reportgen.balances.solution import Assumption, Solution, Step
 from reportgen.balances.starts import Starts
@@ -139,12 +139,19 @@ class _Run:
         if missing[0]:
             absent = [prefix + name for name in pair if not np.isfinite(inputs[name][0])]
             reason = self.solution.reasons.get(absent[0]) if absent else None
+            expected, hint = what_would_do(result, 0)
             if reason is None:
                 reason = f"it depends on {absent[0]}, which has no value" if absent else why_missing(result, 0)
             told = " and ".join(name.replace("_", " ") for name in pair)
             message = f"State {state} ({fluid.title}) cannot be evaluated from its {told}: {reason}"
             raise SolutionError(
-                Fault(message, f"states.{state}", numbers=self._numbers(prefix + name for name in pair))
+                Fault(
+                    message,
+                    f"states.{state}",
+                    expected=expected,
+                    hint=hint,
+                    numbers=self._numbers(prefix + name for name in pair),
+                )
             )
         if missing.any():
             text = f"State {state} has no value in {int(missing.sum())} of {self.columns} columns: "
@@ -227,7 +234,7 @@ class _Run:
         """Solve one relation for one unknown in closed form; False when that cannot be done."""
         fluids: tuple[str, ...] = ()
         with np.errstate(all="ignore"):
-            if isinstance(relation, Balance) and relation.is_linear_in((unknown,)):
+            if isinstance(relation, Balance) and relation.is_direct_in(unknown):
                 result = relation.direct(unknown, self.values)
                 equation = relation.solved(unknown)
             elif isinstance(relation, Formula) and relation.output == unknown:
@@ -382,7 +389,7 @@ def _neglected(solution: Solution) -> list[Assumption]:
                 ("velocity", "The kinetic energy of stream {} is neglected."),
                 ("elevation", "Stream {} is at the datum of elevations."),
             ):
-                silent = [state for state in states if f"states.{state}.{name}" not in piece.given]
+                silent = [state for state in states if f"states.{state}.{name}" not in piece.carried]
                 if len(silent) == len(states):
                     continue
                 for state in silent:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Container, Iterable, Mapping
 from dataclasses import dataclass, field
 
 from reportgen.balances.matching import Matching, blocks_in_order
@@ -83,10 +83,10 @@ class Network:
     assumed: dict[str, Default] = field(default_factory=dict)
 
 
-def state_properties(state: str, given: frozenset[str], flows: Iterable[str]) -> list[str]:
-    """Properties of a state that take part in the network."""
+def state_properties(state: str, known: Container[str], flows: Iterable[str]) -> list[str]:
+    """Properties of a state that take part in the network; ``known`` holds those given and those a piece relates."""
     wanted = list(PROPERTIES[:4])
-    wanted += [name for name in PROPERTIES[4:] if f"states.{state}.{name}" in given]
+    wanted += [name for name in PROPERTIES[4:] if f"states.{state}.{name}" in known]
     if "volume_flow" in flows and "density" not in wanted:
         wanted.append("density")
     return wanted
@@ -159,21 +159,21 @@ def _split_implied(relations: list[AnyRelation]) -> tuple[list[AnyRelation], lis
     return kept, implied
 
 
-def _all_relations(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> list[AnyRelation]:
+def all_relations(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> list[AnyRelation]:
     connected = {state for piece in pieces.values() for _, _, state in piece.connections()}
+    of_pieces = [relation for piece in pieces.values() for relation in piece.kind.relations(piece)]
+    known = given.union(path for relation in of_pieces for path in relation.variables)
     relations: list[AnyRelation] = []
     for state in plant.states:
         flows = [name for name in FLOWS if f"states.{state}.{name}" in given]
-        for name in state_properties(state, given, flows):
+        for name in state_properties(state, known, flows):
             if name == "temperature" and plant.fluids[plant.states[state]].kind == "ideal-gas":
                 relations.append(PropertyRelation(state, name, ("specific_enthalpy",)))
             elif name not in ("pressure", "specific_enthalpy"):
                 relations.append(PropertyRelation(state, name))
         if flows or state in connected:
             relations += _flow_relations(plant, state, flows)
-    for piece in pieces.values():
-        relations += piece.kind.relations(piece)
-    return relations
+    return [*relations, *of_pieces]
 
 
 def _check_names(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> None:
@@ -195,7 +195,7 @@ def _check_names(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str
 def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> Network:
     """Relations, assumptions and order of solution; SolutionError when too little or too much is given."""
     _check_names(plant, pieces, given)
-    relations, implied = _split_implied(_all_relations(plant, pieces, given))
+    relations, implied = _split_implied(all_relations(plant, pieces, given))
     table: dict[str, AnyRelation] = {}
     matching = Matching()
     unknowns: dict[str, None] = {}
@@ -323,7 +323,21 @@ def _listed(items: Iterable[str], most: int = 12) -> str:
 
 #: Order in which missing quantities are proposed.
 _PROPOSED = ("mass_flow", "pressure", "temperature", "specific_enthalpy", "power", "duty", "heat")
-_EXTENSIVE = ("mass_flow", "power", "heat", "duty", "volume_flow", "molar_flow")
+#: What grows with the flows and with nothing else; an isothermal efficiency is a quotient of two such.
+_EXTENSIVE = (
+    "mass_flow",
+    "volume_flow",
+    "molar_flow",
+    "power",
+    "shaft_power",
+    "heat",
+    "mechanical_heat",
+    "duty",
+    "isothermal_efficiency",
+    "inlet_area",
+    "outlet_area",
+    "throat_area",
+)
 
 
 def _refuse_lack(matching: Matching, unknowns: list[str], pieces: Mapping[str, Piece]) -> None:

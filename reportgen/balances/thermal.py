@@ -8,10 +8,13 @@ from typing import Any, Literal
 from reportgen.balances.doubts import Doubt
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
+    HEAT_PORTS,
     INLET,
     OUTLET,
+    PRESSURE_DROP,
     energy_balance,
     heat_ports,
+    heat_sum,
     mass_balances,
     no_pressure_drop,
     pressure_drop,
@@ -22,15 +25,7 @@ from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Formula, Relation, token
 
-__all__ = ["PRESSURE_DROP", "heat_kind"]
-
-PRESSURE_DROP = Parameter(
-    "pressure_drop",
-    "pressure_difference",
-    "Pressure loss from inlet to outlet.",
-    "0 when nothing else determines it",
-)
-
+__all__ = ["exergy_with_heat", "heat_kind"]
 
 #: Exergy of heat below this part of the heat itself is what rounding leaves at the surroundings' temperature.
 _ROUNDING = 1e-12
@@ -47,11 +42,12 @@ def heat_kind(name: str, title: str, text: str, *, heat: str, takes_up: bool) ->
         relations=_relations,
         defaults=lambda piece: [no_pressure_drop(piece)],
         results=lambda piece: [
-            _exergy_efficiency(piece),
+            exergy_with_heat(piece),
             entropy_number_by_power(piece, piece.path("heat"), "heat flow"),
         ],
         heats=heat_ports,
         stretches=lambda piece: stream_stretches(piece, "enthalpy"),
+        groups=(HEAT_PORTS,),
         doubts=lambda piece, samples: [_heat_the_other_way(piece, samples, takes_up)],
         exergetic_efficiency="Exergy gained over exergy given up, by the stream and by the heat at its boundary.",
         entropy_generation_number="Lost work over heat.",
@@ -61,7 +57,7 @@ def heat_kind(name: str, title: str, text: str, *, heat: str, takes_up: bool) ->
 def _relations(piece: Piece) -> list[Relation]:
     """Mass, pressure loss and energy of a stream that exchanges heat only."""
     drop = pressure_drop(piece, piece.one("inlet"), piece.one("outlet"))
-    return [*mass_balances(piece), drop, energy_balance(piece, piece.path("heat"))]
+    return [*mass_balances(piece), drop, energy_balance(piece), *heat_sum(piece)]
 
 
 def _heat_the_other_way(piece: Piece, samples: Callable[[str], Any], takes_up: bool) -> Doubt:
@@ -73,7 +69,7 @@ def _heat_the_other_way(piece: Piece, samples: Callable[[str], Any], takes_up: b
     return Doubt("heat-against-direction", piece.owner, path, text, samples(path), 0.0, keep, "heat_flow")
 
 
-def _exergy_efficiency(piece: Piece) -> Formula:
+def exergy_with_heat(piece: Piece) -> Formula:
     """Exergy gained over exergy spent, of stream and heat: whichever of the two gains.
 
     The heat brings the exergy Q̇ − T0 Ṡ_Q = (1 − T0/T_b) Q̇. Below the surroundings' temperature this is negative for

@@ -188,7 +188,7 @@ def balance_round(plant: EvaluatedPlant, tags: Sequence[str]) -> dict[str, tuple
             energy.append(heat)
             entropy.append(-_base(plant, port.entropy) if heat != 0.0 else 0.0)
         if plant.power_signs[tag]:
-            energy.append(plant.power_signs[tag] * _base(plant, f"equipment.{tag}.power"))
+            energy.append(plant.power_signs[tag] * _base(plant, plant.work_path(tag)))
         entropy.append(-_base(plant, f"equipment.{tag}.entropy_generation"))
     return {
         name: (float(np.sum(terms)), float(np.sum(np.abs(terms))))

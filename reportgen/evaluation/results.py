@@ -59,7 +59,7 @@ def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[st
                 "dimension": "ratio" if name is None else name.dimension,
                 "standard_uncertainty": deviation if known else None,
             }
-            if path.endswith(".power"):
+            if path.endswith((".power", "_power")):
                 entry["direction"] = _direction(path, entry["from"], plant)
             if np.isnan(value):
                 entry["reason"] = solution.reasons.get(path, "the property has no meaning in this state")
@@ -71,7 +71,7 @@ def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[st
 
 def _direction(path: str, origins: Iterable[str], plant: EvaluatedPlant) -> str:
     """``absorbed`` or ``delivered``: which way a power is positive. A sum is absorbed where all its machines absorb."""
-    powers = [path] if path.startswith("equipment.") else [source for source in origins if source.endswith(".power")]
+    powers = [path] if path.startswith("equipment.") else [source for source in origins if source.endswith("power")]
     signs = [plant.power_signs.get(power.split(".", 1)[1].rpartition(".")[0], 0) for power in powers]
     return "absorbed" if all(sign > 0 for sign in signs) else "delivered"
 

@@ -15,7 +15,7 @@ __all__ = ["summary"]
 
 #: Of a piece and of sums over pieces, in this order.
 SUMS = ("entropy_generation", "lost_work", "power")
-OF_PIECES = (*SUMS, "isentropic_efficiency", "duty", "heat")
+OF_PIECES = (*SUMS, "shaft_power", "isentropic_efficiency", "duty", "heat")
 FLOWS = ("mass_flow", "volume_flow", "molar_flow")
 
 

@@ -157,14 +157,15 @@ class Limits:
 class EquipmentSpec:
     """One piece of equipment: the states at its ports that are used.
 
-    ``options`` holds the number of entries of each group of the kind, such as ``{"heat_ports": 2}``.
+    ``options`` holds the number of entries of each group of the kind, such as ``{"heat_ports": 2}``, and the words
+    chosen where the kind offers any.
     """
 
     tag: str
     kind: str
     title: str | None
     ports: Mapping[str, tuple[str, ...]]
-    options: Mapping[str, int]
+    options: Mapping[str, int | str]
     limits: Limits | None
     line: int
 

@@ -61,6 +61,7 @@ _EXAMPLES = {
     "entropy_flow": "0.4 kW/K",
     "velocity": "12 m/s",
     "length": "3.5 m",
+    "area": "12 cm2",
     "efficiency": "78 %",
     "ratio": "0.95",
 }
@@ -94,6 +95,8 @@ _BOUNDS: dict[str, Bounds] = {
     "pressure_drop": Bounds(0.0, remark="The drop is counted from inlet to outlet."),
     "split_fraction": Bounds(0.0, 1.0),
     "pressure_ratio": Bounds(1.0, remark="The ratio is that of the higher to the lower pressure."),
+    "area": Bounds(0.0),
+    "diameter": Bounds(0.0),
 }
 
 

@@ -13,7 +13,7 @@ from reportgen.spec.states import givens_of
 __all__ = ["input_locations", "kind_of", "result_dimensions"]
 
 #: Known of a state only where they are given.
-_ONLY_WHERE_GIVEN = ("volume_flow", "velocity", "elevation")
+_ONLY_WHERE_GIVEN = ("volume_flow", "elevation")
 _STATE_RESULTS = (
     *INTENSIVE,
     "mass_flow",
@@ -25,6 +25,7 @@ _STATE_RESULTS = (
     "isochoric_heat_capacity",
     "speed_of_sound",
     "specific_exergy",
+    "velocity",
 )
 _TOTAL_RESULTS = (
     "entropy_generation",
@@ -46,7 +47,6 @@ _EQUIPMENT_RESULTS = (
     "energy_imbalance",
     "mass_imbalance",
     "entropy_with_heat",
-    "pressure_integral",
 )
 _SURROUNDINGS = ("temperature", "pressure")
 
@@ -117,6 +117,7 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
     kind = kind_of(source, owner)
     if kind is not None:
         names |= {parameter.name: (parameter.dimension,) for parameter in kind.parameters}
+        names |= {name: (NAMES[name].dimension,) for name in kind.reports}
         for group in kind.groups:
             node = source.node(("equipment", owner, group.name))
             for number in range(1, 1 + min(MOST_ENTRIES, len(node.items if node is not None else []))):

@@ -181,7 +181,8 @@ class _Builder:
             kind=table.kind,
             title=table.title,
             ports=ports,
-            options={group.name: len(getattr(table, group.name)) for group in kind.groups},
+            options={group.name: len(getattr(table, group.name)) for group in kind.groups}
+            | {choice.name: word for choice in kind.choices if (word := getattr(table, choice.name))},
             limits=limits,
             line=self.line("equipment", tag),
         )

@@ -298,6 +298,9 @@ def _equipment(kind: Kind) -> type[Table]:
         else:
             fields[port.name] = (annotation, Field(description=described))
     fields |= _parameters(kind.parameters)
+    for choice in kind.choices:
+        text = f"{choice.text.rstrip('.')}; if not given: {choice.values[0]}."
+        fields[choice.name] = (Literal[choice.values] | None, Field(None, description=text))
     for group in kind.groups:
         entry = create_model(
             f"{camel}_{group.name}", __base__=Table, __doc__=group.text, **_parameters(group.parameters)

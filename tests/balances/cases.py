@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from reportgen.balances import EquipmentDefinition, Plant, Train, solve
+from reportgen.fluids import real_fluid
 from tests.balances.models import SimpleGas
 
 SURROUNDINGS = {"surroundings.temperature": 288.15, "surroundings.pressure": 1.013e5}
@@ -125,6 +126,68 @@ CONTROL_VOLUME = one_piece(
         "boundary_temperature": 450.0,
     },
 )
+FAN = one_piece(
+    "fan",
+    THROUGH,
+    {
+        **INLET,
+        "1.velocity": 12.0,
+        "2.velocity": 25.0,
+        "pressure_rise": 4e3,
+        "isentropic_efficiency": 0.75,
+        "mechanical_efficiency": 0.9,
+    },
+)
+NOZZLE = one_piece(
+    "nozzle",
+    THROUGH,
+    {
+        "1.pressure": 3e5,
+        "1.temperature": 500.0,
+        "1.mass_flow": 2.0,
+        "1.velocity": 40.0,
+        "2.pressure": 2e5,
+        "isentropic_efficiency": 0.95,
+    },
+)
+DIFFUSER = one_piece(
+    "diffuser",
+    THROUGH,
+    {
+        "1.pressure": 1e5,
+        "1.temperature": 300.0,
+        "1.mass_flow": 2.0,
+        "1.velocity": 180.0,
+        "outlet_area": 0.05,
+        "isentropic_efficiency": 0.9,
+    },
+)
+PIPE = one_piece(
+    "pipe",
+    THROUGH,
+    {
+        **INLET,
+        "pressure_drop": 5e3,
+        "inner_diameter": 0.3,
+        "heat": -3e4,
+        "boundary_temperature": 290.0,
+        "1.elevation": 2.0,
+        "2.elevation": 30.0,
+    },
+)
+SEPARATOR = one_piece(
+    "separator",
+    {"inlet": ("1",), "vapour_outlet": ("2",), "liquid_outlet": ("3",)},
+    {
+        "1.pressure": 3e5,
+        "1.specific_enthalpy": 3e5,
+        "1.mass_flow": 2.0,
+        "pressure_drop": 1e4,
+        "heat": -5e3,
+        "boundary_temperature": 270.0,
+    },
+    {"R134a": real_fluid("R134a")},
+)
 CASES = {
     "compressor": COMPRESSOR,
     "turbine": TURBINE,
@@ -136,4 +199,9 @@ CASES = {
     "mixer": MIXER,
     "splitter": SPLITTER,
     "control-volume": CONTROL_VOLUME,
+    "fan": FAN,
+    "nozzle": NOZZLE,
+    "diffuser": DIFFUSER,
+    "pipe": PIPE,
+    "separator": SEPARATOR,
 }

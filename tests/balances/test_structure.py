@@ -157,7 +157,7 @@ IMPOSSIBLE: list[tuple[Plant, str]] = [
     (_plant({"X": EquipmentDefinition("pump", {"inlet": ("1",), "outlet": ("9",)})}), "no state of this name"),
     (_plant({"X": EquipmentDefinition("pump", {"inlet": ("1", "2"), "outlet": ("3",)})}), "takes one state"),
     (_plant({"X": EquipmentDefinition("pump", {"entry": ("1",), "outlet": ("3",)})}), "no port of this name"),
-    (_plant({"X": EquipmentDefinition("pump", {"inlet": ("1",), "outlet": ("4",)})}), "different zeros"),
+    (_plant({"X": EquipmentDefinition("pump", {"inlet": ("1",), "outlet": ("4",)})}), "different substances"),
     (_plant({"X": VALVE_1_2, "Y": VALVE_1_3}), "counted twice"),
     (_plant({"X": VALVE_1_2, "Y": VALVE_3_2}), "counted twice"),
     (_plant({"X": VALVE_1_2}, {"A": Train("a", ("X", "Q"))}), "no equipment of this tag"),

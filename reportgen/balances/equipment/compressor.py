@@ -10,5 +10,10 @@ from __future__ import annotations
 from reportgen.balances.machines import machine_kind
 
 KIND = machine_kind(
-    "compressor", "Compressor", "Raises the pressure of a gas by absorbing power.", absorbs=True, polytropic=True
+    "compressor",
+    "Compressor",
+    "Raises the pressure of a gas by absorbing power.",
+    absorbs=True,
+    polytropic=True,
+    isothermal=True,
 )

@@ -12,42 +12,23 @@ from __future__ import annotations
 
 from typing import Any
 
-from reportgen.balances.equations import BOUNDARY_TEMPERATURE, energy_balance, heat_ports, mass_balances
-from reportgen.balances.kinds import Group, Kind, Parameter, Port
+from reportgen.balances.equations import (
+    BOUNDARY_TEMPERATURE,
+    HEAT_PORTS,
+    energy_balance,
+    heat_ports,
+    heat_sum,
+    mass_balances,
+)
+from reportgen.balances.kinds import Kind, Parameter, Port
 from reportgen.balances.merit import exergy_ratio
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Balance, Default, Formula, HeatPort, Relation, Stretch, Term, token, zero
-
-GROUP = "heat_ports"
+from reportgen.balances.relations import Default, Formula, Relation, Stretch, token, zero
 
 
 def relations(piece: Piece) -> list[Relation]:
     """Mass, energy, and the sum of the heats."""
-    found = mass_balances(piece)
-    total, power = piece.path("heat"), piece.path("power")
-    energy = energy_balance(piece, total, power, -1)
-    ports = [port.heat for port in heats(piece)] if piece.count(GROUP) else []
-    if ports:
-        without = tuple(term for term in energy.terms if term.factors != (total,))
-        each = tuple(Term(1.0, (path,)) for path in ports)
-        sentences = dict(energy.sentences)
-        sentences.pop(total)
-        for number, path in enumerate(ports, start=1):
-            sentences[path] = f"{piece.title}: the energy balance gives the heat over boundary {number}."
-        energy = Balance(
-            energy.key, energy.owner, energy.name, energy.sentence, energy.basis, without + each, {}, sentences
-        )
-        found.append(
-            Balance(
-                piece.path("heat.sum"),
-                piece.owner,
-                "Heat over all boundaries",
-                f"{piece.title}: the heat is the sum over all boundaries.",
-                "conservation of energy",
-                (Term(-1.0, (total,)), *each),
-            )
-        )
-    return [*found, energy]
+    return [*mass_balances(piece), *heat_sum(piece), energy_balance(piece, piece.path("power"), -1)]
 
 
 def defaults(piece: Piece) -> list[Default]:
@@ -59,26 +40,13 @@ def defaults(piece: Piece) -> list[Default]:
     return [Default(f"{piece.owner}.no_work", piece.owner, text, (power,), relation)]
 
 
-def heats(piece: Piece) -> list[HeatPort]:
-    """The boundaries over which heat crosses."""
-    count = piece.count(GROUP)
-    if not count:
-        return heat_ports(piece)
-    found = []
-    for number in range(1, count + 1):
-        prefix = piece.path(f"{GROUP}.{number}")
-        label = f"{piece.title}, boundary {number}"
-        found.append(HeatPort(label, f"{prefix}.heat", f"{prefix}.temperature", f"{prefix}.entropy_with_heat"))
-    return found
-
-
 def results(piece: Piece) -> list[Formula]:
     """Exergy that leaves over exergy that enters."""
     flows = []
     for state in (*piece.streams("in"), *piece.streams("out")):
         flows += [f"states.{state}.mass_flow", f"states.{state}.specific_exergy"]
     heat_paths = []
-    for port in heats(piece):
+    for port in heat_ports(piece):
         heat_paths += [port.heat, port.entropy]
     inputs = (*flows, *heat_paths, piece.path("power"), "surroundings.temperature")
     entering = 2 * len(piece.streams("in"))
@@ -139,18 +107,9 @@ KIND = Kind(
     relations=relations,
     defaults=defaults,
     results=results,
-    heats=heats,
+    heats=heat_ports,
     stretches=stretches,
-    groups=(
-        Group(
-            GROUP,
-            (
-                Parameter("heat", "heat_flow", "Heat flow into the volume over this boundary."),
-                Parameter("temperature", "temperature", "Temperature of this boundary."),
-            ),
-            "Boundaries over which heat crosses, each with its heat flow and temperature.",
-        ),
-    ),
+    groups=(HEAT_PORTS,),
     power_sign=-1,
     exergetic_efficiency="Exergy that leaves with streams, heat and power over exergy that enters with them.",
 )

@@ -22,8 +22,10 @@ from reportgen.balances.equations import (
     HEAT_BY_CUSTOM,
     adiabatic,
     heat_ports,
+    heat_sum,
     mass_balances,
     no_pressure_drop,
+    over_boundaries,
     pressure_drop,
     through,
 )
@@ -40,7 +42,7 @@ _ROUNDING_OF_TEMPERATURE = 1e-6  # K
 def relations(piece: Piece) -> list[Relation]:
     """Mass, pressure loss and energy of each side."""
     found = mass_balances(piece)
-    duty, heat = piece.path("duty"), piece.path("heat")
+    duty = piece.path("duty")
     for side in SIDES:
         inlet, outlet = piece.one(f"{side}_inlet"), piece.one(f"{side}_outlet")
         found.append(pressure_drop(piece, inlet, outlet, f"{side}_pressure_drop"))
@@ -49,11 +51,14 @@ def relations(piece: Piece) -> list[Relation]:
             terms.append(Term(-1.0, (duty,)))
             words = "what the hot stream gives up is the duty."
         else:
-            terms += [Term(1.0, (duty,)), Term(1.0, (heat,))]
+            terms += [Term(1.0, (duty,)), *over_boundaries(piece)]
             words = "the cold stream takes up the duty and the heat that enters from outside."
         sentences = {
             duty: f"{piece.title}: the {side} stream gives the duty.",
-            heat: f"{piece.title}: what the two streams do not exchange comes from outside.",
+            **dict.fromkeys(
+                (term.factors[0] for term in over_boundaries(piece)),
+                f"{piece.title}: what the two streams do not exchange comes from outside.",
+            ),
             f"states.{inlet}.mass_flow": f"{piece.title}: the duty gives the flow of the {side} stream.",
             f"states.{inlet}.specific_enthalpy": f"{piece.title}: the duty gives the enthalpy of state {inlet}.",
             f"states.{outlet}.specific_enthalpy": f"{piece.title}: the duty gives the enthalpy of state {outlet}.",
@@ -70,13 +75,13 @@ def relations(piece: Piece) -> list[Relation]:
                 sentences,
             )
         )
-    return found
+    return [*found, *heat_sum(piece)]
 
 
 def defaults(piece: Piece) -> list[Default]:
     """No heat from outside, no pressure loss on either side."""
     drops = [no_pressure_drop(piece, f"{side}_pressure_drop", f" on the {side} side") for side in SIDES]
-    return [adiabatic(piece), *drops]
+    return [*adiabatic(piece), *drops]
 
 
 def results(piece: Piece) -> list[Formula]:

@@ -13,10 +13,13 @@ from typing import Any
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
+    HEAT_PORTS,
     OUTLET,
+    PRESSURE_DROP,
     adiabatic,
     energy_balance,
     heat_ports,
+    heat_sum,
     mass_balances,
     no_pressure_drop,
 )
@@ -33,7 +36,6 @@ from reportgen.balances.relations import (
     Term,
     token,
 )
-from reportgen.balances.thermal import PRESSURE_DROP
 
 
 def lowest(pressures: Any) -> Any:
@@ -46,7 +48,7 @@ def lowest(pressures: Any) -> Any:
 def relations(piece: Piece) -> list[Relation]:
     """Mass, pressure and energy."""
     pressures = tuple(f"states.{state}.pressure" for state in piece.states("inlets"))
-    return [*mass_balances(piece), outlet_pressure(piece, pressures), energy_balance(piece, piece.path("heat"))]
+    return [*mass_balances(piece), outlet_pressure(piece, pressures), energy_balance(piece), *heat_sum(piece)]
 
 
 def outlet_pressure(piece: Piece, pressures: tuple[str, ...]) -> Formula:
@@ -78,7 +80,7 @@ def outlet_pressure(piece: Piece, pressures: tuple[str, ...]) -> Formula:
 def defaults(piece: Piece) -> list[Default]:
     """Adiabatic, no pressure loss, unknown inlet pressures equal to the outlet's."""
     leaving, drop = f"states.{piece.one('outlet')}.pressure", piece.path("pressure_drop")
-    found = [adiabatic(piece), no_pressure_drop(piece)]
+    found = [*adiabatic(piece), no_pressure_drop(piece)]
     for state in piece.states("inlets"):
         entering = f"states.{state}.pressure"
         key = piece.path(f"inlet_pressure.{state}")
@@ -129,6 +131,7 @@ KIND = Kind(
     defaults=defaults,
     results=results,
     heats=heat_ports,
+    groups=(HEAT_PORTS,),
     stretches=stretches,
     exergetic_efficiency="Exergy of the stream that leaves over exergy of the streams that enter.",
     entropy_generation_number="Entropy generation over leaving flow times specific gas constant.",

@@ -12,19 +12,21 @@ from __future__ import annotations
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
+    HEAT_PORTS,
     INLET,
+    PRESSURE_DROP,
     elevated_enthalpy,
     energy_balance,
     heat_ports,
+    heat_sum,
     mass_balances,
     no_pressure_drop,
     pressure_drop,
 )
 from reportgen.balances.kinds import Kind, Parameter, Port
-from reportgen.balances.merit import entropy_number_by_flow, exergy_ratio
+from reportgen.balances.merit import divided_exergy_ratio, entropy_number_by_flow
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Balance, Default, Equation, Formula, Relation, Stretch, Term, token
-from reportgen.balances.thermal import PRESSURE_DROP
 
 
 def relations(piece: Piece) -> list[Relation]:
@@ -44,7 +46,8 @@ def relations(piece: Piece) -> list[Relation]:
         *mass_balances(piece),
         split,
         pressure_drop(piece, inlet, first),
-        energy_balance(piece, piece.path("heat")),
+        energy_balance(piece),
+        *heat_sum(piece),
     ]
 
 
@@ -71,6 +74,8 @@ def defaults(piece: Piece) -> list[Default]:
         enthalpy = f"states.{state}.specific_enthalpy"
         kept = _equal_energy(piece, outlets[0], state)
         found.append(Default(f"{piece.owner}.divides", piece.owner, text, (enthalpy,), kept))
+    if piece.count(HEAT_PORTS.name):
+        return found
     enthalpy = f"states.{outlets[0]}.specific_enthalpy"
     text = f"{piece.title} exchanges no heat with its surroundings (adiabatic)."
     kept = _equal_energy(piece, inlet, outlets[0])
@@ -80,20 +85,8 @@ def defaults(piece: Piece) -> list[Default]:
 
 def results(piece: Piece) -> list[Formula]:
     """Exergy kept, and entropy generation in parts of ṁ R."""
-    inlet, outlets = piece.one("inlet"), piece.states("outlets")
-    paths = []
-    for state in (inlet, *outlets):
-        paths += [f"states.{state}.mass_flow", f"states.{state}.specific_exergy"]
-    products = [rf"{token(paths[i])}\,{token(paths[i + 1])}" for i in range(0, len(paths), 2)]
-    efficiency = exergy_ratio(
-        piece,
-        "exergy of the streams that leave over exergy of the stream that enters.",
-        paths,
-        lambda *arrays: sum(arrays[i] * arrays[i + 1] for i in range(2, len(arrays), 2)),
-        lambda *arrays: arrays[0] * arrays[1],
-        rf"\frac{{{' + '.join(products[1:])}}}{{{products[0]}}}",
-    )
-    return [efficiency, entropy_number_by_flow(piece, inlet)]
+    inlet = piece.one("inlet")
+    return [divided_exergy_ratio(piece, inlet, piece.states("outlets")), entropy_number_by_flow(piece, inlet)]
 
 
 def stretches(piece: Piece) -> list[Stretch]:
@@ -117,6 +110,7 @@ KIND = Kind(
     defaults=defaults,
     results=results,
     heats=heat_ports,
+    groups=(HEAT_PORTS,),
     stretches=stretches,
     exergetic_efficiency="Exergy of the streams that leave over exergy of the stream that enters.",
     entropy_generation_number="Entropy generation over entering flow times specific gas constant.",

@@ -1,0 +1,36 @@
+"""The isentropic change that machines, nozzles and diffusers are compared with."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from reportgen.balances.plant import Piece
+from reportgen.balances.relations import Formula, token
+
+__all__ = ["isentropic_change"]
+
+
+def isentropic_change(piece: Piece) -> Formula:
+    """h_s = h(p_2, s_1) [J/kg], the enthalpy that a piece with one inlet and one outlet would reach reversibly."""
+    inlet, outlet = piece.one("inlet"), piece.one("outlet")
+    fluid = piece.fluid(inlet)
+    pressure, entropy = f"states.{outlet}.pressure", f"states.{inlet}.specific_entropy"
+
+    def enthalpy(outlet_pressure: Any, inlet_entropy: Any) -> Any:
+        state = fluid.at(pressure=outlet_pressure, specific_entropy=inlet_entropy, errors="mask")
+        return state.specific_enthalpy
+
+    return Formula(
+        piece.path("isentropic_outlet_enthalpy"),
+        piece.owner,
+        "Isentropic change",
+        f"{piece.title}: without entropy generation the stream would reach the pressure of state {outlet} "
+        f"with the entropy of state {inlet}.",
+        f"equation of state, {fluid.title}",
+        piece.path("isentropic_outlet_enthalpy"),
+        (pressure, entropy),
+        enthalpy,
+        rf"h\left({token(pressure)},\,{token(entropy)}\right)",
+        fluids=(piece.fluid_id(inlet),),
+        reason="the isentropic outlet state lies outside the range of the fluid's equation",
+    )
