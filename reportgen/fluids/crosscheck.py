@@ -32,11 +32,12 @@ __all__ = ["TOLERANCES", "Comparison", "Deviation", "compare", "second_model", "
 Array = NDArray[np.float64]
 
 #: Relative difference up to which two sources agree, unless stated otherwise: (second source, first model) or second
-#: source. The library has the same published equations; the statistical route meets fitted polynomials; models of
+#: source. The library has the same published equations. Molecular constants meet the polynomials of N2, O2, CO, H2 to
+#: 0.1 % and those of CO2 and H2O to 0.3 % in c_p up to 1500 K; harmonic vibration leaves more in NH3 or CH4. Models of
 #: different kinds differ by what the simpler one leaves out: common practice lets 2 % pass for an ideal gas.
 TOLERANCES: dict[tuple[str, str] | str, float] = {
     ("library", "real-fluid"): 1e-4,
-    "statistical": 1e-3,
+    "statistical": 3e-3,
     "library": 2e-2,
     "ideal-gas": 2e-2,
     "real-fluid": 2e-2,
