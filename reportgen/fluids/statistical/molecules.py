@@ -150,7 +150,8 @@ def _molecule(key: str) -> Molecule:
         structure = _diatomic(entry)
     else:
         structure = _polyatomic(entry)
-    sources = tuple(content["sources"][source] for source in entry["sources"])
+    memory = " (numbers from memory)" if entry.get("from_memory", False) else ""
+    sources = tuple(content["sources"][source] + memory for source in entry["sources"])
     return Molecule(species, structure, sources, entry.get("note", ""))
 
 
