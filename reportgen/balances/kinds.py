@@ -83,7 +83,7 @@ class Kind:
     reports : names of the values that relations and results give beside the parameters.
     heats : heat ports with the paths of their heat and their boundary temperature.
     exchanges : heat that goes from one stream to another inside the piece.
-    velocities : states whose velocity is a quantity of the network, given or not.
+    velocities : states whose velocity is a quantity of the network, given or not; None when there are none.
     stretches : how each stream changes between two states, for process curves.
     doubts : values that could come out where they cannot be meant although all balances hold, beside those that
         parameters tell; called with the piece and a function from path to samples, shape (N,).
@@ -107,7 +107,7 @@ class Kind:
     choices: tuple[Choice, ...] = ()
     reports: tuple[str, ...] = ()
     exchanges: Callable[[Piece], Sequence[Exchange]] = lambda piece: ()
-    velocities: Callable[[Piece], Sequence[str]] = lambda piece: ()
+    velocities: Callable[[Piece], Sequence[str]] | None = None
     doubts: Callable[[Piece, Callable[[str], Any]], Sequence[Doubt]] = lambda piece, samples: ()
     power_sign: int = 0
     work: Callable[[Piece], str] = lambda piece: piece.path("power")

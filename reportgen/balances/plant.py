@@ -240,7 +240,8 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
         faults += _shared_states(pieces, plant)
     if faults:
         raise InputError(faults)
-    solved = {f"states.{state}.velocity" for piece in pieces.values() for state in piece.kind.velocities(piece)}
+    moving = (state for piece in pieces.values() if piece.kind.velocities for state in piece.kind.velocities(piece))
+    solved = {f"states.{state}.velocity" for state in moving}
     for piece in pieces.values():
         piece.carried |= solved
     return pieces

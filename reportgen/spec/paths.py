@@ -13,7 +13,7 @@ from reportgen.spec.states import givens_of
 __all__ = ["input_locations", "kind_of", "result_dimensions"]
 
 #: Known of a state only where they are given.
-_ONLY_WHERE_GIVEN = ("volume_flow", "elevation")
+_ONLY_WHERE_GIVEN = ("volume_flow", "velocity", "elevation")
 _STATE_RESULTS = (
     *INTENSIVE,
     "mass_flow",
@@ -25,7 +25,6 @@ _STATE_RESULTS = (
     "isochoric_heat_capacity",
     "speed_of_sound",
     "specific_exergy",
-    "velocity",
 )
 _TOTAL_RESULTS = (
     "entropy_generation",
@@ -106,10 +105,21 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
     )
 
 
+def _may_move(source: Source, state: str) -> bool:
+    """Whether the state is at a port of a piece that may find velocities."""
+    for tag in source.table("equipment"):
+        kind = kind_of(source, tag)
+        if kind is not None and kind.velocities is not None:
+            if any(name == state for port in kind.ports for _, name in source.texts("equipment", tag, port.name)):
+                return True
+    return False
+
+
 def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]:
     """Names of the results of one state, piece or train with their dimensions."""
     if section == "states":
         given = [name for name in _ONLY_WHERE_GIVEN if name in givens_of(source, owner)]
+        given += ["velocity"] if _may_move(source, owner) else []
         return {name: (NAMES[name].dimension,) for name in (*_STATE_RESULTS, *given)}
     if section == "trains":
         return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}

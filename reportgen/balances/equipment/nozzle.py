@@ -123,7 +123,7 @@ def doubts(piece: Piece, samples: Callable[[str], Any]) -> list[Doubt]:
     margin = np.where(np.abs(margin) <= _ROUNDING * np.abs(samples(outlet)), 0.0, margin)
     text = (
         f"{piece.title}: the flow ⟦chokes|may choke⟧. It reaches the speed of sound at throat_pressure, above the "
-        "outlet pressure; a convergent nozzle expands no further, and its flow no longer depends on what lies behind it. "
+        "outlet pressure; a convergent nozzle expands no further, and its flow no longer depends on what follows. "
         "State throat_area if it has a divergent part, or let the outlet have the throat pressure. The value is the "
         "outlet pressure; the margin counts from the throat pressure."
     )
