@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Mapping
+from collections.abc import Callable, Collection, Iterator, Mapping
 from dataclasses import dataclass
 from difflib import get_close_matches
+from itertools import islice
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -12,7 +13,7 @@ from numpy.typing import ArrayLike, NDArray
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids.model import Errors, Point
 
-__all__ = ["PROPERTIES", "Elements", "Pair", "SeveralStates", "check_errors", "in_words", "read_pair"]
+__all__ = ["PROPERTIES", "Elements", "Faults", "Pair", "SeveralStates", "check_errors", "in_words", "read_pair"]
 
 #: Properties that may be given, with their SI unit.
 PROPERTIES: dict[str, str] = {
@@ -162,6 +163,37 @@ def check_errors(errors: str) -> None:
         raise InputError(Fault("Errors are raised or masked.", found=repr(errors), expected='"raise", "mask"'))
 
 
+class Faults(Mapping[int, Fault]):
+    """Faults by flat index, in rising order. Each is put into words when it is read: a batch can have millions."""
+
+    def __init__(self, size: int) -> None:
+        self._reason = np.zeros(size, dtype=np.intp)
+        self._describe: list[Callable[[int], Fault]] = []
+        self._worded: dict[int, Fault] = {}
+
+    def put(self, where: NDArray[np.intp], describe: Callable[[int], Fault]) -> None:
+        """Note that ``describe(index)`` gives the fault of each of the elements ``where`` [1]."""
+        self._describe.append(describe)
+        self._reason[where] = len(self._describe)
+
+    def __setitem__(self, index: int, fault: Fault) -> None:
+        self.put(np.array([index]), lambda _: fault)
+
+    def __getitem__(self, index: int) -> Fault:
+        if index not in self._worded:
+            reason = int(self._reason[index]) if 0 <= index < self._reason.size else 0
+            if not reason:
+                raise KeyError(index)
+            self._worded[index] = self._describe[reason - 1](index)
+        return self._worded[index]
+
+    def __iter__(self) -> Iterator[int]:
+        return iter(np.flatnonzero(self._reason).tolist())
+
+    def __len__(self) -> int:
+        return int(np.count_nonzero(self._reason)) if self._describe else 0
+
+
 class Elements:
     """Which elements of a flat batch could not be evaluated, and why.
 
@@ -170,25 +202,36 @@ class Elements:
 
     def __init__(self, size: int) -> None:
         self.size = size
-        self.faults: dict[int, Fault] = {}
+        self.faults = Faults(size)
         self.rejected: NDArray[np.bool_] = np.zeros(size, dtype=np.bool_)
 
     def reject(self, where: NDArray[np.bool_], describe: Callable[[int], Fault]) -> None:
-        """Mark the elements where ``where`` is true; ``describe(index)`` gives the fault of each newly marked one."""
+        """Mark the elements where ``where`` is true; ``describe(index)`` gives the fault of each newly marked one. It
+        is called when the fault is read: what it looks at must not be altered later.
+        """
         if not where.any():
             return
-        for index in np.flatnonzero(where & ~self.rejected):
-            self.faults[int(index)] = describe(int(index))
+        self.faults.put(np.flatnonzero(where & ~self.rejected), describe)
         self.rejected |= where
+
+    def take_over(self, part: Elements, where: NDArray[np.intp]) -> None:
+        """Mark elements of this batch that were marked in a part of it, the elements ``where`` [1]."""
+        if not part.rejected.any():
+            return
+        position = np.zeros(self.size, dtype=np.intp)
+        position[where] = np.arange(where.size)
+        marked = np.zeros(self.size, dtype=np.bool_)
+        marked[where] = part.rejected
+        self.reject(marked, lambda i: part.faults[int(position[i])])
 
     def finish(self, errors: Errors) -> None:
         """Raise a RangeError that names the first failing elements, if there are any and errors are to be raised."""
         if not self.faults or errors == "mask":
             return
-        first = sorted(self.faults.items())[:_NAMED_FAULTS]
-        faults = [fault for _, fault in first]
+        first = list(islice(self.faults, _NAMED_FAULTS))
+        faults = [self.faults[index] for index in first]
         if self.size > 1:
-            positions = ", ".join(str(index) for index, _ in first)
+            positions = ", ".join(str(index) for index in first)
             count = len(self.faults)
             more = "" if count <= _NAMED_FAULTS else ", ..."
             faults.append(Fault(f"{count} of {self.size} elements cannot be evaluated: flat index {positions}{more}."))

@@ -83,7 +83,7 @@ class State:
         object.__setattr__(self, "_shape", shape)
         object.__setattr__(self, "_values", dict(values))
         object.__setattr__(self, "_fill", fill)
-        object.__setattr__(self, "faults", MappingProxyType(dict(faults) if faults else {}))
+        object.__setattr__(self, "faults", MappingProxyType(faults if faults else {}))
 
     def __setattr__(self, name: str, value: object) -> None:
         raise AttributeError(f"{name} of a State is read only.")

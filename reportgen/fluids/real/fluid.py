@@ -10,9 +10,10 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError
-from reportgen.fluids.model import Errors
+from reportgen.fluids.model import Errors, Point
 from reportgen.fluids.pairs import Elements, Pair, SeveralStates, check_errors, read_pair
 from reportgen.fluids.real import catalogue
+from reportgen.fluids.real.candidates import Candidates, Chosen
 from reportgen.fluids.real.density import DensitySolver
 from reportgen.fluids.real.flash import PressureFlash
 from reportgen.fluids.real.helmholtz import Helmholtz
@@ -22,7 +23,7 @@ from reportgen.fluids.real.saturation import SaturationCurves
 from reportgen.fluids.real.scalar.few import FewStates
 from reportgen.fluids.real.searches import SEARCHED_PAIRS, Searches
 from reportgen.fluids.real.solution import Solution
-from reportgen.fluids.state import FIELDS, State
+from reportgen.fluids.state import State
 
 __all__ = ["RealFluid"]
 
@@ -127,34 +128,32 @@ class RealFluid:
 
     def _at_once(self, errors: Errors, pair: Mapping[str, ArrayLike]) -> State:
         """The state of any number of elements, by the vectorised branch."""
-        given = read_pair(pair, self._pairs, self.title)
-        size = given.first.size
-        known = ~(np.isnan(given.first) | np.isnan(given.second))
-        valid = np.isfinite(given.first) & np.isfinite(given.second)
-        elements = Elements(size)
-        # An infinite value is a mistake, NaN is a value not known.
-        for name, values in ((given.names[0], given.first), (given.names[1], given.second)):
-            self._guard.infinite(np.isinf(values) & known, elements, name, values)
+        given, usable, elements = self._read(pair)
+        solve = self._pairs[given.names]
         # Far from a solution, searches may overflow; what they return is checked for each element.
         with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-            return self._solved(given, valid, elements, errors)
-
-    def _solved(self, given: Pair, valid: NDArray[np.bool_], elements: Elements, errors: Errors) -> State:
-        """The state of the valid elements, NaN in the others."""
-        solve = self._pairs[given.names]
-        if valid.all():
-            solution = solve(given.first, given.second, elements)
+            if usable.size == elements.size:
+                solution = solve(given.first, given.second, elements)
+                elements.finish(errors)
+                values = solution.masked(elements.rejected) if elements.faults else solution.values()
+                return State(given.shape, values, solution.fill, elements.faults)
+            part = Elements(usable.size)
+            solution = solve(given.first[usable], given.second[usable], part)
+            elements.take_over(part, usable)
             elements.finish(errors)
-            if not elements.faults:
-                return State(given.shape, solution.values(), solution.fill)
-            return State(given.shape, solution.masked(elements.rejected), solution.fill, elements.faults)
-        inner = Elements(int(np.count_nonzero(valid)))
-        solution = solve(given.first[valid], given.second[valid], inner)
-        positions = np.flatnonzero(valid)
-        elements.faults |= {int(positions[index]): fault for index, fault in inner.faults.items()}
-        elements.finish(errors)
-        solution.masked(inner.rejected)
-        return State(given.shape, solution.spread(positions, valid.size), solution.fill, elements.faults)
+            solution.masked(part.rejected)
+            return State(given.shape, solution.spread(usable, elements.size), solution.fill, elements.faults)
+
+    def _read(self, pair: Mapping[str, ArrayLike]) -> tuple[Pair, NDArray[np.intp], Elements]:
+        """The two properties, the elements where both are finite, and faults of those where one is infinite: that is a
+        mistake, while NaN is a value not known.
+        """
+        given = read_pair(pair, self._pairs, self.title)
+        known = ~(np.isnan(given.first) | np.isnan(given.second))
+        elements = Elements(given.first.size)
+        for name, values in zip(given.names, (given.first, given.second), strict=True):
+            self._guard.infinite(np.isinf(values) & known, elements, name, values)
+        return given, np.flatnonzero(np.isfinite(given.first) & np.isfinite(given.second)), elements
 
     def saturation(
         self, *, temperature: ArrayLike | None = None, pressure: ArrayLike | None = None, errors: Errors = "raise"
@@ -186,28 +185,54 @@ class RealFluid:
         Returns
         -------
         State : of the shape given and one axis more, along which the states lie in the order of rising density; NaN
-            where an element has fewer than others. ``faults`` holds elements without any state, by flat index of the
-            shape given (``errors="mask"``).
+            where an element has fewer than others. A gas so thin that its energy does not tell its density is left
+            out. ``faults`` holds elements without any state, by flat index of the shape given (``errors="mask"``).
 
         Raises
         ------
         InputError, RangeError : as :meth:`at`, but never since there are several states.
         """
-        single = self.at(errors="mask", **pair)
-        several = {i: fault for i, fault in single.faults.items() if isinstance(fault, SeveralStates)}
-        elements = Elements(single.flat("temperature").size)
-        elements.faults = {i: fault for i, fault in single.faults.items() if i not in several}
-        elements.finish(errors)
-        size = elements.size
-        most = max((len(fault.roots) for fault in several.values()), default=1)
-        temperature, density = np.full((size, most), np.nan), np.full((size, most), np.nan)
-        temperature[:, 0], density[:, 0] = single.flat("temperature"), single.flat("density")
-        for i, fault in several.items():
-            for column, root in enumerate(fault.roots):
-                temperature[i, column], density[i, column] = root.temperature, root.density
-        state = self.at(temperature=temperature, density=density)
-        values = {name: state.flat(name) for name in FIELDS}
-        return State((*single.shape, most), values, None, elements.faults)
+        check_errors(errors)
+        given, usable, elements = self._read(pair)
+        first, second = given.first[usable], given.second[usable]
+        part = Elements(usable.size)
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+            if given.names in SEARCHED_PAIRS:
+                states = self._searches.every(given.names, first, second, part)
+                states = states.take(~states.vague)
+            else:
+                states = self._one_or_two(given.names, first, second, part)
+            elements.take_over(part, usable)
+            elements.finish(errors)
+            element = states.element
+            count = np.bincount(element, minlength=usable.size)
+            most = max(int(count.max(initial=1)), 1)
+            rank = np.arange(element.size) - np.repeat(np.cumsum(count) - count, count)
+            solution = self._given_back(states._asdict(), given.names, first[element], second[element])
+            values = solution.spread(usable[element] * most + rank, elements.size * most)
+        return State((*given.shape, most), values, solution.fill, elements.faults)
+
+    def _one_or_two(self, names: tuple[str, str], first: FloatArray, second: FloatArray, elements: Elements) -> Chosen:
+        """All states of pairs that have one, or two on the saturation line."""
+        tried, found = Elements(elements.size), Candidates(elements.size)
+        solution = self._pairs[names](first, second, tried)
+        fields = (solution.temperature, solution.pressure, solution.density, solution.values()["quality"])
+        phases = (solution.liquid_density, solution.vapour_density)
+        single = np.flatnonzero(~tried.rejected)
+        t, p, rho, x = (values[single] for values in fields)
+        rho_l, rho_v = (None if values is None else values[single] for values in phases)
+        found.add(single, t, p, rho, x, rho_l, rho_v)
+        refused = tried.rejected.copy()
+        for i, fault in tried.faults.items():
+            if isinstance(fault, SeveralStates):
+                refused[i] = False
+                for root, quality in zip(fault.roots, (1.0, 0.0), strict=True):
+                    assert root.density is not None
+                    values = (root.temperature, root.pressure, root.density, quality)
+                    t, p, rho, x = (np.array([value]) for value in values)
+                    found.add(np.array([i]), t, p, rho, x)
+        elements.reject(refused, lambda i: tried.faults[i])
+        return found.gather()
 
     def _solution(self, temperature: FloatArray, pressure: FloatArray, density: FloatArray, **more: Any) -> Solution:
         return Solution(self._equation, self._curves, self._triple_pressure, temperature, pressure, density, **more)
@@ -236,13 +261,25 @@ class RealFluid:
             if band.any():
                 on_line = np.zeros(p.size, dtype=np.bool_)
                 on_line[below] = band
-                elements.reject(on_line, lambda i: guard.on_saturation(p[i], t[i], self.pseudo_pure))
+                elements.reject(
+                    on_line,
+                    lambda i: guard.on_saturation(pressure[i], temperature[i], self._saturated_points(temperature[i])),
+                )
         guard.melting(p, t, elements)
         if elements.rejected.any():
             p, t = self._harmless(p, t, elements)
         density, found = self._solver.solve(t, p, liquid)
         elements.reject(~found, lambda i: guard.not_found("pressure", p[i], "temperature", t[i]))
         return self._solution(temperature, pressure, density)
+
+    def _saturated_points(self, temperature: float) -> tuple[Point, ...]:
+        """Saturated vapour and liquid at T [K], in the order of rising density; none for a pseudo-pure fluid."""
+        if self.pseudo_pure:
+            return ()
+        saturated = self._curves.at_temperature(np.array([temperature]))
+        pressure = float(saturated.bubble_pressure[0])
+        densities = (float(saturated.vapour_density[0]), float(saturated.liquid_density[0]))
+        return tuple(Point(float(temperature), pressure, density) for density in densities)
 
     def _pressure_enthalpy(self, pressure: FloatArray, enthalpy: FloatArray, elements: Elements) -> Solution:
         return self._pressure_caloric(pressure, enthalpy, elements, "specific_enthalpy")
@@ -331,11 +368,19 @@ class RealFluid:
         )
 
     def _searched(self, names: tuple[str, str], first: FloatArray, second: FloatArray, elements: Elements) -> Solution:
-        """The one state with two properties, which are given back as they were given."""
-        found: dict[str, FloatArray] = self._searches.find(names, first, second, elements)._asdict()
-        given = dict(zip(names, (first, second), strict=True))
-        known = {name: value for name, value in given.items() if name not in found}
-        return self._solution(**{name: given.get(name, value) for name, value in found.items()}, known=known)
+        """The one state with two properties."""
+        found = self._searches.find(names, first, second, elements)
+        return self._given_back(found._asdict(), names, first, second)
+
+    def _given_back(
+        self, found: Mapping[str, FloatArray], names: tuple[str, str], first: FloatArray, second: FloatArray
+    ) -> Solution:
+        """States found, in which the properties given stand as they were given."""
+        fields = ("temperature", "pressure", "density", "quality", "liquid_density", "vapour_density")
+        values = {name: found[name] for name in fields}
+        known = {name: value for name, value in zip(names, (first, second), strict=True) if name not in fields}
+        values |= {name: value for name, value in zip(names, (first, second), strict=True) if name in fields}
+        return self._solution(**values, known=known)
 
     def _pressure_superheat(self, pressure: FloatArray, superheat: FloatArray, elements: Elements) -> Solution:
         return self._pressure_distance(pressure, superheat, elements, "superheat", 1.0)

@@ -240,17 +240,20 @@ class Guard:
         triple = self._limits.triple_point
         return 0.0 if triple is None else triple.pressure
 
-    def on_saturation(self, pressure: float, temperature: float, pseudo_pure: bool) -> Fault:
-        """Pressure [Pa] and temperature [K] do not fix a state."""
-        if pseudo_pure:
+    def on_saturation(self, pressure: float, temperature: float, roots: tuple[Point, ...]) -> Fault:
+        """Pressure [Pa] and temperature [K] do not fix a state: those of the liquid and the vapour in ``roots``, none
+        where the fluid is pseudo-pure.
+        """
+        if not roots:
             return Fault(
                 f"{_both(pressure, temperature)} lie on one of the lines or {self._between}.",
                 hint="On a line, give the quality: 0 (bubble) or 1 (dew).",
             )
-        return Fault(
+        return SeveralStates(
             f"{_both(pressure, temperature)} are a point of the saturation line of {self._title}: "
             "they do not tell liquid from vapour.",
             hint="Give the quality with one of them.",
+            roots=roots,
         )
 
     def between_lines(self, first: str, first_value: float, second: str, second_value: float) -> Fault:
@@ -263,15 +266,25 @@ class Guard:
         first_value: float,
         second: str,
         second_value: float,
+        count: int,
         roots: tuple[Point, ...],
-        single_phase: bool,
+        qualities: tuple[float, ...],
     ) -> SeveralStates:
-        """Two properties [SI] that more than one state shares, and whether none of these is a mixture of phases."""
+        """Two properties [SI] that ``count`` states share: those in ``roots``, with the quality [1] of mixtures of
+        phases, else NaN, and a gas too thin to be told.
+        """
         told = [
             {"pressure": root.pressure, "temperature": root.temperature, "density": root.density or 0.0}
-            for root in roots
+            | ({"quality": quality} if 0 < quality < 1 else {})
+            for root, quality in zip(roots, qualities, strict=True)
         ]
-        listed = "; ".join(", ".join(in_words(name, value) for name, value in root.items()) for root in told)
+        single_phase = not any("quality" in root for root in told)
+        listed = "; ".join(
+            ", ".join(("quality " if name == "quality" else "") + in_words(name, value) for name, value in root.items())
+            for root in told
+        )
+        if count > len(roots):
+            listed += "; and a gas so thin that its pressure is not told"
         other = {"temperature": "pressure", "pressure": "temperature"}.get(first)
         if other is not None and single_phase and _apart([root[other] for root in told]):
             choices = " or ".join(in_words(other, root[other]) for root in told)
@@ -279,7 +292,7 @@ class Guard:
         else:
             hint = "Give temperature and density of the one that is meant."
         return SeveralStates(
-            f"{self._title} has {len(roots)} states at {_value(first, first_value)} and "
+            f"{self._title} has {count} states at {_value(first, first_value)} and "
             f"{_value(second, second_value)}: {listed}.",
             hint=hint,
             roots=roots,

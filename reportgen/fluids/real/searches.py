@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 from reportgen.errors import Fault
 from reportgen.fluids.model import Limits, Point
 from reportgen.fluids.pairs import Elements
-from reportgen.fluids.real.candidates import Candidates
+from reportgen.fluids.real.candidates import Candidates, Chosen
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.density import DensitySolver
 from reportgen.fluids.real.flash import PressureFlash
@@ -79,7 +79,7 @@ class Searches:
         low, high = limits.minimum_temperature, limits.maximum_temperature
         most = limits.maximum_pressure
         lines = SaturationLines(equation, curves, low)
-        self._guard, self._pseudo_pure, self._densest = guard, curves.pseudo_pure, solver.maximum_density
+        self._guard, self._densest = guard, solver.maximum_density
         ceiling = Ceiling(curves, solver, guard.melting_line, low, high, most)
         self._isotherm = IsothermSearch(equation, curves, ceiling, LOWEST_PRESSURE)
         self._isochore = IsochoreSearch(equation, curves, lines, ceiling, low, high)
@@ -99,19 +99,57 @@ class Searches:
         first_value, second_value : their values [SI], shape (N,), finite.
         elements : takes a fault for each element that has no state within the limits, or more than one.
         """
-        first, second = names
+        guard, (first, second) = self._guard, names
+        valid = self.every(names, first_value, second_value, elements)
+        count = np.bincount(valid.element, minlength=elements.size)
+        start = np.cumsum(count) - count
+
+        def several(i: int) -> Fault:
+            mine = valid.take(slice(start[i], start[i] + count[i]))
+            told = mine.take(~mine.vague)
+            roots = tuple(Point(float(t), float(p), float(rho)) for t, p, rho in zip(*told[1:4], strict=True))
+            qualities = tuple(told.quality.tolist())
+            return guard.several(first, first_value[i], second, second_value[i], int(count[i]), roots, qualities)
+
+        elements.reject(count > 1, several)
+        vague = np.zeros(elements.size, dtype=np.bool_)
+        vague[valid.element[valid.vague]] = True
+        elements.reject(vague, lambda i: guard.vague(first, first_value[i], second, second_value[i]))
+        single = valid.take(count[valid.element] == 1)
+        return Found(*(_place(part, single.element, elements.size) for part in single[1:7]))
+
+    def every(
+        self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray, elements: Elements
+    ) -> Chosen:
+        """All states within the limits that have the two properties, in the order of the elements and of rising
+        density. Parameters as in :meth:`find`; ``elements`` takes a fault where there is none.
+        """
+        guard, (first, second) = self._guard, names
         if first == "pressure":
-            self._guard.pressure(first_value, elements)
+            guard.pressure(first_value, elements)
         if first == "temperature":
-            self._guard.temperature(first_value, elements)
+            guard.temperature(first_value, elements)
         for name, value in ((first, first_value), (second, second_value)):
             if name == "density":
-                self._guard.density(value, elements, self._densest)
+                guard.density(value, elements, self._densest)
         candidates = Candidates(first_value.size)
         usable = np.flatnonzero(~elements.rejected)
         if usable.size:
             candidates.join(self._search(names, first_value[usable], second_value[usable]), usable)
-        return self._settle(candidates, names, first_value, second_value, elements)
+        states = candidates.gather()
+        beyond = Elements(states.element.size)
+        guard.temperature(states.temperature, beyond)
+        guard.pressure(states.pressure, beyond)
+        guard.melting(states.pressure, states.temperature, beyond)
+        valid = states.take(~beyond.rejected)
+        none = np.bincount(valid.element, minlength=candidates.size) == 0
+        if none.any():
+            which = np.full(candidates.size, -1)
+            rejected = np.flatnonzero(beyond.rejected)[::-1]
+            which[states.element[rejected]] = rejected
+            elements.reject(none & (which >= 0), lambda i: beyond.faults[int(which[i])])
+            self._explain(candidates, none, names, first_value, second_value, elements)
+        return valid
 
     def _search(self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray) -> Candidates:
         first, second = names
@@ -124,47 +162,6 @@ class Searches:
         if first == "pressure":
             return self._isobar.solve(first_value, second_value)
         return self._isentrope.solve(first_value, second_value)
-
-    def _settle(
-        self,
-        candidates: Candidates,
-        names: tuple[str, str],
-        first_value: FloatArray,
-        second_value: FloatArray,
-        elements: Elements,
-    ) -> Found:
-        """Leave out states beyond the limits; refuse elements left with none, or with several."""
-        guard, (first, second) = self._guard, names
-        states = candidates.gather()
-        beyond = Elements(states.element.size)
-        guard.temperature(states.temperature, beyond)
-        guard.pressure(states.pressure, beyond)
-        guard.melting(states.pressure, states.temperature, beyond)
-        valid = states.take(~beyond.rejected)
-        count = np.bincount(valid.element, minlength=candidates.size)
-        start = np.cumsum(count) - count
-
-        def several(i: int) -> Fault:
-            mine = valid.take(slice(start[i], start[i] + count[i]))
-            roots = tuple(Point(float(t), float(p), float(rho)) for t, p, rho in zip(*mine[1:4], strict=True))
-            single_phase = not ((mine.quality > 0) & (mine.quality < 1)).any()
-            return guard.several(first, first_value[i], second, second_value[i], roots, single_phase)
-
-        elements.reject(count > 1, several)
-        vague = np.zeros(candidates.size, dtype=np.bool_)
-        vague[valid.element[valid.vague]] = True
-        elements.reject(vague, lambda i: guard.vague(first, first_value[i], second, second_value[i]))
-        none = count == 0
-        if none.any():
-            first_fault: dict[int, Fault] = {}
-            for index, fault in beyond.faults.items():
-                first_fault.setdefault(int(states.element[index]), fault)
-            outside = np.zeros(candidates.size, dtype=np.bool_)
-            outside[list(first_fault)] = True
-            elements.reject(none & outside, lambda i: first_fault[i])
-            self._explain(candidates, none, names, first_value, second_value, elements)
-        single = valid.take(count[valid.element] == 1)
-        return Found(*(_place(part, single.element, candidates.size) for part in single[1:7]))
 
     def _explain(
         self,

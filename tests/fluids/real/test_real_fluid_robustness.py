@@ -35,6 +35,7 @@ def extremes(name: str) -> dict[str, list[float]]:
         ],
         "specific_enthalpy": [-1e300, -1e9, -1e6, 0.0, 1e5, 1e6, 1e7, 1e12, 1e300, nan],
         "specific_entropy": [-1e300, -1e6, -1e3, 0.0, 1e3, 5e3, 1e4, 1e6, 1e300, nan],
+        "specific_internal_energy": [-1e300, -1e9, -1e6, 0.0, 1e5, 1e6, 1e7, 1e12, 1e300, nan],
         "quality": [-1.0, 0.0, 1e-300, 0.5, 1 - 1e-16, 1.0, 2.0, nan],
         "density": [0.0, -1.0, 1e-300, 1e-9, 1.0, critical.density or 1.0, 1e3, 1e4, 1e300, nan],
         "superheat": [-1.0, 0.0, 1e-300, 1e-9, 10.0, 1e4, nan],
