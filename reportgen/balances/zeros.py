@@ -71,7 +71,7 @@ def conflicts(title: str, owner: str, groups: Sequence[StreamGroup]) -> list[Fau
             faults[frozenset(group.states)] = Fault(f"{text}side.", owner)
         for other in opposite[:1]:
             pair = frozenset((*group.states, *other.states))
-            faults.setdefault(pair, _conflict(title, owner, group, other))
+            faults.setdefault(pair, _conflict(title, owner, *sorted((group, other), key=groups.index)))
     return list(faults.values())
 
 

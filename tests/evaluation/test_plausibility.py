@@ -1,4 +1,4 @@
-"""Cautions P01 to P13: results that cannot be meant, and what a calculation stands on; each tripped and just not."""
+"""Cautions P01 to P13, P17: results that cannot be meant, what a calculation stands on; each tripped and just not."""
 
 from __future__ import annotations
 
@@ -11,6 +11,7 @@ from calculations import COMPRESSOR, HEAD, VALVE, evaluated
 from handmade_plants import fluid, plant, samples
 
 from reportgen.balances.doubts import Doubt
+from reportgen.errors import InputError
 from reportgen.evaluation.assumptions import AutomaticAssumption
 from reportgen.evaluation.cautions import catalogue, raised
 from reportgen.evaluation.evaluated import EvaluatedPlant
@@ -230,6 +231,54 @@ def test_p13() -> None:
     del values["states.9.pressure"]
     assert summary("P13", plant(values, **used)) == []  # type: ignore[arg-type]
     assert summary("P13", plant(values, fluids=both)) == []
+
+
+# P17: one substance by two property models in one piece
+
+
+JOINED = (
+    HEAD
+    + """
+[fluids.steam]
+model           = "real-fluid"
+substance       = "water"
+reference_state = "{}"
+
+[fluids.vapour]
+model     = "ideal-gas"
+substance = "water"
+
+[states.1]
+fluid       = "steam"
+pressure    = "2 bar"
+temperature = "200 degC"
+mass_flow   = "1 kg/s"
+
+[states.2]
+fluid    = "{}"
+pressure = "1 bar"
+
+[equipment.V]
+kind   = "throttling-valve"
+inlet  = "1"
+outlet = "2"
+"""
+)
+
+
+def test_p17() -> None:
+    assert told(evaluated(JOINED.format("third-law", "vapour")), "P17") == [("note", "equipment.V")]
+    assert told(evaluated(JOINED.format("third-law", "steam")), "P17") == []
+
+
+def test_zeros_that_would_mix_are_an_error_at_the_line_of_the_equipment() -> None:
+    with pytest.raises(InputError) as caught:
+        evaluated(JOINED.format("published", "vapour"))
+    (fault,) = caught.value.faults
+    assert (fault.path, fault.line) == ("equipment.V", JOINED.splitlines().index("[equipment.V]") + 1)
+    assert "published:water" in str(fault)
+    assert "third-law" in str(fault)
+    assert 'reference_state = "third-law" in [fluids.steam]' in str(fault)
 
 
 # The headline results

@@ -1,0 +1,138 @@
+"""Fluids of every model and second sources, as they are read."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+
+from reportgen.spec.calculation import (
+    CriticalConstants,
+    FluidSpec,
+    HeatPolynomial,
+    HeatTable,
+    Interaction,
+    SecondSource,
+)
+from tests.spec.writing import SURROUNDINGS, TITLE, faults, read
+
+STATE = """
+[states.1]
+fluid       = "f"
+pressure    = "2 bar"
+temperature = "20 degC"
+"""
+
+
+def fluid(folder: Path, table: str) -> FluidSpec:
+    return read(folder, TITLE + SURROUNDINGS + "[fluids.f]\n" + table + STATE).fluids["f"]
+
+
+def test_a_cubic_mixture_with_everything(tmp_path: Path) -> None:
+    found = fluid(
+        tmp_path,
+        """
+model              = "cubic"
+equation           = "Soave-Redlich-Kwong"
+basis              = "mass"
+composition        = { CO2 = "90 %", X = 0.1 }
+interaction        = [{ between = ["CO2", "X"], coefficient = -0.02, source = "fit to bubble points" }]
+volume_translation = { CO2 = "-1.5 cm3/mol", X = "0.003 m3/kmol" }
+critical           = { X = { temperature = "31 degC", pressure = "70 bar(g)", acentric_factor = 0.2 } }
+""",
+    )
+    assert (found.model, found.equation, found.basis) == ("cubic", "Soave-Redlich-Kwong", "mass")
+    assert found.composition == {"CO2": 0.9, "X": 0.1}
+    assert found.interactions == (Interaction("CO2", "X", -0.02, "fit to bubble points"),)
+    assert isinstance(found.volume_translation, dict)
+    assert found.volume_translation["CO2"] == pytest.approx(-1.5e-6)
+    assert found.volume_translation["X"] == pytest.approx(3e-6)
+    assert found.critical == {"X": CriticalConstants(pytest.approx(304.15), pytest.approx(71.013e5), 0.2)}
+
+
+def test_a_cubic_substance_with_nothing_but_its_name(tmp_path: Path) -> None:
+    found = fluid(tmp_path, 'model = "cubic"\nequation = "Peng-Robinson"\nsubstance = "propane"\n')
+    assert (found.substance, found.composition, found.critical, found.interactions) == ("propane", None, {}, ())
+    assert found.volume_translation is None
+    peneloux = 'model = "cubic"\nequation = "Peng-Robinson"\nsubstance = "propane"\nvolume_translation = "Peneloux"\n'
+    assert fluid(tmp_path, peneloux).volume_translation == "Peneloux"
+
+
+RANGE = 'minimum_temperature = "0 degC"\nmaximum_temperature = "300 degC"\n'
+
+
+def test_incompressible_with_a_constant_heat(tmp_path: Path) -> None:
+    table = 'model = "incompressible"\ndensity = "0.87 kg/L"\nspecific_heat = "2.1 kJ/(kg*K)"\nsource = "data sheet"\n'
+    found = fluid(tmp_path, table + RANGE)
+    assert found.density == pytest.approx(870.0)
+    assert found.specific_heat == pytest.approx(2100.0)
+    assert (found.phase, found.source) == ("liquid", "data sheet")
+    assert found.temperature_range == (pytest.approx(273.15), pytest.approx(573.15))
+
+
+def test_incompressible_with_a_polynomial_in_degrees_celsius(tmp_path: Path) -> None:
+    table = 'model = "incompressible"\ndensity = "870 kg/m3"\nphase = "solid"\n'
+    table += 'specific_heat = { coefficients = [1.85, 0.0034], unit = "kJ/(kg*K)", about = "0 degC" }\n'
+    found = fluid(tmp_path, table + RANGE)
+    assert found.specific_heat == HeatPolynomial((1850.0, pytest.approx(3.4)), pytest.approx(273.15))
+    assert found.phase == "solid"
+
+
+def test_incompressible_with_rows_has_their_range(tmp_path: Path) -> None:
+    table = 'model = "incompressible"\ndensity = "870 kg/m3"\n'
+    table += 'specific_heat = [{ temperature = "10 degC", specific_heat = "1.9 kJ/(kg*K)" }, '
+    table += '{ temperature = "210 degC", specific_heat = "2.5 kJ/(kg*K)" }]\n'
+    found = fluid(tmp_path, table)
+    assert found.specific_heat == HeatTable((283.15, 483.15), (1900.0, 2500.0))
+    assert found.temperature_range == (283.15, 483.15)
+    narrowed = fluid(tmp_path, table + 'maximum_temperature = "150 degC"\n')
+    assert narrowed.temperature_range == (283.15, 423.15)
+
+
+@pytest.mark.parametrize("zero", ["published", "IIR", "ASHRAE", "NBP", "third-law"])
+def test_reference_states(zero: str, tmp_path: Path) -> None:
+    table = f'model = "real-fluid"\nsubstance = "R134a"\nreference_state = "{zero}"\n'
+    assert fluid(tmp_path, table).reference_state == zero
+
+
+# --- second sources -------------------------------------------------------------------------------------------------
+
+REAL = TITLE + SURROUNDINGS + '[fluids.f]\nmodel = "real-fluid"\nsubstance = "water"\n'
+
+
+@pytest.mark.parametrize(
+    ("written", "meant"),
+    [
+        ('"library"', (SecondSource("library"),)),
+        ('{ model = "cubic", tolerance = "0.5 %" }', (SecondSource("cubic", 0.005),)),
+        ('{ model = "cubic", tolerance = 0.005 }', (SecondSource("cubic", 0.005),)),
+        ('["ideal-gas", { model = "library" }]', (SecondSource("ideal-gas"), SecondSource("library"))),
+        ('"none"', ()),
+    ],
+)
+def test_second_sources_of_a_state(written: str, meant: tuple[SecondSource, ...], tmp_path: Path) -> None:
+    found = read(tmp_path, REAL + STATE + f"second_source = {written}\n").states["1"]
+    assert found.second_sources == meant
+
+
+def test_a_fluid_gives_its_second_source_to_states_that_name_none(tmp_path: Path) -> None:
+    text = REAL + 'second_source = "library"\n' + STATE
+    text += '[states.2]\nlike = "1"\nsecond_source = "cubic"\n[states.3]\nlike = "1"\nsecond_source = "none"\n'
+    states = read(tmp_path, text).states
+    assert [states[name].second_sources for name in "123"] == [(SecondSource("library"),), (SecondSource("cubic"),), ()]
+
+
+def test_a_second_source_is_not_copied_by_a_likeness(tmp_path: Path) -> None:
+    text = REAL + STATE + 'second_source = "library"\n[states.2]\nlike = "1"\n'
+    assert read(tmp_path, text).states["2"].second_sources == ()
+
+
+def test_incompressible_fluids_take_pressure_and_temperature_and_volume_flow(tmp_path: Path) -> None:
+    table = 'model = "incompressible"\ndensity = "870 kg/m3"\nspecific_heat = "2.1 kJ/(kg*K)"\n' + RANGE
+    text = TITLE + SURROUNDINGS + "[fluids.f]\n" + table + STATE + 'volume_flow = "3 m3/h"\n'
+    assert faults(tmp_path, text) == []
+
+
+def test_cubic_fluids_take_a_quality(tmp_path: Path) -> None:
+    text = TITLE + SURROUNDINGS + '[fluids.f]\nmodel = "cubic"\nequation = "Peng-Robinson"\nsubstance = "propane"\n'
+    assert faults(tmp_path, text + '[states.1]\nfluid = "f"\npressure = "2 bar"\nquality = 0.3\n') == []
