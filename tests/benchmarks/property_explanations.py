@@ -14,6 +14,7 @@ The tests, in the order in which they are tried:
   or is a single phase, all properties being equal.
 * *splines of the library*: up to 1.2e-3 Tc below critical, coexisting phases of the library are a spline of its own.
   Ours must give the pair back from its (T, ρ), and its saturation fulfils the equation (property_identities).
+* *solid by the melting line*: the library's equation goes on under the melting line; here that is no state.
 * *critical point*: the library names phases by another critical point than that of the equation; all properties agree.
 """
 
@@ -31,6 +32,7 @@ from tests.benchmarks.property_states import Reference, library_ideal_heat_capac
 
 __all__ = [
     "BARS",
+    "SOLID",
     "SPLINE_REGION",
     "Base",
     "Criticals",
@@ -61,8 +63,12 @@ SPLINE_REGION = 1.2e-3
 _ROUNDING = 4e-15
 #: What of the given pair must come back from our own (T, ρ).
 _GIVEN_BACK = 1e-11
+#: Reason where the library's state lies under the melting line: there, a pair has another state or none.
+SOLID = "solid by the melting line"
 #: Vapour fraction that a saturated state may gain or lose by rounding.
 _ON_LINE = 1e-7
+#: Relative distance of the points at which the scatter of values is looked at.
+_SCATTER_STEP = 2e-14
 _STEPS = (0.25, 0.5, 0.75, 1.0)
 
 
@@ -82,14 +88,22 @@ def deviations(reference: Reference, state: Any, gas_constant: float) -> dict[st
     return {name: np.abs(getattr(state, name) - getattr(reference, name)) / measure[name] for name in BARS}
 
 
-def rounding(reference: Reference, gas_constant: float) -> dict[str, Array]:
-    """Uncertainty of each property from rounding: of the value, and of the sum it comes from [SI]."""
-    found = {name: _ROUNDING * scale for name, scale in scales(reference, gas_constant).items()}
-    rt = gas_constant * reference.temperature
-    found["pressure"] = _ROUNDING * np.maximum(reference.pressure, reference.density * rt)
-    two_phase = reference.phase == "two-phase"
-    found["pressure"] = np.where(two_phase, _ROUNDING * reference.pressure, found["pressure"])
-    found["specific_volume"] = _ROUNDING / reference.density
+def rounding(fluid: RealFluid, reference: Reference) -> dict[str, Array]:
+    """Uncertainty of each property from rounding [SI]: of the value, and as the equation's own values scatter.
+
+    The scatter is the largest second difference of values at points 2e-14 apart, in T and in ρ: what a smooth function
+    has none of. It shows how far the terms of the equation cancel (R22 at 150 K: ten thousand to one).
+    """
+    found = {name: _ROUNDING * scale for name, scale in scales(reference, fluid.gas_constant).items()}
+    ladder = (1 + _SCATTER_STEP * np.arange(-3, 4))[:, None]
+    flat = np.ones_like(ladder)
+    for in_temperature, in_density in ((ladder, flat), (flat, ladder)):
+        state = fluid.at(
+            temperature=reference.temperature * in_temperature, density=reference.density * in_density, errors="mask"
+        )
+        for name in found:
+            bend = np.abs(np.diff(np.asarray(getattr(state, name)), n=2, axis=0))
+            found[name] = np.maximum(found[name], 2 * np.max(np.nan_to_num(bend), axis=0))
     found["quality"] = np.full(reference.size, 1e-12)
     found["superheat"] = found["subcooling"] = _ROUNDING * reference.temperature
     return found
@@ -125,19 +139,22 @@ def _critical_region(reference: Reference, criticals: Criticals) -> tuple[Array,
 class Base:
     """Comparison at the library's own (T, ρ), or (T, x) of saturated states.
 
-    ``reasons`` of deviations above a bar there (else empty), ``unexplained`` ones, ``difference`` |ours − theirs| by
-    property [SI], and ``saturation``: where the library's saturation temperature at p is known to be off.
+    ``reasons`` of deviations above a bar there (else empty), ``unexplained`` ones, ``difference`` |ours − theirs| and
+    ``small``, the rounding, by property [SI]; ``saturation``: where the library's saturation temperature at p is known
+    to be off.
     """
 
     reasons: Array
     unexplained: Array
     difference: dict[str, Array]
+    small: dict[str, Array]
     saturation: Array
 
     def take(self, chosen: Array) -> Base:
         """Some of the states."""
         difference = {name: values[chosen] for name, values in self.difference.items()}
-        return Base(self.reasons[chosen], self.unexplained[chosen], difference, self.saturation[chosen])
+        small = {name: values[chosen] for name, values in self.small.items()}
+        return Base(self.reasons[chosen], self.unexplained[chosen], difference, small, self.saturation[chosen])
 
 
 def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any, criticals: Criticals) -> Base:
@@ -152,11 +169,13 @@ def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any
     gas_constant = fluid.gas_constant
     names = (*BARS, "superheat", "subcooling", "quality")
     difference = {name: np.nan_to_num(np.abs(getattr(state, name) - getattr(reference, name))) for name in names}
-    small = rounding(reference, gas_constant)
+    small = rounding(fluid, reference)
     # c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ): what ∂p/∂ρ = w² c_v/c_p loses, c_p loses; c_v is not below half of R
     slope = reference.speed_of_sound**2 * 0.5 * gas_constant / reference.isobaric_heat_capacity
     relative = _ROUNDING * (1 + gas_constant * reference.temperature / slope)
-    small["isobaric_heat_capacity"] = relative * reference.isobaric_heat_capacity
+    small["isobaric_heat_capacity"] = np.fmax(
+        small["isobaric_heat_capacity"], relative * reference.isobaric_heat_capacity
+    )
     over, beyond = np.zeros(reference.size, dtype=bool), np.zeros(reference.size, dtype=bool)
     for name, scale in scales(reference, gas_constant).items():
         with np.errstate(invalid="ignore"):
@@ -164,6 +183,9 @@ def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any
             beyond |= difference[name] > np.maximum(BARS[name] * scale, small[name])
     wanted = over | (state.phase != reference.phase)
     reasons = np.full(reference.size, "", dtype="<U80")
+    line = fluid._guard.melting_line
+    if line is not None:
+        reasons[reference.pressure > line.pressure(reference.temperature) * (1 - 1e-6)] = SOLID
     reasons[over & ~beyond & (state.phase == reference.phase)] = "rounding of a sum that cancels"
     splines, between = _critical_region(reference, criticals)
     reasons[wanted & (reasons == "") & splines] = "splines of the library"
@@ -179,9 +201,8 @@ def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any
             reasons[index] = "saturation of the library" if worse else ""
     if (wanted & (reasons == "")).any() and _other_ideal_part(fluid, theirs, reference):
         reasons[wanted & (reasons == "")] = "ideal heat capacity of the library"
-    return Base(
-        reasons, wanted & (reasons == ""), difference, _saturation_temperature(fluid, theirs, reference, difference)
-    )
+    saturation = _saturation_temperature(fluid, theirs, reference, difference)
+    return Base(reasons, wanted & (reasons == ""), difference, small, saturation)
 
 
 def _other_ideal_part(fluid: RealFluid, theirs: Any, reference: Reference) -> bool:
@@ -227,7 +248,7 @@ def explain(
     reasons = base.reasons.copy()
     if given[1] in ("superheat", "subcooling"):
         reasons[base.saturation] = "saturation of the library"
-    small = rounding(reference, fluid.gas_constant)
+    small = base.small
     alike = ~base.unexplained
     amplified = np.zeros(reference.size, dtype=bool)
     back = np.ones(reference.size, dtype=bool)

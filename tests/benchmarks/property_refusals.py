@@ -12,10 +12,10 @@ from numpy.typing import NDArray
 from reportgen.errors import Fault
 from reportgen.fluids.pairs import SeveralStates
 from reportgen.fluids.real.fluid import RealFluid
-from tests.benchmarks.property_explanations import BARS, Base, Criticals
+from tests.benchmarks.property_explanations import BARS, SOLID, Base, Criticals
 from tests.benchmarks.property_states import Reference
 
-__all__ = ["SEVERAL", "judge", "nearest_roots"]
+__all__ = ["SEVERAL", "is_thin", "judge", "nearest_roots"]
 
 Array = NDArray[Any]
 
@@ -35,10 +35,8 @@ def judge(
         return True, SEVERAL
     if base.reasons[index] in ("saturation of the library", "ideal heat capacity of the library"):
         return True, "a state of the library that is none by its own equation"
-    if "is solid at" in message or " or solid." in message:
-        line = fluid._guard.melting_line
-        cold = t < limits.minimum_temperature * (1 + 1e-9)
-        return cold or (line is not None and p > line.pressure(np.array([t]))[0] * (1 - 1e-6)), "solid"
+    if base.reasons[index] == SOLID:
+        return True, SOLID
     if "do not tell liquid from vapour" in message:
         liquid, _ = fluid.saturation(temperature=min(t, criticals.temperature[0]))
         return abs(p / float(liquid.pressure) - 1) < 1e-8, "on the saturation line"
@@ -47,9 +45,7 @@ def judge(
         on_line = bool(np.isfinite(reference.quality[index]))
         return fluid.pseudo_pure and not on_line, "on a line, or " * on_line + "between bubble and dew line"
     if "do not tell the pressure" in message:
-        thin = fluid.at(temperature=[t, t], density=[rho, 1e-3 * rho], errors="mask").specific_enthalpy
-        scale = max(abs(thin[0]), fluid.gas_constant * t)
-        return abs(thin[1] - thin[0]) < _FLAT * scale, "thin gas, whose energy does not tell the pressure"
+        return is_thin(fluid, t, rho), "thin gas, whose energy does not tell the pressure"
     edge = 1e-9
     outside = (
         t < limits.minimum_temperature * (1 + edge)
@@ -65,6 +61,12 @@ def judge(
     if "above the critical" in message and t > criticals.temperature[0] * (1 - 1e-6):
         return True, "above the critical point of the equation"
     return False, re.sub(r"[-+]?\d[\d.]*(e[-+]?\d+)?", "#", message.replace(fluid.title, "FLUID"))[:110]
+
+
+def is_thin(fluid: RealFluid, temperature: float, density: float) -> bool:
+    """Whether h at T [K] of a gas of this density [kg/m3] is that of one a thousand times thinner, nearly."""
+    pair = fluid.at(temperature=[temperature] * 2, density=[density, 1e-3 * density], errors="mask").specific_enthalpy
+    return bool(abs(pair[1] - pair[0]) < _FLAT * max(abs(pair[0]), fluid.gas_constant * temperature))
 
 
 def nearest_roots(fluid: RealFluid, reference: Reference, faults: dict[int, Fault]) -> tuple[Array, SimpleNamespace]:
