@@ -15,9 +15,15 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from reportgen.fluids.real.workspace import Workspace
+
 __all__ = ["Factor", "FactorSet"]
 
 FloatArray = NDArray[Any]
+
+_workspace = Workspace()
+#: Natural logarithm of what counts as nothing.
+_NEGLIGIBLE = -250.0
 
 
 @dataclass(frozen=True)
@@ -46,9 +52,11 @@ class FactorSet:
     ----------
     factors : the factors, in any order, repeats allowed. ``rows[i]`` is the row of the i-th one in the result.
     dtype : floating type of the calculation; extended precision serves the fitting of saturation expansions.
+    role : sets of different roles may be in use at once, of the same role one after the other.
     """
 
-    def __init__(self, factors: list[Factor], dtype: type[np.floating[Any]] = np.float64) -> None:
+    def __init__(self, factors: list[Factor], dtype: type[np.floating[Any]] = np.float64, role: str = "") -> None:
+        self._dtype, self._role = dtype, role
         distinct = sorted(set(factors), key=lambda factor: factor.sort_key)
         position = {factor: row for row, factor in enumerate(distinct)}
         self.rows = [position[factor] for factor in factors]
@@ -78,42 +86,58 @@ class FactorSet:
         chosen = distinct[self._inverse]
         self._inverse_parameters = tuple(column(name, chosen) for name in ("width", "centre", "offset", "slope"))
 
-    def values(self, x: FloatArray, log_x: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray]:
-        """F, x F′ and x² F″ of every distinct factor.
+    def values(self, x: FloatArray, log_x: FloatArray, order: int = 2) -> list[FloatArray]:
+        """F and, up to the order wanted, x F′ and x² F″ of every distinct factor.
 
         Parameters
         ----------
         x, log_x : the variable and its logarithm [1], shape (N,).
+        order : of the highest derivative, 0, 1 or 2.
 
         Returns
         -------
-        three arrays of shape (count, N).
+        arrays of shape (count, N), valid until the next call.
         """
         # With P = x F'/F: x F' = F P and x² F'' = F (P² − P + x P').
-        log_f = self.exponent * log_x
-        first = np.empty_like(log_f)
-        first[:] = self.exponent
+        size = x.size
+        log_f = self._array("value", size)
+        np.multiply(self.exponent, log_x, out=log_f)
+        first = None
+        if order:
+            first = self._array("first", size)
+            first[:] = self.exponent
         rows = self._exponential
-        decay = gauss = None
+        decay = gauss = correction = None
         if rows.stop:
-            decay = (x**self._powers)[self._power_of_row]
+            decay = self._array("decay", size, rows)
+            np.take(x**self._powers, self._power_of_row, axis=0, out=decay, mode="clip")
             if self._rate is not None:
                 decay *= self._rate
             log_f[rows] -= decay
-            decay *= self._power
-            first[rows] -= decay
+            if first is not None:
+                decay *= self._power
+                first[rows] -= decay
         rows = self._gaussian
         if rows.stop:
             shift = x - self._centre
             gauss = self._width * shift
-            log_f[rows] -= gauss * shift
-            gauss *= 2 * x
-            first[rows] -= gauss
-        rows = self._inverse
-        correction = None
-        if rows.stop:
+            shift *= gauss
+            log_f[rows] -= shift
+            if first is not None:
+                gauss *= 2 * x
+                first[rows] -= gauss
+        if self._inverse.stop:
             correction = self._add_inverse(x, log_f, first)
-        second = first * first
+        # Denormal numbers would be slow, and change nothing.
+        np.maximum(log_f, _NEGLIGIBLE, out=log_f)
+        value = np.exp(log_f, out=log_f)
+        if first is None:
+            return [value]
+        if order == 1:
+            first *= value
+            return [value, first]
+        second = self._array("second", size)
+        np.multiply(first, first, out=second)
         second -= first
         if decay is not None:
             decay *= self._power
@@ -123,17 +147,22 @@ class FactorSet:
             second[self._gaussian] -= gauss
         if correction is not None:
             second[self._inverse] += correction
-        value = np.exp(log_f, out=log_f)
         first *= value
         second *= value
-        return value, first, second
+        return [value, first, second]
 
-    def _add_inverse(self, x: FloatArray, log_f: FloatArray, first: FloatArray) -> FloatArray:
-        """Contribution of rows with an inverse parabola to ln F and P; returns x P' of those rows."""
+    def _array(self, name: str, size: int, rows: slice | None = None) -> FloatArray:
+        count = self.count if rows is None else rows.stop - rows.start
+        return _workspace.array(self._role + name, count, size, self._dtype)
+
+    def _add_inverse(self, x: FloatArray, log_f: FloatArray, first: FloatArray | None) -> FloatArray | None:
+        """Contribution of rows with an inverse parabola to ln F and, if wanted, P; returns x P' of those rows."""
         width, centre, offset, slope = self._inverse_parameters
         shift = x - centre
         parabola = offset + slope * shift**2
         log_f[self._inverse] += 1 / parabola - width * shift**2
+        if first is None:
+            return None
         first[self._inverse] -= 2 * x * shift * (width + slope / parabola**2)
         twice = 2 * x * (2 * x - centre)
         result: FloatArray = 8 * (slope * x * shift) ** 2 / parabola**3 - twice * (width + slope / parabola**2)

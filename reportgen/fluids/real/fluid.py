@@ -128,6 +128,11 @@ class RealFluid:
 
     def _at_once(self, errors: Errors, pair: Mapping[str, ArrayLike]) -> State:
         """The state of any number of elements, by the vectorised branch."""
+        shape, solution, elements = self._solved(errors, pair)
+        return State(shape, solution.values(), solution.fill, elements.faults)
+
+    def _solved(self, errors: Errors, pair: Mapping[str, ArrayLike]) -> tuple[tuple[int, ...], Solution, Elements]:
+        """The shape of what was given, the solution for its elements, and why some of them have none."""
         given, usable, elements = self._read(pair)
         solve = self._pairs[given.names]
         # Far from a solution, searches may overflow; what they return is checked for each element.
@@ -135,14 +140,16 @@ class RealFluid:
             if usable.size == elements.size:
                 solution = solve(given.first, given.second, elements)
                 elements.finish(errors)
-                values = solution.masked(elements.rejected) if elements.faults else solution.values()
-                return State(given.shape, values, solution.fill, elements.faults)
+                if elements.faults:
+                    solution.masked(elements.rejected)
+                return given.shape, solution, elements
             part = Elements(usable.size)
             solution = solve(given.first[usable], given.second[usable], part)
             elements.take_over(part, usable)
             elements.finish(errors)
             solution.masked(part.rejected)
-            return State(given.shape, solution.spread(usable, elements.size), solution.fill, elements.faults)
+            solution.spread(usable, elements.size)
+            return given.shape, solution, elements
 
     def _read(self, pair: Mapping[str, ArrayLike]) -> tuple[Pair, NDArray[np.intp], Elements]:
         """The two properties, the elements where both are finite, and faults of those where one is infinite: that is a
@@ -170,12 +177,14 @@ class RealFluid:
             return few
         if (temperature is None) == (pressure is None):
             raise InputError(Fault("Saturation is fixed by a temperature or a pressure, one of the two."))
-        if temperature is not None:
-            given = {"temperature": temperature}
-        else:
-            assert pressure is not None
-            given = {"pressure": pressure}
-        return self.at(errors=errors, quality=0.0, **given), self.at(errors=errors, quality=1.0, **given)
+        check_errors(errors)
+        given: dict[str, Any] = {"pressure": pressure} if temperature is None else {"temperature": temperature}
+        shape, liquid, elements = self._solved(errors, {**given, "quality": 0.0})
+        vapour = self._solved(errors, {**given, "quality": 1.0})[1] if self.pseudo_pure else liquid.other_end()
+        return (
+            State(shape, liquid.values(), liquid.fill, elements.faults),
+            State(shape, vapour.values(), vapour.fill, elements.faults),
+        )
 
     def roots(self, *, errors: Errors = "raise", **pair: ArrayLike) -> State:
         """Every state that has two properties, where :meth:`at` would refuse several.

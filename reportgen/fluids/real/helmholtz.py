@@ -11,7 +11,7 @@ Theory: Span, *Multiparameter Equations of State*, Springer 2000, doi:10.1007/97
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from typing import Any, NamedTuple
 
 import numpy as np
@@ -20,6 +20,7 @@ from numpy.typing import NDArray
 from reportgen.fluids.real.factors import FactorSet
 from reportgen.fluids.real.nonanalytic import NonAnalytic
 from reportgen.fluids.real.terms import NON_ANALYTIC, ideal_sum, residual_products
+from reportgen.fluids.real.workspace import Workspace
 
 __all__ = ["CHUNK", "Helmholtz", "Isotherm", "Properties", "Reduced"]
 
@@ -27,6 +28,7 @@ FloatArray = NDArray[Any]
 
 #: Sum over an axis, without the detour through the method.
 _sum = np.add.reduce
+_workspace = Workspace()
 
 #: Elements worked on at a time, so that the temporaries stay in the cache.
 CHUNK = 2048
@@ -106,8 +108,11 @@ class Helmholtz:
         products = residual_products(list(residual))
         self.products = tuple(products)
         self.singular_terms = tuple(term for term in residual if term["kind"] == NON_ANALYTIC)
-        self._density_factors = FactorSet([product.density_factor for product in products], dtype)
-        self._temperature_factors = FactorSet([product.temperature_factor for product in products], dtype)
+        self._density_factors = FactorSet([product.density_factor for product in products], dtype, "density")
+        self._temperature_factors = FactorSet(
+            [product.temperature_factor for product in products], dtype, "temperature"
+        )
+        self._dtype = dtype
         weights = np.zeros((self._density_factors.count, self._temperature_factors.count), dtype=dtype)
         for product, row, column in zip(
             products, self._density_factors.rows, self._temperature_factors.rows, strict=True
@@ -124,17 +129,29 @@ class Helmholtz:
         self._einstein_n, self._einstein_theta = einstein[:, 0], einstein[:, 1]
         self._einstein_c, self._einstein_d = einstein[:, 2], einstein[:, 3]
 
-    def _collect(self, g: FloatArray) -> FloatArray:
-        """C = W·G for temperature factors G of shape (factors, N)."""
-        size = g.shape[1]
-        if size <= self._block:
-            result: FloatArray = self._weights @ g
-            return result
-        result = np.empty((self._weights.shape[0], size), dtype=g.dtype)
-        for start in range(0, size, self._block):
+    def _collect(self, g: FloatArray, result: FloatArray) -> FloatArray:
+        """C = W·G for temperature factors G of shape (factors, N), put into ``result``."""
+        for start in range(0, g.shape[1], self._block):
             part = slice(start, start + self._block)
             np.matmul(self._weights, g[:, part], out=result[:, part])
         return result
+
+    def _collected(self, tau: FloatArray, order: int) -> list[FloatArray]:
+        """C and its derivatives in τ up to an order, as far as the temperature factors give them."""
+        return [
+            self._collect(g, self._scratch(f"collected {i}", tau.size))
+            for i, g in enumerate(self._temperature_factors.values(tau, np.log(tau), order))
+        ]
+
+    def _sums(
+        self, factors: Sequence[FloatArray], collected: Sequence[FloatArray], chosen: Iterable[tuple[int, int]]
+    ) -> list[FloatArray]:
+        """Σ F C over all rows, with the derivatives of F and of C that are chosen by their orders."""
+        product = self._scratch("product", collected[0].shape[1])
+        return [_sum(np.multiply(factors[i], collected[j], out=product), axis=0) for i, j in chosen]
+
+    def _scratch(self, name: str, size: int) -> FloatArray:
+        return _workspace.array(name, self._weights.shape[0], size, self._dtype)
 
     def ideal(self, delta: FloatArray, tau: FloatArray) -> Reduced:
         """φ° and its scaled derivatives [1] at δ, τ [1] of shape (N,)."""
@@ -181,7 +198,8 @@ class Helmholtz:
     def isotherm(self, temperature: FloatArray) -> Isotherm:
         """What depends on temperature T [K] alone, for repeated evaluation at different densities."""
         tau = self.reducing_temperature / temperature
-        collected = self._collect(self._temperature_factors.values(tau, np.log(tau))[0])
+        (g,) = self._temperature_factors.values(tau, np.log(tau), 0)
+        collected = self._collect(g, np.empty((self._weights.shape[0], tau.size), dtype=self._dtype))
         near = bool(self._non_analytic) and any(
             term.matters(np.ones_like(tau), tau).size > 0 for term in self._non_analytic
         )
@@ -206,19 +224,8 @@ class Helmholtz:
 
     def residual(self, delta: FloatArray, tau: FloatArray) -> Reduced:
         """φʳ and its scaled derivatives [1] at δ, τ [1] of shape (N,)."""
-        g, g_first, g_second = self._temperature_factors.values(tau, np.log(tau))
-        f, f_first, f_second = self._density_factors.values(delta, np.log(delta))
-        collected = self._collect(g)
-        collected_first = self._collect(g_first)
-        collected_second = self._collect(g_second)
-        sums = [
-            _sum(f * collected, axis=0),
-            _sum(f_first * collected, axis=0),
-            _sum(f_second * collected, axis=0),
-            _sum(f * collected_first, axis=0),
-            _sum(f * collected_second, axis=0),
-            _sum(f_first * collected_first, axis=0),
-        ]
+        factors = self._density_factors.values(delta, np.log(delta))
+        sums = self._sums(factors, self._collected(tau, 2), ((0, 0), (1, 0), (2, 0), (0, 1), (0, 2), (1, 1)))
         for term in self._non_analytic:
             where = term.matters(delta, tau)
             if where.size:
@@ -226,6 +233,42 @@ class Helmholtz:
                 for total, add in zip(sums, (value, first, second, tau_first, tau_second, mixed), strict=True):
                     total[where] += add
         return Reduced(*sums)
+
+    def coexisting(self, temperature: FloatArray, liquid: FloatArray, vapour: FloatArray) -> tuple[FloatArray, ...]:
+        """h of liquid and vapour [J/kg] and s of both [J/(kg*K)] at T [K] and their densities [kg/m3] of shape (N,).
+
+        What depends on temperature is computed once for both, and no second derivatives.
+        """
+        size = temperature.size
+        results = tuple(np.empty(size, dtype=self._dtype) for _ in range(4))
+        for start in range(0, size, CHUNK):
+            part = slice(start, start + CHUNK)
+            values = self._coexisting(temperature[part], liquid[part], vapour[part])
+            for result, value in zip(results, values, strict=True):
+                result[part] = value
+        return results
+
+    def _coexisting(self, temperature: FloatArray, liquid: FloatArray, vapour: FloatArray) -> tuple[FloatArray, ...]:
+        tau = self.reducing_temperature / temperature
+        collected = self._collected(tau, 1)
+        ideal = self.ideal(np.ones_like(tau), tau)
+        enthalpies, entropies = [], []
+        for density in (liquid, vapour):
+            delta = density / self.reducing_density
+            log_delta = np.log(delta)
+            f, f_first = self._density_factors.values(delta, log_delta, 1)
+            value, first, tau_first = self._sums((f, f_first), collected, ((0, 0), (1, 0), (0, 1)))
+            for term in self._non_analytic:
+                where = term.matters(delta, tau)
+                if where.size:
+                    add = term.values(delta[where], tau[where])
+                    first[where] += add[0]
+                    value[where] += add[2]
+                    tau_first[where] += add[3]
+            tau_first += ideal.tau
+            enthalpies.append(self.gas_constant * temperature * (1 + first + tau_first))
+            entropies.append(self.gas_constant * (tau_first - ideal.value - log_delta - value))
+        return *enthalpies, *entropies
 
     def pressure(
         self, density: FloatArray, temperature: FloatArray, isotherm: Isotherm

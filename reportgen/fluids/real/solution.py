@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
+from functools import cached_property
 from typing import Any
 
 import numpy as np
@@ -12,19 +13,45 @@ from numpy.typing import NDArray
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.saturation import SaturationCurves
 
-__all__ = ["CALORIC", "Solution"]
+__all__ = ["CALORIC", "FIRST_ORDER", "Solution"]
 
 FloatArray = NDArray[np.float64]
 
+#: Fields that need no second derivatives of the equation.
+FIRST_ORDER = ("specific_enthalpy", "specific_entropy", "specific_internal_energy")
 #: Fields that the equation gives together.
 CALORIC = (
-    "specific_enthalpy",
-    "specific_entropy",
-    "specific_internal_energy",
+    *FIRST_ORDER,
     "isobaric_heat_capacity",
     "isochoric_heat_capacity",
     "speed_of_sound",
 )
+
+
+class Coexisting:
+    """Enthalpies and entropies of liquid and vapour in equilibrium, computed when first asked for.
+
+    Parameters
+    ----------
+    equation : the equation of state.
+    temperature, liquid, vapour : T [K] and the densities of the phases [kg/m3], shape (N,).
+    """
+
+    def __init__(self, equation: Helmholtz, temperature: FloatArray, liquid: FloatArray, vapour: FloatArray) -> None:
+        self._equation, self._given = equation, (temperature, liquid, vapour)
+
+    @cached_property
+    def _values(self) -> tuple[FloatArray, ...]:
+        return self._equation.coexisting(*self._given)
+
+    def ends(self, quality: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """h [J/kg] and s [J/(kg*K)] at qualities x [1], by the lever rule."""
+        h_l, h_v, s_l, s_v = self._values
+        vapour = quality == 1
+        return (
+            np.where(vapour, h_v, h_l + quality * (h_v - h_l)),
+            np.where(vapour, s_v, s_l + quality * (s_v - s_l)),
+        )
 
 
 @dataclass
@@ -46,6 +73,7 @@ class Solution:
     liquid_density: FloatArray | None = None
     vapour_density: FloatArray | None = None
     known: dict[str, FloatArray] = field(default_factory=dict)
+    coexisting: Coexisting | None = None
 
     def values(self) -> dict[str, FloatArray]:
         """Fields known already."""
@@ -80,6 +108,9 @@ class Solution:
 
     def fill(self, name: str) -> Mapping[str, NDArray[Any]]:
         """The field ``name`` and those that come with it."""
+        if name in FIRST_ORDER and self.coexisting is not None:
+            assert self.quality is not None
+            return self._first_order(*self.coexisting.ends(self.quality))
         if name in CALORIC:
             return self._caloric()
         if name == "specific_volume":
@@ -89,6 +120,18 @@ class Solution:
         if name == "phase":
             return {name: self._phase()}
         return self._distance()
+
+    def other_end(self) -> Solution:
+        """Saturated vapour instead of the saturated liquid this is, of a pure fluid; both share their computations."""
+        assert self.quality is not None
+        assert self.liquid_density is not None
+        assert self.vapour_density is not None
+        self.coexisting = Coexisting(self.equation, self.temperature, self.liquid_density, self.vapour_density)
+        return replace(self, density=self.vapour_density, quality=self.quality + 1)
+
+    def _first_order(self, enthalpy: FloatArray, entropy: FloatArray) -> dict[str, FloatArray]:
+        energy = enthalpy - self.pressure / self.density
+        return dict(zip(FIRST_ORDER, (enthalpy, entropy, energy), strict=True))
 
     def _two_phase(self) -> NDArray[np.bool_]:
         quality = self.values()["quality"]
@@ -116,12 +159,8 @@ class Solution:
             assert self.quality is not None
             assert self.liquid_density is not None
             assert self.vapour_density is not None
-            x, t_mixed = self.quality[mixed], t[mixed]
-            both = np.concatenate([self.liquid_density[mixed], self.vapour_density[mixed]])
-            phases = self.equation.properties(np.concatenate([t_mixed, t_mixed]), both)
-            n = mixed.size
-            h[mixed] = phases.enthalpy[:n] + x * (phases.enthalpy[n:] - phases.enthalpy[:n])
-            s[mixed] = phases.entropy[:n] + x * (phases.entropy[n:] - phases.entropy[:n])
+            phases = Coexisting(self.equation, t[mixed], self.liquid_density[mixed], self.vapour_density[mixed])
+            h[mixed], s[mixed] = phases.ends(self.quality[mixed])
             cv[mixed] = cp[mixed] = w[mixed] = np.nan
         h, s = self.known.get("specific_enthalpy", h), self.known.get("specific_entropy", s)
         return dict(zip(CALORIC, (h, s, h - p / rho, cp, cv, w), strict=True))
