@@ -37,6 +37,12 @@ _LINES = (
     "Temperature against specific entropy: thin lines are isobars through the states, thick lines the states passed "
     "on the way."
 )
+_ONE_LINE = (
+    "Temperature against specific entropy: without compression one depends on the other alone, so that the thin line "
+    "holds at every pressure; thick lines are the states passed on the way."
+)
+#: Least entropy span of the states [J/(kg·K)] where no gas constant is known.
+LEAST_SPAN = 100.0
 #: Room left and right of the states for isobars, as a part of the entropy span of the states.
 MARGIN = 0.35
 
@@ -56,6 +62,8 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             continue
         span = _entropy_span(points, fluid.gas_constant)
         pressures = _distinct(plant.samples(f"states.{point['state']}.pressure")[0] for point in points)
+        if fluid.kind == "incompressible":
+            del pressures[1:]
         paths = [
             {
                 "equipment": curve.equipment,
@@ -67,7 +75,7 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             if curve.fluid == identifier
         ]
         dome = saturation_dome(fluid)
-        parts = [_LINES]
+        parts = [_ONE_LINE if fluid.kind == "incompressible" else _LINES]
         parts += ["The dome is the saturation line, closed at the critical point."] if dome else []
         parts += [_zero(fluid.entropy_zero)]
         figures.append(
@@ -204,7 +212,7 @@ def _point(plant: EvaluatedPlant, state: str, fluid: str) -> dict[str, Any] | No
 def _entropy_span(points: Sequence[Mapping[str, Any]], gas_constant: float) -> tuple[float, float]:
     entropies = [point["entropy"] for point in points]
     lowest, highest = min(entropies), max(entropies)
-    room = MARGIN * max(highest - lowest, gas_constant)
+    room = MARGIN * max(highest - lowest, gas_constant if math.isfinite(gas_constant) else LEAST_SPAN)
     return lowest - room, highest + room
 
 

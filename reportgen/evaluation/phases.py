@@ -24,8 +24,13 @@ APART = ("liquid", "vapour", "two-phase")
 
 
 def saturation_temperature(plant: EvaluatedPlant, state: str) -> Array:
-    """Saturation temperature at the pressure of a state [K], shape (N,); NaN above the critical pressure."""
+    """Saturation temperature at the pressure of a state [K], shape (N,).
+
+    NaN above the critical pressure, and for models without saturation.
+    """
     fluid: Any = plant.fluid_of(state)
+    if not hasattr(fluid, "saturation"):
+        return np.full(plant.axis.columns, np.nan)
     _, vapour = fluid.saturation(pressure=plant.samples(f"states.{state}.pressure"), errors="mask")
     return np.asarray(vapour.temperature, dtype=float)
 
