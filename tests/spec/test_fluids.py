@@ -136,3 +136,11 @@ def test_incompressible_fluids_take_pressure_and_temperature_and_volume_flow(tmp
 def test_cubic_fluids_take_a_quality(tmp_path: Path) -> None:
     text = TITLE + SURROUNDINGS + '[fluids.f]\nmodel = "cubic"\nequation = "Peng-Robinson"\nsubstance = "propane"\n'
     assert faults(tmp_path, text + '[states.1]\nfluid = "f"\npressure = "2 bar"\nquality = 0.3\n') == []
+
+
+def test_the_fluids_of_the_readme_can_be_read(tmp_path: Path) -> None:
+    readme = (Path(__file__).parents[2] / "README.md").read_text("utf-8")
+    (block,) = (part.partition("```")[0] for part in readme.split("```toml\n")[1:] if "[fluids." in part)
+    calculation = read(tmp_path, TITLE + SURROUNDINGS + block)
+    assert {fluid.model for fluid in calculation.fluids.values()} == {"real-fluid", "cubic", "incompressible"}
+    assert [source.model for source in calculation.states["7"].second_sources] == ["library", "ideal-gas"]
