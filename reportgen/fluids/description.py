@@ -69,7 +69,7 @@ def list_all() -> str:
         lines.append(
             f"  {name:<29} {data['formula']:<10} {number:<7}"
             f"{limits['minimum_temperature']:>8.6g} K to {limits['maximum_temperature']:>6g} K"
-            f"{limits['maximum_pressure'] / 1e5:>8g} bar   {_short(catalogue.source_lines(data)[0])}"
+            f"{limits['maximum_pressure'] / 1e5:>8g} bar   {_short(data['sources']['equation'][0])}"
         )
     gases = gas_catalogue.names()
     lines += ["", f"Ideal gases ({ideal_gas(gases[0]).sources[0]})"]
@@ -82,11 +82,8 @@ def list_all() -> str:
     return "\n".join(lines)
 
 
-def _short(source: str) -> str:
-    """First author, year and DOI of a source; the whole of it where it has no DOI."""
-    people, found, rest = source.partition(" (")
-    _, has_doi, doi = source.partition("doi:")
-    if not (found and has_doi):
-        return source
-    first, more, _ = people.partition("; ")
-    return f"{first}{' et al.' if more else ''} ({rest[:4]}), doi:{doi}"
+def _short(source: Mapping[str, str]) -> str:
+    """First author, year, and DOI of a publication, or where it appeared when it has none."""
+    first, more, _ = source["authors"].partition("; ")
+    place = f"doi:{source['doi']}" if source["doi"] else source["published_in"]
+    return f"{first}{' et al.' if more else ''} ({source['year']}), {place}"

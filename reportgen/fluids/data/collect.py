@@ -20,14 +20,14 @@ from CoolProp.CoolProp import get_BibTeXKey, get_fluid_param_string
 
 from reportgen.fluids.data import collect_saturation as saturation
 from reportgen.fluids.data.collect_bibliography import bibliography, publications
-from reportgen.fluids.data.collect_names import FLUIDS, Entry, file_of
-from reportgen.fluids.data.collect_terms import RESIDUAL, has_constants, ideal_terms, melting_line, terms_of
+from reportgen.fluids.data.collect_checks import gaps, too_large
+from reportgen.fluids.data.collect_melting import REPLACED, STRAIGHT_TO, melting_line
+from reportgen.fluids.data.collect_names import FLUIDS, LOWER_LIMIT, Entry, file_of
+from reportgen.fluids.data.collect_terms import RESIDUAL, has_constants, ideal_terms, terms_of
 from reportgen.fluids.real.helmholtz import Helmholtz
+from reportgen.fluids.real.terms import NON_ANALYTIC
 
 HERE = Path(__file__).parent
-
-#: Stands in the words on the entropy zero for where it comes from.
-ORIGIN = "<origin>"
 
 
 #: Formulas where the order of the elements by convention is not that of Hill.
@@ -82,8 +82,9 @@ def largest_density(equation: Helmholtz, data: dict[str, Any], liquid: float) ->
     return 1.03 * highest
 
 
-def zero_in_words(equation: Helmholtz, data: dict[str, Any], saturated: Any) -> str:
-    """Where the published equation has its zeros, found by evaluating it."""
+def zero_in_words(equation: Helmholtz, data: dict[str, Any], saturated: Any, *, published: bool) -> str:
+    """Where the equation has its zeros, found by evaluating it; ``published`` as by collect_terms.has_constants."""
+    origin = ", as published." if published else "; set so, since the constants published are not carried."
     constant = equation.gas_constant
 
     def liquid(t: float) -> tuple[float, float] | None:
@@ -108,7 +109,7 @@ def zero_in_words(equation: Helmholtz, data: dict[str, Any], saturated: Any) -> 
     ):
         found = liquid(t)
         if found and abs(found[0] - h0) < tolerance_h and abs(found[1] - s0) < tolerance_s:
-            return f"{words}{ORIGIN}."
+            return f"{words}{origin}"
     t = np.array([298.15])
     rho = 101325.0 / (constant * t)
     delta, tau = rho / equation.reducing_density, equation.reducing_temperature / t
@@ -117,9 +118,10 @@ def zero_in_words(equation: Helmholtz, data: dict[str, Any], saturated: Any) -> 
     s = float((constant * (ideal.tau - ideal.value))[0])
     mass = data["molar_mass"]
     if abs(h) < tolerance_h and abs(s) < tolerance_s:
-        return f"s = 0 and h = 0 for the ideal gas at 298.15 K and 101 325 Pa{ORIGIN}."
+        return f"s = 0 and h = 0 for the ideal gas at 298.15 K and 101 325 Pa{origin}"
+    constants = "constants of the equation, as published" if published else "constants collected, not those published"
     return (
-        f"fixed by the constants of the equation{ORIGIN}: the ideal gas at 298.15 K and 101 325 Pa has "
+        f"fixed by the {constants}: the ideal gas at 298.15 K and 101 325 Pa has "
         f"s = {s * mass:.3f} J/(mol K) and h = {h * mass:.2f} J/mol."
     )
 
@@ -132,8 +134,24 @@ def lower_end(entry: Entry, equation_data: dict[str, Any]) -> tuple[float, str]:
     triple: float = equation_data["Ttriple"]
     start: float = equation_data["STATES"]["sat_min_liquid"]["T"]
     if start > triple + 0.5:
-        return start, "lower limit of the equation"
+        return start, LOWER_LIMIT
     return triple, entry.starts_at or "triple point"
+
+
+def remark_of(entry: Entry, top: float) -> str:
+    """Remarks for the reader; ``top`` is the highest temperature [K] of saturation."""
+    remarks = [entry.remark] if entry.remark else []
+    if entry.join:
+        remarks.append(
+            f"The published bubble and dew lines leave the stable branches of the equation near the top: from "
+            f"{top * (1 - entry.join[0]):.6g} K they are led to the equation's own critical point."
+        )
+    if entry.source in STRAIGHT_TO:
+        remarks.append(
+            f"Up to {STRAIGHT_TO[entry.source]:g} K a straight line from the triple point stands for the published "
+            "melting line, which misses that point."
+        )
+    return " ".join(remarks)
 
 
 def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
@@ -158,28 +176,31 @@ def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
     pseudo_pure = bool(equation_data["pseudo_pure"])
     if pseudo_pure:
         lines = source["ANCILLARIES"]
-        top = lines["pL"]["T_r"]
         bubble, dew = ancillary(lines["pL"]), ancillary(lines["pV"])
-        pieces = saturation.pseudo_pure_curves(
-            extended, top, lowest, bubble, dew, start_l, start_v, critical=critical.temperature
-        )
+        given = (lowest, bubble, dew, start_l, start_v)
+        if entry.join:
+            top = float(critical.temperature)
+            pieces = saturation.joined_curves(extended, critical, *given, entry.join)
+        else:
+            top = lines["pL"]["T_r"]
+            pieces = saturation.pseudo_pure_curves(extended, top, *given)
         names: tuple[str, ...] = ("log_pressure", "liquid_density", "log_vapour_density", "log_dew_pressure")
-        highest = next(s for key, s in equation_data["STATES"].items() if key == "temperature_max_sat")
-        apex = {"temperature": highest["T"], "pressure": highest["p"], "density": highest["rhomolar"] * mass}
     else:
-        pieces = saturation.pure_curves(extended, critical, lowest, start_l, start_v)
+        top = float(critical.temperature)
+        singular = any(term["kind"] == NON_ANALYTIC for term in residual)
+        inner = saturation.INNER_SINGULAR if singular else saturation.INNER
+        pieces = saturation.pure_curves(extended, critical, lowest, start_l, start_v, inner_end=inner)
         names = ("log_pressure", "liquid_density", "log_vapour_density")
-        apex = {
-            "temperature": float(critical.temperature),
-            "pressure": float(critical.pressure),
-            "density": float(critical.density),
-        }
-    log_top = saturation.evaluate_pieces(pieces, 0, np.zeros(1))[0]
+    log_top, density = (saturation.evaluate_pieces(pieces, row, np.zeros(1))[0] for row in (0, 1))
+    apex = {"temperature": top, "pressure": float(np.exp(log_top)), "density": float(density)}
     curves = saturation.as_data(pieces, names)
     bubble_start = saturation.outermost_crossing(pieces, 0, log_top)
-    curves["boiling"] = saturation.as_data(saturation.inverse(pieces, 0, log_top, bubble_start), ("root",))
+    loose = saturation.LOOSE_AT_TOP if pseudo_pure else saturation.LOOSE
+    boiling = saturation.inverse(pieces, 0, log_top, bubble_start, loose=loose)
+    curves["boiling"] = saturation.as_data(boiling, ("root",))
     if pseudo_pure:
-        curves["condensing"] = saturation.as_data(saturation.inverse(pieces, 3, log_top, 0.0), ("root",))
+        condensing = saturation.inverse(pieces, 3, log_top, 0.0, loose=loose)
+        curves["condensing"] = saturation.as_data(condensing, ("root",))
     lowest_pressure = np.exp(saturation.evaluate_pieces(pieces, 0, np.array([pieces[-1].high]))[0])
     data: dict[str, Any] = {
         "format": "reportgen-fluid/1",
@@ -189,7 +210,7 @@ def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
         "refrigerant": entry.refrigerant,
         "cas": cas_of(info),
         "aliases": list(entry.aliases),
-        "remark": entry.remark,
+        "remark": remark_of(entry, top),
         "pseudo_pure": pseudo_pure,
         "molar_mass": mass,
         "molar_gas_constant": equation_data["gas_constant"],
@@ -207,18 +228,30 @@ def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
         "stated_critical_temperature": stated["T"],
         "ideal": ideal,
         "residual": residual,
-        "melting_line": melting_line(source["ANCILLARIES"].get("melting_line"), lowest),
+        "melting_line": melting_line(
+            entry.source,
+            source["ANCILLARIES"].get("melting_line"),
+            lowest,
+            float(lowest_pressure),
+            equation_data["p_max"],
+        ),
         "saturation": curves,
     }
     if pseudo_pure:
         data["equation_critical_temperature"] = float(critical.temperature)
+        data["join"] = entry.join and list(entry.join)
     melting_key = get_BibTeXKey(entry.source, "MELTING_LINE") if data["melting_line"] else ""
+    if entry.source in REPLACED:
+        *_, melting_key = REPLACED[entry.source]
     data["sources"] = {
         "equation": publications(get_BibTeXKey(entry.source, "EOS"), library),
         "melting_line": publications(melting_key, library),
     }
     add_zero(data, equation, pieces, published=has_constants(equation_data["alpha0"]))
     data["limits"]["maximum_density"] = largest_density(equation, data, start_l)
+    faults = too_large(gaps(data))
+    if faults:
+        raise ArithmeticError(f"the curves do not satisfy the equation: {', '.join(faults)} of {gaps(data)}")
     return data
 
 
@@ -237,9 +270,12 @@ def add_zero(data: dict[str, Any], equation: Helmholtz, pieces: list[saturation.
             over = saturation.evaluate_pieces(pieces, 0, root(middle))[0] > np.log(101325.0)
             low, high = (low, middle) if over else (middle, high)
         data["normal_boiling_temperature"] = low
-    words = zero_in_words(equation, data, lambda t: float(saturation.evaluate_pieces(pieces, 1, root(t))[0]))
-    origin = ", as published" if published else ", set so since the constants published are not carried"
-    data["entropy_zero"] = words.replace(ORIGIN, origin)
+    data["entropy_zero"] = zero_in_words(
+        equation,
+        data,
+        lambda t: float(saturation.evaluate_pieces(pieces, 1, root(t))[0]),
+        published=published,
+    )
 
 
 def index_of(folder: Path) -> dict[str, Any]:

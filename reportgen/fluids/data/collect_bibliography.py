@@ -8,6 +8,9 @@ from pathlib import Path
 
 import CoolProp
 
+#: Journals as the entries abbreviate them.
+_JPCRD, _FPE = "J. Phys. Chem. Ref. Data", "Fluid Phase Equilib."
+
 #: Entries of the bibliography that are incomplete or misprinted in the source.
 CORRECTIONS = {
     "Gao-JPCRD-2020": {
@@ -23,12 +26,72 @@ CORRECTIONS = {
         "(HFC-134a) for Temperatures from 170 K to 455 K and Pressures up to 70 MPa"
     },
     "IAPWS-Melting-2011": {"institution": "IAPWS R14-08(2011)"},
+    "Akasaka-JCED-2019": {
+        "title": "Fundamental Equations of State for cis-1,3,3,3-Tetrafluoropropene [R-1234ze(Z)] and "
+        "3,3,3-Trifluoropropene (R-1243zf)",
+        "year": "2019",
+        "volume": "64",
+        "pages": "4679-4691",
+        "doi": "10.1021/acs.jced.9b00007",
+    },
+    "Akasaka-IJT-2023": {"pages": "50"},
+    "Beckmueller-IJT-2019-octane": {
+        "author": "R. Beckmüller and R. Span and E. W. Lemmon and M. Thol",
+        "title": "A Fundamental Equation of State for the Calculation of Thermodynamic Properties of n-Octane",
+        "journal": _JPCRD,
+        "year": "2022",
+        "volume": "51",
+        "doi": "10.1063/5.0104661",
+    },
+    "Bell-NeonMelting-2026": {"institution": "unpublished fit to data evaluated by NIST"},
+    "Eisenbach-JPCRD-2021": {"pages": "023105"},
+    "Gao-JCED-2016": {"volume": "61", "pages": "2859-2872", "doi": "10.1021/acs.jced.6b00195"},
+    "Herrig-JPCRD-2019": {"year": "2018", "volume": "47", "pages": "043102", "doi": "10.1063/1.5053993"},
+    "Lemmon-JCED-2016-365227": {"year": "2015", "volume": "60", "pages": "3745-3758"},
+    "Lemmon-PROPYLENE-2013": {"institution": "unpublished"},
+    "Marx-BOOK-1992": {
+        "title": "Neue Zustandsgleichungen für R 12, R 22, R 11 und R 113: Beschreibung des thermodynamischen "
+        "Zustandsverhaltens bei Temperaturen bis 525 K und Drücken bis 200 MPa"
+    },
+    "McCarty-ACE-1990": {
+        "author": "R. D. McCarty and V. D. Arp",
+        "title": "A New Wide Range Equation of State for Helium",
+        "journal": "Adv. Cryog. Eng.",
+        "year": "1990",
+        "volume": "35",
+        "pages": "1465-1475",
+        "doi": "10.1007/978-1-4613-0639-9_174",
+    },
+    "OrtizVega-JPCRD-2019": {"institution": "unpublished"},
+    "Thol-2012": {"institution": "unpublished"},
+    "Thol-FPE-2016-MM": {
+        "author": "Monika Thol and Frithjof H. Dubberke and Gábor Rutkai and Thorsten Windmann and Andreas Köster and "
+        "Roland Span and Jadran Vrabec",
+        "year": "2016",
+        "volume": "418",
+        "pages": "133-151",
+    },
+    "Thol-FPE-2019-alkanes-hexane": {"journal": f"submitted to {_FPE}"},
+    "Thol-FPE-2019-alkanes-pentane": {"journal": f"submitted to {_FPE}"},
+    "Thol-FPE-2019-siloxanes": {
+        "journal": "Ind. Eng. Chem. Res.",
+        "volume": "58",
+        "pages": "9617-9635",
+        "doi": "10.1021/acs.iecr.9b00608",
+    },
+    "Thol-IJT-2016-R1234zeE": {"pages": "28"},
+    "Thol-JPCRD-2019-Neon": {"year": "2019", "journal": _JPCRD, "volume": "48", "pages": "023101"},
+    "Younglove-NIST-1982": {"journal": _JPCRD, "volume": "11, Suppl. 1"},
+    "Zhou-IJT-2016-R245ca": {"author": "Yong Zhou and Eric W. Lemmon", "pages": "27"},
+    "deVries-ICR-1995": {"journal": "19th Int. Congr. Refrig., The Hague"},
 }
 
 
 def plain_text(text: str) -> str:
     """BibTeX text without braces and accents written as commands."""
     text = text.replace(r"\ss", "ß").replace("~", " ").replace(r"\&", "&")
+    text = re.sub(r"\$\\rho\$|\$rho\$", "ρ", text)
+    text = re.sub(r"\$_\{?(\d+)\}?\$", r"\1", text)
     accents = {'"': "\u0308", "'": "\u0301", "`": "\u0300", "^": "\u0302", "c": "\u0327", "v": "\u030c"}
 
     def compose(match: re.Match[str]) -> str:
@@ -50,20 +113,27 @@ def bibliography() -> dict[str, dict[str, str]]:
     return entries
 
 
+def first_name_first(author: str) -> str:
+    """Name of an author with the surname last, also where the entry writes "Surname, First"; a space after initials."""
+    surname, comma, first = author.partition(", ")
+    name = f"{first} {surname}" if comma else author
+    return re.sub(r"(?<=\b[A-Z]\.)(?=[A-Z])", " ", name)
+
+
 def publications(keys: str, library: dict[str, dict[str, str]]) -> list[dict[str, str]]:
     """Authors, year, title, where published and DOI of each comma-joined key."""
     found = []
     for key in filter(None, (part.strip() for part in keys.split(","))):
-        entry = library[key] | CORRECTIONS.get(key, {})
+        entry = library.get(key, {}) | CORRECTIONS.get(key, {})
         where = entry.get("journal") or entry.get("institution") or entry.get("publisher") or entry.get("school") or ""
         if entry.get("volume"):
             where += f" {entry['volume']}"
         if entry.get("pages"):
-            where += f", {entry['pages'].replace('--', '-')}"
-        authors = entry.get("author", "")
+            where += f", {re.sub(r' *--? *', '-', entry['pages'])}"
+        authors = [first_name_first(author) for author in entry["author"].split(" and ")]
         found.append(
             {
-                "authors": authors.replace(" and ", "; "),
+                "authors": "; ".join(authors),
                 "year": entry.get("year", ""),
                 "title": entry.get("title", ""),
                 "published_in": where,

@@ -7,7 +7,10 @@ from __future__ import annotations
 
 from typing import NamedTuple
 
-__all__ = ["FLUIDS", "Entry", "file_of"]
+__all__ = ["FLUIDS", "LOWER_LIMIT", "Entry", "file_of"]
+
+#: What the lowest temperature is where the collected range ends above the triple point.
+LOWER_LIMIT = "lower limit of the collected range"
 
 
 class Entry(NamedTuple):
@@ -15,10 +18,12 @@ class Entry(NamedTuple):
 
     ``source`` is its name in the source, ``name`` the canonical one here, ``title`` the one for people, ``refrigerant``
     its number by ASHRAE 34 (empty where it has none that is in use), ``aliases`` further names in use.
-    ``claimed`` is the highest temperature [K] that the publication claims, from its title or abstract; None where that
-    is not recorded. The limit of the source is often higher: between the two the equation is extrapolated.
+    ``claimed`` is the highest temperature [K] that the publication claims, from its title or abstract (some from
+    memory, and then the same as the limit of the source); None where that is not recorded. The limit of the source is
+    often higher: between the two the equation is extrapolated.
     ``starts_at`` says what the lowest temperature is, where it is not a triple point; ``remark`` is a sentence for the
-    reader.
+    reader. ``join``: where the published lines of a pseudo-pure fluid are led to the equation's own critical point, see
+    collect_saturation.joined_curves.
     """
 
     source: str
@@ -29,6 +34,7 @@ class Entry(NamedTuple):
     claimed: float | None = None
     starts_at: str = ""
     remark: str = ""
+    join: tuple[float, float] | None = None
 
 
 def file_of(name: str) -> str:
@@ -40,6 +46,7 @@ def file_of(name: str) -> str:
 _LAMBDA = "lambda point"
 _HELIUM = "The range begins at the lambda point of the saturated liquid; superfluid helium is not covered."
 _ORTHO = "A form that does not exist by itself in equilibrium: for mixing rules and studies of conversion."
+_ONE_LINE = " Only one saturation pressure is collected; it stands for both lines."
 _UNPUBLISHED = "The equation has been distributed by its authors without a full publication."
 
 FLUIDS = (
@@ -52,18 +59,18 @@ FLUIDS = (
     Entry("CarbonDioxide", "carbon dioxide", "Carbon dioxide", "R744", (), 1100.0),
     Entry("CarbonMonoxide", "carbon monoxide", "Carbon monoxide"),
     Entry("CarbonylSulfide", "carbonyl sulfide", "Carbonyl sulfide", "", ("carbonyl sulphide", "OCS")),
-    Entry("Chlorine", "chlorine", "Chlorine"),
+    Entry("Chlorine", "chlorine", "Chlorine", "", (), 440.0),
     Entry("cis-2-Butene", "cis-2-butene", "cis-2-Butene", "", ("(Z)-2-butene",)),
     Entry("CycloHexane", "cyclohexane", "Cyclohexane", "", (), 700.0),
     Entry("Cyclopentane", "cyclopentane", "Cyclopentane"),
     Entry("CycloPropane", "cyclopropane", "Cyclopropane", "RC270"),
-    Entry("D4", "octamethylcyclotetrasiloxane", "Octamethylcyclotetrasiloxane (D4)", "", ("D4",)),
+    Entry("D4", "octamethylcyclotetrasiloxane", "Octamethylcyclotetrasiloxane (D4)", "", ("D4",), 1200.0),
     Entry("D5", "decamethylcyclopentasiloxane", "Decamethylcyclopentasiloxane (D5)", "", ("D5",)),
     Entry("D6", "dodecamethylcyclohexasiloxane", "Dodecamethylcyclohexasiloxane (D6)", "", ("D6",)),
     Entry("Deuterium", "deuterium", "Deuterium (normal)", "", ("D2", "normal deuterium"), 600.0),
     Entry("Dichloroethane", "1,2-dichloroethane", "1,2-Dichloroethane", "R150", ("ethylene dichloride", "EDC")),
     Entry("DiethylEther", "diethyl ether", "Diethyl ether", "R610", ("ethyl ether", "ethoxyethane", "DEE")),
-    Entry("DimethylCarbonate", "dimethyl carbonate", "Dimethyl carbonate", "", ("DMC",)),
+    Entry("DimethylCarbonate", "dimethyl carbonate", "Dimethyl carbonate", "", ("DMC",), 600.0),
     Entry("DimethylEther", "dimethyl ether", "Dimethyl ether", "RE170", ("methoxymethane", "DME"), 525.0),
     Entry("Ethane", "ethane", "Ethane", "R170", (), 675.0),
     Entry("Ethanol", "ethanol", "Ethanol", "", ("ethyl alcohol",), 650.0),
@@ -73,7 +80,7 @@ FLUIDS = (
     Entry("Fluorine", "fluorine", "Fluorine"),
     Entry("HeavyWater", "heavy water", "Heavy water", "", ("deuterium oxide",), 825.0),
     Entry("Helium", "helium", "Helium", "R704", ("helium-4",), None, _LAMBDA, _HELIUM),
-    Entry("HFE143m", "RE143a", "Methyl trifluoromethyl ether (RE143a)", "RE143a", ("HFE-143m",)),
+    Entry("HFE143m", "RE143a", "Methyl trifluoromethyl ether (RE143a)", "RE143a", ("HFE-143m",), None, LOWER_LIMIT),
     Entry("Hydrogen", "hydrogen", "Hydrogen (normal)", "R702", ("H2", "normal hydrogen", "n-hydrogen"), 1000.0),
     Entry("HydrogenChloride", "hydrogen chloride", "Hydrogen chloride"),
     Entry("HydrogenSulfide", "hydrogen sulfide", "Hydrogen sulfide", "", ("hydrogen sulphide",)),
@@ -83,10 +90,10 @@ FLUIDS = (
     Entry("Isopentane", "isopentane", "Isopentane", "R601a", ("2-methylbutane", "i-pentane", "iC5")),
     Entry("Krypton", "krypton", "Krypton"),
     Entry("m-Xylene", "m-xylene", "m-Xylene", "", ("1,3-dimethylbenzene", "meta-xylene"), 700.0),
-    Entry("MD2M", "decamethyltetrasiloxane", "Decamethyltetrasiloxane (MD2M)", "", ("MD2M",)),
+    Entry("MD2M", "decamethyltetrasiloxane", "Decamethyltetrasiloxane (MD2M)", "", ("MD2M",), 600.0),
     Entry("MD3M", "dodecamethylpentasiloxane", "Dodecamethylpentasiloxane (MD3M)", "", ("MD3M",)),
     Entry("MD4M", "tetradecamethylhexasiloxane", "Tetradecamethylhexasiloxane (MD4M)", "", ("MD4M",)),
-    Entry("MDM", "octamethyltrisiloxane", "Octamethyltrisiloxane (MDM)", "", ("MDM",)),
+    Entry("MDM", "octamethyltrisiloxane", "Octamethyltrisiloxane (MDM)", "", ("MDM",), 600.0),
     Entry("Methane", "methane", "Methane", "R50", (), 625.0),
     Entry("Methanol", "methanol", "Methanol", "", ("methyl alcohol",)),
     Entry("MethylLinoleate", "methyl linoleate", "Methyl linoleate"),
@@ -101,7 +108,7 @@ FLUIDS = (
     Entry("n-Heptane", "n-heptane", "n-Heptane", "", ("heptane", "nC7", "n-C7H16")),
     Entry("n-Hexane", "n-hexane", "n-Hexane", "", ("hexane", "nC6", "n-C6H14")),
     Entry("n-Nonane", "n-nonane", "n-Nonane", "", ("nonane", "nC9", "n-C9H20")),
-    Entry("n-Octane", "n-octane", "n-Octane", "", ("octane", "nC8", "n-C8H18")),
+    Entry("n-Octane", "n-octane", "n-Octane", "", ("octane", "nC8", "n-C8H18"), 650.0),
     Entry("n-Pentane", "n-pentane", "n-Pentane", "R601", ("pentane", "nC5", "n-C5H12")),
     Entry("n-Perfluorobutane", "perfluorobutane", "Perfluorobutane", "", ("n-perfluorobutane", "decafluorobutane")),
     Entry(
@@ -137,7 +144,15 @@ FLUIDS = (
     Entry("R1123", "R1123", "Trifluoroethene (R1123)", "R1123", ("trifluoroethene", "trifluoroethylene")),
     Entry("R113", "R113", "1,1,2-Trichloro-1,2,2-trifluoroethane (R113)", "R113", ("trichlorotrifluoroethane",), 525.0),
     Entry("R1130(E)", "R1130(E)", "trans-1,2-Dichloroethene (R1130(E))", "R1130(E)", ("trans-1,2-dichloroethene",)),
-    Entry("R1132(E)", "R1132(E)", "trans-1,2-Difluoroethene (R1132(E))", "R1132(E)", ("trans-1,2-difluoroethene",)),
+    Entry(
+        "R1132(E)",
+        "R1132(E)",
+        "trans-1,2-Difluoroethene (R1132(E))",
+        "R1132(E)",
+        ("trans-1,2-difluoroethene",),
+        None,
+        LOWER_LIMIT,
+    ),
     Entry("R114", "R114", "1,2-Dichloro-1,1,2,2-tetrafluoroethane (R114)", "R114", ("dichlorotetrafluoroethane",)),
     Entry("R115", "R115", "Chloropentafluoroethane (R115)", "R115", ("chloropentafluoroethane",)),
     Entry("R116", "R116", "Hexafluoroethane (R116)", "R116", ("hexafluoroethane", "perfluoroethane")),
@@ -147,7 +162,9 @@ FLUIDS = (
     Entry("R1233zd(E)", "R1233zd(E)", "trans-1-Chloro-3,3,3-trifluoropropene (R1233zd(E))", "R1233zd(E)", (), 450.0),
     Entry("R1234yf", "R1234yf", "2,3,3,3-Tetrafluoropropene (R1234yf)", "R1234yf"),
     Entry("R1234ze(E)", "R1234ze(E)", "trans-1,3,3,3-Tetrafluoropropene (R1234ze(E))", "R1234ze(E)"),
-    Entry("R1234ze(Z)", "R1234ze(Z)", "cis-1,3,3,3-Tetrafluoropropene (R1234ze(Z))", "R1234ze(Z)"),
+    Entry(
+        "R1234ze(Z)", "R1234ze(Z)", "cis-1,3,3,3-Tetrafluoropropene (R1234ze(Z))", "R1234ze(Z)", (), 440.0, LOWER_LIMIT
+    ),
     Entry("R124", "R124", "1-Chloro-1,2,2,2-tetrafluoroethane (R124)", "R124"),
     Entry("R1243zf", "R1243zf", "3,3,3-Trifluoropropene (R1243zf)", "R1243zf"),
     Entry("R125", "R125", "Pentafluoroethane (R125)", "R125", ("pentafluoroethane",), 500.0),
@@ -174,13 +191,23 @@ FLUIDS = (
     Entry("R32", "R32", "Difluoromethane (R32)", "R32", ("difluoromethane",), 435.0),
     Entry("R365MFC", "R365mfc", "1,1,1,3,3-Pentafluorobutane (R365mfc)", "R365mfc"),
     Entry("R40", "R40", "Chloromethane (R40)", "R40", ("methyl chloride", "chloromethane")),
-    Entry("R404A", "R404A", "R404A (R125, R143a and R134a)", "R404A"),
-    Entry("R407C", "R407C", "R407C (R32, R125 and R134a)", "R407C"),
+    Entry("R404A", "R404A", "R404A (R125, R143a and R134a)", "R404A", starts_at=LOWER_LIMIT),
+    Entry("R407C", "R407C", "R407C (R32, R125 and R134a)", "R407C", starts_at=LOWER_LIMIT),
     Entry("R41", "R41", "Fluoromethane (R41)", "R41", ("fluoromethane", "methyl fluoride")),
-    Entry("R410A", "R410A", "R410A (R32 and R125)", "R410A"),
-    Entry("R507A", "R507A", "R507A (R125 and R143a)", "R507A", ("R507",)),
+    Entry("R410A", "R410A", "R410A (R32 and R125)", "R410A", starts_at=LOWER_LIMIT, join=(1e-3, 2e-4)),
+    Entry("R507A", "R507A", "R507A (R125 and R143a)", "R507A", ("R507",), starts_at=LOWER_LIMIT, join=(1e-3, 2e-4)),
     Entry("RC318", "RC318", "Octafluorocyclobutane (RC318)", "RC318", ("perfluorocyclobutane",)),
-    Entry("SES36", "SES36", "SES36 (R365mfc and a perfluoropolyether)", "", (), None, "", _UNPUBLISHED),
+    Entry(
+        "SES36",
+        "SES36",
+        "SES36 (R365mfc and a perfluoropolyether)",
+        "",
+        (),
+        None,
+        LOWER_LIMIT,
+        _UNPUBLISHED + _ONE_LINE,
+        (1e-2, 3e-3),
+    ),
     Entry("SulfurDioxide", "sulfur dioxide", "Sulfur dioxide", "R764", ("sulphur dioxide",)),
     Entry("SulfurHexafluoride", "sulfur hexafluoride", "Sulfur hexafluoride", "", ("sulphur hexafluoride",), 625.0),
     Entry("Tetrahydrofuran", "tetrahydrofuran", "Tetrahydrofuran", "", ("THF", "oxolane")),

@@ -1,4 +1,4 @@
-"""Terms of equations and melting lines as the source writes them, turned into those of the data files."""
+"""Terms of equations as the source writes them, turned into those of the data files."""
 
 from __future__ import annotations
 
@@ -29,11 +29,6 @@ RENAMED = {"cp_over_R": "c", "gd": "density_rate", "ld": "density_power", "gt": 
     "lt": "temperature_power"
 }
 OFFSET = "IdealGasHelmholtzEnthalpyEntropyOffset"
-MELTING = {
-    "Simon": ("simon", ("a", "c")),
-    "polynomial_in_Tr": ("polynomial-in-ratio", ("a", "t")),
-    "polynomial_in_Theta": ("polynomial-in-rise", ("a", "t")),
-}
 
 
 def terms_of(source: list[dict[str, Any]], known: dict[str, Any], prefix: str) -> list[dict[str, Any]]:
@@ -72,23 +67,3 @@ def ideal_terms(source: list[dict[str, Any]]) -> list[dict[str, Any]]:
     if not has_constants(source) or any(term.get("reference") == "CUSTOM" for term in source):
         plain += [term | {"type": "IdealGasHelmholtzLead"} for term in source if term["type"] == OFFSET]
     return terms_of(plain, IDEAL, "IdealGasHelmholtz")
-
-
-def melting_line(source: dict[str, Any] | None, triple: float) -> dict[str, Any] | None:
-    """Melting line from the triple point upwards, in ascending temperature."""
-    if source is None:
-        return None
-    form, columns = MELTING[source["type"]]
-    parts = [
-        {
-            "minimum_temperature": min(part["T_min"], part["T_max"]),
-            "maximum_temperature": max(part["T_min"], part["T_max"]),
-            "temperature": part["T_0"],
-            "pressure": part["p_0"],
-        }
-        | {name: part[name] for name in columns}
-        for part in source["parts"]
-        if max(part["T_min"], part["T_max"]) > triple
-    ]
-    parts.sort(key=lambda part: part["minimum_temperature"])
-    return {"form": form, "parts": parts}

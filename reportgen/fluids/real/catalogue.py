@@ -112,7 +112,8 @@ def source_lines(data: dict[str, Any]) -> tuple[str, ...]:
     lines = []
     for heading, entries in (("", data["sources"]["equation"]), ("Melting line: ", data["sources"]["melting_line"])):
         for entry in entries:
-            line = f"{heading}{entry['authors']} ({entry['year']}). {entry['title']}. {entry['published_in']}."
+            place = entry["published_in"].rstrip(".")
+            line = f"{heading}{entry['authors']} ({entry['year']}). {entry['title']}. {place}."
             if entry["doi"]:
                 line += f" doi:{entry['doi']}"
             if line not in lines:
