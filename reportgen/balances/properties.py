@@ -64,9 +64,12 @@ def state_from(fluid: Any, pair: tuple[str, str], values: Mapping[str, Any]) -> 
     """The state, NaN where it cannot be had; ``values`` by name of property, arrays of one shape."""
     first, second = pair
     if _by_saturation(fluid, pair) and not _carries(fluid, pair):
-        _, vapour = fluid.saturation(pressure=values[first], errors="mask")
-        distance = values[second] if second == "superheat" else -values[second]
-        return fluid.at(errors="mask", pressure=values[first], temperature=vapour.temperature + distance)
+        liquid, vapour = fluid.saturation(pressure=values[first], errors="mask")
+        if second == "superheat":
+            temperature = vapour.temperature + values[second]
+        else:
+            temperature = liquid.temperature - values[second]
+        return fluid.at(errors="mask", pressure=values[first], temperature=temperature)
     return fluid.at(errors="mask", **{first: values[first], second: values[second]})
 
 

@@ -273,7 +273,14 @@ def _counted(fluid: Fluid, state: State, other: State, reference: int) -> list[D
 
 
 def deviation(name: str, first: Array, second: Array, species: str | None = None) -> Deviation:
-    """A property as it stands in two sources, relative to the first."""
+    """A property as it stands in two sources, relative to the first.
+
+    Parameters
+    ----------
+    name : field of a State.
+    first, second : values [SI unit of the property], shape (N,).
+    species : gas of a mixture that they are of.
+    """
     return _deviation(name, None, first, second, np.abs(first), species)
 
 
