@@ -8,7 +8,7 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-__all__ = ["Candidates", "Chosen"]
+__all__ = ["BESIDE_LINE", "Candidates", "Chosen"]
 
 FloatArray = NDArray[Any]
 IntArray = NDArray[np.intp]
@@ -16,6 +16,10 @@ BoolArray = NDArray[np.bool_]
 
 #: States of one element closer than this in ln T and ln ρ are one state, come upon from two sides.
 _SAME = 1e-9
+#: Distance from a saturation line, in parts of R T or R (of a pressure: of itself), within which a state that is found
+#: on neither side of it lies on it: a pseudo-pure fluid has no states between its lines, and next to a critical point
+#: the two sides part only by rounding.
+BESIDE_LINE = 1e-9
 
 
 class Chosen(NamedTuple):
@@ -96,9 +100,12 @@ class Candidates:
         self.least[where] = np.fmin(self.least[where], np.where(np.isfinite(least), least, np.nan))
         self.greatest[where] = np.fmax(self.greatest[where], np.where(np.isfinite(greatest), greatest, np.nan))
 
-    def elements(self) -> IntArray:
-        """Elements with at least one state, in any order, some more than once."""
-        return np.concatenate([part.element for part in self._parts]) if self._parts else np.empty(0, dtype=np.intp)
+    def found(self) -> BoolArray:
+        """Which elements have at least one state, shape (size,)."""
+        result = np.zeros(self.size, dtype=np.bool_)
+        for part in self._parts:
+            result[part.element] = True
+        return result
 
     def gather(self) -> Chosen:
         """All states, each once, in the order of the elements and of rising density."""

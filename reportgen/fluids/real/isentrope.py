@@ -19,7 +19,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.real.caloric import rounding
-from reportgen.fluids.real.candidates import Candidates
+from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.flash import PressureFlash
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.lines import SaturationLines
@@ -42,8 +42,6 @@ _LONGEST = 0.5
 _PRESSURE_ITERATIONS = 60
 #: Distance in h that is put down to rounding on a saturation line, in parts of |h| + R T_top.
 _ON_LINE = 1e-15
-#: The same in parts of R T_top, where no state is found on either side.
-_NEAR_LINE = 1e-10
 
 
 class _Crossings(NamedTuple):
@@ -129,11 +127,11 @@ class IsentropeSearch:
             rho = np.where(anchor, crossings.density[nearest, outside], np.nan)
             self._single_phase(result, outside, enthalpy[outside], entropy[outside], t, rho)
         # what is left of a state next to a line can be rounding alone, there most of all near the critical point
-        seen = np.zeros(size, dtype=np.bool_)
-        seen[result.elements()] = True
         gaps = np.abs(np.where(np.isnan(gaps), np.inf, gaps))
         row = np.argmin(gaps, axis=0)
-        left = ~seen & (gaps[row, columns] <= _NEAR_LINE * self._equation.gas_constant * self._curves.top_temperature)
+        left = ~result.found() & (
+            gaps[row, columns] <= BESIDE_LINE * self._equation.gas_constant * self._curves.top_temperature
+        )
         self._on_line(result, np.flatnonzero(left), row[left], crossings)
         return result
 

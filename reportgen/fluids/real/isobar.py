@@ -12,7 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.real.caloric import caloric_value, rounding
-from reportgen.fluids.real.candidates import Candidates
+from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.density import DensitySolver
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.melting import MeltingLine
@@ -123,22 +123,16 @@ class IsobarSearch:
         from_liquid: FloatArray,
         from_vapour: FloatArray,
     ) -> None:
-        """Next to the critical point rounding of T_sat can leave a state beside its line, found on neither side: there
-        add the saturated state.
-        """
-        seen = np.zeros(result.size, dtype=np.bool_)
-        seen[result.elements()] = True
+        """Add the saturated state where none is found on either side of a line."""
         liquid = np.abs(from_liquid) < np.abs(from_vapour)
         gap = np.minimum(np.abs(from_liquid), np.abs(from_vapour))
-        near = np.flatnonzero(
-            ~seen[where] & (gap <= _LEFT_OVER * self._equation.gas_constant * self._curves.top_temperature)
-        )
-        if not near.size:
-            return
+        close = gap <= BESIDE_LINE * self._equation.gas_constant * self._curves.top_temperature
+        near = np.flatnonzero(~result.found()[where] & close)
         x = np.where(liquid[near], 0.0, 1.0)
         temperature = np.where(x == 0, saturated.bubble_temperature[near], saturated.dew_temperature[near])
+        pressure = np.where(x == 0, saturated.bubble_pressure[near], saturated.dew_pressure[near])
         density = np.where(x == 0, saturated.liquid_density[near], saturated.vapour_density[near])
-        result.add(where[near], temperature, saturated.bubble_pressure[near], density, x)
+        result.add(where[near], temperature, pressure, density, x)
 
     def _coldest(self, pressure: FloatArray) -> FloatArray:
         """Lowest temperature [K] of the liquid at p [Pa]."""

@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.real.caloric import caloric_value, rounding
-from reportgen.fluids.real.candidates import Candidates
+from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.lines import SaturationLines
@@ -110,8 +110,7 @@ class _Segment:
     def search(self, result: Candidates, where: IntArray, low: FloatArray, high: FloatArray) -> None:
         grid = np.vstack([low, high])
         if self._mixed and self._curves.pseudo_pure:
-            ends = self._gap(grid.reshape(-1), np.tile(np.arange(where.size), 2)).reshape(grid.shape)
-            result.between[where] |= (ends[0] > 0) != (ends[1] > 0)
+            self._between(result, where, grid)
             return
         pressure_sought = self._name == "pressure"
         little = 1e-15 * self._target if pressure_sought else rounding(self._name, self._equation, high, self._target)
@@ -145,6 +144,27 @@ class _Segment:
             where[column[sound]],
             *(part[sound] for part in (t, pressure, density, quality, liquid, vapour)),
         )
+
+    def _between(self, result: Candidates, where: IntArray, ends: FloatArray) -> None:
+        """Note elements between the lines of a pseudo-pure fluid, and those that lie on one of them but for rounding.
+
+        The ends of the segment, T [K] of shape (2, N), are on the lines, or at the end of the range.
+        """
+        every = np.arange(where.size)
+        gaps = np.array([self._gap(end, every) for end in ends])
+        result.between[where] |= (gaps[0] > 0) != (gaps[1] > 0)
+        if self._name == "pressure":
+            scale = np.abs(self._target)
+        else:
+            scale = self._equation.gas_constant * (np.ones(where.size) if self._name == "specific_entropy" else ends[1])
+        for end, gap in zip(ends, gaps, strict=True):
+            saturated = self._curves.at_temperature(end)
+            boiling = np.abs(self._density - saturated.liquid_density) <= BESIDE_LINE * self._density
+            condensing = np.abs(self._density - saturated.vapour_density) <= BESIDE_LINE * self._density
+            at = np.flatnonzero((np.abs(gap) <= BESIDE_LINE * scale) & (boiling | condensing))
+            x = np.where(condensing, 1.0, 0.0)
+            pressure = np.where(condensing, saturated.dew_pressure, saturated.bubble_pressure)
+            result.add(where[at], end[at], pressure[at], self._density[at], x[at])
 
     def _gap(self, temperature: FloatArray, columns: IntArray) -> FloatArray:
         """What is sought less its target [SI] at T [K]."""

@@ -13,11 +13,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.real.caloric import caloric_value, density_slope, rounding
-from reportgen.fluids.real.candidates import Candidates
+from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.roots import all_roots
-from reportgen.fluids.real.saturation import SaturationCurves
+from reportgen.fluids.real.saturation import Saturated, SaturationCurves
 
 __all__ = ["IsothermSearch"]
 
@@ -32,6 +32,8 @@ _LIQUID = np.linspace(0.0, 1.0, 24)[:, None]
 #: A gas thinner than this part of the critical density may leave no trace of its density in its enthalpy; with an
 #: uncertainty by rounding above the second, relative, it is not told.
 _THIN, _VAGUE = 0.1, 1e-3
+#: Where an isotherm starts, in lowest pressures: inside the limits.
+_ABOVE_LOWEST = 1 + 1e-9
 
 
 class IsothermSearch:
@@ -58,7 +60,7 @@ class IsothermSearch:
 
     def _solve(self, temperature: FloatArray, target: FloatArray, name: str) -> Candidates:
         result = Candidates(temperature.size)
-        thinnest = self._lowest_pressure / (self._equation.gas_constant * temperature)
+        thinnest = self._lowest_pressure * _ABOVE_LOWEST / (self._equation.gas_constant * temperature)
         densest = self._ceiling.density(temperature)
         below = temperature < self._curves.top_temperature
         above = np.flatnonzero(~below)
@@ -82,7 +84,7 @@ class IsothermSearch:
             mixed = (np.abs(from_liquid) > little) & (np.abs(from_vapour) > little)
             mixed &= (from_liquid > 0) != (from_vapour > 0)
             if self._curves.pseudo_pure:
-                result.between[at] |= mixed
+                self._beside_lines(result, at, t, saturated, name, mixed, from_liquid, from_vapour)
             else:
                 inside = np.flatnonzero(mixed)
                 rho_l, rho_v = liquid[inside], vapour[inside]
@@ -91,6 +93,27 @@ class IsothermSearch:
                 p = saturated.bubble_pressure[inside]
                 result.add(at[inside], t[inside], p, density, x, rho_l, rho_v)
         return result
+
+    def _beside_lines(
+        self,
+        result: Candidates,
+        where: IntArray,
+        temperature: FloatArray,
+        saturated: Saturated,
+        name: str,
+        mixed: NDArray[np.bool_],
+        from_liquid: FloatArray,
+        from_vapour: FloatArray,
+    ) -> None:
+        """Of elements between the lines of a pseudo-pure fluid, note those that lie on one of them but for rounding."""
+        near = BESIDE_LINE * self._equation.gas_constant * (1.0 if name == "specific_entropy" else temperature)
+        on_liquid, on_vapour = np.abs(from_liquid) <= near, np.abs(from_vapour) <= near
+        result.between[where] |= mixed & ~on_liquid & ~on_vapour
+        at = np.flatnonzero(mixed & (on_liquid | on_vapour))
+        dew = on_vapour[at]
+        pressure = np.where(dew, saturated.dew_pressure[at], saturated.bubble_pressure[at])
+        density = np.where(dew, saturated.vapour_density[at], saturated.liquid_density[at])
+        result.add(where[at], temperature[at], pressure, density, np.where(dew, 1.0, 0.0))
 
     def _single_phase(
         self,

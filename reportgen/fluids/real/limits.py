@@ -266,12 +266,14 @@ class Guard:
         first_value: float,
         second: str,
         second_value: float,
-        count: int,
         roots: tuple[Point, ...],
         qualities: tuple[float, ...],
+        thin: int,
+        between: bool,
     ) -> SeveralStates:
-        """Two properties [SI] that ``count`` states share: those in ``roots``, with the quality [1] of mixtures of
-        phases, else NaN, and a gas too thin to be told.
+        """Two properties [SI] that several states share: those in ``roots``, with the quality [1] of mixtures of
+        phases, else NaN; ``thin`` gases [1] whose density is lost in rounding; one between the lines of a pseudo-pure
+        fluid, if ``between``.
         """
         told = [
             {"pressure": root.pressure, "temperature": root.temperature, "density": root.density or 0.0}
@@ -283,8 +285,10 @@ class Guard:
             ", ".join(("quality " if name == "quality" else "") + in_words(name, value) for name, value in root.items())
             for root in told
         )
-        if count > len(roots):
+        if thin:
             listed += "; and a gas so thin that its pressure is not told"
+        if between:
+            listed += f"; and one {self._between}"
         other = {"temperature": "pressure", "pressure": "temperature"}.get(first)
         if other is not None and single_phase and _apart([root[other] for root in told]):
             choices = " or ".join(in_words(other, root[other]) for root in told)
@@ -292,7 +296,7 @@ class Guard:
         else:
             hint = "Give temperature and density of the one that is meant."
         return SeveralStates(
-            f"{self._title} has {count} states at {_value(first, first_value)} and "
+            f"{self._title} has {len(roots) + thin + int(between)} states at {_value(first, first_value)} and "
             f"{_value(second, second_value)}: {listed}.",
             hint=hint,
             roots=roots,

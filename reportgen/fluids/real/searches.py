@@ -100,8 +100,10 @@ class Searches:
         elements : takes a fault for each element that has no state within the limits, or more than one.
         """
         guard, (first, second) = self._guard, names
-        valid = self.every(names, first_value, second_value, elements)
+        valid, between = self._all(names, first_value, second_value, elements)
         count = np.bincount(valid.element, minlength=elements.size)
+        # an isotherm can pass between the lines of a pseudo-pure fluid and reach the same value in its liquid
+        between &= (first == "temperature") & (count > 0)
         start = np.cumsum(count) - count
 
         def several(i: int) -> Fault:
@@ -109,9 +111,10 @@ class Searches:
             told = mine.take(~mine.vague)
             roots = tuple(Point(float(t), float(p), float(rho)) for t, p, rho in zip(*told[1:4], strict=True))
             qualities = tuple(told.quality.tolist())
-            return guard.several(first, first_value[i], second, second_value[i], int(count[i]), roots, qualities)
+            more = int(count[i]) - len(roots)
+            return guard.several(first, first_value[i], second, second_value[i], roots, qualities, more, between[i])
 
-        elements.reject(count > 1, several)
+        elements.reject((count > 1) | between, several)
         vague = np.zeros(elements.size, dtype=np.bool_)
         vague[valid.element[valid.vague]] = True
         elements.reject(vague, lambda i: guard.vague(first, first_value[i], second, second_value[i]))
@@ -124,6 +127,12 @@ class Searches:
         """All states within the limits that have the two properties, in the order of the elements and of rising
         density. Parameters as in :meth:`find`; ``elements`` takes a fault where there is none.
         """
+        return self._all(names, first_value, second_value, elements)[0]
+
+    def _all(
+        self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray, elements: Elements
+    ) -> tuple[Chosen, NDArray[np.bool_]]:
+        """All states, and which elements have one between the lines of a pseudo-pure fluid, which is not given."""
         guard, (first, second) = self._guard, names
         if first == "pressure":
             guard.pressure(first_value, elements)
@@ -149,7 +158,7 @@ class Searches:
             which[states.element[rejected]] = rejected
             elements.reject(none & (which >= 0), lambda i: beyond.faults[int(which[i])])
             self._explain(candidates, none, names, first_value, second_value, elements)
-        return valid
+        return valid, candidates.between
 
     def _search(self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray) -> Candidates:
         first, second = names
