@@ -69,6 +69,8 @@ SOLID = "solid by the melting line"
 _ON_LINE = 1e-7
 #: Relative distance of the points at which the scatter of values is looked at.
 _SCATTER_STEP = 2e-14
+#: Relative distance in T of states between which the straight line may bend.
+_NEAR = 1e-4
 _STEPS = (0.25, 0.5, 0.75, 1.0)
 
 
@@ -140,21 +142,23 @@ class Base:
     """Comparison at the library's own (T, ρ), or (T, x) of saturated states.
 
     ``reasons`` of deviations above a bar there (else empty), ``unexplained`` ones, ``difference`` |ours − theirs| and
-    ``small``, the rounding, by property [SI]; ``saturation``: where the library's saturation temperature at p is known
-    to be off.
+    ``small``, the rounding, by property [SI]; ``uneven_at_pressure`` and ``uneven_at_temperature``: where the library's
+    saturation at p, at T, is known to be off.
     """
 
     reasons: Array
     unexplained: Array
     difference: dict[str, Array]
     small: dict[str, Array]
-    saturation: Array
+    uneven_at_pressure: Array
+    uneven_at_temperature: Array
 
     def take(self, chosen: Array) -> Base:
         """Some of the states."""
         difference = {name: values[chosen] for name, values in self.difference.items()}
         small = {name: values[chosen] for name, values in self.small.items()}
-        return Base(self.reasons[chosen], self.unexplained[chosen], difference, small, self.saturation[chosen])
+        uneven = self.uneven_at_pressure[chosen], self.uneven_at_temperature[chosen]
+        return Base(self.reasons[chosen], self.unexplained[chosen], difference, small, *uneven)
 
 
 def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any, criticals: Criticals) -> Base:
@@ -201,8 +205,9 @@ def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any
             reasons[index] = "saturation of the library" if worse else ""
     if (wanted & (reasons == "")).any() and _other_ideal_part(fluid, theirs, reference):
         reasons[wanted & (reasons == "")] = "ideal heat capacity of the library"
-    saturation = _saturation_temperature(fluid, theirs, reference, difference)
-    return Base(reasons, wanted & (reasons == ""), difference, small, saturation)
+    at_pressure = _uneven_at_pressure(fluid, theirs, reference, difference)
+    at_temperature = _uneven_at_temperature(fluid, theirs, reference, difference)
+    return Base(reasons, wanted & (reasons == ""), difference, small, at_pressure, at_temperature)
 
 
 def _other_ideal_part(fluid: RealFluid, theirs: Any, reference: Reference) -> bool:
@@ -219,13 +224,22 @@ def _other_ideal_part(fluid: RealFluid, theirs: Any, reference: Reference) -> bo
     return bool((np.abs(ours / by_data - 1) < 1e-9).all() and (np.abs(stated / by_data - 1) > 1e-7).any())
 
 
-def _saturation_temperature(fluid: RealFluid, theirs: Any, reference: Reference, difference: dict[str, Array]) -> Array:
+def _uneven_at_pressure(fluid: RealFluid, theirs: Any, reference: Reference, difference: dict[str, Array]) -> Array:
     """Where a superheat or subcooling differs because the library's saturation is worse than ours."""
     found = np.zeros(reference.size, dtype=bool)
     apart = difference["superheat"] + difference["subcooling"]
     for index in np.flatnonzero(apart > 1e-11 * reference.temperature):
         distance = np.nan_to_num(reference.superheat[index]) - np.nan_to_num(reference.subcooling[index])
         found[index] = library_saturation_is_worse(fluid, theirs, reference.temperature[index] - distance)
+    return found
+
+
+def _uneven_at_temperature(fluid: RealFluid, theirs: Any, reference: Reference, difference: dict[str, Array]) -> Array:
+    """Where a state with two phases differs, if only a little, because the library's saturation is worse than ours."""
+    found = np.zeros(reference.size, dtype=bool)
+    apart = np.maximum(difference["pressure"] / reference.pressure, difference["density"] / reference.density)
+    for index in np.flatnonzero((apart > 1e-8) & np.isfinite(reference.quality)):
+        found[index] = library_saturation_is_worse(fluid, theirs, reference.temperature[index])
     return found
 
 
@@ -247,11 +261,15 @@ def explain(
     """
     reasons = base.reasons.copy()
     if given[1] in ("superheat", "subcooling"):
-        reasons[base.saturation] = "saturation of the library"
+        reasons[base.uneven_at_pressure] = "saturation of the library"
     small = base.small
     alike = ~base.unexplained
     amplified = np.zeros(reference.size, dtype=bool)
     back = np.ones(reference.size, dtype=bool)
+    measure = scales(reference, fluid.gas_constant)
+    # states as near as this differ to second order along the straight line
+    apart = np.abs(state.temperature / reference.temperature - 1)
+    bend = np.where(apart < _NEAR, 5 * apart**2, 0.0)
     for step in _STEPS:
         temperature = reference.temperature + step * (state.temperature - reference.temperature)
         volume = 1 / reference.density + step * (1 / state.density - 1 / reference.density)
@@ -261,7 +279,7 @@ def explain(
             miss = np.abs(getattr(between, name) - target)
             if name == "quality":  # of a saturated state, with a density rounded to the other side
                 miss = np.where(np.isnan(miss), 0.0, miss)
-            wide = small[name] + 2 * base.difference.get(name, 0.0)
+            wide = small[name] + 2 * base.difference.get(name, 0.0) + bend * measure.get(name, 0.0)
             with np.errstate(invalid="ignore"):
                 alike &= miss <= wide
                 amplified |= miss > 2 * small[name]
@@ -272,14 +290,16 @@ def explain(
     for name, values in found.items():
         with np.errstate(invalid="ignore"):
             missed |= values > BARS[name]
-    # the pressure of a saturated liquid, from its density, is rounding
-    by_density = _ROUNDING * reference.density * fluid.gas_constant * reference.temperature
+    # the pressure of a saturated liquid, from its density, is rounding of a sum of terms ten times as large, or more
+    by_density = 10 * _ROUNDING * reference.density * fluid.gas_constant * reference.temperature
+    by_density = np.maximum(by_density, 4 * small["pressure"])
     quality = np.where(np.isnan(state.quality), np.round(reference.quality), state.quality)
     with np.errstate(invalid="ignore"):
         noise = np.abs(state.pressure - reference.pressure) <= by_density
         rest = ~np.any([found[name] > BARS[name] for name in BARS if name != "pressure"], axis=0)
         on_line = ~base.unexplained & (~missed | (noise & rest)) & (np.abs(quality - reference.quality) < _ON_LINE)
     reasons[(reasons == "") & on_line] = "saturated within rounding: one phase or two"
+    reasons[(reasons == "") & back & base.uneven_at_temperature & ~base.unexplained] = "saturation of the library"
     splines, differ = _critical_region(reference, criticals)
     if given in (("temperature", "density"), ("temperature", "quality")):
         return reasons  # nothing is solved for, so nothing is amplified

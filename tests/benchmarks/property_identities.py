@@ -13,7 +13,7 @@ violation. Residuals are in parts of the larger term of the identity:
     c_p = (∂h/∂T)_p         of c_p                    w² = −v² (∂p/∂v)_s         of w²
 
 Saturation: equal Gibbs energy of both phases (in parts of R·T), the pressure of each by the equation (of the vapour in
-parts of itself, of the liquid in parts of ρRT) and Clapeyron's dp/dT = Δs/Δv.
+parts of itself, of the liquid in parts of ρRT) and, from 1e-3 Tc below critical, Clapeyron's dp/dT = Δs/Δv.
 """
 
 from __future__ import annotations
@@ -27,10 +27,21 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids import ideal_gas, ideal_gas_names, names, real_fluid
+from reportgen.fluids import cubic, ideal_gas, ideal_gas_names, incompressible, names, real_fluid, statistical
 from reportgen.fluids.real.fluid import RealFluid
 
-__all__ = ["BAR", "Result", "check_model", "check_saturation", "check_statistical", "derivatives", "main", "models"]
+__all__ = [
+    "BAR",
+    "Result",
+    "check",
+    "check_model",
+    "check_saturation",
+    "check_statistical",
+    "derivatives",
+    "main",
+    "models",
+    "states",
+]
 
 Array = NDArray[Any]
 
@@ -46,6 +57,9 @@ _LEAST_STEPS = 4
 _ROUNDING = 2e-15
 _OFFSETS = np.array([-4, -3, -2, -1, 1, 2, 3, 4])
 _WEIGHTS = np.array([1 / 280, -4 / 105, 1 / 5, -4 / 5, 4 / 5, -1 / 5, 4 / 105, -1 / 280])
+#: Weights that leave nothing of a polynomial of sixth degree on these points, scaled to pass rounding on as it is.
+_NOISE = np.array([1 / np.prod([float(a - b) for b in _OFFSETS if b != a]) for a in _OFFSETS])
+_NOISE /= np.sqrt(np.sum(_NOISE**2))
 
 
 @dataclass
@@ -77,6 +91,32 @@ class Result:
         return text + (f", VIOLATIONS {self.violations}: {self.sample}" if self.violations else "")
 
 
+#: 1 − T/Tc above which Clapeyron's equation is checked: equal g to 1e-9 leaves the slope open by 1e-9/(1 − T/Tc).
+_CLAPEYRON = 1e-3
+#: The identity that loses the more digits the nearer to critical.
+CLAPEYRON = "dp/dT = (s''-s')/(v''-v')"
+#: Compositions of the cubic equations, and incompressible substances, of our own choosing.
+CUBICS: tuple[Any, ...] = (
+    "CO2",
+    "propane",
+    "N2",
+    "H2O",
+    {"CH4": 0.8, "C2H6": 0.15, "CO2": 0.05},
+    {"N2": 0.7, "CO2": 0.3},
+)
+INCOMPRESSIBLES: dict[str, dict[str, Any]] = {
+    "constant": {"density": 998.0, "specific_heat": 4182.0, "limits": (273.16, 373.0)},
+    "solid": {"density": 8930.0, "specific_heat": 385.0, "phase": "solid", "limits": (200.0, 900.0)},
+    "polynomial": {"density": 850.0, "specific_heat": (1100.0, 2.4, 1e-3), "limits": (250.0, 600.0)},
+    "table": {"density": 1060.0, "specific_heat": ([260.0, 300.0, 350.0, 420.0], [3300.0, 3420.0, 3600.0, 3900.0])},
+    "expanding": {
+        "density": 850.0,
+        "specific_heat": (1100.0, 2.4),
+        "limits": (250.0, 600.0),
+        "thermal_expansion": 8e-4,
+    },
+}
+
 Derivatives = dict[str, tuple[Array, Array]]
 
 
@@ -100,7 +140,11 @@ def derivatives(evaluate: Callable[[Array], Mapping[str, Array]], point: Array, 
     for name, values in evaluate(x).items():
         slope = np.sum(values * _WEIGHTS, axis=2) / steps
         apart = np.abs(np.diff(slope, axis=1))
-        rounding = _ROUNDING * np.max(np.abs(values), axis=2)[:, 1:] / steps[:, 1:]
+        # what is left of eight values after a polynomial of sixth degree, at the smallest step that stays within
+        scatter = np.abs(values @ _NOISE)
+        noise = np.fmin.reduce(np.where(scatter > 0, scatter, np.nan), axis=1, initial=np.inf)
+        noise = np.where(np.isfinite(noise), noise, 0.0)[:, None]
+        rounding = np.maximum(_ROUNDING * np.max(np.abs(values), axis=2)[:, 1:], noise) / steps[:, 1:]
         # noise can agree by chance, even exactly
         doubt = np.where(np.isnan(apart), np.inf, apart + rounding)
         best = np.argmin(doubt, axis=1)
@@ -114,8 +158,10 @@ def _evaluation(fluid: Any, first: str, second: str, held: Array, fields: tuple[
 
     def evaluate(x: Array) -> dict[str, Array]:
         state = fluid.at(**{first: x, second: np.broadcast_to(held[:, None, None], x.shape)}, errors="mask")
-        two_phase = np.isfinite(state.quality)
-        return {field: np.where(two_phase, np.nan, getattr(state, field)) for field in fields}
+        left = np.isfinite(state.quality)
+        # given pressure and temperature, a boiling line is crossed without two phases ever showing
+        left |= ((state.phase == "liquid").any(axis=-1) & (state.phase == "vapour").any(axis=-1))[..., None]
+        return {field: np.where(left, np.nan, getattr(state, field)) for field in fields}
 
     return evaluate
 
@@ -135,8 +181,9 @@ def _result(
         worst = bad[np.argmax(residual[bad])]
         result.worst = float(residual[worst])
         result.sample = (
-            f"{residual[worst]:.1e} (uncertain by {uncertainty[worst]:.0e}) at T = {state.temperature[worst]!r}, "
-            f"p = {state.pressure[worst]!r}, rho = {state.density[worst]!r}"
+            f"{residual[worst]:.1e} (uncertain by {uncertainty[worst]:.0e}) at "
+            f"T = {float(state.temperature[worst])!r}, p = {float(state.pressure[worst])!r}, "
+            f"rho = {float(state.density[worst])!r}"
         )
     results.setdefault(name, Result()).add(result)
 
@@ -188,6 +235,11 @@ def _by_pressure(fluid: Any, state: Any, results: dict[str, Result]) -> None:
     # a liquid may go down to its saturation pressure only
     reach = np.minimum(np.where(np.isfinite(stiffness), stiffness, np.inf), 5 * p)
     fields = ("specific_enthalpy", "specific_entropy", "specific_volume", "temperature")
+    if fluid.kind == "incompressible" and not fluid.thermal_expansion:
+        energy = "specific_internal_energy"
+        warmed = derivatives(_evaluation(fluid, "temperature", "pressure", p, (energy, "specific_entropy")), t, t)
+        (u_t, u_error), (s_t, s_error) = warmed[energy], warmed["specific_entropy"]
+        _result("(du/ds)_v = T", np.abs(u_t / s_t / t - 1), u_error / u_t + s_error / s_t, state, results)
     heated = derivatives(_evaluation(fluid, "temperature", "pressure", p, fields), t, t)
     pressed = derivatives(_evaluation(fluid, "pressure", "temperature", t, fields), p, reach)
     h_t, s_t, v_t, _ = (heated[field] for field in fields)
@@ -234,24 +286,26 @@ def check_saturation(fluid: RealFluid, count: int = 200) -> dict[str, Result]:
     results: dict[str, Result] = {}
     _result("g' = g''", np.abs(h - t * s) / rt, none, vapour, results)
     equation = fluid._equation
-    by_vapour = equation.properties(t, vapour.density).pressure
-    by_liquid = equation.properties(t, liquid.density).pressure
-    _result("p(T, rho'') = p_sat", np.abs(by_vapour / vapour.pressure - 1), none, vapour, results)
+    heavy, light = (equation.properties(t, phase.density) for phase in (liquid, vapour))
+    _result("p(T, rho'') = p_sat", np.abs(light.pressure / vapour.pressure - 1), none, vapour, results)
     rho = liquid.density
-    _result("p(T, rho') = p_sat", np.abs(by_liquid - liquid.pressure) / (rho * rt), none, liquid, results)
+    _result("p(T, rho') = p_sat", np.abs(heavy.pressure - liquid.pressure) / (rho * rt), none, liquid, results)
 
     def logarithm(x: Array) -> dict[str, Array]:
         return {"p": np.log(fluid.saturation(temperature=x, errors="mask")[0].pressure)}
 
-    # as near as 4 steps to the ends of the curve
-    slope, error = derivatives(logarithm, t, np.minimum(t, 8 * (critical.temperature - t)))["p"]
+    reach = np.where(
+        critical.temperature - t < _CLAPEYRON * critical.temperature, np.nan, 8 * (critical.temperature - t)
+    )
+    slope, error = derivatives(logarithm, t, np.minimum(t, reach))["p"]
     with np.errstate(invalid="ignore", divide="ignore"):
-        clapeyron = s / (v * vapour.pressure)
-        # Δs and Δv lose digits where the phases become alike
-        error = error / slope + 4e-15 * (
-            np.abs(liquid.density / (liquid.density - vapour.density)) + fluid.gas_constant / s
-        )
-        _result("dp/dT = (s''-s')/(v''-v')", np.abs(slope / clapeyron - 1), error, vapour, results)
+        chord = s / v
+        error = error / slope + _ROUNDING * fluid.gas_constant / s
+        # next to the critical point the densities are rounded by ε RT/(∂p/∂ρ)_T, which turns the chord of s over v
+        for phase, found in ((liquid, heavy), (vapour, light)):
+            rounded = _ROUNDING * rt / np.abs(found.pressure_density) * phase.specific_volume
+            error += np.abs(found.pressure_temperature / chord - 1) * rounded / np.abs(v)
+        _result(CLAPEYRON, np.abs(slope * vapour.pressure / chord - 1), error, vapour, results)
     return results
 
 
@@ -289,7 +343,7 @@ def states(fluid: Any, count: int, seed: int) -> tuple[Array, Array]:
     near = high if limits.critical_point is None else min(1.3 * limits.critical_point.temperature, high)
     half = count // 2
     temperature = np.concatenate([low * (high / low) ** random.uniform(size=half), random.uniform(low, near, half)])
-    highest = min(limits.maximum_pressure, 1e8)
+    highest = min(limits.maximum_pressure, 1e8) if fluid.kind != "cubic" else 3e7
     return np.exp(random.uniform(np.log(100.0), np.log(highest), 2 * half)), temperature
 
 
@@ -298,6 +352,17 @@ def models(chosen: str = "") -> Iterator[tuple[str, str, Any]]:
     if chosen in ("", "real"):
         for name in names():
             yield "real", name, real_fluid(name)
+    if chosen in ("", "cubic"):
+        for equation in ("Peng-Robinson", "Soave-Redlich-Kwong"):
+            for composition in CUBICS:
+                label = composition if isinstance(composition, str) else "+".join(composition)
+                yield "cubic", f"{label}, {equation}", cubic(composition, equation=equation)
+    if chosen in ("", "incompressible"):
+        for name, given in INCOMPRESSIBLES.items():
+            yield "incompressible", name, incompressible(name, **given)
+    if chosen in ("", "statistical"):
+        for name in statistical.names():
+            yield "statistical", name, statistical.gas(name)
     if chosen in ("", "ideal"):
         for name in ideal_gas_names():
             yield "ideal", name, ideal_gas(name)
@@ -316,7 +381,7 @@ def main() -> int:
     counted: dict[str, int] = {}
     start = time.perf_counter()
     for kind, name, model in models(chosen.kind):
-        results = _check(kind, model, chosen.states)
+        results = check(kind, model, chosen.states)
         counted[kind] = counted.get(kind, 0) + 1
         for identity, result in results.items():
             totals.setdefault(kind, {}).setdefault(identity, Result()).add(result)
@@ -330,10 +395,14 @@ def main() -> int:
     return int(any(result.violations for results in totals.values() for result in results.values()))
 
 
-def _check(kind: str, model: Any, count: int) -> dict[str, Result]:
+def check(kind: str, model: Any, count: int) -> dict[str, Result]:
+    """All identities of one model of a kind at ``count`` states (saturation: at 100 temperatures or more)."""
+    if kind == "statistical":
+        low, high = 1.15 * model.minimum_temperature, model.maximum_temperature / 1.15
+        return check_statistical(model, np.geomspace(low, high, count))
     results = check_model(model, *states(model, count, seed=3))
     if kind == "real" and not model.pseudo_pure:
-        results |= check_saturation(model)
+        results |= check_saturation(model, max(count, 100))
     return results
 
 

@@ -64,9 +64,12 @@ def judge(
 
 
 def is_thin(fluid: RealFluid, temperature: float, density: float) -> bool:
-    """Whether h at T [K] of a gas of this density [kg/m3] is that of one a thousand times thinner, nearly."""
-    pair = fluid.at(temperature=[temperature] * 2, density=[density, 1e-3 * density], errors="mask").specific_enthalpy
-    return bool(abs(pair[1] - pair[0]) < _FLAT * max(abs(pair[0]), fluid.gas_constant * temperature))
+    """Whether h at T [K] of a gas hardly depends on its density [kg/m3]; judged at a half and a quarter of it, since
+    the state itself may lie on the dew line.
+    """
+    pair = fluid.at(temperature=[temperature] * 2, density=[0.5 * density, 0.25 * density], errors="mask")
+    change = 4 * abs(np.diff(pair.specific_enthalpy)[0])
+    return bool(change < _FLAT * max(abs(pair.specific_enthalpy[0]), fluid.gas_constant * temperature))
 
 
 def nearest_roots(fluid: RealFluid, reference: Reference, faults: dict[int, Fault]) -> tuple[Array, SimpleNamespace]:
@@ -83,6 +86,6 @@ def nearest_roots(fluid: RealFluid, reference: Reference, faults: dict[int, Faul
         t, rho = reference.temperature[index], reference.density[index]
         roots = [(root.temperature, root.density) for root in several[index].roots if root.density]
         apart = [abs(np.log(root[0] / t)) + abs(np.log(root[1] / rho)) for root in roots]
-        temperature[position], density[position] = roots[int(np.argmin(apart))]
+        temperature[position], density[position] = roots[int(np.argmin(apart))] if roots else (np.nan, np.nan)
     state = fluid.at(temperature=temperature, density=density, errors="mask")
     return at, SimpleNamespace(**{name: getattr(state, name) for name in (*BARS, "quality", "phase")})
