@@ -14,8 +14,10 @@ The tests, in the order in which they are tried:
   or is a single phase, all properties being equal.
 * *splines of the library*: up to 1.2e-3 Tc below critical, coexisting phases of the library are a spline of its own.
   Ours must give the pair back from its (T, ρ), and its saturation fulfils the equation (property_identities).
+* *published lines end below critical*: of a pseudo-pure fluid, whose published bubble and dew pressures are not met by
+  its equation up to critical; here they are led to the equation's critical point (stated in the limits).
 * *solid by the melting line*: the library's equation goes on under the melting line; here that is no state.
-* *critical point*: the library names phases by another critical point than that of the equation; all properties agree.
+* *critical point*: the library names phases by another critical point than the equation's; all properties agree.
 """
 
 from __future__ import annotations
@@ -28,10 +30,18 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.real.fluid import RealFluid
-from tests.benchmarks.property_states import Reference, library_ideal_heat_capacity, library_saturation_is_worse
+from tests.benchmarks.property_states import (
+    Reference,
+    end_of_lines,
+    library_ideal_heat_capacity,
+    library_saturation_is_worse,
+)
 
 __all__ = [
     "BARS",
+    "IDEAL",
+    "LINES",
+    "SATURATION",
     "SOLID",
     "SPLINE_REGION",
     "Base",
@@ -63,6 +73,9 @@ SPLINE_REGION = 1.2e-3
 _ROUNDING = 4e-15
 #: What of the given pair must come back from our own (T, ρ).
 _GIVEN_BACK = 1e-11
+SPLINES, SATURATION = "splines of the library", "saturation of the library"
+LINES = "published lines end below critical"
+IDEAL = "ideal heat capacity of the library"
 #: Reason where the library's state lies under the melting line: there, a pair has another state or none.
 SOLID = "solid by the melting line"
 #: Vapour fraction that a saturated state may gain or lose by rounding.
@@ -142,23 +155,23 @@ class Base:
     """Comparison at the library's own (T, ρ), or (T, x) of saturated states.
 
     ``reasons`` of deviations above a bar there (else empty), ``unexplained`` ones, ``difference`` |ours − theirs| and
-    ``small``, the rounding, by property [SI]; ``uneven_at_pressure`` and ``uneven_at_temperature``: where the library's
-    saturation at p, at T, is known to be off.
+    ``small``, the rounding, by property [SI]; ``at_pressure`` and ``at_temperature``: why the library's saturation at p,
+    at T, is another one.
     """
 
     reasons: Array
     unexplained: Array
     difference: dict[str, Array]
     small: dict[str, Array]
-    uneven_at_pressure: Array
-    uneven_at_temperature: Array
+    at_pressure: Array
+    at_temperature: Array
 
     def take(self, chosen: Array) -> Base:
         """Some of the states."""
         difference = {name: values[chosen] for name, values in self.difference.items()}
         small = {name: values[chosen] for name, values in self.small.items()}
-        uneven = self.uneven_at_pressure[chosen], self.uneven_at_temperature[chosen]
-        return Base(self.reasons[chosen], self.unexplained[chosen], difference, small, *uneven)
+        saturation = self.at_pressure[chosen], self.at_temperature[chosen]
+        return Base(self.reasons[chosen], self.unexplained[chosen], difference, small, *saturation)
 
 
 def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any, criticals: Criticals) -> Base:
@@ -192,21 +205,25 @@ def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any
         reasons[reference.pressure > line.pressure(reference.temperature) * (1 - 1e-6)] = SOLID
     reasons[over & ~beyond & (state.phase == reference.phase)] = "rounding of a sum that cancels"
     splines, between = _critical_region(reference, criticals)
-    reasons[wanted & (reasons == "") & splines] = "splines of the library"
+    reasons[wanted & (reasons == "") & splines] = SPLINES
     named = (state.phase != "two-phase") & (reference.phase != "two-phase") & (state.phase != "")
     reasons[wanted & ~over & (reasons == "") & between & named] = "critical point of the library"
-    below = reference.temperature < criticals.temperature[0]
-    for index in np.flatnonzero(wanted & (reasons == "") & below & np.isfinite(state.density)):
-        at = fluid.saturation(temperature=reference.temperature[index], errors="mask")[1].pressure
-        # a saturated state, or a single phase between the two saturation pressures
-        metastable = (state.phase[index] == "two-phase") or (state.phase[index] != reference.phase[index])
-        if np.isfinite(reference.quality[index]) or (metastable and reference.pressure[index] < 1e3 * at):
-            worse = library_saturation_is_worse(fluid, theirs, reference.temperature[index])
-            reasons[index] = "saturation of the library" if worse else ""
+    below = wanted & (reasons == "") & (reference.temperature < criticals.temperature[0]) & np.isfinite(state.density)
+    pressure = np.full(reference.size, np.nan)
+    pressure[below] = fluid.saturation(temperature=reference.temperature[below], errors="mask")[1].pressure
+    # a saturated state, or a single phase between the two saturation pressures
+    metastable = (state.phase == "two-phase") | (state.phase != reference.phase)
+    with np.errstate(invalid="ignore"):
+        below &= np.isfinite(reference.quality) | (metastable & (reference.pressure < 1e3 * pressure))
+    why = _why_saturation_differs(fluid, theirs, reference.temperature, below, criticals)
+    reasons = np.where(below, why, reasons)
     if (wanted & (reasons == "")).any() and _other_ideal_part(fluid, theirs, reference):
-        reasons[wanted & (reasons == "")] = "ideal heat capacity of the library"
-    at_pressure = _uneven_at_pressure(fluid, theirs, reference, difference)
-    at_temperature = _uneven_at_temperature(fluid, theirs, reference, difference)
+        reasons[wanted & (reasons == "")] = IDEAL
+    apart = difference["superheat"] + difference["subcooling"] > 1e-11 * reference.temperature
+    at_pressure = _why_saturation_differs(fluid, theirs, _saturated_temperature(reference), apart, criticals)
+    apart = np.maximum(difference["pressure"] / reference.pressure, difference["density"] / reference.density) > 1e-8
+    apart &= np.isfinite(reference.quality)
+    at_temperature = _why_saturation_differs(fluid, theirs, reference.temperature, apart, criticals)
     return Base(reasons, wanted & (reasons == ""), difference, small, at_pressure, at_temperature)
 
 
@@ -224,23 +241,26 @@ def _other_ideal_part(fluid: RealFluid, theirs: Any, reference: Reference) -> bo
     return bool((np.abs(ours / by_data - 1) < 1e-9).all() and (np.abs(stated / by_data - 1) > 1e-7).any())
 
 
-def _uneven_at_pressure(fluid: RealFluid, theirs: Any, reference: Reference, difference: dict[str, Array]) -> Array:
-    """Where a superheat or subcooling differs because the library's saturation is worse than ours."""
-    found = np.zeros(reference.size, dtype=bool)
-    apart = difference["superheat"] + difference["subcooling"]
-    for index in np.flatnonzero(apart > 1e-11 * reference.temperature):
-        distance = np.nan_to_num(reference.superheat[index]) - np.nan_to_num(reference.subcooling[index])
-        found[index] = library_saturation_is_worse(fluid, theirs, reference.temperature[index] - distance)
-    return found
+def _saturated_temperature(reference: Reference) -> Array:
+    """The library's saturation temperature [K] at the pressure of states with a superheat or subcooling; else NaN."""
+    none = np.isnan(reference.superheat) & np.isnan(reference.subcooling)
+    distance = np.nan_to_num(reference.superheat) - np.nan_to_num(reference.subcooling)
+    return np.where(none, np.nan, reference.temperature - distance)
 
 
-def _uneven_at_temperature(fluid: RealFluid, theirs: Any, reference: Reference, difference: dict[str, Array]) -> Array:
-    """Where a state with two phases differs, if only a little, because the library's saturation is worse than ours."""
-    found = np.zeros(reference.size, dtype=bool)
-    apart = np.maximum(difference["pressure"] / reference.pressure, difference["density"] / reference.density)
-    for index in np.flatnonzero((apart > 1e-8) & np.isfinite(reference.quality)):
-        found[index] = library_saturation_is_worse(fluid, theirs, reference.temperature[index])
-    return found
+def _why_saturation_differs(
+    fluid: RealFluid, theirs: Any, temperature: Array, apart: Array, criticals: Criticals
+) -> Array:
+    """Reasons why saturation at T [K] is another one, where ``apart`` is true; empty text elsewhere and if unknown."""
+    reasons = np.full(temperature.size, "", dtype="<U80")
+    with np.errstate(invalid="ignore"):
+        reasons[apart & (temperature > criticals.temperature[0] * (1 - SPLINE_REGION))] = SPLINES
+        if fluid.pseudo_pure:
+            reasons[apart & (reasons == "") & (temperature > end_of_lines(theirs))] = LINES
+    for index in np.flatnonzero(apart & (reasons == "") & np.isfinite(temperature)):
+        if library_saturation_is_worse(fluid, theirs, temperature[index]):
+            reasons[index] = SATURATION
+    return reasons
 
 
 def explain(
@@ -261,7 +281,7 @@ def explain(
     """
     reasons = base.reasons.copy()
     if given[1] in ("superheat", "subcooling"):
-        reasons[base.uneven_at_pressure] = "saturation of the library"
+        reasons = np.where(base.at_pressure != "", base.at_pressure, reasons)
     small = base.small
     alike = ~base.unexplained
     amplified = np.zeros(reference.size, dtype=bool)
@@ -299,13 +319,13 @@ def explain(
         rest = ~np.any([found[name] > BARS[name] for name in BARS if name != "pressure"], axis=0)
         on_line = ~base.unexplained & (~missed | (noise & rest)) & (np.abs(quality - reference.quality) < _ON_LINE)
     reasons[(reasons == "") & on_line] = "saturated within rounding: one phase or two"
-    reasons[(reasons == "") & back & base.uneven_at_temperature & ~base.unexplained] = "saturation of the library"
+    reasons = np.where((reasons == "") & back & ~base.unexplained, base.at_temperature, reasons)
     splines, differ = _critical_region(reference, criticals)
     if given in (("temperature", "density"), ("temperature", "quality")):
         return reasons  # nothing is solved for, so nothing is amplified
     reasons[(reasons == "") & alike & amplified] = "difference at (T, rho), amplified by the pair"
     reasons[(reasons == "") & alike] = "pair does not tell the states apart"
-    reasons[(reasons == "") & back & splines] = "splines of the library"
+    reasons[(reasons == "") & back & splines] = SPLINES
     named = (state.phase != "two-phase") & (reference.phase != "two-phase")
     reasons[(reasons == "") & back & differ & named & ~missed] = "critical point of the library"
     return reasons

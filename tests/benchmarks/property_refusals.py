@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 from reportgen.errors import Fault
 from reportgen.fluids.pairs import SeveralStates
 from reportgen.fluids.real.fluid import RealFluid
-from tests.benchmarks.property_explanations import BARS, SOLID, Base, Criticals
+from tests.benchmarks.property_explanations import BARS, IDEAL, LINES, SATURATION, SOLID, Base, Criticals
 from tests.benchmarks.property_states import Reference
 
 __all__ = ["SEVERAL", "is_thin", "judge", "nearest_roots"]
@@ -26,14 +26,21 @@ _FLAT = 1e-9
 
 
 def judge(
-    fluid: RealFluid, reference: Reference, index: int, fault: Fault, criticals: Criticals, base: Base
+    fluid: RealFluid,
+    reference: Reference,
+    index: int,
+    fault: Fault,
+    given: tuple[str, str],
+    criticals: Criticals,
+    base: Base,
 ) -> tuple[bool, str]:
     """Whether a refusal is a good one, and what to count it as."""
     message, limits = fault.message, fluid.limits
     t, p, rho = (float(getattr(reference, name)[index]) for name in ("temperature", "pressure", "density"))
     if isinstance(fault, SeveralStates):
         return True, SEVERAL
-    if base.reasons[index] in ("saturation of the library", "ideal heat capacity of the library"):
+    off = base.reasons[index] in (SATURATION, IDEAL, LINES)
+    if off or (("superheat" in given[1] or "subcooling" in given[1]) and base.at_pressure[index]):
         return True, "a state of the library that is none by its own equation"
     if base.reasons[index] == SOLID:
         return True, SOLID
@@ -42,11 +49,11 @@ def judge(
         return abs(p / float(liquid.pressure) - 1) < 1e-8, "on the saturation line"
     if "between the bubble and the dew line" in message:
         # a saturated state lies on a line; next to the top of the envelope, the library has no lines
-        on_line = bool(np.isfinite(reference.quality[index]))
+        on_line = bool(np.isfinite(reference.quality[index])) and not base.at_temperature[index]
         return fluid.pseudo_pure and not on_line, "on a line, or " * on_line + "between bubble and dew line"
     if "do not tell the pressure" in message:
         return is_thin(fluid, t, rho), "thin gas, whose energy does not tell the pressure"
-    edge = 1e-9
+    edge = 1e-7
     outside = (
         t < limits.minimum_temperature * (1 + edge)
         or t > limits.maximum_temperature * (1 - edge)

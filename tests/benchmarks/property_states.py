@@ -24,6 +24,7 @@ __all__ = [
     "Reference",
     "counterparts",
     "draw",
+    "end_of_lines",
     "library_ideal_heat_capacity",
     "library_pressure_temperature",
     "library_saturation_is_worse",
@@ -283,6 +284,22 @@ def library_saturation_is_worse(fluid: RealFluid, state: Any, temperature: float
         return False
     ours = imbalance(state, temperature, float(liquid.pressure), float(liquid.density), float(vapour.density))
     return ours < 1e-9 and ours < 0.1 * theirs and theirs > 1e-8
+
+
+def end_of_lines(state: Any) -> float:
+    """Temperature [K] above which the published lines of a pseudo-pure fluid are no longer states of its equation.
+
+    The library fails there to find a saturated density at the published pressure; since the lines turn away before they
+    end, five times the distance from critical counts. Infinite where it never fails.
+    """
+    critical = state.T_critical()
+    for temperature in np.linspace(0.98 * critical, critical, 400, endpoint=False):
+        for quality in (0.0, 1.0):
+            try:
+                state.update(library.QT_INPUTS, quality, temperature)
+            except ValueError:
+                return float(critical - 5 * (critical - temperature))
+    return float("inf")
 
 
 def library_ideal_heat_capacity(state: Any, temperature: Array) -> Array | None:

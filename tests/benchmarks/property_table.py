@@ -262,7 +262,7 @@ def _compare(
         part = SimpleNamespace(**{name: values[looked_at] for name, values in fields.items()})
         reasons[looked_at] = explain(fluid, reference.take(looked_at), part, given, base.take(looked_at), criticals)
     for index, fault in state.faults.items():
-        good, text = judge(fluid, reference, index, fault, criticals, base)
+        good, text = judge(fluid, reference, index, fault, given, criticals, base)
         if text == SEVERAL and over[index] and not reasons[index]:
             t, rho = float(reference.temperature[index]), float(reference.density[index])
             good = "a gas so thin" in fault.message and is_thin(fluid, t, rho)
