@@ -155,8 +155,8 @@ class Base:
     """Comparison at the library's own (T, ρ), or (T, x) of saturated states.
 
     ``reasons`` of deviations above a bar there (else empty), ``unexplained`` ones, ``difference`` |ours − theirs| and
-    ``small``, the rounding, by property [SI]; ``at_pressure`` and ``at_temperature``: why the library's saturation at p,
-    at T, is another one.
+    ``small``, the rounding, by property [SI]; ``at_pressure`` and ``at_temperature``: why the library's saturation at
+    p, at T, is another one.
     """
 
     reasons: Array
@@ -255,7 +255,7 @@ def _why_saturation_differs(
     reasons = np.full(temperature.size, "", dtype="<U80")
     with np.errstate(invalid="ignore"):
         reasons[apart & (temperature > criticals.temperature[0] * (1 - SPLINE_REGION))] = SPLINES
-        if fluid.pseudo_pure:
+        if fluid.pseudo_pure and (apart & (reasons == "")).any():
             reasons[apart & (reasons == "") & (temperature > end_of_lines(theirs))] = LINES
     for index in np.flatnonzero(apart & (reasons == "") & np.isfinite(temperature)):
         if library_saturation_is_worse(fluid, theirs, temperature[index]):

@@ -82,14 +82,13 @@ class Reference:
 def counterparts() -> tuple[dict[str, str], list[str]]:
     """Canonical name here -> name in the library, and the library's fluids that are not carried here.
 
-    A fluid is matched by any name the library has for it; molar mass and critical temperature must then agree.
+    A fluid is matched by the library's name or CAS number; molar mass and critical temperature must then agree.
     """
     found: dict[str, str] = {}
     missing = []
     for theirs in library.FluidsList():
-        try:
-            fluid = real_fluid(theirs)
-        except InputError:
+        fluid = _carried(theirs)
+        if fluid is None:
             missing.append(theirs)
             continue
         state = library.AbstractState("HEOS", theirs)
@@ -101,6 +100,16 @@ def counterparts() -> tuple[dict[str, str], list[str]]:
         found[str(fluid.substance)] = theirs
     ordered = {name: found[name] for name in names() if name in found}
     return ordered, missing
+
+
+def _carried(theirs: str) -> RealFluid | None:
+    """The fluid here that goes by the library's name, or by its CAS number."""
+    for name in (theirs, library.get_fluid_param_string(theirs, "CAS")):
+        try:
+            return real_fluid(name)
+        except InputError:
+            continue
+    return None
 
 
 def shift(fluid: RealFluid, state: Any, reference: Reference) -> None:
@@ -293,7 +302,7 @@ def end_of_lines(state: Any) -> float:
     end, five times the distance from critical counts. Infinite where it never fails.
     """
     critical = state.T_critical()
-    for temperature in np.linspace(0.98 * critical, critical, 400, endpoint=False):
+    for temperature in critical * (1 - np.geomspace(2e-2, 1e-5, 100)):
         for quality in (0.0, 1.0):
             try:
                 state.update(library.QT_INPUTS, quality, temperature)
