@@ -12,9 +12,7 @@ from __future__ import annotations
 
 import argparse
 import time
-from collections import Counter
 from collections.abc import Callable
-from dataclasses import dataclass, field
 from types import SimpleNamespace
 from typing import Any
 
@@ -35,8 +33,8 @@ from tests.benchmarks.property_explanations import (
     explain_base,
 )
 from tests.benchmarks.property_refusals import SEVERAL, is_thin, judge, nearest_roots
+from tests.benchmarks.property_rows import HEADING, Row
 from tests.benchmarks.property_states import (
-    NEAR_CRITICAL,
     Reference,
     counterparts,
     draw,
@@ -75,54 +73,6 @@ SINGLY, ONE_BY_ONE = 20, "one by one"
 #: The library's own flash instead of its (T, ρ).
 FLASH = "p,T of both"
 _SAMPLES = 3
-
-
-@dataclass
-class Row:
-    """Result for one fluid and pair."""
-
-    states: int = 0
-    compared: int = 0
-    worst: float = 0.0
-    high: float = 0.0
-    worst_slopes: float = 0.0
-    high_slopes: float = 0.0
-    worst_away: float = 0.0
-    worst_slopes_away: float = 0.0
-    refused: Counter[str] = field(default_factory=Counter)
-    lost: Counter[str] = field(default_factory=Counter)
-    reasons: Counter[str] = field(default_factory=Counter)
-    unexplained: int = 0
-    wrong_phase: int = 0
-    failures: Counter[str] = field(default_factory=Counter)
-    library_failures: int = 0
-    samples: list[str] = field(default_factory=list)
-    seconds: float = 0.0
-
-    def text(self) -> str:
-        """One line of the table."""
-        tail = "".join(
-            f"  {name}: {dict(count)}"
-            for name, count in (
-                ("refused", self.refused),
-                ("LOST", self.lost),
-                ("larger ones", self.reasons),
-                ("FAILED", self.failures),
-            )
-            if count
-        )
-        bad = f"  UNEXPLAINED {self.unexplained}" if self.unexplained else ""
-        bad += f"  WRONG PHASE {self.wrong_phase}" if self.wrong_phase else ""
-        tail += f"  (failures of the library: {self.library_failures})" if self.library_failures else ""
-        return (
-            f"{self.compared:6d} {self.worst:8.1e} {self.high:8.1e} {self.worst_away:8.1e}  "
-            f"{self.worst_slopes:8.1e} {self.high_slopes:8.1e} {self.worst_slopes_away:8.1e}{bad}{tail}"
-        )
-
-
-HEADING = (
-    f"{'':34s}   used    worst   99.9 %     away     cp, w   99.9 %     away   (away: |T/Tc - 1| > 1e-3, unexplained)"
-)
 
 
 def counts(states: int) -> dict[str, int]:
@@ -170,7 +120,7 @@ def compare_fluid(
         rows[label] = _compare(fluid, part, label, base.take(chosen), criticals, at_once)
         some = chosen[:: max(1, chosen.size // singly)]
         single = _compare(fluid, reference.take(some), label, base.take(some), criticals, one_by_one)
-        _add(rows.setdefault(ONE_BY_ONE, Row()), single)
+        rows.setdefault(ONE_BY_ONE, Row()).add(single)
     if "p,T" in labels:
         chosen = _chosen(reference, "p,T", states)
         part, lost = library_pressure_temperature(state, reference.take(chosen))
@@ -191,18 +141,14 @@ def same_point(fluid: RealFluid, reference: Reference) -> Any:
     )
 
 
-def _large(found: dict[str, Array], reference: Reference, state: Any) -> tuple[Array, Array, Array]:
-    """Where a bar is missed or a property missing or the phase another; and the worst deviation of both groups."""
+def _large(found: dict[str, Array], reference: Reference, state: Any) -> Array:
+    """Where a bar is missed, or a property missing, or the phase another."""
+    over = state.phase != reference.phase
     with np.errstate(invalid="ignore"):
-        over = np.zeros(reference.size, dtype=bool)
         for name, bar in BARS.items():
             over |= found[name] > bar
             over |= np.isnan(found[name]) & np.isfinite(getattr(reference, name))
-        over |= state.phase != reference.phase
-        groups = [
-            np.fmax.reduce([found[name] for name in BARS if (BARS[name] > 1e-6) == slopes]) for slopes in (False, True)
-        ]
-    return over, groups[0], groups[1]
+    return over
 
 
 def at_once(fluid: RealFluid, pair: dict[str, Array]) -> Any:
@@ -251,7 +197,7 @@ def _compare(
         values[at] = getattr(roots, name)
     ours = SimpleNamespace(**fields)
     found = deviations(reference, ours, fluid.gas_constant)
-    over, properties, slopes = _large(found, reference, ours)
+    over = _large(found, reference, ours)
     refused = np.zeros(reference.size, dtype=bool)
     refused[list(state.faults)] = True
     offered = np.zeros(reference.size, dtype=bool)
@@ -285,33 +231,8 @@ def _compare(
         )
         _sample(row, reference, index, given, text)
     row.compared = int((~refused).sum())
-    _statistics(row, properties, slopes, ~refused, reference, criticals, reasons != "")
+    row.measure(found, ~refused, reference, criticals, reasons != "")
     return row
-
-
-def _statistics(
-    row: Row,
-    properties: Array,
-    slopes: Array,
-    used: Array,
-    reference: Reference,
-    criticals: Criticals,
-    explained: Array,
-) -> None:
-    away = used & ~explained
-    for critical in criticals.temperature:
-        away &= np.abs(reference.temperature / critical - 1) > NEAR_CRITICAL
-    for values, worst, high, far in (
-        (properties, "worst", "high", "worst_away"),
-        (slopes, "worst_slopes", "high_slopes", "worst_slopes_away"),
-    ):
-        kept = values[used & np.isfinite(values)]
-        if kept.size:
-            setattr(row, worst, float(kept.max()))
-            setattr(row, high, float(np.quantile(kept, 0.999)))
-        kept = values[away & np.isfinite(values)]
-        if kept.size:
-            setattr(row, far, float(kept.max()))
 
 
 def _sample(row: Row, reference: Reference, index: int, given: tuple[str, str], text: str) -> None:
@@ -330,12 +251,11 @@ def _compare_flash(fluid: RealFluid, state: Any, reference: Reference, base: Bas
     found = deviations(reference, ours, fluid.gas_constant)
     kept = np.isfinite(reference.density) & np.isfinite(ours.density)
     row.compared = int(kept.sum())
-    groups = [
-        np.fmax.reduce([found[name] for name in BARS if (BARS[name] > 1e-6) == slopes]) for slopes in (False, True)
-    ]
+    with np.errstate(invalid="ignore"):
+        over = np.any([found[name] > bar for name, bar in BARS.items()], axis=0)
     explained = base.reasons != ""
     row.reasons.update(str(text) for text in base.reasons[kept & explained])
-    for index in np.flatnonzero(kept & ~explained & ((groups[0] > 1e-7) | (groups[1] > 1e-5))):
+    for index in np.flatnonzero(kept & ~explained & over):
         t, p = reference.temperature[index], reference.pressure[index]
         left = []
         for density in (ours.density[index], reference.density[index]):
@@ -348,7 +268,7 @@ def _compare_flash(fluid: RealFluid, state: Any, reference: Reference, base: Bas
         else:
             row.unexplained += 1
             _sample(row, reference, index, PAIRS["p,T"][0], f"density {ours.density[index]} gives {left}")
-    _statistics(row, *groups, kept, reference, criticals, explained)
+    row.measure(found, kept, reference, criticals, explained)
     return row
 
 
@@ -372,30 +292,22 @@ def main() -> int:
         rows = compare_fluid(name, matched[str(real_fluid(name).substance)], chosen.states, labels)
         whole = Row()
         for label, row in rows.items():
-            _add(whole, row)
-            _add(totals.setdefault(label, Row()), row)
-            if chosen.full or row.unexplained or row.lost or row.wrong_phase:
-                print(f"  {name[:18]:18s} {label:13s} {row.text()}")
+            if label != FLASH:  # its deviations are the library's own
+                whole.add(row)
+            totals.setdefault(label, Row()).add(row)
+            if chosen.full or not row.good:
+                print(f"  {name[:18]:18s} {label:13s} {row}")
             for sample in row.samples:
                 print(f"      {sample}")
-        print(f"{name[:20]:20s} {'all pairs':13s} {whole.text()}", flush=True)
+        print(f"{name[:20]:20s} {'all pairs':13s} {whole}", flush=True)
     print(f"\nTotals over {len(names)} fluids, {time.perf_counter() - start:.0f} s")
     whole = Row()
     for label, row in totals.items():
-        print(f"{'':20s} {label:13s} {row.text()}  {row.seconds:.1f} s")
-        _add(whole, row)
-    print(f"{'':20s} {'everything':13s} {whole.text()}")
-    return int(bool(whole.unexplained or whole.lost or whole.wrong_phase))
-
-
-def _add(total: Row, row: Row) -> None:
-    for name, value in vars(row).items():
-        if isinstance(value, Counter):
-            getattr(total, name).update(value)
-        elif isinstance(value, (int, float)):
-            old = getattr(total, name)
-            extreme = name.startswith(("worst", "high"))
-            setattr(total, name, max(old, value) if extreme else old + value)
+        print(f"{'':20s} {label:13s} {row}  {row.seconds:.1f} s")
+        if label != FLASH:
+            whole.add(row)
+    print(f"{'':20s} {'everything':13s} {whole}")
+    return int(not (whole.good and totals.get(FLASH, Row()).good))
 
 
 if __name__ == "__main__":
