@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Any
+from typing import Any, Literal
 
 import numpy as np
 import numpy.typing as npt
@@ -23,26 +23,27 @@ Array = npt.NDArray[np.float64]
 APART = ("liquid", "vapour", "two-phase")
 
 
-def saturation_temperature(plant: EvaluatedPlant, state: str) -> Array:
-    """Saturation temperature at the pressure of a state [K], shape (N,).
+def saturation_temperature(plant: EvaluatedPlant, state: str, line: Literal["bubble", "dew"] = "dew") -> Array:
+    """Saturation temperature at the pressure of a state [K], shape (N,); bubble and dew line differ for mixtures.
 
     NaN above the critical pressure, and for models without saturation.
     """
     fluid: Any = plant.fluid_of(state)
     if not hasattr(fluid, "saturation"):
         return np.full(plant.axis.columns, np.nan)
-    _, vapour = fluid.saturation(pressure=plant.samples(f"states.{state}.pressure"), errors="mask")
-    return np.asarray(vapour.temperature, dtype=float)
+    liquid, vapour = fluid.saturation(pressure=plant.samples(f"states.{state}.pressure"), errors="mask")
+    return np.asarray((vapour if line == "dew" else liquid).temperature, dtype=float)
 
 
 def distance_from_saturation(plant: EvaluatedPlant, state: str) -> Array:
-    """Distance of the temperature from saturation at the same pressure [K], shape (N,), positive in the base case.
+    """Distance of the temperature from the nearer saturation line at the same pressure [K], shape (N,).
 
-    Samples on the other side of saturation are negative.
+    Positive in a single phase of the base case; samples on the other side of saturation are negative.
     """
-    distance = plant.samples(f"states.{state}.temperature") - saturation_temperature(plant, state)
-    result: Array = -distance if distance[0] < 0.0 else distance
-    return result
+    temperature = plant.samples(f"states.{state}.temperature")
+    above = temperature - saturation_temperature(plant, state, "dew")
+    below = saturation_temperature(plant, state, "bubble") - temperature
+    return below if below[0] > above[0] else above
 
 
 def is_read_by_temperature(plant: EvaluatedPlant, state: str) -> bool:

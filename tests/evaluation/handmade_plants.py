@@ -38,8 +38,12 @@ def fluid(
     published_maximum: float | None = None,
     critical: tuple[float, float] | None = (647.096, 22.064e6),
     saturation_temperature: float = 373.0,
+    bubble_temperature: float | None = None,
 ) -> SimpleNamespace:
-    """A stand-in for a property model: its limits, and one saturation temperature at every pressure."""
+    """A stand-in for a property model: its limits, and one saturation temperature at every pressure.
+
+    ``bubble_temperature`` for a mixture, whose liquid boils below the dew point.
+    """
     return SimpleNamespace(
         title=substance,
         substance=substance,
@@ -54,9 +58,9 @@ def fluid(
             published_maximum_temperature=published_maximum,
             critical_point=None if critical is None else SimpleNamespace(temperature=critical[0], pressure=critical[1]),
         ),
-        saturation=lambda pressure, errors: (
-            None,
-            SimpleNamespace(temperature=np.full_like(pressure, saturation_temperature)),
+        saturation=lambda pressure, errors: tuple(
+            SimpleNamespace(temperature=np.full_like(pressure, temperature))
+            for temperature in (bubble_temperature or saturation_temperature, saturation_temperature)
         ),
     )
 

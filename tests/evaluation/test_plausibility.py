@@ -127,6 +127,17 @@ def test_p08() -> None:
     assert summary("P08", pump("vapour", 400.0, kind="turbine")) == []
 
 
+def test_p08_of_a_mixture_counts_from_its_bubble_line() -> None:
+    """A mixture that boils from 350 K and is vapour at 373 K."""
+
+    def summed(temperature: Any) -> list[tuple[str, str, bool]]:
+        case = pump("liquid", temperature)
+        return summary("P08", replace(case, fluids={"f": fluid(bubble_temperature=350.0)}))
+
+    assert summed(349.9) == []
+    assert summed(samples(349.9, 0.1)) == [("warning", "states.1.temperature", False)]
+
+
 # P09: phase not resolved from saturation
 
 
@@ -147,6 +158,15 @@ def test_p09_readings_of_pressure_and_temperature() -> None:
     assert summary("P09", read(samples(374.0, 0.4))) == []
     assert summary("P09", read(373.05, given=("pressure",))) == []
     assert summary("P09", read(373.05, phase="gas")) == []
+
+
+def test_p09_of_a_mixture_looks_at_the_nearer_line() -> None:
+    def summed(temperature: float, phase: str) -> int:
+        case = replace(read(temperature, phase=phase), fluids={"f": fluid(bubble_temperature=350.0)})
+        return len(summary("P09", case))
+
+    assert [summed(349.95, "liquid"), summed(349.8, "liquid")] == [1, 0]
+    assert [summed(373.05, "vapour"), summed(373.2, "vapour")] == [1, 0]
 
 
 def test_p09_phases_that_change_within_the_uncertainty() -> None:

@@ -84,7 +84,7 @@ def vapour_at_pump_suction(plant: EvaluatedPlant, _limit: float) -> Iterator[Fin
             elif phase in {"vapour", "liquid"}:
                 path = f"states.{state}.temperature"
                 text += " The limit is the saturation temperature at the same pressure."
-                boiling = saturation_temperature(plant, state)
+                boiling = saturation_temperature(plant, state, "bubble")
                 yield Finding(path, plant.samples(path), boiling, "below", text, "temperature", owner=owner)
 
 
