@@ -16,10 +16,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.balances.equations import elevated_enthalpy
+from reportgen.balances.network import Network
 from reportgen.balances.plant import Piece, balance_groups, trains_of
 from reportgen.balances.relations import Equation, Formula, HeatPort, Term, sum_latex, token
 from reportgen.balances.solution import Account, Assumption, Entry, Solution, Step
-from reportgen.balances.structure import Network
 from reportgen.errors import Fault
 
 __all__ = ["add_results"]

@@ -1,8 +1,9 @@
-"""What a kind of equipment declares, and the registry of all kinds.
+"""What a kind of equipment, or of process in a closed system, declares; and the registries of all kinds.
 
-A kind is one module of :mod:`reportgen.balances.equipment` that binds one :class:`Kind` to the name ``KIND``.
-Nothing else names it: :func:`kinds` finds the modules by looking into the package. This module and the
-declarations need neither numpy nor a fluid, so that the schema of the calculation file stays cheap to make.
+A kind is one module of :mod:`reportgen.balances.equipment`, or of :mod:`reportgen.balances.processes.kinds`, that binds
+one :class:`Kind` to the name ``KIND``. Nothing else names it: :func:`kinds` and :func:`process_kinds` find the modules
+by looking into the package. This module and the declarations need neither numpy nor a fluid, so that the schema of the
+calculation file stays cheap to make.
 """
 
 from __future__ import annotations
@@ -18,8 +19,9 @@ if TYPE_CHECKING:
     from reportgen.balances.doubts import Doubt
     from reportgen.balances.plant import Piece
     from reportgen.balances.relations import Default, Exchange, Formula, HeatPort, Relation, Stretch
+    from reportgen.errors import Fault
 
-__all__ = ["Choice", "Group", "Kind", "Parameter", "Port", "kinds"]
+__all__ = ["Choice", "Group", "Kind", "Parameter", "Port", "kinds", "process_kinds"]
 
 
 @dataclass(frozen=True)
@@ -62,16 +64,20 @@ class Group:
 
 @dataclass(frozen=True)
 class Choice:
-    """A word that may be given for a piece, one of ``values``; the first of them holds where none is given."""
+    """A word that may be given for a piece, one of ``values``; the first of them holds where none is given.
+
+    ``many``: a list with one word for each state at the first port may be given too.
+    """
 
     name: str
     values: tuple[str, ...]
     text: str
+    many: bool = False
 
 
 @dataclass(frozen=True)
 class Kind:
-    """One kind of equipment: what the calculation file may say about it, and the relations it obeys.
+    """One kind of equipment or process: what the calculation file may say about it, and the relations it obeys.
 
     Parameters
     ----------
@@ -90,7 +96,13 @@ class Kind:
     power_sign : +1 when positive power is absorbed, -1 when it is delivered, 0 when there is no power.
     work : path of the power that crosses the boundary of the piece; ``power`` itself unless losses lie between.
     compresses : whether it raises the pressure of a gas, so that several in a row are stages of one compression.
+    lifts : +1 when the pressure rises from inlet to outlet, -1 when it falls by much, 0 when it stays about the same.
     exergetic_efficiency, entropy_generation_number : their definitions in words.
+    family : table of the calculation file it belongs to; a process has the ports ``from`` and ``to``, amounts in the
+        place of flows, and work positive when done by the system.
+    path_taken : of a process, what is assumed of the states it passes, to follow its title; empty: nothing.
+    checks : what is wrong with a piece whose ports and fluids are known.
+    mixes : whether a process makes the fluid of its end state by mixing ideal gases.
     """
 
     name: str
@@ -112,8 +124,13 @@ class Kind:
     power_sign: int = 0
     work: Callable[[Piece], str] = lambda piece: piece.path("power")
     compresses: bool = False
+    lifts: int = 0
     exergetic_efficiency: str = ""
     entropy_generation_number: str = ""
+    family: Literal["equipment", "processes"] = "equipment"
+    path_taken: str = ""
+    checks: Callable[[Piece], Sequence[Fault]] = lambda piece: ()
+    mixes: Callable[[Piece], bool] = lambda piece: False
 
     def port(self, name: str) -> Port:
         """The port of that name; KeyError when the kind has none."""
@@ -124,15 +141,20 @@ class Kind:
 
 
 @cache
-def _discover() -> tuple[Kind, ...]:
-    package = importlib.import_module("reportgen.balances.equipment")
+def _discover(package_name: str) -> tuple[Kind, ...]:
+    package = importlib.import_module(package_name)
     found = []
     for module in sorted(pkgutil.iter_modules(package.__path__), key=lambda entry: entry.name):
         kind = importlib.import_module(f"{package.__name__}.{module.name}").KIND
         found.append(kind)
-    return tuple(found)
+    return tuple(sorted(found, key=lambda kind: kind.name))
 
 
 def kinds() -> dict[str, Kind]:
     """Every kind of equipment by its name in the calculation file, in alphabetical order."""
-    return {kind.name: kind for kind in sorted(_discover(), key=lambda kind: kind.name)}
+    return {kind.name: kind for kind in _discover("reportgen.balances.equipment")}
+
+
+def process_kinds() -> dict[str, Kind]:
+    """Every kind of process in a closed system by its name in the calculation file, in alphabetical order."""
+    return {kind.name: kind for kind in _discover("reportgen.balances.processes.kinds")}

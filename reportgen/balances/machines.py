@@ -91,6 +91,7 @@ def machine_kind(
         power_sign=1 if absorbs else -1,
         work=work_path,
         compresses=absorbs and polytropic,
+        lifts=(0 if total else 1) if absorbs else -1,
         exergetic_efficiency=merit,
         entropy_generation_number=f"Lost work over the power {verb}.",
     )

@@ -10,61 +10,102 @@ SIAM J. Comput. 1 (1972) 146, doi:10.1137/0201010).
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
+from typing import Any
 
 __all__ = ["Matching", "blocks_in_order"]
 
 
 class Matching:
-    """A maximum matching between relations (by key) and unknowns (by path) that can grow."""
+    """A maximum matching between relations (by key) and unknowns (by path) that can grow, and go back to a mark."""
 
     def __init__(self) -> None:
         self.edges: dict[str, tuple[str, ...]] = {}
         self.unknown_of: dict[str, str] = {}
         self.relation_of: dict[str, str] = {}
+        #: Unknowns from which no alternating path leads to a free one; true until a relation is taken out.
+        self._closed: set[str] = set()
+        self._undo: list[tuple[dict[str, Any], str, Any]] | None = None
 
-    def copy(self) -> Matching:
-        """An independent copy, for a trial."""
-        twin = Matching()
-        twin.edges = dict(self.edges)
-        twin.unknown_of = dict(self.unknown_of)
-        twin.relation_of = dict(self.relation_of)
-        return twin
+    def mark(self) -> None:
+        """Begin a trial that ``back`` takes back."""
+        self._undo = []
+
+    def back(self) -> None:
+        """As it was at the mark."""
+        for table, key, value in reversed(self._undo or ()):
+            if value is None:
+                table.pop(key, None)
+            else:
+                table[key] = value
+        self._undo = None
+        self._closed.clear()
+
+    def _put(self, table: dict[str, Any], key: str, value: Any) -> None:
+        if self._undo is not None:
+            self._undo.append((table, key, table.get(key)))
+        if value is None:
+            table.pop(key, None)
+        else:
+            table[key] = value
 
     def add(self, key: str, unknowns: Iterable[str]) -> bool:
         """Offer a relation with the unknowns it can be solved for; True when it finds one of its own."""
-        self.edges[key] = tuple(unknowns)
+        self._put(self.edges, key, tuple(unknowns))
         return self._augment(key)
+
+    def add_if_open(self, key: str, unknowns: Iterable[str]) -> bool:
+        """Offer a relation that is only kept when it finds an unknown of its own."""
+        found = self.add(key, unknowns)
+        if not found:
+            self._put(self.edges, key, None)
+        return found
 
     def remove(self, key: str) -> None:
         """Take a relation out; its unknown is free again."""
-        unknown = self.unknown_of.pop(key, None)
+        unknown = self.unknown_of.get(key)
         if unknown is not None:
-            del self.relation_of[unknown]
-        del self.edges[key]
+            self._put(self.unknown_of, key, None)
+            self._put(self.relation_of, unknown, None)
+            self._closed.clear()
+        self._put(self.edges, key, None)
+
+    def is_open(self, unknown: str) -> bool:
+        """Whether one more relation for this unknown could still find one of its own: nothing determines it."""
+        return self._free_end([unknown], {unknown: None})[0] is not None
 
     def _augment(self, start: str) -> bool:
-        """Grow the matching by one along an alternating path, breadth first."""
-        came_from: dict[str, str] = {}
-        queue = [start]
-        for key in queue:
-            for unknown in self.edges[key]:
-                if unknown in came_from:
-                    continue
-                came_from[unknown] = key
-                owner = self.relation_of.get(unknown)
-                if owner is None:
-                    self._flip(unknown, came_from)
-                    return True
-                queue.append(owner)
-        return False
+        """Grow the matching by one along an alternating path."""
+        came_from: dict[str, str | None] = {}
+        for unknown in self.edges[start]:
+            came_from.setdefault(unknown, start)
+        free, came_from = self._free_end(list(came_from), came_from)
+        if free is not None:
+            self._flip(free, came_from)
+        return free is not None
 
-    def _flip(self, unknown: str, came_from: Mapping[str, str]) -> None:
+    def _free_end(self, queue: list[str], came_from: dict[str, str | None]) -> tuple[str | None, dict[str, str | None]]:
+        """A free unknown at the end of an alternating path, breadth first, and the relation each was reached by."""
+        for unknown in queue:
+            if unknown in self._closed:
+                continue
+            owner = self.relation_of.get(unknown)
+            if owner is None:
+                return unknown, came_from
+            for other in self.edges[owner]:
+                if other not in came_from:
+                    came_from[other] = owner
+                    queue.append(other)
+        self._closed.update(queue)
+        return None, came_from
+
+    def _flip(self, unknown: str, came_from: Mapping[str, str | None]) -> None:
         free: str | None = unknown
         while free is not None:
             key = came_from[free]
+            assert key is not None  # a path begins at a relation
             previous = self.unknown_of.get(key)
-            self.unknown_of[key] = free
-            self.relation_of[free] = key
+            self._put(self.unknown_of, key, free)
+            self._put(self.relation_of, free, key)
             free = previous
 
     def idle(self) -> list[str]:

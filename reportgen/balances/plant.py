@@ -10,12 +10,24 @@ from reportgen.balances.kinds import Kind, kinds
 from reportgen.balances.zeros import StreamGroup, conflicts, same_zero
 from reportgen.errors import Fault, InputError
 
-__all__ = ["EquipmentDefinition", "Piece", "Plant", "Train", "balance_groups", "pieces_of", "refuse_half_elevations"]
+__all__ = [
+    "EquipmentDefinition",
+    "Piece",
+    "Plant",
+    "Train",
+    "alternatives",
+    "balance_groups",
+    "pieces_of",
+    "port_faults",
+    "refuse_half_elevations",
+]
 
 
 @dataclass(frozen=True)
 class EquipmentDefinition:
-    """One piece: its kind, the state ids at each port, and the kind's groups (``{"heat_ports": [{}, {}]}``)."""
+    """One piece or process: its kind, the state ids at each port, the kind's groups (``{"heat_ports": [{}, {}]}``)
+    and choices.
+    """
 
     kind: str
     ports: Mapping[str, tuple[str, ...]]
@@ -24,11 +36,20 @@ class EquipmentDefinition:
 
 @dataclass(frozen=True)
 class Train:
-    """Pieces that have one account; ``alternative_to`` names the train it could stand in the place of."""
+    """Pieces, or processes of closed systems, that have one account.
+
+    ``alternative_to`` names the train it could stand in the place of.
+    """
 
     title: str
-    equipment: tuple[str, ...]
+    equipment: tuple[str, ...] = ()
     alternative_to: str | None = None
+    processes: tuple[str, ...] = ()
+
+    @property
+    def members(self) -> tuple[str, ...]:
+        """Tags of all that belongs to it."""
+        return self.equipment or self.processes
 
 
 @dataclass(frozen=True)
@@ -39,10 +60,11 @@ class Plant:
     states: Mapping[str, str]
     equipment: Mapping[str, EquipmentDefinition] = field(default_factory=dict)
     trains: Mapping[str, Train] = field(default_factory=dict)
+    processes: Mapping[str, EquipmentDefinition] = field(default_factory=dict)
 
 
 class Piece:
-    """One piece of equipment as its kind sees it: names of its values, its states and their fluids."""
+    """One piece of equipment, or one process, as its kind sees it: names of its values, its states and their fluids."""
 
     def __init__(self, tag: str, kind: Kind, definition: EquipmentDefinition, plant: Plant, given: frozenset[str]):
         self.tag = tag
@@ -51,7 +73,7 @@ class Piece:
         self.given = given
         #: Velocities and elevations that count in the energy of a stream: given ones, and those a kind solves for.
         self.carried = frozenset(path for path in given if path.endswith((".velocity", ".elevation")))
-        self.owner = f"equipment.{tag}"
+        self.owner = f"{kind.family}.{tag}"
         self._plant = plant
         self._ports = {name: tuple(states) for name, states in definition.ports.items()}
 
@@ -62,7 +84,7 @@ class Piece:
 
     def path(self, name: str) -> str:
         """Path of a value of this piece."""
-        return f"equipment.{self.tag}.{name}"
+        return f"{self.owner}.{name}"
 
     def states(self, port: str) -> tuple[str, ...]:
         """State ids at a port, in the order of the file."""
@@ -99,11 +121,17 @@ class Piece:
 
     def choice(self, name: str) -> str:
         """The word chosen for one of the kind's choices."""
+        return self.choices(name, 1)[0]
+
+    def choices(self, name: str, count: int) -> list[str]:
+        """The words chosen for one of the kind's choices, one for each of so many states."""
         values = next(choice.values for choice in self.kind.choices if choice.name == name)
-        return str(self.options.get(name) or values[0])
+        chosen = self.options.get(name) or values[0]
+        return [str(chosen)] * count if isinstance(chosen, str) else [str(word) for word in chosen]
 
 
-def _ports_of(piece: Piece, definition: EquipmentDefinition, plant: Plant) -> list[Fault]:
+def port_faults(piece: Piece, definition: EquipmentDefinition, plant: Plant) -> list[Fault]:
+    """What is wrong with the states at the ports of a piece or process."""
     faults = []
     known = {port.name: port for port in piece.kind.ports}
     for name, states in definition.ports.items():
@@ -187,11 +215,11 @@ def _shared_states(pieces: Mapping[str, Piece], plant: Plant) -> list[Fault]:
 
 
 def alternatives(plant: Plant, first: str, second: str) -> bool:
-    """True when two pieces stand in trains that replace each other."""
+    """True when two pieces, or two processes, stand in trains that replace each other."""
 
     def root(tag: str) -> tuple[str | None, str | None]:
         for name, train in plant.trains.items():
-            if tag in train.equipment:
+            if tag in train.members:
                 return name, train.alternative_to or name
         return None, None
 
@@ -214,7 +242,7 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
             faults.append(Fault("Unknown kind.", place, found=definition.kind, expected=", ".join(registry)))
             continue
         piece = Piece(tag, kind, definition, plant, given)
-        found = _ports_of(piece, definition, plant)
+        found = port_faults(piece, definition, plant)
         faults += found
         if not found and not faults:
             faults += conflicts(piece.title, piece.owner, _stream_groups(piece))

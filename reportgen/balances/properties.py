@@ -18,6 +18,7 @@ PAIRS = (
     ("pressure", "subcooling"),
     ("pressure", "specific_enthalpy"),
     ("pressure", "specific_entropy"),
+    ("pressure", "specific_internal_energy"),
     ("pressure", "temperature"),
     ("pressure", "density"),
     ("pressure", "specific_volume"),
@@ -30,6 +31,10 @@ PAIRS = (
     ("specific_volume", "specific_enthalpy"),
     ("density", "specific_entropy"),
     ("specific_volume", "specific_entropy"),
+    ("density", "specific_internal_energy"),
+    ("specific_volume", "specific_internal_energy"),
+    ("temperature", "specific_internal_energy"),
+    ("specific_internal_energy", "specific_entropy"),
 )
 
 _carried: dict[tuple[type, tuple[str, str]], bool] = {}

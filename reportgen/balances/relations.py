@@ -259,7 +259,7 @@ class Formula:
     ``evaluate`` takes the inputs in order. ``inverses`` give an input in closed form: they take the arrays in the
     order of ``inputs`` with the output in the place of the input asked for. ``solvable_inputs`` are the inputs the
     relation may be solved for in any way (None: all). ``fluids`` are the fluids whose properties it uses. ``reason``
-    says why the value may be missing.
+    says why the value may be missing. ``written`` gives the LaTeX from values where it depends on them. ``slopes`` gives the derivatives by each input where differences would not do.
     """
 
     key: str
@@ -275,6 +275,8 @@ class Formula:
     solvable_inputs: tuple[str, ...] | None = None
     fluids: tuple[str, ...] = ()
     reason: str = ""
+    slopes: Callable[..., Sequence[Array]] | None = None
+    written: Callable[[Mapping[str, Array]], str] | None = None
 
     @property
     def variables(self) -> tuple[str, ...]:
@@ -286,9 +288,10 @@ class Formula:
         """The paths the relation may be solved for."""
         return (self.output, *(self.inputs if self.solvable_inputs is None else self.solvable_inputs))
 
-    def balanced(self) -> Equation:
-        """The equation as it stands."""
-        return self._equation(self.output, self.latex, self.evaluate, self.inputs)
+    def balanced(self, values: Mapping[str, Array] | None = None) -> Equation:
+        """The equation as it stands; with ``values`` in the form that suits them."""
+        latex = self.latex if self.written is None or values is None else self.written(values)
+        return self._equation(self.output, latex, self.evaluate, self.inputs)
 
     def turned(self, path: str) -> Equation:
         """The equation written for an input that has an inverse."""
@@ -321,7 +324,8 @@ class Default:
     It adds ``relation`` to the network, and rewrites the relations named in ``rewrites`` (a valve without heat exchange
     keeps its enthalpy, whatever its flow). ``rank``: lower ones are tried first: 0 a valve without heat exchange,
     1 pressures that are kept, 2 pressures of mixed streams, 3 other heats and powers. Pressure losses come before the
-    heat of exchangers, since nobody means a pressure to be found from a temperature and an enthalpy.
+    heat of exchangers, since nobody means a pressure to be found from a temperature and an enthalpy. ``only_for``: the
+    one variable of the relation that it may be taken for (None: any).
     """
 
     key: str
@@ -331,6 +335,7 @@ class Default:
     relation: Relation
     rewrites: Mapping[str, Callable[[Any], Relation]] = field(default_factory=dict)
     rank: int = 3
+    only_for: str | None = None
 
 
 @dataclass(frozen=True)
@@ -362,8 +367,8 @@ class Exchange:
 class Stretch:
     """How a stream changes from one state to another.
 
-    ``along``: ``"enthalpy"`` (enthalpy changes evenly with ln p, or at constant pressure) or ``"entropy"`` (entropy
-    changes evenly with ln p). ``role`` names the stream; ``mixing`` marks a line that only joins two states.
+    ``along`` is one of :mod:`reportgen.balances.curves`. ``role`` names the stream; ``mixing`` marks a line that only
+    joins two states.
     """
 
     role: str

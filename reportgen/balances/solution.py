@@ -9,9 +9,10 @@ from typing import Any, Literal
 import numpy as np
 from numpy.typing import NDArray
 
+from reportgen.balances.curves import states_between
 from reportgen.balances.doubts import Doubt
 from reportgen.balances.plant import Piece, Plant
-from reportgen.balances.relations import Equation
+from reportgen.balances.relations import Equation, Stretch
 from reportgen.errors import Fault
 
 __all__ = ["Account", "Assumption", "Curve", "Entry", "Solution", "Step"]
@@ -21,9 +22,10 @@ __all__ = ["Account", "Assumption", "Curve", "Entry", "Solution", "Step"]
 class Step:
     """One step of the working.
 
-    ``owner`` is ``states.<id>``, ``equipment.<tag>``, ``trains.<id>``, ``total`` or ``fluids.<id>``. ``uses`` holds
-    the paths of the values it starts from; a step that rests on a property model also lists ``fluids.<id>``, one that
-    rests on an assumption of the program's own ``assumptions.<id>``. ``equations`` are templates with ⟦path⟧ tokens.
+    ``owner`` is ``states.<id>``, ``equipment.<tag>``, ``processes.<tag>``, ``trains.<id>``, ``total``, ``closed`` or
+    ``fluids.<id>``. ``uses`` holds the paths of the values it starts from; a step that rests on a property model also
+    lists ``fluids.<id>``, one that rests on an assumption of the program's own ``assumptions.<id>``. ``equations`` are
+    templates with ⟦path⟧ tokens.
     """
 
     key: str
@@ -43,17 +45,20 @@ class Step:
 
 @dataclass(frozen=True)
 class Assumption:
-    """An assumption the program took because nothing else determined a value."""
+    """An assumption the program took because nothing else determined a value, or because the kind of process says so."""
 
     id: str
     text: str
     owner: str
     affects: tuple[str, ...]
+    basis: str = "not stated in the file"
 
 
 @dataclass(frozen=True)
 class Entry:
-    """One line of an entropy account: side, words, path of the value, and its amount [W/K], shape (N,).
+    """One line of an entropy account: side, words, path of the value, and its amount, shape (N,).
+
+    The amount is a rate [W/K] for equipment and an entropy [J/K] for processes of closed systems.
 
     ``sign`` −1 says that the amount is the value of the path with the sign turned (heat that leaves).
     """
@@ -67,7 +72,10 @@ class Entry:
 
 @dataclass(frozen=True)
 class Account:
-    """Entropy account of a piece, a train or the whole plant: what enters and is generated equals what leaves."""
+    """Entropy account of a piece, a process, a train or the whole: what enters and is generated equals what leaves.
+
+    For closed systems ``inlets`` are the states in the beginning and ``outlets`` those in the end.
+    """
 
     owner: str
     title: str
@@ -108,6 +116,7 @@ class Solution:
     ``values``: path to samples; phases are arrays of text. ``reasons``: why a value is NaN in the base case.
     ``states``: state id to the property model's own State. ``accounts``: by owner (``equipment.X``, ``trains.T``,
     ``total``). ``warnings``: faults that do not stop the evaluation, each with its path: what has no value and why.
+    ``closed``: owners of sums over processes. ``mixtures``: fluids whose composition follows from masses.
     ``doubts``: values that could come out where they cannot be meant. ``lacking``: path of a value that is NaN in the
     base case to the paths it would have been made from.
     """
@@ -123,34 +132,29 @@ class Solution:
     lacking: dict[str, tuple[str, ...]] = field(default_factory=dict)
     doubts: list[Doubt] = field(default_factory=list)
     states: dict[str, Any] = field(default_factory=dict)
+    processes: Mapping[str, Piece] = field(default_factory=dict)
+    mixtures: Any = None
+    closed: set[str] = field(default_factory=set)
 
     def curves(self, points: int = 41) -> list[Curve]:
-        """The way of every stream through its piece of equipment, base case."""
-        return [
-            self._curve(tag, stretch.role, stretch.start, stretch.end, stretch.along, stretch.mixing, points)
-            for tag, piece in self.pieces.items()
-            for stretch in piece.kind.stretches(piece)
-        ]
+        """The way of every stream through its piece of equipment, and of every process, base case."""
+        members = [*self.pieces.items(), *self.processes.items()]
+        return [self._curve(tag, stretch, points) for tag, piece in members for stretch in piece.kind.stretches(piece)]
 
-    def _curve(self, tag: str, role: str, start: str, end: str, along: str, mixing: bool, points: int) -> Curve:
-        def ends(name: str) -> tuple[float, float]:
-            return float(self.values[f"states.{start}.{name}"][0]), float(self.values[f"states.{end}.{name}"][0])
-
-        fluid = self.plant.fluids[self.plant.states[start]]
-        (first, last), changing = ends("pressure"), f"specific_{along}"
-        share = np.linspace(0.0, 1.0, points)
-        pressure = first * (last / first) ** share
-        other = np.linspace(*ends(changing), points)
-        state = fluid.at(errors="mask", pressure=pressure, **{changing: other})
+    def _curve(self, tag: str, stretch: Stretch, points: int) -> Curve:
+        fluid = self.plant.fluids[self.plant.states[stretch.start]]
+        names = ("pressure", "temperature", "specific_volume", "specific_enthalpy", "specific_entropy")
+        first, last = (
+            {name: float(self.values[f"states.{state}.{name}"][0]) for name in names}
+            for state in (stretch.start, stretch.end)
+        )
+        drawn = states_between(fluid, first, last, stretch.along, points)
         return Curve(
             tag,
-            role,
-            self.plant.states[start],
-            start,
-            end,
-            mixing,
-            np.asarray(state.specific_entropy, float),
-            np.asarray(state.temperature, float),
-            pressure,
-            np.asarray(state.specific_enthalpy, float),
+            stretch.role,
+            self.plant.states[stretch.start],
+            stretch.start,
+            stretch.end,
+            stretch.mixing,
+            *drawn.values(),
         )

@@ -9,14 +9,19 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from reportgen.balances.accounting import add_results
+from reportgen.balances.coupled import Coupled
 from reportgen.balances.doubts import Doubt, doubts
-from reportgen.balances.newton import Coupled, NoSolution
+from reportgen.balances.network import PROPERTIES, AnyRelation, Block, Network, PropertyRelation
+from reportgen.balances.newton import NoSolution, solve_system
 from reportgen.balances.plant import Plant, balance_groups, pieces_of, refuse_half_elevations
+from reportgen.balances.processes.accounting import add_process_results
+from reportgen.balances.processes.definitions import processes_of
+from reportgen.balances.processes.mixing import Mixtures
 from reportgen.balances.properties import known_pair, state_from, what_would_do, why_missing
 from reportgen.balances.relations import Balance, Equation, Formula, token
 from reportgen.balances.solution import Assumption, Solution, Step
 from reportgen.balances.starts import Starts
-from reportgen.balances.structure import PROPERTIES, AnyRelation, Block, Network, PropertyRelation, build_network
+from reportgen.balances.structure import build_network
 from reportgen.errors import Fault, SolutionError
 from reportgen.names import NAMES
 
@@ -43,7 +48,7 @@ REPORTED = (
 )
 #: Properties whose line is shown in the working of a state.
 _SHOWN = ("pressure", "temperature", "specific_enthalpy", "specific_entropy", "density")
-_ESSENTIAL = ("power", "heat", "duty")
+_ESSENTIAL = ("power", "heat", "duty", "work")
 
 
 def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
@@ -68,12 +73,17 @@ def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
     values: dict[str, NDArray[Any]] = {
         path: np.array(np.broadcast_to(np.asarray(value, dtype=float), (columns,))) for path, value in givens.items()
     }
-    pieces = pieces_of(plant, frozenset(values))
+    given = frozenset(values)
+    pieces, processes = pieces_of(plant, given), processes_of(plant, given)
     refuse_half_elevations(pieces, values)
-    network = build_network(plant, pieces, frozenset(values))
-    solution = Solution(plant, pieces, values)
+    mixtures = Mixtures(plant, processes)
+    every = {**pieces, **{piece.owner: piece for piece in processes.values()}}
+    network = build_network(plant, every, given, mixtures.masses)
+    solution = Solution(plant, pieces, values, processes=processes, mixtures=mixtures)
     _Run(solution, network, columns).blocks()
+    mixtures.refuse_other_compositions(values)
     add_results(solution, network)
+    add_process_results(solution)
     solution.doubts.extend(doubts(solution))
     return solution
 
@@ -88,7 +98,8 @@ class _Run:
         self.columns = columns
         self.network = network
         self.assumed = network.assumed
-        self.starts = Starts(self.plant, solution.pieces, self.values)
+        every = [*solution.pieces.values(), *solution.processes.values()]
+        self.starts = Starts(self.plant, every, self.values)
         self.needed = _needed(network.blocks)
         self.simultaneous = 0
         #: States whose pressure was found from temperature and enthalpy, which hardly depend on it in a single phase.
@@ -116,7 +127,7 @@ class _Run:
         if len(owners) == 1 and (state := next(iter(owners))):
             known = [name for name in PROPERTIES if f"states.{state}.{name}" in self.values]
             pair = known_pair(self.plant.fluids[self.plant.states[state]], known)
-            if pair:
+            if pair and ("pressure" in pair or not self._is_ambiguous(state, pair)):
                 self._state(state, pair)
                 return
         relation, unknown = block.relations[0], block.unknowns[0]
@@ -127,10 +138,18 @@ class _Run:
             return
         self._together(block)
 
+    def _is_ambiguous(self, state: str, pair: tuple[str, str]) -> bool:
+        """Whether a known pair gives no one state in the base case: then the nearest in the plant is looked for."""
+        fluid = self.plant.fluids[self.plant.states[state]]
+        inputs = {name: self.values[f"states.{state}.{name}"][:1] for name in pair}
+        if not np.isfinite(list(inputs.values())).all():
+            return False
+        return not np.isfinite(state_from(fluid, pair, inputs).specific_enthalpy[0])
+
     def _state(self, state: str, pair: tuple[str, str]) -> None:
         """All properties of a state from two of them."""
         fluid_id = self.plant.states[state]
-        fluid = self.plant.fluids[fluid_id]
+        fluid = self.solution.mixtures.model(fluid_id, self.values)
         prefix = f"states.{state}."
         inputs = {name: self.values[prefix + name] for name in pair}
         result = state_from(fluid, pair, inputs)
@@ -201,7 +220,7 @@ class _Run:
     def _caloric(self, relation: PropertyRelation, unknown: str) -> None:
         """Enthalpy from temperature or the reverse, for an ideal gas whose pressure is not known yet."""
         fluid_id = self.plant.states[relation.state]
-        fluid = self.plant.fluids[fluid_id]
+        fluid = self.solution.mixtures.model(fluid_id, self.values)
         (known,) = (path for path in relation.variables if path != unknown)
         name, given = (path.rsplit(".", 1)[-1] for path in (unknown, known))
         ambient = self.values["surroundings.pressure"]
@@ -239,7 +258,7 @@ class _Run:
                 equation = relation.solved(unknown)
             elif isinstance(relation, Formula) and relation.output == unknown:
                 result = relation.evaluate(*(self.values[path] for path in relation.inputs))
-                equation, fluids = relation.balanced(), relation.fluids
+                equation, fluids = relation.balanced(self.values), relation.fluids
             elif isinstance(relation, Formula) and unknown in relation.inverses:
                 inputs = relation.turned_inputs(unknown)
                 result = relation.inverses[unknown].evaluate(*(self.values[path] for path in inputs))
@@ -288,11 +307,13 @@ class _Run:
 
     def _together(self, block: Block) -> None:
         """Solve several relations at once."""
-        problem = Coupled(block.relations, block.unknowns, self.values, self._fluid_of)
+        problem = Coupled(
+            block.relations, block.unknowns, self.values, self.plant.states.__getitem__, self.solution.mixtures.model
+        )
         try:
-            found = problem.solve(self.starts.attempts(problem.tears), self.columns)
+            found = solve_system(problem, self.starts.attempts(problem.tears), self.columns)
         except NoSolution as failure:
-            raise SolutionError(self._unsolved(block, failure)) from None
+            raise SolutionError(self._unsolved(block, problem, failure)) from None
         lost = int(np.isnan(np.array([found[path] for path in block.unknowns])).any(axis=0).sum())
         if lost:
             text = f"{lost} of {self.columns} columns of the relations solved together did not converge."
@@ -359,14 +380,18 @@ class _Run:
             ):
                 self.doubtful.add(relation.state)
 
-    def _unsolved(self, block: Block, failure: NoSolution) -> Fault:
+    def _unsolved(self, block: Block, problem: Coupled, failure: NoSolution) -> Fault:
         relations = ", ".join(relation.key for relation in block.relations[:8])
         more = f" and {len(block.relations) - 8} more" if len(block.relations) > 8 else ""
         known = dict.fromkeys(
             path for relation in block.relations for path in relation.variables if path in self.values
         )
+        closest = ""
+        if failure.worst is not None and np.isfinite(failure.imbalance):
+            key = problem.residuals[failure.worst].key
+            closest = f" At the closest, {key} is {failure.imbalance:.2g} of its terms from holding."
         return Fault(
-            f"The relations {relations}{more} have no common solution that could be found: {failure.reason}.",
+            f"The relations {relations}{more} have no common solution that could be found: {failure.reason}.{closest}",
             failure.paths[0] if failure.paths else block.unknowns[0],
             numbers=self._numbers(list(known)[:8]),
             hint=f"Unknown together: {', '.join(failure.paths)}.",
@@ -374,9 +399,6 @@ class _Run:
 
     def _numbers(self, paths: Iterable[str]) -> tuple[tuple[str, float], ...]:
         return tuple((path, float(self.values[path][0])) for path in paths if np.isfinite(self.values[path][0]))
-
-    def _fluid_of(self, state: str) -> Any:
-        return self.plant.fluids[self.plant.states[state]]
 
 
 def _neglected(solution: Solution) -> list[Assumption]:

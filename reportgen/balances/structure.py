@@ -2,85 +2,26 @@
 
 from __future__ import annotations
 
-from collections.abc import Container, Iterable, Mapping
-from dataclasses import dataclass, field
+from collections.abc import Callable, Container, Iterable, Iterator, Mapping
 
+from reportgen.balances.freedom import may_be_given, refuse_excess, refuse_ill_posed, refuse_lack
 from reportgen.balances.matching import Matching, blocks_in_order
+from reportgen.balances.network import (
+    AMOUNTS,
+    FLOWS,
+    PROPERTIES,
+    SURROUNDINGS,
+    AnyRelation,
+    Block,
+    Network,
+    PropertyRelation,
+    owner_of,
+)
 from reportgen.balances.plant import Piece, Plant
 from reportgen.balances.relations import Balance, Default, Relation, Term
-from reportgen.errors import Fault, InputError, SolutionError
+from reportgen.errors import Fault, InputError
 
-__all__ = ["PROPERTIES", "Block", "Network", "PropertyRelation", "build_network"]
-
-#: Properties that may be given for a state. The first four are unknowns of every state.
-PROPERTIES = (
-    "pressure",
-    "specific_enthalpy",
-    "temperature",
-    "specific_entropy",
-    "quality",
-    "density",
-    "specific_volume",
-    "superheat",
-    "subcooling",
-)
-FLOWS = ("mass_flow", "volume_flow", "molar_flow")
-OF_STATES = (*PROPERTIES, *FLOWS, "velocity", "elevation")
-SURROUNDINGS = ("surroundings.temperature", "surroundings.pressure")
-
-
-@dataclass(frozen=True)
-class PropertyRelation:
-    """One property of a state as a function of pressure and specific enthalpy; of an ideal gas, the temperature
-    as a function of specific enthalpy alone.
-    """
-
-    state: str
-    output: str
-    inputs: tuple[str, ...] = ("pressure", "specific_enthalpy")
-
-    @property
-    def key(self) -> str:
-        """Name of the relation."""
-        return f"{self.path}.of_state"
-
-    @property
-    def path(self) -> str:
-        """Path of the property."""
-        return f"states.{self.state}.{self.output}"
-
-    @property
-    def variables(self) -> tuple[str, ...]:
-        """Property and what it is a function of."""
-        return (self.path, *(f"states.{self.state}.{name}" for name in self.inputs))
-
-    @property
-    def solvable(self) -> tuple[str, ...]:
-        """Any of them."""
-        return self.variables
-
-
-AnyRelation = Relation | PropertyRelation
-
-
-@dataclass(frozen=True)
-class Block:
-    """Relations that are solved together, and the unknowns they give."""
-
-    relations: tuple[AnyRelation, ...]
-    unknowns: tuple[str, ...]
-
-
-@dataclass
-class Network:
-    """Relations in the order of solution, assumptions taken, and what the order leaves out."""
-
-    blocks: list[Block]
-    defaults: list[Default]
-    unknowns: list[str]
-    implied: list[Balance] = field(default_factory=list)
-    #: Key of a relation to the assumption that added or rewrote it.
-    assumed: dict[str, Default] = field(default_factory=dict)
+__all__ = ["all_relations", "build_network"]
 
 
 def state_properties(state: str, known: Container[str], flows: Iterable[str]) -> list[str]:
@@ -111,6 +52,21 @@ def _flow_relations(plant: Plant, state: str, flows: Iterable[str]) -> list[Bala
         key, basis = f"{owner}.molar_flow.definition", "definition of molar mass"
         found.append(Balance(key, owner, "Molar flow", sentence, basis, terms))
     return found
+
+
+def _volume(state: str) -> Balance:
+    """V = m v of an amount."""
+    mass, volume, specific = (f"states.{state}.{name}" for name in ("mass", "volume", "specific_volume"))
+    return Balance(
+        f"{volume}.definition",
+        f"states.{state}",
+        "Volume",
+        f"State {state}: the volume is the mass times the specific volume.",
+        "definition of specific volume",
+        (Term(1.0, (mass, specific)), Term(-1.0, (volume,))),
+        {},
+        {mass: f"State {state}: the mass is the volume over the specific volume."},
+    )
 
 
 def _is_mass_balance(relation: AnyRelation) -> bool:
@@ -159,43 +115,63 @@ def _split_implied(relations: list[AnyRelation]) -> tuple[list[AnyRelation], lis
     return kept, implied
 
 
-def all_relations(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> list[AnyRelation]:
+def all_relations(
+    plant: Plant,
+    pieces: Mapping[str, Piece],
+    given: frozenset[str],
+    masses_of: Callable[[str], tuple[str, ...]] = lambda fluid: (),
+) -> list[AnyRelation]:
+    """Relations of all states, then of all pieces and processes; ``masses_of`` as for ``build_network``."""
     connected = {state for piece in pieces.values() for _, _, state in piece.connections()}
-    of_pieces = [relation for piece in pieces.values() for relation in piece.kind.relations(piece)]
+    closed = {state for piece in pieces.values() if piece.kind.family == "processes" for state in _states_of(piece)}
+    closed.update(state for state in plant.states for name in AMOUNTS if f"states.{state}.{name}" in given)
+    of_pieces: list[Relation] = [relation for piece in pieces.values() for relation in piece.kind.relations(piece)]
+    of_pieces += [_volume(state) for state in plant.states if state in closed]
     known = given.union(path for relation in of_pieces for path in relation.variables)
     relations: list[AnyRelation] = []
-    for state in plant.states:
+    for state, fluid in plant.states.items():
         flows = [name for name in FLOWS if f"states.{state}.{name}" in given]
+        beside = masses_of(fluid)
         for name in state_properties(state, known, flows):
-            if name == "temperature" and plant.fluids[plant.states[state]].kind == "ideal-gas":
-                relations.append(PropertyRelation(state, name, ("specific_enthalpy",)))
+            if name in _CALORIC and plant.fluids[fluid].kind == "ideal-gas":
+                relations.append(PropertyRelation(state, name, ("specific_enthalpy",), beside))
             elif name not in ("pressure", "specific_enthalpy"):
-                relations.append(PropertyRelation(state, name))
+                relations.append(PropertyRelation(state, name, beside=beside))
         if flows or state in connected:
             relations += _flow_relations(plant, state, flows)
     return [*relations, *of_pieces]
 
 
+#: What follows from the specific enthalpy of an ideal gas alone.
+_CALORIC = ("temperature", "specific_internal_energy")
+
+
+def _states_of(piece: Piece) -> list[str]:
+    return [state for _, _, state in piece.connections()]
+
+
 def _check_names(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> None:
     """InputError for given paths that name nothing in the plant, and for surroundings that are missing."""
-    known = set(SURROUNDINGS)
-    for state in plant.states:
-        known.update(f"states.{state}.{name}" for name in OF_STATES)
-    for piece in pieces.values():
-        known.update(piece.path(parameter.name) for parameter in piece.kind.parameters)
-        for group in piece.kind.groups:
-            for number in range(1, piece.count(group.name) + 1):
-                known.update(piece.path(f"{group.name}.{number}.{part.name}") for part in group.parameters)
+    known = {*SURROUNDINGS, *may_be_given(plant.states, pieces)}
     faults = [Fault("Nothing in the plant has this name.", path) for path in sorted(given - known)]
     faults += [Fault("The surroundings must be given.", path) for path in SURROUNDINGS if path not in given]
     if faults:
         raise InputError(faults)
 
 
-def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[str]) -> Network:
-    """Relations, assumptions and order of solution; SolutionError when too little or too much is given."""
+def build_network(
+    plant: Plant,
+    pieces: Mapping[str, Piece],
+    given: frozenset[str],
+    masses_of: Callable[[str], tuple[str, ...]] = lambda fluid: (),
+) -> Network:
+    """Relations, assumptions and order of solution; SolutionError when too little or too much is given.
+
+    ``pieces`` are equipment and processes; ``masses_of`` gives the paths of the masses that the composition of a fluid
+    follows from.
+    """
     _check_names(plant, pieces, given)
-    relations, implied = _split_implied(all_relations(plant, pieces, given))
+    relations, implied = _split_implied(all_relations(plant, pieces, given, masses_of))
     table: dict[str, AnyRelation] = {}
     matching = Matching()
     unknowns: dict[str, None] = {}
@@ -207,37 +183,40 @@ def build_network(plant: Plant, pieces: Mapping[str, Piece], given: frozenset[st
         table[relation.key] = relation
         unknowns.update((path, None) for path in relation.variables if path not in given)
         offer(matching, relation)
-    _refuse_excess(matching, table, given)
+    refuse_excess(matching, table, given)
 
     taken: list[Default] = []
     assumed: dict[str, Default] = {}
     candidates = [default for piece in pieces.values() for default in piece.kind.defaults(piece)]
     for default in sorted(candidates, key=lambda entry: entry.rank):
-        if all(path in given for path in default.relation.variables):
+        if default.only_for is not None and (default.only_for in given or not matching.is_open(default.only_for)):
             continue
-        trial = matching.copy()
-        if not offer(trial, default.relation):
-            continue
-        complete = True
         rewritten = {key: rewrite(table[key]) for key, rewrite in default.rewrites.items()}
-        for key, relation in rewritten.items():
-            trial.remove(key)
-            complete = offer(trial, relation) and complete
-        if not complete or trial.idle():
+        matching.mark()
+        if not all(offer(matching, relation) for relation in _in_place(matching, default, rewritten)):
+            matching.back()
             continue
-        matching = trial
         taken.append(default)
         table[default.relation.key] = default.relation
         table.update(rewritten)
         assumed[default.relation.key] = default
         assumed.update(dict.fromkeys(rewritten, default))
-    _refuse_lack(matching, list(unknowns), pieces)
+    refuse_lack(matching, list(unknowns), may_be_given(plant.states, pieces))
 
     blocks = [
         Block(tuple(table[key] for key in keys), tuple(matching.unknown_of[key] for key in keys))
         for keys in _solution_order(table, matching, pieces, given, assumed)
     ]
+    refuse_ill_posed(blocks, pieces, given)
     return Network(blocks, taken, list(unknowns), implied, assumed)
+
+
+def _in_place(matching: Matching, default: Default, rewritten: Mapping[str, Relation]) -> Iterator[Relation]:
+    """What a default adds, then what it rewrites, each taken out of the matching before it is offered anew."""
+    yield default.relation
+    for key, relation in rewritten.items():
+        matching.remove(key)
+        yield relation
 
 
 def _solution_order(
@@ -277,103 +256,4 @@ def _reading_order(table: Mapping[str, AnyRelation], pieces: Mapping[str, Piece]
     rank = {piece.owner: number for number, piece in enumerate(pieces.values(), start=1)}
     keys = list(table)
     assumed = {key: table[key].key.endswith(".assumed") for key in keys}
-    return sorted(keys, key=lambda key: (rank.get(_owner(table[key]), 0), not assumed[key]))
-
-
-def _refuse_excess(matching: Matching, table: Mapping[str, AnyRelation], given: frozenset[str]) -> None:
-    """SolutionError naming the givens that compete, when more is given than can hold at once."""
-    faults = []
-    covered: set[str] = set()
-    every = dict.fromkeys(path for relation in table.values() for path in relation.variables)
-    position = {path: number for number, path in enumerate(every)}
-    for key in matching.idle():
-        if key in covered:
-            continue
-        group = matching.overdetermined(key)
-        covered.update(group)
-        excess = sum(1 for other in matching.idle() if other in group)
-        paths = [path for member in group for path in table[member].solvable if path in given]
-        paths = sorted({path for path in paths if not path.startswith("surroundings.")}, key=position.__getitem__)
-        owners = sorted({_owner(table[member]) for member in group})
-        number = "one value" if excess == 1 else f"{excess} values"
-        if paths:
-            faults.append(
-                Fault(
-                    f"More is given than can hold at once: {number} too many among {_listed(paths)}.",
-                    paths[-1],
-                    expected=f"{number} fewer",
-                    hint="The relations concerned are those of " + _listed(owners) + ".",
-                )
-            )
-        else:
-            faults.append(Fault("The relations of " + _listed(owners) + " contradict or repeat each other.", owners[0]))
-    if faults:
-        raise SolutionError(faults)
-
-
-def _owner(relation: AnyRelation) -> str:
-    return f"states.{relation.state}" if isinstance(relation, PropertyRelation) else relation.owner
-
-
-def _listed(items: Iterable[str], most: int = 12) -> str:
-    names = list(items)
-    text = ", ".join(names[:most])
-    return text if len(names) <= most else f"{text} and {len(names) - most} more"
-
-
-#: Order in which missing quantities are proposed.
-_PROPOSED = ("mass_flow", "pressure", "temperature", "specific_enthalpy", "power", "duty", "heat")
-#: What grows with the flows and with nothing else; an isothermal efficiency is a quotient of two such.
-_EXTENSIVE = (
-    "mass_flow",
-    "volume_flow",
-    "molar_flow",
-    "power",
-    "shaft_power",
-    "heat",
-    "mechanical_heat",
-    "duty",
-    "isothermal_efficiency",
-    "inlet_area",
-    "outlet_area",
-    "throat_area",
-)
-
-
-def _refuse_lack(matching: Matching, unknowns: list[str], pieces: Mapping[str, Piece]) -> None:
-    """SolutionError naming what nothing determines, with what could be given instead."""
-    allowed = {piece.path(parameter.name) for piece in pieces.values() for parameter in piece.kind.parameters}
-    faults = []
-    position = {path: number for number, path in enumerate(unknowns)}
-    for group, missing in matching.undetermined(unknowns):
-        members = sorted(group, key=position.__getitem__)
-        name_of = {path: path.rsplit(".", 1)[-1] for path in members}
-        open_states = [path for path in members if path.startswith("states.")]
-        number = "one more value" if missing == 1 else f"{missing} more independent values"
-        candidates = [
-            path
-            for path in members
-            if path in allowed or ".heat_ports." in path or (path.startswith("states.") and name_of[path] in OF_STATES)
-        ]
-        candidates.sort(key=lambda path: _PROPOSED.index(name_of[path]) if name_of[path] in _PROPOSED else 99)
-        if all(name_of[path] in _EXTENSIVE for path in members):
-            flows = [path for path in members if name_of[path] == "mass_flow"]
-            if flows:
-                states = _listed(path.split(".")[1] for path in flows)
-                message = f"Nothing fixes the flow of {'state' if len(flows) == 1 else 'states'} {states}."
-            else:
-                message = f"Nothing determines {_listed(members)}."
-        elif len({path.split(".")[1] for path in open_states}) == 1 and len(open_states) == len(members):
-            state = open_states[0].split(".")[1]
-            message = f"State {state} is not fixed: {number} of its properties must be known."
-        else:
-            message = f"Nothing determines {_listed(candidates or members)}."
-        faults.append(
-            Fault(
-                message,
-                (candidates or members)[0],
-                expected=f"{number}, for example {' or '.join(candidates[:4])}" if candidates else number,
-            )
-        )
-    if faults:
-        raise SolutionError(faults)
+    return sorted(keys, key=lambda key: (rank.get(owner_of(table[key]), 0), not assumed[key]))

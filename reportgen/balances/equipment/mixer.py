@@ -37,12 +37,23 @@ from reportgen.balances.relations import (
     token,
 )
 
+#: Inlet pressures closer than this part of each other are equal.
+_ROUNDING = 1e-9
+
 
 def lowest(pressures: Any) -> Any:
     """Smallest of several arrays, element by element."""
     import numpy as np
 
     return np.min(np.broadcast_arrays(*pressures), axis=0)
+
+
+def _shares(pressures: Any) -> Any:
+    """Derivatives of the smallest by each: 1 for one of the smallest, 0 for all others, whatever the others are."""
+    import numpy as np
+
+    smallest = np.argmin(np.broadcast_arrays(*pressures), axis=0)
+    return [(smallest == number).astype(float) for number in range(len(pressures))]
 
 
 def relations(piece: Piece) -> list[Relation]:
@@ -71,10 +82,30 @@ def outlet_pressure(piece: Piece, pressures: tuple[str, ...]) -> Formula:
                 lambda left, *entering: lowest(entering) - left,
                 rf"{smallest} - {token(leaving)}",
                 f"{piece.title}: the pressures give the pressure loss.",
-            )
+            ),
+            **{path: _inlet_pressure(piece, path, pressures) for path in pressures},
         },
-        solvable_inputs=(drop,),
+        reason="another stream enters at a lower pressure than the outlet has with the loss added",
+        slopes=lambda loss, *entering: [-1.0 + 0.0 * loss, *_shares(entering)],
     )
+
+
+def _inlet_pressure(piece: Piece, path: str, pressures: tuple[str, ...]) -> Inverse:
+    """p_i = p_out + Δp, for the inlet with the lowest pressure."""
+    leaving, drop = f"states.{piece.one('outlet')}.pressure", piece.path("pressure_drop")
+    place = pressures.index(path)
+
+    def evaluate(loss: Any, *entering: Any) -> Any:
+        import numpy as np
+
+        found = entering[place] + loss
+        others = [pressure for number, pressure in enumerate(entering) if number != place]
+        above = np.all([found <= other * (1.0 + _ROUNDING) for other in others], axis=0) if others else True
+        return np.where(above, found, np.nan)
+
+    state = path.split(".")[1]
+    sentence = f"{piece.title}: stream {state}, of the lowest pressure, enters at that of the outlet and the loss."
+    return Inverse(evaluate, rf"{token(leaving)} + {token(drop)}", sentence)
 
 
 def defaults(piece: Piece) -> list[Default]:
@@ -93,7 +124,7 @@ def defaults(piece: Piece) -> list[Default]:
             return outlet_pressure(piece, others or (left_out,))
 
         rewrites = {piece.path("pressure_drop.relation"): without}
-        found.append(Default(key, piece.owner, sentence, (entering,), equal, rewrites, rank=2))
+        found.append(Default(key, piece.owner, sentence, (entering,), equal, rewrites, rank=2, only_for=entering))
     return found
 
 

@@ -161,6 +161,7 @@ KIND = Kind(
     groups=(HEAT_PORTS,),
     reports=("isentropic_outlet_enthalpy", "mach_number", "throat_pressure"),
     velocities=velocities,
+    lifts=-1,
     doubts=doubts,
     exergetic_efficiency="Exergy and kinetic energy that leave over those that enter.",
     entropy_generation_number="Entropy generation over flow times specific gas constant.",

@@ -58,6 +58,7 @@ KIND = Kind(
     results=results,
     heats=heat_ports,
     groups=(HEAT_PORTS,),
+    lifts=-1,
     stretches=lambda piece: stream_stretches(piece, "enthalpy"),
     exergetic_efficiency="Exergy of the stream that leaves over exergy of the stream that enters.",
     entropy_generation_number="Entropy generation over flow times specific gas constant.",
