@@ -9,133 +9,58 @@ through one has no entropy that could be stated: the entropy generation of that 
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
-from typing import Any
+from collections.abc import Sequence
 
 import numpy as np
-from numpy.typing import NDArray
 
+from reportgen.balances.book import AMBIENT, Book
 from reportgen.balances.equations import elevated_enthalpy
 from reportgen.balances.network import Network
 from reportgen.balances.plant import Piece, balance_groups, trains_of
-from reportgen.balances.relations import Equation, Formula, HeatPort, Term, sum_latex, token
-from reportgen.balances.solution import Account, Assumption, Entry, Solution, Step
+from reportgen.balances.relations import Equation, Term, token
+from reportgen.balances.solution import Account, Entry, Solution, Step
 from reportgen.errors import Fault
 
 __all__ = ["add_results"]
 
-Array = NDArray[np.float64]
-AMBIENT = "surroundings.temperature"
-#: Heat below this part of the energy that flows through a piece is rounding, not heat.
-_ROUNDING = 1e-10
-
 
 def add_results(solution: Solution, network: Network) -> None:
     """Add every value that is only reported, with its step, to a solution whose network is solved."""
-    book = _Book(solution, {balance.owner for balance in network.implied})
+    book = _FlowBook(solution, {balance.owner for balance in network.implied})
     book.exergies()
     book.entropy_flows()
     for piece in solution.pieces.values():
         book.piece(piece)
-    groups = {f"trains.{name}": (train.title, train.equipment) for name, train in solution.plant.trains.items()}
+    trains = solution.plant.trains.items()
+    groups = {f"trains.{name}": (train.title, train.equipment) for name, train in trains if train.equipment}
     if solution.pieces:
         groups["total"] = ("Whole plant", trains_of(solution.plant, tuple(solution.pieces)))
     for owner, (title, tags) in groups.items():
         book.group(owner, title, [solution.pieces[tag] for tag in tags])
 
 
-class _Book:
-    """Adds steps and values one by one."""
+class _FlowBook(Book):
+    """The results of equipment in steady flow."""
 
     def __init__(self, solution: Solution, implied: set[str]) -> None:
-        self.solution = solution
+        super().__init__(solution)
         #: Owners of mass balances that were not needed, since they follow from the others of a closed loop.
         self.implied = implied
-        self.values = solution.values
-        self.columns = self.values[AMBIENT].size
-
-    # -- single values -------------------------------------------------------------------------------------------
-
-    def put(self, step: Step, result: Any, reason: str = "") -> Array:
-        """Enter the one value a step solves; no step is kept for a value that does not exist in the base case."""
-        array = np.array(np.broadcast_to(np.asarray(result, dtype=float), (self.columns,))) + 0.0
-        array[~np.isfinite(array)] = np.nan
-        path = step.solves[0]
-        self.values[path] = array
-        if np.isnan(array[0]):
-            self.solution.reasons.setdefault(path, self._cause(step.uses) or reason or "it has no value here")
-            self.solution.lacking.setdefault(path, step.uses)
-        else:
-            self.solution.steps.append(step)
-        return array
-
-    def _cause(self, uses: Iterable[str]) -> str:
-        """Why a value that others are made from is missing."""
-        for path in uses:
-            array = self.values.get(path)
-            if array is None and not path.startswith(("fluids.", "assumptions.")):
-                return self.solution.reasons.get(path, f"{path} has no value")
-            if array is not None and array.dtype.kind == "f" and np.isnan(array[0]):
-                return self.solution.reasons.get(path, f"{path} has no value")
-        return ""
-
-    def _array(self, path: str) -> Array:
-        return self.values.get(path, np.full(self.columns, np.nan))
-
-    def balance(
-        self,
-        path: str,
-        owner: str,
-        name: str,
-        sentence: str,
-        basis: str,
-        terms: Sequence[Term],
-        assumptions: Sequence[str] = (),
-    ) -> Array:
-        """Enter a value that is a sum of products."""
-        uses = tuple(dict.fromkeys(factor for term in terms for factor in term.factors))
-
-        def total(values: Mapping[str, Any]) -> Any:
-            return sum(term.value(values) for term in terms)
-
-        step = Step(
-            path,
-            owner,
-            name,
-            sentence,
-            basis,
-            (path,),
-            (*uses, *(f"assumptions.{key}" for key in assumptions)),
-            (Equation(token(path), sum_latex(terms), total),),
-        )
-        return self.put(step, total({factor: self._array(factor) for factor in uses}))
-
-    def formula(self, formula: Formula) -> Array:
-        """Enter the output of a formula."""
-        with np.errstate(all="ignore"):
-            result = formula.evaluate(*(self._array(path) for path in formula.inputs))
-        uses = (*formula.inputs, *(f"fluids.{fluid}" for fluid in formula.fluids))
-        step = Step(
-            formula.key,
-            formula.owner,
-            formula.name,
-            formula.sentence,
-            formula.basis,
-            (formula.output,),
-            uses,
-            (formula.balanced(),),
-        )
-        return self.put(step, result, formula.reason)
 
     # -- states --------------------------------------------------------------------------------------------------
 
     def exergies(self) -> None:
-        """Specific flow exergy of every state, relative to its fluid in the state of the surroundings."""
-        plant = self.solution.plant
-        used = dict.fromkeys(plant.states.values())
-        for fluid_id in used:
+        """Specific flow exergy of every state, relative to its fluid in the state of the surroundings.
+
+        States of closed systems alone have none: their content flows nowhere.
+        """
+        plant, solution = self.solution.plant, self.solution
+        closed = {state for piece in solution.processes.values() for _, _, state in piece.connections()}
+        closed -= {state for piece in solution.pieces.values() for _, _, state in piece.connections()}
+        flowing = {state: fluid_id for state, fluid_id in plant.states.items() if state not in closed}
+        for fluid_id in dict.fromkeys(flowing.values()):
             self._dead_state(fluid_id)
-        for state, fluid_id in plant.states.items():
+        for state, fluid_id in flowing.items():
             prefix, dead = f"states.{state}.", f"surroundings.{fluid_id}."
             h, s = prefix + "specific_enthalpy", prefix + "specific_entropy"
             h0, s0 = dead + "specific_enthalpy", dead + "specific_entropy"
@@ -150,7 +75,7 @@ class _Book:
             )
 
     def _dead_state(self, fluid_id: str) -> None:
-        fluid = self.solution.plant.fluids[fluid_id]
+        fluid = self.solution.mixtures.model(fluid_id, self.values)
         dead = f"surroundings.{fluid_id}."
         paths = ("surroundings.pressure", AMBIENT)
         state = fluid.at(errors="mask", pressure=self.values[paths[0]], temperature=self.values[paths[1]])
@@ -201,8 +126,9 @@ class _Book:
         """Imbalances, entropy with heat, entropy generation, lost work, figures of merit, account."""
         self._imbalances(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
         ports = list(piece.kind.heats(piece))
+        scale = self._scale(piece)
         for port in ports:
-            self._entropy_with_heat(piece, port)
+            self.entropy_with_heat(piece, port, scale)
         carried = piece.path("entropy_with_heat")
         if len(ports) > 1 or (ports and ports[0].entropy != carried):
             sentence = f"{piece.title}: entropy that comes with heat over all boundaries."
@@ -216,7 +142,7 @@ class _Book:
             "second law, steady flow",
             [*_entropy_terms(piece), Term(-1.0, (carried,))],
         )
-        self._lost_work(piece.owner, piece.title)
+        self.lost_work(piece.owner, piece.title)
         for formula in piece.kind.results(piece):
             self.formula(formula)
         self._account(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
@@ -243,63 +169,11 @@ class _Book:
 
     def _scale(self, piece: Piece) -> float:
         """Size of the energy that flows through a piece, base case [W]."""
-        parts = [abs(float(self._array(port.heat)[0])) for port in piece.kind.heats(piece)]
+        parts = [abs(float(self.array(port.heat)[0])) for port in piece.kind.heats(piece)]
         for _, _, state in piece.connections():
             flow, enthalpy = f"states.{state}.mass_flow", f"states.{state}.specific_enthalpy"
-            parts.append(abs(float(self._array(flow)[0] * self._array(enthalpy)[0])))
+            parts.append(abs(float(self.array(flow)[0] * self.array(enthalpy)[0])))
         return float(np.nanmax(parts)) if parts else 0.0
-
-    def _entropy_with_heat(self, piece: Piece, port: HeatPort) -> None:
-        heat = self._array(port.heat)
-        temperature = port.temperature
-        basis = "definition of entropy transfer with heat"
-        assumptions: tuple[str, ...] = ()
-        sentence = f"{port.label}: heat carries its amount over the temperature of the boundary as entropy."
-        if temperature not in self.values:
-            temperature = AMBIENT
-            if not abs(heat[0]) > _ROUNDING * self._scale(piece):
-                sentence = f"{port.label}: no heat crosses the boundary, and no entropy with it."
-            elif heat[0] > 0.0:
-                reason = f"heat enters {port.label} and {port.temperature} is not stated"
-                self.values[port.entropy] = np.full(self.columns, np.nan)
-                self.solution.reasons[port.entropy] = reason
-                self.solution.lacking[port.entropy] = (port.heat,)
-                text = (
-                    f"Heat enters {port.label} through a boundary of unstated temperature; "
-                    "the entropy generation of this piece and of the totals it belongs to is not reported."
-                )
-                hint = f"State {port.temperature}."
-                self.solution.warnings.append(Fault(text, port.temperature, hint=hint))
-                return
-            else:
-                key = f"{port.heat}.leaves_at_surroundings"
-                text = f"Heat that leaves {port.label} leaves at the temperature of the surroundings."
-                self.solution.assumptions.append(Assumption(key, text, piece.owner, (port.entropy,)))
-                assumptions = (key,)
-                basis = f"assumption: {text}"
-        step = Step(
-            port.entropy,
-            piece.owner,
-            "Entropy with heat",
-            sentence,
-            basis,
-            (port.entropy,),
-            (port.heat, temperature, *(f"assumptions.{key}" for key in assumptions)),
-            (
-                Equation(
-                    token(port.entropy),
-                    rf"\frac{{{token(port.heat)}}}{{{token(temperature)}}}",
-                    lambda values: values[port.heat] / values[temperature],
-                ),
-            ),
-        )
-        self.put(step, heat / self._array(temperature))
-
-    def _lost_work(self, owner: str, title: str) -> None:
-        generated = f"{owner}.entropy_generation"
-        sentence = f"{title}: work forgone at the temperature of the surroundings."
-        basis = "Gouy–Stodola theorem"
-        self.balance(f"{owner}.lost_work", owner, "Lost work", sentence, basis, [Term(1.0, (AMBIENT, generated))])
 
     # -- groups and accounts -------------------------------------------------------------------------------------
 
@@ -324,7 +198,7 @@ class _Book:
             net = "power absorbed." if absorbs else "net power delivered, what is absorbed counted negative."
             words = f"{title}: {net}"
             self.balance(f"{owner}.power", owner, "Net power", words, "sum of the parts", powers)
-        self._lost_work(owner, title)
+        self.lost_work(owner, title)
         self._imbalances(owner, title, pieces, inlets, outlets)
         terms = [
             Term(1.0, (f"{owner}.entropy_generation",)),
@@ -342,15 +216,15 @@ class _Book:
         entries: list[Entry] = []
         for state in inlets:
             path = f"states.{state}.entropy_flow"
-            entries.append(Entry("in", f"Stream {state}", path, 1, self._array(path)))
+            entries.append(Entry("in", f"Stream {state}", path, 1, self.array(path)))
         leaving: list[Entry] = []
         for state in outlets:
             path = f"states.{state}.entropy_flow"
-            leaving.append(Entry("out", f"Stream {state}", path, 1, self._array(path)))
+            leaving.append(Entry("out", f"Stream {state}", path, 1, self.array(path)))
         complete = True
         for piece in pieces:
             for port in piece.kind.heats(piece):
-                amount = self._array(port.entropy)
+                amount = self.array(port.entropy)
                 if np.isnan(amount[0]):
                     complete = False
                 elif amount[0] < 0.0:
@@ -359,7 +233,7 @@ class _Book:
                     entries.append(Entry("in", f"Heat into {port.label}", port.entropy, 1, amount))
         for piece in pieces:
             path = piece.path("entropy_generation")
-            entries.append(Entry("generated", piece.title, path, 1, self._array(path)))
+            entries.append(Entry("generated", piece.title, path, 1, self.array(path)))
         self.solution.accounts[owner] = Account(
             owner, title, (*entries, *leaving), complete, tuple(inlets), tuple(outlets)
         )

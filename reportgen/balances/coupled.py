@@ -72,7 +72,7 @@ Model = Callable[[str, Mapping[str, Any]], Any]
 
 @dataclass(frozen=True)
 class _Bundle:
-    """States of one fluid that are evaluated from the same two properties, and, of a mixture, from the masses beside."""
+    """States of one fluid that are evaluated from the same two properties and, of a mixture, from masses beside."""
 
     fluid: str
     model: Model
@@ -200,9 +200,7 @@ class Coupled:
             pressures = np.concatenate([grid[0], pressures])
         tried = np.broadcast_arrays(pressures, seconds)
         beside = {path: [np.full(tried[0].shape, values[path][0])] for path in bundle.beside}
-        found = bundle.evaluate(
-            {name: [array] for name, array in zip(bundle.pair, tried, strict=True)} | beside
-        )
+        found = bundle.evaluate({name: [array] for name, array in zip(bundle.pair, tried, strict=True)} | beside)
         good = np.all([np.isfinite(found[name][0]) for name in self.outputs[state]], axis=0)
         if good.any():
             away = np.abs(np.log(tried[0] / abs(here[0]))) + np.abs(tried[1] - here[1]) / typical(paths[1])

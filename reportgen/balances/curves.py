@@ -1,11 +1,11 @@
 r"""The states between two states, by what stays the same or changes evenly on the way.
 
-    "enthalpy", "entropy"   h or s changes evenly with ln p
-    "pressure"              p stays the same, h changes evenly
-    "volume"                v stays the same, p changes evenly
-    "temperature"           T stays the same, s changes evenly
-    "polytrope"             ln p changes evenly with ln v
-    "straight"              the two only joined: there are no states between
+"enthalpy", "entropy"   h or s changes evenly with ln p
+"pressure"              p stays the same, h changes evenly
+"volume"                v stays the same, p changes evenly
+"temperature"           T stays the same, s changes evenly
+"polytrope"             ln p changes evenly with ln v
+"straight"              the two only joined: there are no states between
 """
 
 from __future__ import annotations

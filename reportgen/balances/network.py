@@ -43,8 +43,8 @@ SURROUNDINGS = ("surroundings.temperature", "surroundings.pressure")
 
 @dataclass(frozen=True)
 class PropertyRelation:
-    """One property of a state as a function of pressure and specific enthalpy; of an ideal gas, temperature and internal
-    energy as functions of specific enthalpy alone.
+    """One property of a state as a function of pressure and specific enthalpy; of an ideal gas, temperature and
+    internal energy as functions of specific enthalpy alone.
 
     ``beside``: paths of the masses from which the composition of a mixture follows.
     """

@@ -247,23 +247,7 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
         if not found and not faults:
             faults += conflicts(piece.title, piece.owner, _stream_groups(piece))
         pieces[tag] = piece
-    listed: dict[str, str] = {}
-    for name, train in plant.trains.items():
-        for tag in train.equipment:
-            if tag not in plant.equipment:
-                faults.append(Fault("There is no equipment of this tag.", f"trains.{name}.equipment", found=tag))
-            elif tag in listed:
-                text = f"Equipment {tag} already belongs to train {listed[tag]}."
-                faults.append(Fault(text, f"trains.{name}.equipment", found=tag))
-            listed[tag] = name
-        target = train.alternative_to
-        if target is not None and (target not in plant.trains or target == name):
-            place = f"trains.{name}.alternative_to"
-            faults.append(Fault("There is no other train of this name.", place, found=target))
-        elif target is not None and plant.trains[target].alternative_to is not None:
-            place = f"trains.{name}.alternative_to"
-            text = "The train is itself an alternative; name the train that is counted in the totals."
-            faults.append(Fault(text, place, found=target, expected=plant.trains[target].alternative_to))
+    faults += _trains(plant)
     if not faults:
         faults += _shared_states(pieces, plant)
     if faults:
@@ -275,7 +259,38 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
     return pieces
 
 
+def _trains(plant: Plant) -> list[Fault]:
+    """What is wrong with the trains: members that are not there or in two, of two families, alternatives to nothing."""
+    faults = []
+    listed: dict[str, str] = {}
+    for name, train in plant.trains.items():
+        if train.equipment and train.processes:
+            text = "A train holds equipment, whose totals are rates, or processes, whose totals are amounts."
+            faults.append(Fault(text, f"trains.{name}.processes", expected="two trains"))
+        for family, tags, known in (
+            ("equipment", train.equipment, plant.equipment),
+            ("processes", train.processes, plant.processes),
+        ):
+            for tag in tags:
+                word, place = ("equipment" if family == "equipment" else "process"), f"trains.{name}.{family}"
+                if tag not in known:
+                    faults.append(Fault(f"There is no {word} of this tag.", place, found=tag))
+                elif tag in listed:
+                    text = f"{word.capitalize()} {tag} already belongs to train {listed[tag]}."
+                    faults.append(Fault(text, place, found=tag))
+                listed[tag] = name
+        target = train.alternative_to
+        if target is not None and (target not in plant.trains or target == name):
+            place = f"trains.{name}.alternative_to"
+            faults.append(Fault("There is no other train of this name.", place, found=target))
+        elif target is not None and plant.trains[target].alternative_to is not None:
+            place = f"trains.{name}.alternative_to"
+            text = "The train is itself an alternative; name the train that is counted in the totals."
+            faults.append(Fault(text, place, found=target, expected=plant.trains[target].alternative_to))
+    return faults
+
+
 def trains_of(plant: Plant, pieces: Sequence[str]) -> tuple[str, ...]:
     """Tags that count in the totals: all but those of alternative trains."""
-    left_out = {tag for train in plant.trains.values() if train.alternative_to for tag in train.equipment}
+    left_out = {tag for train in plant.trains.values() if train.alternative_to for tag in train.members}
     return tuple(tag for tag in pieces if tag not in left_out)

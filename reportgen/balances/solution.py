@@ -45,7 +45,7 @@ class Step:
 
 @dataclass(frozen=True)
 class Assumption:
-    """An assumption the program took because nothing else determined a value, or because the kind of process says so."""
+    """An assumption the program took: nothing else determined a value, or the kind of process says so (``basis``)."""
 
     id: str
     text: str

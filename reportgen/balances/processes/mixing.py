@@ -2,9 +2,9 @@ r"""Gases that become one another's mixture when the partition between them is t
 
     ΔS_mix = −Σ_i m_i R_i Σ_k x_ik ln(x_k/x_ik)
 
-with R_i the specific gas constant of gas i, x_ik the mole fraction of species k in it and x_k that in the mixture. Gases
-of one composition have none. The calculation file names the mixture as a fluid of its own; here its composition follows
-from the masses, element by element of the sample axis, and what the file states of it is held against that.
+with R_i the specific gas constant of gas i, x_ik the mole fraction of species k in it and x_k that in the mixture.
+Gases of one composition have none. The calculation file names the mixture as a fluid of its own; here its composition
+follows from the masses, element by element of the sample axis, and what the file states of it is held against that.
 """
 
 from __future__ import annotations
@@ -73,7 +73,7 @@ class Mixtures:
         return tuple(dict.fromkeys([*(path for _, path in gases), *inner]))
 
     def model(self, fluid: str, values: Mapping[str, Any]) -> Any:
-        """Property model of a fluid; of a mixture one with a composition for each element of the masses in ``values``."""
+        """Property model of a fluid; of a mixture with a composition for each element of its masses in ``values``."""
         stated = self._plant.fluids[fluid]
         if fluid not in self.blends:
             return stated
@@ -192,9 +192,7 @@ def _is_pure(model: Any) -> bool:
     return len(shares(model)) == 1
 
 
-def _mole_fraction(
-    mixtures: Mixtures, blend: Blend, species: str, gases: Gases, masses: tuple[str, ...]
-) -> Formula:
+def _mole_fraction(mixtures: Mixtures, blend: Blend, species: str, gases: Gases, masses: tuple[str, ...]) -> Formula:
     """x_k = Σ_i m_i R_i x_ik/Σ_i m_i R_i: amounts of substance go as m R."""
 
     def share(*arrays: Any) -> Any:

@@ -7,7 +7,6 @@ from __future__ import annotations
 
 from reportgen.balances.plant import Piece
 from reportgen.balances.processes.equations import (
-    QUASI_STATIC,
     change_stretches,
     energy_balance,
     kept_mass,

@@ -95,7 +95,7 @@ def boundary_work(piece: Piece) -> Formula:
     m, n, p1, p2, v1, v2 = (token(path) for path in inputs)
 
     def work(amount: Any, exponent: Any, first: Any, last: Any, small: Any, large: Any) -> Any:
-        # (p_b v_b − p_a v_a)/(1 − n) as p_a v_a ln(v_b/v_a) · (e^x − 1)/x with x = (1 − n) ln(v_b/v_a): regular at n = 1.
+        # (p_b v_b − p_a v_a)/(1 − n) as p_a v_a ln(v_b/v_a) (e^x − 1)/x, x = (1 − n) ln(v_b/v_a): regular at n = 1.
         import numpy as np
 
         ratio = np.log(large / small)
