@@ -27,8 +27,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids import cubic, ideal_gas, ideal_gas_names, incompressible, names, real_fluid, statistical
-from reportgen.fluids.real.fluid import RealFluid
+from reportgen.fluids import ideal_gas, ideal_gas_names, incompressible, names, real_fluid, statistical
+from reportgen.fluids.cubics.making import cubic
 
 __all__ = [
     "BAR",
@@ -96,14 +96,14 @@ _CLAPEYRON = 1e-3
 #: The identity that loses the more digits the nearer to critical.
 CLAPEYRON = "dp/dT = (s''-s')/(v''-v')"
 #: Compositions of the cubic equations, and incompressible substances, of our own choosing.
-CUBICS: tuple[Any, ...] = (
-    "CO2",
-    "propane",
-    "N2",
-    "H2O",
-    {"CH4": 0.8, "C2H6": 0.15, "CO2": 0.05},
-    {"N2": 0.7, "CO2": 0.3},
-)
+CUBICS: dict[str, tuple[Any, dict[str, Any]]] = {
+    "CO2": ("CO2", {}),
+    "propane, translated": ("propane", {"volume_translation": "Peneloux"}),
+    "N2": ("N2", {}),
+    "H2O": ("H2O", {}),
+    "natural gas": ({"CH4": 0.8, "C2H6": 0.15, "CO2": 0.05}, {"interaction": {("CH4", "CO2"): 0.1}}),
+    "N2 + CO2": ({"N2": 0.7, "CO2": 0.3}, {}),
+}
 INCOMPRESSIBLES: dict[str, dict[str, Any]] = {
     "constant": {"density": 998.0, "specific_heat": 4182.0, "limits": (273.16, 373.0)},
     "solid": {"density": 8930.0, "specific_heat": 385.0, "phase": "solid", "limits": (200.0, 900.0)},
@@ -140,11 +140,10 @@ def derivatives(evaluate: Callable[[Array], Mapping[str, Array]], point: Array, 
     for name, values in evaluate(x).items():
         slope = np.sum(values * _WEIGHTS, axis=2) / steps
         apart = np.abs(np.diff(slope, axis=1))
-        # what is left of eight values after a polynomial of sixth degree, at the smallest step that stays within
-        scatter = np.abs(values @ _NOISE)
-        noise = np.fmin.reduce(np.where(scatter > 0, scatter, np.nan), axis=1, initial=np.inf)
-        noise = np.where(np.isfinite(noise), noise, 0.0)[:, None]
-        rounding = np.maximum(_ROUNDING * np.max(np.abs(values), axis=2)[:, 1:], noise) / steps[:, 1:]
+        # what is left of eight values after a polynomial of sixth degree, at the smaller steps
+        scatter = np.abs(values @ _NOISE)[:, _HALVINGS // 2 :]
+        noise = np.nan_to_num(np.nanmedian(np.where(np.isnan(scatter).all(axis=1)[:, None], 0.0, scatter), axis=1))
+        rounding = np.maximum(_ROUNDING * np.max(np.abs(values), axis=2)[:, 1:], noise[:, None]) / steps[:, 1:]
         # noise can agree by chance, even exactly
         doubt = np.where(np.isnan(apart), np.inf, apart + rounding)
         best = np.argmin(doubt, axis=1)
@@ -263,15 +262,17 @@ def _by_pressure(fluid: Any, state: Any, results: dict[str, Result]) -> None:
             _result("w^2 = -v^2 (dp/dv)_s", np.abs(squared / w2 - 1), v_p[1] / np.abs(v_p[0]), state, results)
 
 
-def check_saturation(fluid: RealFluid, count: int = 200) -> dict[str, Result]:
+def check_saturation(fluid: Any, count: int = 200) -> dict[str, Result]:
     """Both phases of a pure fluid in equilibrium, from the triple point to 1e-6 Tc below critical.
 
-    Half of the temperatures are even in T, half in ln(1 − T/Tc). The pressures come from the equation of state, since
-    ``at`` gives a saturated state the saturation pressure.
+    Half of the temperatures are even in T, half in ln(1 − T/Tc). The pressures of a real fluid come from its equation
+    of state, since ``at`` gives a saturated state the saturation pressure. A cubic equation, whose range has no triple
+    point, is followed from 0.5 Tc.
     """
     critical = fluid.limits.critical_point
     assert critical is not None
-    lowest = fluid.limits.minimum_temperature
+    real = fluid.kind == "real-fluid"
+    lowest = max(fluid.limits.minimum_temperature, 0.0 if real else 0.5 * critical.temperature)
     gap = np.geomspace(1e-6, 1 - lowest / critical.temperature, count // 2)
     t = np.sort(
         np.concatenate([critical.temperature * (1 - gap), np.linspace(lowest, critical.temperature, count // 2, False)])
@@ -285,11 +286,15 @@ def check_saturation(fluid: RealFluid, count: int = 200) -> dict[str, Result]:
     none = np.zeros_like(t)
     results: dict[str, Result] = {}
     _result("g' = g''", np.abs(h - t * s) / rt, none, vapour, results)
-    equation = fluid._equation
-    heavy, light = (equation.properties(t, phase.density) for phase in (liquid, vapour))
-    _result("p(T, rho'') = p_sat", np.abs(light.pressure / vapour.pressure - 1), none, vapour, results)
-    rho = liquid.density
-    _result("p(T, rho') = p_sat", np.abs(heavy.pressure - liquid.pressure) / (rho * rt), none, liquid, results)
+    # next to the critical point the densities are rounded by ε RT/(∂p/∂ρ)_T, which turns the chord of s over v
+    turned = none
+    if real:
+        for phase in (liquid, vapour):
+            found = fluid._equation.properties(t, phase.density)
+            which, scale = ("'", phase.density * rt) if phase is liquid else ("''", phase.pressure)
+            _result(f"p(T, rho{which}) = p_sat", np.abs(found.pressure - phase.pressure) / scale, none, phase, results)
+            rounded = _ROUNDING * rt / np.abs(found.pressure_density) * phase.specific_volume
+            turned = turned + np.abs(found.pressure_temperature * v / s - 1) * rounded / np.abs(v)
 
     def logarithm(x: Array) -> dict[str, Array]:
         return {"p": np.log(fluid.saturation(temperature=x, errors="mask")[0].pressure)}
@@ -300,11 +305,7 @@ def check_saturation(fluid: RealFluid, count: int = 200) -> dict[str, Result]:
     slope, error = derivatives(logarithm, t, np.minimum(t, reach))["p"]
     with np.errstate(invalid="ignore", divide="ignore"):
         chord = s / v
-        error = error / slope + _ROUNDING * fluid.gas_constant / s
-        # next to the critical point the densities are rounded by ε RT/(∂p/∂ρ)_T, which turns the chord of s over v
-        for phase, found in ((liquid, heavy), (vapour, light)):
-            rounded = _ROUNDING * rt / np.abs(found.pressure_density) * phase.specific_volume
-            error += np.abs(found.pressure_temperature / chord - 1) * rounded / np.abs(v)
+        error = error / slope + _ROUNDING * fluid.gas_constant / s + turned
         _result(CLAPEYRON, np.abs(slope * vapour.pressure / chord - 1), error, vapour, results)
     return results
 
@@ -354,9 +355,8 @@ def models(chosen: str = "") -> Iterator[tuple[str, str, Any]]:
             yield "real", name, real_fluid(name)
     if chosen in ("", "cubic"):
         for equation in ("Peng-Robinson", "Soave-Redlich-Kwong"):
-            for composition in CUBICS:
-                label = composition if isinstance(composition, str) else "+".join(composition)
-                yield "cubic", f"{label}, {equation}", cubic(composition, equation=equation)
+            for name, (composition, options) in CUBICS.items():
+                yield "cubic", f"{name}, {equation}", cubic(composition, equation=equation, **options)
     if chosen in ("", "incompressible"):
         for name, given in INCOMPRESSIBLES.items():
             yield "incompressible", name, incompressible(name, **given)
@@ -401,7 +401,7 @@ def check(kind: str, model: Any, count: int) -> dict[str, Result]:
         low, high = 1.15 * model.minimum_temperature, model.maximum_temperature / 1.15
         return check_statistical(model, np.geomspace(low, high, count))
     results = check_model(model, *states(model, count, seed=3))
-    if kind == "real" and not model.pseudo_pure:
+    if (kind == "real" and not model.pseudo_pure) or (kind == "cubic" and model.composition is None):
         results |= check_saturation(model, max(count, 100))
     return results
 
