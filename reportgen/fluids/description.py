@@ -26,9 +26,9 @@ def describe_real(name: str) -> str:
     lines = [f"{fluid.title} (real fluid)", f"  name          {fluid.substance}"]
     for heading, text in (
         ("formula", data["formula"]),
-        ("refrigerant", data["refrigerant"]),
+        ("refrigerant", data["refrigerant"] if data["refrigerant"] != fluid.substance else ""),
         ("CAS number", data["cas"]),
-        ("other names", ", ".join(data["aliases"])),
+        ("other names", ", ".join(alias for alias in data["aliases"] if alias != data["formula"])),
     ):
         if text:
             lines.append(f"  {heading:<14}{text}")

@@ -25,7 +25,8 @@ from reportgen.fluids.data.collect_melting import REPLACED, STRAIGHT_TO, melting
 from reportgen.fluids.data.collect_names import FLUIDS, LOWER_LIMIT, Entry, file_of
 from reportgen.fluids.data.collect_terms import RESIDUAL, has_constants, ideal_terms, terms_of
 from reportgen.fluids.real.helmholtz import Helmholtz
-from reportgen.fluids.real.terms import NON_ANALYTIC
+from reportgen.fluids.real.melting import MeltingLine
+from reportgen.fluids.real.saturation import SaturationCurves
 
 HERE = Path(__file__).parent
 
@@ -63,21 +64,23 @@ def ancillary(source: dict[str, Any]) -> Any:
     return pressure
 
 
-def largest_density(equation: Helmholtz, data: dict[str, Any], liquid: float) -> float:
+def largest_density(equation: Helmholtz, data: dict[str, Any]) -> float:
     """Upper end for density searches [kg/m3]: beyond any state within the limits, while pressure still rises."""
-    from reportgen.fluids.real.melting import MeltingLine
-
-    limits = data["limits"]
+    limits, top = data["limits"], data["critical_point"]
     line = MeltingLine(data["melting_line"]) if data["melting_line"] else None
-    highest = 0.0
+    curves = SaturationCurves(data["saturation"], top["temperature"])
+    liquid = float(curves.at_temperature(np.array([limits["minimum_temperature"]])).liquid_density[0])
+    highest = liquid
     for t in np.linspace(limits["minimum_temperature"], limits["maximum_temperature"], 120):
         ceiling = limits["maximum_pressure"]
         if line is not None:
             ceiling = min(ceiling, float(line.pressure(np.array([t]))[0]))
-        grid = np.linspace(0.9 * liquid, 3.0 * liquid, 2000)
+        below = t < top["temperature"]
+        start = float(curves.at_temperature(np.array([t])).liquid_density[0]) if below else top["density"]
+        grid = np.linspace(start, 3.0 * liquid, 2000)
         p = equation.properties(np.full(2000, t), grid).pressure
         reached = np.flatnonzero(p >= ceiling)
-        if reached.size and (np.diff(p[: reached[0]]) > 0).all() and reached[0] > 0:
+        if reached.size and (np.diff(p[: reached[0]]) > 0).all():
             highest = max(highest, float(grid[reached[0]]))
     return 1.03 * highest
 
@@ -187,9 +190,7 @@ def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
         names: tuple[str, ...] = ("log_pressure", "liquid_density", "log_vapour_density", "log_dew_pressure")
     else:
         top = float(critical.temperature)
-        singular = any(term["kind"] == NON_ANALYTIC for term in residual)
-        inner = saturation.INNER_SINGULAR if singular else saturation.INNER
-        pieces = saturation.pure_curves(extended, critical, lowest, start_l, start_v, inner_end=inner)
+        pieces = saturation.pure_curves(extended, critical, lowest, start_l, start_v)
         names = ("log_pressure", "liquid_density", "log_vapour_density")
     log_top, density = (saturation.evaluate_pieces(pieces, row, np.zeros(1))[0] for row in (0, 1))
     apex = {"temperature": top, "pressure": float(np.exp(log_top)), "density": float(density)}
@@ -248,7 +249,7 @@ def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
         "melting_line": publications(melting_key, library),
     }
     add_zero(data, equation, pieces, published=has_constants(equation_data["alpha0"]))
-    data["limits"]["maximum_density"] = largest_density(equation, data, start_l)
+    data["limits"]["maximum_density"] = largest_density(equation, data)
     faults = too_large(gaps(data))
     if faults:
         raise ArithmeticError(f"the curves do not satisfy the equation: {', '.join(faults)} of {gaps(data)}")

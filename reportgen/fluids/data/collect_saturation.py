@@ -6,9 +6,9 @@ extended precision. Curves are fitted by Chebyshev polynomials of x = (1 − T/T
 tail is small (idea: Bell and Alpert, Ind. Eng. Chem. Res. 60 (2021) 9983, doi:10.1021/acs.iecr.1c00847).
 
 Why the square root: coexisting densities of an equation analytic at its critical point are analytic in it; a cube root
-needs as many intervals (measured: 11-13 either way) and costs more to take. Closer to the critical point than
-T_c - T = 4e-6 T_c, where even extended precision leaves densities uncertain by 1e-9, a fourth-degree polynomial joins
-the curves to the critical point.
+needs as many intervals (measured: 11-13 either way) and costs more to take. Closest to the critical point, from
+T_c - T = 4e-6 T_c on or less, even extended precision leaves densities uncertain by 1e-9: there a polynomial joins the
+curves to the critical point.
 """
 
 from __future__ import annotations
@@ -28,10 +28,13 @@ Extended = np.longdouble
 DEGREE = 14
 TOLERANCE = 1e-13
 DEEPEST = 10
-#: Upper end of the innermost interval in x. Where terms are singular at the critical point, curves bend more next to it
-#: (measured with 0.002: water 60 times, carbon dioxide 8000 times further off there); elsewhere the larger one keeps
-#: the noise at its end out of the interval beyond (measured: 200 times closer).
-INNER, INNER_SINGULAR = 0.002, 0.001
+#: Upper ends in x tried for the innermost interval, the first that keeps both phases in equilibrium within the bar
+#: taken. The larger keeps the noise at its end out of the interval beyond; some curves bend too much for it.
+INNER = (0.002, 0.001, 0.0007)
+#: Largest difference of the Gibbs energies of both phases next to the critical point, in parts of RT.
+CLOSE = 1e-12
+#: Degree of the polynomial through the critical point.
+ORDER = 8
 #: Largest tail taken where intervals are no longer halved.
 LOOSE = 1e-7
 #: Largest tail next to the top of a pseudo-pure fluid, where published pressures go with small powers of 1 - T/T_top.
@@ -170,15 +173,12 @@ def march(
     return x[::-1], logs[0, ::-1], logs[1, ::-1]
 
 
-def pure_curves(
-    equation: Helmholtz, critical: Critical, triple: float, liquid: float, vapour: float, *, inner_end: float = INNER
-) -> list[Piece]:
+def pure_curves(equation: Helmholtz, critical: Critical, triple: float, liquid: float, vapour: float) -> list[Piece]:
     """ln p, ρ_L, ln ρ_V as functions of x from the critical to the triple point.
 
     ``liquid`` and ``vapour`` are densities [kg/m3] near those at the triple point [K].
     """
-    seed_x, seed_l, seed_v = march(equation, critical, triple, liquid, vapour)
-    seeds = [np.asarray(a, dtype=float) for a in (seed_x, seed_l, seed_v)]
+    seeds = [np.asarray(a, dtype=float) for a in march(equation, critical, triple, liquid, vapour)]
 
     def solve(x: Array) -> Array:
         start = np.asarray(x, dtype=float)
@@ -191,18 +191,39 @@ def pure_curves(
         return np.array([np.log(p), rho_l, np.log(rho_v)])
 
     outer = np.sqrt(1 - Extended(triple) / critical.temperature)
-    inner = Extended(inner_end)
     scale = np.array([1.0, float(critical.density), 1.0])
-    pieces = fit(solve, inner, outer, scale, NOISE)
+    tried: list[tuple[float, list[Piece]]] = []
+    for end in INNER:
+        try:
+            pieces = [_join(solve, critical, Extended(end)), *fit(solve, Extended(end), outer, scale, NOISE)]
+        except ArithmeticError:
+            continue  # so close to critical that noise is above what an expansion is let have
+        tried.append((_gibbs_gap(equation, critical, pieces), pieces))
+        if tried[-1][0] < CLOSE:
+            break
+    return min(tried, key=lambda pair: pair[0])[1]
+
+
+def _join(solve: Callable[[Array], Array], critical: Critical, end: Any) -> Piece:
+    """The innermost interval: least squares from 1e-7 T_c below critical on, through the critical point."""
     ends = np.array([np.log(critical.pressure), critical.density, np.log(critical.density)])
-    # from 1e-7 T_c below critical on: least squares through the critical point
-    at = np.linspace(np.sqrt(1e-7), inner_end, 40).astype(Extended)
-    powers = np.array([(at / inner) ** k for k in range(1, 5)], dtype=float).T
+    at = np.linspace(np.sqrt(1e-7), float(end), 60).astype(Extended)
+    powers = np.array([(at / end) ** k for k in range(1, ORDER + 1)], dtype=float).T
     rises = np.asarray(solve(at) - ends[:, None], dtype=float).T
     found = np.linalg.lstsq(powers, rises, rcond=None)[0].astype(Extended)
-    span = nodes(Extended(0), inner)
-    values = ends[:, None] + sum(found[k - 1][:, None] * (span / inner) ** k for k in range(1, 5))
-    return [Piece(Extended(0), inner, chebyshev(values)), *pieces]
+    span = nodes(Extended(0), end)
+    values = ends[:, None] + sum(found[k - 1][:, None] * (span / end) ** k for k in range(1, ORDER + 1))
+    return Piece(Extended(0), end, chebyshev(values))
+
+
+def _gibbs_gap(equation: Helmholtz, critical: Critical, pieces: list[Piece]) -> float:
+    """Largest difference of the Gibbs energies of both phases from 1e-7 to 1e-3 T_c below critical, in parts of RT."""
+    x = np.sqrt(np.geomspace(1e-7, 1e-3, 120)).astype(Extended)
+    temperature = critical.temperature * (1 - x * x)
+    liquid = equation.properties(temperature, evaluate_pieces(pieces, 1, x))
+    vapour = equation.properties(temperature, np.exp(evaluate_pieces(pieces, 2, x)))
+    gap = liquid.enthalpy - vapour.enthalpy - temperature * (liquid.entropy - vapour.entropy)
+    return float(np.abs(gap / (equation.gas_constant * temperature)).max())
 
 
 def pseudo_pure_curves(
@@ -344,7 +365,13 @@ def inverse(pieces: list[Piece], function: int, log_top: Any, start: Any, *, loo
             low, high = np.where(above, middle, low), np.where(above, high, middle)
         return np.array([(low + high) / 2])
 
-    return fit(solve, Extended(0), deepest, np.array([1.0]), loose=loose)
+    scale = np.array([1.0])
+    if start > 0 or loose > LOOSE:  # a pseudo-pure fluid
+        return fit(solve, Extended(0), deepest, scale, loose=loose)
+    # the innermost interval of the pressure joins the next one with a kink in its rounding: an end here too
+    inner = np.sqrt(log_top - evaluate_pieces(pieces, function, np.array([pieces[0].high]))[0])
+    parts = ((Extended(0), inner), (inner, deepest))
+    return [piece for part in parts for piece in fit(solve, *part, scale, loose=loose)]
 
 
 def as_data(pieces: list[Piece], names: tuple[str, ...]) -> dict[str, Any]:

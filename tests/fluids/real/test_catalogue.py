@@ -153,7 +153,7 @@ def test_descriptions_say_what_is_special(name: str) -> None:
         "deuterium": ("7782-39-0", "straight line from the triple point", "melting line  18.724 K"),
         "helium": ("lambda point", "superfluid", "McCarty"),
         "propyne": ("273 K", "lower limit of the collected range, not the triple point"),
-        "R236ea": ("R236ea", "431-63-0"),
+        "R236ea": ("1,1,1,2,3,3-Hexafluoropropane", "431-63-0"),
         "hexamethyldisiloxane": ("MM", "107-46-0"),
     }[name]:
         assert part in text, part

@@ -12,6 +12,7 @@ import pytest
 import reportgen.fluids
 from reportgen.fluids.data.collect_checks import equation_of, gaps, too_large
 from reportgen.fluids.real import catalogue
+from reportgen.fluids.real.melting import MeltingLine
 from reportgen.fluids.real.saturation import SaturationCurves
 
 NAMES = catalogue.names()
@@ -19,6 +20,7 @@ PSEUDO_PURE = ("air", "R404A", "R407C", "R410A", "R507A", "SES36")
 #: Below this pressure [Pa] the library's saturation pressure is the rounding of a liquid's (propylene glycol at 222 K:
 #: 3e-8 Pa, where the equation has 1.2e-3 Pa).
 LOWEST_PRESSURE = 100.0
+QUANTUM = ("helium", "hydrogen", "parahydrogen", "orthohydrogen", "deuterium", "paradeuterium", "orthodeuterium")
 PURE = tuple(name for name in NAMES if name not in PSEUDO_PURE)
 
 
@@ -161,6 +163,23 @@ def test_the_words_on_the_zero_hold(name: str) -> None:
     state = equation.properties(np.array([temperature]), curves.at_temperature(np.array([temperature])).liquid_density)
     assert abs(state.entropy[0] - s0) < 3e-3 * equation.gas_constant
     assert abs(state.enthalpy[0] - h0) < 0.3 * equation.gas_constant
+
+
+@pytest.mark.parametrize("name", NAMES)
+def test_the_largest_density_lies_beyond_every_state(name: str) -> None:
+    """At it, pressure is at the maximum or above the melting line at every temperature; no larger than need be."""
+    data = data_of(name)
+    limits, equation = data["limits"], equation_of(data)
+    temperature = np.linspace(limits["minimum_temperature"], limits["maximum_temperature"], 200)
+    bound = np.full(200, float(limits["maximum_pressure"]))
+    if data["melting_line"]:
+        bound = np.minimum(bound, MeltingLine(data["melting_line"]).pressure(temperature))
+    density = np.full(200, limits["maximum_density"])
+    assert (equation.properties(temperature, density).pressure > bound).all()
+    curves = SaturationCurves(data["saturation"], data["critical_point"]["temperature"])
+    liquid = curves.at_temperature(temperature[:1]).liquid_density[0]
+    # quantum fluids are compressed to three times the density of their liquid (helium: 3.0, hydrogen: 2.4)
+    assert 1.02 < limits["maximum_density"] / liquid < (3.1 if name in QUANTUM else 1.8)
 
 
 def test_files_are_compact_and_complete() -> None:
