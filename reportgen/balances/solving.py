@@ -202,7 +202,8 @@ class _Run:
             sentence = f"State {state} is fixed by its {words}; the equation of state gives the rest."
         else:
             sentence = f"State {state} is known; the equation of state gives its remaining properties."
-        uses = (*(prefix + name for name in pair), f"fluids.{fluid_id}")
+        masses = self.solution.mixtures.masses(fluid_id)
+        uses = (*(prefix + name for name in pair), *masses, f"fluids.{fluid_id}")
         basis = f"equation of state, {fluid.title}"
         self.solution.steps.append(
             Step(
@@ -221,7 +222,7 @@ class _Run:
         """Enthalpy from temperature or the reverse, for an ideal gas whose pressure is not known yet."""
         fluid_id = self.plant.states[relation.state]
         fluid = self.solution.mixtures.model(fluid_id, self.values)
-        (known,) = (path for path in relation.variables if path != unknown)
+        (known,) = (path for path in relation.solvable if path != unknown)
         name, given = (path.rsplit(".", 1)[-1] for path in (unknown, known))
         ambient = self.values["surroundings.pressure"]
         result = fluid.at(errors="mask", pressure=ambient, **{given: self.values[known]})
@@ -244,7 +245,7 @@ class _Run:
                 sentence,
                 f"equation of state, {fluid.title}",
                 (unknown,),
-                (known, f"fluids.{fluid_id}"),
+                (known, *relation.beside, f"fluids.{fluid_id}"),
                 (equation,),
             )
         )

@@ -67,7 +67,7 @@ def defaults(piece: Piece) -> list[Default]:
 
 KIND = process_kind(
     "constant-external-pressure",
-    "Change against a constant external pressure",
+    "Change at constant external pressure",
     "The boundary moves against a pressure from outside that stays the same.",
     relations=relations,
     defaults=defaults,

@@ -30,54 +30,58 @@ _NEAR_ONE = 1e-6
 
 
 def law(piece: Piece) -> Formula:
-    """N = ln(p_b/p_a)/ln(v_a/v_b), and each pressure and volume from the others."""
+    """p_b = p_a (v_a/v_b)^n, and each of the others from it."""
     before, after = one_state(piece)
-    inputs = tuple(f"states.{state}.{name}" for state in (before, after) for name in ("pressure", "specific_volume"))
     index = piece.path("polytropic_index")
-    p1, v1, p2, v2 = (token(path) for path in inputs)
-    n = token(index)
+    first, small, large = (
+        f"states.{before}.pressure",
+        f"states.{before}.specific_volume",
+        f"states.{after}.specific_volume",
+    )
+    last = f"states.{after}.pressure"
+    n, p1, v1, p2, v2 = (token(path) for path in (index, first, small, last, large))
 
-    def exponent(first: Any, small: Any, last: Any, large: Any) -> Any:
+    def exponent(p_b: Any, p_a: Any, v_a: Any, v_b: Any) -> Any:
         import numpy as np
 
         with np.errstate(divide="ignore", invalid="ignore"):
-            return np.log(last / first) / np.log(small / large)
+            return np.log(p_b / p_a) / np.log(v_a / v_b)
 
     def gives(what: str, state: str) -> str:
         return f"{piece.title}: the exponent gives the {what} of state {state}."
 
     inverses = {
-        inputs[2]: Inverse(
-            lambda first, small, exponent, large: first * (small / large) ** exponent,
-            rf"{p1}\left(\frac{{{v1}}}{{{v2}}}\right)^{{{n}}}",
-            gives("pressure", after),
+        index: Inverse(
+            exponent,
+            rf"\frac{{\ln\frac{{{p2}}}{{{p1}}}}}{{\ln\frac{{{v1}}}{{{v2}}}}}",
+            f"{piece.title}: the two states give the exponent.",
         ),
-        inputs[3]: Inverse(
-            lambda first, small, last, exponent: small * (first / last) ** (1.0 / exponent),
-            rf"{v1}\left(\frac{{{p1}}}{{{p2}}}\right)^{{1/{n}}}",
-            gives("specific volume", after),
-        ),
-        inputs[0]: Inverse(
-            lambda exponent, small, last, large: last * (large / small) ** exponent,
+        first: Inverse(
+            lambda n, p_b, v_a, v_b: p_b * (v_b / v_a) ** n,
             rf"{p2}\left(\frac{{{v2}}}{{{v1}}}\right)^{{{n}}}",
             gives("pressure", before),
         ),
-        inputs[1]: Inverse(
-            lambda first, exponent, last, large: large * (last / first) ** (1.0 / exponent),
+        small: Inverse(
+            lambda n, p_a, p_b, v_b: v_b * (p_b / p_a) ** (1.0 / n),
             rf"{v2}\left(\frac{{{p2}}}{{{p1}}}\right)^{{1/{n}}}",
             gives("specific volume", before),
+        ),
+        large: Inverse(
+            lambda n, p_a, v_a, p_b: v_a * (p_a / p_b) ** (1.0 / n),
+            rf"{v1}\left(\frac{{{p1}}}{{{p2}}}\right)^{{1/{n}}}",
+            gives("specific volume", after),
         ),
     }
     return Formula(
         piece.path("polytropic_index.definition"),
         piece.owner,
         "Polytropic law",
-        f"{piece.title}: p vⁿ stays the same; the two states give the exponent.",
-        "definition of the polytropic change",
-        index,
-        inputs,
-        exponent,
-        rf"\frac{{\ln\frac{{{p2}}}{{{p1}}}}}{{\ln\frac{{{v1}}}{{{v2}}}}}",
+        gives("pressure", after),
+        "definition of the polytropic change, p vⁿ constant",
+        last,
+        (index, first, small, large),
+        lambda n, p_a, v_a, v_b: p_a * (v_a / v_b) ** n,
+        rf"{p1}\left(\frac{{{v1}}}{{{v2}}}\right)^{{{n}}}",
         inverses,
         reason="the two states have the same volume, or a pressure or volume that is not positive",
     )
