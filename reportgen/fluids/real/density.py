@@ -100,20 +100,25 @@ class DensitySolver:
         return start, low, high
 
     def _cubic_start(self, temperature: FloatArray, pressure: FloatArray, rt: FloatArray) -> FloatArray:
-        """Density of the Peng-Robinson equation above the critical temperature, where it has one real root."""
+        """Density of the Peng-Robinson equation above the critical temperature, by its largest root."""
         top = self._curves.top_temperature
         scale = pressure / self._curves.top_pressure
         ratio = temperature / top
         b = 0.07780 * scale / ratio
         a = 0.45724 * scale / ratio**2 * (1 + self.kappa * (1 - np.sqrt(ratio))) ** 2
-        # Z³ + c2 Z² + c1 Z + c0 = 0 by Cardano's formula
+        # Z³ + c2 Z² + c1 Z + c0 = 0 by Cardano's formula; three real roots (two of no meaning) by Viète's
         c2, c1, c0 = b - 1, a - 3 * b * b - 2 * b, b * (b * b + b - a)
         third = c2 / 3
         p3 = c1 / 3 - third * third
         q2 = third**3 + (c0 - third * c1) / 2
-        root = np.sqrt(np.maximum(q2 * q2 + p3**3, 0))
-        big = np.cbrt(-q2 - np.copysign(root, q2))
+        inside = q2 * q2 + p3**3
+        big = np.cbrt(-q2 - np.copysign(np.sqrt(np.maximum(inside, 0)), q2))
         z = big - p3 / np.where(big == 0, 1, big) - third
+        three = np.flatnonzero(inside < 0)
+        if three.size:
+            radius = np.sqrt(-p3[three])
+            angle = np.arccos(np.minimum(np.maximum(-q2[three] / radius**3, -1), 1))
+            z[three] = 2 * radius * np.cos(angle / 3) - third[three]
         start: FloatArray = pressure / (np.maximum(z, b * 1.02) * rt)
         return np.minimum(start, 0.98 * self.maximum_density)
 
@@ -129,25 +134,35 @@ class DensitySolver:
         isotherm = equation.isotherm(temperature)
         rt = equation.gas_constant * temperature
         stiffening = np.minimum(np.maximum(3 * (density / equation.reducing_density - 1), 0), 3)
-        where: NDArray[Any] | None = None
+        where: NDArray[Any] = np.arange(density.size)
+        done = np.zeros(density.size, dtype=np.bool_)
         width = np.log(high / low)
         for iteration in range(_ITERATIONS):
             now, slope = equation.pressure(density, temperature, isotherm)
             gap = pressure - now
             ratio = gap / (density * slope)
-            step = ratio / (1 + stiffening * ratio)
+            trial = density * (1 + ratio / (1 + stiffening * ratio))
             # Convergence first: at the solution the bracket may be closed by rounding.
             size = np.abs(ratio)
-            done = (size <= 1e-9 * np.minimum(slope / rt, 1)) & (slope > 0)
-            done |= np.abs(gap) <= _ROUNDING * density * rt
-            trial = density * (1 + step)
-            # Where the gap is rounding and the slope small, the step means nothing.
-            settled = np.where(size < 1e-6, trial, density)
-            if done.all():
-                if where is None:
-                    return settled, done
-                result[where], found[where] = settled, True
-                return result, found
+            settled = (size <= 1e-9 * np.minimum(slope / rt, 1)) & (slope > 0)
+            settled |= np.abs(gap) <= _ROUNDING * density * rt
+            # What has settled once may be unsettled by rounding in the next turn: it is not asked again.
+            settled &= ~done
+            if settled.any():
+                # Where the gap is rounding and the slope small, the step means nothing.
+                at = where[settled]
+                result[at] = np.where(size < 1e-6, trial, density)[settled]
+                found[at] = True
+                done |= settled
+                left = done.size - np.count_nonzero(done)
+                if not left:
+                    return result, found
+                if 2 * left < done.size:
+                    keep = ~done
+                    where, gap, ratio, trial, slope = where[keep], gap[keep], ratio[keep], trial[keep], slope[keep]
+                    temperature, pressure, density, rt = temperature[keep], pressure[keep], density[keep], rt[keep]
+                    low, high, width, stiffening = low[keep], high[keep], width[keep], stiffening[keep]
+                    isotherm, done = isotherm.take(keep), done[keep]
             rising = gap > 0
             low = np.where(rising, np.maximum(density, low), low)
             high = np.where(rising, high, np.minimum(density, high))
@@ -156,18 +171,6 @@ class DensitySolver:
                 narrower = np.log(high / low)
                 bad |= narrower > 0.5 * width
                 width = narrower
-            if bad.any():
-                trial = np.where(bad, np.sqrt(low * high), trial)
-            density = np.where(done, settled, trial)
-            if done.any() and 2 * np.count_nonzero(done) > done.size:
-                keep = ~done
-                where = np.arange(result.size) if where is None else where
-                result[where[done]], found[where[done]] = density[done], True
-                where = where[keep]
-                temperature, pressure, density, rt = temperature[keep], pressure[keep], density[keep], rt[keep]
-                low, high, width, stiffening = low[keep], high[keep], width[keep], stiffening[keep]
-                isotherm = isotherm.take(keep)
-        if where is None:
-            return density, done
-        result[where], found[where] = density, done
+            density = np.where(bad, np.sqrt(low * high), trial) if bad.any() else trial
+        result[where] = np.where(done, result[where], density)
         return result, found

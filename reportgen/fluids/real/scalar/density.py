@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from math import copysign, exp, sqrt
+from math import acos, copysign, cos, exp, sqrt
 
 from reportgen.fluids.real.density import DensitySolver
 from reportgen.fluids.real.scalar.curves import ScalarCurves
@@ -43,10 +43,14 @@ class ScalarDensity:
         third = c2 / 3.0
         p3 = c1 / 3.0 - third * third
         q2 = third * third * third + (c0 - third * c1) / 2.0
-        root = sqrt(max(q2 * q2 + p3 * p3 * p3, 0.0))
-        cube = -q2 - copysign(root, q2)
-        big = copysign(abs(cube) ** (1.0 / 3.0), cube)
-        z = big - (p3 / big if big else 0.0) - third
+        inside = q2 * q2 + p3 * p3 * p3
+        if inside < 0.0:
+            radius = sqrt(-p3)
+            z = 2.0 * radius * cos(acos(max(-1.0, min(1.0, -q2 / radius**3))) / 3.0) - third
+        else:
+            cube = -q2 - copysign(sqrt(inside), q2)
+            big = copysign(abs(cube) ** (1.0 / 3.0), cube)
+            z = big - (p3 / big if big else 0.0) - third
         density = pressure / (max(z, b * 1.02) * self._equation.gas_constant * temperature)
         return min(density, 0.98 * self.maximum_density)
 
