@@ -157,6 +157,17 @@ def remark_of(entry: Entry, top: float) -> str:
     return " ".join(remarks)
 
 
+def sources_of(entry: Entry, library: dict[str, dict[str, str]], *, melting_line: bool) -> dict[str, Any]:
+    """Publications of the equation and of the melting line, where there is one."""
+    key = get_BibTeXKey(entry.source, "MELTING_LINE") if melting_line else ""
+    if entry.source in REPLACED:
+        *_, key = REPLACED[entry.source]
+    return {
+        "equation": publications(get_BibTeXKey(entry.source, "EOS"), library),
+        "melting_line": publications(key, library),
+    }
+
+
 def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
     """Everything of one fluid, ready to be written."""
     source = json.loads(get_fluid_param_string(entry.source, "JSON"))[0]
@@ -241,13 +252,7 @@ def collect(entry: Entry, library: dict[str, dict[str, str]]) -> dict[str, Any]:
     if pseudo_pure:
         data["equation_critical_temperature"] = float(critical.temperature)
         data["join"] = entry.join and list(entry.join)
-    melting_key = get_BibTeXKey(entry.source, "MELTING_LINE") if data["melting_line"] else ""
-    if entry.source in REPLACED:
-        *_, melting_key = REPLACED[entry.source]
-    data["sources"] = {
-        "equation": publications(get_BibTeXKey(entry.source, "EOS"), library),
-        "melting_line": publications(melting_key, library),
-    }
+    data["sources"] = sources_of(entry, library, melting_line=bool(data["melting_line"]))
     add_zero(data, equation, pieces, published=has_constants(equation_data["alpha0"]))
     data["limits"]["maximum_density"] = largest_density(equation, data)
     faults = too_large(gaps(data))

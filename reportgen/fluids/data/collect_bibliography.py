@@ -43,12 +43,12 @@ CORRECTIONS = {
         "volume": "51",
         "doi": "10.1063/5.0104661",
     },
-    "Bell-NeonMelting-2026": {"institution": "unpublished fit to data evaluated by NIST"},
+    "Bell-NeonMelting-2026": {"institution": "Unpublished fit to data evaluated by NIST"},
     "Eisenbach-JPCRD-2021": {"pages": "023105"},
     "Gao-JCED-2016": {"volume": "61", "pages": "2859-2872", "doi": "10.1021/acs.jced.6b00195"},
     "Herrig-JPCRD-2019": {"year": "2018", "volume": "47", "pages": "043102", "doi": "10.1063/1.5053993"},
     "Lemmon-JCED-2016-365227": {"year": "2015", "volume": "60", "pages": "3745-3758"},
-    "Lemmon-PROPYLENE-2013": {"institution": "unpublished"},
+    "Lemmon-PROPYLENE-2013": {"institution": "Unpublished"},
     "Marx-BOOK-1992": {
         "title": "Neue Zustandsgleichungen für R 12, R 22, R 11 und R 113: Beschreibung des thermodynamischen "
         "Zustandsverhaltens bei Temperaturen bis 525 K und Drücken bis 200 MPa"
@@ -62,8 +62,8 @@ CORRECTIONS = {
         "pages": "1465-1475",
         "doi": "10.1007/978-1-4613-0639-9_174",
     },
-    "OrtizVega-JPCRD-2019": {"institution": "unpublished"},
-    "Thol-2012": {"institution": "unpublished"},
+    "OrtizVega-JPCRD-2019": {"institution": "Unpublished"},
+    "Thol-2012": {"institution": "Unpublished"},
     "Thol-FPE-2016-MM": {
         "author": "Monika Thol and Frithjof H. Dubberke and Gábor Rutkai and Thorsten Windmann and Andreas Köster and "
         "Roland Span and Jadran Vrabec",
@@ -71,8 +71,8 @@ CORRECTIONS = {
         "volume": "418",
         "pages": "133-151",
     },
-    "Thol-FPE-2019-alkanes-hexane": {"journal": f"submitted to {_FPE}"},
-    "Thol-FPE-2019-alkanes-pentane": {"journal": f"submitted to {_FPE}"},
+    "Thol-FPE-2019-alkanes-hexane": {"journal": f"Submitted to {_FPE}"},
+    "Thol-FPE-2019-alkanes-pentane": {"journal": f"Submitted to {_FPE}"},
     "Thol-FPE-2019-siloxanes": {
         "journal": "Ind. Eng. Chem. Res.",
         "volume": "58",
@@ -90,7 +90,7 @@ CORRECTIONS = {
 def plain_text(text: str) -> str:
     """BibTeX text without braces and accents written as commands."""
     text = text.replace(r"\ss", "ß").replace("~", " ").replace(r"\&", "&")
-    text = re.sub(r"\$\\rho\$|\$rho\$", "ρ", text)
+    text = re.sub(r"\$\\rho\$|\$rho\$|(?<=, )rho(?=, T)", "ρ", text)
     text = re.sub(r"\$_\{?(\d+)\}?\$", r"\1", text)
     accents = {'"': "\u0308", "'": "\u0301", "`": "\u0300", "^": "\u0302", "c": "\u0327", "v": "\u030c"}
 
@@ -120,12 +120,22 @@ def first_name_first(author: str) -> str:
     return re.sub(r"(?<=\b[A-Z]\.)(?=[A-Z])", " ", name)
 
 
+#: Journals that entries write out, as the others abbreviate them.
+ABBREVIATED = {
+    "International Journal of Thermophysics": "Int. J. Thermophys.",
+    "Int. J. Thermophys": "Int. J. Thermophys.",
+    "International Journal of Refrigeration": "Int. J. Refrig.",
+    "Industrial & Engineering Chemistry Research": "Ind. Eng. Chem. Res.",
+}
+
+
 def publications(keys: str, library: dict[str, dict[str, str]]) -> list[dict[str, str]]:
     """Authors, year, title, where published and DOI of each comma-joined key."""
     found = []
     for key in filter(None, (part.strip() for part in keys.split(","))):
         entry = library.get(key, {}) | CORRECTIONS.get(key, {})
-        where = entry.get("journal") or entry.get("institution") or entry.get("publisher") or entry.get("school") or ""
+        where = ABBREVIATED.get(entry.get("journal", ""), entry.get("journal", ""))
+        where = where or entry.get("institution") or entry.get("publisher") or entry.get("school") or ""
         if entry.get("volume"):
             where += f" {entry['volume']}"
         if entry.get("pages"):

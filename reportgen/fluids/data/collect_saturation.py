@@ -149,7 +149,7 @@ def fit(
         return [Piece(low, high, c)]
     middle = (low + high) / 2
     parts = ((low, middle), (middle, high))
-    return [piece for part in parts for piece in fit(function, *part, scale, noise, depth + 1, loose=loose)]
+    return [piece for a, b in parts for piece in fit(function, a, b, scale, noise, depth + 1, loose=loose)]
 
 
 def march(
@@ -274,8 +274,8 @@ def joined_curves(
         place = np.clip((x - near) / (far - near), 0, 1)
         weight = place**3 * (10 - 15 * place + 6 * place * place)
         alone = evaluate_pieces(pure, 0, x)
-        lines = [weight * np.log(line(t)) + (1 - weight) * alone for line in (bubble, dew)]
-        return _on_lines(equation, t, *lines, liquid, vapour)
+        log_bubble, log_dew = (weight * np.log(line(t)) + (1 - weight) * alone for line in (bubble, dew))
+        return _on_lines(equation, t, log_bubble, log_dew, liquid, vapour)
 
     inner = []
     for piece in pure:
@@ -371,7 +371,7 @@ def inverse(pieces: list[Piece], function: int, log_top: Any, start: Any, *, loo
     # the innermost interval of the pressure joins the next one with a kink in its rounding: an end here too
     inner = np.sqrt(log_top - evaluate_pieces(pieces, function, np.array([pieces[0].high]))[0])
     parts = ((Extended(0), inner), (inner, deepest))
-    return [piece for part in parts for piece in fit(solve, *part, scale, loose=loose)]
+    return [piece for a, b in parts for piece in fit(solve, a, b, scale, loose=loose)]
 
 
 def as_data(pieces: list[Piece], names: tuple[str, ...]) -> dict[str, Any]:
