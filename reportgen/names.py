@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-__all__ = ["DIMENSIONS", "NAMES", "Name", "name_of", "symbol_of"]
+__all__ = ["AMOUNTS", "DIMENSIONS", "NAMES", "Name", "name_of", "symbol_of"]
 
 #: SI unit of each dimension, as written in a Record.
 DIMENSIONS: dict[str, str] = {
@@ -98,6 +98,7 @@ _ENTRIES = (
     Name("entropy_flow", r"\dot S", "entropy_flow", "Entropy carried by a stream, mass flow times specific entropy"),
     Name("mass", "m", "mass", "Mass"),
     Name("volume", "V", "volume", "Volume"),
+    Name("entropy", "S", "entropy", "Entropy of a content, mass times specific entropy"),
     Name("velocity", "V", "velocity", "Mean velocity of the flow"),
     Name("elevation", "z", "length", "Elevation above a common datum", "positive upwards"),
     # equipment
@@ -175,31 +176,87 @@ _ENTRIES = (
     Name("entropy_generation_number", r"N_s", "ratio", "Entropy generation over the reference stated for the kind"),
     Name("energy_imbalance", r"\delta\dot E", "power", "What is left of the energy balance", _LEFT),
     Name("mass_imbalance", r"\delta\dot m", "mass_flow", "What is left of the mass balance", _LEFT),
+    Name(
+        "net_power",
+        r"\dot W_\mathrm{net}",
+        "power",
+        "Net power of a cycle",
+        "positive as its purpose has it: delivered by a power cycle, absorbed for cooling or heating",
+    ),
+    Name("heat_supplied", r"\dot Q_\mathrm{sup}", "heat_flow", "Heat that enters a cycle", "positive into the cycle"),
+    Name("heat_rejected", r"\dot Q_\mathrm{rej}", "heat_flow", "Heat that leaves a cycle", "positive out of the cycle"),
+    Name("thermal_efficiency", r"\eta_\mathrm{th}", "efficiency", "Thermal efficiency: net power over heat supplied"),
+    Name(
+        "coefficient_of_performance",
+        r"\mathit{COP}",
+        "ratio",
+        "Coefficient of performance: heat taken up (cooling) or given off (heating) over net power",
+    ),
+    Name(
+        "second_law_efficiency",
+        r"\eta_\mathrm{II}",
+        "efficiency",
+        "Second-law efficiency: what a cycle is for over what it is given, both as exergy",
+    ),
     Name("closure", r"\delta\dot S_\mathrm{gen}", "entropy_flow", "Sum of the parts minus the balance round the whole"),
+    # processes of closed systems
+    Name("work", "W", "energy", "Work", "positive out of the system"),
+    Name("stirring_work", r"W_\mathrm{st}", "energy", "Work of stirring", "positive into the system"),
+    Name("external_pressure", r"p_\mathrm{ext}", "pressure", "Pressure from outside, absolute"),
+    Name("polytropic_index", "n", "ratio", "Exponent of a polytropic change"),
+    Name("entropy_change", r"\Delta S", "entropy", "Change of entropy", "end less beginning"),
+    Name("entropy_of_mixing", r"\Delta S_\mathrm{mix}", "entropy", "Entropy of mixing", "never negative"),
+    Name("mole_fraction", "x", "ratio", "Mole fraction of a species in a mixture"),
 )
 
 NAMES: dict[str, Name] = {entry.key: entry for entry in _ENTRIES}
 
+_INTO_SYSTEM = "positive into the system"
 
-def name_of(path: str) -> Name | None:
-    """Glossary entry of the last part of a path, or None when the path ends in no known name."""
-    return NAMES.get(path.rsplit(".", 1)[-1])
+#: What stands for a rate where equipment has it and for an amount where a process of a closed system has it.
+AMOUNTS: dict[str, Name] = {
+    entry.key: entry
+    for entry in (
+        Name("heat", "Q", "energy", "Heat", _INTO_SYSTEM),
+        Name("entropy_generation", r"S_\mathrm{gen}", "entropy", "Entropy generation", NAMES["entropy_generation"].sign),
+        Name("entropy_with_heat", "S_Q", "entropy", "Entropy carried by heat", _INTO_SYSTEM),
+        Name("lost_work", r"W_\mathrm{lost}", "energy", NAMES["lost_work"].text, NAMES["lost_work"].sign),
+        Name("energy_imbalance", r"\delta E", "energy", NAMES["energy_imbalance"].text, _LEFT),
+        Name("mass_imbalance", r"\delta m", "mass", NAMES["mass_imbalance"].text, _LEFT),
+        Name("closure", r"\delta S_\mathrm{gen}", "entropy", NAMES["closure"].text),
+    )
+}
+#: Owners of amounts, by the first part of a path.
+_OF_AMOUNTS = ("processes", "closed")
 
 
-def symbol_of(path: str) -> str:
-    """LaTeX symbol of a value, with the state or the tag as its subscript.
+def name_of(path: str, amounts: bool = False) -> Name | None:
+    """Glossary entry of the last part of a path, or None when the path ends in no known name.
+
+    ``amounts``: the path is a sum over processes although it does not say so, as ``total.heat`` may be.
+    """
+    parts = path.split(".")
+    if amounts or parts[0] in _OF_AMOUNTS:
+        return AMOUNTS.get(parts[-1]) or NAMES.get(parts[-1])
+    return NAMES.get(parts[-1])
+
+
+def symbol_of(path: str, amounts: bool = False) -> str:
+    """LaTeX symbol of a value, with the state or the tag as its subscript; ``amounts`` as for ``name_of``.
 
     ``states.2.specific_entropy`` gives ``s_{\\mathrm{2}}``, ``equipment.CV.heat_ports.1.heat`` the heat over boundary 1
     of CV, ``\\dot Q_{\\mathrm{CV},1}``. A path that ends in no known name gives its own text.
     """
     parts = path.split(".")
-    entry = NAMES.get(parts[-1])
+    entry = name_of(path, amounts)
     if entry is None:
         return r"\mathrm{" + parts[-1].replace("_", r"\ ") + "}"
     if parts[0] == "surroundings":
         owner = ",".join(["0", *(r"\mathrm{" + part + "}" for part in parts[1:-1])])
-    elif parts[0] == "total":
-        owner = r"\mathrm{total}"
+    elif parts[0] in ("total", "closed"):
+        owner = rf"\mathrm{{{parts[0]}}}"
+    elif len(parts) > 3 and parts[-3] == "species":
+        owner = r"\mathrm{" + ".".join(parts[1:-3]) + r"},\mathrm{" + parts[-2] + "}"
     elif len(parts) > 3 and parts[-3] == "heat_ports":
         owner = r"\mathrm{" + ".".join(parts[1:-3]) + "}," + parts[-2]
     else:

@@ -14,9 +14,11 @@ from collections.abc import Sequence
 import numpy as np
 
 from reportgen.balances.book import AMBIENT, Book
+from reportgen.balances.compression import add_compression
+from reportgen.balances.cycles import add_cycle
 from reportgen.balances.equations import elevated_enthalpy
 from reportgen.balances.network import Network
-from reportgen.balances.plant import Piece, balance_groups, trains_of
+from reportgen.balances.plant import Piece, Train, balance_groups, trains_of
 from reportgen.balances.relations import Equation, Term, token
 from reportgen.balances.solution import Account, Entry, Solution, Step
 from reportgen.errors import Fault
@@ -32,11 +34,19 @@ def add_results(solution: Solution, network: Network) -> None:
     for piece in solution.pieces.values():
         book.piece(piece)
     trains = solution.plant.trains.items()
-    groups = {f"trains.{name}": (train.title, train.equipment) for name, train in trains if train.equipment}
+    groups = {f"trains.{name}": train for name, train in trains if train.equipment}
+    several = len(groups) > 1
     if solution.pieces:
-        groups["total"] = ("Whole plant", trains_of(solution.plant, tuple(solution.pieces)))
-    for owner, (title, tags) in groups.items():
-        book.group(owner, title, [solution.pieces[tag] for tag in tags])
+        groups["total"] = Train("Whole plant", trains_of(solution.plant, tuple(solution.pieces)))
+    for owner, train in groups.items():
+        pieces = [solution.pieces[tag] for tag in train.equipment]
+        book.group(owner, train.title, pieces)
+        if owner == "total" and several:
+            continue  # several trains are several processes: their sum is no cycle and no compression of its own
+        cycle = add_cycle(book, owner, train.title, pieces, train.purpose)
+        add_compression(book, owner, train.title, pieces)
+        if cycle is not None:
+            solution.cycles[owner] = cycle
 
 
 class _FlowBook(Book):

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
-from typing import Any
+from typing import Any, Literal
 
 from reportgen.balances.kinds import Kind, kinds
 from reportgen.balances.zeros import StreamGroup, conflicts, same_zero
@@ -14,6 +14,7 @@ __all__ = [
     "EquipmentDefinition",
     "Piece",
     "Plant",
+    "Purpose",
     "Train",
     "alternatives",
     "balance_groups",
@@ -34,17 +35,23 @@ class EquipmentDefinition:
     options: Mapping[str, Any] = field(default_factory=dict)
 
 
+#: What a cycle is for.
+Purpose = Literal["power", "cooling", "heating"]
+
+
 @dataclass(frozen=True)
 class Train:
     """Pieces, or processes of closed systems, that have one account.
 
-    ``alternative_to`` names the train it could stand in the place of.
+    ``alternative_to`` names the train it could stand in the place of. ``purpose`` says which efficiency counts where
+    the pieces are a cycle, or a process that is judged like one.
     """
 
     title: str
     equipment: tuple[str, ...] = ()
     alternative_to: str | None = None
     processes: tuple[str, ...] = ()
+    purpose: Purpose | None = None
 
     @property
     def members(self) -> tuple[str, ...]:

@@ -11,11 +11,11 @@ from numpy.typing import NDArray
 
 from reportgen.balances.curves import states_between
 from reportgen.balances.doubts import Doubt
-from reportgen.balances.plant import Piece, Plant
+from reportgen.balances.plant import Piece, Plant, Purpose
 from reportgen.balances.relations import Equation, Stretch
 from reportgen.errors import Fault
 
-__all__ = ["Account", "Assumption", "Curve", "Entry", "Solution", "Step"]
+__all__ = ["Account", "Assumption", "Curve", "Cycle", "Entry", "Purpose", "Reservoir", "Solution", "Step"]
 
 
 @dataclass(frozen=True)
@@ -90,6 +90,37 @@ class Account:
 
 
 @dataclass(frozen=True)
+class Reservoir:
+    """What a cycle exchanges heat with: a boundary of stated temperature, or a stream outside the cycle.
+
+    ``sign`` times the value at the path ``heat`` is the heat into the cycle [W]. ``temperature`` is the path of the
+    boundary's temperature, None for a stream, which ``states`` names instead.
+    """
+
+    label: str
+    heat: str
+    sign: int
+    temperature: str | None
+    states: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True)
+class Cycle:
+    """A cycle: what it is for, whether it is closed, its reservoirs by the direction of their heat, and its powers.
+
+    ``powers``: path and +1 where the power is delivered, −1 where it is absorbed.
+    """
+
+    owner: str
+    title: str
+    purpose: Purpose
+    closed: bool
+    supplied: tuple[Reservoir, ...]
+    rejected: tuple[Reservoir, ...]
+    powers: tuple[tuple[str, int], ...]
+
+
+@dataclass(frozen=True)
 class Curve:
     """How a stream changes in the base case: entropy [J/(kg K)] and temperature [K] along the way, shape (points,).
 
@@ -118,7 +149,7 @@ class Solution:
     ``total``). ``warnings``: faults that do not stop the evaluation, each with its path: what has no value and why.
     ``closed``: owners of sums over processes. ``mixtures``: fluids whose composition follows from masses.
     ``doubts``: values that could come out where they cannot be meant. ``lacking``: path of a value that is NaN in the
-    base case to the paths it would have been made from.
+    base case to the paths it would have been made from. ``cycles``: by owner, where there is one.
     """
 
     plant: Plant
@@ -135,6 +166,7 @@ class Solution:
     processes: Mapping[str, Piece] = field(default_factory=dict)
     mixtures: Any = None
     closed: set[str] = field(default_factory=set)
+    cycles: dict[str, Cycle] = field(default_factory=dict)
 
     def curves(self, points: int = 41) -> list[Curve]:
         """The way of every stream through its piece of equipment, and of every process, base case."""

@@ -169,9 +169,7 @@ class Starts:
         return otherwise
 
     def _enthalpy(self, state: str, found: Mapping[str, float], at_temperature: float | None) -> float:
-        """From another property of the state or a temperature asked for, else the nearest enthalpy of the fluid, else at
-        ambient.
-        """
+        """From another property of the state or a temperature asked for, else near or at ambient temperature."""
         fluid = self._plant.fluids[self._plant.states[state]]
         pressure = found.get(f"states.{state}.pressure", self._base(f"states.{state}.pressure", 1e5))
         for name in _TELLING:

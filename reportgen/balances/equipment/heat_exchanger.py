@@ -20,6 +20,7 @@ from reportgen.balances.doubts import Doubt
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
+    HEAT_PORTS,
     adiabatic,
     heat_ports,
     heat_sum,
@@ -32,11 +33,15 @@ from reportgen.balances.equations import (
 from reportgen.balances.kinds import Kind, Parameter, Port
 from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Balance, Default, Formula, Relation, Stretch, Term, token
+from reportgen.balances.relations import Balance, Default, Exchange, Formula, Relation, Stretch, Term, token
 
 SIDES = ("hot", "cold")
 _PROFILE_POINTS = 33
 _ROUNDING_OF_TEMPERATURE = 1e-6  # K
+
+
+def _side(piece: Piece, side: str) -> tuple[str, str]:
+    return piece.one(f"{side}_inlet"), piece.one(f"{side}_outlet")
 
 
 def relations(piece: Piece) -> list[Relation]:
@@ -195,7 +200,9 @@ KIND = Kind(
     relations=relations,
     defaults=defaults,
     results=results,
-    heats=heat_ports,
+    heats=lambda piece: heat_ports(piece, into=_side(piece, "cold")),
+    exchanges=lambda piece: [Exchange(piece.path("duty"), _side(piece, "hot"), _side(piece, "cold"))],
+    groups=(HEAT_PORTS,),
     stretches=stretches,
     doubts=doubts,
     exergetic_efficiency="Exergy gained by one stream over exergy given up by the other.",
