@@ -9,12 +9,12 @@ from numpy.typing import NDArray
 
 from reportgen.fluids.real.helmholtz import Helmholtz, Properties
 
-__all__ = ["caloric_value", "density_slope", "rounding"]
+__all__ = ["caloric_value", "density_slope", "natural_unit", "rounding"]
 
 FloatArray = NDArray[Any]
 
 #: Rounding of a computed property, in parts of R T (R for entropy), and of its own value.
-_ROUNDING, _OWN_ROUNDING = 5e-14, 1e-15
+_ROUNDING, _OWN_ROUNDING = 2e-13, 1e-15
 
 
 def caloric_value(name: str, found: Properties, density: FloatArray) -> FloatArray:
@@ -42,8 +42,14 @@ def density_slope(name: str, found: Properties, temperature: FloatArray, density
     return result
 
 
+def natural_unit(name: str, equation: Helmholtz, temperature: FloatArray) -> FloatArray:
+    """R [J/(kg*K)] for an entropy, R T [J/kg] for an energy at T [K]; shape (N,)."""
+    scale = np.ones_like(temperature) if name == "specific_entropy" else temperature
+    result: FloatArray = equation.gas_constant * scale
+    return result
+
+
 def rounding(name: str, equation: Helmholtz, temperature: FloatArray, value: FloatArray) -> FloatArray:
     """How far a computed y [SI] of about ``value`` [SI] may be off by rounding at T [K], shape (N,)."""
-    scale = equation.gas_constant * (np.ones_like(value) if name == "specific_entropy" else temperature)
-    result: FloatArray = _ROUNDING * scale + _OWN_ROUNDING * np.abs(value)
+    result: FloatArray = _ROUNDING * natural_unit(name, equation, temperature) + _OWN_ROUNDING * np.abs(value)
     return result

@@ -19,7 +19,7 @@ _SAME = 1e-9
 #: Distance from a saturation line, in parts of R T or R (of a pressure: of itself), within which a state that is found
 #: on neither side of it lies on it: a pseudo-pure fluid has no states between its lines, and next to a critical point
 #: the two sides part only by rounding.
-BESIDE_LINE = 1e-9
+BESIDE_LINE = 3e-8
 
 
 class Chosen(NamedTuple):

@@ -305,6 +305,7 @@ class RealFluid:
             else np.where(elements.rejected, self._curves.top_pressure / 2, pressure)
         )
         result = self._flash.solve(p, target, entropy=name == "specific_entropy")
+        self._searches.complete(result, p, target, name)
         elements.reject(result.between, lambda i: guard.between_lines("pressure", p[i], name, target[i]))
         elements.reject(result.cold, lambda i: guard.too_cold(p[i], name, target[i]))
         elements.reject(result.hot, lambda i: guard.too_hot(p[i], name, target[i]))

@@ -1,7 +1,8 @@
-"""The state at a pressure with an internal energy.
+"""The state at a pressure with an internal energy, an enthalpy or an entropy.
 
-Along an isobar internal energy rises with temperature in each phase, (∂u/∂T)_p = c_p − p (∂v/∂T)_p, and from liquid to
-vapour, so that the state is unique. Enthalpy and entropy have a faster search of their own (flash.py).
+Along an isobar these rise with temperature in each phase, (∂u/∂T)_p = c_p − p (∂v/∂T)_p, (∂h/∂T)_p = c_p, (∂s/∂T)_p =
+c_p/T, and from liquid to vapour, so that the state is unique. Enthalpy and entropy have a faster search of their own
+(flash.py); what that leaves next to the critical point is found here.
 """
 
 from __future__ import annotations
@@ -11,10 +12,11 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.real.caloric import caloric_value, rounding
+from reportgen.fluids.real.caloric import caloric_value, natural_unit, rounding
 from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.density import DensitySolver
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
+from reportgen.fluids.real.lines import SaturationLines
 from reportgen.fluids.real.melting import MeltingLine
 from reportgen.fluids.real.roots import all_roots
 from reportgen.fluids.real.saturation import Saturated, SaturationCurves
@@ -24,21 +26,21 @@ __all__ = ["IsobarSearch"]
 FloatArray = NDArray[Any]
 IntArray = NDArray[np.intp]
 
-_ENERGY = "specific_internal_energy"
 #: Rounding granted at the ends of the range.
 _SLACK = 1e-9
-#: What is left of u at a root, in parts of R T; more is a jump of the density.
-_LEFT_OVER = 1e-9
-#: The bubble line of a pseudo-pure fluid stays below this part of the pressure where it meets the dew line.
-_BULGE = 1.05
+#: What is left of the property at a root, in parts of R T or R; more is a jump of the density.
+_LEFT_OVER = 1e-7
+#: Within the first, relative, of the highest temperature of saturation, distances from a line that are put down to
+#: rounding are the second, in parts of R T or R.
+_NEAR_TOP, _BESIDE_TOP = 1e-4, 1e-6
 
 
 class IsobarSearch:
-    """Finds the state at given pressure and internal energy.
+    """Finds the state at given pressure and internal energy, enthalpy or entropy.
 
     Parameters
     ----------
-    equation, curves, solver : the equation, its saturation curves, its density solver.
+    equation, curves, lines, solver : the equation, its saturation curves, what is known along them, its density solver.
     lowest, highest : temperatures [K] between which states are sought.
     triple_pressure : lowest pressure with a liquid [Pa].
     melting_line : the melting line, or None; liquids are sought above it.
@@ -48,27 +50,28 @@ class IsobarSearch:
         self,
         equation: Helmholtz,
         curves: SaturationCurves,
+        lines: SaturationLines,
         solver: DensitySolver,
         lowest: float,
         highest: float,
         triple_pressure: float,
         melting_line: MeltingLine | None,
     ) -> None:
-        self._equation, self._curves, self._solver = equation, curves, solver
+        self._equation, self._curves, self._lines, self._solver = equation, curves, lines, solver
         self._lowest, self._highest = lowest * (1 - _SLACK), highest * (1 + _SLACK)
         self._triple_pressure, self._line = triple_pressure, melting_line
         # a pseudo-pure fluid condenses at pressures a little below those at which it boils
         self._lowest_dew = float(curves.at_temperature(np.array([lowest])).dew_pressure[0])
 
-    def solve(self, pressure: FloatArray, energy: FloatArray) -> Candidates:
-        """State at p [Pa] and u [J/kg]; shape (N,)."""
+    def solve(self, pressure: FloatArray, target: FloatArray, name: str) -> Candidates:
+        """State at p [Pa] where the property ``name`` has the value ``target`` [SI]; shape (N,)."""
         result = Candidates(pressure.size)
         for start in range(0, pressure.size, CHUNK):
             where = np.arange(start, min(start + CHUNK, pressure.size))
-            result.join(self._solve(pressure[where], energy[where]), where)
+            result.join(self._solve(pressure[where], target[where], name), where)
         return result
 
-    def _solve(self, pressure: FloatArray, energy: FloatArray) -> Candidates:
+    def _solve(self, pressure: FloatArray, sought: FloatArray, name: str) -> Candidates:
         result = Candidates(pressure.size)
         low, high = np.full(pressure.size, self._lowest), np.full(pressure.size, self._highest)
         saturable = (pressure < self._curves.top_pressure) & (pressure >= self._triple_pressure)
@@ -77,62 +80,75 @@ class IsobarSearch:
         if thin.size:
             dew = self._curves.temperatures(np.maximum(pressure[thin], self._lowest_dew))[1]
             low[thin] = np.where(pressure[thin] > self._lowest_dew, dew, low[thin])
-        self._phase(result, dense, pressure, energy, self._coldest(pressure[dense]), high[dense], liquid=True)
-        if self._curves.pseudo_pure:
-            # the bubble line rises a little above the pressure of the highest temperature
-            near = dense[pressure[dense] < _BULGE * self._curves.top_pressure]
-            result.between[near] = (energy[near] >= result.least[near]) & (energy[near] <= result.greatest[near])
-        self._phase(result, thin, pressure, energy, low[thin], high[thin], liquid=False)
+        self._phase(result, thin, pressure, sought, name, low[thin], high[thin], liquid=False)
+        if self._curves.pseudo_pure and dense.size:
+            dense = self._under_the_bulge(result, dense, pressure, sought, name)
+        self._phase(result, dense, pressure, sought, name, self._coldest(pressure[dense]), high[dense], liquid=True)
         at = np.flatnonzero(saturable)
-        if not at.size:
-            return result
-        p = pressure[at]
-        saturated = self._curves.at_pressure(p)
+        if at.size:
+            self._across(result, at, pressure, sought, name, self._curves.at_pressure(pressure[at]), 1.0)
+        return result
+
+    def _under_the_bulge(
+        self, result: Candidates, where: IntArray, pressure: FloatArray, sought: FloatArray, name: str
+    ) -> IntArray:
+        """Add states at pressures that the bubble line of a pseudo-pure fluid crosses twice, above that where the lines
+        meet: there is liquid at both ends. Returns the other elements.
+        """
+        p = pressure[where]
+        crossings = np.sort(self._lines.bubble_pressure.crossings(p), axis=0)
+        crossed = (~np.isnan(crossings)).sum(axis=0) > 1
+        if crossed.any():
+            first, second, p = crossings[0, crossed], crossings[1, crossed], p[crossed]
+            densities = [self._curves.at_temperature(t).liquid_density for t in (first, second)]
+            ends = Saturated(first, second, p, p, *densities)
+            self._across(result, where[crossed], pressure, sought, name, ends, 0.0)
+        rest: IntArray = where[~crossed]
+        return rest
+
+    def _across(
+        self,
+        result: Candidates,
+        where: IntArray,
+        pressure: FloatArray,
+        sought: FloatArray,
+        name: str,
+        saturated: Saturated,
+        upper: float,
+    ) -> None:
+        """Add the states at pressures with saturation: below it, above it, in between, and on it. ``upper`` is the
+        quality [1] of the upper saturated state.
+        """
+        p, target = pressure[where], sought[where]
         t_l, t_v = saturated.bubble_temperature, saturated.dew_temperature
         liquid, vapour = saturated.liquid_density, saturated.vapour_density
         twice, both = np.concatenate([t_l, t_v]), np.concatenate([liquid, vapour])
         found = self._equation.properties(twice, both)
-        ends = found.enthalpy - np.concatenate([p, p]) / both
-        of_liquid, of_vapour = ends[: at.size], ends[at.size :]
-        little = rounding(_ENERGY, self._equation, t_l, energy[at])
-        from_liquid, from_vapour = energy[at] - of_liquid, energy[at] - of_vapour
-        mixed = np.flatnonzero((from_liquid >= -little) & (from_vapour <= little))
-        x = np.clip(from_liquid[mixed] / np.maximum(of_vapour - of_liquid, little)[mixed], 0.0, 1.0)
-        x = np.where(np.abs(from_liquid[mixed]) <= little[mixed], 0.0, x)
-        x = np.where(np.abs(from_vapour[mixed]) <= little[mixed], 1.0, x)
-        inside = (x > 0) & (x < 1)
+        ends = caloric_value(name, found._replace(pressure=np.concatenate([p, p])), both)
+        of_liquid, of_vapour = ends[: where.size], ends[where.size :]
+        little = rounding(name, self._equation, t_l, target)
+        from_liquid, from_vapour = target - of_liquid, target - of_vapour
+        inside = np.flatnonzero((from_liquid > little) & (from_vapour < -little))
         if self._curves.pseudo_pure:
-            result.between[at[mixed[inside]]] = True
-            mixed, x = mixed[~inside], x[~inside]
-        rho_l, rho_v = liquid[mixed], vapour[mixed]
-        density = np.where(x == 0, rho_l, np.where(x == 1, rho_v, 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))))
-        temperature = np.where(x == 0, t_l[mixed], t_v[mixed])
-        result.add(at[mixed], temperature, p[mixed], density, x, rho_l, rho_v)
+            result.between[where[inside]] = True
+        elif inside.size:
+            x = from_liquid[inside] / (of_vapour - of_liquid)[inside]
+            rho_l, rho_v = liquid[inside], vapour[inside]
+            density = 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))
+            result.add(where[inside], t_v[inside], p[inside], density, x, rho_l, rho_v)
         cold, hot = np.flatnonzero(from_liquid < -little), np.flatnonzero(from_vapour > little)
-        coldest = np.minimum(self._coldest(p[cold]), t_l[cold])
-        self._phase(result, at[cold], pressure, energy, coldest, t_l[cold], liquid=True, edge=(liquid[cold], "high"))
-        self._phase(result, at[hot], pressure, energy, t_v[hot], high[at[hot]], liquid=False, edge=(vapour[hot], "low"))
-        self._near_lines(result, at, saturated, from_liquid, from_vapour)
-        return result
-
-    def _near_lines(
-        self,
-        result: Candidates,
-        where: IntArray,
-        saturated: Saturated,
-        from_liquid: FloatArray,
-        from_vapour: FloatArray,
-    ) -> None:
-        """Add the saturated state where none is found on either side of a line."""
-        liquid = np.abs(from_liquid) < np.abs(from_vapour)
+        below, above = where[cold], where[hot]
+        low, high = np.minimum(self._coldest(p[cold]), t_l[cold]), np.full(hot.size, self._highest)
+        lower_end, upper_end = (liquid[cold], "high"), (vapour[hot], "low")
+        self._phase(result, below, pressure, sought, name, low, t_l[cold], liquid=True, edge=lower_end)
+        self._phase(result, above, pressure, sought, name, t_v[hot], high, liquid=upper == 0, edge=upper_end)
+        # on a line, or so close to it that the state is found on neither side
+        near = np.where(1 - t_l / self._curves.top_temperature < _NEAR_TOP, _BESIDE_TOP, BESIDE_LINE)
         gap = np.minimum(np.abs(from_liquid), np.abs(from_vapour))
-        close = gap <= BESIDE_LINE * self._equation.gas_constant * self._curves.top_temperature
-        near = np.flatnonzero(~result.found()[where] & close)
-        x = np.where(liquid[near], 0.0, 1.0)
-        temperature = np.where(x == 0, saturated.bubble_temperature[near], saturated.dew_temperature[near])
-        pressure = np.where(x == 0, saturated.bubble_pressure[near], saturated.dew_pressure[near])
-        density = np.where(x == 0, saturated.liquid_density[near], saturated.vapour_density[near])
-        result.add(where[near], temperature, pressure, density, x)
+        left = np.flatnonzero(~result.found()[where] & (gap <= near * natural_unit(name, self._equation, t_l)))
+        lower = np.abs(from_liquid[left]) <= np.abs(from_vapour[left])
+        temperature, density = np.where(lower, t_l[left], t_v[left]), np.where(lower, liquid[left], vapour[left])
+        result.add(where[left], temperature, p[left], density, np.where(lower, 0.0, upper))
 
     def _coldest(self, pressure: FloatArray) -> FloatArray:
         """Lowest temperature [K] of the liquid at p [Pa]."""
@@ -144,7 +160,8 @@ class IsobarSearch:
         result: Candidates,
         where: IntArray,
         pressure: FloatArray,
-        energy: FloatArray,
+        sought: FloatArray,
+        name: str,
         low: FloatArray,
         high: FloatArray,
         *,
@@ -156,7 +173,7 @@ class IsobarSearch:
         """
         if not where.size:
             return
-        p, target = pressure[where], energy[where]
+        p, target = pressure[where], sought[where]
 
         def density(t: FloatArray, columns: IntArray) -> FloatArray:
             found, good = self._solver.solve(t, p[columns], np.full(t.size, liquid))
@@ -168,21 +185,18 @@ class IsobarSearch:
 
         def function(t: FloatArray, columns: IntArray) -> FloatArray:
             rho = density(t, columns)
-            value: FloatArray = caloric_value(_ENERGY, self._equation.properties(t, rho), rho)
+            value: FloatArray = caloric_value(name, self._equation.properties(t, rho), rho)
             # without a density on this branch: too hot for it, as within the lines of a pseudo-pure fluid
             return np.where(np.isnan(rho), greatest[columns], value) - target[columns]
 
         greatest = np.full(where.size, np.inf)
 
-        ends = [low, high]
-        if self._curves.pseudo_pure and edge is None and liquid:
-            # the one temperature above which there is no line in the way
-            ends.insert(1, np.clip(np.full(where.size, self._curves.top_temperature * (1 + 1e-12)), low, high))
         every = np.arange(where.size)
         greatest = np.abs(function(high, every)) + np.abs(target)
-        little = rounding(_ENERGY, self._equation, high, target)
-        roots = all_roots(function, np.vstack(ends), little)
+        little = rounding(name, self._equation, high, target)
+        roots = all_roots(function, np.vstack([low, high]), little)
         result.seen(where, roots.least + target, roots.greatest + target)
-        left = np.abs(function(roots.x, roots.column)) <= _LEFT_OVER * self._equation.gas_constant * roots.x
-        column, t = roots.column[left], roots.x[left]
+        left_over = np.abs(function(roots.x, roots.column))
+        good = left_over <= _LEFT_OVER * natural_unit(name, self._equation, roots.x)
+        column, t = roots.column[good], roots.x[good]
         result.add(where[column], t, p[column], density(t, column))

@@ -13,13 +13,13 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.real.caloric import caloric_value, rounding
+from reportgen.fluids.real.caloric import caloric_value, natural_unit, rounding
 from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.lines import SaturationLines
 from reportgen.fluids.real.roots import all_roots
-from reportgen.fluids.real.saturation import SaturationCurves
+from reportgen.fluids.real.saturation import Saturated, SaturationCurves
 
 __all__ = ["IsochoreSearch"]
 
@@ -31,6 +31,8 @@ BoolArray = NDArray[np.bool_]
 _WAY = (np.linspace(0.0, 1.0, 24) ** 2)[:, None]
 #: Relative distance from a saturated density that is put down to rounding.
 _ON_LINE = 1e-14
+#: The same where a line was found to be crossed: next to the critical point, density follows T by its square root.
+_ENDS_ON_LINE = 1e-6
 #: Rounding granted at the ends of the range.
 _SLACK = 1e-9
 
@@ -73,6 +75,7 @@ class IsochoreSearch:
                 np.full(density.size, self._lowest),
                 self._lines.liquid_density.crossings(density),
                 self._lines.vapour_density.crossings(density),
+                self._top(density),
                 self._ceiling.crossings(density),
                 np.full(density.size, self._highest),
             ]
@@ -85,9 +88,20 @@ class IsochoreSearch:
             inside = self._inside(middle[some], density[some])
             for where, mixed in ((some[~inside], False), (some[inside], True)):
                 if where.size:
-                    segment = _Segment(self, density[where], target[where], name, mixed)
-                    segment.search(result, where, low[where], high[where])
+                    segment = _Segment(self, density[where], target[where], name, mixed, low[where], high[where])
+                    segment.search(result, where)
+        left = np.flatnonzero(~result.found())
+        for end in ends[1:-1, left] if left.size else ():
+            _Segment(self, density[left], target[left], name, True, end, end).beside_line(result, left)
         return result
+
+    def _top(self, density: FloatArray) -> FloatArray:
+        """The temperature [K] where the lines meet, at densities [kg/m3] that the ends of their curves leave open; else
+        NaN.
+        """
+        top = np.array([self._curves.top_temperature])
+        ends = self._curves.at_temperature(top)
+        return np.where((density > ends.vapour_density) & (density < ends.liquid_density), top, np.nan)
 
     def _inside(self, temperature: FloatArray, density: FloatArray) -> BoolArray:
         """Whether ρ [kg/m3] lies between the saturated densities at T [K]."""
@@ -100,17 +114,29 @@ class IsochoreSearch:
 
 
 class _Segment:
-    """A part of isochores that lies in one phase, or in two."""
+    """A part of isochores, between two temperatures, that lies in one phase or in two."""
 
-    def __init__(self, search: IsochoreSearch, density: FloatArray, target: FloatArray, name: str, mixed: bool) -> None:
+    def __init__(
+        self,
+        search: IsochoreSearch,
+        density: FloatArray,
+        target: FloatArray,
+        name: str,
+        mixed: bool,
+        low: FloatArray,
+        high: FloatArray,
+    ) -> None:
         self._equation, self._curves = search._equation, search._curves
+        self._low, self._high = low, high
         self._density, self._target, self._name, self._mixed = density, target, name, mixed
         self._critical_density = search.critical_density
 
-    def search(self, result: Candidates, where: IntArray, low: FloatArray, high: FloatArray) -> None:
+    def search(self, result: Candidates, where: IntArray) -> None:
+        """Add the states of the elements ``where``."""
+        low, high = self._low, self._high
         grid = np.vstack([low, high])
         if self._mixed and self._curves.pseudo_pure:
-            self._between(result, where, grid)
+            self._between(result, where)
             return
         pressure_sought = self._name == "pressure"
         little = 1e-15 * self._target if pressure_sought else rounding(self._name, self._equation, high, self._target)
@@ -126,7 +152,7 @@ class _Segment:
         column, t = roots.column, roots.x
         density = self._density[column]
         found = self._equation.properties(t, density)
-        pressure, quality = self._settled(t, density, found.pressure), np.full_like(t, np.nan)
+        pressure, quality = self._settled(t, column, found.pressure), np.full_like(t, np.nan)
         liquid, vapour = quality.copy(), quality.copy()
         below = np.flatnonzero(t < self._curves.top_temperature)
         if below.size:
@@ -134,8 +160,8 @@ class _Segment:
             liquid[below], vapour[below] = saturated.liquid_density, saturated.vapour_density
             rho, rho_l, rho_v = density[below], liquid[below], vapour[below]
             x = (1 / rho - 1 / rho_l) / (1 / rho_v - 1 / rho_l) if self._mixed else np.full_like(rho, np.nan)
-            x = np.where(np.abs(rho - rho_l) <= _ON_LINE * rho_l, 0.0, x)
-            x = np.where(np.abs(rho - rho_v) <= _ON_LINE * rho_v, 1.0, np.clip(x, 0.0, 1.0))
+            boiling, condensing = self._on_lines(t[below], column[below], saturated)
+            x = np.where(boiling, 0.0, np.where(condensing, 1.0, np.clip(x, 0.0, 1.0)))
             quality[below] = x
             on_line = np.where(x == 1, saturated.dew_pressure, saturated.bubble_pressure)
             pressure[below] = np.where(np.isnan(x), pressure[below], on_line)
@@ -145,26 +171,23 @@ class _Segment:
             *(part[sound] for part in (t, pressure, density, quality, liquid, vapour)),
         )
 
-    def _between(self, result: Candidates, where: IntArray, ends: FloatArray) -> None:
-        """Note elements between the lines of a pseudo-pure fluid, and those that lie on one of them but for rounding.
-
-        The ends of the segment, T [K] of shape (2, N), are on the lines, or at the end of the range.
+    def _between(self, result: Candidates, where: IntArray) -> None:
+        """Note elements between the lines of a pseudo-pure fluid: from one end of the segment to the other the property
+        passes its target.
         """
         every = np.arange(where.size)
-        gaps = np.array([self._gap(end, every) for end in ends])
-        result.between[where] |= (gaps[0] > 0) != (gaps[1] > 0)
-        if self._name == "pressure":
-            scale = np.abs(self._target)
-        else:
-            scale = self._equation.gas_constant * (np.ones(where.size) if self._name == "specific_entropy" else ends[1])
-        for end, gap in zip(ends, gaps, strict=True):
-            saturated = self._curves.at_temperature(end)
-            boiling = np.abs(self._density - saturated.liquid_density) <= BESIDE_LINE * self._density
-            condensing = np.abs(self._density - saturated.vapour_density) <= BESIDE_LINE * self._density
-            at = np.flatnonzero((np.abs(gap) <= BESIDE_LINE * scale) & (boiling | condensing))
-            x = np.where(condensing, 1.0, 0.0)
-            pressure = np.where(condensing, saturated.dew_pressure, saturated.bubble_pressure)
-            result.add(where[at], end[at], pressure[at], self._density[at], x[at])
+        result.between[where] |= (self._gap(self._low, every) > 0) != (self._gap(self._high, every) > 0)
+
+    def beside_line(self, result: Candidates, where: IntArray) -> None:
+        """Add the saturated states at the lower end of the segment that have the property but for rounding."""
+        t, rho = self._low, self._density
+        saturated = self._curves.at_temperature(t)
+        boiling, condensing = self._on_lines(t, np.arange(t.size), saturated)
+        scale = self._target if self._name == "pressure" else natural_unit(self._name, self._equation, t)
+        near = np.abs(self._gap(t, np.arange(t.size))) <= BESIDE_LINE * scale
+        at = np.flatnonzero(near & (boiling | condensing))
+        pressure = np.where(condensing, saturated.dew_pressure, saturated.bubble_pressure)
+        result.add(where[at], t[at], pressure[at], rho[at], np.where(condensing, 1.0, 0.0)[at])
 
     def _gap(self, temperature: FloatArray, columns: IntArray) -> FloatArray:
         """What is sought less its target [SI] at T [K]."""
@@ -174,12 +197,21 @@ class _Segment:
         else:
             found = self._equation.properties(temperature, rho)
             if self._name == "pressure":
-                value = self._settled(temperature, rho, found.pressure)
+                value = self._settled(temperature, columns, found.pressure)
             else:
                 value = caloric_value(self._name, found, rho)
         return value - self._target[columns]
 
-    def _settled(self, temperature: FloatArray, density: FloatArray, pressure: FloatArray) -> FloatArray:
+    def _on_lines(
+        self, temperature: FloatArray, columns: IntArray, saturated: Saturated
+    ) -> tuple[BoolArray, BoolArray]:
+        """Which T [K] are points of the saturated liquid's line, and of the vapour's, as nearly as T can be given."""
+        rho = self._density[columns]
+        at_end = (temperature == self._low[columns]) | (temperature == self._high[columns])
+        near = np.where(at_end, _ENDS_ON_LINE, _ON_LINE) * rho
+        return np.abs(rho - saturated.liquid_density) <= near, np.abs(rho - saturated.vapour_density) <= near
+
+    def _settled(self, temperature: FloatArray, columns: IntArray, pressure: FloatArray) -> FloatArray:
         """The equation's pressure [Pa] in a single phase, freed of the rounding that a boiling liquid's has: on the
         lines that of saturation, in a liquid not less.
         """
@@ -187,11 +219,10 @@ class _Segment:
         if not below.size:
             return pressure
         saturated = self._curves.at_temperature(temperature[below])
-        rho, here = density[below], pressure[below]
-        on_liquid = np.abs(rho - saturated.liquid_density) <= _ON_LINE * rho
-        on_vapour = np.abs(rho - saturated.vapour_density) <= _ON_LINE * rho
-        here = np.where(rho >= saturated.liquid_density, np.maximum(here, saturated.bubble_pressure), here)
-        here = np.where(on_liquid, saturated.bubble_pressure, np.where(on_vapour, saturated.dew_pressure, here))
+        boiling, condensing = self._on_lines(temperature[below], columns[below], saturated)
+        here, liquid = pressure[below], self._density[columns[below]] >= saturated.liquid_density
+        here = np.where(liquid, np.maximum(here, saturated.bubble_pressure), here)
+        here = np.where(boiling, saturated.bubble_pressure, np.where(condensing, saturated.dew_pressure, here))
         pressure[below] = here
         return pressure
 

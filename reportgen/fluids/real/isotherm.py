@@ -12,12 +12,12 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids.real.caloric import caloric_value, density_slope, rounding
+from reportgen.fluids.real.caloric import caloric_value, density_slope, natural_unit, rounding
 from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.roots import all_roots
-from reportgen.fluids.real.saturation import Saturated, SaturationCurves
+from reportgen.fluids.real.saturation import SaturationCurves
 
 __all__ = ["IsothermSearch"]
 
@@ -83,8 +83,10 @@ class IsothermSearch:
             little = rounding(name, self._equation, t, wanted)
             mixed = (np.abs(from_liquid) > little) & (np.abs(from_vapour) > little)
             mixed &= (from_liquid > 0) != (from_vapour > 0)
+            gap = np.minimum(np.abs(from_liquid), np.abs(from_vapour))
+            near = gap <= BESIDE_LINE * natural_unit(name, self._equation, t)
             if self._curves.pseudo_pure:
-                self._beside_lines(result, at, t, saturated, name, mixed, from_liquid, from_vapour)
+                result.between[at] = mixed & ~near
             else:
                 inside = np.flatnonzero(mixed)
                 rho_l, rho_v = liquid[inside], vapour[inside]
@@ -92,28 +94,11 @@ class IsothermSearch:
                 density = 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))
                 p = saturated.bubble_pressure[inside]
                 result.add(at[inside], t[inside], p, density, x, rho_l, rho_v)
+            left = np.flatnonzero(near & ~result.found()[at])
+            dew = np.abs(from_vapour[left]) < np.abs(from_liquid[left])
+            p = np.where(dew, saturated.dew_pressure[left], saturated.bubble_pressure[left])
+            result.add(at[left], t[left], p, np.where(dew, vapour[left], liquid[left]), np.where(dew, 1.0, 0.0))
         return result
-
-    def _beside_lines(
-        self,
-        result: Candidates,
-        where: IntArray,
-        temperature: FloatArray,
-        saturated: Saturated,
-        name: str,
-        mixed: NDArray[np.bool_],
-        from_liquid: FloatArray,
-        from_vapour: FloatArray,
-    ) -> None:
-        """Of elements between the lines of a pseudo-pure fluid, note those that lie on one of them but for rounding."""
-        near = BESIDE_LINE * self._equation.gas_constant * (1.0 if name == "specific_entropy" else temperature)
-        on_liquid, on_vapour = np.abs(from_liquid) <= near, np.abs(from_vapour) <= near
-        result.between[where] |= mixed & ~on_liquid & ~on_vapour
-        at = np.flatnonzero(mixed & (on_liquid | on_vapour))
-        dew = on_vapour[at]
-        pressure = np.where(dew, saturated.dew_pressure[at], saturated.bubble_pressure[at])
-        density = np.where(dew, saturated.vapour_density[at], saturated.liquid_density[at])
-        result.add(where[at], temperature[at], pressure, density, np.where(dew, 1.0, 0.0))
 
     def _single_phase(
         self,

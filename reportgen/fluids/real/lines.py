@@ -110,6 +110,11 @@ class SaturationLines:
         return self._line(lambda t: self._curves.at_temperature(t).vapour_density)
 
     @cached_property
+    def bubble_pressure(self) -> SaturationLine:
+        """Pressure [Pa] of the saturated liquid, which for a pseudo-pure fluid can turn before the lines meet."""
+        return self._line(lambda t: self._curves.at_temperature(t).bubble_pressure)
+
+    @cached_property
     def liquid_entropy(self) -> SaturationLine:
         """Entropy [J/(kg*K)] of the saturated liquid."""
         return self._line(lambda t: self._equation.properties(t, self._curves.at_temperature(t).liquid_density).entropy)

@@ -19,6 +19,8 @@ Function = Callable[[FloatArray, IntArray], FloatArray]
 _ITERATIONS = 120
 #: Relative width at which a bracket counts as closed: twice the spacing of doubles.
 _CLOSED = 4.5e-16
+#: Rounding granted at turning points, in parts of that at ends: a value given may be that of the turning point itself.
+_AT_TURNS = 20.0
 
 
 def bracketed_root(
@@ -66,9 +68,10 @@ def bracketed_root(
         a, fa = x, fx
         nearer = np.abs(fa) < np.abs(fb)
         best = np.where(nearer, a, b)
-        least = _CLOSED * np.abs(best) / np.abs(b - c)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            least = _CLOSED * np.abs(best) / np.abs(b - a)
         lost = np.isnan(fx)
-        done = (least > 0.5) | (fx == 0) | lost | (np.abs(b - a) <= _CLOSED * np.abs(best))
+        done = ~(least <= 0.5) | (fx == 0) | lost
         if done.any():
             result[active[done]] = np.where(lost, np.nan, best)[done]
             keep = ~done
@@ -110,7 +113,7 @@ def all_roots(
     ----------
     function : x [any unit] and columns -> f(x).
     grid : points, shape (G, N), not descending; equal neighbours do no harm.
-    rounding : |f| that counts as zero at ends and turning points [unit of f], shape (N,).
+    rounding : |f| that counts as zero at ends [unit of f], shape (N,); more is granted at turning points.
     slope : f′ at the grid, or anything of its sign; left out where every point of the grid is to be an end.
     slope_function : x and columns -> the same at any x; needed with ``slope``.
     """
@@ -118,6 +121,7 @@ def all_roots(
     every = np.arange(size)
     if slope is None:
         column, x = np.tile(every, points), grid.reshape(-1)
+        granted = rounding[column]
     else:
         assert slope_function is not None
         rows, turned = np.nonzero((slope[:-1] > 0) != (slope[1:] > 0))
@@ -126,16 +130,18 @@ def all_roots(
         known = ~np.isnan(turning)
         column = np.concatenate([every, every, turned[known]])
         x = np.concatenate([grid[0], grid[-1], turning[known]])
+        granted = rounding[column]
+        granted[2 * size :] *= _AT_TURNS
     order = np.lexsort((x, column))
-    column, x = column[order], x[order]
+    column, x, granted = column[order], x[order], granted[order]
     f = function(x, column)
-    f = np.where(np.abs(f) <= rounding[column], 0.0, f)
+    f = np.where(np.abs(f) <= granted, 0.0, f)
     least, greatest = np.full(size, np.inf), np.full(size, -np.inf)
     known = np.isfinite(f)
     np.minimum.at(least, column[known], f[known])
     np.maximum.at(greatest, column[known], f[known])
     zero = f == 0
-    zero[1:] &= ~((x[1:] == x[:-1]) & (column[1:] == column[:-1]))
+    zero[1:] &= ~((x[1:] == x[:-1]) & (column[1:] == column[:-1]) & zero[:-1])
     left = np.flatnonzero((column[1:] == column[:-1]) & (f[1:] * np.sign(f[:-1]) < 0))
     found = bracketed_root(function, x[left], x[left + 1], f[left], f[left + 1], column[left])
     good = ~np.isnan(found)

@@ -13,7 +13,7 @@ from reportgen.fluids.pairs import Elements
 from reportgen.fluids.real.candidates import Candidates, Chosen
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.density import DensitySolver
-from reportgen.fluids.real.flash import PressureFlash
+from reportgen.fluids.real.flash import Caloric, PressureFlash
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.isentrope import IsentropeSearch
 from reportgen.fluids.real.isobar import IsobarSearch
@@ -28,6 +28,8 @@ __all__ = ["SEARCHED_PAIRS", "Found", "Searches"]
 FloatArray = NDArray[Any]
 
 _ENERGY = "specific_internal_energy"
+#: |p/p_c − 1| up to which a search that found nothing is repeated.
+_NEAR_CRITICAL = 0.03
 
 #: Pairs found here, in the order of :meth:`Searches.find`.
 SEARCHED_PAIRS: tuple[tuple[str, str], ...] = (
@@ -79,11 +81,11 @@ class Searches:
         low, high = limits.minimum_temperature, limits.maximum_temperature
         most = limits.maximum_pressure
         lines = SaturationLines(equation, curves, low)
-        self._guard, self._densest = guard, solver.maximum_density
+        self._guard, self._densest, self._top_pressure = guard, solver.maximum_density, curves.top_pressure
         ceiling = Ceiling(curves, solver, guard.melting_line, low, high, most)
         self._isotherm = IsothermSearch(equation, curves, ceiling, LOWEST_PRESSURE)
         self._isochore = IsochoreSearch(equation, curves, lines, ceiling, low, high)
-        self._isobar = IsobarSearch(equation, curves, solver, low, high, triple_pressure, guard.melting_line)
+        self._isobar = IsobarSearch(equation, curves, lines, solver, low, high, triple_pressure, guard.melting_line)
         self._isentrope = IsentropeSearch(
             equation, curves, lines, flash, low, high, LOWEST_PRESSURE, most, solver.maximum_density
         )
@@ -160,6 +162,27 @@ class Searches:
             self._explain(candidates, none, names, first_value, second_value, elements)
         return valid, candidates.between
 
+    def complete(self, result: Caloric, pressure: FloatArray, target: FloatArray, name: str) -> None:
+        """Search once more, by bisection, for states that a flash has not found close to the critical pressure, or has
+        put between the lines of a pseudo-pure fluid. There saturation is known to some digits fewer.
+
+        Parameters
+        ----------
+        result : of the flash; altered where a state is found.
+        pressure, target : p [Pa] and the property ``name`` [SI], shape (N,).
+        """
+        doubtful = (np.abs(pressure / self._top_pressure - 1) < _NEAR_CRITICAL) | result.between
+        where = np.flatnonzero(~result.found & doubtful)
+        if not where.size:
+            return
+        states = self._isobar.solve(pressure[where], target[where], name).gather()
+        at = where[states.element]
+        for flag in (result.between, result.cold, result.hot):
+            flag[at] = False
+        result.found[at] = True
+        result.temperature[at], result.density[at], result.quality[at] = states[1], states[3], states[4]
+        result.liquid_density[at], result.vapour_density[at] = states[5], states[6]
+
     def _search(self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray) -> Candidates:
         first, second = names
         if first == "temperature":
@@ -169,7 +192,7 @@ class Searches:
         if second == "density":
             return self._isochore.solve(second_value, first_value, first)
         if first == "pressure":
-            return self._isobar.solve(first_value, second_value)
+            return self._isobar.solve(first_value, second_value, second)
         return self._isentrope.solve(first_value, second_value)
 
     def _explain(
