@@ -20,7 +20,7 @@ MELTING = {
 #: Hydrogen: the source's constants put the line 23 MPa above the triple point, where parahydrogen's begins. Taken
 #: instead is the equation printed in the abstract of the very publication that the source cites, in GPa
 #: T = 14.025 (1 + P/0.0286)^0.589 exp(-4.6e-3 P); it agrees with parahydrogen's line within 1.6 MPa from 16 K to 40 K.
-#: Helium: the source's constants put the line at 12.0 MPa at 4.2 K; measured is 14.1 MPa (from memory). Taken instead is
+#: Helium: the source's constants give 12.0 MPa at 4.2 K; measured is 14.1 MPa (from memory). Taken instead is
 #: p/MPa = -1.7455837 + 1.6979793 (T/K)^1.555414, which gives 14.07 MPa.
 _HYDROGEN = [{"form": "kechin", "temperature": 14.025, "pressure": 0.0, "a": 2.86e7, "b": 0.589, "c": 4.6e-12}]
 _HELIUM = [
