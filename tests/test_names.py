@@ -6,9 +6,9 @@ import re
 
 import pytest
 
-from reportgen.balances.kinds import kinds
+from reportgen.balances.kinds import kinds, process_kinds
 from reportgen.fluids.state import FIELDS
-from reportgen.names import DIMENSIONS, NAMES, name_of, symbol_of
+from reportgen.names import AMOUNTS, DIMENSIONS, NAMES, name_of, symbol_of
 from reportgen.quantities import Display, parse, usual_units
 from reportgen.spec.schema import STATE_KEYS
 
@@ -44,11 +44,23 @@ EQUIPMENT = (
     "entropy_with_heat",
     "closure",
 )
+#: The same for processes of closed systems.
+PROCESSES = (
+    "heat",
+    "work",
+    "entropy_change",
+    "entropy_with_heat",
+    "entropy_generation",
+    "lost_work",
+    "energy_imbalance",
+    "mass_imbalance",
+    "closure",
+)
 
 
 def test_every_promised_name_is_there() -> None:
     numbers = [field for field in FIELDS if field != "phase"]  # the phase is a word
-    for name in (*STATES, *EQUIPMENT, *STATE_KEYS, *numbers):
+    for name in (*STATES, *EQUIPMENT, *PROCESSES, *STATE_KEYS, *numbers):
         assert name in NAMES, name
 
 
@@ -70,11 +82,32 @@ def test_keys_symbols_and_dimensions() -> None:
 
 
 def test_symbols_are_told_apart_within_one_owner() -> None:
-    """Volume (closed systems) and velocity share V, as in the standards; no piece or stream has both."""
+    """Volume (closed systems) and velocity share V, vapour fraction and mole fraction x, as in the standards; no piece,
+    stream or mixture has both.
+    """
     owners: dict[str, list[str]] = {}
     for entry in NAMES.values():
         owners.setdefault(entry.symbol, []).append(entry.key)
-    assert [keys for keys in owners.values() if len(keys) > 1] == [["volume", "velocity"]]
+    assert [keys for keys in owners.values() if len(keys) > 1] == [["quality", "mole_fraction"], ["volume", "velocity"]]
+
+
+def test_symbols_of_a_process_are_told_apart() -> None:
+    closed = [*AMOUNTS.values(), *(NAMES[name] for name in PROCESSES if name not in AMOUNTS)]
+    assert len({entry.symbol for entry in closed}) == len(closed)
+
+
+def test_a_process_has_amounts_where_equipment_has_rates() -> None:
+    assert name_of("processes.P1.heat").dimension == "energy"
+    assert name_of("equipment.P1.heat").dimension == "heat_flow"
+    assert name_of("closed.lost_work").dimension == "energy"
+    assert name_of("total.lost_work").dimension == "power"
+    assert name_of("total.lost_work", amounts=True).dimension == "energy"
+    assert symbol_of("processes.P1.heat") == r"Q_{\mathrm{P1}}"
+    assert symbol_of("total.heat", amounts=True) == r"Q_{\mathrm{total}}"
+    assert symbol_of("processes.P2.species.N2.mole_fraction") == r"x_{\mathrm{P2},\mathrm{N2}}"
+    for kind in process_kinds().values():
+        for parameter in (*kind.parameters, *(inner for group in kind.groups for inner in group.parameters)):
+            assert name_of(parameter.name, amounts=True).dimension == parameter.dimension, (kind.name, parameter.name)
 
 
 @pytest.mark.parametrize(

@@ -155,7 +155,7 @@ class Limits:
 
 @dataclass(frozen=True)
 class EquipmentSpec:
-    """One piece of equipment: the states at its ports that are used.
+    """One piece of equipment, or one process: the states at its ports that are used.
 
     ``options`` holds the number of entries of each group of the kind, such as ``{"heat_ports": 2}``, and the words
     chosen where the kind offers any.
@@ -165,20 +165,24 @@ class EquipmentSpec:
     kind: str
     title: str | None
     ports: Mapping[str, tuple[str, ...]]
-    options: Mapping[str, int | str]
+    options: Mapping[str, int | str | tuple[str, ...]]
     limits: Limits | None
     line: int
 
 
 @dataclass(frozen=True)
 class TrainSpec:
-    """Pieces that are accounted for together; ``alternative_to`` names the train in whose place they could stand."""
+    """Pieces or processes that are accounted for together.
+
+    ``alternative_to`` names the train in whose place they could stand.
+    """
 
     id: str
     title: str
     equipment: tuple[str, ...]
     alternative_to: str | None
     line: int
+    processes: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -280,6 +284,7 @@ class Calculation:
     revisions: tuple[Revision, ...]
     uncertainty: Uncertainty
     cautions: Mapping[str, CautionAdjustment]
+    processes: Mapping[str, EquipmentSpec]
     files: Mapping[str, bytes]
     find_place: Callable[[str], tuple[str, int, int]] = field(repr=False, compare=False)
 

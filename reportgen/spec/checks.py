@@ -15,6 +15,7 @@ from reportgen.spec.fields import QuantityOf, shown
 from reportgen.spec.fluid_tables import check_fluids
 from reportgen.spec.network import check_network
 from reportgen.spec.paths import input_locations, result_dimensions
+from reportgen.spec.process_tables import check_processes
 from reportgen.spec.schema import MOST_CORRELATIONS, NARRATIVES
 from reportgen.spec.second_sources import check_second_sources
 from reportgen.spec.source import Location, Source, path_of
@@ -27,7 +28,7 @@ _TO_BE_VERIFIED = "to be verified"
 
 def check(source: Source, context: Mapping[str, float]) -> None:
     """Note every fault of meaning in ``source``."""
-    if not source.table("states") and not source.table("equipment"):
+    if not any(source.table(section) for section in ("states", "equipment", "processes")):
         source.miss((), "The file holds nothing to evaluate.", expected="[states.<name>] and [equipment.<tag>]")
     _check_title_block(source)
     _check_confirmed(source)
@@ -35,6 +36,7 @@ def check(source: Source, context: Mapping[str, float]) -> None:
     check_states(source, context)
     check_second_sources(source)
     check_network(source)
+    check_processes(source)
     _check_limits(source, context)
     _check_criteria(source, context)
     _check_correlations(source)
@@ -108,8 +110,8 @@ def _check_confirmed(source: Source) -> None:
 
 def _check_limits(source: Source, context: Mapping[str, float]) -> None:
     marker = QuantityOf(("temperature",))
-    for tag in source.table("equipment"):
-        location = ("equipment", tag, "limits")
+    for section, tag in [(name, tag) for name in ("equipment", "processes") for tag in source.table(name)]:
+        location = (section, tag, "limits")
         limits = source.node(location)
         if limits is None or not isinstance(limits.value, dict):
             continue

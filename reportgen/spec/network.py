@@ -59,35 +59,67 @@ def _unknown(source: Source, location: Location, name: str, section: str, what: 
 def _check_trains(source: Source) -> dict[str, str]:
     """The train of each piece."""
     trains = source.table("trains")
-    equipment = source.table("equipment")
     train_of: dict[str, str] = {}
+    for section, word in _MEMBERS.items():
+        for train in trains:
+            for location, tag in source.texts("trains", train, section):
+                if tag not in source.table(section):
+                    _unknown(source, location, tag, section, word)
+                elif tag in train_of:
+                    source.report(
+                        location,
+                        f"The {word.partition(' ')[0]} already belongs to a train.",
+                        found=f'"{tag}", in {train_of[tag]}',
+                        expected=f"one train for each {word.partition(' ')[0]}",
+                    )
+                else:
+                    train_of[tag] = train
     for train in trains:
-        for location, tag in source.texts("trains", train, "equipment"):
-            if tag not in equipment:
-                _unknown(source, location, tag, "equipment", "piece of equipment")
-            elif tag in train_of:
-                source.report(
-                    location,
-                    "The piece already belongs to a train.",
-                    found=f'"{tag}", in {train_of[tag]}',
-                    expected="one train for each piece",
-                )
-            else:
-                train_of[tag] = train
+        _check_members(source, train)
         _check_alternative(source, train)
-    members = [source.node(("trains", train, "equipment")) for train in trains]
-    readable = all(node is not None and isinstance(node.value, list) for node in members)
-    if trains and readable and source.names_are_complete:
-        for tag in equipment:
-            if tag not in train_of:
-                source.report(
-                    ("equipment", tag),
-                    "The piece belongs to no train.",
-                    at="key",
-                    found=tag,
-                    expected="each piece in the equipment of one of [trains]",
-                )
+    for section, word in _MEMBERS.items():
+        members = [node for train in trains if (node := source.node(("trains", train, section))) is not None]
+        if members and all(isinstance(node.value, list) for node in members) and source.names_are_complete:
+            for tag in source.table(section):
+                if tag not in train_of:
+                    source.report(
+                        (section, tag),
+                        f"The {word.partition(' ')[0]} belongs to no train.",
+                        at="key",
+                        found=tag,
+                        expected=f"each {word.partition(' ')[0]} in the {section} of one of [trains]",
+                    )
     return train_of
+
+
+#: What a train may hold, by the table it stands in.
+_MEMBERS = {"equipment": "piece of equipment", "processes": "process"}
+
+
+def _check_members(source: Source, train: str) -> None:
+    """A train holds equipment or processes: totals of one are rates, of the other amounts."""
+    node = source.node(("trains", train))
+    if node is None or not isinstance(node.value, dict):
+        return
+    held = [section for section in _MEMBERS if section in node.table]
+    if not held:
+        source.miss(("trains", train), '"equipment" is missing.', expected="equipment or processes of the train")
+    elif len(held) > 1:
+        source.report(
+            ("trains", train, held[1]),
+            "The train holds equipment, whose totals are rates, and processes, whose totals are amounts.",
+            at="key",
+            found="equipment and processes",
+            expected="a train for each",
+        )
+    other = source.text("trains", train, "alternative_to")
+    if other in source.table("trains") and len(held) == 1 and source.node(("trains", str(other), held[0])) is None:
+        source.report(
+            ("trains", train, "alternative_to"),
+            f"The other train does not hold {held[0]}: the two cannot stand in each other's place.",
+            found=f'"{other}"',
+            expected=f"a train of {held[0]}",
+        )
 
 
 def _check_alternative(source: Source, train: str) -> None:

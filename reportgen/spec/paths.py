@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 
-from reportgen.balances.kinds import Kind, kinds
-from reportgen.names import NAMES
-from reportgen.spec.schema import INTENSIVE, MOST_ENTRIES, STATE_KEYS
+from reportgen.balances.kinds import Kind, kinds, process_kinds
+from reportgen.names import NAMES, name_of
+from reportgen.spec.schema import AMOUNTS, INTENSIVE, MOST_ENTRIES, STATE_KEYS
 from reportgen.spec.source import Source
-from reportgen.spec.states import givens_of
+from reportgen.spec.states import fluid_of, givens_of
 
 __all__ = ["input_locations", "kind_of", "result_dimensions"]
 
@@ -47,12 +47,29 @@ _EQUIPMENT_RESULTS = (
     "mass_imbalance",
     "entropy_with_heat",
 )
+#: Of every process.
+_PROCESS_RESULTS = (
+    "heat",
+    "work",
+    "entropy_change",
+    "entropy_with_heat",
+    "entropy_generation",
+    "lost_work",
+    "energy_imbalance",
+    "mass_imbalance",
+)
+#: Of a sum over processes.
+_CLOSED_RESULTS = (*_PROCESS_RESULTS, "closure")
+#: What a process reports for each species of a mixture.
+_OF_SPECIES = "mole_fraction"
 _SURROUNDINGS = ("temperature", "pressure")
+#: Tables whose entries have a kind, with the registry of their kinds.
+_REGISTRIES = {"equipment": kinds, "processes": process_kinds}
 
 
-def kind_of(source: Source, tag: str) -> Kind | None:
-    """The kind of a piece of equipment; None while the file names none that is known."""
-    return kinds().get(source.text("equipment", tag, "kind") or "")
+def kind_of(source: Source, tag: str, section: str = "equipment") -> Kind | None:
+    """The kind of a piece of equipment, or of one of ``processes``; None while the file names none that is known."""
+    return _REGISTRIES[section]().get(source.text(section, tag, "kind") or "")
 
 
 def input_locations(source: Source) -> Iterator[tuple[str | int, ...]]:
@@ -64,26 +81,26 @@ def input_locations(source: Source) -> Iterator[tuple[str | int, ...]]:
         for key in node.table:
             if key in STATE_KEYS:
                 yield ("states", state, key)
-    for tag, node in source.table("equipment").items():
-        kind = kind_of(source, tag)
-        if kind is None:
-            continue
-        parameters = {parameter.name for parameter in kind.parameters}
-        groups = {group.name for group in kind.groups}
-        for key, value in node.table.items():
-            if key in parameters:
-                yield ("equipment", tag, key)
-            elif key in groups:
-                for index, item in enumerate(value.items):
-                    for inner in item.table:
-                        yield ("equipment", tag, key, index, inner)
+    for section in _REGISTRIES:
+        for tag, node in source.table(section).items():
+            kind = kind_of(source, tag, section)
+            if kind is None:
+                continue
+            parameters = {parameter.name for parameter in kind.parameters}
+            groups = {group.name for group in kind.groups}
+            for key, value in node.table.items():
+                if key in parameters:
+                    yield (section, tag, key)
+                elif key in groups:
+                    for index, item in enumerate(value.items):
+                        for inner in item.table:
+                            yield (section, tag, key, index, inner)
 
 
 def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
     """Dimensions of the value at a path, or, as one text, what is wrong with a path that cannot exist."""
     parts = path.split(".")
-    owners = {"states": "states", "equipment": "equipment", "trains": "trains"}
-    if parts[0] in owners and len(parts) >= 3:
+    if parts[0] in ("states", "trains", *_REGISTRIES) and len(parts) >= 3:
         owner = parts[1]
         present = source.table(parts[0])
         if owner not in present:
@@ -91,11 +108,14 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
             return f'There is no "{owner[:60]}" in [{parts[0]}].' + (f" {hint}" if hint else "")
         names = _names_of(source, parts[0], owner)
         rest = parts[2:]
-    elif parts[0] in ("total", "surroundings") and len(parts) == 2:
-        names = {name: (NAMES[name].dimension,) for name in (_TOTAL_RESULTS if parts[0] == "total" else _SURROUNDINGS)}
+    elif parts[0] in ("total", "closed", "surroundings") and len(parts) == 2:
+        names = _names_of_whole(source, parts[0])
         rest = parts[1:]
     else:
-        return "A path is states.<id>.<name>, equipment.<tag>.<name>, trains.<id>.<name> or total.<name>."
+        return (
+            "A path is states.<id>.<name>, equipment.<tag>.<name>, processes.<tag>.<name>, trains.<id>.<name> or "
+            "total.<name>."
+        )
     name = ".".join(rest)
     if name in names:
         return names[name]
@@ -105,13 +125,32 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
     )
 
 
+def _names_of_whole(source: Source, whole: str) -> dict[str, tuple[str]]:
+    """Names under ``total``, ``closed`` and ``surroundings``.
+
+    The total of a file without equipment is that of its processes; beside equipment they stand under ``closed``.
+    """
+    if whole == "surroundings":
+        return {name: (NAMES[name].dimension,) for name in _SURROUNDINGS}
+    flows, processes = bool(source.table("equipment")), bool(source.table("processes"))
+    if whole == "total" and (flows or not processes):
+        return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}
+    return _amounts(_CLOSED_RESULTS) if processes and (whole == "total") is not flows else {}
+
+
+def _amounts(names: Iterable[str]) -> dict[str, tuple[str]]:
+    """Results of processes with their dimensions."""
+    entries = {name: name_of(name, amounts=True) for name in names}
+    return {name: (entry.dimension,) for name, entry in entries.items() if entry is not None}
+
+
 def _may_move(source: Source, state: str) -> bool:
     """Whether the state is at a port of a piece that may find velocities."""
     for tag in source.table("equipment"):
         kind = kind_of(source, tag)
-        if kind is not None and kind.velocities is not None:
-            if any(name == state for port in kind.ports for _, name in source.texts("equipment", tag, port.name)):
-                return True
+        ports = kind.ports if kind is not None and kind.velocities is not None else ()
+        if any(name == state for port in ports for _, name in source.texts("equipment", tag, port.name)):
+            return True
     return False
 
 
@@ -120,16 +159,37 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
     if section == "states":
         given = [name for name in _ONLY_WHERE_GIVEN if name in givens_of(source, owner)]
         given += ["velocity"] if _may_move(source, owner) else []
+        given += [*AMOUNTS, "entropy"] if _is_closed(source, owner) else []
         return {name: (NAMES[name].dimension,) for name in (*_STATE_RESULTS, *given)}
     if section == "trains":
+        if source.node(("trains", owner, "processes")) is not None:
+            return _amounts(_CLOSED_RESULTS)
         return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}
-    names = {name: (NAMES[name].dimension,) for name in _EQUIPMENT_RESULTS}
-    kind = kind_of(source, owner)
+    closed = section == "processes"
+    names = _amounts(_PROCESS_RESULTS) if closed else {name: (NAMES[name].dimension,) for name in _EQUIPMENT_RESULTS}
+    kind = kind_of(source, owner, section)
     if kind is not None:
         names |= {parameter.name: (parameter.dimension,) for parameter in kind.parameters}
-        names |= {name: (NAMES[name].dimension,) for name in kind.reports}
+        reports = [name for name in kind.reports if name != _OF_SPECIES]
+        names |= _amounts(reports) if closed else {name: (NAMES[name].dimension,) for name in reports}
+        names |= _shares(source, owner) if _OF_SPECIES in kind.reports else {}
         for group in kind.groups:
-            node = source.node(("equipment", owner, group.name))
+            node = source.node((section, owner, group.name))
             for number in range(1, 1 + min(MOST_ENTRIES, len(node.items if node is not None else []))):
                 names |= {f"{group.name}.{number}.{entry.name}": (entry.dimension,) for entry in group.parameters}
     return names
+
+
+def _is_closed(source: Source, state: str) -> bool:
+    """Whether a state belongs to a closed system: a process begins or ends with it, or it says how much it holds."""
+    if any(name in givens_of(source, state) for name in AMOUNTS):
+        return True
+    ends = [(tag, port) for tag in source.table("processes") for port in ("from", "to")]
+    return any(name == state for tag, port in ends for _, name in source.texts("processes", tag, port))
+
+
+def _shares(source: Source, tag: str) -> dict[str, tuple[str]]:
+    """Mole fractions of the mixture that a process makes, by the species of its fluid."""
+    fluids = [fluid_of(source, state) for _, state in source.texts("processes", tag, "to")]
+    species = [key for fluid in fluids if fluid is not None for key in source.table("fluids", fluid, "composition")]
+    return {f"species.{key}.{_OF_SPECIES}": (NAMES[_OF_SPECIES].dimension,) for key in species}

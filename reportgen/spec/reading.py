@@ -99,10 +99,16 @@ class _Builder:
             inputs=self.inputs(),
             fluids=fluids,
             states={name: self.state(name, table, fluids) for name, table in self.document.states.items()},
-            equipment={tag: self.equipment(tag, table) for tag, table in self.document.equipment.items()},
+            equipment={tag: self.piece("equipment", tag, table) for tag, table in self.document.equipment.items()},
+            processes={tag: self.piece("processes", tag, table) for tag, table in self.document.processes.items()},
             trains={
                 name: TrainSpec(
-                    name, train.title, tuple(train.equipment), train.alternative_to, self.line("trains", name)
+                    name,
+                    train.title,
+                    tuple(train.equipment or ()),
+                    train.alternative_to,
+                    self.line("trains", name),
+                    tuple(train.processes or ()),
                 )
                 for name, train in self.document.trains.items()
             },
@@ -167,8 +173,8 @@ class _Builder:
         assert isinstance(found, Quantity)  # the schema has a quantity wherever input_locations points
         return found
 
-    def equipment(self, tag: str, table: Any) -> EquipmentSpec:
-        kind = kind_of(self.source, tag)
+    def piece(self, section: str, tag: str, table: Any) -> EquipmentSpec:
+        kind = kind_of(self.source, tag, section)
         assert kind is not None  # the schema knows no other kinds
         ports: dict[str, tuple[str, ...]] = {}
         for port in kind.ports:
@@ -182,9 +188,13 @@ class _Builder:
             title=table.title,
             ports=ports,
             options={group.name: len(getattr(table, group.name)) for group in kind.groups}
-            | {choice.name: word for choice in kind.choices if (word := getattr(table, choice.name))},
+            | {
+                choice.name: tuple(word) if isinstance(word, list) else word
+                for choice in kind.choices
+                if (word := getattr(table, choice.name))
+            },
             limits=limits,
-            line=self.line("equipment", tag),
+            line=self.line(section, tag),
         )
 
     def criterion(self, name: str, entry: Any) -> Criterion:

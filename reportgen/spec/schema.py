@@ -9,9 +9,9 @@ from __future__ import annotations
 from functools import cache
 from typing import Annotated, Any, Literal, Union
 
-from pydantic import BaseModel, ConfigDict, Field, create_model
+from pydantic import BaseModel, ConfigDict, Discriminator, Field, Tag, create_model
 
-from reportgen.balances.kinds import Kind, Parameter, kinds
+from reportgen.balances.kinds import Choice, Kind, Parameter, kinds, process_kinds
 from reportgen.names import NAMES
 from reportgen.quantities import Quantity
 from reportgen.spec.fields import (
@@ -29,6 +29,7 @@ from reportgen.spec.fluid_schema import FluidTable, SecondSourceField, second_so
 from reportgen.spec.table import Table, with_unit
 
 __all__ = [
+    "AMOUNTS",
     "FLOWS",
     "INTENSIVE",
     "LATER",
@@ -55,8 +56,10 @@ INTENSIVE = (
 )
 #: Different ways to give the one flow of a state.
 FLOWS = ("mass_flow", "volume_flow", "molar_flow")
+#: How much a state of a closed system holds.
+AMOUNTS = ("mass", "volume")
 #: All quantities that may be given for a state.
-STATE_KEYS = (*INTENSIVE, *FLOWS, "velocity", "elevation")
+STATE_KEYS = (*INTENSIVE, *FLOWS, *AMOUNTS, "velocity", "elevation")
 
 #: Bounds of lists within one table.
 MOST_ENTRIES = 50
@@ -65,13 +68,11 @@ MOST_CORRELATIONS = 500
 #: What belongs to the calculation file but is not carried by this version, by table ("" for the whole file) and key.
 LATER: dict[str, dict[str, str]] = {
     "": {
-        "processes": "Closed-system processes are",
         "vessels": "Vessels are",
         "cases": "Cases are",
         "sweeps": "Sweeps are",
         "readings": "Readings of a test log are",
     },
-    "states": {"mass": "Closed systems are", "volume": "Closed systems are"},
     "uncertainty": {"draws": "The Monte Carlo method is", "seed": "The Monte Carlo method is"},
     "uncertainty.method": {"monte-carlo": "The Monte Carlo method is"},
 }
@@ -160,10 +161,17 @@ class LimitsTable(Table):
 
 
 class TrainTable(Table):
-    """Pieces of equipment that are accounted for together."""
+    """Pieces of equipment, or processes, that are accounted for together."""
+
+    model_config = ConfigDict(json_schema_extra={"oneOf": [{"required": ["equipment"]}, {"required": ["processes"]}]})
 
     title: ShortText = Field(description="What the report calls the train.")
-    equipment: list[Identifier] = Field(min_length=1, description="Tags of the pieces that belong to the train.")
+    equipment: list[Identifier] | None = Field(
+        None, min_length=1, description="Tags of the pieces that belong to the train."
+    )
+    processes: list[Identifier] | None = Field(
+        None, min_length=1, description="Tags of the processes that belong to the train, in place of equipment."
+    )
     alternative_to: Identifier | None = Field(None, description="Train in whose place this one could stand.")
 
 
@@ -245,15 +253,18 @@ class CautionTable(Table):
 def document() -> type[BaseModel]:
     """The model of the whole file. Built once: the kinds of equipment are looked up when first needed."""
     state = create_model("StateTable", __base__=StateBase, **{name: _quantity(name) for name in STATE_KEYS})
-    pieces = tuple(_equipment(kind) for kind in kinds().values())
+    pieces = tuple(_of_kind(kind, "piece") for kind in kinds().values())
     equipment: Any = Annotated[Union[pieces], Field(discriminator="kind")]  # noqa: UP007 - made at run time
+    changes = tuple(_of_kind(kind, "process") for kind in process_kinds().values())
+    process: Any = Annotated[Union[changes], Field(discriminator="kind")]  # noqa: UP007 - made at run time
     fields: dict[str, Any] = {
         "calculation": (CalculationTable, Field(description="Title block.")),
         "surroundings": (SurroundingsTable, Field(description="Dead state and atmosphere.")),
         "fluids": (dict[Identifier, FluidTable], Field({}, description="Fluids by name.")),
         "states": (dict[Identifier, state], Field({}, description="States by name or number.")),
         "equipment": (dict[Identifier, equipment], Field({}, description="Pieces of equipment by tag.")),
-        "trains": (dict[Identifier, TrainTable], Field({}, description="Groups of equipment by name.")),
+        "processes": (dict[Identifier, process], Field({}, description="Processes of closed systems by tag.")),
+        "trains": (dict[Identifier, TrainTable], Field({}, description="Groups of equipment or processes by name.")),
         "assumptions": (dict[Identifier, AssumptionTable], Field({}, description="Assumptions by name.")),
         "criteria": (dict[Identifier, CriterionTable], Field({}, description="Criteria by name.")),
         "references": (dict[Identifier, ReferenceTable], Field({}, description="Sources by name.")),
@@ -277,13 +288,35 @@ def _parameters(parameters: tuple[Parameter, ...]) -> dict[str, Any]:
     return fields
 
 
-def _equipment(kind: Kind) -> type[Table]:
-    """The model of one kind of equipment."""
+#: What the limits of a piece or process are those of.
+_LIMITS_OF = {
+    "piece": "Design limits of the piece.",
+    "process": "Design limits of the vessel in which the process runs.",
+}
+
+
+def _form_of_choice(value: Any) -> str:
+    return "(several)" if isinstance(value, list) else "(word)"
+
+
+def _choice(choice: Choice) -> tuple[Any, Any]:
+    """Optional field of one of some words, or of a list of them."""
+    word: Any = Literal[choice.values]
+    text = f"{choice.text.rstrip('.')}; if not given: {choice.values[0]}."
+    if not choice.many:
+        return (word | None, Field(None, description=text))
+    several = Annotated[list[word], Tag("(several)"), Field(min_length=1, max_length=MOST_ENTRIES)]
+    either = Annotated[Annotated[word, Tag("(word)")] | several, Discriminator(_form_of_choice)]
+    return (either | None, Field(None, description=text))
+
+
+def _of_kind(kind: Kind, noun: str) -> type[Table]:
+    """The model of one kind of equipment or process."""
     camel = "".join(part.capitalize() for part in kind.name.split("-"))
     fields: dict[str, Any] = {
         "kind": (Literal[kind.name], Field(description=kind.text or kind.title)),
-        "title": (ShortText | None, Field(None, description="What the report calls the piece.")),
-        "limits": (LimitsTable | None, Field(None, description="Design limits of the piece.")),
+        "title": (ShortText | None, Field(None, description=f"What the report calls the {noun}.")),
+        "limits": (LimitsTable | None, Field(None, description=_LIMITS_OF[noun])),
     }
     for port in kind.ports:
         direction = "enters" if port.direction == "in" else "leaves"
@@ -298,9 +331,7 @@ def _equipment(kind: Kind) -> type[Table]:
         else:
             fields[port.name] = (annotation, Field(description=described))
     fields |= _parameters(kind.parameters)
-    for choice in kind.choices:
-        text = f"{choice.text.rstrip('.')}; if not given: {choice.values[0]}."
-        fields[choice.name] = (Literal[choice.values] | None, Field(None, description=text))
+    fields |= {choice.name: _choice(choice) for choice in kind.choices}
     for group in kind.groups:
         entry = create_model(
             f"{camel}_{group.name}", __base__=Table, __doc__=group.text, **_parameters(group.parameters)

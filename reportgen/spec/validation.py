@@ -126,12 +126,13 @@ def _note_value(source: Source, location: Location, fault: Fault, about_key: boo
 
 
 def _note_tag(source: Source, location: Location, context: Mapping[str, Any]) -> None:
-    """An equipment kind or property model that is absent or not known."""
+    """A kind of equipment or process, or a property model, that is absent or not known."""
     key = str(context["discriminator"]).strip("'")
     place = (*location, key)
     node = source.node(place)
     if node is None:
-        what = "what kind of equipment it is" if key == "kind" else "which property model holds"
+        noun = "process" if location[0] == "processes" else "equipment"
+        what = f"what kind of {noun} it is" if key == "kind" else "which property model holds"
         source.miss(place, f'"{key}" is missing.', expected=what)
     elif not node.broken:
         _note_choice(source, place, _choices(context.get("expected_tags", "")))
@@ -201,8 +202,8 @@ def _choices(expected: str) -> list[str]:
 
 
 def _without_tags(tagged: Location) -> tuple[str | int, ...]:
-    """A location of pydantic without the names of variants that it puts behind equipment, fluids and values."""
-    if len(tagged) > 2 and tagged[0] in ("equipment", "fluids"):
+    """A location of pydantic without the names of variants that it puts behind pieces, processes, fluids and values."""
+    if len(tagged) > 2 and tagged[0] in ("equipment", "processes", "fluids"):
         tagged = (*tagged[:2], *tagged[3:])
     return tuple(part for part in tagged if not _is_tag(part))
 

@@ -65,5 +65,6 @@ KIND = process_kind(
     parameters=(HEAT_BY_CUSTOM, WORK),
     stretches=stretches,
     checks=checks,
+    reports=("entropy_of_mixing", "mole_fraction"),
     mixes=is_mixing,
 )
