@@ -10,6 +10,7 @@ The tests, in the order in which they are tried:
 * *given values do not tell the two states apart*: along the straight line in (T, v) from the library's state to ours,
   the two properties given stay what they were, within rounding and within what the library's values differ by at its
   own (T, ρ). This is not the case for another root, however well it fulfils the pair.
+* *next to a turning point*: of h along an isotherm, two states share a value to 1e-11 and lie within 1e-5.
 * *saturated within rounding*: a saturated liquid or vapour, given by a pair, of which ours has up to 1e-7 of the other
   or is a single phase, all properties being equal.
 * *splines of the library*: up to 1.2e-3 Tc below critical, coexisting phases of the library are a spline of its own.
@@ -85,6 +86,7 @@ _SCATTER_STEP = 2e-14
 #: Relative distance in T of states between which the straight line may bend.
 _NEAR = 1e-4
 _STEPS = (0.25, 0.5, 0.75, 1.0)
+_LONG_BATCH = 256
 
 
 def scales(reference: Reference, gas_constant: float) -> dict[str, Array]:
@@ -186,6 +188,9 @@ def explain_base(fluid: RealFluid, reference: Reference, state: Any, theirs: Any
     gas_constant = fluid.gas_constant
     names = (*BARS, "superheat", "subcooling", "quality")
     difference = {name: np.nan_to_num(np.abs(getattr(state, name) - getattr(reference, name))) for name in names}
+    for name in ("superheat", "subcooling"):  # below our triple point, above the library's: its saturation differs
+        none = np.isnan(getattr(state, name)) & np.isfinite(getattr(reference, name))
+        difference[name] = np.where(none, np.inf, difference[name])
     small = rounding(fluid, reference)
     # c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ): what ∂p/∂ρ = w² c_v/c_p loses, c_p loses; c_v is not below half of R
     slope = reference.speed_of_sound**2 * 0.5 * gas_constant / reference.isobaric_heat_capacity
@@ -263,6 +268,30 @@ def _why_saturation_differs(
     return reasons
 
 
+def _along(fluid: RealFluid, reference: Reference, state: Any) -> dict[str, Array]:
+    """Properties [SI] at points of the straight lines in (T, v) from the library's states to ours, shape (points, N).
+
+    Evaluated in one long batch: short ones are computed by another branch, whose rounding is its own.
+    """
+    share = np.resize(_STEPS, (max(len(_STEPS), -(-_LONG_BATCH // reference.size)), 1))
+    temperature = reference.temperature + share * (state.temperature - reference.temperature)
+    volume = 1 / reference.density + share * (1 / state.density - 1 / reference.density)
+    found = fluid.at(temperature=temperature, density=1 / volume, errors="mask")
+    names = (*BARS, "quality", "superheat", "subcooling")
+    return {name: np.asarray(getattr(found, name))[: len(_STEPS)] for name in names}
+
+
+def _turning_point(fluid: RealFluid, reference: Reference, state: Any, name: str) -> Array:
+    """Whether a property turns round along the isotherm within ten times the distance of ours from the library's."""
+    apart = 10 * np.abs(state.density / reference.density - 1)
+    density = reference.density * (1 + apart * np.array([[-1.0], [0.0], [1.0]]))
+    temperature = np.broadcast_to(reference.temperature, density.shape)
+    found = fluid.at(temperature=temperature, density=density, errors="mask")
+    rise = np.diff(np.asarray(getattr(found, name)), axis=0)
+    with np.errstate(invalid="ignore"):
+        return (apart < _NEAR) & (rise[0] * rise[1] < 0)
+
+
 def explain(
     fluid: RealFluid,
     reference: Reference,
@@ -290,21 +319,18 @@ def explain(
     # states as near as this differ to second order along the straight line
     apart = np.abs(state.temperature / reference.temperature - 1)
     bend = np.where(apart < _NEAR, 5 * apart**2, 0.0)
-    for step in _STEPS:
-        temperature = reference.temperature + step * (state.temperature - reference.temperature)
-        volume = 1 / reference.density + step * (1 / state.density - 1 / reference.density)
-        between = fluid.at(temperature=temperature, density=1 / volume, errors="mask")
-        for name in given:
-            target = getattr(reference, name)
-            miss = np.abs(getattr(between, name) - target)
-            if name == "quality":  # of a saturated state, with a density rounded to the other side
-                miss = np.where(np.isnan(miss), 0.0, miss)
-            wide = small[name] + 2 * base.difference.get(name, 0.0) + bend * measure.get(name, 0.0)
-            with np.errstate(invalid="ignore"):
-                alike &= miss <= wide
-                amplified |= miss > 2 * small[name]
-                if step == _STEPS[-1]:
-                    back &= miss <= np.maximum(_GIVEN_BACK * np.maximum(np.abs(target), small[name] / _ROUNDING), wide)
+    between = _along(fluid, reference, state)
+    for name in given:
+        target = getattr(reference, name)
+        miss = np.abs(between[name] - target)
+        if name == "quality":  # of a saturated state, with a density rounded to the other side
+            miss = np.where(np.isnan(miss), 0.0, miss)
+        wide = 2 * small[name] + 2 * base.difference.get(name, 0.0) + bend * measure.get(name, 0.0)
+        with np.errstate(invalid="ignore"):
+            alike &= (miss <= wide).all(axis=0)
+            amplified |= (miss > 4 * small[name]).any(axis=0)
+            given_back = _GIVEN_BACK * np.maximum(np.abs(target), small[name] / _ROUNDING)
+            back &= miss[-1] <= np.maximum(given_back, wide)
     found = deviations(reference, state, fluid.gas_constant)
     missed = np.zeros(reference.size, dtype=bool)
     for name, values in found.items():
@@ -325,6 +351,9 @@ def explain(
         return reasons  # nothing is solved for, so nothing is amplified
     reasons[(reasons == "") & alike & amplified] = "difference at (T, rho), amplified by the pair"
     reasons[(reasons == "") & alike] = "pair does not tell the states apart"
+    if given[0] == "temperature":
+        turning = _turning_point(fluid, reference, state, given[1])
+        reasons[(reasons == "") & back & ~base.unexplained & turning] = "next to a turning point along the isotherm"
     reasons[(reasons == "") & back & splines] = SPLINES
     named = (state.phase != "two-phase") & (reference.phase != "two-phase")
     reasons[(reasons == "") & back & differ & named & ~missed] = "critical point of the library"

@@ -250,10 +250,12 @@ def _evaluate(
         end = 1.0 if phase == "vapour" else 0.0
         state.update(library.PQ_INPUTS, pressure, end)
         distance = temperature - state.T()
-        if end:
-            superheat = distance if distance > 0 else float("nan")
-        else:
-            subcooling = -distance if distance < 0 else float("nan")
+        # a saturation temperature of the library can lie below its own lowest one
+        known = state.T() >= max(state.Tmin(), state.Ttriple())
+        if known and end and distance > 0:
+            superheat = distance
+        elif known and not end and distance < 0:
+            subcooling = -distance
     return (temperature, pressure, density, *caloric, heat_capacity, speed, quality, superheat, subcooling, phase)
 
 
