@@ -11,10 +11,13 @@ from numpy.typing import NDArray
 
 from reportgen.errors import Fault
 
-__all__ = ["FIELDS", "PHASES", "Field", "SingleState", "State"]
+__all__ = ["FIELDS", "PHASES", "PHASE_TYPE", "Field", "SingleState", "State"]
 
 #: What ``State.phase`` may hold. The empty text stands where there is no state (NaN given, or a masked fault).
 PHASES = ("liquid", "vapour", "two-phase", "supercritical", "gas", "solid", "")
+
+#: Type of an array of phases.
+PHASE_TYPE = "<U13"
 
 #: Computes one field and, if it comes at no extra cost, others with it: name -> flat array.
 Fill = Callable[[str], Mapping[str, NDArray[Any]]]
@@ -149,7 +152,7 @@ class SingleState(State):
         """Field ``name`` as a read-only array of one element."""
         if name not in FIELDS:
             raise AttributeError(f"This State has no {name}.")
-        array = np.array([self._read(name)], dtype=_TEXT if name == "phase" else np.float64)
+        array = np.array([self._read(name)], dtype=PHASE_TYPE if name == "phase" else np.float64)
         array.flags.writeable = False
         return array
 
@@ -159,8 +162,5 @@ _set_values, _set_fill, _set_shape, _set_faults = (
     vars(State)[name].__set__ for name in ("_values", "_fill", "_shape", "faults")
 )
 _NO_FAULTS: Mapping[int, Fault] = MappingProxyType({})
-#: Type of the array of phases.
-_TEXT = "<U13"
-
 #: Names of all fields, in the order of the class.
 FIELDS: tuple[str, ...] = tuple(name for name, value in vars(State).items() if isinstance(value, Field))

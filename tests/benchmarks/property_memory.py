@@ -53,7 +53,8 @@ def compute(name: str, second: str, count: int) -> None:
             values = random.uniform(low + 1, min(3 * critical.temperature, limits.maximum_temperature), count)
         else:
             # across the dome: a third to a half of the states has two phases
-            temperatures = [max(0.6 * critical.temperature, 1.01 * low), 1.5 * critical.temperature]
+            high = min(1.5 * critical.temperature, limits.maximum_temperature)
+            temperatures = [max(0.6 * critical.temperature, 1.01 * low), high]
             ends = fluid.at(temperature=temperatures, pressure=0.5 * critical.pressure)
             values = random.uniform(*getattr(ends, second), count)
         state = fluid.at(errors="mask", pressure=pressure, **{second: values})

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.saturation import SaturationCurves
+from reportgen.fluids.state import PHASE_TYPE
 
 __all__ = ["CALORIC", "FIRST_ORDER", "Solution"]
 
@@ -186,7 +187,7 @@ class Solution:
         t, p, rho = self.temperature, self.pressure, self.density
         top, top_p = self.curves.top_temperature, self.curves.top_pressure
         quality = self.values()["quality"]
-        phase = np.full(t.shape, "vapour", dtype="<U13")
+        phase = np.full(t.shape, "vapour", dtype=PHASE_TYPE)
         hot, dense = t > top, p > top_p
         phase[dense] = "liquid"
         phase[hot & dense] = "supercritical"

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 import numpy as np
@@ -17,7 +17,7 @@ from reportgen.fluids.real.scalar.curves import ScalarCurves
 from reportgen.fluids.real.scalar.density import ScalarDensity
 from reportgen.fluids.real.scalar.equation import ScalarEquation
 from reportgen.fluids.real.scalar.pairs import Answer, ScalarPairs, Single
-from reportgen.fluids.state import SingleState, State
+from reportgen.fluids.state import PHASE_TYPE, SingleState, State
 
 __all__ = ["MOST", "FewStates"]
 
@@ -106,10 +106,11 @@ class FewStates:
 
         def fill(name: str) -> dict[str, NDArray[Any]]:
             found = [self._pairs.fill(name, *answer) for answer in answers]
-            return {key: np.array([each[key] for each in found]) for key in found[0]}
+            return {key: _column(key, found) for key in found[0]}
 
-        names = answers[0][0].keys()
-        return State(a.shape, {name: np.array([answer[0][name] for answer in answers]) for name in names}, fill)
+        names = [name for name in answers[0][0] if all(name in values for values, _ in answers)]
+        known = [values for values, _ in answers]
+        return State(a.shape, {name: _column(name, known) for name in names}, fill)
 
     def saturation(self, temperature: ArrayLike | None, pressure: ArrayLike | None) -> tuple[State, State] | None:
         """Saturated liquid and vapour at a temperature [K] or a pressure [Pa], for one of them given as a number."""
@@ -137,6 +138,11 @@ class FewStates:
 
 #: Fields that need no second derivatives of the equation.
 _FIRST_ORDER = frozenset(("specific_enthalpy", "specific_entropy", "specific_internal_energy"))
+
+
+def _column(name: str, values: Sequence[Mapping[str, Any]]) -> NDArray[Any]:
+    """One field of several states as an array."""
+    return np.array([each[name] for each in values], dtype=PHASE_TYPE if name == "phase" else np.float64)
 
 
 def _number(value: object) -> float | None:

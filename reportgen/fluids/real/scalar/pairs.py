@@ -27,6 +27,8 @@ Answer = Single | None
 _NEWTON_STEPS = 12
 #: Relative steps at which Newton's method has settled: what is left after that step is beyond the last digit.
 _SETTLED = 2e-8
+#: Temperature [critical ones] of the second start of a search at high pressure.
+_COLD_START = 0.6
 #: Distance from the top of the saturation line (relative, in T) that is kept.
 _TOP_MARGIN = 1e-3
 #: Distance from saturation (relative, in p, ρ or the quality) that is kept.
@@ -268,6 +270,11 @@ class ScalarPairs:
         else:
             return None
         solved = self._newton(pressure, target, entropy, temperature, density, low, high)
+        if solved is None and pressure > self._top_pressure:
+            # far below the critical temperature: from a saturated liquid
+            temperature = max(_COLD_START * self._top, self._lowest)
+            density = curves.liquid_density(temperature)
+            solved = self._newton(pressure, target, entropy, temperature, density, low, high)
         if solved is None:
             return None
         temperature, density = solved
@@ -332,14 +339,15 @@ class ScalarPairs:
         if name == "compressibility_factor":
             return {name: p / (rho * self.equation.gas_constant * t)}
         superheat = subcooling = nan
-        if x == 0.0:
-            subcooling = 0.0
-        elif x == 1.0:
-            superheat = 0.0
-        elif x != x and self._triple_pressure * (1.0 - 1e-12) <= p <= self._top_pressure:
-            boiling, condensing = self.curves.temperatures(p)
-            superheat = t - condensing if t >= condensing else nan
-            subcooling = boiling - t if t <= boiling else nan
+        if self._triple_pressure * (1.0 - 1e-12) <= p <= self._top_pressure:
+            if x == 0.0:
+                subcooling = 0.0
+            elif x == 1.0:
+                superheat = 0.0
+            elif not 0.0 < x < 1.0:
+                boiling, condensing = self.curves.temperatures(p)
+                superheat = t - condensing if t >= condensing else nan
+                subcooling = boiling - t if t <= boiling else nan
         return {"superheat": superheat, "subcooling": subcooling}
 
     def fill_both(self, liquid: Single, vapour: Single) -> None:
