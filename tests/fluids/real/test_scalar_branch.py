@@ -1,5 +1,5 @@
-"""Single states in plain floats (reportgen/fluids/real/scalar) give what the vectorised branch gives, and refuse what it
-refuses, for every fluid and pair.
+"""Single states in plain floats (reportgen/fluids/real/scalar) give what the vectorised branch gives, and are refused in
+the same words, for every fluid and pair.
 """
 
 from __future__ import annotations
