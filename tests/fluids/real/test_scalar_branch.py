@@ -1,4 +1,4 @@
-"""Single states in plain floats (reportgen/fluids/real/scalar) give what the vectorised branch gives, and are refused in
+"""Single states in plain floats (reportgen/fluids/real/scalar) give what the vectorised branch gives and are refused in
 the same words, for every fluid and pair.
 """
 
