@@ -17,6 +17,7 @@ Which models there are:
 - ``real_fluid(name)``: published Helmholtz-energy equations; ``reference_state`` moves the zeros of h and s.
 - ``ideal_gas(name or composition)``: NASA polynomials with third-law entropies; ``humid_air`` and
   ``combustion_products`` give compositions, ``gases.condensation`` tells when water would condense.
+- ``cubic(name or composition, equation=)``: Peng-Robinson and Soave-Redlich-Kwong, with phase equilibria of mixtures.
 - ``incompressible(name, density=, specific_heat=)``: liquids and solids.
 - ``statistical.gas(name)``: entropies counted from molecular constants, an independent check.
 
@@ -62,6 +63,7 @@ from reportgen.fluids.gases.gas import ideal_gas
 from reportgen.fluids.real import catalogue
 
 if TYPE_CHECKING:
+    from reportgen.fluids.cubics.making import cubic
     from reportgen.fluids.gases.compositions import combustion_products, humid_air, stoichiometric_air
     from reportgen.fluids.incompressibles.making import incompressible
     from reportgen.fluids.real.fluid import RealFluid
@@ -69,6 +71,7 @@ if TYPE_CHECKING:
 
 __all__ = [
     "combustion_products",
+    "cubic",
     "describe",
     "humid_air",
     "ideal_gas",
@@ -85,6 +88,7 @@ __all__ = [
 _LOADED_LATER = {
     "combustion_products": "reportgen.fluids.gases.compositions",
     "humid_air": "reportgen.fluids.gases.compositions",
+    "cubic": "reportgen.fluids.cubics.making",
     "incompressible": "reportgen.fluids.incompressibles.making",
     "stoichiometric_air": "reportgen.fluids.gases.compositions",
     "with_units": "reportgen.fluids.unit_interface",
