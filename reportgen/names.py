@@ -61,6 +61,7 @@ _INTO = "positive into the fluid"
 _INTO_PIECE = "positive into the piece"
 _LOSS = "positive where the pressure falls"
 _RISE = "positive where the pressure rises"
+_WARMER = "positive where the hot stream is the warmer one"
 _LEFT = "positive when more enters than leaves"
 _POWER = (
     "positive in the natural direction of the kind: absorbed by compressors and pumps, delivered by turbines; "
@@ -156,6 +157,18 @@ _ENTRIES = (
         _LOSS,
     ),
     Name("pressure_ratio", r"r_p", "ratio", "Higher over lower pressure of the machine"),
+    Name("pinch", r"\Delta T_\mathrm{min}", "temperature_difference", "Smallest temperature difference", _WARMER),
+    Name("pinch_place", r"y_\mathrm{min}", "ratio", "Share of the duty at which the temperatures come closest"),
+    Name("mean_temperature_difference", r"\Delta T_\mathrm{m}", "temperature_difference", "Mean temperature difference"),
+    Name("effectiveness", r"E", "efficiency", "Effectiveness: duty over the largest that either stream could exchange"),
+    Name(
+        "entropy_by_temperature_difference",
+        r"\dot S_{\Delta T}",
+        "entropy_flow",
+        "Entropy generation by heat across temperature differences",
+    ),
+    Name("entropy_by_pressure_drop", r"\dot S_{\Delta p}", "entropy_flow", "Entropy generation by pressure losses"),
+    Name("bejan_number", r"\mathit{Be}", "ratio", "Share of temperature differences in the entropy generation"),
     Name(
         "entropy_generation",
         r"\dot S_\mathrm{gen}",

@@ -1,4 +1,4 @@
-"""Six networks solved a second time by scripts that know nothing of networks: balances written out, CoolProp's properties.
+"""Six networks solved a second time by scripts that know nothing of networks: balances written out, CoolProp's states.
 
 Every value the script knows is met within 1e-6: temperatures, pressures, flows, powers, heats, entropy generation, lost
 work, efficiencies; enthalpies and entropies from the first state of their fluid, since the zeros differ.

@@ -224,7 +224,7 @@ def test_temperatures_that_cross_inside_an_evaporator_are_found() -> None:
     )
     (doubt,) = (doubt for doubt in case.solve().doubts if doubt.stands)
     assert doubt.key == "temperature-cross"
-    assert "Inside, in counterflow," in doubt.text
+    assert "At 24 % of the duty from the cold end" in doubt.text
 
 
 def test_one_fluid_under_two_names_may_mix_but_not_with_another_zero() -> None:

@@ -18,7 +18,7 @@ from tests.balances.test_structure import CYCLE, _cycle
 
 TOKEN = re.compile("⟦([^⟦⟧]+)⟧")
 #: Equations that call a property model, take a limit of several values or show an integral.
-NOT_ARITHMETIC = re.compile(r"(?:[hsTpx]|\\rho)\\left\(⟦|\\min|\\max|\\int|\^[+-]")
+NOT_ARITHMETIC = re.compile(r"(?:[hsTpxy]|\\rho)\\left\(⟦|\\min|\\max|\\int|\^[+-]")
 
 
 def _group(text: str, start: int) -> tuple[str, int]:

@@ -6,6 +6,9 @@
 cold side. Each relation can be solved for duty, either enthalpy or the flow. The pressure loss of a side is taken as
 zero when nothing else determines it, the loss of heat too.
 
+The temperatures along the exchanger, the pinch, the effectiveness and the two parts of the entropy generation are in
+:mod:`reportgen.balances.profiles`; ``arrangement`` says whether the streams pass each other in counterflow.
+
 Exergetic efficiency: exergy gained by the cold stream over exergy given up by the hot one; below the surroundings'
 temperature the streams change parts, so the stream that gains is the one above the line.
 Entropy generation number: lost work over duty.
@@ -30,14 +33,16 @@ from reportgen.balances.equations import (
     pressure_drop,
     through,
 )
-from reportgen.balances.kinds import Kind, Parameter, Port
+from reportgen.balances.exchanging import COUNTERFLOW, EXCHANGE_REPORTS, PARALLEL, Exchanging
+from reportgen.balances.kinds import Choice, Kind, Parameter, Port
 from reportgen.balances.merit import entropy_number_by_power, exergy_ratio
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Balance, Default, Exchange, Formula, Relation, Stretch, Term, token
 
 SIDES = ("hot", "cold")
-_PROFILE_POINTS = 33
 _ROUNDING_OF_TEMPERATURE = 1e-6  # K
+_ENDS = ("At the cold end", "At the hot end")
+_FROM = {_ENDS: "cold end", ("At the inlets", "At the outlets"): "inlets"}
 
 
 def _side(piece: Piece, side: str) -> tuple[str, str]:
@@ -118,7 +123,8 @@ def results(piece: Piece) -> list[Formula]:
         lambda *arrays: changes(*arrays)[1],
         rf"\frac{{{cold}^+ + {hot}^+}}{{{cold}^- + {hot}^-}}",
     )
-    return [efficiency, entropy_number_by_power(piece, piece.path("duty"), "duty")]
+    number = entropy_number_by_power(piece, piece.path("duty"), "duty")
+    return [efficiency, number, *Exchanging(piece).results()]
 
 
 def stretches(piece: Piece) -> list[Stretch]:
@@ -129,43 +135,19 @@ def stretches(piece: Piece) -> list[Stretch]:
 
 
 def doubts(piece: Piece, samples: Callable[[str], Any]) -> list[Doubt]:
-    """Temperatures that cross: at an end in any arrangement, or inside one in counterflow.
-
-    The streams are compared at equal shares of the duty, pressures changing evenly with it. The place where they come
-    closest is looked for in the base case; the difference there is taken along the sample axis.
-    """
+    """Temperatures that cross, at an end or inside."""
     import numpy as np
 
-    sides = []
-    for side, first, last in (("hot", "outlet", "inlet"), ("cold", "inlet", "outlet")):
-        states = [piece.one(f"{side}_{end}") for end in (first, last)]
-        ends = {name: [samples(f"states.{s}.{name}") for s in states] for name in ("pressure", "specific_enthalpy")}
-        sides.append((piece.fluid(states[0]), ends))
-
-    def difference(share: Any, columns: Any) -> Any:
-        hot, cold = (
-            fluid.at(
-                errors="mask",
-                **{name: a[columns] + (b[columns] - a[columns]) * share for name, (a, b) in ends.items()},
-            ).temperature
-            for fluid, ends in sides
-        )
-        return np.asarray(hot, dtype=float) - np.asarray(cold, dtype=float)
-
-    share = np.linspace(0.0, 1.0, _PROFILE_POINTS)
-    profile = difference(share, 0)
-    if not np.isfinite(profile).any():
+    pinch, place = samples(piece.path("pinch")), float(samples(piece.path("pinch_place"))[0])
+    if not np.isfinite(place):
         return []
-    place = int(np.nanargmin(profile))
-    measured = difference(share[place], slice(None))
-    where = (
-        "At the cold end" if place == 0 else "At the hot end" if place == share.size - 1 else "Inside, in counterflow,"
-    )
+    ends = ("At the inlets", "At the outlets") if piece.choice("arrangement") == PARALLEL else _ENDS
+    where = ends[int(place)] if place in (0.0, 1.0) else f"At {100.0 * place:.0f} % of the duty from the {_FROM[ends]}"
     text = (
         f"{piece.title}: the temperatures ⟦cross|may cross⟧. {where} the hot stream ⟦would|may⟧ be colder than the "
         "cold one; heat cannot flow there as stated. The value is the difference of the two temperatures."
     )
-    measured = np.where(np.abs(measured) <= _ROUNDING_OF_TEMPERATURE, 0.0, measured)
+    measured = np.where(np.abs(pinch) <= _ROUNDING_OF_TEMPERATURE, 0.0, pinch)
     return [
         Doubt("temperature-cross", piece.owner, piece.path("duty"), text, measured, dimension="temperature_difference")
     ]
@@ -197,6 +179,14 @@ KIND = Kind(
             for side in SIDES
         ),
     ),
+    choices=(
+        Choice(
+            "arrangement",
+            (COUNTERFLOW, PARALLEL),
+            "How the streams pass each other, for the temperatures along the exchanger.",
+        ),
+    ),
+    reports=EXCHANGE_REPORTS,
     relations=relations,
     defaults=defaults,
     results=results,
