@@ -121,8 +121,8 @@ def _of_one_source(
         "fluid": fluid_id,
         "second_model": second.name,
         "second_title": None if second.model is None else getattr(second.model, "name", second.model.title),
-        "first_source": "; ".join(fluid.sources),
-        "second_source": None if second.model is None else "; ".join(second.model.sources),
+        "first_sources": list(fluid.sources),
+        "second_sources": [] if second.model is None else list(second.model.sources),
     }
     known = [state for state in tolerances if plant.has(f"states.{state}.specific_enthalpy")]
     if second.model is None:

@@ -72,8 +72,8 @@ def test_the_library_agrees_with_every_property_of_every_state() -> None:
     assert enthalpy["counted_from"] == "1"
     assert enthalpy["first"] == pytest.approx(0.0, abs=1e-3)
     version = library.library_version()
-    assert all(entry["second_source"].startswith(f"CoolProp {version}, ") for entry in entries)
-    assert all("10.1063/1.1461829" in entry["first_source"] for entry in entries)
+    assert all(entry["second_sources"][0].startswith(f"CoolProp {version}, ") for entry in entries)
+    assert all("10.1063/1.1461829" in entry["first_sources"][0] for entry in entries)
     assert record.data["provenance"]["packages"]["CoolProp"] == version
     assert cautions(record, "P14") == []
 
@@ -169,6 +169,13 @@ def test_states_outside_the_second_source_are_notes() -> None:
     assert {entry["verdict"] for entry in checks(record, state="1")} == {"agrees"}
 
 
+def test_the_demonstration_checks_steam_by_another_equation_of_state() -> None:
+    entries = checks(project("letdown-station"))
+    assert {entry["second_title"] for entry in entries} == {"Water (Peng-Robinson)"}
+    assert {entry["verdict"] for entry in entries} == {"agrees"}
+    assert max(abs(entry["relative"]) for entry in entries) > 0.06  # c_p near saturation, by a cubic equation
+
+
 def test_the_demonstration_checks_air_by_molecules_and_by_its_equation_of_state() -> None:
     record = project("instrument-air")
     assert {entry["second_model"] for entry in checks(record)} == {"statistical", "real-fluid"}
@@ -185,7 +192,7 @@ def entry(relative: float, **more: object) -> dict[str, Any]:
         "state": "1",
         "fluid": "f",
         "second_model": "cubic",
-        "second_source": "a publication",
+        "second_sources": ["a publication"],
         "path": "states.1.density",
         "property": "density",
         "species": None,

@@ -16,8 +16,8 @@ def entry(**more: Any) -> dict[str, Any]:
         "fluid": "steam",
         "second_model": "cubic",
         "second_title": "Water",
-        "first_source": "a release",
-        "second_source": "a paper <1976>",
+        "first_sources": ["a release"],
+        "second_sources": ["a paper <1976>"],
         "state": "1",
         "path": "states.1.density",
         "property": "density",
@@ -67,7 +67,7 @@ def test_without_entries_there_is_no_section() -> None:
 
 def test_a_value_stands_above_that_of_the_second_source_and_their_difference() -> None:
     text = section(entry())
-    assert "Water, real fluid, against cubic equation of state" in text
+    assert "Water, real fluid, against cubic equation of state: Water" in text
     assert re.search(r"13 13\.13 \+1 %", text)
     assert "The value agrees within 2 %." in text
     assert "Second source: a paper <1976>" in text
@@ -100,7 +100,7 @@ def test_gases_of_a_mixture_stand_last_with_the_state_of_their_temperature() -> 
 
 def test_states_that_were_not_compared_give_the_reason() -> None:
     empty = dict.fromkeys(("property", "first", "second", "difference", "relative", "unit", "dimension"))
-    missing = {**entry(**empty, verdict="not compared", path="states.1", second_source=None, second_title=None)}
+    missing = {**entry(**empty, verdict="not compared", path="states.1", second_sources=[], second_title=None)}
     missing |= {"second_model": "library", "remark": "The independent property library is not installed."}
     text = section(missing, {**missing, "state": "2"})
     assert "Not compared, state 1, 2: The independent property library is not installed." in text

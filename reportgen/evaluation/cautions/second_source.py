@@ -40,7 +40,7 @@ def second_source_differs(plant: EvaluatedPlant, _limit: float) -> Iterator[Find
             text,
             "efficiency",
             owner=f"states.{state}.{second}",
-            source=worst["second_source"],
+            source=worst["second_sources"][0],
         )
 
 

@@ -40,7 +40,7 @@ def cross_checks(presenter: Presenter) -> dict[str, Any] | None:
 
 def _table(fluid: str, second: str, entries: list[dict[str, Any]], presenter: Presenter) -> dict[str, Any]:
     compared = [entry for entry in entries if entry["verdict"] != _NOT_COMPARED]
-    columns = list(dict.fromkeys(_column(entry) for entry in compared))
+    columns = sorted(dict.fromkeys(_column(entry) for entry in compared), key=_place)
     rows: dict[tuple[str, str], list[dict[str, Any]]] = {}
     for entry in compared:
         rows.setdefault((entry["species"] or "", entry["state"]), []).append(entry)
@@ -53,7 +53,7 @@ def _table(fluid: str, second: str, entries: list[dict[str, Any]], presenter: Pr
         "anchor": anchor("fluid", fluid),
         "first": _WORDS.get(model, model),
         "second": _second(second, entries[0].get("second_title")),
-        "source": next((entry["second_source"] for entry in entries if entry["second_source"]), None),
+        "sources": entries[0]["second_sources"],
         "tolerance": " or ".join(_percent(threshold, signed=False) for threshold in thresholds),
         "heads": [_head(*column, presenter) for column in columns],
         "rows": [row for row in states if not row["species"]] + [row for row in states if row["species"]],
@@ -65,10 +65,22 @@ def _table(fluid: str, second: str, entries: list[dict[str, Any]], presenter: Pr
 
 
 def _second(name: str, title: str | None) -> str:
-    """A second source in words: a library by its own name, a real fluid with the substance it is of."""
+    """A second source in words: a library by its own name, a model with the substance (and equation) it is of."""
     if name == "library":
         return title or "an independent library"
-    return f"{_WORDS.get(name, name)} {title}" if name == "real-fluid" and title else _WORDS.get(name, name)
+    words = _WORDS.get(name, name)
+    match name:
+        case "real-fluid" if title:
+            return f"{words} {title}"
+        case "cubic" if title:
+            return f"{words}: {title}"
+    return words
+
+
+def _place(column: tuple[str, str]) -> tuple[bool, int]:
+    """Values as they stand before those that count from a state, each in the order of the glossary."""
+    name, counted_from = column
+    return bool(counted_from), list(NAMES).index(name)
 
 
 def _column(entry: Mapping[str, Any]) -> tuple[str, str]:
