@@ -19,12 +19,19 @@ from reportgen.evaluation.assumptions import (
     boundary_temperature_test,
     stream_assumption,
 )
-from reportgen.evaluation.audits import closure_audit, counted_pieces, second_law_audit, settle_zeros
+from reportgen.evaluation.audits import (
+    closure_audit,
+    counted_pieces,
+    entropy_resolution,
+    second_law_audit,
+    settle_zeros,
+)
 from reportgen.evaluation.budget import budgets
 from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, lost_samples, raised, unevaluated
+from reportgen.evaluation.closed import closed_boundary_test
 from reportgen.evaluation.criteria import decided_criteria
 from reportgen.evaluation.cross_checks import cross_checks, second_sources
-from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.evaluated import ClosedProcess, EvaluatedPlant
 from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
 from reportgen.evaluation.fluid_assumptions import fluid_assumptions
 from reportgen.evaluation.models import placed, plant_of, property_model, property_models, real_counterpart
@@ -79,7 +86,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
         raise placed(calculation, error, models) from error
     plant = _evaluated(calculation, models, axis, solution)
     plant = replace(plant, cross_checks=cross_checks(plant, calculation.states, seconds))
-    totals = counted_pieces(plant, [name for name, train in calculation.trains.items() if train.alternative_to])
+    totals = counted_pieces(plant, plant.alternatives)
     settle_zeros(plant, totals)
     criteria = decided_criteria(plant, calculation.criteria, CALCULATION_FILE)
     display = Display(calculation.units)
@@ -131,12 +138,28 @@ def _evaluated(
         fluids=models,
         state_fluids={identifier: state.fluid for identifier, state in calculation.states.items()},
         kinds={tag: piece.kind for tag, piece in calculation.equipment.items()},
-        connections={tag: connections_of(piece) for tag, piece in calculation.equipment.items()},
+        connections={tag: connections_of(piece, pieces[tag].kind) for tag, piece in calculation.equipment.items()},
         power_signs={tag: piece.kind.power_sign for tag, piece in pieces.items()},
         heats={tag: tuple(piece.kind.heats(piece)) for tag, piece in pieces.items()},
         limits={tag: piece.limits for tag, piece in calculation.equipment.items() if piece.limits is not None},
-        trains={identifier: train.equipment for identifier, train in calculation.trains.items()},
+        trains={name: train.equipment for name, train in calculation.trains.items() if train.equipment},
         doubts=solution.doubts,
+        processes={tag: _process(calculation, solution, tag) for tag in calculation.processes},
+        process_trains={name: train.processes for name, train in calculation.trains.items() if train.processes},
+        alternatives=tuple(name for name, train in calculation.trains.items() if train.alternative_to),
+        closed=frozenset(solution.closed),
+    )
+
+
+def _process(calculation: Calculation, solution: Solution, tag: str) -> ClosedProcess:
+    piece, specification = solution.processes[tag], calculation.processes[tag]
+    return ClosedProcess(
+        specification.kind,
+        piece.states("from"),
+        piece.states("to"),
+        tuple(piece.kind.heats(piece)),
+        specification.limits,
+        piece.kind.mixes(piece),
     )
 
 
@@ -159,13 +182,16 @@ def _automatic(
     found = fluid_assumptions(trial, calculation.fluids, real_counterpart, property_model)
     streams = stream_assumption(trial.plant)
     found += [] if streams is None else [streams]
+    ports = [port for ports in trial.plant.heats.values() for port in ports]
+    ports += [port for process in trial.plant.processes.values() for port in process.heats]
     for item in solution.assumptions:
-        port = next(
-            (port for ports in trial.plant.heats.values() for port in ports if port.entropy in item.affects),
-            None,
-        )
+        port = next((port for port in ports if port.entropy in item.affects), None)
+        family, _, tag = item.owner.partition(".")
         test = None
-        if port is not None and item.owner.startswith("equipment."):
-            test = boundary_temperature_test(trial, item.owner.split(".", 1)[1], port.temperature, display)
-        found.append(AutomaticAssumption(item.id, item.text, "not stated in the file", item.affects, test))
+        if port is not None and family == "equipment":
+            test = boundary_temperature_test(trial, tag, port.temperature, display)
+        elif port is not None and family == "processes":
+            resolution = entropy_resolution(trial.plant, item.owner, (tag,))
+            test = closed_boundary_test(trial, tag, port.temperature, resolution, display)
+        found.append(AutomaticAssumption(item.id, item.text, item.basis, item.affects, test))
     return found

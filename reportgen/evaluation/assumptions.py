@@ -136,7 +136,7 @@ def boundary_temperature_test(trial: Trial, tag: str, temperature_path: str, dis
         return None
     words = f"the mean temperature of the fluid in {tag}, {display.show(mean, 'temperature').text}"
     generated = f"equipment.{tag}.entropy_generation"
-    resolution = entropy_resolution(plant, (tag,))
+    resolution = entropy_resolution(plant, f"equipment.{tag}", (tag,))
     return trial.run(
         f"With the boundary at {words},",
         givens={temperature_path: mean},

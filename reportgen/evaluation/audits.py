@@ -13,12 +13,15 @@ import numpy as np
 import numpy.typing as npt
 
 from reportgen.evaluation import uncertainty
+from reportgen.evaluation.closed import closed_balances, closed_owners
 from reportgen.evaluation.decisions import SecondLaw, second_law
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.sampling import SampleAxis
+from reportgen.names import DIMENSIONS
 
 __all__ = [
     "balance_round",
+    "balances_of",
     "boundary_streams",
     "closure_audit",
     "counted_pieces",
@@ -58,13 +61,13 @@ def settle_zeros(plant: EvaluatedPlant, totals: Sequence[str]) -> None:
             ("entropy", BALANCE_RESOLUTION, ("entropy_generation", "lost_work", "entropy_generation_number")),
         ):
             samples = plant.samples(f"{owner}.{names[0]}")
-            scale = balance_round(plant, tags)[quantity][1]
+            scale = balances_of(plant, owner, tags)[quantity][1]
             known = samples[np.isfinite(samples)]
             if known.size and np.any(known != 0.0) and np.all(np.abs(known) <= part * scale):
                 for name in names:
                     if plant.has(f"{owner}.{name}"):
                         plant.values[f"{owner}.{name}"][:] = 0.0
-        for quantity, (_, scale) in balance_round(plant, tags).items():
+        for quantity, (_, scale) in balances_of(plant, owner, tags).items():
             for name in RESIDUALS[quantity]:
                 left = plant.values.get(f"{owner}.{name}")
                 if left is not None:
@@ -88,11 +91,12 @@ def second_law_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[
         if not plant.has(path):
             continue
         estimate = plant.estimate(path)
-        resolution = entropy_resolution(plant, tags)
+        resolution = entropy_resolution(plant, owner, tags)
         entries.append(
             {
                 "owner": owner,
                 "path": path,
+                "dimension": plant.dimension_of(path),
                 "value": estimate.value,
                 "expanded_uncertainty": estimate.expanded_uncertainty,
                 "interval": list(estimate.interval),
@@ -116,12 +120,18 @@ _VERDICTS: dict[SecondLaw, str] = {
 
 def _owner_words(owner: str) -> str:
     place, _, name = owner.partition(".")
-    return {"equipment": name, "trains": f"Train {name}"}.get(place, "The whole")
+    words = {"equipment": name, "processes": f"Process {name}", "trains": f"Train {name}"}
+    return words.get(place, "The closed part" if place == "closed" else "The whole")
 
 
-def entropy_resolution(plant: EvaluatedPlant, tags: Sequence[str]) -> float:
-    """Size below which an entropy generation is a zero of the arithmetic [W/K]."""
-    scale = balance_round(plant, tags)["entropy"][1]
+def balances_of(plant: EvaluatedPlant, owner: str, tags: Sequence[str]) -> dict[str, tuple[float, float]]:
+    """What the balances of an owner leave, with the size of their terms: rates of equipment, amounts of processes."""
+    return closed_balances(plant, tags) if plant.is_closed(owner) else balance_round(plant, tags)
+
+
+def entropy_resolution(plant: EvaluatedPlant, owner: str, tags: Sequence[str]) -> float:
+    """Size below which an entropy generation is a zero of the arithmetic [W/K, of processes J/K]."""
+    scale = balances_of(plant, owner, tags)["entropy"][1]
     return BALANCE_RESOLUTION * scale if np.isfinite(scale) else 0.0
 
 
@@ -133,16 +143,15 @@ def heaviest_inputs(axis: SampleAxis, samples: Array, count: int = HEAVIEST) -> 
 
 
 def closure_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str, Any]]:
-    """Mass, energy and entropy balance of each piece, each train and the whole in the base case.
+    """Mass, energy and entropy balance of each piece and process, each train and the whole in the base case.
 
     For trains and the whole the balance is drawn round the outer boundary, and what it leaves is the entropy the
     boundary sees less the sum over the parts. Quantities that cannot be computed (no flow, no boundary temperature)
     are left out; what is left of a balance by rounding is 0, as among the values.
     """
-    units = {"mass": "kg/s", "energy": "W", "entropy": "W/K"}
     entries = []
     for owner, tags in _owners(plant, totals):
-        for quantity, (residual, scale) in balance_round(plant, tags).items():
+        for quantity, (residual, scale) in balances_of(plant, owner, tags).items():
             if np.isfinite(residual):
                 if abs(residual) <= RESIDUAL_RESOLUTION * scale:
                     residual = 0.0
@@ -153,7 +162,7 @@ def closure_audit(plant: EvaluatedPlant, totals: Sequence[str]) -> list[dict[str
                         "value": residual,
                         "scale": scale,
                         "relative": abs(residual) / scale if scale > 0.0 else 0.0,
-                        "unit": units[quantity],
+                        "unit": DIMENSIONS[plant.dimension_of(f"{owner}.{RESIDUALS[quantity][0]}")],
                     }
                 )
     return entries
@@ -213,15 +222,16 @@ def boundary_streams(plant: EvaluatedPlant, tags: Iterable[str]) -> tuple[list[s
 
 def counted_pieces(plant: EvaluatedPlant, alternatives: Iterable[str]) -> list[str]:
     """Tags that count in the total: every piece but those of trains that are alternatives to another."""
-    left_out = {tag for train in alternatives for tag in plant.trains[train]}
+    left_out = {tag for train in alternatives for tag in plant.trains.get(train, ())}
     return [tag for tag in plant.kinds if tag not in left_out]
 
 
 def _owners(plant: EvaluatedPlant, totals: Sequence[str]) -> list[tuple[str, Sequence[str]]]:
-    """Pieces, trains and the total, each with its tags."""
+    """Pieces, trains and the total, then the same of processes, each with its tags."""
     owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
     owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
-    return [*owners, ("total", totals)] if totals else owners
+    owners += [("total", totals)] if totals else []
+    return [*owners, *closed_owners(plant)]
 
 
 def _base(plant: EvaluatedPlant, path: str, absent: float = np.nan) -> float:

@@ -9,7 +9,6 @@ from typing import TYPE_CHECKING, Any
 from reportgen.errors import Fault, InputError
 from reportgen.evaluation.decisions import decide
 from reportgen.evaluation.evaluated import EvaluatedPlant
-from reportgen.names import name_of
 
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Criterion
@@ -47,7 +46,7 @@ def decided_criteria(
             continue
         samples, limits = plant.samples(criterion.value), plant.limit_samples(limit)
         margin = plant.axis.estimate(limits - samples if comparison == "at_most" else samples - limits)
-        name = name_of(criterion.value)
+        name = plant.name_of(criterion.value)
         entries.append(
             {
                 "id": identifier,

@@ -6,12 +6,13 @@ The class holds and looks up; it computes nothing of its own.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any, Literal, NamedTuple
 
 import numpy as np
 import numpy.typing as npt
 
+from reportgen import names
 from reportgen.evaluation.sampling import ATMOSPHERE, Estimate, SampleAxis
 
 if TYPE_CHECKING:
@@ -22,7 +23,7 @@ if TYPE_CHECKING:
     from reportgen.quantities import Quantity
     from reportgen.spec.calculation import Limits
 
-__all__ = ["Connection", "EvaluatedPlant"]
+__all__ = ["ClosedProcess", "Connection", "EvaluatedPlant"]
 
 Array = npt.NDArray[np.float64]
 
@@ -33,6 +34,26 @@ class Connection(NamedTuple):
     port: str
     direction: Literal["in", "out"]
     state: str
+
+
+@dataclass(frozen=True)
+class ClosedProcess:
+    """A process of a closed system: its kind by name, the states before and after, its boundaries, its vessel's limits.
+
+    ``mixes``: the fluid after it is a mixture that it makes.
+    """
+
+    kind: str
+    before: tuple[str, ...]
+    after: tuple[str, ...]
+    heats: tuple[HeatPort, ...]
+    limits: Limits | None = None
+    mixes: bool = False
+
+    @property
+    def states(self) -> tuple[str, ...]:
+        """All its states, each once."""
+        return tuple(dict.fromkeys((*self.before, *self.after)))
 
 
 @dataclass(frozen=True)
@@ -49,7 +70,11 @@ class EvaluatedPlant:
         power_signs: equipment tag to +1 where power is absorbed, −1 where it is delivered, 0 without power.
         heats: equipment tag to its heat ports (``balances.HeatPort``: paths of heat, temperature, entropy).
         limits: equipment tag to its ``limits`` table, only where it has one.
-        trains: train id to the tags of its pieces; empty when the file has no trains.
+        trains: train id to the tags of its pieces; empty when the file has no trains of equipment.
+        processes: process tag to what it is; empty when the file has no closed systems.
+        process_trains: train id to the tags of its processes.
+        alternatives: trains that stand in the place of another and do not count in totals.
+        closed: owners of sums over processes, whose values are amounts and no rates.
         doubts: values that could come out where they cannot be meant, as the balances found them.
         assumptions: those of the program, with their tests; empty until they are tested.
         cross_checks: record entries of states held against a second source; empty until they are compared.
@@ -68,6 +93,27 @@ class EvaluatedPlant:
     doubts: Sequence[Doubt] = ()
     assumptions: Sequence[AutomaticAssumption] = ()
     cross_checks: Sequence[Mapping[str, Any]] = ()
+    processes: Mapping[str, ClosedProcess] = field(default_factory=dict)
+    process_trains: Mapping[str, tuple[str, ...]] = field(default_factory=dict)
+    alternatives: tuple[str, ...] = ()
+    closed: frozenset[str] = frozenset()
+
+    def is_closed(self, owner: str) -> bool:
+        """Whether an owner is a process or a sum over processes."""
+        return owner in self.closed or owner.startswith("processes.")
+
+    def name_of(self, path: str) -> names.Name | None:
+        """Glossary entry of a value: amounts for processes and sums over them, rates for equipment."""
+        return names.name_of(path, amounts=path.rpartition(".")[0] in self.closed)
+
+    def symbol_of(self, path: str) -> str:
+        """LaTeX symbol of a value."""
+        return names.symbol_of(path, amounts=path.rpartition(".")[0] in self.closed)
+
+    def dimension_of(self, path: str) -> str:
+        """Dimension of a value, key of names.DIMENSIONS; ``ratio`` where the glossary has no entry."""
+        name = self.name_of(path)
+        return "ratio" if name is None else name.dimension
 
     def samples(self, path: str) -> Array:
         """Samples of a value, shape (N,); all NaN when the plant has no such value."""

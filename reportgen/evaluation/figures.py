@@ -43,6 +43,11 @@ _ONE_LINE = (
 )
 #: Least entropy span of the states [J/(kg·K)] where no gas constant is known.
 LEAST_SPAN = 100.0
+_ACCOUNT_CAPTIONS = {
+    "entropy_flow": "What enters and what is generated together leave; entropies relative to the stated zeros.",
+    "entropy": "What is there at the start, what enters with heat and what is generated together are there in the end "
+    "or leave with heat; entropies relative to the stated zeros.",
+}
 #: Room left and right of the states for isobars, as a part of the entropy span of the states.
 MARGIN = 0.35
 
@@ -107,10 +112,25 @@ def bar_figures(
 
     A figure without anything to draw is left out: no entropy generation that could be stated, no work lost anywhere.
     """
-    figures: list[dict[str, Any]] = []
+    return [
+        *_lost_work(plant, train_of, "equipment", plant.kinds, "Work forgone in each piece", ""),
+        *_lost_work(plant, train_of, "processes", plant.processes, "Work forgone in each process", "-of-processes"),
+        *_accounts(accounts, "entropy_flow", "Entropy entering and generated", ""),
+        *_accounts(accounts, "entropy", "Entropy at the start, entering and generated", "-of-processes"),
+    ]
+
+
+def _lost_work(
+    plant: EvaluatedPlant,
+    train_of: Mapping[str, str | None],
+    family: str,
+    tags: Iterable[str],
+    title: str,
+    suffix: str,
+) -> list[dict[str, Any]]:
     bars = []
-    for tag in plant.kinds:
-        path = f"equipment.{tag}.lost_work"
+    for tag in tags:
+        path = f"{family}.{tag}.lost_work"
         if plant.has(path):
             estimate = plant.estimate(path)
             bars.append(
@@ -122,16 +142,21 @@ def bar_figures(
                     "train": train_of.get(tag),
                 }
             )
-    if any(bar["value"] != 0.0 for bar in bars):
-        figures.append(
-            {
-                "id": "lost-work",
-                "kind": "lost-work-bars",
-                "title": "Work forgone in each piece",
-                "caption": "Temperature of the surroundings times entropy generation, with its expanded uncertainty.",
-                "bars": bars,
-            }
-        )
+    if not any(bar["value"] != 0.0 for bar in bars):
+        return []
+    return [
+        {
+            "id": f"lost-work{suffix}",
+            "kind": "lost-work-bars",
+            "dimension": plant.dimension_of(str(bars[0]["path"])),
+            "title": title,
+            "caption": "Temperature of the surroundings times entropy generation, with its expanded uncertainty.",
+            "bars": bars,
+        }
+    ]
+
+
+def _accounts(accounts: Mapping[str, Mapping[str, Any]], dimension: str, title: str, suffix: str) -> list[Any]:
     complete = [
         {
             "label": account["title"],
@@ -140,19 +165,22 @@ def bar_figures(
             "leaving": account["sum_leaving"],
         }
         for account in accounts.values()
-        if account["generated"] and all(math.isfinite(line["value"]) for line in account["generated"])
+        if account["dimension"] == dimension
+        and account["generated"]
+        and all(math.isfinite(line["value"]) for line in account["generated"])
     ]
-    if complete:
-        figures.append(
-            {
-                "id": "entropy-account",
-                "kind": "entropy-account-bars",
-                "title": "Entropy entering and generated",
-                "caption": "What enters and what is generated together leave; entropies relative to the stated zeros.",
-                "bars": complete,
-            }
-        )
-    return figures
+    if not complete:
+        return []
+    return [
+        {
+            "id": f"entropy-account{suffix}",
+            "kind": "entropy-account-bars",
+            "dimension": dimension,
+            "title": title,
+            "caption": _ACCOUNT_CAPTIONS[dimension],
+            "bars": complete,
+        }
+    ]
 
 
 def saturation_dome(fluid: Any) -> Curve | None:

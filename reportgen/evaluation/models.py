@@ -18,7 +18,7 @@ from reportgen.quantities import Display
 from reportgen.spec.calculation import HeatPolynomial, HeatTable
 
 if TYPE_CHECKING:
-    from reportgen.spec.calculation import Calculation, FluidSpec
+    from reportgen.spec.calculation import Calculation, EquipmentSpec, FluidSpec
 
 __all__ = ["fluid_name", "located", "placed", "plant_of", "property_model", "property_models", "real_counterpart"]
 
@@ -125,15 +125,20 @@ def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Pl
     return balances.Plant(
         fluids=dict(models),
         states={identifier: state.fluid for identifier, state in calculation.states.items()},
-        equipment={
-            tag: balances.EquipmentDefinition(kind=piece.kind, ports=piece.ports, options=piece.options)
-            for tag, piece in calculation.equipment.items()
-        },
+        equipment=_definitions(calculation.equipment),
+        processes=_definitions(calculation.processes),
         trains={
-            identifier: balances.Train(train.title, train.equipment, train.alternative_to)
+            identifier: balances.Train(train.title, train.equipment, train.alternative_to, train.processes)
             for identifier, train in calculation.trains.items()
         },
     )
+
+
+def _definitions(pieces: Mapping[str, EquipmentSpec]) -> dict[str, balances.EquipmentDefinition]:
+    return {
+        tag: balances.EquipmentDefinition(kind=piece.kind, ports=piece.ports, options=piece.options)
+        for tag, piece in pieces.items()
+    }
 
 
 def real_counterpart(model: Any) -> Any:

@@ -10,7 +10,6 @@ import numpy as np
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.sampling import ATMOSPHERE
 from reportgen.evaluation.working import FEWEST_DIGITS, TOKEN, enough_digits, with_numbers, with_symbols
-from reportgen.names import name_of, symbol_of
 from reportgen.quantities import Display
 
 if TYPE_CHECKING:
@@ -44,9 +43,9 @@ def values_section(plant: EvaluatedPlant, solution: Solution, inputs: Mapping[st
     )
     section = {}
     for path, array in solution.values.items():
-        name = name_of(path)
+        name = plant.name_of(path)
         entry: dict[str, Any] = {
-            "symbol": symbol_of(path),
+            "symbol": plant.symbol_of(path),
             "from": list(origins.get(path, ())),
             "relation": relations.get(path),
         }
@@ -124,16 +123,16 @@ def _line(equation: Equation, plant: EvaluatedPlant, display: Display) -> list[s
     digits = _operand_digits(equation, plant, display)
 
     def number(path: str) -> str:
-        return display.show(_base(plant, path), _dimension(path), digits=digits.get(path, FEWEST_DIGITS)).latex
+        return display.show(_base(plant, path), plant.dimension_of(path), digits=digits.get(path, FEWEST_DIGITS)).latex
 
-    symbols, numbers = with_symbols(equation.right), with_numbers(equation.right, number)
+    symbols, numbers = with_symbols(equation.right, plant.symbol_of), with_numbers(equation.right, number)
     if TOKEN.search(equation.right) is None or TOKEN.fullmatch(equation.right.strip()):
         numbers = ""  # a constant, or one value taken over: the result repeats it
     solved = TOKEN.fullmatch(equation.left.strip())
     if solved is None:
         both = " = ".join(filter(None, (with_numbers(equation.left, number), numbers)))
-        return [with_symbols(equation.left), symbols, both, ""]
-    return [with_symbols(equation.left), symbols, numbers, _result(plant, display, solved.group(1))]
+        return [with_symbols(equation.left, plant.symbol_of), symbols, both, ""]
+    return [with_symbols(equation.left, plant.symbol_of), symbols, numbers, _result(plant, display, solved.group(1))]
 
 
 def _operand_digits(equation: Equation, plant: EvaluatedPlant, display: Display) -> dict[str, int]:
@@ -145,7 +144,7 @@ def _operand_digits(equation: Equation, plant: EvaluatedPlant, display: Display)
     shown = _result(plant, display, result)
     return enough_digits(
         {path: _base(plant, path) for path in TOKEN.findall(equation.right)},
-        lambda path, value, digits: display.in_formula(value, _dimension(path), digits),
+        lambda path, value, digits: display.in_formula(value, plant.dimension_of(path), digits),
         evaluate,
         lambda value: _result(plant, display, result, value) == shown,
     )
@@ -156,13 +155,8 @@ def _result(plant: EvaluatedPlant, display: Display, path: str, value: float | N
     estimate = plant.estimate(path)
     residual = path.rsplit(".", 1)[-1] in RESIDUALS
     uncertainty = None if residual else estimate.expanded_uncertainty or None
-    return display.show(estimate.value if value is None else value, _dimension(path), uncertainty).latex
+    return display.show(estimate.value if value is None else value, plant.dimension_of(path), uncertainty).latex
 
 
 def _base(plant: EvaluatedPlant, path: str) -> float:
     return float(plant.samples(path)[0])
-
-
-def _dimension(path: str) -> str:
-    name = name_of(path)
-    return "ratio" if name is None else name.dimension

@@ -7,9 +7,10 @@ from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
 from reportgen.balances import kinds
+from reportgen.balances.kinds import Kind, process_kinds
 from reportgen.evaluation.evaluated import Connection
 from reportgen.evaluation.model_details import model_details, stated_sources
-from reportgen.names import DIMENSIONS, NAMES
+from reportgen.names import DIMENSIONS, name_of
 from reportgen.quantities import Quantity
 from reportgen.spec.calculation import Input
 
@@ -63,7 +64,9 @@ def _taken_by_default(calculation: Calculation, solution: Solution) -> dict[str,
         if len(step.solves) != 1 or not step.uses or any(use not in texts for use in step.uses):
             continue
         path = step.solves[0]
-        dimension = NAMES[path.rsplit(".", 1)[-1]].dimension
+        name = name_of(path)
+        assert name is not None  # a default is taken for a quantity of the glossary
+        dimension = name.dimension
         quantity = Quantity(
             text="not stated",
             value=float(solution.values[path][0]),
@@ -102,47 +105,34 @@ def _input(quantity: Quantity, item: Input) -> dict[str, Any]:
 
 
 def plant_section(calculation: Calculation, models: Mapping[str, Fluid], paths: Mapping[str, Any]) -> dict[str, Any]:
-    """Fluids, states, equipment with its ports, trains. ``position`` keeps the order of the file.
+    """Fluids, states, equipment and processes with their states, trains. ``position`` keeps the order of the file.
 
-    ``paths`` are those of the solution: a state names its flow only when it has one.
+    ``paths`` are those of the solution: a state names its flow, or its mass, only when it has one.
     """
     trains = train_of(calculation)
-    registry = kinds()
     states = {}
     for position, (identifier, state) in enumerate(calculation.states.items()):
-        flow = f"states.{identifier}.mass_flow"
+        flow, mass = (f"states.{identifier}.{name}" for name in ("mass_flow", "mass"))
         states[identifier] = {
             "fluid": state.fluid,
             "title": state.title,
             "position": position,
             "mass_flow": flow if flow in paths else None,
+            "mass": mass if mass in paths else None,
         }
-    equipment = {
-        tag: {
-            "kind": piece.kind,
-            "kind_title": registry[piece.kind].title,
-            "title": piece.title,
-            "train": trains.get(tag),
-            "position": position,
-            "ports": [
-                {"name": connection.port, "direction": connection.direction, "state": connection.state}
-                for connection in connections_of(piece)
-            ],
-            "limits": None if piece.limits is None else _limits(piece.limits),
-        }
-        for position, (tag, piece) in enumerate(calculation.equipment.items())
-    }
     return {
         "fluids": {
             identifier: _fluid(models[identifier], specification, position)
             for position, (identifier, specification) in enumerate(calculation.fluids.items())
         },
         "states": states,
-        "equipment": equipment,
+        "equipment": _pieces(calculation.equipment, kinds(), trains),
+        "processes": _pieces(calculation.processes, process_kinds(), trains),
         "trains": {
             identifier: {
                 "title": train.title,
                 "equipment": list(train.equipment),
+                "processes": list(train.processes),
                 "alternative_to": train.alternative_to,
                 "position": position,
             }
@@ -152,17 +142,34 @@ def plant_section(calculation: Calculation, models: Mapping[str, Fluid], paths: 
     }
 
 
+def _pieces(pieces: Mapping[str, EquipmentSpec], registry: Mapping[str, Kind], trains: Mapping[str, str]) -> Any:
+    return {
+        tag: {
+            "kind": piece.kind,
+            "kind_title": registry[piece.kind].title,
+            "title": piece.title,
+            "train": trains.get(tag),
+            "position": position,
+            "ports": [
+                {"name": connection.port, "direction": connection.direction, "state": connection.state}
+                for connection in connections_of(piece, registry[piece.kind])
+            ],
+            "limits": None if piece.limits is None else _limits(piece.limits),
+        }
+        for position, (tag, piece) in enumerate(pieces.items())
+    }
+
+
 def train_of(calculation: Calculation) -> dict[str, str]:
-    """Equipment tag to its train; empty without trains."""
-    return {tag: identifier for identifier, train in calculation.trains.items() for tag in train.equipment}
+    """Tag of a piece or process to its train; empty without trains."""
+    trains = calculation.trains.items()
+    return {tag: identifier for identifier, train in trains for tag in (*train.equipment, *train.processes)}
 
 
-def connections_of(piece: EquipmentSpec) -> tuple[Connection, ...]:
-    """States at the ports of a piece, in the order in which the kind declares its ports."""
+def connections_of(piece: EquipmentSpec, kind: Kind) -> tuple[Connection, ...]:
+    """States at the ports of a piece or process, in the order in which the kind declares its ports."""
     return tuple(
-        Connection(port.name, port.direction, state)
-        for port in kinds()[piece.kind].ports
-        for state in piece.ports.get(port.name, ())
+        Connection(port.name, port.direction, state) for port in kind.ports for state in piece.ports.get(port.name, ())
     )
 
 
@@ -207,11 +214,15 @@ def _fluid(model: Fluid, specification: FluidSpec, position: int) -> dict[str, A
 
 
 def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, Any]:
-    """Entropy accounts of the trains, or of the whole plant where the file has no trains [W/K].
+    """Entropy accounts of the trains, or of the whole plant where the file has no trains [W/K, of processes J/K].
 
     Amounts are taken from the values, so that they agree with them; heat that came out as zero has no line.
     """
-    owners = {f"trains.{identifier}": identifier for identifier in calculation.trains} or {"total": "total"}
+    owners = {f"trains.{identifier}": identifier for identifier in calculation.trains}
+    parted = [any(getattr(train, part) for train in calculation.trains.values()) for part in ("equipment", "processes")]
+    for whole in ("total", "closed"):
+        of_processes = whole in solution.closed
+        owners |= {} if parted[of_processes] else {whole: whole}
     section = {}
     for owner, identifier in owners.items():
         account = solution.accounts.get(owner)
@@ -221,13 +232,14 @@ def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, 
             name: [
                 {"label": entry.label, "path": entry.path, "value": entry.sign * float(solution.values[entry.path][0])}
                 for entry in account.side(side)
-                if solution.values[entry.path][0] != 0.0 or not entry.path.endswith(".entropy_with_heat")
+                if solution.values[entry.path][0] != 0.0 or not entry.path.endswith("entropy_with_heat")
             ]
             for name, side in (("entering", "in"), ("generated", "generated"), ("leaving", "out"))
         }
         section[identifier] = {
             "title": account.title,
             "complete": account.complete,
+            "dimension": "entropy" if owner in solution.closed else "entropy_flow",
             **sides,
             "sum_entering": sum(line["value"] for line in sides["entering"]),
             "sum_leaving": sum(line["value"] for line in sides["leaving"]),

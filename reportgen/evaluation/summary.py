@@ -6,13 +6,20 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from reportgen.balances import kinds
-from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.evaluation.closed import closed_owners
+from reportgen.evaluation.evaluated import ClosedProcess, EvaluatedPlant
 
 if TYPE_CHECKING:
     from reportgen.balances import Solution
 
 __all__ = ["summary"]
 
+#: Of a process and of sums over processes, in this order.
+OF_PROCESSES = ("heat", "work", "entropy_change", "entropy_generation", "lost_work")
+#: What a process leads to, told where it changes.
+OF_END_STATES = ("temperature", "pressure", "quality", "volume")
+#: Part of a value below which it counts as unchanged.
+UNCHANGED = 1e-9
 #: Of a piece and of sums over pieces, in this order.
 SUMS = ("entropy_generation", "lost_work", "power")
 OF_PIECES = (*SUMS, "shaft_power", "isentropic_efficiency", "duty", "heat")
@@ -20,13 +27,14 @@ FLOWS = ("mass_flow", "volume_flow", "molar_flow")
 
 
 def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) -> list[str]:
-    """Paths of the headline results: those of each piece, flows that were solved for, then sums over trains and all.
+    """Paths of the headline results: those of each piece, flows that were solved for, then sums over trains and all;
+    then the same of processes, each with the states it leads to.
 
     Plain inputs are left out, and zeros, but for an entropy generation: one that could not be evaluated, or is none,
     must be seen. Sums over a single piece repeat what the piece says and are left out. Without equipment, states are
     the results.
     """
-    if not plant.kinds:
+    if not plant.kinds and not plant.processes:
         return [
             f"states.{state}.{name}" for state in plant.state_fluids for name in ("temperature", "specific_entropy")
         ]
@@ -38,7 +46,30 @@ def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) ->
     owners = [f"trains.{name}" for name, tags in plant.trains.items() if len(tags) > 1]
     owners += ["total"] if len(totals) > 1 else []
     found += [f"{owner}.{name}" for owner in owners for name in SUMS]
+    found += _of_processes(plant)
     return [path for path in found if _tells(plant, path)]
+
+
+def _of_processes(plant: EvaluatedPlant) -> list[str]:
+    found = []
+    for tag, process in plant.processes.items():
+        found += [f"processes.{tag}.{name}" for name in OF_PROCESSES]
+        found += [f"processes.{tag}.entropy_of_mixing"] if process.mixes else []
+        found += [path for state in process.after for path in _changed(plant, process, state)]
+    sums = [(owner, tags) for owner, tags in closed_owners(plant) if owner in plant.closed]
+    return found + [f"{owner}.{name}" for owner, tags in sums if len(tags) > 1 for name in OF_PROCESSES]
+
+
+def _changed(plant: EvaluatedPlant, process: ClosedProcess, state: str) -> list[str]:
+    """Properties of a state in the end that are not those of the one state before."""
+    found = []
+    for name in OF_END_STATES:
+        path = f"states.{state}.{name}"
+        value = plant.samples(path)[0]
+        same = [plant.samples(f"states.{before}.{name}")[0] for before in process.before]
+        if len(same) > 1 or not abs(value - same[0]) <= UNCHANGED * abs(value):
+            found.append(path)
+    return found
 
 
 def _tells(plant: EvaluatedPlant, path: str) -> bool:

@@ -15,12 +15,12 @@ import numpy as np
 from reportgen.errors import ReportgenError
 from reportgen.evaluation.decisions import MAGNITUDE_RULE, decide, magnitude
 from reportgen.evaluation.evaluated import EvaluatedPlant
-from reportgen.names import NAMES
+from reportgen.names import DIMENSIONS
 
 __all__ = ["Trial", "Variant", "untested"]
 
 #: Results that are compared, the most telling first.
-COMPARED = ("entropy_generation", "lost_work", "power", "temperature")
+COMPARED = ("entropy_generation", "lost_work", "power", "work", "temperature")
 
 GRAVITY = {"negligible": 0, "noticeable": 1, "decisive": 2}
 WORDS = {
@@ -73,9 +73,9 @@ class Trial:
     def compare(self, other: Mapping[str, float], condition: str) -> dict[str, Any] | None:
         """The result that changes most, weighed against its uncertainty, as the ``test`` entry of a record.
 
-        Compared are entropy generation, lost work, power and temperature of every owner, and what criteria are set
-        on. The gravest verdict counts; among equal ones the largest change in parts of U (or of the value). None when
-        nothing can be compared. ``results`` of the entry lists every comparison.
+        Compared are entropy generation, lost work, power, work and temperature of every owner, and what criteria are
+        set on. The gravest verdict counts; among equal ones the largest change in parts of U (or of the value). None
+        when nothing can be compared. ``results`` of the entry lists every comparison.
         """
         turned = self._turned(other)
         best: tuple[tuple[float, ...], dict[str, Any]] | None = None
@@ -117,14 +117,14 @@ class Trial:
             difference = 0.0
         verdict = magnitude(difference, estimate.expanded_uncertainty, estimate.value)
         measure = estimate.expanded_uncertainty if estimate.expanded_uncertainty > 0.0 else abs(estimate.value)
-        name = NAMES[path.rsplit(".", 1)[-1]]
+        dimension = self.plant.dimension_of(path)
         entry = {
             "path": path,
             "model_value": estimate.value,
             "other_value": changed,
             "difference": difference,
-            "unit": name.unit,
-            "dimension": name.dimension,
+            "unit": DIMENSIONS[dimension],
+            "dimension": dimension,
             "verdict": "decisive" if turns_a_criterion else verdict,
         }
         return entry, abs(difference) / measure if measure > 0.0 else 0.0

@@ -25,9 +25,9 @@ TOKEN = re.compile("⟦([^⟦⟧]+)⟧")
 PRODUCT = re.compile(r"(?<=⟧)(?:\\,|(?=⟦|\\left\(|\\frac))|(?<![,;])(?<!\\ln)(?<!\\exp)\\,(?=⟦)")
 
 
-def with_symbols(template: str) -> str:
+def with_symbols(template: str, symbol: Callable[[str], str] = symbol_of) -> str:
     """Every token replaced by the symbol of its path."""
-    return TOKEN.sub(lambda match: symbol_of(match.group(1)), template)
+    return TOKEN.sub(lambda match: symbol(match.group(1)), template)
 
 
 def with_numbers(template: str, number: Callable[[str], str]) -> str:

@@ -13,22 +13,23 @@ _DIGITS = 6
 
 
 class Amounts:
-    """Entropy rates of one account as text in the unit shown, each rounded once."""
+    """Entropy rates of one account, or entropies of one of a closed system, as text in the unit shown."""
 
     def __init__(self, account: Mapping[str, Any], presenter: Presenter) -> None:
         self._presenter = presenter
+        self.dimension: str = account.get("dimension", "entropy_flow")
         lines = [line["value"] for side in ("entering", "generated", "leaving") for line in account[side]]
         self.generated: float = sum(line["value"] for line in account["generated"] if line["value"] is not None)
         self.entering: float = sum(line["value"] for line in account["entering"] if line["value"] is not None)
         self.leaving: float = sum(line["value"] for line in account["leaving"] if line["value"] is not None)
         figures = [*(value for value in lines if value is not None), self.entering + self.generated, self.leaving]
-        self._places = _places([presenter.display.convert(value, "entropy_flow") for value in figures])
+        self._places = _places([presenter.display.convert(value, self.dimension) for value in figures])
 
     def text(self, value: float | None) -> str:
-        """An entropy rate [W/K] in the unit shown; a dash for None."""
+        """An entropy rate [W/K], or an entropy [J/K], in the unit shown; a dash for None."""
         if value is None:
             return NO_VALUE
-        return fixed(self._presenter.display.convert(value, "entropy_flow"), self._places)
+        return fixed(self._presenter.display.convert(value, self.dimension), self._places)
 
 
 def _places(figures: list[float]) -> int:

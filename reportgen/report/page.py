@@ -5,22 +5,14 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Any
 
-from markupsafe import Markup
-
 from reportgen.record import Record
 from reportgen.report import figures
-from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.presenter import Presenter, prose
 from reportgen.report.sections import account, basis, budget, cross_checks, findings, head, tail, working
 from reportgen.report.templates import environment, fonts_folder, style
 
 __all__ = ["page"]
-
-_BALANCE = (
-    r"\dot S_\mathrm{gen}",
-    r"\sum_\mathrm{out} \dot m s - \sum_\mathrm{in} \dot m s - \sum_{j} \frac{\dot Q_{j}}{T_{j}} \geq 0",
-)
 
 
 def _safety(presenter: Presenter) -> dict[str, Any]:
@@ -80,7 +72,6 @@ def page(record: Record) -> str:
             sections.append({"id": identifier, "title": title, "view": view, "number": len(sections) + 1})
     calculation = record.data["calculation"]
     foot = f"{calculation['number']} · revision {calculation['revision']} · {calculation['status']}"
-    left, right = _BALANCE
     return (
         environment()
         .get_template("report.html.jinja")
@@ -91,7 +82,6 @@ def page(record: Record) -> str:
             numbers={section["id"]: section["number"] for section in sections},
             steps=working.step_anchors(presenter),
             coverage=presenter.coverage,
-            balance=Markup(" ").join(Markup(part) for part in [*pieces(left), *pieces(right, "=")]),
             style=style(foot),
         )
     )

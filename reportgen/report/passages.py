@@ -16,7 +16,7 @@ __all__ = ["RESIDUALS", "Part", "Passage", "arrange", "is_residual", "residuals"
 _STATES, _ENTROPY, _EXERGY, _TRAINS, _WHOLE = range(5)
 _TITLES = (
     "States and balances",
-    "Entropy and lost work, piece by piece",
+    "Entropy and lost work, {} by {}",
     "Exergy and figures of merit",
     "Trains",
     "The whole",
@@ -24,6 +24,10 @@ _TITLES = (
 #: Where a quantity is told when nothing before needs it.
 _TOLD = {
     "entropy_flow": _ENTROPY,
+    "entropy": _ENTROPY,
+    "entropy_change": _ENTROPY,
+    "entropy_of_mixing": _ENTROPY,
+    "mole_fraction": _ENTROPY,
     "entropy_with_heat": _ENTROPY,
     "entropy_generation": _ENTROPY,
     "lost_work": _ENTROPY,
@@ -88,7 +92,8 @@ def arrange(data: Mapping[str, Any]) -> list[Part]:
         if number == _EXERGY:  # the exergies of the states rest on nothing else told here
             keys.sort(key=lambda key: not relations[key]["owner"].startswith(("fluids.", "states.")))
         if keys:
-            parts.append(Part(title, _passages(number, keys, data)))
+            word = "piece" if data["plant"]["equipment"] else "process"
+            parts.append(Part(title.format(word, word), _passages(number, keys, data)))
     return parts
 
 
@@ -106,7 +111,7 @@ def _told(order: Sequence[str], relations: Mapping[str, Relation]) -> dict[str, 
 
 def _part_of(relation: Relation) -> int:
     family = relation["owner"].split(".")[0]
-    if family in ("trains", "total"):
+    if family in ("trains", "total", "closed"):
         return _TRAINS if family == "trains" else _WHOLE
     if family == "fluids":
         return _EXERGY
@@ -195,6 +200,8 @@ def _word(passage: Passage, members: Sequence[Relation]) -> None:
         passage.sentence = f"States {_listed(match['state'] for match in matches if match)} are fixed by their {how}"
     elif all(_last(member["solves"][0]) == "entropy_flow" for member in members if member["solves"]):
         passage.sentence = "A stream carries its flow times its specific entropy."
+    elif all(_last(member["solves"][0]) == "entropy" for member in members if member["solves"]):
+        passage.sentence = "A content holds its mass times its specific entropy."
     elif any(_last(path) == "specific_exergy" for member in members for path in member["solves"]):
         fluid = next((member["owner"].partition(".")[2] for member in members if member["owner"][:7] == "fluids."), "")
         stream = f"a stream of {fluid}" if fluid else "a stream"
@@ -207,13 +214,13 @@ def _word(passage: Passage, members: Sequence[Relation]) -> None:
 
 
 def _only_piece(members: Sequence[Relation]) -> str | None:
-    """Tag of the one piece that a train or the whole consists of; its sums then only repeat that piece's values."""
+    """Tag of the one piece or process that a train or the whole consists of; its sums then only repeat its values."""
     owner = members[0]["owner"]
-    if owner.split(".")[0] not in ("trains", "total") or ": " not in members[0]["sentence"]:
+    if owner.split(".")[0] not in ("trains", "total", "closed") or ": " not in members[0]["sentence"]:
         return None
     pieces: set[str] = set()
     for member in members:
-        parts = [path for path in member["uses"] if path.startswith("equipment.")]
+        parts = [path for path in member["uses"] if path.startswith(("equipment.", "processes."))]
         own = [path for path in member["uses"] if path.startswith(f"{owner}.")]
         symbols = [line[1] for line in member["latex_lines"] if len(line) > 1]
         repeats = len(parts) == 1 and not own and not any(text.lstrip().startswith("-") for text in symbols)

@@ -30,8 +30,11 @@ _DEGREES = re.compile(r"(?<=\d) deg([CF])\b")
 _BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:K|bar|kPa|MPa|Pa|%)(?!\w))")
 _PRODUCT_OF_UNITS = re.compile(r"\((k?g|lb|mol|kmol) (K|°R)\)")
 _HEAT_PORT = re.compile(r"(.+)\.heat_ports\.(\d+)")
+_SPECIES = re.compile(r"(.+)\.species\.([^.]+)")
 _QUALIFIED = re.compile(r"[,:]| at the | of a two-phase| relative to| p v ")
 _PIECES = re.compile(r"(\d+)")
+#: Dimensions of what a process of a closed system has where equipment has a rate.
+_AMOUNTS = ("energy", "entropy", "mass")
 
 
 def significant(value: float, digits: int) -> float:
@@ -226,19 +229,23 @@ class Presenter:
         trains = self.record.data["plant"].get("trains", {})
         if parts[0] == "states":
             return f"state\N{NO-BREAK SPACE}{name}"
-        if parts[0] == "equipment":
-            port = _HEAT_PORT.fullmatch(name)
-            return f"heat port\N{NO-BREAK SPACE}{port[2]} of {port[1]}" if port else name
+        if parts[0] in ("equipment", "processes"):
+            owner = name if parts[0] == "equipment" else f"process\N{NO-BREAK SPACE}{name}"
+            port, species = _HEAT_PORT.fullmatch(name), _SPECIES.fullmatch(name)
+            if species:
+                return f"{species[2]}, process\N{NO-BREAK SPACE}{species[1]}"
+            return f"heat port\N{NO-BREAK SPACE}{port[2]} of {port[1]}" if port else owner
         if parts[0] == "trains":
             return str(trains.get(name, {}).get("title") or name)
-        return {"total": "total", "surroundings": "surroundings"}.get(parts[0], name)
+        return {"total": "total", "closed": "closed systems", "surroundings": "surroundings"}.get(parts[0], name)
 
     def meaning(self, path: str) -> str:
         """What a value is, without its owner: the glossary's words up to where they begin to explain.
 
         A power says which way it is positive.
         """
-        entry = name_of(path)
+        known = self.record.entry(path)
+        entry = name_of(path, amounts=known is not None and known.get("dimension") in _AMOUNTS)
         text = entry.text if entry else path.rsplit(".", 1)[-1].replace("_", " ").capitalize()
         direction = self.record.values.get(path, {}).get("direction")
         return " ".join(filter(None, (_QUALIFIED.split(text, maxsplit=1)[0], direction)))

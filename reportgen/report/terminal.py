@@ -41,7 +41,8 @@ def print_summary(record: Record) -> None:
         say(f"{caution['severity'].upper()} {caution['id']} {caution['path']}: {text} {facts}".rstrip(), style)
     for audit in data["audits"].get("second_law", []):
         if audit["verdict"] != "generates entropy":
-            generated = presenter.show(audit["value"], "entropy_flow", audit["expanded_uncertainty"]).text
+            dimension = audit.get("dimension", "entropy_flow")
+            generated = presenter.show(audit["value"], dimension, audit["expanded_uncertainty"]).text
             say(f"Second law, {presenter.owner_title(audit['owner'])}: {audit['verdict']}, generates {generated}")
     for criterion in data["criteria"]:
         say(

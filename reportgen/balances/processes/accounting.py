@@ -38,7 +38,7 @@ def add_process_results(solution: Solution) -> None:
     trains = solution.plant.trains.items()
     groups = {f"trains.{name}": (train.title, train.processes) for name, train in trains if train.processes}
     counted = trains_of(solution.plant, tuple(processes))
-    groups["closed" if solution.pieces else "total"] = ("All processes", counted)
+    groups["closed" if solution.pieces else "total"] = ("Whole course", counted)
     for owner, (title, tags) in groups.items():
         book.group(owner, title, {tag: processes[tag] for tag in tags})
         solution.closed.add(owner)

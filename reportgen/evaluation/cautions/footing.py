@@ -87,14 +87,16 @@ def velocity_on_one_side(plant: EvaluatedPlant, _limit: float) -> Iterator[Findi
 
 @caution("P13", "note", "Not used", source="structure of the calculation")
 def unused(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """State that no piece of equipment uses, fluid that no state uses; nothing where there is no equipment."""
-    if not plant.kinds:
+    """State that no piece of equipment or process uses, fluid that no state uses; nothing where there is neither."""
+    if not plant.kinds and not plant.processes:
         return
     used = {connection.state for connections in plant.connections.values() for connection in connections}
+    used |= {state for process in plant.processes.values() for state in process.states}
+    users = [word for word, some in (("piece of equipment", plant.kinds), ("process", plant.processes)) if some]
     for state in plant.state_fluids:
         if state not in used:
             path = f"states.{state}"
-            text = f"State {state} is used by no piece of equipment."
+            text = f"State {state} is used by no {' and no '.join(users)}."
             yield Finding(path, None, None, "above", text, None, owner=path)
     for fluid in plant.fluids:
         if fluid not in plant.state_fluids.values():

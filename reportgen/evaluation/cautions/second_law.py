@@ -17,21 +17,23 @@ PRESSURE_DOUBTS = ("pressure-rises", "pressure-against-machine")
 
 @caution("T01", "stop", "Impossible by the second law", source="second law of thermodynamics", undecided="never")
 def negative_entropy_generation(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Entropy generation of a piece below zero by more than its uncertainty.
+    """Entropy generation of a piece or process below zero by more than its uncertainty.
 
     An interval that reaches across zero is the matter of the second-law audit, and no caution; so is what the
     arithmetic leaves of a zero.
     """
-    for tag in plant.kinds:
-        path = f"equipment.{tag}.entropy_generation"
+    members = [("equipment", tag) for tag in plant.kinds] + [("processes", tag) for tag in plant.processes]
+    for family, tag in members:
+        owner = f"{family}.{tag}"
+        path = f"{owner}.entropy_generation"
         samples = plant.samples(path)
-        if abs(samples[0]) <= entropy_resolution(plant, (tag,)):
+        if abs(samples[0]) <= entropy_resolution(plant, owner, (tag,)):
             continue
         heaviest = ", ".join(heaviest_inputs(plant.axis, samples))
         pressures = [
             doubt.path
             for doubt in plant.doubts
-            if doubt.owner == f"equipment.{tag}" and doubt.key in PRESSURE_DOUBTS and doubt.stands
+            if doubt.owner == owner and doubt.key in PRESSURE_DOUBTS and doubt.stands
         ]
         text = f"{tag} would destroy entropy: what is given cannot be true together. "
         if pressures:
@@ -40,4 +42,4 @@ def negative_entropy_generation(plant: EvaluatedPlant, _limit: float) -> Iterato
             text += f"Look first at {heaviest}."
         else:
             text += "Look at the readings, the boundary and the assumptions."
-        yield Finding(path, samples, 0.0, "above", text, "entropy_flow")
+        yield Finding(path, samples, 0.0, "above", text, plant.dimension_of(path))

@@ -24,10 +24,11 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
         return None
     bars = sorted(bars, key=lambda bar: -bar["value"])
     drawing = Drawing(WIDTH, _HEAD + _FOOT + _ROW * len(bars), fonts)
-    texts = [presenter.show(bar["value"], "power", bar["expanded_uncertainty"]).text for bar in bars]
-    values = [presenter.display.convert(bar["value"], "power") for bar in bars]
+    dimension = figure.get("dimension", "power")
+    texts = [presenter.show(bar["value"], dimension, bar["expanded_uncertainty"]).text for bar in bars]
+    values = [presenter.display.convert(bar["value"], dimension) for bar in bars]
     spreads = [
-        presenter.display.convert(bar["expanded_uncertainty"], "power") if bar["expanded_uncertainty"] else 0.0
+        presenter.display.convert(bar["expanded_uncertainty"], dimension) if bar["expanded_uncertainty"] else 0.0
         for bar in bars
     ]
     left = 12.0 + max((drawing.text_size(bar["label"])[0] for bar in bars), default=0.0)
@@ -44,7 +45,7 @@ def draw_lost_work(figure: dict[str, Any], presenter: Presenter, fonts: Path) ->
         end, height = axes.transData.transform((max(value + spread, 0.0), row))
         drawing.write(float(end) + _GAP, float(height) - 3.0, text)
         drawing.write(left - _GAP, float(height) - 3.0, bar["label"], ha="right")
-    _finish(drawing, axes, f"work forgone in {presenter.display.unit_text('power')}")
+    _finish(drawing, axes, f"work forgone in {presenter.display.unit_text(dimension)}")
     named = "; ".join(f"{bar['label']} {text}" for bar, text in zip(bars, texts, strict=True))
     drawing.description = f"Horizontal bars from zero. Work forgone: {named}."
     return drawing
@@ -57,20 +58,22 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         return None
     drawing = Drawing(WIDTH, _HEAD + _FOOT + _ACCOUNT_ROW * len(bars), fonts)
     axes = drawing.axes(_LEFT, _FOOT, 8.0, _HEAD)
-    entering = [presenter.display.convert(bar["entering"], "entropy_flow") for bar in bars]
-    generated = [presenter.display.convert(bar["generated"], "entropy_flow") for bar in bars]
+    dimension = figure.get("dimension", "entropy_flow")
+    entering = [presenter.display.convert(bar["entering"], dimension) for bar in bars]
+    generated = [presenter.display.convert(bar["generated"], dimension) for bar in bars]
     ends = [start + more for start, more in zip(entering, generated, strict=True)]
     lowest, highest = min([0.0, *entering, *ends]), max([0.0, *entering, *ends])
     reach = (highest - lowest) or 1.0
     axes.set(xlim=(lowest, lowest + 1.02 * reach), ylim=(len(bars) - 0.5, -0.5))
-    unit = presenter.display.unit_text("entropy_flow")
+    unit = presenter.display.unit_text(dimension)
+    carried_in = "in" if dimension == "entropy_flow" else "there and in"
     described = []
     for row, (bar, start, more) in enumerate(zip(bars, entering, generated, strict=True)):
         height = _BAR / _ACCOUNT_ROW
         axes.barh(row, start, height=height, color=TINT, edgecolor=INK, linewidth=0.7)
         axes.barh(row, more, height=height, left=start, color=GENERATION, edgecolor=INK, linewidth=0.7)
-        amounts = _amounts(bar, presenter)
-        carried = f"in {amounts.text(bar['entering'])} {unit}"
+        amounts = _amounts(bar, dimension, presenter)
+        carried = f"{carried_in} {amounts.text(bar['entering'])} {unit}"
         made = f"generated {amounts.text(bar['generated'])} {unit}"
         zero, middle = (float(value) for value in axes.transData.transform((lowest, row)))
         end = float(axes.transData.transform((start + more, row))[0])
@@ -79,16 +82,17 @@ def draw_entropy_account(figure: dict[str, Any], presenter: Presenter, fonts: Pa
         drawing.write(zero + 3.0, middle - _BAR / 2 - 11.0, carried, size=SMALL, color=GREY)
         drawing.write(max(end, zero + room), middle - _BAR / 2 - 11.0, made, size=SMALL, color=GENERATION, ha="right")
         described.append(f"{bar['label']}: {carried}, {made}")
-    _finish(drawing, axes, f"entropy rate in {unit}")
+    _finish(drawing, axes, f"{'entropy rate' if dimension == 'entropy_flow' else 'entropy'} in {unit}")
     drawing.description = f"Horizontal bars from zero. {'; '.join(described)}."
     return drawing
 
 
-def _amounts(bar: dict[str, Any], presenter: Presenter) -> Amounts:
+def _amounts(bar: dict[str, Any], dimension: str, presenter: Presenter) -> Amounts:
     """The figures as the account of the same title shows them."""
-    own = {side: [{"value": bar[side]}] for side in ("entering", "generated", "leaving")}
+    own: dict[str, Any] = {side: [{"value": bar[side]}] for side in ("entering", "generated", "leaving")}
     accounts = presenter.record.data["accounts"].values()
-    return Amounts(next((account for account in accounts if account["title"] == bar["label"]), own), presenter)
+    known = next((account for account in accounts if account["title"] == bar["label"]), own)
+    return Amounts({**known, "dimension": dimension}, presenter)
 
 
 def _finish(drawing: Drawing, axes: Any, name: str) -> None:

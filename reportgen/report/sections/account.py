@@ -25,11 +25,27 @@ def accounts(presenter: Presenter) -> dict[str, Any] | None:
     audit = [_audit(entry, presenter) for entry in data["audits"].get("second_law", [])]
     if not found and not audit:
         return None
-    return {
-        "accounts": found,
-        "audit": audit,
-        "unit": presenter.display.unit_text("entropy_flow"),
-    }
+    return {"accounts": found, "audit": audit, "audited": _audited(data)}
+
+
+#: Words at the head and foot of an account: of rates, and of the amounts of a closed system.
+_HEADS = {
+    "entropy_flow": ("Entering", "Leaving", "Sum, entering and generated", "Sum, leaving"),
+    "entropy": (
+        "In the beginning, and entering",
+        "In the end, and leaving",
+        "Sum, beginning, entering and generated",
+        "Sum, end and leaving",
+    ),
+}
+
+
+def _audited(data: dict[str, Any]) -> str:
+    """What the rows of the audit are called."""
+    families = {entry["owner"].partition(".")[0] for entry in data["audits"].get("second_law", [])}
+    if "processes" in families:
+        return "Piece or process" if "equipment" in families else "Process"
+    return "Piece"
 
 
 def _in_train_order(data: dict[str, Any]) -> list[tuple[str, dict[str, Any]]]:
@@ -61,10 +77,14 @@ def _account(name: str, entry: dict[str, Any], presenter: Presenter) -> dict[str
             }
         )
     complete = bool(entry["generated"]) and all(line["value"] is not None for line in entry["generated"])
+    left_head, right_head, left_sum, right_sum = _HEADS[amounts.dimension]
     sums = amounts.text(amounts.entering + amounts.generated), amounts.text(amounts.leaving)
     return {
         "name": name,
         "title": entry["title"],
+        "unit": presenter.display.unit_text(amounts.dimension),
+        "heads": (left_head, right_head),
+        "feet": (left_sum, right_sum),
         "rows": rows,
         "sum_left": sums[0],
         "sum_right": sums[1],
@@ -74,22 +94,27 @@ def _account(name: str, entry: dict[str, Any], presenter: Presenter) -> dict[str
 
 
 def _audit(entry: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
-    uncertainty = entry["expanded_uncertainty"]
-    low, high = (presenter.show(end, "entropy_flow", uncertainty).number for end in entry["interval"])
+    uncertainty, dimension = entry["expanded_uncertainty"], entry.get("dimension", "entropy_flow")
+    low, high = (presenter.show(end, dimension, uncertainty).number for end in entry["interval"])
     return {
         "owner": presenter.owner_title(entry["owner"]),
-        "number": presenter.link(entry["path"], presenter.with_unit(entry["value"], "entropy_flow", uncertainty)),
+        "number": presenter.link(entry["path"], presenter.with_unit(entry["value"], dimension, uncertainty)),
         "interval": f"{low} to {high}" if uncertainty else NO_VALUE,
         "verdict": entry["verdict"],
         "heaviest": [presenter.symbol_link(path) for path in entry["heaviest_inputs"]],
     }
 
 
-#: (dimension, quantity that says what is left) of the balances that are closed.
-_BALANCES = {
-    "mass": ("mass_flow", "mass_imbalance"),
-    "energy": ("power", "energy_imbalance"),
-    "entropy": ("entropy_flow", "closure"),
+#: Quantity that says what is left of each balance.
+_BALANCES = {"mass": "mass_imbalance", "energy": "energy_imbalance", "entropy": "closure"}
+#: Dimension of what is left, by its unit.
+_DIMENSIONS = {
+    "kg/s": "mass_flow",
+    "W": "power",
+    "W/K": "entropy_flow",
+    "kg": "mass",
+    "J": "energy",
+    "J/K": "entropy",
 }
 
 
@@ -99,7 +124,7 @@ def closure(presenter: Presenter) -> dict[str, Any] | None:
     rest = {path: key for key in residuals(data) for path in data["relations"][key]["solves"]}
     groups: dict[str, list[dict[str, Any]]] = defaultdict(list)
     for entry in data["audits"].get("closure", []):
-        dimension, name = _BALANCES[entry["quantity"]]
+        dimension, name = _DIMENSIONS[entry["unit"]], _BALANCES[entry["quantity"]]
         path = f"{entry['owner']}.{name}"
         groups[entry["owner"]].append(
             {

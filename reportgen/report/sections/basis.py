@@ -5,6 +5,9 @@ from __future__ import annotations
 from collections import defaultdict
 from typing import Any
 
+from markupsafe import Markup
+
+from reportgen.report.formulae import pieces
 from reportgen.report.links import anchor
 from reportgen.report.narrative import render_narrative
 from reportgen.report.presenter import NO_VALUE, Presenter, in_order, natural, prose
@@ -38,13 +41,24 @@ def purpose(presenter: Presenter) -> dict[str, Any] | None:
 
 
 def boundary(presenter: Presenter) -> dict[str, Any] | None:
-    """Pieces inside the boundary with what enters and leaves each, train by train."""
+    """Pieces inside the boundary with what enters and leaves each, then processes with their states, train by train."""
     plant = presenter.record.data["plant"]
-    groups: dict[str | None, list[dict[str, Any]]] = defaultdict(list)
-    for tag, piece in in_order(plant["equipment"]):
-        groups[piece.get("train")].append(_piece(tag, piece, presenter))
-    if not groups:
+    pieces, processes = (
+        _by_train(plant, family, crossing, presenter)
+        for family, crossing in (("equipment", ("heat", "power")), ("processes", ("heat", "work")))
+    )
+    if not pieces and not processes:
         return None
+    surroundings = [presenter.number(plant["surroundings"][key]) for key in ("temperature", "pressure")]
+    return {"trains": pieces, "courses": processes, "named": bool(plant["trains"]), "surroundings": surroundings}
+
+
+def _by_train(
+    plant: dict[str, Any], family: str, crossing: tuple[str, ...], presenter: Presenter
+) -> list[dict[str, Any]]:
+    groups: dict[str | None, list[dict[str, Any]]] = defaultdict(list)
+    for tag, piece in in_order(plant.get(family, {})):
+        groups[piece.get("train")].append(_piece(family, tag, piece, crossing, presenter))
     trains = plant["trains"]
     order = [name for name, _ in in_order(trains)]
     listed = []
@@ -58,14 +72,15 @@ def boundary(presenter: Presenter) -> dict[str, Any] | None:
                 "pieces": groups[train],
             }
         )
-    surroundings = [presenter.number(plant["surroundings"][key]) for key in ("temperature", "pressure")]
-    return {"trains": listed, "named": bool(trains), "surroundings": surroundings}
+    return listed
 
 
-def _piece(tag: str, piece: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
+def _piece(
+    family: str, tag: str, piece: dict[str, Any], quantities: tuple[str, ...], presenter: Presenter
+) -> dict[str, Any]:
     crossing = []
-    for name in ("heat", "power"):
-        path = f"equipment.{tag}.{name}"
+    for name in quantities:
+        path = f"{family}.{tag}.{name}"
         value = presenter.record.value(path)
         if isinstance(value, float) and value != 0.0:
             direction = presenter.record.values[path].get("direction")
@@ -77,7 +92,7 @@ def _piece(tag: str, piece: dict[str, Any], presenter: Presenter) -> dict[str, A
         )
     return {
         "tag": tag,
-        "anchor": anchor("equipment", tag),
+        "anchor": anchor(family, tag),
         "title": piece.get("title"),
         "kind": piece.get("kind_title") or piece["kind"],
         "entering": ports["in"],
@@ -220,7 +235,36 @@ def method(presenter: Presenter) -> dict[str, Any]:
         "fluids": fluids,
         "uncertainty_method": presenter.record.data["calculation"]["method"],
         "uncertain": any(entry["standard_uncertainty"] for entry in presenter.record.inputs.values()),
+        "balances": _balances(presenter.record.data["plant"]),
     }
+
+
+#: What is solved, by family: what is said before the equation, its left and its right side.
+_BALANCES = {
+    "equipment": (
+        "Steady flow. Mass and energy are conserved in every piece; the entropy generated in it is what leaves less "
+        "what enters, and is never assumed to be zero:",
+        r"\dot S_\mathrm{gen}",
+        r"\sum_\mathrm{out} \dot m s - \sum_\mathrm{in} \dot m s - \sum_{j} \frac{\dot Q_{j}}{T_{j}} \geq 0",
+    ),
+    "processes": (
+        "Closed systems. Mass is kept, heat is positive into the system and work positive out of it, ΔU = Q − W; the "
+        "entropy generated is what the entropy changes by less what came with heat, and is never assumed to be zero:",
+        r"S_\mathrm{gen}",
+        r"\sum_\mathrm{end} m s - \sum_\mathrm{beginning} m s - \sum_{j} \frac{Q_{j}}{T_{j}} \geq 0",
+    ),
+}
+
+
+def _balances(plant: dict[str, Any]) -> list[tuple[str, Markup]]:
+    """Each kind of balance that the calculation uses: steady flow where it has neither equipment nor processes."""
+    used = [family for family in _BALANCES if plant.get(family)] or ["equipment"]
+    found = []
+    for family in used:
+        words, left, right = _BALANCES[family]
+        sides = [*pieces(left), *pieces(right, "=")]
+        found.append((words, Markup(" ").join(Markup(part) for part in sides)))
+    return found
 
 
 def _detail(detail: dict[str, Any], presenter: Presenter) -> str:

@@ -21,12 +21,17 @@ __all__ = ["states", "step_anchors", "working"]
 _STATE_COLUMNS = (
     "pressure",
     "temperature",
+    "specific_internal_energy",
     "specific_enthalpy",
     "specific_entropy",
     "specific_exergy",
     "density",
     "mass_flow",
+    "mass",
+    "volume",
 )
+#: Columns for states that hold an amount, and those that then say nothing new.
+_OF_AMOUNTS, _NOT_OF_AMOUNTS = ("specific_internal_energy",), ("density",)
 #: Characters of one piece that reaches into the column of the basis.
 _STACKED = 48
 #: Characters of a right side that takes more than a line anyway: the result then follows on its last line.
@@ -41,8 +46,12 @@ def states(presenter: Presenter) -> dict[str, Any] | None:
     plant = record.data["plant"]
     if not plant["states"]:
         return None
+    held = [state for state, entry in plant["states"].items() if entry.get("mass")]
     columns = [
-        name for name in _STATE_COLUMNS if any(record.entry(f"states.{state}.{name}") for state in plant["states"])
+        name
+        for name in _STATE_COLUMNS
+        if any(record.entry(f"states.{state}.{name}") for state in (held if name in _OF_AMOUNTS else plant["states"]))
+        and not (name in _NOT_OF_AMOUNTS and len(held) == len(plant["states"]))
     ]
     rows = []
     for state, entry in in_order(plant["states"]):
@@ -138,7 +147,9 @@ def _passage(
 
 def _unbroken_tags(sentence: str, presenter: Presenter) -> Markup:
     """A sentence in which no line ends within a tag such as ``TG-2``."""
-    tags = sorted((tag for tag in presenter.record.data["plant"]["equipment"] if "-" in tag), key=len, reverse=True)
+    plant = presenter.record.data["plant"]
+    names = [*plant["equipment"], *plant.get("processes", {})]
+    tags = sorted((tag for tag in names if "-" in tag), key=len, reverse=True)
     text = escape(sentence)
     if not tags:
         return text
@@ -232,7 +243,7 @@ def _uses(paths: Iterable[str], presenter: Presenter) -> list[Markup]:
             found.append(presenter.link(path, path.removeprefix("fluids.")))
         elif path.startswith("assumptions."):
             family, _, name = path.removeprefix("assumptions.").partition(".")
-            piece = name.partition(".")[0] if family == "equipment" else ""
+            piece = name.partition(".")[0] if family in ("equipment", "processes") else ""
             found.append(presenter.link(path, f"assumption on {piece}" if piece else "assumption"))
         else:
             found.append(presenter.symbol_link(path))
