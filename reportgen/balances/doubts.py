@@ -92,6 +92,18 @@ def doubts(solution: Solution) -> Iterator[Doubt]:
             yield Doubt("negative-flow", f"states.{state}", path, text, measured, dimension="mass_flow")
     for piece in solution.pieces.values():
         yield from _of_piece(piece, samples)
+    yield from _of_processes(solution, samples)
+
+
+def _of_processes(solution: Solution, samples: Callable[[str], Any]) -> Iterator[Doubt]:
+    """Contents of closed systems that come out as less than nothing, and what the kinds of process tell."""
+    pieces = solution.processes.values()
+    for state in dict.fromkeys(state for piece in pieces for _, _, state in piece.connections()):
+        path = f"states.{state}.mass"
+        text = f"The mass of state {state} ⟦comes|may come⟧ out negative: what is given cannot hold together."
+        yield Doubt("negative-amount", f"states.{state}", path, text, samples(path), dimension="mass")
+    for piece in pieces:
+        yield from piece.kind.doubts(piece, samples)
 
 
 def _of_piece(piece: Piece, samples: Callable[[str], Any]) -> Iterator[Doubt]:

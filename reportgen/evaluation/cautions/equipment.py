@@ -122,13 +122,14 @@ def wet_turbine_exhaust(plant: EvaluatedPlant, limit: float) -> Iterator[Finding
     dimension="ratio",
 )
 def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
-    """Pressure above 90 % of the maximum allowable pressure (warning) or above the whole of it (stop).
+    """Pressure above 90 % of the maximum allowable pressure (warning) or above the whole of it (stop): at the ports of a
+    piece, before and after a process.
 
     Both are taken as gauge pressures against the stated atmosphere, (p − p0)/(p_max − p0), because what strains a
     shell is the difference to its outside; an allowable pressure written as absolute is converted. The ratio to 90 %
     is what the adjustable limit moves.
     """
-    for tag, state, table in _states_with_limits(plant):
+    for owner, tag, state, table in _states_with_limits(plant):
         if table.pressure is None:
             continue
         atmosphere = plant.samples(ATMOSPHERE)
@@ -142,7 +143,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             "below",
             f"The pressure of state {state} ⟦is|may be⟧ above the maximum allowable pressure of {tag}.",
             "pressure",
-            owner=f"equipment.{tag}",
+            owner=owner,
             severity="stop",
             source=source,
         )
@@ -155,7 +156,7 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             f"{tag} (both as gauge pressures): little is left between operation and relief. The limit shown is that "
             "part.",
             "pressure",
-            owner=f"equipment.{tag}",
+            owner=owner,
             source=source,
         )
 
@@ -169,16 +170,16 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
     dimension="temperature_difference",
 )
 def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
-    """State at a port beyond the maximum or minimum temperature of the piece (stop), or within 10 K of it (warning).
+    """State at a port of a piece, before or after a process, beyond the maximum or minimum temperature (stop), or within
+    10 K of it (warning).
 
     The pressure of the same table is the matter of T19.
     """
-    for tag, state, table in _states_with_limits(plant):
+    for owner, tag, state, table in _states_with_limits(plant):
         temperature = plant.samples(f"states.{state}.temperature")
         path = f"states.{state}.temperature"
         source = table.source or f"limits of {tag}"
         warned = f"{source}; margin of {limit:g} K: common practice"
-        owner = f"equipment.{tag}"
         if table.temperature is not None:
             maximum = table.temperature.value
             text = f"State {state} ⟦is|may be⟧ hotter than the maximum temperature of {tag}."
@@ -209,7 +210,12 @@ def _pumps_liquid(kind: str) -> bool:
     return kinds()[kind].power_sign > 0 and not _compresses_gas(kind)
 
 
-def _states_with_limits(plant: EvaluatedPlant) -> Iterator[tuple[str, str, Limits]]:
+def _states_with_limits(plant: EvaluatedPlant) -> Iterator[tuple[str, str, str, Limits]]:
+    """Owner, tag, state and limits: at the ports of a piece, before and after a process in its vessel."""
     for tag, table in plant.limits.items():
         for state in plant.states_at(tag):
-            yield tag, state, table
+            yield f"equipment.{tag}", tag, state, table
+    for tag, process in plant.processes.items():
+        if process.limits is not None:
+            for state in process.states:
+                yield f"processes.{tag}", f"process {tag}", state, process.limits

@@ -15,6 +15,7 @@ __all__ = [
     "efficiency_above_one",
     "flow_against_its_direction",
     "heat_against_its_direction",
+    "negative_amount",
     "power_against_its_direction",
     "pressure_against_a_machine",
     "pressure_from_enthalpy",
@@ -55,6 +56,14 @@ flow_against_its_direction = _passed_on(
     "conservation of mass",
     "negative-flow",
     "Negative mass flow of a stream.",
+)
+negative_amount = _passed_on(
+    "P18",
+    "stop",
+    "Negative amount",
+    "conservation of mass",
+    "negative-amount",
+    "Negative mass of a content.",
 )
 temperatures_cross = _passed_on(
     "P02",
