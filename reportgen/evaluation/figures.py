@@ -31,6 +31,7 @@ PATH_SAMPLES = 60
 
 #: Closest approach to the critical point, as 1 − T/Tc; nearer, two-phase densities cannot be told apart reliably.
 CLOSEST_TO_CRITICAL = 1e-5
+CLOSEST_ABOVE_CRITICAL = 1e-9
 #: Pressures closer than this part of each other share one isobar.
 SAME_PRESSURE = 1e-3
 _LINES = (
@@ -201,16 +202,22 @@ def saturation_dome(fluid: Any) -> Curve | None:
     even = np.linspace(0.0, reach, DOME_SAMPLES // 2 + 1)[1:-1]
     temperature = np.array([lowest, *(critical.temperature * (1.0 - np.sort([*near, *even])[::-1]))])
     liquid, vapour = fluid.saturation(temperature=temperature, errors="mask")
-    top = fluid.at(temperature=critical.temperature, density=critical.density, errors="mask")
+    # The critical point itself is ill-conditioned; where a model has no state there, the next one above stands for it.
+    summit = critical.temperature * np.array([1.0, 1.0 + CLOSEST_ABOVE_CRITICAL])
+    top = np.asarray(fluid.at(temperature=summit, density=critical.density, errors="mask").specific_entropy)
     entropies = np.concatenate(
         [
             np.asarray(liquid.specific_entropy),
-            [float(top.specific_entropy)],
+            top[np.isfinite(top)][:1],
             np.asarray(vapour.specific_entropy)[::-1],
         ]
     )
     temperatures = np.concatenate(
-        [np.asarray(liquid.temperature), [critical.temperature], np.asarray(vapour.temperature)[::-1]]
+        [
+            np.asarray(liquid.temperature),
+            np.full(min(1, np.count_nonzero(np.isfinite(top))), critical.temperature),
+            np.asarray(vapour.temperature)[::-1],
+        ]
     )
     return _curve(entropies, temperatures)
 

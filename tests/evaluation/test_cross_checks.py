@@ -6,10 +6,12 @@ from dataclasses import replace
 from typing import Any
 
 import pytest
-from calculations import HEAD, evaluated, project
+from calculations import HEAD, PROJECTS, evaluated, project
 from handmade_plants import plant
 
+from reportgen import spec
 from reportgen.errors import InputError
+from reportgen.evaluation import evaluate
 from reportgen.evaluation.cautions import catalogue, raised
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.fluids import library, real_fluid
@@ -182,6 +184,12 @@ def test_the_demonstration_checks_air_by_molecules_and_by_its_equation_of_state(
     assert {entry["verdict"] for entry in checks(record)} == {"agrees"}
     assert {entry["species"] for entry in checks(record, second_model="statistical")} == {None, "N2", "O2", "Ar"}
     assert max(abs(entry["relative"]) for entry in checks(record, property="specific_entropy", species="N2")) < 1e-4
+
+
+@pytest.mark.parametrize("name", ["letdown-station", "instrument-air"])
+def test_the_demonstrations_are_the_same_without_the_library(name: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(library, "library_version", lambda: None)
+    assert evaluate(spec.read(PROJECTS / name), PROJECTS / name).to_json() == project(name).to_json()
 
 
 # --- the cautions alone ---------------------------------------------------------------------------------------------

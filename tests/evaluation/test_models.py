@@ -9,7 +9,9 @@ import numpy as np
 import pytest
 from calculations import HEAD, evaluated
 
+from reportgen.errors import InputError
 from reportgen.evaluation.models import property_model
+from reportgen.fluids import cubic, real_fluid
 from reportgen.record import Record
 from reportgen.report.page import page
 from reportgen.spec.calculation import FluidSpec, HeatPolynomial, HeatTable
@@ -148,3 +150,150 @@ def test_specific_heats_of_every_form(heat: Any, at_350: float) -> None:
     spec = FluidSpec("f", "incompressible", 1, density=900.0, specific_heat=heat, temperature_range=(300.0, 400.0))
     state = property_model(spec).at(pressure=1e5, temperature=[350.0])
     assert np.asarray(state.isobaric_heat_capacity) == pytest.approx([at_350], rel=1e-12)
+
+
+# --- cubic equations of state ---------------------------------------------------------------------------------------
+
+GAS = (
+    HEAD
+    + """
+[fluids.gas]
+model       = "cubic"
+equation    = "Peng-Robinson"
+basis       = "mole"
+composition = { CO2 = 0.94, N2 = 0.06 }
+interaction = [{ between = ["CO2", "N2"], coefficient = -0.017, source = "data sheet DS-40" }]
+
+[states.1]
+fluid       = "gas"
+pressure    = "8 bar ± 0.1 bar"
+temperature = "40 degC"
+mass_flow   = "1 kg/s"
+
+[states.2]
+fluid    = "gas"
+pressure = "20 bar"
+
+[equipment.K]
+kind                  = "compressor"
+inlet                 = "1"
+outlet                = "2"
+isentropic_efficiency = "75 %"
+"""
+)
+PROPANE = (
+    HEAD
+    + """
+[fluids.propane]
+model              = "cubic"
+equation           = "Soave-Redlich-Kwong"
+substance          = "propane"
+volume_translation = "Peneloux"
+
+[states.1]
+fluid      = "propane"
+pressure   = "12 bar"
+subcooling = "4 K"
+mass_flow  = "0.3 kg/s"
+
+[states.2]
+fluid    = "propane"
+pressure = "3 bar"
+
+[equipment.V]
+kind   = "throttling-valve"
+inlet  = "1"
+outlet = "2"
+"""
+)
+
+
+@pytest.fixture(scope="module")
+def gas() -> Record:
+    return evaluated(GAS)
+
+
+@pytest.fixture(scope="module")
+def propane() -> Record:
+    return evaluated(PROPANE)
+
+
+def test_a_mixture_is_compressed_by_the_cubic_equation(gas: Record) -> None:
+    """The efficiency again from the model alone: h at the outlet pressure and the entropy of the inlet."""
+    model = cubic({"CO2": 0.94, "N2": 0.06}, equation="Peng-Robinson", interaction={("CO2", "N2"): -0.017})
+    inlet = model.at(pressure=8e5, temperature=313.15)
+    ideal = model.at(pressure=20e5, specific_entropy=float(inlet.specific_entropy))
+    work = float(ideal.specific_enthalpy - inlet.specific_enthalpy) / 0.75
+    assert gas.value("equipment.K.power") == pytest.approx(work, rel=1e-8)
+
+
+def test_its_settings_zero_and_sources_stand_in_the_record_and_on_the_page(gas: Record) -> None:
+    fluid = fluid_of(gas, "gas")
+    assert (fluid["model"], fluid["entropy_zero_name"], fluid["title"]) == ("cubic", "third-law", "gas (mixture)")
+    assert {"label": "equation", "text": "Peng-Robinson", "value": None, "dimension": None} in fluid["details"]
+    assert {"label": "k of CO2 and N2", "text": None, "value": -0.017, "dimension": "ratio"} in fluid["details"]
+    assert "Interaction of CO2 and N2: data sheet DS-40" in fluid["sources"]
+    assert any("10.1021/i160057a011" in source for source in fluid["sources"])  # Peng and Robinson 1976
+    text = page(gas)
+    assert "k of CO2 and N2" in text
+    assert "name of this zero: third-law" in text
+
+
+def test_a_mixture_without_a_published_equation_is_not_tested_and_says_so(gas: Record) -> None:
+    (entry,) = (entry for entry in gas.data["assumptions"] if entry["id"] == "fluids.gas.cubic")
+    assert "follows the cubic equation of state of Peng-Robinson" in entry["text"]
+    assert "no real fluid of this composition is carried" in entry["basis"]
+
+
+def test_a_pure_substance_is_held_against_its_published_equation(propane: Record) -> None:
+    (entry,) = (entry for entry in propane.data["assumptions"] if entry["id"] == "fluids.propane.cubic")
+    test = entry["test"]
+    assert test["path"] == "equipment.V.entropy_generation"
+    real = real_fluid("propane")
+    saturation = float(real.saturation(pressure=12e5)[0].temperature)
+    first = real.at(pressure=12e5, temperature=saturation - 4.0)
+    second = real.at(pressure=3e5, specific_enthalpy=float(first.specific_enthalpy))
+    assert test["other_value"] == pytest.approx(0.3 * float(second.specific_entropy - first.specific_entropy), rel=1e-6)
+
+
+def test_the_figure_of_a_pure_substance_has_a_closed_dome_and_that_of_a_mixture_none(
+    propane: Record, gas: Record
+) -> None:
+    def dome(record: Record) -> Any:
+        return next(figure["dome"] for figure in record.data["figures"] if figure["kind"] == "temperature-entropy")
+
+    assert dome(gas) is None
+    temperatures = np.array(dome(propane)["temperature"])
+    top = int(np.argmax(temperatures))
+    assert temperatures[top] == pytest.approx(fluid_of(propane, "propane")["limits"]["critical_point"]["temperature"])
+    assert (np.diff(temperatures[: top + 1]) > 0.0).all()
+    assert (np.diff(temperatures[top:]) < 0.0).all()
+
+
+def test_constants_of_the_author_are_used_and_stated() -> None:
+    own = 'critical = { propane = { temperature = "96.7 degC", pressure = "42 bar", acentric_factor = 0.15, '
+    own += 'source = "data sheet DS-41" } }\n'
+    record = evaluated(PROPANE.replace('volume_translation = "Peneloux"\n', own))
+    fluid = fluid_of(record, "propane")
+    assert fluid["limits"]["critical_point"]["temperature"] == pytest.approx(369.85, rel=1e-6)
+    assert {"label": "critical pressure of propane", "text": None, "value": 42e5, "dimension": "pressure"} in fluid[
+        "details"
+    ]
+    assert "Critical constants of propane: data sheet DS-41" in fluid["sources"]
+
+
+def test_a_substance_that_nobody_knows_is_refused_at_its_line() -> None:
+    with pytest.raises(InputError) as caught:
+        evaluated(PROPANE.replace('"propane"\nvol', '"unobtainium"\nvol'))
+    assert caught.value.faults[0].line == PROPANE.splitlines().index("[fluids.propane]") + 1 or "fluids.propane" in str(
+        caught.value
+    )
+
+
+def test_cubic_as_second_source_names_the_equation() -> None:
+    real = PROPANE.replace('"cubic"', '"real-fluid"').replace('equation           = "Soave-Redlich-Kwong"\n', "")
+    real = real.replace('volume_translation = "Peneloux"', 'second_source = { model = "cubic", tolerance = "40 %" }')
+    entries = evaluated(real).data["cross_checks"]
+    assert {entry["second_title"] for entry in entries} == {"Propane (Peng-Robinson)"}
+    assert {entry["verdict"] for entry in entries} == {"agrees"}
+    assert "pressure" in {entry["property"] for entry in entries if entry["state"] == "2"}  # two phases: T and x
