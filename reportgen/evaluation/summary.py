@@ -23,6 +23,8 @@ UNCHANGED = 1e-9
 #: Of a piece and of sums over pieces, in this order.
 SUMS = ("entropy_generation", "lost_work", "power")
 OF_PIECES = (*SUMS, "shaft_power", "isentropic_efficiency", "duty", "heat")
+#: Of cycles and of compressions in several stages.
+OF_CYCLES = ("thermal_efficiency", "coefficient_of_performance", "second_law_efficiency", "isothermal_efficiency")
 FLOWS = ("mass_flow", "volume_flow", "molar_flow")
 
 
@@ -45,9 +47,15 @@ def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) ->
     found += _solved_flows(plant)
     owners = [f"trains.{name}" for name, tags in plant.trains.items() if len(tags) > 1]
     owners += ["total"] if len(totals) > 1 else []
-    found += [f"{owner}.{name}" for owner in owners for name in SUMS]
+    found += [f"{owner}.{name}" for owner in owners for name in (*SUMS, *_of_cycle(solution, owner))]
     found += _of_processes(plant)
     return [path for path in found if _tells(plant, path)]
+
+
+def _of_cycle(solution: Solution, owner: str) -> tuple[str, ...]:
+    """Efficiencies of a cycle and of a compression in stages."""
+    repeated = owner == "total" and len(solution.plant.trains) == 1
+    return () if repeated else OF_CYCLES
 
 
 def _of_processes(plant: EvaluatedPlant) -> list[str]:
@@ -61,14 +69,14 @@ def _of_processes(plant: EvaluatedPlant) -> list[str]:
 
 
 def _changed(plant: EvaluatedPlant, process: ClosedProcess, state: str) -> list[str]:
-    """Properties of a state in the end that are not those of the one state before."""
+    """Properties of a state in the end that are not those of the same body before; of parts that became one, all."""
+    bodies = dict(zip(process.after, process.before, strict=True)) if len(process.after) == len(process.before) else {}
     found = []
     for name in OF_END_STATES:
-        path = f"states.{state}.{name}"
-        value = plant.samples(path)[0]
-        same = [plant.samples(f"states.{before}.{name}")[0] for before in process.before]
-        if len(same) > 1 or not abs(value - same[0]) <= UNCHANGED * abs(value):
-            found.append(path)
+        value = plant.samples(f"states.{state}.{name}")[0]
+        before = plant.samples(f"states.{bodies.get(state)}.{name}")[0]
+        if not abs(value - before) <= UNCHANGED * abs(value):
+            found.append(f"states.{state}.{name}")
     return found
 
 

@@ -140,6 +140,36 @@ def _refrigerator() -> dict[str, float]:
     }
 
 
+# --- closed systems: the same from textbooks, iron and copper in closed form ----------------------------------------
+
+MORAN = "Moran & Shapiro, Fundamentals of Engineering Thermodynamics, worked example, from memory"
+
+
+def _iron() -> tuple[float, float]:
+    """Change of entropy of the block, and entropy that the lake takes up [J/K]."""
+    return 50 * 450 * math.log(285 / 500), 50 * 450 * (500 - 285) / 285
+
+
+def _copper() -> tuple[float, float]:
+    """Changes of entropy of the hot and the cold block [J/K]."""
+    return 1.5 * 386 * math.log(313.15 / 333.15), 1.5 * 386 * math.log(313.15 / 293.15)
+
+
+def _mixed_gases() -> float:
+    """Entropy generated [J/K] by Cantera: 3 kmol of O2 and 5 kmol of CO2, each from 25 °C and 2 bar to its part."""
+    gas = cantera.Solution("gri30.yaml")
+
+    def entropy(composition: dict[str, float]) -> float:
+        gas.TPX = 298.15, 2e5, composition
+        return float(gas.entropy_mole)
+
+    return 8 * entropy({"O2": 3, "CO2": 5}) - 3 * entropy({"O2": 1}) - 5 * entropy({"CO2": 1})
+
+
+def _change(values: Values, before: str, after: str) -> float:
+    return values[f"states.{after}.entropy"] - values[f"states.{before}.entropy"]
+
+
 # --- the table: example, quantity, published number and its unit in the last digit, from the file, recomputed -------
 
 Values = dict[str, float]
@@ -283,6 +313,94 @@ ROWS: list[Row] = [
         1e-3,
         lambda v: v["equipment.W-2.entropy_generation"],
         lambda: 1035 / 273.15 - 1035 / 300.15,
+    ),
+    (
+        "iron-lake",
+        "change of entropy of the block, kJ/K",
+        -12.65,
+        0.01,
+        lambda v: v["processes.L-1.entropy_change"] / 1e3,
+        lambda: _iron()[0] / 1e3,
+    ),
+    (
+        "iron-lake",
+        "entropy taken up by the lake, kJ/K",
+        16.97,
+        0.01,
+        lambda v: -v["processes.L-1.entropy_with_heat"] / 1e3,
+        lambda: _iron()[1] / 1e3,
+    ),
+    (
+        "iron-lake",
+        "entropy generated, kJ/K",
+        4.32,
+        0.01,
+        lambda v: v["processes.L-1.entropy_generation"] / 1e3,
+        lambda: sum(_iron()) / 1e3,
+    ),
+    (
+        "copper-blocks",
+        "change of entropy of the hot block, J/K",
+        -35.86,
+        0.01,
+        lambda v: _change(v, "1", "3"),
+        lambda: _copper()[0],
+    ),
+    (
+        "copper-blocks",
+        "change of entropy of the cold block, J/K",
+        38.23,
+        0.01,
+        lambda v: _change(v, "2", "4"),
+        lambda: _copper()[1],
+    ),
+    (
+        "copper-blocks",
+        "entropy generated, J/K",
+        2.4,
+        0.1,
+        lambda v: v["total.entropy_generation"],
+        lambda: sum(_copper()),
+    ),
+    (
+        "gas-mixing",
+        "entropy generated, kJ/K",
+        44.0,
+        0.1,
+        lambda v: v["processes.M-1.entropy_generation"] / 1e3,
+        lambda: _mixed_gases() / 1e3,
+    ),
+    (
+        "gas-mixing",
+        "work forgone at 25 degC, MJ",
+        13.1,
+        0.1,
+        lambda v: v["processes.M-1.lost_work"] / 1e6,
+        lambda: 298.15 * _mixed_gases() / 1e6,
+    ),
+    (
+        "free-expansion",
+        "entropy generated, J/K",
+        5.76,
+        0.01,
+        lambda v: v["processes.F-1.entropy_generation"],
+        lambda: cantera.gas_constant / 1e3 * math.log(2),
+    ),
+    (
+        "stirred-water",
+        f"net work, kJ/kg ({MORAN})",
+        -2087.6,
+        0.1,
+        lambda v: v["processes.S-1.work"] / 1e3,
+        lambda: (water("U", "T", 373.15, "Q", 0) - water("U", "T", 373.15, "Q", 1)) / 1e3,
+    ),
+    (
+        "stirred-water",
+        f"entropy generated, kJ/(kg K) ({MORAN})",
+        6.048,
+        1e-3,
+        lambda v: v["processes.S-1.entropy_generation"] / 1e3,
+        lambda: (water("S", "T", 373.15, "Q", 1) - water("S", "T", 373.15, "Q", 0)) / 1e3,
     ),
 ]
 
