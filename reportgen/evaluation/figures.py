@@ -204,18 +204,19 @@ def saturation_dome(fluid: Any) -> Curve | None:
     liquid, vapour = fluid.saturation(temperature=temperature, errors="mask")
     # The critical point itself is ill-conditioned; where a model has no state there, the next one above stands for it.
     summit = critical.temperature * np.array([1.0, 1.0 + CLOSEST_ABOVE_CRITICAL])
-    top = np.asarray(fluid.at(temperature=summit, density=critical.density, errors="mask").specific_entropy)
+    above = np.asarray(fluid.at(temperature=summit, density=critical.density, errors="mask").specific_entropy)
+    top = above[np.isfinite(above)][:1]
     entropies = np.concatenate(
         [
             np.asarray(liquid.specific_entropy),
-            top[np.isfinite(top)][:1],
+            top,
             np.asarray(vapour.specific_entropy)[::-1],
         ]
     )
     temperatures = np.concatenate(
         [
             np.asarray(liquid.temperature),
-            np.full(min(1, np.count_nonzero(np.isfinite(top))), critical.temperature),
+            np.full(top.size, critical.temperature),
             np.asarray(vapour.temperature)[::-1],
         ]
     )
