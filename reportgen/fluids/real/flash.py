@@ -24,6 +24,8 @@ _SETTLED = 1e-7
 #: What may be left of the target, in parts of R T or R, where a bracket has closed: a bracket without a root in it
 #: closes too. The rest covers the rounding of densities next to the critical point.
 _LEFT_OVER = 1e-7
+#: Closer to a saturated state than this, in parts of R T or R, a state is the saturated one.
+_ROUNDING = 1e-12
 
 
 class Caloric(NamedTuple):
@@ -134,14 +136,18 @@ class PressureFlash:
         heat_capacity = self._heat_capacity(t_both, rho_both, found)
         wanted = target[where]
         from_liquid, from_vapour = wanted - value[:n], wanted - value[n:]
-        mixed = (from_liquid >= 0) & (from_vapour <= 0)
-        cold_side = from_liquid < 0
+        # a saturated state given back differs from the one computed here by rounding
+        r = self._equation.gas_constant
+        scale_l, scale_v = (np.full(n, r), np.full(n, r)) if entropy else (r * t_l, r * t_v)
+        at_bubble, at_dew = np.abs(from_liquid) <= _ROUNDING * scale_l, np.abs(from_vapour) <= _ROUNDING * scale_v
+        mixed = (from_liquid >= 0) & (from_vapour <= 0) | at_bubble | at_dew
+        cold_side = (from_liquid < 0) & ~mixed
         if mixed.any():
             span = value[n:] - value[:n]
             # next to the critical point the phases can be equal to the last digit
             x = np.where(span > 0, from_liquid / np.where(span > 0, span, 1), 0.0)
+            x = np.where(at_bubble, 0.0, np.where(at_dew, 1.0, x))
             if self._curves.pseudo_pure:
-                x = np.where(np.abs(x) < 1e-12, 0.0, np.where(np.abs(x - 1) < 1e-12, 1.0, x))
                 result.between[where] = mixed & (x > 0) & (x < 1)
             result.quality[where] = np.where(mixed, x, np.nan)
             result.liquid_density[where], result.vapour_density[where] = rho_l, rho_v
@@ -157,7 +163,7 @@ class PressureFlash:
         liquid[where] = cold_side
         x = result.quality[where]
         with np.errstate(invalid="ignore"):
-            overall = 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l))
+            overall = np.where(x == 1, rho_v, 1 / (1 / rho_l + x * (1 / rho_v - 1 / rho_l)))
         # density to start from: a gas keeps its compressibility, a liquid is as if saturated
         guess = rho0 * t0 / start
         if cold_side.any():
@@ -264,6 +270,8 @@ class PressureFlash:
             # deep in the solid the equation may have no density at this pressure
             lo = np.where(side, np.maximum(lo, self._line.temperature(p) * (1 - 1e-9)), lo)
         coldest = lo
+        # the lower end is that of the fluid, not a state on the saturation line
+        own_end = side | (lo <= self._lowest)
 
         def evaluate(t: FloatArray) -> tuple[FloatArray, FloatArray, FloatArray, BoolArray]:
             rho, ok = self._solver.solve(t, p, side)
@@ -274,7 +282,7 @@ class PressureFlash:
         scale = self._equation.gas_constant * (1.0 if entropy else self._curves.top_temperature)
         rho, gap, _, ok = evaluate(lo)
         rounding = 1e-13 * scale
-        result.cold[todo] = ok & (gap < -1e-9 * scale)
+        result.cold[todo] = own_end & ok & (gap < -1e-9 * scale)
         rho, gap, _, ok = evaluate(hi)
         result.hot[todo] = ok & (gap > 1e-9 * scale)
         t = np.minimum(np.maximum(result.temperature[todo], lo), hi)
@@ -299,10 +307,12 @@ class PressureFlash:
                 width = hi - lo
             t = np.where(settled, t, np.where(bad, 0.5 * (lo + hi), trial))
         result.temperature[todo], result.density[todo] = t, rho
-        result.cold[todo] |= ~settled & ~result.hot[todo] & (t <= coldest * (1 + 1e-6))
+        result.cold[todo] |= own_end & ~settled & ~result.hot[todo] & (t <= coldest * (1 + 1e-6))
         result.found[todo] = settled & ~result.cold[todo] & ~result.hot[todo]
         if self._curves.pseudo_pure:
-            # below the highest temperature of the envelope, the bubble line rises a little above the pressure there
+            # Below the highest temperature of the envelope, the bubble line rises a little above the pressure there;
+            # and what is on a line by its temperature may not be by its pressure, to a part in 1e9.
             saturated = self._curves.at_temperature(np.minimum(t, self._curves.top_temperature))
-            inside = (p > saturated.dew_pressure) & (p < saturated.bubble_pressure) & (t < self._curves.top_temperature)
+            inside = (p > saturated.dew_pressure * (1 - 1e-7)) & (p < saturated.bubble_pressure * (1 + 1e-7))
+            inside &= t < self._curves.top_temperature
             result.between[todo] = inside & ~result.found[todo] & ~result.cold[todo] & ~result.hot[todo]

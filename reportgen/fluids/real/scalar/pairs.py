@@ -366,11 +366,12 @@ def _caloric_fields(
     """The fields of a single phase by p [Pa], T [K], ρ [kg/m3] and what ``ScalarEquation.properties`` gives there."""
     _, h, s, c_v, p_rho, p_t = found
     c_p = c_v + t * (p_t / rho) ** 2 / p_rho
+    square = c_p / c_v * p_rho
     return {
         "specific_enthalpy": h,
         "specific_entropy": s,
         "specific_internal_energy": h - p / rho,
         "isobaric_heat_capacity": c_p,
         "isochoric_heat_capacity": c_v,
-        "speed_of_sound": sqrt(c_p / c_v * p_rho),
+        "speed_of_sound": sqrt(square) if square >= 0.0 else nan,
     }
