@@ -13,6 +13,7 @@ import numpy as np
 from reportgen import balances, fluids
 from reportgen.errors import Fault, InputError, ReportgenError
 from reportgen.evaluation.cautions.fluid_states import freezing_hint
+from reportgen.fluids import crosscheck
 from reportgen.names import name_of
 from reportgen.quantities import Display
 from reportgen.spec.calculation import HeatPolynomial, HeatTable
@@ -50,6 +51,7 @@ def _made_of(specification: FluidSpec) -> str | dict[str, float]:
 
 
 def _cubic(specification: FluidSpec) -> Any:
+    assert specification.equation is not None  # the schema asks for it
     return fluids.cubic(
         _made_of(specification),
         equation=specification.equation,
@@ -128,7 +130,9 @@ def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Pl
         equipment=_definitions(calculation.equipment),
         processes=_definitions(calculation.processes),
         trains={
-            identifier: balances.Train(train.title, train.equipment, train.alternative_to, train.processes)
+            identifier: balances.Train(
+                train.title, train.equipment, train.alternative_to, train.processes, train.purpose
+            )
             for identifier, train in calculation.trains.items()
         },
     )
@@ -146,17 +150,16 @@ def real_counterpart(model: Any) -> Any:
 
     It counts from the zero of the ideal gases where that can be had, so that given enthalpies keep their meaning.
     """
-    from reportgen.fluids.gases import catalogue as gas_catalogue
-
     if model.kind == "incompressible" and model.phase != "liquid":
         return None
-    name = gas_catalogue.real_counterpart(model, fluids.names())
-    if name is None:
+    try:
+        published = crosscheck.second_model(model, "real-fluid")
+    except InputError:
         return None
     try:
-        return fluids.real_fluid(name, reference_state="third-law")
+        return fluids.real_fluid(published.substance, reference_state="third-law")
     except InputError:
-        return fluids.real_fluid(name)
+        return published
 
 
 def placed(calculation: Calculation, error: ReportgenError, models: Mapping[str, Any]) -> ReportgenError:
