@@ -21,6 +21,8 @@ _NEWTON_ITERATIONS = 14
 _SEARCH_ITERATIONS = 120
 #: Relative step after which Newton's method has converged: it doubles the digits with each step.
 _SETTLED = 1e-7
+#: Temperature [critical ones] of the second start of a search at high pressure.
+_COLD_START = 0.6
 #: What may be left of the target, in parts of R T or R, where a bracket has closed: a bracket without a root in it
 #: closes too. The rest covers the rounding of densities next to the critical point.
 _LEFT_OVER = 1e-7
@@ -192,6 +194,31 @@ class PressureFlash:
         liquid: BoolArray,
     ) -> None:
         """Newton's method in T and ρ together; elements that do not settle go to the bracketed search."""
+        self._newton(pressure, target, entropy, result, todo, low, high, liquid)
+        remaining = np.flatnonzero(~result.found & ~result.between)
+        cold = remaining[pressure[remaining] >= self._curves.top_pressure]
+        if cold.size:
+            # far below the critical temperature: from a saturated liquid
+            start = np.full(cold.size, max(_COLD_START * self._curves.top_temperature, self._lowest))
+            result.temperature[cold] = start
+            result.density[cold] = self._curves.at_temperature(start).liquid_density
+            self._newton(pressure, target, entropy, result, cold, low, high, liquid)
+            remaining = np.flatnonzero(~result.found & ~result.between)
+        if remaining.size:
+            self._search(pressure, target, entropy, result, remaining, low, high, liquid)
+
+    def _newton(
+        self,
+        pressure: FloatArray,
+        target: FloatArray,
+        entropy: bool,
+        result: Caloric,
+        todo: NDArray[np.intp],
+        low: FloatArray,
+        high: FloatArray,
+        liquid: BoolArray,
+    ) -> None:
+        """Newton's method in T and ρ together, from the temperatures and densities in the result."""
         equation = self._equation
         t, rho = result.temperature[todo], result.density[todo]
         p, wanted = pressure[todo], target[todo]
@@ -231,9 +258,6 @@ class PressureFlash:
                 if not keep.any():
                     break
                 todo, t, rho, p, wanted, lo, hi = (a[keep] for a in (todo, t, rho, p, wanted, lo, hi))
-        remaining = np.flatnonzero(~result.found & ~result.between)
-        if remaining.size:
-            self._search(pressure, target, entropy, result, remaining, low, high, liquid)
 
     def _on_branch(
         self, temperature: FloatArray, density: FloatArray, pressure: FloatArray, liquid: BoolArray
