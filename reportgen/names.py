@@ -126,7 +126,7 @@ _ENTRIES = (
     Name("isothermal_efficiency", r"\eta_T", "efficiency", "Isothermal efficiency"),
     Name("isothermal_work", "w_T", "specific_energy", "Reversible work of compression at the inlet temperature"),
     Name("mechanical_efficiency", r"\eta_\mathrm{m}", "efficiency", "Efficiency of bearings, gear and motor"),
-    Name("shaft_power", r"\dot W_\mathrm{sh}", "power", "Power with mechanical losses counted in", _POWER),
+    Name("shaft_power", r"\dot W_\mathrm{sh}", "power", "Shaft power: mechanical losses counted in", _POWER),
     Name("mechanical_heat", r"\dot Q_\mathrm{m}", "heat_flow", "Heat of the mechanical losses", _INTO_PIECE),
     Name(
         "mechanical_boundary_temperature",
@@ -134,9 +134,11 @@ _ENTRIES = (
         "temperature",
         "Temperature at which the heat of the mechanical losses leaves",
     ),
-    Name("entropy_with_mechanical_heat", r"\dot S_{Q\mathrm{m}}", "entropy_flow", "Entropy with that heat", _INTO_PIECE),
-    Name("entropy_with_fluid_heat", r"\dot S_{Q\mathrm{f}}", "entropy_flow", "Entropy with heat of the stream", _INTO),
-    Name("pressure_rise", r"\Delta p_\mathrm{rise}", "pressure_difference", "Outlet pressure less inlet pressure", _RISE),
+    Name("entropy_with_mechanical_heat", r"\dot S_\mathrm{Q,m}", "entropy_flow", "Entropy with that heat", _INTO_PIECE),
+    Name("entropy_with_fluid_heat", r"\dot S_\mathrm{Q,f}", "entropy_flow", "Entropy with heat of the stream", _INTO),
+    Name(
+        "pressure_rise", r"\Delta p_\mathrm{rise}", "pressure_difference", "Outlet pressure less inlet pressure", _RISE
+    ),
     Name("mach_number", r"\mathit{Ma}", "ratio", "Velocity in parts of the speed of sound"),
     Name("inlet_area", "A_1", "area", "Area of the flow at the inlet"),
     Name("outlet_area", "A_2", "area", "Area of the flow at the outlet"),
@@ -159,7 +161,9 @@ _ENTRIES = (
     Name("pressure_ratio", r"r_p", "ratio", "Higher over lower pressure of the machine"),
     Name("pinch", r"\Delta T_\mathrm{min}", "temperature_difference", "Smallest temperature difference", _WARMER),
     Name("pinch_place", r"y_\mathrm{min}", "ratio", "Share of the duty at which the temperatures come closest"),
-    Name("mean_temperature_difference", r"\Delta T_\mathrm{m}", "temperature_difference", "Mean temperature difference"),
+    Name(
+        "mean_temperature_difference", r"\Delta T_\mathrm{m}", "temperature_difference", "Mean temperature difference"
+    ),
     Name("effectiveness", r"E", "efficiency", "Effectiveness: duty over the largest that either stream could exchange"),
     Name(
         "entropy_by_temperature_difference",
@@ -193,11 +197,23 @@ _ENTRIES = (
         "net_power",
         r"\dot W_\mathrm{net}",
         "power",
-        "Net power of a cycle",
+        "Net power: that of a cycle",
         "positive as its purpose has it: delivered by a power cycle, absorbed for cooling or heating",
     ),
-    Name("heat_supplied", r"\dot Q_\mathrm{sup}", "heat_flow", "Heat that enters a cycle", "positive into the cycle"),
-    Name("heat_rejected", r"\dot Q_\mathrm{rej}", "heat_flow", "Heat that leaves a cycle", "positive out of the cycle"),
+    Name(
+        "heat_supplied",
+        r"\dot Q_\mathrm{sup}",
+        "heat_flow",
+        "Heat supplied: what enters a cycle",
+        "positive into the cycle",
+    ),
+    Name(
+        "heat_rejected",
+        r"\dot Q_\mathrm{rej}",
+        "heat_flow",
+        "Heat rejected: what leaves a cycle",
+        "positive out of the cycle",
+    ),
     Name("thermal_efficiency", r"\eta_\mathrm{th}", "efficiency", "Thermal efficiency: net power over heat supplied"),
     Name(
         "coefficient_of_performance",
@@ -219,7 +235,7 @@ _ENTRIES = (
     Name("polytropic_index", "n", "ratio", "Exponent of a polytropic change"),
     Name("entropy_change", r"\Delta S", "entropy", "Change of entropy", "end less beginning"),
     Name("entropy_of_mixing", r"\Delta S_\mathrm{mix}", "entropy", "Entropy of mixing", "never negative"),
-    Name("mole_fraction", "x", "ratio", "Mole fraction of a species in a mixture"),
+    Name("mole_fraction", "x", "ratio", "Mole fraction, of a species in a mixture"),
 )
 
 NAMES: dict[str, Name] = {entry.key: entry for entry in _ENTRIES}
@@ -231,7 +247,9 @@ AMOUNTS: dict[str, Name] = {
     entry.key: entry
     for entry in (
         Name("heat", "Q", "energy", "Heat", _INTO_SYSTEM),
-        Name("entropy_generation", r"S_\mathrm{gen}", "entropy", "Entropy generation", NAMES["entropy_generation"].sign),
+        Name(
+            "entropy_generation", r"S_\mathrm{gen}", "entropy", "Entropy generation", NAMES["entropy_generation"].sign
+        ),
         Name("entropy_with_heat", "S_Q", "entropy", "Entropy carried by heat", _INTO_SYSTEM),
         Name("lost_work", r"W_\mathrm{lost}", "energy", NAMES["lost_work"].text, NAMES["lost_work"].sign),
         Name("energy_imbalance", r"\delta E", "energy", NAMES["energy_imbalance"].text, _LEFT),

@@ -36,6 +36,7 @@ SECTIONS: dict[str, type] = {
     "cautions": list,
     "criteria": list,
     "cross_checks": list,
+    "cycles": dict,
     "figures": list,
     "inputs": dict,
     "plant": dict,

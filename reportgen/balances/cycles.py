@@ -4,14 +4,17 @@ A group of pieces holds a cycle where a fluid goes round in it: a set of joined 
 boundary of the group. Several such circuits that exchange heat with each other (a cascade) are one cycle. With Q̇ over
 every boundary of the circuit and from every stream outside it that an exchanger brings together with it:
 
-    Q̇_sup = Σ Q̇ > 0 ,   Q̇_rej = −Σ Q̇ < 0
-    power    Ẇ_net delivered:   η_th = Ẇ_net/Q̇_sup ,   η_II = Ẇ_net/(exergy of the heat supplied)
-    cooling  Ẇ_net absorbed:    COP = Q̇_sup/Ẇ_net ,   η_II = (exergy given to what is cooled)/Ẇ_net
-    heating  Ẇ_net absorbed:    COP = Q̇_rej/Ẇ_net ,   η_II = (exergy given to what is heated)/Ẇ_net
+    Q̇_sup = Σ Q̇ > 0 ,   Q̇_rej = −Σ Q̇ < 0 ,   Q̇_sup − Q̇_rej = Ẇ_net and what bearings, gears and motors lose
+    power    Ẇ_net delivered:   η_th = Ẇ_net/Q̇_sup ,    η_II = Ẇ_net/(exergy of the heat supplied)
+    cooling  Ẇ_net absorbed:    COP = Q̇_cold/Ẇ_net ,   η_II = (exergy given to what is cooled)/Ẇ_net
+    heating  Ẇ_net absorbed:    COP = Q̇_warm/Ẇ_net ,   η_II = (exergy given to what is heated)/Ẇ_net
 
-Exergy of heat at a boundary is Q̇ − T0 Ṡ_Q, that of a stream outside the circuit the change of its flow exergy. A heat
-counts as supplied or rejected by its sign in the base case. A group that states a purpose gets these figures as an open
-process too; its streams then count as inside, and what they carry away is no rejected heat.
+Q̇_cold and Q̇_warm count heaters, coolers and streams outside; what pipes and casings gain or lose by the way is supplied
+or rejected, but no purpose of the cycle.
+
+Exergy of heat at a boundary is Q̇ − T0 Ṡ_Q, that of a stream outside the circuit the change of its flow exergy. A
+heat counts as supplied or rejected by its sign in the base case. A group that states a purpose gets these figures as
+an open process too; its streams then count as inside, and what they carry away is no rejected heat.
 """
 
 from __future__ import annotations
@@ -40,10 +43,15 @@ CYCLE_REPORTS = (
 
 @dataclass(frozen=True)
 class _Heat:
-    """Heat between the cycle and one reservoir, and the exergy that comes with it when it enters."""
+    """Heat between the cycle and one reservoir, and the exergy that comes with it when it enters.
+
+    ``serves``: it is what the cycle is for, not a gain or loss by the way. ``beside``: it never was in the fluid.
+    """
 
     reservoir: Reservoir
     exergy: tuple[Term, ...]
+    serves: bool
+    beside: bool = False
 
 
 def circuits(pieces: Sequence[Piece]) -> list[frozenset[str]]:
@@ -83,8 +91,9 @@ def add_cycle(book: Book, owner: str, title: str, pieces: Sequence[Piece], purpo
     machines = [piece for piece in pieces if piece.kind.power_sign and inside.issuperset(_states(piece))]
     heats = [heat for piece in pieces for heat in _heats(piece, inside)]
     known = [(heat, _base(book, heat.reservoir.heat) * heat.reservoir.sign) for heat in heats]
-    supplied = [heat for heat, value in known if value > 0.0]
-    rejected = [heat for heat, value in known if value < 0.0]
+    supplied = [heat for heat, value in known if value > 0.0 and not heat.beside]
+    rejected = [heat for heat, value in known if value < 0.0 and not heat.beside]
+    beside = [heat for heat in heats if heat.beside]
     if not machines or not (supplied or rejected):
         return None
     delivered = sum(-piece.kind.power_sign * _base(book, piece.kind.work(piece)) for piece in machines)
@@ -115,6 +124,7 @@ def add_cycle(book: Book, owner: str, title: str, pieces: Sequence[Piece], purpo
         tuple(heat.reservoir for heat in supplied),
         tuple(heat.reservoir for heat in rejected),
         powers,
+        tuple(heat.reservoir for heat in beside),
     )
 
 
@@ -149,7 +159,7 @@ def _heats(piece: Piece, inside: frozenset[str]) -> Iterable[_Heat]:
         into = states if port.into is None or port.beside else set(port.into)
         if into & inside:
             exergy = (Term(1.0, (port.heat,)), Term(-1.0, (AMBIENT, port.entropy)))
-            yield _Heat(Reservoir(port.label, port.heat, 1, port.temperature), exergy)
+            yield _Heat(Reservoir(port.label, port.heat, 1, port.temperature), exergy, piece.kind.serves, port.beside)
     for exchange in piece.kind.exchanges(piece):
         gives, takes = (bool(set(side) & inside) for side in (exchange.giver, exchange.taker))
         if gives != takes:
@@ -162,7 +172,8 @@ def _heats(piece: Piece, inside: frozenset[str]) -> Iterable[_Heat]:
                 for state in several
             )
             label = f"{piece.title}, stream {', '.join(entering)} to {', '.join(leaving)}"
-            yield _Heat(Reservoir(label, exchange.path, 1 if takes else -1, None, (*entering, *leaving)), exergy)
+            sign = 1 if takes else -1
+            yield _Heat(Reservoir(label, exchange.path, sign, None, (*entering, *leaving)), exergy, True)
 
 
 def _exergy(book: Book, heats: Iterable[_Heat]) -> float:
@@ -182,7 +193,8 @@ def _purpose(book: Book, delivered: float, supplied: Sequence[_Heat], rejected: 
     """Power where any is delivered; else heating where the heat rejected has more exergy than the cooling."""
     if delivered > 0.0:
         return "power"
-    return "heating" if -_exergy(book, rejected) > -_exergy(book, supplied) else "cooling"
+    warm, cold = (_exergy(book, [heat for heat in heats if heat.serves]) for heats in (rejected, supplied))
+    return "heating" if -warm > -cold else "cooling"
 
 
 def _figures(
@@ -190,8 +202,6 @@ def _figures(
 ) -> Iterable[Formula]:
     net = Term(1.0, (f"{owner}.net_power",))
     given = [term for heat in supplied for term in heat.exergy]
-    taken = [Term(-term.coefficient, term.factors) for heat in supplied for term in heat.exergy]
-    left = [Term(-term.coefficient, term.factors) for heat in rejected for term in heat.exergy]
     if purpose == "power":
         words = f"{title}: net power delivered in parts of the heat supplied."
         heat = Term(1.0, (f"{owner}.heat_supplied",))
@@ -199,15 +209,20 @@ def _figures(
         words = f"{title}: net power delivered in parts of the exergy that comes with the heat supplied."
         yield _ratio(owner, "second_law_efficiency", "Second-law efficiency", words, [net], given)
         return
-    useful, name = ("heat_supplied", "taken up") if purpose == "cooling" else ("heat_rejected", "given off")
+    useful, direction, name, goal = (
+        (supplied, 1.0, "taken up", "what is cooled")
+        if purpose == "cooling"
+        else (rejected, -1.0, "given off", "what is heated")
+    )
+    useful = [heat for heat in useful if heat.serves]
+    if not useful:
+        return
     words = f"{title}: heat {name} in parts of the net power absorbed ({purpose})."
-    heat = Term(1.0, (f"{owner}.{useful}",))
-    yield _ratio(owner, "coefficient_of_performance", "Coefficient of performance", words, [heat], [net])
-    goal = "what is cooled" if purpose == "cooling" else "what is heated"
+    terms = [Term(direction * heat.reservoir.sign, (heat.reservoir.heat,)) for heat in useful]
+    yield _ratio(owner, "coefficient_of_performance", "Coefficient of performance", words, terms, [net])
     words = f"{title}: exergy given to {goal} in parts of the net power absorbed ({purpose})."
-    terms = taken if purpose == "cooling" else left
-    if terms:
-        yield _ratio(owner, "second_law_efficiency", "Second-law efficiency", words, terms, [net])
+    terms = [Term(-term.coefficient, term.factors) for heat in useful for term in heat.exergy]
+    yield _ratio(owner, "second_law_efficiency", "Second-law efficiency", words, terms, [net])
 
 
 def _ratio(owner: str, name: str, heading: str, sentence: str, above: Sequence[Term], below: Sequence[Term]) -> Formula:

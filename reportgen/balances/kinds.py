@@ -10,7 +10,7 @@ from __future__ import annotations
 
 import importlib
 import pkgutil
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cache
 from typing import TYPE_CHECKING, Any, Literal
@@ -18,6 +18,7 @@ from typing import TYPE_CHECKING, Any, Literal
 if TYPE_CHECKING:
     from reportgen.balances.doubts import Doubt
     from reportgen.balances.plant import Piece
+    from reportgen.balances.profiles import Along
     from reportgen.balances.relations import Default, Exchange, Formula, HeatPort, Relation, Stretch
     from reportgen.errors import Fault
 
@@ -89,12 +90,15 @@ class Kind:
     reports : names of the values that relations and results give beside the parameters.
     heats : heat ports with the paths of their heat and their boundary temperature.
     exchanges : heat that goes from one stream to another inside the piece.
+    profile : temperatures of both streams along such an exchange, from the values of the base case.
     velocities : states whose velocity is a quantity of the network, given or not; None when there are none.
     stretches : how each stream changes between two states, for process curves.
     doubts : values that could come out where they cannot be meant although all balances hold, beside those that
         parameters tell; called with the piece and a function from path to samples, shape (N,).
     power_sign : +1 when positive power is absorbed, -1 when it is delivered, 0 when there is no power.
     work : path of the power that crosses the boundary of the piece; ``power`` itself unless losses lie between.
+    serves : whether the heat over its boundary is what a cycle is for, as with heaters and coolers, and no loss or gain
+        by the way.
     compresses : whether it raises the pressure of a gas, so that several in a row are stages of one compression.
     lifts : +1 when the pressure rises from inlet to outlet, -1 when it falls by much, 0 when it stays about the same.
     exergetic_efficiency, entropy_generation_number : their definitions in words.
@@ -119,10 +123,12 @@ class Kind:
     choices: tuple[Choice, ...] = ()
     reports: tuple[str, ...] = ()
     exchanges: Callable[[Piece], Sequence[Exchange]] = lambda piece: ()
+    profile: Callable[[Piece, Mapping[str, Any]], Along] | None = None
     velocities: Callable[[Piece], Sequence[str]] | None = None
     doubts: Callable[[Piece, Callable[[str], Any]], Sequence[Doubt]] = lambda piece, samples: ()
     power_sign: int = 0
     work: Callable[[Piece], str] = lambda piece: piece.path("power")
+    serves: bool = False
     compresses: bool = False
     lifts: int = 0
     exergetic_efficiency: str = ""

@@ -15,7 +15,6 @@ parts meets the entropy balance to 1e-7 of it.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -85,16 +84,18 @@ class Stream:
 
 @dataclass(frozen=True)
 class Along:
-    """What a profile comes to, each of shape (N,) but the curves.
+    """What a profile comes to, each of shape (N,) but the curves and the corners.
 
-    ``share``, ``hot`` and ``cold`` [K]: the curves, shape (K, N), sorted by share. ``pinch`` [K] and ``place`` [1]:
-    smallest difference and its share; ``mean`` [K]: mean difference, NaN where the temperatures cross;
-    ``across`` [1/K] ∫ (1/T_c − 1/T_h) dy, ``cold_inverse`` [1/K] ∫ dy/T_c, ``friction`` [W/K] Ṡ_Δp.
+    ``share``, ``hot`` and ``cold`` [K]: the curves, shape (K, N), sorted by share. ``corners``: shares at which the
+    hot, then the cold stream meets the liquid and the vapour line, shape (4, N), NaN where it does not. ``pinch`` [K]
+    and ``place`` [1]: smallest difference and its share; ``mean`` [K]: mean difference, NaN where the temperatures
+    cross; ``across`` [1/K] ∫ (1/T_c − 1/T_h) dy, ``cold_inverse`` [1/K] ∫ dy/T_c, ``friction`` [W/K] Ṡ_Δp.
     """
 
     share: Array
     hot: Array
     cold: Array
+    corners: Array
     pinch: Array
     place: Array
     mean: Array
@@ -105,9 +106,17 @@ class Along:
 
 def along(hot: Stream, cold: Stream) -> Along:
     """The profile of two streams; NaN where a state along the way does not exist."""
-    share = _shares([hot, cold])
+    corners = np.concatenate([hot.corners(), cold.corners()])
+    share = _shares(corners)
     curves = [np.asarray(stream.state(share).temperature, float) for stream in (hot, cold)]
     pinch, place = _smallest(hot, cold, share, curves[0] - curves[1])
+    there = [np.asarray(stream.state(place[None, :]).temperature, float) for stream in (hot, cold)]
+    drawn = np.concatenate([share, place[None, :]])
+    order = np.argsort(drawn, axis=0, kind="stable")
+    curves = [
+        np.take_along_axis(np.concatenate([curve, point]), order, axis=0)
+        for curve, point in zip(curves, there, strict=True)
+    ]
     width = np.diff(share, axis=0)
     nodes = (share[:-1, None, :] + width[:, None, :] * _NODES[None, :, None]).reshape(-1, share.shape[1])
     weights = (width[:, None, :] * _WEIGHTS[None, :, None]).reshape(nodes.shape)
@@ -121,8 +130,9 @@ def along(hot: Stream, cold: Stream) -> Along:
             for stream, state, temperature in zip((hot, cold), states, (warm, cool), strict=True)
         )
         return Along(
-            share,
+            np.take_along_axis(drawn, order, axis=0),
             *curves,
+            corners,
             pinch,
             place,
             np.where(pinch > 0.0, mean, np.nan),
@@ -132,9 +142,8 @@ def along(hot: Stream, cold: Stream) -> Along:
         )
 
 
-def _shares(streams: Sequence[Stream]) -> Array:
-    """Even shares and the corners of all streams, sorted, shape (K, N); corners that are none repeat the end."""
-    corners = np.concatenate([stream.corners() for stream in streams])
+def _shares(corners: Array) -> Array:
+    """Even shares and the corners, sorted, shape (K, N); corners that are none repeat the end."""
     corners = corners[np.isfinite(corners).any(axis=1)]
     even = np.repeat(np.linspace(0.0, 1.0, _INTERVALS + 1)[:, None], corners.shape[1], axis=1)
     return np.sort(np.concatenate([even, np.where(np.isfinite(corners), corners, 1.0)]), axis=0)

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from reportgen.balances.curves import states_between
 from reportgen.balances.doubts import Doubt
 from reportgen.balances.plant import Piece, Plant, Purpose
+from reportgen.balances.profiles import Along
 from reportgen.balances.relations import Equation, Stretch
 from reportgen.errors import Fault
 
@@ -108,7 +109,8 @@ class Reservoir:
 class Cycle:
     """A cycle: what it is for, whether it is closed, its reservoirs by the direction of their heat, and its powers.
 
-    ``powers``: path and +1 where the power is delivered, −1 where it is absorbed.
+    ``powers``: path and +1 where the power is delivered, −1 where it is absorbed. ``losses``: heat of bearings, gears
+    and motors, which lie between the fluid and the powers.
     """
 
     owner: str
@@ -118,6 +120,7 @@ class Cycle:
     supplied: tuple[Reservoir, ...]
     rejected: tuple[Reservoir, ...]
     powers: tuple[tuple[str, int], ...]
+    losses: tuple[Reservoir, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -172,6 +175,14 @@ class Solution:
         """The way of every stream through its piece of equipment, and of every process, base case."""
         members = [*self.pieces.items(), *self.processes.items()]
         return [self._curve(tag, stretch, points) for tag, piece in members for stretch in piece.kind.stretches(piece)]
+
+    def profiles(self) -> dict[str, Along]:
+        """Temperatures along every exchange of heat between two streams, by tag, base case."""
+        found = {}
+        for tag, piece in self.pieces.items():
+            if piece.kind.profile is not None:
+                found[tag] = piece.kind.profile(piece, self.values)
+        return found
 
     def _curve(self, tag: str, stretch: Stretch, points: int) -> Curve:
         fluid = self.plant.fluids[self.plant.states[stretch.start]]

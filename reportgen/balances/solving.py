@@ -234,9 +234,8 @@ class _Run:
             raise SolutionError(Fault(message, f"states.{relation.state}", numbers=self._numbers([known])))
         self.values[unknown] = array
         equation = Equation(token(unknown), rf"{NAMES[name].symbol}\left({token(known)}\right)")
-        sentence = (
-            f"State {relation.state}: temperature and enthalpy of an ideal gas fix each other, whatever the pressure."
-        )
+        words = " and ".join(NAMES[part].text.lower().removeprefix("specific ") for part in (given, name))
+        sentence = f"State {relation.state}: {words} of an ideal gas fix each other, whatever the pressure."
         self.solution.steps.append(
             Step(
                 relation.key,

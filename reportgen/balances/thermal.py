@@ -48,6 +48,7 @@ def heat_kind(name: str, title: str, text: str, *, heat: str, takes_up: bool) ->
         heats=heat_ports,
         stretches=lambda piece: stream_stretches(piece, "enthalpy"),
         groups=(HEAT_PORTS,),
+        serves=True,
         doubts=lambda piece, samples: [_heat_the_other_way(piece, samples, takes_up)],
         exergetic_efficiency="Exergy gained over exergy given up, by the stream and by the heat at its boundary.",
         entropy_generation_number="Lost work over heat.",

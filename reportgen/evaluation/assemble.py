@@ -31,7 +31,9 @@ from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order
 from reportgen.evaluation.closed import closed_boundary_test
 from reportgen.evaluation.criteria import decided_criteria
 from reportgen.evaluation.cross_checks import cross_checks, second_sources
+from reportgen.evaluation.cycles import cycles_section
 from reportgen.evaluation.evaluated import ClosedProcess, EvaluatedPlant
+from reportgen.evaluation.exchanger_profile import exchanger_figures
 from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
 from reportgen.evaluation.fluid_assumptions import fluid_assumptions
 from reportgen.evaluation.models import placed, plant_of, property_model, property_models, real_counterpart
@@ -117,11 +119,13 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             "accounts": accounts,
             "criteria": criteria,
             "cross_checks": plant.cross_checks,
+            "cycles": cycles_section(plant, solution),
             "summary": headlines,
             "uncertainty_budget": budgets(plant, dict.fromkeys([*headlines, *(entry["path"] for entry in criteria)])),
             "figures": [
                 *temperature_entropy_figures(plant, solution),
                 *bar_figures(plant, train_of(calculation), accounts),
+                *exchanger_figures(plant, solution),
             ],
             "provenance": provenance(calculation.files, models.values(), folder, seconds.values()),
         }

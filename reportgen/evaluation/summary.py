@@ -15,7 +15,7 @@ if TYPE_CHECKING:
 __all__ = ["summary"]
 
 #: Of a process and of sums over processes, in this order.
-OF_PROCESSES = ("heat", "work", "entropy_change", "entropy_generation", "lost_work")
+OF_PROCESSES = ("heat", "work", "entropy_generation", "lost_work")
 #: What a process leads to, told where it changes.
 OF_END_STATES = ("temperature", "pressure", "quality", "volume")
 #: Part of a value below which it counts as unchanged.
@@ -69,10 +69,13 @@ def _of_processes(plant: EvaluatedPlant) -> list[str]:
 
 
 def _changed(plant: EvaluatedPlant, process: ClosedProcess, state: str) -> list[str]:
-    """Properties of a state in the end that are not those of the same body before; of parts that became one, all."""
+    """Properties of a state in the end that are not those of the same body before.
+
+    The volume of parts that became one is the sum of theirs, and no news.
+    """
     bodies = dict(zip(process.after, process.before, strict=True)) if len(process.after) == len(process.before) else {}
     found = []
-    for name in OF_END_STATES:
+    for name in OF_END_STATES if bodies else OF_END_STATES[:-1]:
         value = plant.samples(f"states.{state}.{name}")[0]
         before = plant.samples(f"states.{bodies.get(state)}.{name}")[0]
         if not abs(value - before) <= UNCHANGED * abs(value):

@@ -9,7 +9,7 @@ from reportgen.record import Record
 from reportgen.report import figures
 from reportgen.report.links import anchor
 from reportgen.report.presenter import Presenter, prose
-from reportgen.report.sections import account, basis, budget, cross_checks, findings, head, tail, working
+from reportgen.report.sections import account, basis, budget, cross_checks, cycles, findings, head, tail, working
 from reportgen.report.templates import environment, fonts_folder, style
 
 __all__ = ["page"]
@@ -31,6 +31,9 @@ def _figures(presenter: Presenter) -> dict[str, Any] | None:
                     "svg": svg,
                     "title": figure["title"].rstrip("."),
                     "caption": prose(figure.get("caption")),
+                    "table": figures.TABLES[figure["kind"]](figure, presenter)
+                    if figure["kind"] in figures.TABLES
+                    else None,
                 }
             )
     return {"figures": drawn} if drawn else None
@@ -47,6 +50,7 @@ SECTIONS: tuple[tuple[str, str, Callable[[Presenter], dict[str, Any] | None]], .
     ("method", "Method", basis.method),
     ("states", "States", working.states),
     ("working", "Working", working.working),
+    ("cycles", "Cycles", cycles.cycles),
     ("account", "Entropy account", account.accounts),
     ("closure", "Closure", account.closure),
     ("budget", "Uncertainty budget", budget.uncertainty_budget),

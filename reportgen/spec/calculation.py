@@ -174,7 +174,7 @@ class EquipmentSpec:
 class TrainSpec:
     """Pieces or processes that are accounted for together.
 
-    ``alternative_to`` names the train in whose place they could stand.
+    ``alternative_to`` names the train in whose place they could stand, ``purpose`` what a cycle is for.
     """
 
     id: str
@@ -183,6 +183,7 @@ class TrainSpec:
     alternative_to: str | None
     line: int
     processes: tuple[str, ...] = ()
+    purpose: Literal["power", "cooling", "heating"] | None = None
 
 
 @dataclass(frozen=True)

@@ -26,7 +26,20 @@ _STATE_RESULTS = (
     "speed_of_sound",
     "specific_exergy",
 )
+#: Of cycles, and of compressions in several stages.
+_CYCLE_RESULTS = (
+    "net_power",
+    "heat_supplied",
+    "heat_rejected",
+    "thermal_efficiency",
+    "coefficient_of_performance",
+    "second_law_efficiency",
+    "pressure_ratio",
+    "isothermal_work",
+    "isothermal_efficiency",
+)
 _TOTAL_RESULTS = (
+    *_CYCLE_RESULTS,
     "entropy_generation",
     "lost_work",
     "power",

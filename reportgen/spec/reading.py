@@ -109,6 +109,7 @@ class _Builder:
                     train.alternative_to,
                     self.line("trains", name),
                     tuple(train.processes or ()),
+                    train.purpose,
                 )
                 for name, train in self.document.trains.items()
             },

@@ -173,6 +173,9 @@ class TrainTable(Table):
         None, min_length=1, description="Tags of the processes that belong to the train, in place of equipment."
     )
     alternative_to: Identifier | None = Field(None, description="Train in whose place this one could stand.")
+    purpose: Literal["power", "cooling", "heating"] | None = Field(
+        None, description="What a cycle, or a process judged like one, is for; if not given: found from its heats."
+    )
 
 
 class AssumptionTable(Table):

@@ -307,9 +307,9 @@ def test_two_stage_cascade() -> None:
     check.same("total.net_power", work)
     check.same("total.heat_rejected", rejected)
     check.same("total.heat_supplied", 101.5e3)
-    check.same("total.coefficient_of_performance", 101.5e3 / work)
-    useful = 100e3 * (T0 / 238.15 - 1.0) + 1500.0 * (T0 / 285.0 - 1.0)
-    check.same("total.second_law_efficiency", useful / work)
+    # The heat that warms the ammonia on its way is supplied, but nothing that the cascade is for.
+    check.same("total.coefficient_of_performance", 100e3 / work)
+    check.same("total.second_law_efficiency", 100e3 * (T0 / 238.15 - 1.0) / work)
     parts = [
         check.generation("K1", "1", "2"),
         check.generation("CC", "2 14", "3 15"),

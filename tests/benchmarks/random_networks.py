@@ -33,8 +33,8 @@ from reportgen.balances.structure import all_relations, build_network
 from reportgen.errors import ReportgenError, SolutionError
 
 SURROUNDINGS = {"surroundings.temperature": 288.15, "surroundings.pressure": 1.013e5}
-#: Largest growth of an error from the givens to an unknown.
-MOST_GROWTH = 1e4
+#: Largest growth of an error from the givens to an unknown, both in their scales: 0.1 K may move a pressure by a tenth.
+MOST_GROWTH = 100.0
 #: States count as recovered within this part of their scale.
 TOLERANCE = 1e-6
 MOST_PIECES = 30

@@ -110,6 +110,7 @@ KIND = Kind(
     heats=heat_ports,
     stretches=stretches,
     groups=(HEAT_PORTS,),
+    serves=True,
     power_sign=-1,
     exergetic_efficiency="Exergy that leaves with streams, heat and power over exergy that enters with them.",
 )

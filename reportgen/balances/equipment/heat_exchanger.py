@@ -179,6 +179,7 @@ KIND = Kind(
             for side in SIDES
         ),
     ),
+    profile=lambda piece, values: Exchanging(piece).profile(values),
     choices=(
         Choice(
             "arrangement",

@@ -11,16 +11,22 @@ from typing import Any
 
 from markupsafe import Markup
 
-from reportgen.report.figures import bars, temperature_entropy
+from reportgen.report.figures import bars, exchanger_profile, temperature_entropy
 from reportgen.report.figures.canvas import Drawing
 from reportgen.report.presenter import Presenter
 
-__all__ = ["KINDS", "draw"]
+__all__ = ["KINDS", "TABLES", "draw"]
 
 KINDS: dict[str, Callable[[dict[str, Any], Presenter, Path], Drawing | None]] = {
     "temperature-entropy": temperature_entropy.draw,
     "lost-work-bars": bars.draw_lost_work,
     "entropy-account-bars": bars.draw_entropy_account,
+    "exchanger-profile": exchanger_profile.draw,
+}
+
+#: Tables that stand under figures of a kind: heads, and rows of a name and its numbers.
+TABLES: dict[str, Callable[[dict[str, Any], Presenter], dict[str, Any]]] = {
+    "exchanger-profile": exchanger_profile.table,
 }
 
 

@@ -34,6 +34,8 @@ FAMILY = "Ledger Pagella"
 WIDTH = 376.0
 SIZE = 9.5
 SMALL = 8.5
+#: Least room between labels along an axis [pt].
+_CLEAR = 6.0
 _TICK = 3.0
 _SETTINGS: Any = {
     "svg.fonttype": "none",
@@ -137,8 +139,9 @@ class Drawing:
             low, high = sorted(limits)
             reach = 1e-9 * (high - low)
             values = [value for value in axis.get_major_locator()() if low - reach <= value <= high + reach]
-            for value, plain in zip(values, axis.get_major_formatter().format_ticks(values), strict=True):
-                label = _grouped(plain)
+            labels = [_grouped(plain) for plain in axis.get_major_formatter().format_ticks(values)]
+            every = 1 if upward else self._apart(labels, frame.width * (values[-1] - values[0]) / (high - low))
+            for value, label in list(zip(values, labels, strict=True))[::every]:
                 place = axes.transData.transform((limits[0], value) if upward else (value, axes.get_ylim()[0]))
                 if upward:
                     x, y = frame.x0, float(place[1])
@@ -149,6 +152,13 @@ class Drawing:
                     marks += [(x, y), (x, y - _TICK), (math.nan, math.nan)]
                     self.write(x, y - _TICK - 0.72 * SMALL - 3.5, label, size=SMALL, ha="center")
         self._line(marks, color=GREY, linewidth=0.6)
+
+    def _apart(self, labels: Sequence[str], length: float) -> int:
+        """Every how many of evenly spaced labels along a length [pt] stand clear of each other."""
+        if len(labels) < 2:
+            return 1
+        widest = max(self.text_size(label, SMALL)[0] for label in labels)
+        return math.ceil((widest + _CLEAR) * (len(labels) - 1) / length)
 
     def write(self, x: float, y: float, text: str, **more: Any) -> None:
         """A line of text at display coordinates [pt]."""

@@ -7,8 +7,9 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from reportgen.report.figures.canvas import GREY, INK, PAPER, SMALL, TEAL, WIDTH, Drawing, finite
-from reportgen.report.figures.placement import Box, Label, Placed, Placement
+from reportgen.report.figures.canvas import GREY, INK, SMALL, TEAL, WIDTH, Drawing, finite
+from reportgen.report.figures.pen import Line, Pen, spread, write_label
+from reportgen.report.figures.placement import Box, Label, Placement
 from reportgen.report.presenter import Presenter
 
 if TYPE_CHECKING:
@@ -19,15 +20,12 @@ __all__ = ["draw"]
 _HEIGHT = 232.0
 _HEIGHT_ABOVE_DETAIL = 160.0
 _MARGINS = (46.0, 38.0, 10.0, 18.0)  # left, bottom, right, top
-_POINT_RADIUS = 2.6
 _BOLD_FACTOR = 1.08  # a bold numeral is wider than the regular one that is measured
 _APART = 1.1
 _PRESSURE_DIGITS = 4
 _LEGIBLE = 6.0  # points between a labelled isobar and any other line
 #: Part of both axes below which the processes get a panel of their own.
 _CROWDED = 0.4
-
-Line = list[tuple[float, float]]
 
 
 def draw(figure: dict[str, Any], presenter: Presenter, fonts: Path) -> Drawing | None:
@@ -70,6 +68,8 @@ class _Curves:
             for entry in _apart(figure.get("isobars", []))
         ]
         self.paths = [(entry["equipment"], line(entry)) for entry in figure.get("paths", [])]
+        #: For each path whether it only joins two states.
+        self.broken = [bool(entry.get("mixing")) for entry in figure.get("paths", [])]
         known = [
             entry
             for entry in figure.get("points", [])
@@ -173,13 +173,14 @@ def _panel(
     left, bottom, right, top = margins
     frame = Box(left + 2, bottom + 2, drawing.width - right, drawing.height - top)
     placement = Placement(frame)
-    pen = _Pen(axes, placement)
+    pen = Pen(axes, placement)
     for _, line in curves.isobars:
         pen.line(line, color=GREY, linewidth=0.6, linestyle=(0, (4, 3)), zorder=1)
     if curves.dome:
         pen.line(curves.dome, color=INK, linewidth=0.9, zorder=2)
-    for _, line in curves.paths:
-        pen.line(line, color=TEAL, linewidth=2.0, solid_capstyle="round", zorder=3)
+    for (_, line), broken in zip(curves.paths, curves.broken, strict=True):
+        style = {"linestyle": (0, (3.0, 1.6)), "linewidth": 1.4} if broken else {"linewidth": 2.0}
+        pen.line(line, color=TEAL, solid_capstyle="round", zorder=3, **style)
     for _, point in curves.points:
         pen.point(point)
     if detail is not None:
@@ -195,78 +196,37 @@ def _panel(
     _axis_names(drawing, axes, margins, presenter)
 
 
-class _Pen:
-    """Draws in data coordinates and tells the placement, in display coordinates, what is in the way."""
-
-    def __init__(self, axes: Axes, placement: Placement) -> None:
-        self.axes = axes
-        self.placement = placement
-
-    def display(self, points: Line) -> Line:
-        """Data coordinates to points on the figure."""
-        array = self.axes.transData.transform(np.asarray(points, dtype=float))
-        return [(float(x), float(y)) for x, y in array]
-
-    def line(self, points: Line, **style: Any) -> None:
-        """A polyline."""
-        if len(points) < 2:
-            return
-        entropies, temperatures = zip(*points, strict=True)
-        self.axes.plot(entropies, temperatures, **style)
-        self.placement.add_line(self.display(points))
-
-    def point(self, point: tuple[float, float]) -> None:
-        """A state point: a small ring."""
-        self.axes.plot(
-            [point[0]],
-            [point[1]],
-            marker="o",
-            markersize=2 * _POINT_RADIUS,
-            markerfacecolor=PAPER,
-            markeredgecolor=INK,
-            markeredgewidth=1.0,
-            zorder=4,
-        )
-        x, y = self.display([point])[0]
-        reach = _POINT_RADIUS + 0.6
-        self.placement.add_box(Box(x - reach, y - reach, x + reach, y + reach))
-
-    def visible(self, points: Line) -> Line:
-        """The points of a line that lie within the axes, in display coordinates."""
-        return [(x, y) for x, y in self.display(points) if Box(x, y, x, y).inside(self.placement.frame)]
-
-
-def _labels(drawing: Drawing, curves: _Curves, pen: _Pen, detail: Box | None) -> None:
+def _labels(drawing: Drawing, curves: _Curves, pen: Pen, detail: Box | None) -> None:
     """States first, then paths, isobars, the dome: the more a label matters, the better its place."""
     if detail is None:
         for name, point in curves.points:
             width, height = drawing.text_size(name)
             label = Label(name, width * _BOLD_FACTOR, height, pen.display([point]))
-            _set(drawing, pen.placement.place(label), weight="bold")
+            write_label(drawing, pen.placement.place(label), weight="bold")
         for name, line in curves.paths:
-            anchors = _spread(pen.visible(line), (0.5, 0.35, 0.65, 0.2, 0.8))
+            anchors = spread(pen.visible(line), (0.5, 0.35, 0.65, 0.2, 0.8))
             if anchors:
                 width, height = drawing.text_size(name)
-                _set(drawing, pen.placement.place(Label(name, width, height, anchors, 0.0)), color=TEAL)
+                write_label(drawing, pen.placement.place(Label(name, width, height, anchors, 0.0)), color=TEAL)
     for text, line in curves.isobars if detail is None else ():
         others = [other for _, other in curves.isobars if other is not line]
         apart = _away(pen.visible(line), [pen.display(other) for other in [*others, curves.dome] if other])
-        anchors = _spread(apart, (1.0, 0.97, 0.9, 0.8, 0.6, 0.4))
+        anchors = spread(apart, (1.0, 0.97, 0.9, 0.8, 0.6, 0.4))
         if anchors:
             width, height = drawing.text_size(text, SMALL)
             placed = pen.placement.place(Label(text, width, height, anchors, 180.0))
-            _set(drawing, placed, color=GREY, size=SMALL)
+            write_label(drawing, placed, color=GREY, size=SMALL)
     if curves.dome:
-        anchors = _spread(pen.visible(curves.dome), (0.18, 0.25, 0.12, 0.8, 0.9))
+        anchors = spread(pen.visible(curves.dome), (0.18, 0.25, 0.12, 0.8, 0.9))
         if anchors:
             width, height = drawing.text_size("saturation", SMALL)
             placed = pen.placement.place(Label("saturation", width, height, anchors, 0.0))
-            _set(drawing, placed, color=GREY, size=SMALL)
+            write_label(drawing, placed, color=GREY, size=SMALL)
     if detail is not None:
         foot = pen.display([(x, detail.bottom) for x in ((detail.left + detail.right) / 2, detail.right, detail.left)])
         width, height = drawing.text_size("enlarged below", SMALL)
         placed = pen.placement.place(Label("enlarged below", width, height, foot, 270.0))
-        _set(drawing, placed, color=GREY, size=SMALL)
+        write_label(drawing, placed, color=GREY, size=SMALL)
 
 
 def _away(points: Line, others: list[Line]) -> Line:
@@ -276,29 +236,6 @@ def _away(points: Line, others: list[Line]) -> Line:
     crowd = np.concatenate([np.asarray(line, dtype=float) for line in others])
     distances = np.sqrt(((np.asarray(points)[:, None, :] - crowd[None, :, :]) ** 2).sum(axis=2)).min(axis=1)
     return [point for point, distance in zip(points, distances, strict=True) if distance > _LEGIBLE]
-
-
-def _spread(points: Line, parts: tuple[float, ...]) -> Line:
-    """Points at parts of a line's length in points."""
-    return [points[min(int(part * len(points)), len(points) - 1)] for part in parts] if points else []
-
-
-def _set(drawing: Drawing, placed: Placed | None, **style: Any) -> None:
-    """Write a label where it was placed, with its leader if it stands apart."""
-    if placed is None:
-        return
-    box = placed.box
-    if placed.leader is not None:
-        end = (min(max(placed.leader[0], box.left), box.right), min(max(placed.leader[1], box.bottom), box.top))
-        drawing.leader(placed.leader, end)
-    drawing.write(
-        (box.left + box.right) / 2,
-        box.bottom + 0.22 * (box.top - box.bottom),
-        placed.label.text,
-        ha="center",
-        va="baseline",
-        **style,
-    )
 
 
 def _axis_names(drawing: Drawing, axes: Axes, margins: tuple[float, float, float, float], presenter: Presenter) -> None:

@@ -17,6 +17,7 @@ from reportgen.balances.processes.equations import (
     WORK,
     as_many,
     energy_balance,
+    is_compressible,
     kept_mass,
     kept_volume,
     no_work,
@@ -57,7 +58,9 @@ def relations(piece: Piece) -> list[Relation]:
             + (", with W = p ΔV of what expands" if "specific_enthalpy" in form.values() else ""),
         )
     )
-    expanding = [body for body, what in zip(bodies, kept, strict=True) if what == "pressure"]
+    expanding = [
+        body for body, what in zip(bodies, kept, strict=True) if what == "pressure" and is_compressible(piece, body[0])
+    ]
     work = work_at_pressure(piece, "pressure", expanding) if expanding else no_work(piece, "all volumes stay the same")
     return [*found, work]
 
