@@ -80,8 +80,11 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             for curve in curves
             if curve.fluid == identifier
         ]
+        if len(points) < 2 and not paths and (plant.kinds or plant.processes):
+            continue  # one state alone, on no way: nothing to see
         dome = saturation_dome(fluid)
         parts = [_ONE_LINE if fluid.kind == "incompressible" else _LINES]
+        parts += ["Broken lines only join states: what lies between is not known."] if _any_broken(paths) else []
         parts += ["The dome is the saturation line, closed at the critical point."] if dome else []
         parts += [_zero(fluid.entropy_zero)]
         figures.append(
@@ -98,6 +101,10 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             }
         )
     return figures
+
+
+def _any_broken(paths: Iterable[Mapping[str, Any]]) -> bool:
+    return any(path["mixing"] and len(path["entropy"]) > 1 for path in paths)
 
 
 def _zero(text: str) -> str:

@@ -78,7 +78,11 @@ def _model_assumption(
         )
     else:
         condition = f"With the equation of state of the real fluid{remark}"
-        test = _model_test(trial, identifier, counterpart, condition)
+        mixed = _mixed_by(trial.plant, identifier) if specification.model == "ideal-gas" else None
+        if mixed is not None:
+            test = untested(f"Not tested{remark}: process {mixed} mixes it with other gases, as ideal gases alone are.")
+        else:
+            test = _model_test(trial, identifier, counterpart, condition)
     return AutomaticAssumption(
         f"fluids.{identifier}.{specification.model}",
         f"Fluid {name} {_claim(specification)}.",
@@ -87,6 +91,14 @@ def _model_assumption(
         test,
         against_better=True,
     )
+
+
+def _mixed_by(plant: EvaluatedPlant, identifier: str) -> str | None:
+    """The process that mixes a gas with others, or makes it by mixing; None when there is none."""
+    for tag, process in plant.processes.items():
+        if process.mixes and any(plant.state_fluids[state] == identifier for state in process.states):
+            return tag
+    return None
 
 
 def _claim(specification: FluidSpec) -> str:
