@@ -97,7 +97,7 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
     for name, value in given.items():
         array = _numbers(name, value)
         if name == "specific_volume":
-            with np.errstate(divide="ignore"):
+            with np.errstate(divide="ignore", over="ignore"):
                 array = 1.0 / array
             name = "density"
         values[name] = array

@@ -140,6 +140,10 @@ def _reason(fluid: RealFluid, fault: Fault, temperature: float, density: float) 
         return True, "thin gas"
     if "lie on one of the lines" in fault.message:
         return fluid.pseudo_pure, "on a line, by pressure and temperature"
+    critical = fluid.limits.critical_point
+    assert critical is not None
+    if "between the bubble and the dew line" in fault.message and abs(temperature / critical.temperature - 1) < 1e-6:
+        return fluid.pseudo_pure, "where bubble and dew line of a pseudo-pure fluid meet, within rounding"
     edge = fluid.limits.maximum_pressure
     if (
         "above the maximum" in fault.message

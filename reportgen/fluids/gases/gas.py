@@ -30,6 +30,9 @@ MOLAR_GAS_CONSTANT = 8.31446261815324  # J/(mol*K), exact by the definition of t
 #: Where a constant heat capacity meets the temperature-dependent one.
 REFERENCE_TEMPERATURE = 298.15  # K
 
+#: Least pressure [Pa] and density [kg/m3] taken: below, volumes overflow.
+_LEAST = 1e-290
+
 Array = NDArray[np.float64]
 
 _PAIRS = (
@@ -223,7 +226,7 @@ class IdealGas:
             if name in known:
                 array = known[name]
                 elements.reject(
-                    ~((array > 0.0) & np.isfinite(array)) & ~unknown,
+                    ~((array >= _LEAST) & np.isfinite(array)) & ~unknown,
                     lambda i, name=name, array=array: _fault(name, array[i], self.title, "a finite number above 0"),  # type: ignore[misc]
                 )
         return known
@@ -294,7 +297,7 @@ class IdealGas:
 
     def _check_pressure(self, pressure: Array, empty: NDArray[np.bool_], elements: Elements) -> None:
         elements.reject(
-            ~((pressure > 0.0) & np.isfinite(pressure)) & ~empty,
+            ~((pressure >= _LEAST) & np.isfinite(pressure)) & ~empty,
             lambda i: _fault("pressure", pressure[i], self.title, "a finite number above 0"),
         )
 

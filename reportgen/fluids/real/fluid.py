@@ -91,9 +91,7 @@ class RealFluid:
             self._triple_pressure,
             self._guard.melting_line,
         )
-        self._searches = Searches(
-            equation, self._curves, self._solver, self._flash, self._guard, self.limits, self._triple_pressure
-        )
+        self._searches = Searches(equation, self._curves, self._solver, self._guard, self.limits, self._triple_pressure)
         self._few = FewStates(
             equation, self._curves, self._solver, self.limits, self._triple_pressure, self._guard.melting_line
         )

@@ -20,7 +20,6 @@ from numpy.typing import NDArray
 
 from reportgen.fluids.real.caloric import rounding
 from reportgen.fluids.real.candidates import BESIDE_LINE, Candidates
-from reportgen.fluids.real.flash import PressureFlash
 from reportgen.fluids.real.helmholtz import CHUNK, Helmholtz
 from reportgen.fluids.real.lines import SaturationLines
 from reportgen.fluids.real.roots import bracketed_root
@@ -32,14 +31,13 @@ FloatArray = NDArray[Any]
 IntArray = NDArray[np.intp]
 BoolArray = NDArray[np.bool_]
 
-#: Steps along the isentrope from its crossing to the enthalpy sought.
-_STEPS = 6
+#: Steps along the isentrope from its anchor to the enthalpy sought, and on a second try.
+_STEPS, _SHORTER_STEPS = 6, 100
 _NEWTON_ITERATIONS = 25
 #: Relative step after which Newton's method has converged: it doubles the digits with each step.
 _SETTLED = 1e-7
 #: Longest step in ln T and in ln ρ.
 _LONGEST = 0.5
-_PRESSURE_ITERATIONS = 60
 #: Distance in h that is put down to rounding on a saturation line, in parts of |h| + R T_top.
 _ON_LINE = 1e-15
 
@@ -61,10 +59,9 @@ class IsentropeSearch:
 
     Parameters
     ----------
-    equation, curves, lines, flash : the equation, its saturation curves, what is known along them, and its search at
-        given pressure, for states that are not reached otherwise.
+    equation, curves, lines : the equation, its saturation curves, what is known along them.
     lowest, highest : temperatures [K] between which states are sought.
-    lowest_pressure, highest_pressure : the same for pressures [Pa].
+    lowest_pressure : pressure from which on states are sought [Pa].
     maximum_density : upper end of all searches [kg/m3].
     """
 
@@ -73,16 +70,14 @@ class IsentropeSearch:
         equation: Helmholtz,
         curves: SaturationCurves,
         lines: SaturationLines,
-        flash: PressureFlash,
         lowest: float,
         highest: float,
         lowest_pressure: float,
-        highest_pressure: float,
         maximum_density: float,
     ) -> None:
-        self._equation, self._curves, self._lines, self._flash = equation, curves, lines, flash
+        self._equation, self._curves, self._lines = equation, curves, lines
         self._lowest, self._highest = lowest, highest
-        self._lowest_pressure, self._highest_pressure = lowest_pressure, highest_pressure
+        self._lowest_pressure = lowest_pressure
         self._maximum_density = maximum_density
 
     def solve(self, enthalpy: FloatArray, entropy: FloatArray) -> Candidates:
@@ -204,13 +199,14 @@ class IsentropeSearch:
         anchor_density: FloatArray,
     ) -> None:
         """Add the states outside the dome, from anchors T [K], ρ [kg/m3] on the isentropes (NaN if there are none)."""
-        t, rho = self._start(enthalpy, entropy, anchor_temperature, anchor_density)
+        anchor_temperature, anchor_density = self._anchors(entropy, anchor_temperature, anchor_density)
+        t, rho = self._start(enthalpy, entropy, anchor_temperature, anchor_density, _STEPS)
         t, rho, good = self._newton(enthalpy, entropy, t, rho)
-        missing = np.flatnonzero(~good)
-        if missing.size:
-            t[missing], rho[missing] = self._by_pressure(enthalpy[missing], entropy[missing])
-            again = self._newton(enthalpy[missing], entropy[missing], t[missing], rho[missing])
-            t[missing], rho[missing], good[missing] = again
+        left = np.flatnonzero(~good & ~np.isnan(anchor_temperature))
+        if left.size:
+            h, s = enthalpy[left], entropy[left]
+            start = self._start(h, s, anchor_temperature[left], anchor_density[left], _SHORTER_STEPS)
+            t[left], rho[left], good[left] = self._newton(h, s, *start)
         at = np.flatnonzero(good)
         t, rho = t[at], rho[at]
         pressure = self._equation.properties(t, rho).pressure
@@ -229,10 +225,41 @@ class IsentropeSearch:
         found = self._equation.properties(t, rho)
         return t, found.enthalpy, found.entropy + self._equation.gas_constant * np.log(rho)
 
-    def _start(
-        self, enthalpy: FloatArray, entropy: FloatArray, temperature: FloatArray, density: FloatArray
+    def _anchors(
+        self, entropy: FloatArray, temperature: FloatArray, density: FloatArray
     ) -> tuple[FloatArray, FloatArray]:
-        """Where to start Newton's method: T [K], ρ [kg/m3]."""
+        """Anchors T [K], ρ [kg/m3] with those of isentropes that cross no line put in: on the isotherm of the highest
+        temperature of saturation, or of the lowest temperature for the densest liquids. Those of a gas thinner than is
+        looked for there stay NaN.
+        """
+        temperature, density = temperature.copy(), density.copy()
+        lines = self._lines
+        free = np.isnan(temperature)
+        cold = free & (entropy < lines.liquid_entropy.at_lowest)
+        for where, t in ((cold, self._lowest), (free & ~cold, self._curves.top_temperature)):
+            at = np.flatnonzero(where)
+            if not at.size:
+                continue
+            edge = self._curves.at_temperature(np.array([t])).liquid_density[0]
+            thin = self._lowest_pressure / (self._equation.gas_constant * t)
+            low, high = (edge, self._maximum_density) if t == self._lowest else (thin, edge)
+
+            def gap(log_density: FloatArray, columns: IntArray, at: IntArray = at, t: float = t) -> FloatArray:
+                found = self._equation.properties(np.full(log_density.size, t), np.exp(log_density))
+                value: FloatArray = found.entropy - entropy[at[columns]]
+                return value
+
+            ends = [np.full(at.size, np.log(end)) for end in (low, high)]
+            root = bracketed_root(gap, *ends, *(gap(end, np.arange(at.size)) for end in ends))
+            temperature[at], density[at] = np.where(np.isnan(root), np.nan, t), np.exp(root)
+        return temperature, density
+
+    def _start(
+        self, enthalpy: FloatArray, entropy: FloatArray, temperature: FloatArray, density: FloatArray, steps: int
+    ) -> tuple[FloatArray, FloatArray]:
+        """Where to start Newton's method, T [K], ρ [kg/m3]: some steps along the isentrope from its anchor, or a thin
+        gas.
+        """
         t, rho = temperature.copy(), density.copy()
         free = np.flatnonzero(np.isnan(t))
         if free.size:
@@ -243,8 +270,8 @@ class IsentropeSearch:
         anchored = np.flatnonzero(~np.isnan(temperature))
         if anchored.size:
             now, dense = np.log(t[anchored]), np.log(rho[anchored])
-            step = (enthalpy[anchored] - self._equation.properties(t[anchored], rho[anchored]).enthalpy) / _STEPS
-            for _ in range(_STEPS):
+            step = (enthalpy[anchored] - self._equation.properties(t[anchored], rho[anchored]).enthalpy) / steps
+            for _ in range(steps):
                 first = self._direction(now, dense)
                 middle = self._direction(now + 0.5 * step * first[0], dense + 0.5 * step * first[1])
                 now = now + np.clip(step * middle[0], -_LONGEST, _LONGEST)
@@ -306,24 +333,3 @@ class IsentropeSearch:
                 rho <= saturated.vapour_density * (1 + 1e-9)
             )
         return result
-
-    def _by_pressure(self, enthalpy: FloatArray, entropy: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """T [K] and ρ [kg/m3] by bisection in ln p of the states at p and s."""
-        low = np.full(enthalpy.size, np.log(self._lowest_pressure))
-        high = np.full(enthalpy.size, np.log(self._highest_pressure))
-        t, rho = np.full_like(low, np.nan), np.full_like(low, np.nan)
-        for _ in range(_PRESSURE_ITERATIONS):
-            middle = 0.5 * (low + high)
-            found = self._flash.solve(np.exp(middle), entropy, entropy=True)
-            value = self._equation.properties(found.temperature, found.density).enthalpy
-            good = found.found & np.isnan(found.quality)
-            t, rho = np.where(good, found.temperature, t), np.where(good, found.density, rho)
-            mixed = np.flatnonzero(~np.isnan(found.quality))
-            liquid = self._equation.properties(found.temperature[mixed], found.liquid_density[mixed])
-            value[mixed] = liquid.enthalpy + found.temperature[mixed] * (entropy[mixed] - liquid.entropy)
-            # along an isentrope T and h rise with p: too cold is too low
-            rise = np.where(found.found, value < enthalpy, found.cold)
-            low, high = np.where(rise, middle, low), np.where(rise, high, middle)
-            if ((high - low) <= 1e-12 * np.abs(high)).all():
-                break
-        return t, rho

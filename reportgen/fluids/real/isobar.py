@@ -196,7 +196,8 @@ class IsobarSearch:
         little = rounding(name, self._equation, high, target)
         roots = all_roots(function, np.vstack([low, high]), little)
         result.seen(where, roots.least + target, roots.greatest + target)
-        left_over = np.abs(function(roots.x, roots.column))
-        good = left_over <= _LEFT_OVER * natural_unit(name, self._equation, roots.x)
-        column, t = roots.column[good], roots.x[good]
-        result.add(where[column], t, p[column], density(t, column))
+        column, t = roots.column, roots.x
+        rho = density(t, column)
+        value = caloric_value(name, self._equation.properties(t, rho), rho)
+        good = np.abs(value - target[column]) <= _LEFT_OVER * natural_unit(name, self._equation, t)
+        result.add(where[column[good]], t[good], p[column[good]], rho[good])

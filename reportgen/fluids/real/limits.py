@@ -54,10 +54,17 @@ def limits_of(data: Mapping[str, Any]) -> Limits:
             "Pseudo-pure: bubble and dew lines differ, and there is no state between them. The critical point given is "
             "the point of the highest temperature of the two-phase region."
         )
+    highest, highest_pressure = float(limits["maximum_temperature"]), float(limits["maximum_pressure"])
+    for name, recorded in (("temperature", highest), ("pressure", highest_pressure)):
+        if recorded < critical[name]:
+            remarks.append(
+                f"The highest {name} recorded, {in_words(name, recorded)}, lies under the critical {name}; that one "
+                "bounds the range."
+            )
     return Limits(
         minimum_temperature=float(limits["minimum_temperature"]),
-        maximum_temperature=float(limits["maximum_temperature"]),
-        maximum_pressure=float(limits["maximum_pressure"]),
+        maximum_temperature=max(highest, float(critical["temperature"])),
+        maximum_pressure=max(highest_pressure, float(critical["pressure"])),
         triple_point=Point(lowest["temperature"], lowest["pressure"]) if lowest["is"] == TRIPLE_POINT else None,
         critical_point=Point(critical["temperature"], critical["pressure"], critical["density"]),
         published_maximum_temperature=float(published) if extrapolated else None,

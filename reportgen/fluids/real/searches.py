@@ -13,7 +13,7 @@ from reportgen.fluids.pairs import Elements
 from reportgen.fluids.real.candidates import Candidates, Chosen
 from reportgen.fluids.real.ceiling import Ceiling
 from reportgen.fluids.real.density import DensitySolver
-from reportgen.fluids.real.flash import Caloric, PressureFlash
+from reportgen.fluids.real.flash import Caloric
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.isentrope import IsentropeSearch
 from reportgen.fluids.real.isobar import IsobarSearch
@@ -63,7 +63,7 @@ class Searches:
 
     Parameters
     ----------
-    equation, curves, solver, flash : the equation, its saturation curves, its searches for density and from pressure.
+    equation, curves, solver : the equation, its saturation curves, its search for density.
     guard, limits : its limits, and the words for what lies beyond.
     triple_pressure : lowest pressure with a liquid [Pa].
     """
@@ -73,7 +73,6 @@ class Searches:
         equation: Helmholtz,
         curves: SaturationCurves,
         solver: DensitySolver,
-        flash: PressureFlash,
         guard: Guard,
         limits: Limits,
         triple_pressure: float,
@@ -86,9 +85,7 @@ class Searches:
         self._isotherm = IsothermSearch(equation, curves, ceiling, LOWEST_PRESSURE)
         self._isochore = IsochoreSearch(equation, curves, lines, ceiling, low, high)
         self._isobar = IsobarSearch(equation, curves, lines, solver, low, high, triple_pressure, guard.melting_line)
-        self._isentrope = IsentropeSearch(
-            equation, curves, lines, flash, low, high, LOWEST_PRESSURE, most, solver.maximum_density
-        )
+        self._isentrope = IsentropeSearch(equation, curves, lines, low, high, LOWEST_PRESSURE, solver.maximum_density)
 
     def find(
         self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray, elements: Elements
@@ -126,7 +123,7 @@ class Searches:
     def every(
         self, names: tuple[str, str], first_value: FloatArray, second_value: FloatArray, elements: Elements
     ) -> Chosen:
-        """All states within the limits that have the two properties, in the order of the elements and of rising
+        """All states within the limits that have the two properties [SI], in the order of the elements and of rising
         density. Parameters as in :meth:`find`; ``elements`` takes a fault where there is none.
         """
         return self._all(names, first_value, second_value, elements)[0]

@@ -113,40 +113,6 @@ def test_superheat_and_subcooling_lead_back(name: str) -> None:
     assert hot.quality[0] == 1.0
 
 
-@pytest.mark.parametrize("name", NAMES)
-def test_round_trip_of_pairs_that_need_a_search(name: str) -> None:
-    """Pressure with density, temperature with entropy, temperature with enthalpy: the state is found, or several are
-    seen.
-
-    Measured: pressure with density and temperature with entropy have several states in at most 1.2 % of the range
-    (water below 4 degC); temperature with enthalpy in 20 to 95 %, since enthalpy has a minimum along most isotherms.
-    Enthalpy of a dilute gas hardly depends on pressure, so pressure comes back only as far as the digits of enthalpy
-    carry it.
-    """
-    fluid, base = states(name, count=600)
-    r = fluid.gas_constant
-    for first, second, most in (
-        ("pressure", "density", 0.02),
-        ("temperature", "specific_entropy", 0.01),
-        ("temperature", "specific_enthalpy", 1.0),
-    ):
-        again = fluid.at(errors="mask", **{first: getattr(base, first), second: getattr(base, second)})
-        assert len(again.faults) <= most * base.density.size
-        for fault in again.faults.values():
-            assert "states at" in fault.message or "was found at" in fault.message
-        good = np.isfinite(again.density)
-        if first == "pressure":
-            near = np.abs(base.temperature / fluid.limits.critical_point.temperature - 1) < 1e-3
-            off = np.abs(again.temperature / base.temperature - 1)
-            assert np.max(off[good]) < 1e-9
-            assert np.max(np.abs(again.specific_entropy - base.specific_entropy)[good & ~near]) < 1e-9 * r
-        else:
-            scale = r * base.temperature
-            assert np.max((np.abs(again.specific_enthalpy - base.specific_enthalpy) / scale)[good]) < 1e-9
-            bar = 1e-9 if second == "specific_entropy" else 1e-5
-            assert np.max(np.abs(again.specific_entropy - base.specific_entropy)[good]) < bar * r
-
-
 def test_several_states_are_told_apart_not_picked() -> None:
     """Water at 1 atm has its largest density at 4 degC: two temperatures share each density around it."""
     cold = WATER.at(pressure=101325.0, temperature=275.0)
