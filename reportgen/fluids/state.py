@@ -128,12 +128,12 @@ class SingleState(State):
     Parameters
     ----------
     values : fields known already.
-    fill : as for State, with plain numbers.
+    fill : as for State, with plain numbers; its result is not used elsewhere.
     """
 
     __slots__ = ()
 
-    def __init__(self, values: dict[str, Any], fill: Callable[[str], Mapping[str, Any]]) -> None:
+    def __init__(self, values: dict[str, Any], fill: Callable[[str], dict[str, Any]]) -> None:
         _set_values(self, values)
         _set_fill(self, fill)
         _set_shape(self, ())
@@ -143,8 +143,9 @@ class SingleState(State):
         values: dict[str, Any] = self._values  # type: ignore[attr-defined]
         found = values.get(name)
         if found is None:
-            for key, value in self._fill(name).items():  # type: ignore[attr-defined]
-                values.setdefault(key, value)
+            filled: dict[str, Any] = self._fill(name)  # type: ignore[attr-defined]
+            filled.update(values)  # what was given stays as it was given
+            values.update(filled)
             found = values[name]
         return np.str_(found) if name == "phase" else np.float64(found)
 

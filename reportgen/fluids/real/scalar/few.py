@@ -127,7 +127,7 @@ class FewStates:
         pairs = self._pairs
         values, phases = this
 
-        def fill(name: str) -> Mapping[str, Any]:
+        def fill(name: str) -> dict[str, Any]:
             if name in _FIRST_ORDER and both[0][0]["temperature"] == both[1][0]["temperature"]:
                 pairs.fill_both(*both)
                 return {}

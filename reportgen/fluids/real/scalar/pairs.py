@@ -6,7 +6,7 @@ asks for more care than is taken here: such states are the business of the vecto
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable
 from math import exp, inf, nan, sqrt
 from typing import Any
 
@@ -325,7 +325,7 @@ class ScalarPairs:
 
     # -- fields read later ---------------------------------------------------------------------------------------------
 
-    def fill(self, name: str, values: dict[str, Any], phases: tuple[float, float] | None) -> Mapping[str, float]:
+    def fill(self, name: str, values: dict[str, Any], phases: tuple[float, float] | None) -> dict[str, float]:
         """The field ``name`` of a solved state, and those that come with it; meanings as in ../solution.py."""
         t, p, rho, x = values["temperature"], values["pressure"], values["density"], values["quality"]
         if name in CALORIC:
