@@ -62,9 +62,9 @@ def judge(
     )
     if outside:
         return True, "outside the limits"
-    triple = limits.triple_point
-    if "below that of the triple point" in message and triple is not None and p < triple.pressure * (1 + 1e-6):
-        return True, "below the triple point"
+    if "below that of the triple point" in message or "below that of the lower end" in message:
+        lowest = float(fluid.saturation(temperature=limits.minimum_temperature)[0].pressure)
+        return p < lowest * (1 + 1e-6), "below the triple point, or the lower end of the range"
     if "above the critical" in message and t > criticals.temperature[0] * (1 - 1e-6):
         return True, "above the critical point of the equation"
     return False, re.sub(r"[-+]?\d[\d.]*(e[-+]?\d+)?", "#", message.replace(fluid.title, "FLUID"))[:110]
