@@ -94,6 +94,7 @@ class _Run:
     def __init__(self, solution: Solution, network: Network, columns: int) -> None:
         self.solution = solution
         self.values = solution.values
+        self.given = frozenset(solution.values)
         self.plant = solution.plant
         self.columns = columns
         self.network = network
@@ -127,7 +128,8 @@ class _Run:
         if len(owners) == 1 and (state := next(iter(owners))):
             known = [name for name in PROPERTIES if f"states.{state}.{name}" in self.values]
             pair = known_pair(self.plant.fluids[self.plant.states[state]], known)
-            if pair and ("pressure" in pair or not self._is_ambiguous(state, pair)):
+            # What the author gives is answered with the states that share it; what was worked out has neighbours.
+            if pair and ("pressure" in pair or self._is_given(state, pair) or not self._is_ambiguous(state, pair)):
                 self._state(state, pair)
                 return
         relation, unknown = block.relations[0], block.unknowns[0]
@@ -137,6 +139,10 @@ class _Run:
         if len(block.relations) == 1 and self._direct(relation, unknown, needed):
             return
         self._together(block)
+
+    def _is_given(self, state: str, pair: tuple[str, str]) -> bool:
+        """Whether both properties of a pair stand in the file."""
+        return all(f"states.{state}.{name}" in self.given for name in pair)
 
     def _is_ambiguous(self, state: str, pair: tuple[str, str]) -> bool:
         """Whether a known pair gives no one state in the base case: then the nearest in the plant is looked for."""
