@@ -35,6 +35,8 @@ DIMENSIONS: dict[str, str] = {
     "velocity": "m/s",
     "length": "m",
     "area": "m2",
+    "time": "s",
+    "heat_transfer_coefficient": "W/(m2*K)",
     "efficiency": "1",
     "ratio": "1",
 }
@@ -258,7 +260,7 @@ AMOUNTS: dict[str, Name] = {
     )
 }
 #: Owners of amounts, by the first part of a path.
-_OF_AMOUNTS = ("processes", "closed")
+_OF_AMOUNTS = ("processes", "vessels", "closed")
 
 
 def name_of(path: str, amounts: bool = False) -> Name | None:

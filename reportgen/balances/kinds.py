@@ -1,8 +1,8 @@
 """What a kind of equipment, or of process in a closed system, declares; and the registries of all kinds.
 
-A kind is one module of :mod:`reportgen.balances.equipment`, or of :mod:`reportgen.balances.processes.kinds`, that binds
-one :class:`Kind` to the name ``KIND``. Nothing else names it: :func:`kinds` and :func:`process_kinds` find the modules
-by looking into the package. This module and the declarations need neither numpy nor a fluid, so that the schema of the
+A kind is one module of :mod:`reportgen.balances.equipment`, of :mod:`reportgen.balances.processes.kinds` or of
+:mod:`reportgen.balances.vessels.kinds`, that binds one :class:`Kind` to the name ``KIND``. Nothing else names it:
+:func:`kinds`, :func:`process_kinds` and :func:`vessel_kinds` find the modules by looking into the package. This module and the declarations need neither numpy nor a fluid, so that the schema of the
 calculation file stays cheap to make.
 """
 
@@ -22,7 +22,7 @@ if TYPE_CHECKING:
     from reportgen.balances.relations import Default, Exchange, Formula, HeatPort, Relation, Stretch
     from reportgen.errors import Fault
 
-__all__ = ["Choice", "Group", "Kind", "Parameter", "Port", "kinds", "process_kinds"]
+__all__ = ["Choice", "Group", "Kind", "Parameter", "Port", "kinds", "process_kinds", "vessel_kinds"]
 
 
 @dataclass(frozen=True)
@@ -56,11 +56,17 @@ class Parameter:
 
 @dataclass(frozen=True)
 class Group:
-    """A list of tables of parameters, such as ``heat_ports``; paths are ``equipment.<tag>.<group>.<n>.<parameter>``."""
+    """A list of tables of parameters, such as ``heat_ports``; paths are ``equipment.<tag>.<group>.<n>.<parameter>``.
+
+    ``single``: one table in place of a list, such as the wall of a vessel; paths have no number then. What is
+    ``needed`` there must be given with it.
+    """
 
     name: str
     parameters: tuple[Parameter, ...]
     text: str = ""
+    single: bool = False
+    needed: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -133,7 +139,7 @@ class Kind:
     lifts: int = 0
     exergetic_efficiency: str = ""
     entropy_generation_number: str = ""
-    family: Literal["equipment", "processes"] = "equipment"
+    family: Literal["equipment", "processes", "vessels"] = "equipment"
     path_taken: str = ""
     checks: Callable[[Piece], Sequence[Fault]] = lambda piece: ()
     mixes: Callable[[Piece], bool] = lambda piece: False
@@ -164,3 +170,8 @@ def kinds() -> dict[str, Kind]:
 def process_kinds() -> dict[str, Kind]:
     """Every kind of process in a closed system by its name in the calculation file, in alphabetical order."""
     return {kind.name: kind for kind in _discover("reportgen.balances.processes.kinds")}
+
+
+def vessel_kinds() -> dict[str, Kind]:
+    """What may happen to a vessel by its name in the calculation file, in alphabetical order."""
+    return {kind.name: kind for kind in _discover("reportgen.balances.vessels.kinds")}

@@ -90,6 +90,8 @@ _SI = {
     "velocity": _unit("m/s", r"m\,s^{-1}", "meter/second"),
     "length": _unit("m", "m", "meter"),
     "area": _unit("m²", "m^{2}", "meter**2"),
+    "time": _unit("s", "s", "second"),
+    "heat_transfer_coefficient": _unit("W/(m²·K)", r"W\,m^{-2}\,K^{-1}", "watt/meter**2/kelvin"),
     "efficiency": _PERCENT,
     "ratio": _ONE,
 }
@@ -118,6 +120,10 @@ _US = {
     "velocity": _unit("ft/s", r"ft\,s^{-1}", "foot/second"),
     "length": _unit("ft", "ft", "foot"),
     "area": _unit("ft²", "ft^{2}", "foot**2"),
+    "time": _unit("s", "s", "second"),
+    "heat_transfer_coefficient": _DisplayUnit(
+        "Btu/(h·ft²·°R)", r"\mathrm{Btu\,h^{-1}\,ft^{-2}}\,\text{°R}^{-1}", "Btu_it/hour/foot**2/degR"
+    ),
     "efficiency": _PERCENT,
     "ratio": _ONE,
 }

@@ -83,6 +83,8 @@ _SI_EXPRESSIONS = {
     "m/s": "meter/second",
     "m": "meter",
     "m2": "meter**2",
+    "s": "second",
+    "W/(m2*K)": "watt/meter**2/kelvin",
     "1": "",
 }
 
@@ -215,6 +217,15 @@ _UNITS: dict[str, list[Unit]] = {
     "velocity": _plain(_over(_LENGTH, _TIME)),
     "length": _plain(_LENGTH),
     "area": _plain({f"{name}2": f"({expression})**2" for name, expression in _LENGTH.items()}),
+    "time": _plain(_TIME),
+    "heat_transfer_coefficient": _plain(
+        _over_product({"W": "watt", "kW": "kilowatt"}, {"m2": "meter**2"}, _PER_DEGREE)
+        | {
+            f"Btu/({time}*ft2*{degree})": f"Btu_it/({_TIME[time]}*foot**2*degR)"
+            for time in ("h", "hr")
+            for degree in ("degF", "degR", "R")
+        }
+    ),
     "efficiency": _plain({"%": "0.01", "": "1"}),
     "ratio": _plain({"": "1", "%": "0.01"}),
 }
@@ -244,6 +255,8 @@ _USUAL: dict[str, tuple[str, ...]] = {
     "velocity": ("m/s", "km/h", "ft/s"),
     "length": ("m", "mm", "cm", "ft", "in"),
     "area": ("m2", "mm2", "cm2", "ft2", "in2"),
+    "time": ("s", "min", "h"),
+    "heat_transfer_coefficient": ("W/(m2*K)", "kW/(m2*K)", "Btu/(h*ft2*degF)"),
     "efficiency": ("%",),
     "ratio": ("%",),
 }
