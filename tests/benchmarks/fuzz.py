@@ -125,7 +125,7 @@ def models(names: tuple[str, ...] | None = None) -> list[Any]:
         fluids.incompressible("oil", density=880.0, specific_heat=1900.0, limits=(260.0, 570.0)),
         fluids.incompressible("brick", density=1800.0, specific_heat=840.0, phase="solid", limits=(200.0, 1300.0)),
     ]
-    cubic = [fluids.cubic("propane"), fluids.cubic({"CO2": 0.3, "N2": 0.7})] if hasattr(fluids, "cubic") else []
+    cubic = [fluids.cubic("propane"), fluids.cubic({"CO2": 0.3, "N2": 0.7})]
     return [*real, *gases * 3, *liquids * 3, *cubic]
 
 

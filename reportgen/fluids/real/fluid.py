@@ -31,6 +31,8 @@ FloatArray = NDArray[np.float64]
 
 #: Pressures closer than this to saturation (relative) do not decide between liquid and vapour.
 _SATURATION_BAND = 1e-9
+#: Densities closer than this to a line of a pseudo-pure fluid (relative) are on it.
+_ON_LINE = 1e-12
 
 
 class RealFluid:
@@ -360,9 +362,16 @@ class RealFluid:
             saturated = self._curves.at_temperature(t[below])
             liquid, vapour = saturated.liquid_density, saturated.vapour_density
             x = (1 / rho[below] - 1 / liquid) / (1 / vapour - 1 / liquid)
+            if self.pseudo_pure:
+                # there is no state beside a line on its inner side, so a density that rounding put there is on it
+                x = np.where(np.abs(rho[below] / liquid - 1) <= _ON_LINE, 0.0, x)
+                x = np.where(np.abs(rho[below] / vapour - 1) <= _ON_LINE, 1.0, x)
             mixed = (x >= 0) & (x <= 1)
             rho_l[below], rho_v[below] = liquid, vapour
             quality[below] = np.where(mixed, x, np.nan)
+            # a liquid's pressure is the rounding of its density at least: it is not under saturation
+            liquid_pressure = np.maximum(pressure[below], saturated.bubble_pressure)
+            pressure[below] = np.where(rho[below] > liquid, liquid_pressure, pressure[below])
             pressure[below] = np.where(mixed, saturated.bubble_pressure, pressure[below])
             if self.pseudo_pure:
                 inside = np.zeros(t.size, dtype=np.bool_)
