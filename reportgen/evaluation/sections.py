@@ -57,11 +57,13 @@ def inputs_section(calculation: Calculation, solution: Solution) -> dict[str, An
 
 
 def _taken_by_default(calculation: Calculation, solution: Solution) -> dict[str, Any]:
-    """Values that rest on an assumption of the program alone, such as no heat; their line is that of their owner."""
+    """Values that rest on an assumption of the program alone, such as no heat, or on the kind of process, such as no
+    work in a rigid vessel; their line is that of their owner.
+    """
     texts = {f"assumptions.{item.id}": item.text for item in solution.assumptions}
     section = {}
     for step in solution.steps:
-        if len(step.solves) != 1 or not step.uses or any(use not in texts for use in step.uses):
+        if len(step.solves) != 1 or any(use not in texts for use in step.uses):
             continue
         path = step.solves[0]
         name = name_of(path)
@@ -72,7 +74,7 @@ def _taken_by_default(calculation: Calculation, solution: Solution) -> dict[str,
             value=float(solution.values[path][0]),
             dimension=dimension,
             unit=DIMENSIONS[dimension],
-            source=" ".join(texts[use] for use in step.uses),
+            source=" ".join(texts[use] for use in step.uses) or step.sentence,
             supplied_by="taken by the program",
             status="by default",
         )

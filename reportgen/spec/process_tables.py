@@ -41,13 +41,13 @@ def check_processes(source: Source) -> None:
         if kind is not None:
             _check_bodies(source, tag)
             _check_choices(source, tag)
+    for state, several in {**ends, **starts}.items():
+        _check_flow(source, state, several[0])
     train_of = {tag: train for train in source.table("trains") for _, tag in source.texts("trains", train, "processes")}
     for state, several in starts.items():
         _refuse_rivals(source, state, several, "begins", train_of)
-        _check_flow(source, state, several[0])
     for state, several in ends.items():
         _refuse_rivals(source, state, several, "ends", train_of)
-        _check_flow(source, state, several[0])
         begun = {use.tag for use in starts.get(state, ())}
         for use in several:
             if use.tag in begun:
@@ -107,9 +107,9 @@ def _check_bodies(source: Source, tag: str) -> None:
     if lists and len(listed) == 2 and len(before) != len(after):
         source.report(
             ("processes", tag, "to"),
-            f"{len(before)} states before, {len(after)} after: each body has one of both.",
-            found=f"{len(after)} states",
-            expected=f"{len(before)} states, in the order of from",
+            "Each body has one state before and one after.",
+            found=f"{len(before)} before, {len(after)} after",
+            expected="as many as in from, in the same order",
         )
         return
     if len(before) != len(after):
@@ -135,8 +135,8 @@ def _check_choices(source: Source, tag: str) -> None:
             source.report(
                 ("processes", tag, choice.name),
                 "The list does not have one word for each body.",
-                found=f"{len(node.items)} words",
-                expected=f"{bodies} words, or one for all",
+                found=f"{len(node.items)} of {bodies}",
+                expected="as many words as there are bodies, or one for all",
             )
 
 

@@ -15,10 +15,10 @@ import pytest
 from calculations import COMPRESSOR, HEAD, PROJECTS, RECYCLE, VALVE, evaluated, project
 
 from reportgen.errors import InputError, SolutionError
-from reportgen.names import DIMENSIONS, NAMES
+from reportgen.names import DIMENSIONS, name_of
 from reportgen.record import Record
 
-RECORDS = ["letdown-station", "instrument-air"]
+RECORDS = ["letdown-station", "instrument-air", "nitrogen-blanketing"]
 
 
 # What every record must hold
@@ -41,12 +41,16 @@ def test_every_value_comes_from_inputs_and_fluids(name: str) -> None:
 
 @pytest.mark.parametrize("name", RECORDS)
 def test_every_value_has_its_entry_in_the_glossary_and_the_unit_of_its_dimension(name: str) -> None:
-    for path, entry in project(name).values.items():
+    record = project(name)
+    for path, entry in record.values.items():
         last = path.rsplit(".", 1)[-1]
         if last == "phase":
-            assert entry["value"] in {"liquid", "vapour", "two-phase", "supercritical", "gas"}
+            assert entry["value"] in {"liquid", "vapour", "two-phase", "supercritical", "gas", "solid"}
             continue
-        assert entry["dimension"] == NAMES[last].dimension, path
+        closed = path.startswith(("processes.", "closed.")) or (
+            path.startswith("total.") and not record.data["plant"]["equipment"]
+        )
+        assert entry["dimension"] == name_of(path, amounts=closed).dimension, path
         assert entry["unit"] == DIMENSIONS[entry["dimension"]], path
         assert (entry["value"] is None) == ("reason" in entry), path
         assert entry["standard_uncertainty"] is None or entry["standard_uncertainty"] > 0.0, path

@@ -45,6 +45,7 @@ REFUSED = (
     "no-surroundings",
     "nothing-in-it",
     "pathological-numbers",
+    "process-faults",
     "ports-of-the-wrong-form",
     "quantity-tables",
     "second-source-faults",

@@ -60,7 +60,7 @@ def test_impossible_paths_are_told_with_the_other_faults_of_the_file(tmp_path: P
     assert found[2].path == "states.1.pressure"
 
 
-@pytest.mark.parametrize("name", ["letdown-station", "instrument-air"])
+@pytest.mark.parametrize("name", ["letdown-station", "instrument-air", "nitrogen-blanketing"])
 def test_every_value_and_input_of_an_evaluated_plant_may_be_quoted(name: str, tmp_path: Path) -> None:
     folder = Path(__file__).parents[2] / "projects" / name
     record = evaluation.evaluate(spec.read(folder)).data

@@ -1,7 +1,8 @@
 r"""Change against a constant external pressure: W = p_ext (V_b − V_a), however fast it runs.
 
 When nothing else determines it, the pressure in the end equals the external one, this is that of the surroundings, and
-no heat is exchanged.
+no heat is exchanged. An end volume that is given is that of a stop: the pressure against it may then be any other, and
+the missing heat is taken as none first.
 """
 
 from __future__ import annotations
@@ -23,6 +24,9 @@ from reportgen.balances.processes.equations import (
 from reportgen.balances.relations import Balance, Default, Relation, Term
 
 
+_VOLUMES = ("volume", "specific_volume", "density")
+
+
 def relations(piece: Piece) -> list[Relation]:
     """Mass, work, energy."""
     before, after = one_state(piece)
@@ -36,6 +40,7 @@ def relations(piece: Piece) -> list[Relation]:
 def defaults(piece: Piece) -> list[Default]:
     """Mechanical equilibrium in the end, the atmosphere outside, no heat."""
     outside, end = piece.path("external_pressure"), f"states.{piece.one('to')}.pressure"
+    stopped = any(f"states.{piece.one('to')}.{name}" in piece.given for name in _VOLUMES)
     balance = f"{piece.title} ends with the external pressure inside."
     atmosphere = f"{piece.title} runs against the pressure of the surroundings."
 
@@ -50,7 +55,7 @@ def defaults(piece: Piece) -> list[Default]:
             balance,
             (end,),
             equal(end, outside, "mechanical_equilibrium", "Mechanical equilibrium", balance),
-            rank=1,
+            rank=4 if stopped else 1,
         ),
         Default(
             piece.path("atmosphere"),
