@@ -281,8 +281,9 @@ def imbalance(state: Any, temperature: float, pressure: float, liquid: float, va
 
 def library_saturation_is_worse(fluid: RealFluid, state: Any, temperature: float) -> bool:
     """Whether the library's saturated densities and pressure at T [K] are further from equilibrium than ours, both by
-    the library's equation.
+    the library's equation; where its range begins below ours, at the lowest temperature of ours.
     """
+    temperature = max(temperature, fluid.limits.minimum_temperature)
     try:
         state.update(library.QT_INPUTS, 0.5, temperature)
         densities = (
