@@ -35,6 +35,8 @@ INNER = (0.002, 0.001, 0.0007)
 CLOSE = 1e-12
 #: Degree of the polynomial through the critical point.
 ORDER = 8
+#: 1 − T/T_c from which on that polynomial is fitted where it would swing.
+BENT = 1.2e-7
 #: Largest tail taken where intervals are no longer halved.
 LOOSE = 1e-7
 #: Largest tail next to the top of a pseudo-pure fluid, where published pressures go with small powers of 1 - T/T_top.
@@ -195,7 +197,7 @@ def pure_curves(equation: Helmholtz, critical: Critical, triple: float, liquid: 
     tried: list[tuple[float, list[Piece]]] = []
     for end in INNER:
         try:
-            pieces = [_join(solve, critical, Extended(end)), *fit(solve, Extended(end), outer, scale, NOISE)]
+            pieces = [*_join(solve, critical, Extended(end)), *fit(solve, Extended(end), outer, scale, NOISE)]
         except ArithmeticError:
             continue  # so close to critical that noise is above what an expansion is let have
         tried.append((_gibbs_gap(equation, critical, pieces), pieces))
@@ -204,16 +206,47 @@ def pure_curves(equation: Helmholtz, critical: Critical, triple: float, liquid: 
     return min(tried, key=lambda pair: pair[0])[1]
 
 
-def _join(solve: Callable[[Array], Array], critical: Critical, end: Any) -> Piece:
-    """The innermost interval: least squares from 1e-7 T_c below critical on, through the critical point."""
+def _join(solve: Callable[[Array], Array], critical: Critical, end: Any) -> list[Piece]:
+    """The innermost interval: least squares from 1e-7 T_c below critical on, through the critical point.
+
+    Where the slope ∂p/∂ρ has a second minimum beside the critical one (chlorine), the liquid line bends within that
+    distance and such a polynomial swings: then it is fitted from a little further away, and a parabola joins it.
+    """
     ends = np.array([np.log(critical.pressure), critical.density, np.log(critical.density)])
     at = np.linspace(np.sqrt(1e-7), float(end), 60).astype(Extended)
-    powers = np.array([(at / end) ** k for k in range(1, ORDER + 1)], dtype=float).T
     rises = np.asarray(solve(at) - ends[:, None], dtype=float).T
-    found = np.linalg.lstsq(powers, rises, rcond=None)[0].astype(Extended)
     span = nodes(Extended(0), end)
+    powers = np.array([(at / end) ** k for k in range(1, ORDER + 1)], dtype=float).T
+    found = np.linalg.lstsq(powers, rises, rcond=None)[0].astype(Extended)
     values = ends[:, None] + sum(found[k - 1][:, None] * (span / end) ** k for k in range(1, ORDER + 1))
-    return Piece(Extended(0), end, chebyshev(values))
+    piece = Piece(Extended(0), end, chebyshev(values))
+    if _falls_apart([piece], end):
+        return [piece]
+    outer = at[at > np.sqrt(BENT)]
+    start = outer[0]
+    fitted = np.polynomial.chebyshev.chebfit(
+        (2 * outer - start - end).astype(float) / float(end - start), rises[at > np.sqrt(BENT)], ORDER
+    )
+    coefficients = np.zeros((3, DEGREE + 1), dtype=Extended)
+    coefficients[:, : ORDER + 1] = fitted.T
+    coefficients[:, 0] += ends
+    beyond = Piece(start, end, coefficients)
+    step = (end - start) * Extended(1e-4)
+    two = np.array([start, start + step])
+    height, next_height = np.array([evaluate_pieces([beyond], k, two) - ends[k] for k in range(3)]).T
+    slope = (next_height - height) / step
+    curved = (slope * start - height) / start**2
+    straight = 2 * height / start - slope
+    inside = nodes(Extended(0), start)
+    parabola = ends[:, None] + straight[:, None] * inside + curved[:, None] * inside**2
+    return [Piece(Extended(0), start, chebyshev(parabola)), beyond]
+
+
+def _falls_apart(pieces: list[Piece], end: Any) -> bool:
+    """Whether pressure and vapour density fall, and liquid density rises, all the way from the critical point."""
+    x = np.linspace(0.0, 1.0, 400).astype(Extended) * end
+    log_pressure, liquid, log_vapour = (np.diff(evaluate_pieces(pieces, k, x)) for k in range(3))
+    return bool((liquid > 0).all() and (log_vapour < 0).all() and (log_pressure < 0).all())
 
 
 def _gibbs_gap(equation: Helmholtz, critical: Critical, pieces: list[Piece]) -> float:
