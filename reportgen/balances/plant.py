@@ -68,6 +68,7 @@ class Plant:
     equipment: Mapping[str, EquipmentDefinition] = field(default_factory=dict)
     trains: Mapping[str, Train] = field(default_factory=dict)
     processes: Mapping[str, EquipmentDefinition] = field(default_factory=dict)
+    vessels: Mapping[str, EquipmentDefinition] = field(default_factory=dict)
 
 
 class Piece:

@@ -152,7 +152,8 @@ class Solution:
     ``total``). ``warnings``: faults that do not stop the evaluation, each with its path: what has no value and why.
     ``closed``: owners of sums over processes. ``mixtures``: fluids whose composition follows from masses.
     ``doubts``: values that could come out where they cannot be meant. ``lacking``: path of a value that is NaN in the
-    base case to the paths it would have been made from. ``cycles``: by owner, where there is one.
+    base case to the paths it would have been made from. ``cycles``: by owner, where there is one. ``vessel_paths``: tag
+    of a vessel to its ``vessels.accounting.VesselPath``.
     """
 
     plant: Plant
@@ -170,6 +171,8 @@ class Solution:
     mixtures: Any = None
     closed: set[str] = field(default_factory=set)
     cycles: dict[str, Cycle] = field(default_factory=dict)
+    vessels: Mapping[str, Piece] = field(default_factory=dict)
+    vessel_paths: dict[str, Any] = field(default_factory=dict)
 
     def curves(self, points: int = 41) -> list[Curve]:
         """The way of every stream through its piece of equipment, and of every process, base case."""

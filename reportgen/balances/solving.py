@@ -22,6 +22,7 @@ from reportgen.balances.relations import Balance, Equation, Formula, token
 from reportgen.balances.solution import Assumption, Solution, Step
 from reportgen.balances.starts import Starts
 from reportgen.balances.structure import build_network
+from reportgen.balances.vessels import PREFIX
 from reportgen.errors import Fault, SolutionError
 from reportgen.names import NAMES
 
@@ -73,7 +74,8 @@ def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
     values: dict[str, NDArray[Any]] = {
         path: np.array(np.broadcast_to(np.asarray(value, dtype=float), (columns,))) for path, value in givens.items()
     }
-    given = frozenset(values)
+    every_given = frozenset(values)
+    given = frozenset(path for path in every_given if not path.startswith(PREFIX))
     pieces, processes = pieces_of(plant, given), processes_of(plant, given)
     refuse_half_elevations(pieces, values)
     mixtures = Mixtures(plant, processes)
@@ -84,6 +86,12 @@ def solve(plant: Plant, givens: Mapping[str, ArrayLike]) -> Solution:
     mixtures.refuse_other_compositions(values)
     add_results(solution, network)
     add_process_results(solution)
+    if plant.vessels:
+        from reportgen.balances.vessels.accounting import add_vessel_results
+        from reportgen.balances.vessels.definitions import vessels_of
+
+        solution.vessels = vessels_of(plant, every_given)
+        add_vessel_results(solution)
     solution.doubts.extend(doubts(solution))
     return solution
 

@@ -155,7 +155,7 @@ class Limits:
 
 @dataclass(frozen=True)
 class EquipmentSpec:
-    """One piece of equipment, or one process: the states at its ports that are used.
+    """One piece of equipment, one process or one vessel: the states at its ports that are used.
 
     ``options`` holds the number of entries of each group of the kind, such as ``{"heat_ports": 2}``, and the words
     chosen where the kind offers any.
@@ -286,6 +286,7 @@ class Calculation:
     uncertainty: Uncertainty
     cautions: Mapping[str, CautionAdjustment]
     processes: Mapping[str, EquipmentSpec]
+    vessels: Mapping[str, EquipmentSpec]
     files: Mapping[str, bytes]
     find_place: Callable[[str], tuple[str, int, int]] = field(repr=False, compare=False)
 

@@ -20,6 +20,7 @@ from reportgen.spec.schema import MOST_CORRELATIONS, NARRATIVES
 from reportgen.spec.second_sources import check_second_sources
 from reportgen.spec.source import Location, Source, path_of
 from reportgen.spec.states import check_states, givens_of
+from reportgen.spec.vessel_tables import check_vessels
 
 __all__ = ["check", "criterion_limit"]
 
@@ -28,7 +29,7 @@ _TO_BE_VERIFIED = "to be verified"
 
 def check(source: Source, context: Mapping[str, float]) -> None:
     """Note every fault of meaning in ``source``."""
-    if not any(source.table(section) for section in ("states", "equipment", "processes")):
+    if not any(source.table(section) for section in ("states", "equipment", "processes", "vessels")):
         source.miss((), "The file holds nothing to evaluate.", expected="[states.<name>] and [equipment.<tag>]")
     _check_title_block(source)
     _check_confirmed(source)
@@ -37,6 +38,7 @@ def check(source: Source, context: Mapping[str, float]) -> None:
     check_second_sources(source)
     check_network(source)
     check_processes(source)
+    check_vessels(source)
     _check_limits(source, context)
     _check_criteria(source, context)
     _check_correlations(source)
@@ -110,7 +112,7 @@ def _check_confirmed(source: Source) -> None:
 
 def _check_limits(source: Source, context: Mapping[str, float]) -> None:
     marker = QuantityOf(("temperature",))
-    for section, tag in [(name, tag) for name in ("equipment", "processes") for tag in source.table(name)]:
+    for section, tag in [(name, tag) for name in ("equipment", "processes", "vessels") for tag in source.table(name)]:
         location = (section, tag, "limits")
         limits = source.node(location)
         if limits is None or not isinstance(limits.value, dict):

@@ -62,6 +62,9 @@ _EXAMPLES = {
     "velocity": "12 m/s",
     "length": "3.5 m",
     "area": "12 cm2",
+    "mass": "900 kg",
+    "volume": "2.4 m3",
+    "heat_transfer_coefficient": "30 W/(m2*K)",
     "efficiency": "78 %",
     "ratio": "0.95",
 }
@@ -97,6 +100,9 @@ _BOUNDS: dict[str, Bounds] = {
     "pressure_ratio": Bounds(1.0, remark="The ratio is that of the higher to the lower pressure."),
     "area": Bounds(0.0),
     "diameter": Bounds(0.0),
+    "discharge_coefficient": Bounds(0.0, remark="It is a share, as of 0.6 for a sharp edge."),
+    "heat_transfer": Bounds(0.0),
+    "specific_heat": Bounds(0.0),
 }
 
 

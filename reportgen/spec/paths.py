@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 
-from reportgen.balances.kinds import Kind, kinds, process_kinds
+from reportgen.balances.kinds import Kind, kinds, process_kinds, vessel_kinds
 from reportgen.names import NAMES, name_of
 from reportgen.spec.schema import AMOUNTS, INTENSIVE, MOST_ENTRIES, STATE_KEYS
 from reportgen.spec.source import Source
@@ -73,11 +73,13 @@ _PROCESS_RESULTS = (
 )
 #: Of a sum over processes.
 _CLOSED_RESULTS = (*_PROCESS_RESULTS, "closure")
+#: Of a sum over vessels.
+_OF_VESSELS = ("heat", "entropy_change", "entropy_with_heat", "entropy_generation", "lost_work")
 #: What a process reports for each species of a mixture.
 _OF_SPECIES = "mole_fraction"
 _SURROUNDINGS = ("temperature", "pressure")
 #: Tables whose entries have a kind, with the registry of their kinds.
-_REGISTRIES = {"equipment": kinds, "processes": process_kinds}
+_REGISTRIES = {"equipment": kinds, "processes": process_kinds, "vessels": vessel_kinds}
 
 
 def kind_of(source: Source, tag: str, section: str = "equipment") -> Kind | None:
@@ -105,6 +107,8 @@ def input_locations(source: Source) -> Iterator[tuple[str | int, ...]]:
                 if key in parameters:
                     yield (section, tag, key)
                 elif key in groups:
+                    for inner in value.table:
+                        yield (section, tag, key, inner)
                     for index, item in enumerate(value.items):
                         for inner in item.table:
                             yield (section, tag, key, index, inner)
@@ -126,8 +130,8 @@ def result_dimensions(source: Source, path: str) -> tuple[str, ...] | str:
         rest = parts[1:]
     else:
         return (
-            "A path is states.<id>.<name>, equipment.<tag>.<name>, processes.<tag>.<name>, trains.<id>.<name> or "
-            "total.<name>."
+            "A path is states.<id>.<name>, equipment.<tag>.<name>, processes.<tag>.<name>, vessels.<tag>.<name>, "
+            "trains.<id>.<name> or total.<name>."
         )
     name = ".".join(rest)
     if name in names:
@@ -146,6 +150,8 @@ def _names_of_whole(source: Source, whole: str) -> dict[str, tuple[str]]:
     if whole == "surroundings":
         return {name: (NAMES[name].dimension,) for name in _SURROUNDINGS}
     flows, processes = bool(source.table("equipment")), bool(source.table("processes"))
+    if whole == "total" and not flows and not processes and len(source.table("vessels")) > 1:
+        return _amounts(_OF_VESSELS)
     if whole == "total" and (flows or not processes):
         return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}
     return _amounts(_CLOSED_RESULTS) if processes and (whole == "total") is not flows else {}
@@ -178,8 +184,12 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
         if source.node(("trains", owner, "processes")) is not None:
             return _amounts(_CLOSED_RESULTS)
         return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}
-    closed = section == "processes"
-    names = _amounts(_PROCESS_RESULTS) if closed else {name: (NAMES[name].dimension,) for name in _EQUIPMENT_RESULTS}
+    closed = section != "equipment"
+    names: dict[str, tuple[str]] = {}  # of vessels, the kind declares all
+    if section == "processes":
+        names = _amounts(_PROCESS_RESULTS)
+    elif section == "equipment":
+        names = {name: (NAMES[name].dimension,) for name in _EQUIPMENT_RESULTS}
     kind = kind_of(source, owner, section)
     if kind is not None:
         names |= {parameter.name: (parameter.dimension,) for parameter in kind.parameters}
@@ -188,6 +198,8 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
         names |= _shares(source, owner) if _OF_SPECIES in kind.reports else {}
         for group in kind.groups:
             node = source.node((section, owner, group.name))
+            if group.single and node is not None:
+                names |= {f"{group.name}.{entry.name}": (entry.dimension,) for entry in group.parameters}
             for number in range(1, 1 + min(MOST_ENTRIES, len(node.items if node is not None else []))):
                 names |= {f"{group.name}.{number}.{entry.name}": (entry.dimension,) for entry in group.parameters}
     return names

@@ -11,7 +11,7 @@ from reportgen.spec.schema import AMOUNTS, FLOWS
 from reportgen.spec.source import Location, Source
 from reportgen.spec.states import fluid_of, givens_of
 
-__all__ = ["check_processes"]
+__all__ = ["check_processes", "unknown_state"]
 
 
 @dataclass(frozen=True)
@@ -34,7 +34,7 @@ def check_processes(source: Source) -> None:
             _check_count(source, tag, port.name, port.many)
             for location, state in found:
                 if state not in source.table("states"):
-                    _unknown_state(source, location, state)
+                    unknown_state(source, location, state)
                     continue
                 uses = starts if port.direction == "in" else ends
                 uses.setdefault(state, []).append(_Use(tag, location))
@@ -60,16 +60,16 @@ def check_processes(source: Source) -> None:
 
 
 def _check_tags(source: Source) -> None:
-    """Tags that a person reads as the same are the same, also as that of a piece of equipment."""
+    """Tags of processes and vessels that a person reads as the same, also as that of a piece, are the same."""
+    words = {"equipment": "a piece of equipment", "processes": "a process", "vessels": "a vessel"}
     seen: dict[str, tuple[str, str]] = {tag.casefold(): ("equipment", tag) for tag in source.table("equipment")}
-    for tag in source.table("processes"):
-        section, other = seen.setdefault(tag.casefold(), ("processes", tag))
-        if (section, other) != ("processes", tag):
+    for own, tag in ((own, tag) for own in ("processes", "vessels") for tag in source.table(own)):
+        section, other = seen.setdefault(tag.casefold(), (own, tag))
+        if (section, other) != (own, tag):
             line, _ = source.place((section, other), "key")
-            whose = "a piece of equipment" if section == "equipment" else "a process"
             source.report(
-                ("processes", tag),
-                f"The tag is already that of {whose}, at line {line}, or differs from it in capitals only.",
+                (own, tag),
+                f"The tag is already that of {words[section]}, at line {line}, or differs from it in capitals only.",
                 at="key",
                 found=tag,
                 expected="a tag of its own",
@@ -88,7 +88,8 @@ def _check_count(source: Source, tag: str, port: str, many: bool) -> None:
         )
 
 
-def _unknown_state(source: Source, location: Location, state: str) -> None:
+def unknown_state(source: Source, location: Location, state: str) -> None:
+    """Report a state that the file does not define, unless its table may be one that was unreadable."""
     if source.names_are_complete and not source.is_broken(("states", state)):
         source.report(
             location,

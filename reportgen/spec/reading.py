@@ -101,6 +101,7 @@ class _Builder:
             states={name: self.state(name, table, fluids) for name, table in self.document.states.items()},
             equipment={tag: self.piece("equipment", tag, table) for tag, table in self.document.equipment.items()},
             processes={tag: self.piece("processes", tag, table) for tag, table in self.document.processes.items()},
+            vessels={tag: self.piece("vessels", tag, table) for tag, table in self.document.vessels.items()},
             trains={
                 name: TrainSpec(
                     name,
@@ -188,7 +189,7 @@ class _Builder:
             kind=table.kind,
             title=table.title,
             ports=ports,
-            options={group.name: len(getattr(table, group.name)) for group in kind.groups}
+            options={group.name: len(getattr(table, group.name)) for group in kind.groups if not group.single}
             | {
                 choice.name: tuple(word) if isinstance(word, list) else word
                 for choice in kind.choices

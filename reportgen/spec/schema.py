@@ -7,11 +7,11 @@ What one value alone can show is checked here; what needs two places of the file
 from __future__ import annotations
 
 from functools import cache
-from typing import Annotated, Any, Literal, Union
+from typing import Annotated, Any, Literal, Union, get_args
 
 from pydantic import BaseModel, ConfigDict, Discriminator, Field, Tag, create_model
 
-from reportgen.balances.kinds import Choice, Kind, Parameter, kinds, process_kinds
+from reportgen.balances.kinds import Choice, Group, Kind, Parameter, kinds, process_kinds, vessel_kinds
 from reportgen.names import NAMES
 from reportgen.quantities import Quantity
 from reportgen.spec.fields import (
@@ -68,7 +68,6 @@ MOST_CORRELATIONS = 500
 #: What belongs to the calculation file but is not carried by this version, by table ("" for the whole file) and key.
 LATER: dict[str, dict[str, str]] = {
     "": {
-        "vessels": "Vessels are",
         "cases": "Cases are",
         "sweeps": "Sweeps are",
         "readings": "Readings of a test log are",
@@ -260,6 +259,8 @@ def document() -> type[BaseModel]:
     equipment: Any = Annotated[Union[pieces], Field(discriminator="kind")]  # noqa: UP007 - made at run time
     changes = tuple(_of_kind(kind, "process") for kind in process_kinds().values())
     process: Any = Annotated[Union[changes], Field(discriminator="kind")]  # noqa: UP007 - made at run time
+    held = tuple(_of_kind(kind, "vessel") for kind in vessel_kinds().values())
+    vessel: Any = Annotated[Union[held], Field(discriminator="kind")]  # noqa: UP007 - made at run time
     fields: dict[str, Any] = {
         "calculation": (CalculationTable, Field(description="Title block.")),
         "surroundings": (SurroundingsTable, Field(description="Dead state and atmosphere.")),
@@ -267,6 +268,7 @@ def document() -> type[BaseModel]:
         "states": (dict[Identifier, state], Field({}, description="States by name or number.")),
         "equipment": (dict[Identifier, equipment], Field({}, description="Pieces of equipment by tag.")),
         "processes": (dict[Identifier, process], Field({}, description="Processes of closed systems by tag.")),
+        "vessels": (dict[Identifier, vessel], Field({}, description="Vessels that are charged or discharged, by tag.")),
         "trains": (dict[Identifier, TrainTable], Field({}, description="Groups of equipment or processes by name.")),
         "assumptions": (dict[Identifier, AssumptionTable], Field({}, description="Assumptions by name.")),
         "criteria": (dict[Identifier, CriterionTable], Field({}, description="Criteria by name.")),
@@ -295,6 +297,7 @@ def _parameters(parameters: tuple[Parameter, ...]) -> dict[str, Any]:
 _LIMITS_OF = {
     "piece": "Design limits of the piece.",
     "process": "Design limits of the vessel in which the process runs.",
+    "vessel": "Design limits of the vessel.",
 }
 
 
@@ -311,6 +314,19 @@ def _choice(choice: Choice) -> tuple[Any, Any]:
     several = Annotated[list[word], Tag("(several)"), Field(min_length=1, max_length=MOST_ENTRIES)]
     either = Annotated[Annotated[word, Tag("(word)")] | several, Discriminator(_form_of_choice)]
     return (either | None, Field(None, description=text))
+
+
+def _group(name: str, group: Group) -> tuple[Any, Any]:
+    """Optional list of tables, or one table."""
+    inner = _parameters(group.parameters)
+    for key in group.needed:
+        annotation, field = inner[key]
+        inner[key] = (get_args(annotation)[0], Field(description=field.description))
+    entry: Any = create_model(name, __base__=Table, __doc__=group.text, **inner)
+    text = group.text or group.name
+    if group.single:
+        return (entry | None, Field(None, description=text))
+    return (list[entry], Field([], max_length=MOST_ENTRIES, description=text))
 
 
 def _of_kind(kind: Kind, noun: str) -> type[Table]:
@@ -336,8 +352,5 @@ def _of_kind(kind: Kind, noun: str) -> type[Table]:
     fields |= _parameters(kind.parameters)
     fields |= {choice.name: _choice(choice) for choice in kind.choices}
     for group in kind.groups:
-        entry = create_model(
-            f"{camel}_{group.name}", __base__=Table, __doc__=group.text, **_parameters(group.parameters)
-        )
-        fields[group.name] = (list[entry], Field([], max_length=MOST_ENTRIES, description=group.text or group.name))
+        fields[group.name] = _group(f"{camel}_{group.name}", group)
     return create_model(f"{camel}Table", __base__=Table, __doc__=kind.text or kind.title, **fields)

@@ -7,3 +7,8 @@ network depends on it. ``kinds`` declares what a calculation file may say; ``def
 the sample axis; ``following`` integrates all columns together with ``march``, through the two-phase region; ``orifice``
 gives the flow that lets time pass; ``paths`` integrates what follows from the path; ``accounting`` enters results.
 """
+
+__all__ = ["PREFIX"]
+
+#: Beginning of the paths of vessels: what is given there is no quantity of the network.
+PREFIX = "vessels."

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from typing import Any
+from collections.abc import Callable, Iterator, Sequence
+from typing import Any, NamedTuple
 
 from reportgen.balances.kinds import Choice, Group, Kind, Parameter, Port
 from reportgen.balances.plant import Piece
 
-__all__ = ["ORIFICE", "OUTLET", "RESULTS", "VOLUME", "WALL", "final_pressure", "vessel_kind"]
+__all__ = ["ORIFICE", "OUTLET", "RESULTS", "VOLUME", "WALL", "Omission", "final_pressure", "omissions", "vessel_kind"]
 
 VOLUME = Parameter("volume", "volume", "Inner volume.")
 WALL = Group(
@@ -121,3 +121,31 @@ def vessel_kind(
         reports=(*RESULTS, *reports),
         family="vessels",
     )
+
+
+class Omission(NamedTuple):
+    """What is missing: its name, why, what would do, and the given quantity that asks for it (empty: the kind does)."""
+
+    name: str
+    text: str
+    expected: str
+    cause: str = ""
+
+
+def omissions(kind: str, has: Callable[[str], bool]) -> Iterator[Omission]:
+    """What a vessel lacks; ``has`` tells whether a name such as ``wall.area`` is given for it."""
+    if not has("volume"):
+        yield Omission("volume", '"volume" is missing.', "the inner volume of the vessel")
+    discharge = kind == "discharge"
+    if discharge and not has("back_pressure") and not has("final_pressure"):
+        yield Omission("final_pressure", "Nothing says where the discharge ends.", "final_pressure, back_pressure, or both")
+    if discharge and has("orifice") and not has("back_pressure"):
+        text = "The flow through the orifice needs the pressure behind it."
+        yield Omission("back_pressure", text, "back_pressure beside it", "orifice")
+    if has("wall.heat_transfer") and not has("orifice"):
+        text = "Heat passes from the wall at a finite rate, but nothing says how much time there is."
+        expected = "an orifice, or no heat_transfer: then the metal has the temperature of the content"
+        yield Omission("orifice", text, expected, "wall.heat_transfer")
+    if has("wall.heat_transfer") and not has("wall.area"):
+        text = "The heat transfer coefficient needs the area that it holds for."
+        yield Omission("wall.area", text, "area beside it", "wall.heat_transfer")

@@ -55,7 +55,10 @@ class Body:
 
 @dataclass(frozen=True)
 class Wall:
-    """Metal of the vessel: heat capacity [J/K], conductance αA [W/K] (None: at the temperature of the content), start [K]."""
+    """Metal of the vessel: heat capacity [J/K], temperature in the beginning [K], (N,).
+
+    ``conductance`` αA [W/K] is None for metal at the temperature of the content.
+    """
 
     capacity: Array
     conductance: Array | None
@@ -111,10 +114,14 @@ MASS, ENERGY, SUPPLY_ENERGY, WALL_TEMPERATURE = range(4)
 
 @dataclass
 class Following:
-    """The problem that is marched, and the path when it is done. Arrays end with the columns."""
+    """The problem that is marched, and the path when it is done. Arrays end with the columns.
+
+    ``refined`` is a factor of the longest steps, below 1 for shorter ones.
+    """
 
     vessel: Vessel
     count: int
+    refined: float = 1.0
     steps: Steps = field(init=False)
 
     def __post_init__(self) -> None:
@@ -278,7 +285,7 @@ class Following:
             change = np.where(np.isfinite(bound) & (bound > 0.0), np.minimum(change, bound), change)
         self.last[0][columns], self.last[1][columns] = mass, pressure
         with np.errstate(all="ignore"):
-            return np.asarray(change / np.abs(slope[MASS]))
+            return np.asarray(self.refined * change / np.abs(slope[MASS]))
 
     def opposite(self, columns: Indices) -> Array:
         """Pressure on the other side of the orifice [Pa]."""
@@ -319,8 +326,8 @@ def _of(values: Array, columns: Indices) -> Array:
     return np.asarray(values)[columns]
 
 
-def follow(vessel: Vessel, count: int, tolerance: float = TOLERANCE) -> Following:
-    """Follow a vessel for ``count`` columns; ``tolerance`` as for ``march``."""
-    following = Following(vessel, count)
+def follow(vessel: Vessel, count: int, tolerance: float = TOLERANCE, refined: float = 1.0) -> Following:
+    """Follow a vessel for ``count`` columns; ``tolerance`` as for ``march``, ``refined`` shortens the longest steps."""
+    following = Following(vessel, count, refined)
     following.steps = march(following, following.start(), tolerance)
     return following
