@@ -253,10 +253,10 @@ class CombustionGas:
         outcome.reject(
             good & ((oxygen < 0) | (hydrogen < chlorine)),
             lambda i: Fault(
-                f"{self.title}: the oxygen does not suffice for complete combustion."
+                f"{self.title}: the oxygen does not suffice for complete combustion: there is "
+                f"{100 * b.get('O', zero)[i] / needed[i]:.4g} % of what carbon, hydrogen and sulfur bind."
                 if oxygen[i] < 0
                 else f"{self.title}: there is more chlorine than hydrogen to bind it.",
-                found=f"{100 * b.get('O', zero)[i] / needed[i]:.4g} % of the oxygen needed" if oxygen[i] < 0 else None,
                 expected='more air or less fuel, or chemistry = "equilibrium"',
             ),
         )

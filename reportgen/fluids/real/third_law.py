@@ -14,8 +14,9 @@ from typing import Any
 from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases.gas import ideal_gas
 from reportgen.fluids.gases.species import GasSpecies, library, plain_name
+from reportgen.fluids.real import catalogue
 
-__all__ = ["PRESSURE", "TEMPERATURE", "Standard", "gas_species", "standard_values"]
+__all__ = ["PRESSURE", "TEMPERATURE", "Standard", "gas_species", "species_fractions", "standard_values"]
 
 TEMPERATURE = 298.15  # K
 PRESSURE = 1e5  # Pa
@@ -60,8 +61,30 @@ def standard_values(data: Mapping[str, Any]) -> Standard:
     ------
     InputError : no ideal-gas data are carried for the substance, or it is a blend of unknown composition.
     """
+    gas = ideal_gas(_fractions(data))
+    state = gas.at(temperature=TEMPERATURE, pressure=PRESSURE)
+    return Standard(
+        entropy=float(state.specific_entropy) * gas.molar_mass,
+        enthalpy=float(state.specific_enthalpy) * gas.molar_mass,
+        sources=tuple(f"Third-law zero: {source}" for source in gas.sources),
+        data_files=gas.data_files,
+    )
+
+
+def species_fractions(name: str) -> Mapping[str, float]:
+    """Mole fractions [1] of the ideal-gas species that a real fluid consists of, by its name.
+
+    Raises
+    ------
+    InputError : as ``standard_values``.
+    """
+    data, _ = catalogue.find(name)
+    return _fractions(data)
+
+
+def _fractions(data: Mapping[str, Any]) -> Mapping[str, float]:
+    """Mole fractions of the species of a data file."""
     title = data["title"]
-    fractions: Mapping[str, float]
     if data["pseudo_pure"]:
         found = _COMPOSITIONS.get(data["name"])
         if found is None:
@@ -72,26 +95,17 @@ def standard_values(data: Mapping[str, Any]) -> Standard:
                     expected="published, IIR, ASHRAE or NBP",
                 )
             )
-        fractions = found
-    else:
-        species = gas_species(data)
-        if species is None:
-            raise InputError(
-                Fault(
-                    f"The third-law zero of {title} is not known: its ideal gas is not among those carried.",
-                    found=data["formula"] or data["name"],
-                    expected="published, IIR, ASHRAE or NBP",
-                )
+        return found
+    species = gas_species(data)
+    if species is None:
+        raise InputError(
+            Fault(
+                f"The third-law zero of {title} is not known: its ideal gas is not among those carried.",
+                found=data["formula"] or data["name"],
+                expected="published, IIR, ASHRAE or NBP",
             )
-        fractions = {species.key: 1.0}
-    gas = ideal_gas(fractions)
-    state = gas.at(temperature=TEMPERATURE, pressure=PRESSURE)
-    return Standard(
-        entropy=float(state.specific_entropy) * gas.molar_mass,
-        enthalpy=float(state.specific_enthalpy) * gas.molar_mass,
-        sources=tuple(f"Third-law zero: {source}" for source in gas.sources),
-        data_files=gas.data_files,
-    )
+        )
+    return {species.key: 1.0}
 
 
 def _atoms(formula: str) -> dict[str, int]:
