@@ -9,7 +9,7 @@ along the sample axis, with the displaced points of their derivatives, so that a
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import Any
 
@@ -132,7 +132,7 @@ class Coupled:
                 explicit.add(relation.output)
                 self.formulae.append(relation)
                 continue
-            self.residuals.append(relation)
+            self.residuals.append(_turned(relation, free) if isinstance(relation, Formula) else relation)
         beside = {item.state: item.beside for item in relations if isinstance(item, PropertyRelation)}
         self.bundles = _bundles(self.outputs, self.carriers, beside, fluid_of, model)
         self.tears = [path for path in unknowns if path not in explicit]
@@ -295,6 +295,19 @@ class Coupled:
                 if name in self.outputs[state]:
                     slopes[f"states.{state}.{name}"] = row
         return slopes
+
+
+def _turned(formula: Formula, free: set[str]) -> Formula:
+    """A formula whose value is known, turned round for an input that is not: an efficiency that is a quotient of small
+    differences makes a poor residual, the entropy that follows from it a good one.
+    """
+    if formula.output in free or formula.slopes is not None:
+        return formula
+    for path, inverse in formula.inverses.items():
+        if path in free:
+            inputs = formula.turned_inputs(path)
+            return replace(formula, output=path, inputs=inputs, evaluate=inverse.evaluate, inverses={})
+    return formula
 
 
 def _carriers(relations: Sequence[AnyRelation], free: set[str]) -> dict[str, tuple[str, str]]:
