@@ -246,7 +246,7 @@ _ENTRIES = (
     Name("area", "A", "area", "Area of the wall in touch with the content"),
     Name("heat_transfer", r"\alpha", "heat_transfer_coefficient", "Heat transfer coefficient, wall to content"),
     Name("initial_temperature", "T_1", "temperature", "Initial temperature"),
-    Name("diameter", "d", "length", "Diameter"),
+    Name("diameter", r"d_\mathrm{o}", "length", "Diameter of the orifice"),
     Name("discharge_coefficient", r"C_\mathrm{d}", "ratio", "Discharge coefficient"),
     Name("initial_mass", "m_1", "mass", "Initial mass of the content"),
     Name("final_mass", "m_2", "mass", "Final mass of the content"),

@@ -50,6 +50,7 @@ from reportgen.evaluation.sections import (
 )
 from reportgen.evaluation.summary import summary
 from reportgen.evaluation.trials import Trial, Variant
+from reportgen.evaluation.vessels import evaluated_vessels, vessel_figures
 from reportgen.quantities import Display
 from reportgen.record import Record
 from reportgen.spec import CALCULATION_FILE
@@ -99,7 +100,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
     return Record(
         {
             "calculation": calculation_section(calculation),
-            "plant": plant_section(calculation, models, solution.values),
+            "plant": plant_section(calculation, models, solution),
             "inputs": inputs_section(calculation, solution),
             "values": values_section(plant, solution, calculation.inputs),
             "relations": relations,
@@ -125,6 +126,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             "figures": [
                 *temperature_entropy_figures(plant, solution),
                 *bar_figures(plant, train_of(calculation), accounts),
+                *vessel_figures(plant),
                 *exchanger_figures(plant, solution),
             ],
             "provenance": provenance(calculation.files, models.values(), folder, seconds.values()),
@@ -152,6 +154,7 @@ def _evaluated(
         process_trains={name: train.processes for name, train in calculation.trains.items() if train.processes},
         alternatives=tuple(name for name, train in calculation.trains.items() if train.alternative_to),
         closed=frozenset(solution.closed),
+        vessels=evaluated_vessels(calculation, solution),
     )
 
 

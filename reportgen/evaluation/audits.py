@@ -17,6 +17,7 @@ from reportgen.evaluation.closed import closed_balances, closed_owners
 from reportgen.evaluation.decisions import SecondLaw, second_law
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.sampling import SampleAxis
+from reportgen.evaluation.vessels import vessel_balances, vessel_owners
 from reportgen.names import DIMENSIONS
 
 __all__ = [
@@ -120,12 +121,14 @@ _VERDICTS: dict[SecondLaw, str] = {
 
 def _owner_words(owner: str) -> str:
     place, _, name = owner.partition(".")
-    words = {"equipment": name, "processes": f"Process {name}", "trains": f"Train {name}"}
+    words = {"equipment": name, "processes": f"Process {name}", "vessels": f"Vessel {name}", "trains": f"Train {name}"}
     return words.get(place, "The closed part" if place == "closed" else "The whole")
 
 
 def balances_of(plant: EvaluatedPlant, owner: str, tags: Sequence[str]) -> dict[str, tuple[float, float]]:
     """What the balances of an owner leave, with the size of their terms: rates of equipment, amounts of processes."""
+    if owner.startswith("vessels."):
+        return vessel_balances(plant, tags[0])
     return closed_balances(plant, tags) if plant.is_closed(owner) else balance_round(plant, tags)
 
 
@@ -227,11 +230,11 @@ def counted_pieces(plant: EvaluatedPlant, alternatives: Iterable[str]) -> list[s
 
 
 def _owners(plant: EvaluatedPlant, totals: Sequence[str]) -> list[tuple[str, Sequence[str]]]:
-    """Pieces, trains and the total, then the same of processes, each with its tags."""
+    """Pieces, trains and the total, then the same of processes, then vessels, each with its tags."""
     owners: list[tuple[str, Sequence[str]]] = [(f"equipment.{tag}", (tag,)) for tag in plant.kinds]
     owners += [(f"trains.{train}", tags) for train, tags in plant.trains.items()]
     owners += [("total", totals)] if totals else []
-    return [*owners, *closed_owners(plant)]
+    return [*owners, *closed_owners(plant), *vessel_owners(plant)]
 
 
 def _base(plant: EvaluatedPlant, path: str, absent: float = np.nan) -> float:

@@ -19,6 +19,7 @@ if TYPE_CHECKING:
     from reportgen.balances.doubts import Doubt
     from reportgen.balances.relations import HeatPort
     from reportgen.evaluation.assumptions import AutomaticAssumption
+    from reportgen.evaluation.vessels import EvaluatedVessel
     from reportgen.fluids.model import Fluid
     from reportgen.quantities import Quantity
     from reportgen.spec.calculation import Limits
@@ -75,6 +76,7 @@ class EvaluatedPlant:
         process_trains: train id to the tags of its processes.
         alternatives: trains that stand in the place of another and do not count in totals.
         closed: owners of sums over processes, whose values are amounts and no rates.
+        vessels: vessel tag to what it is.
         doubts: values that could come out where they cannot be meant, as the balances found them.
         assumptions: those of the program, with their tests; empty until they are tested.
         cross_checks: record entries of states held against a second source; empty until they are compared.
@@ -97,6 +99,7 @@ class EvaluatedPlant:
     process_trains: Mapping[str, tuple[str, ...]] = field(default_factory=dict)
     alternatives: tuple[str, ...] = ()
     closed: frozenset[str] = frozenset()
+    vessels: Mapping[str, EvaluatedVessel] = field(default_factory=dict)
 
     def is_closed(self, owner: str) -> bool:
         """Whether an owner is a process or a sum over processes."""

@@ -16,6 +16,7 @@ import numpy.typing as npt
 
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.models import fluid_name
+from reportgen.evaluation.vessels import vessel_paths_of
 
 if TYPE_CHECKING:
     from reportgen.balances import Solution
@@ -66,8 +67,11 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
         points = [point for state in plant.state_fluids if (point := _point(plant, state, identifier)) is not None]
         if not points:
             continue
-        span = _entropy_span(points, fluid.gas_constant)
-        pressures = _distinct(plant.samples(f"states.{point['state']}.pressure")[0] for point in points)
+        contents = vessel_paths_of(plant, identifier)
+        span = _entropy_span([*points, *_ends(contents)], fluid.gas_constant)
+        ends = [f"states.{point['state']}.pressure" for point in points]
+        ends += [f"vessels.{content['equipment']}.followed_pressure" for content in contents]
+        pressures = _distinct(plant.samples(path)[0] for path in ends)
         if fluid.kind == "incompressible":
             del pressures[1:]
         paths = [
@@ -80,7 +84,8 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
             for curve in curves
             if curve.fluid == identifier
         ]
-        if len(points) < 2 and not paths and (plant.kinds or plant.processes):
+        paths += contents
+        if len(points) < 2 and not paths and (plant.kinds or plant.processes or plant.vessels):
             continue  # one state alone, on no way: nothing to see
         dome = saturation_dome(fluid)
         parts = [_ONE_LINE if fluid.kind == "incompressible" else _LINES]
@@ -103,6 +108,11 @@ def temperature_entropy_figures(plant: EvaluatedPlant, solution: Solution) -> li
     return figures
 
 
+def _ends(paths: Iterable[Mapping[str, Any]]) -> list[dict[str, float]]:
+    """The last place of every path that has one."""
+    return [{"entropy": path["entropy"][-1]} for path in paths if path["entropy"]]
+
+
 def _any_broken(paths: Iterable[Mapping[str, Any]]) -> bool:
     return any(path["mixing"] and len(path["entropy"]) > 1 for path in paths)
 
@@ -123,6 +133,7 @@ def bar_figures(
     return [
         *_lost_work(plant, train_of, "equipment", plant.kinds, "Work forgone in each piece", ""),
         *_lost_work(plant, train_of, "processes", plant.processes, "Work forgone in each process", "-of-processes"),
+        *_lost_work(plant, train_of, "vessels", plant.vessels, "Work forgone in each vessel", "-of-vessels"),
         *_accounts(accounts, "entropy_flow", "Entropy entering and generated", ""),
         *_accounts(accounts, "entropy", "Entropy at the start, entering and generated", "-of-processes"),
     ]

@@ -129,6 +129,7 @@ def plant_of(calculation: Calculation, models: Mapping[str, Any]) -> balances.Pl
         states={identifier: state.fluid for identifier, state in calculation.states.items()},
         equipment=_definitions(calculation.equipment),
         processes=_definitions(calculation.processes),
+        vessels=_definitions(calculation.vessels),
         trains={
             identifier: balances.Train(
                 train.title, train.equipment, train.alternative_to, train.processes, train.purpose

@@ -7,9 +7,10 @@ from collections.abc import Mapping
 from typing import TYPE_CHECKING, Any
 
 from reportgen.balances import kinds
-from reportgen.balances.kinds import Kind, process_kinds
+from reportgen.balances.kinds import Kind, process_kinds, vessel_kinds
 from reportgen.evaluation.evaluated import Connection
 from reportgen.evaluation.model_details import model_details, stated_sources
+from reportgen.evaluation.vessels import vessel_path
 from reportgen.names import DIMENSIONS, name_of
 from reportgen.quantities import Quantity
 from reportgen.spec.calculation import Input
@@ -106,12 +107,15 @@ def _input(quantity: Quantity, item: Input) -> dict[str, Any]:
     }
 
 
-def plant_section(calculation: Calculation, models: Mapping[str, Fluid], paths: Mapping[str, Any]) -> dict[str, Any]:
-    """Fluids, states, equipment and processes with their states, trains. ``position`` keeps the order of the file.
+def plant_section(calculation: Calculation, models: Mapping[str, Fluid], solution: Solution) -> dict[str, Any]:
+    """Fluids, states, equipment, processes and vessels with their states, trains; ``position`` keeps the file's order.
 
-    ``paths`` are those of the solution: a state names its flow, or its mass, only when it has one.
+    A state names its flow, or its mass, only when it has one.
     """
-    trains = train_of(calculation)
+    trains, paths = train_of(calculation), solution.values
+    vessels = _pieces(calculation.vessels, vessel_kinds(), trains)
+    for tag, path in solution.vessel_paths.items():
+        vessels[tag]["path"] = vessel_path(path)
     states = {}
     for position, (identifier, state) in enumerate(calculation.states.items()):
         flow, mass = (f"states.{identifier}.{name}" for name in ("mass_flow", "mass"))
@@ -130,6 +134,7 @@ def plant_section(calculation: Calculation, models: Mapping[str, Fluid], paths: 
         "states": states,
         "equipment": _pieces(calculation.equipment, kinds(), trains),
         "processes": _pieces(calculation.processes, process_kinds(), trains),
+        "vessels": vessels,
         "trains": {
             identifier: {
                 "title": train.title,
@@ -216,7 +221,9 @@ def _fluid(model: Fluid, specification: FluidSpec, position: int) -> dict[str, A
 
 
 def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, Any]:
-    """Entropy accounts of the trains, or of the whole plant where the file has no trains [W/K, of processes J/K].
+    """Entropy accounts of the trains, or of the whole plant where the file has no trains, and of every vessel.
+
+    In W/K, of processes and vessels in J/K.
 
     Amounts are taken from the values, so that they agree with them; heat that came out as zero has no line.
     """
@@ -225,6 +232,7 @@ def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, 
     for whole in ("total", "closed"):
         of_processes = whole in solution.closed
         owners |= {} if parted[of_processes] else {whole: whole}
+    owners |= {f"vessels.{tag}": tag for tag in calculation.vessels}
     section = {}
     for owner, identifier in owners.items():
         account = solution.accounts.get(owner)
@@ -241,7 +249,7 @@ def accounts_section(calculation: Calculation, solution: Solution) -> dict[str, 
         section[identifier] = {
             "title": account.title,
             "complete": account.complete,
-            "dimension": "entropy" if owner in solution.closed else "entropy_flow",
+            "dimension": "entropy" if owner in solution.closed or owner.startswith("vessels.") else "entropy_flow",
             **sides,
             "sum_entering": sum(line["value"] for line in sides["entering"]),
             "sum_leaving": sum(line["value"] for line in sides["leaving"]),

@@ -25,6 +25,20 @@ SUMS = ("entropy_generation", "lost_work", "power")
 OF_PIECES = (*SUMS, "shaft_power", "isentropic_efficiency", "duty", "heat")
 #: Of cycles and of compressions in several stages.
 OF_CYCLES = ("thermal_efficiency", "coefficient_of_performance", "second_law_efficiency", "isothermal_efficiency")
+#: Of a vessel.
+OF_VESSELS = (
+    "entropy_generation",
+    "vessel_entropy_generation",
+    "valve_entropy_generation",
+    "wall_entropy_generation",
+    "lost_work",
+    "mass_transferred",
+    "final_temperature",
+    "minimum_temperature",
+    "maximum_temperature",
+    "minimum_wall_temperature",
+    "duration",
+)
 FLOWS = ("mass_flow", "volume_flow", "molar_flow")
 
 
@@ -36,7 +50,7 @@ def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) ->
     must be seen. Sums over a single piece repeat what the piece says and are left out. Without equipment, states are
     the results.
     """
-    if not plant.kinds and not plant.processes:
+    if not plant.kinds and not plant.processes and not plant.vessels:
         return [
             f"states.{state}.{name}" for state in plant.state_fluids for name in ("temperature", "specific_entropy")
         ]
@@ -49,6 +63,8 @@ def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) ->
     owners += ["total"] if len(totals) > 1 else []
     found += [f"{owner}.{name}" for owner in owners for name in (*SUMS, *_of_cycle(solution, owner))]
     found += _of_processes(plant)
+    found += [f"vessels.{tag}.{name}" for tag in plant.vessels for name in OF_VESSELS]
+    found += [f"total.{name}" for name in OF_VESSELS if "total" in plant.closed and len(plant.vessels) > 1]
     return [path for path in found if _tells(plant, path)]
 
 
@@ -86,7 +102,7 @@ def _changed(plant: EvaluatedPlant, process: ClosedProcess, state: str) -> list[
 def _tells(plant: EvaluatedPlant, path: str) -> bool:
     if path not in plant.values or path in plant.axis.givens:
         return False
-    return path.endswith("entropy_generation") or (plant.has(path) and plant.samples(path)[0] != 0.0)
+    return path.endswith(".entropy_generation") or (plant.has(path) and plant.samples(path)[0] != 0.0)
 
 
 def _outlet_pressures(plant: EvaluatedPlant, solution: Solution, tag: str) -> list[str]:

@@ -14,7 +14,7 @@ Flags = npt.NDArray[np.bool_]
 Outlet = Literal["homogeneous", "vapour", "liquid"]
 
 #: Part of the energy to which the temperature of a content is found, and rounds after which it is given up.
-_CLOSE, _MOST_ROUNDS = 2e-13, 60
+_CLOSE, _MOST_ROUNDS = 1e-12, 60
 
 
 class Flow(NamedTuple):
@@ -27,7 +27,7 @@ class Flow(NamedTuple):
 
 def content(
     fluid: Any, density: Array, energy: Array, metal: Array, start: Array, slope: Array | None = None
-) -> tuple[Array, Any]:
+) -> tuple[Array, Any, Array]:
     """Temperature and state of a content from its density and its energy with that of metal at the same temperature.
 
     Solves ρ u(T, ρ) + K T = e for T, which rises with T through the two-phase region as well, by secants within a
@@ -39,49 +39,49 @@ def content(
         energy: e, energy by volume [J/m3].
         metal: K, heat capacity of metal that follows the temperature of the content, by volume [J/(m3 K)]; 0 for none.
         start: temperature to begin with [K].
-        slope: ∂e/∂T to begin with [J/(m3 K)].
+        slope: ∂e/∂T to begin with [J/(m3 K)], NaN where it is not known.
 
     Returns:
-        Temperature [K], NaN where the model has no such state, and the state of the model there.
+        Temperature [K], NaN where the model has no such state; the state of the model there; the last slope.
     """
     lowest, highest = fluid.limits.minimum_temperature, fluid.limits.maximum_temperature
-    temperature = np.clip(start, lowest, highest)
+    temperature = np.where(np.isfinite(density) & np.isfinite(energy), np.clip(start, lowest, highest), np.nan)
     low, high = np.full_like(temperature, lowest), np.full_like(temperature, highest)
     scale = density * fluid.gas_constant * np.maximum(temperature, lowest) + np.abs(metal) * temperature
-    if slope is None:
-        slope = 2.5 * density * fluid.gas_constant + metal
-    slope = np.array(np.broadcast_to(slope, temperature.shape), dtype=float)
-    last_temperature = np.full_like(temperature, np.nan)
-    last_error = np.full_like(temperature, np.nan)
-    open_ = np.nonzero(np.isfinite(density) & np.isfinite(energy) & np.isfinite(temperature))[0]
+    usual = 2.5 * density * fluid.gas_constant + metal
+    slope = usual if slope is None else np.where(np.isfinite(slope), slope, usual)
+    last_temperature, last_error = np.full_like(temperature, np.nan), np.full_like(temperature, np.nan)
+    closed = ~np.isfinite(temperature)
+    state, lost = None, False
     for _ in range(_MOST_ROUNDS):
-        if not open_.size:
+        if state is not None and closed.all():
             break
-        here = temperature[open_]
-        state = fluid.at(errors="mask", temperature=here, density=density[open_])
-        error = density[open_] * np.asarray(state.specific_internal_energy) + metal[open_] * here - energy[open_]
+        here = temperature
+        state = fluid.at(errors="mask", temperature=here, density=density)
+        error = density * np.asarray(state.specific_internal_energy) + metal * here - energy
         with np.errstate(all="ignore"):
-            secant = (error - last_error[open_]) / (here - last_temperature[open_])
-        usable = np.isfinite(secant) & (secant > 0.0)
-        slope[open_] = np.where(usable, secant, slope[open_])
-        last_temperature[open_], last_error[open_] = here, error
+            secant = (error - last_error) / (here - last_temperature)
+            slope = np.where(np.isfinite(secant) & (secant > 0.0) & ~closed, secant, slope)
+            change = -error / slope
+        last_temperature, last_error = here, error
         above = error > 0.0
-        high[open_] = np.where(above, np.minimum(high[open_], here), high[open_])
-        low[open_] = np.where(error <= 0.0, np.maximum(low[open_], here), low[open_])
-        change = -error / slope[open_]
+        high, low = np.where(above, np.minimum(high, here), high), np.where(above, low, np.maximum(low, here))
         following = here + change
-        outside = ~((following > low[open_]) & (following < high[open_]))
+        outside = ~((following > low) & (following < high))
         # At an end of the range the next value is the end itself, so that its sign can be seen.
-        at_end = outside & np.isin(following.clip(low[open_], high[open_]), (lowest, highest))
-        middle = 0.5 * (low[open_] + high[open_])
-        following = np.where(outside, np.where(at_end, following.clip(low[open_], high[open_]), middle), following)
-        done = (np.abs(error) <= _CLOSE * scale[open_]) | (np.abs(change) <= _CLOSE * here)
-        pinned = (~done) & ((here == lowest) & above | (here == highest) & ~above)
-        failed = pinned | ~np.isfinite(error) | (following == here) & ~done
-        temperature[open_] = np.where(failed, np.nan, np.where(done, here, following))
-        open_ = open_[~(done | failed)]
-    temperature[open_] = np.nan
-    return temperature, fluid.at(errors="mask", temperature=temperature, density=density)
+        clipped = following.clip(low, high)
+        at_end = (clipped == lowest) | (clipped == highest)
+        following = np.where(outside, np.where(at_end, clipped, 0.5 * (low + high)), following)
+        done = (np.abs(error) <= _CLOSE * scale) | (np.abs(change) <= _CLOSE * here)
+        pinned = (here == lowest) & above | (here == highest) & ~above
+        failed = ~closed & ~done & (pinned | ~np.isfinite(error) | (following == here))
+        lost = lost or bool(failed.any())
+        temperature = np.where(failed, np.nan, np.where(closed | done, here, following))
+        closed = closed | done | failed
+    if lost or not closed.all():
+        temperature = np.where(closed, temperature, np.nan)
+        state = fluid.at(errors="mask", temperature=temperature, density=density)
+    return temperature, state, slope
 
 
 def outflow(fluid: Any, state: Any, outlet: Outlet, inside: Flags) -> Flow:

@@ -187,8 +187,11 @@ class Following:
         volume = _of(self.vessel.volume, columns)
         density = y[MASS] / volume
         start = self.temperature[columns] if guess is None else guess
-        temperature, state = content(self.vessel.fluid, density, y[ENERGY] / volume, self.metal[columns], start)
+        slope = self.slope[columns] if guess is None else None
+        energy = y[ENERGY] / volume
+        temperature, state, slope = content(self.vessel.fluid, density, energy, self.metal[columns], start, slope)
         if guess is None:
+            self.slope[columns] = slope
             self.temperature[columns] = np.where(np.isfinite(temperature), temperature, self.temperature[columns])
         return temperature, state
 
@@ -204,7 +207,7 @@ class Following:
         mass = volume * _of(supply.density, columns) - (y[MASS] - self.before(columns))
         start = self.supply_temperature[columns] if guess is None else guess
         none = np.zeros_like(volume)
-        temperature, state = content(vessel.fluid, mass / volume, y[SUPPLY_ENERGY] / volume, none, start)
+        temperature, state, _ = content(vessel.fluid, mass / volume, y[SUPPLY_ENERGY] / volume, none, start)
         if guess is None:
             kept = np.isfinite(temperature)
             self.supply_temperature[columns] = np.where(kept, temperature, self.supply_temperature[columns])

@@ -88,11 +88,13 @@ def velocity_on_one_side(plant: EvaluatedPlant, _limit: float) -> Iterator[Findi
 @caution("P13", "note", "Not used", source="structure of the calculation")
 def unused(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
     """State that no piece of equipment or process uses, fluid that no state uses; nothing where there is neither."""
-    if not plant.kinds and not plant.processes:
+    if not plant.kinds and not plant.processes and not plant.vessels:
         return
     used = {connection.state for connections in plant.connections.values() for connection in connections}
     used |= {state for process in plant.processes.values() for state in process.states}
-    users = [word for word, some in (("piece of equipment", plant.kinds), ("process", plant.processes)) if some]
+    used |= {state for vessel in plant.vessels.values() for state in vessel.states}
+    words = (("piece of equipment", plant.kinds), ("process", plant.processes), ("vessel", plant.vessels))
+    users = [word for word, some in words if some]
     for state in plant.state_fluids:
         if state not in used:
             path = f"states.{state}"

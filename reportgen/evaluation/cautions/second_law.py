@@ -22,7 +22,8 @@ def negative_entropy_generation(plant: EvaluatedPlant, _limit: float) -> Iterato
     An interval that reaches across zero is the matter of the second-law audit, and no caution; so is what the
     arithmetic leaves of a zero.
     """
-    members = [("equipment", tag) for tag in plant.kinds] + [("processes", tag) for tag in plant.processes]
+    families = {"equipment": plant.kinds, "processes": plant.processes, "vessels": plant.vessels}
+    members = [(family, tag) for family, tags in families.items() for tag in tags]
     for family, tag in members:
         owner = f"{family}.{tag}"
         path = f"{owner}.entropy_generation"
