@@ -27,7 +27,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from reportgen.fluids import ideal_gas, ideal_gas_names, incompressible, names, real_fluid, statistical
+from reportgen.fluids import cubic, ideal_gas, ideal_gas_names, incompressible, names, real_fluid, statistical
 
 __all__ = [
     "BAR",
@@ -353,8 +353,6 @@ def models(chosen: str = "") -> Iterator[tuple[str, str, Any]]:
         for name in names():
             yield "real", name, real_fluid(name)
     if chosen in ("", "cubic"):
-        from reportgen.fluids.cubics.making import cubic
-
         for equation in ("Peng-Robinson", "Soave-Redlich-Kwong"):
             for name, (composition, options) in CUBICS.items():
                 yield "cubic", f"{name}, {equation}", cubic(composition, equation=equation, **options)

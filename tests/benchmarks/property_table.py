@@ -278,6 +278,7 @@ def main() -> int:
     parser.add_argument("--states", type=int, default=2000, help="states a fluid and pair (2000)")
     parser.add_argument("--fluids", default="", help="names, separated by commas (all)")
     parser.add_argument("--pairs", default="", help=f"labels separated by semicolons, of {'; '.join(PAIRS)} (all)")
+    parser.add_argument("--seed", type=int, default=7, help="of the random states (7)")
     parser.add_argument("--full", action="store_true", help="one line a pair, not only those with findings")
     chosen = parser.parse_args()
     matched, missing = counterparts()
@@ -289,7 +290,7 @@ def main() -> int:
     totals: dict[str, Row] = {}
     start = time.perf_counter()
     for name in names:
-        rows = compare_fluid(name, matched[str(real_fluid(name).substance)], chosen.states, labels)
+        rows = compare_fluid(name, matched[str(real_fluid(name).substance)], chosen.states, labels, chosen.seed)
         whole = Row()
         for label, row in rows.items():
             if label != FLASH:  # its deviations are the library's own
