@@ -29,6 +29,7 @@ from reportgen.evaluation.audits import (
 from reportgen.evaluation.budget import budgets
 from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, lost_samples, raised, unevaluated
 from reportgen.evaluation.closed import closed_boundary_test
+from reportgen.evaluation.contradictions import sized
 from reportgen.evaluation.criteria import decided_criteria
 from reportgen.evaluation.cross_checks import cross_checks, second_sources
 from reportgen.evaluation.cycles import cycles_section
@@ -86,7 +87,8 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
     try:
         solution = balances.solve(definition, axis.givens)
     except ReportgenError as error:
-        raise placed(calculation, error, models) from error
+        told = sized(error, lambda givens: balances.solve(definition, givens), axis, Display(calculation.units))
+        raise placed(calculation, told, models) from error
     plant = _evaluated(calculation, models, axis, solution)
     plant = replace(plant, cross_checks=cross_checks(plant, calculation.states, seconds))
     totals = counted_pieces(plant, plant.alternatives)

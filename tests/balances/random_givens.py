@@ -262,7 +262,7 @@ class Drawing:
         return [path for path, given in zip(columns, known, strict=True) if not given][int(growth.argmax())]
 
     def _is_shared(self, state: str, givens: dict[str, float]) -> bool:
-        """Whether a state is given by a temperature and an enthalpy that another state has too, at some high pressure."""
+        """Whether a state is given by a temperature and an enthalpy that another state, at high pressure, has too."""
         pair = {name: givens.get(f"states.{state}.{name}") for name in ("temperature", "specific_enthalpy")}
         if None in pair.values() or f"states.{state}.pressure" in givens:
             return False
