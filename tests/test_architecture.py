@@ -79,3 +79,14 @@ def test_a_kind_of_equipment_is_named_in_its_own_module_only(kind: str) -> None:
         if any(text in path.read_text("utf-8") for text in literal)
     ]
     assert namers == [f"balances/equipment/{kind.replace('-', '_')}.py"]
+
+
+@pytest.mark.parametrize("kind", ["free-expansion", "partition-removal", "polytropic", "thermal-contact"])
+def test_a_kind_of_process_is_named_in_its_own_module_only(kind: str) -> None:
+    literal = {f'"{kind}"', f"'{kind}'"}
+    namers = [
+        path.relative_to(PACKAGE).as_posix()
+        for path in _modules()
+        if any(text in path.read_text("utf-8") for text in literal)
+    ]
+    assert namers == [f"balances/processes/kinds/{kind.replace('-', '_')}.py"]

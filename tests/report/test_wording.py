@@ -64,7 +64,7 @@ def labels(figure: dict[str, Any], presenter: Presenter) -> list[str]:
 
 
 @pytest.mark.parametrize("units", ["SI", "US"])
-@pytest.mark.parametrize("project", ["letdown-station", "instrument-air"])
+@pytest.mark.parametrize("project", ["letdown-station", "instrument-air", "nitrogen-blanketing"])
 def test_labels_of_figures_are_the_numbers_of_the_tables(project: str, units: str) -> None:
     record = evaluation.evaluate(spec.read(PROJECTS / project))
     record.data["calculation"]["units"] = units
@@ -73,18 +73,19 @@ def test_labels_of_figures_are_the_numbers_of_the_tables(project: str, units: st
     account = text_of(section(record.data, "account"))
     found = text_of(section(record.data, "found"))
 
-    unit = presenter.display.unit_text("entropy_flow")
     for entry in record.data["accounts"].values():
         amounts = Amounts(entry, presenter)
-        for words, value in (("generated", amounts.generated), ("in", amounts.entering)):
+        unit = presenter.display.unit_text(entry["dimension"])
+        carried = "in" if entry["dimension"] == "entropy_flow" else "there and in"
+        for words, value in (("generated", amounts.generated), (carried, amounts.entering)):
             number = " ".join(amounts.text(value).split())
             assert f"{words} {number} {unit}" in drawn["entropy-account-bars"]
             if len(entry["generated" if words == "generated" else "entering"]) == 1:
                 assert f" {number} " in account
 
-    bars = next(figure["bars"] for figure in record.data["figures"] if figure["kind"] == "lost-work-bars")
-    for bar in bars:
-        shown = presenter.show(bar["value"], "power", bar["expanded_uncertainty"])
+    figure = next(figure for figure in record.data["figures"] if figure["kind"] == "lost-work-bars")
+    for bar in figure["bars"]:
+        shown = presenter.show(bar["value"], figure["dimension"], bar["expanded_uncertainty"])
         assert " ".join(shown.text.split()) in drawn["lost-work-bars"]
         assert f"{' '.join(shown.number.split())} {shown.unit}" in found
 

@@ -13,6 +13,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
+from reportgen.balances.composition import flow_paths, with_flows
 from reportgen.balances.plant import Piece, Plant
 from reportgen.balances.relations import Formula, token
 from reportgen.balances.zeros import same_zero
@@ -65,9 +66,9 @@ class Mixtures:
             raise InputError(faults)
 
     def masses(self, fluid: str) -> tuple[str, ...]:
-        """Paths of the masses that the composition of a fluid follows from; none for any other fluid."""
+        """Paths of the masses, or mass flows, that the composition of a fluid follows from; none for any other fluid."""
         if fluid not in self.blends:
-            return ()
+            return flow_paths(self._plant.fluids[fluid])
         gases = self.blends[fluid].gases
         inner = [path for gas, _ in gases for path in self.masses(gas)]
         return tuple(dict.fromkeys([*(path for _, path in gases), *inner]))
@@ -76,7 +77,7 @@ class Mixtures:
         """Property model of a fluid; of a mixture with a composition for each element of its masses in ``values``."""
         stated = self._plant.fluids[fluid]
         if fluid not in self.blends:
-            return stated
+            return with_flows(stated, values)
         from reportgen.fluids.gases.blend import GasBlend
 
         gases = self.blends[fluid].gases

@@ -164,5 +164,4 @@ class _BlendLaw:
             temperature = np.where(missed == 0.0, temperature, stepped)
             if np.all(settled | (missed == 0.0) | np.isnan(target)):
                 break
-        result: Array = temperature
-        return result
+        return np.where(inside, temperature, np.nan)

@@ -148,7 +148,7 @@ def _passage(
 def _unbroken_tags(sentence: str, presenter: Presenter) -> Markup:
     """A sentence in which no line ends within a tag such as ``TG-2``."""
     plant = presenter.record.data["plant"]
-    names = [*plant["equipment"], *plant.get("processes", {})]
+    names = [*plant["equipment"], *plant.get("processes", {}), *plant.get("vessels", {})]
     tags = sorted((tag for tag in names if "-" in tag), key=len, reverse=True)
     text = escape(sentence)
     if not tags:
@@ -167,10 +167,11 @@ def _step(number: int, name: str, relation: dict[str, Any], results: list[str], 
             lines.append(_balance(left, rights[0], rights[1], relation, presenter))
             continue
         path = next((path for path in results if values[path].get("symbol") == left), None)
+        # A value taken by default stands among the inputs: there its links lead. Of relations solved together two may
+        # be written for one value; its links lead to the first.
+        lines.append(_line(line, None if path in presenter.record.inputs or path in shown else path))
         if path is not None:
             shown.add(path)
-        # A value taken by default stands among the inputs: there its links lead.
-        lines.append(_line(line, None if path in presenter.record.inputs else path))
     others = [path for path in results if path not in shown and values[path]["value"] is not None]
     return {
         "number": number,
@@ -243,7 +244,7 @@ def _uses(paths: Iterable[str], presenter: Presenter) -> list[Markup]:
             found.append(presenter.link(path, path.removeprefix("fluids.")))
         elif path.startswith("assumptions."):
             family, _, name = path.removeprefix("assumptions.").partition(".")
-            piece = name.partition(".")[0] if family in ("equipment", "processes") else ""
+            piece = name.partition(".")[0] if family in ("equipment", "processes", "vessels") else ""
             found.append(presenter.link(path, f"assumption on {piece}" if piece else "assumption"))
         else:
             found.append(presenter.symbol_link(path))

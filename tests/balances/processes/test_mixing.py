@@ -119,8 +119,8 @@ def test_mixtures_that_share_species() -> None:
 
 
 def test_the_composition_follows_the_masses_along_the_sample_axis() -> None:
-    """Doubling one volume changes composition, temperature and pressure of its column as a solution of its own would."""
-    volumes = [1.0, 1.0 * 1.03, 1.0 * 0.97]
+    """A volume that differs changes its column as a solution of its own does: composition, temperature, pressure."""
+    volumes = [1.0, 1.03, 0.97]
     axis = three_gases(**{"states.N2.volume": volumes})
     for column, volume in enumerate(volumes):
         parts = {**{name: (p, t, v) for name, (_, p, t, v) in PARTS.items()}, "N2": (5e5, 300.0, volume)}

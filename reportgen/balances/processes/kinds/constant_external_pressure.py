@@ -23,7 +23,6 @@ from reportgen.balances.processes.equations import (
 )
 from reportgen.balances.relations import Balance, Default, Relation, Term
 
-
 _VOLUMES = ("volume", "specific_volume", "density")
 
 
