@@ -27,6 +27,12 @@ _TOLD = {
     "entropy": _ENTROPY,
     "entropy_change": _ENTROPY,
     "entropy_of_mixing": _ENTROPY,
+    "initial_entropy": _ENTROPY,
+    "final_entropy": _ENTROPY,
+    "entropy_with_mass": _ENTROPY,
+    "vessel_entropy_generation": _ENTROPY,
+    "valve_entropy_generation": _ENTROPY,
+    "wall_entropy_generation": _ENTROPY,
     "mole_fraction": _ENTROPY,
     "entropy_with_heat": _ENTROPY,
     "entropy_generation": _ENTROPY,
@@ -92,7 +98,8 @@ def arrange(data: Mapping[str, Any]) -> list[Part]:
         if number == _EXERGY:  # the exergies of the states rest on nothing else told here
             keys.sort(key=lambda key: not relations[key]["owner"].startswith(("fluids.", "states.")))
         if keys:
-            word = "piece" if data["plant"]["equipment"] else "process"
+            words = {"equipment": "piece", "processes": "process", "vessels": "vessel"}
+            word = next((word for family, word in words.items() if data["plant"].get(family)), "piece")
             parts.append(Part(title.format(word, word), _passages(number, keys, data)))
     return parts
 
@@ -130,7 +137,7 @@ def _passages(part: int, keys: Sequence[str], data: Mapping[str, Any]) -> list[P
         index = latest.get(sort, len(found)) if sort else len(found)
         if index < len(found):
             needed = max((place.get(path, -1) for path in relation["uses"]), default=-1)
-            by_piece = part in (_ENTROPY, _EXERGY) and sort[0] == "owner"
+            by_piece = sort[0] == "owner" and part in (_STATES, _ENTROPY, _EXERGY)
             too_long = by_piece and _is_long(found[index], relation, relations)
             if needed > index or too_long:
                 index = len(found)
@@ -153,6 +160,8 @@ def _sort(part: int, relation: Relation, data: Mapping[str, Any]) -> tuple[str, 
         return ("exergy", state["fluid"] if state else name)
     if part != _STATES:
         return ("flow",) if owner.startswith("states.") else ("owner", owner)
+    if owner.startswith("vessels."):
+        return ("owner", owner)
     if _is_adiabatic(relation):
         return ("adiabatic",)
     if _is_kept_flow(relation):
@@ -220,7 +229,7 @@ def _only_piece(members: Sequence[Relation]) -> str | None:
         return None
     pieces: set[str] = set()
     for member in members:
-        parts = [path for path in member["uses"] if path.startswith(("equipment.", "processes."))]
+        parts = [path for path in member["uses"] if path.startswith(("equipment.", "processes.", "vessels."))]
         own = [path for path in member["uses"] if path.startswith(f"{owner}.")]
         symbols = [line[1] for line in member["latex_lines"] if len(line) > 1]
         repeats = len(parts) == 1 and not own and not any(text.lstrip().startswith("-") for text in symbols)

@@ -229,8 +229,8 @@ class Presenter:
         trains = self.record.data["plant"].get("trains", {})
         if parts[0] == "states":
             return f"state\N{NO-BREAK SPACE}{name}"
-        if parts[0] in ("equipment", "processes"):
-            owner = name if parts[0] == "equipment" else f"process\N{NO-BREAK SPACE}{name}"
+        if parts[0] in ("equipment", "processes", "vessels"):
+            owner = f"process\N{NO-BREAK SPACE}{name}" if parts[0] == "processes" else name
             port, species = _HEAT_PORT.fullmatch(name), _SPECIES.fullmatch(name)
             if species:
                 return f"{species[2]}, process\N{NO-BREAK SPACE}{species[1]}"

@@ -11,7 +11,7 @@ from typing import Any
 
 from markupsafe import Markup
 
-from reportgen.report.figures import bars, exchanger_profile, temperature_entropy
+from reportgen.report.figures import bars, exchanger_profile, temperature_entropy, vessel_history
 from reportgen.report.figures.canvas import Drawing
 from reportgen.report.presenter import Presenter
 
@@ -22,11 +22,13 @@ KINDS: dict[str, Callable[[dict[str, Any], Presenter, Path], Drawing | None]] = 
     "lost-work-bars": bars.draw_lost_work,
     "entropy-account-bars": bars.draw_entropy_account,
     "exchanger-profile": exchanger_profile.draw,
+    "vessel-history": vessel_history.draw,
 }
 
 #: Tables that stand under figures of a kind: heads, and rows of a name and its numbers.
 TABLES: dict[str, Callable[[dict[str, Any], Presenter], dict[str, Any]]] = {
     "exchanger-profile": exchanger_profile.table,
+    "vessel-history": vessel_history.table,
 }
 
 

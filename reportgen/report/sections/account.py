@@ -43,6 +43,8 @@ _HEADS = {
 def _audited(data: dict[str, Any]) -> str:
     """What the rows of the audit are called."""
     families = {entry["owner"].partition(".")[0] for entry in data["audits"].get("second_law", [])}
+    if "vessels" in families:
+        return "Vessel" if len(families) == 1 else "Piece, process or vessel"
     if "processes" in families:
         return "Piece or process" if "equipment" in families else "Process"
     return "Piece"

@@ -41,16 +41,26 @@ def purpose(presenter: Presenter) -> dict[str, Any] | None:
 
 
 def boundary(presenter: Presenter) -> dict[str, Any] | None:
-    """Pieces inside the boundary with what enters and leaves each, then processes with their states, train by train."""
+    """Pieces with what enters and leaves each, then processes with their states, train by train, then vessels."""
     plant = presenter.record.data["plant"]
-    pieces, processes = (
+    pieces, processes, vessels = (
         _by_train(plant, family, crossing, presenter)
-        for family, crossing in (("equipment", ("heat", "power")), ("processes", ("heat", "work")))
+        for family, crossing in (
+            ("equipment", ("heat", "power")),
+            ("processes", ("heat", "work")),
+            ("vessels", ("heat", "mass_transferred")),
+        )
     )
-    if not pieces and not processes:
+    if not pieces and not processes and not vessels:
         return None
     surroundings = [presenter.number(plant["surroundings"][key]) for key in ("temperature", "pressure")]
-    return {"trains": pieces, "courses": processes, "named": bool(plant["trains"]), "surroundings": surroundings}
+    return {
+        "trains": pieces,
+        "courses": processes,
+        "vessels": [piece for train in vessels for piece in train["pieces"]],
+        "named": bool(plant["trains"]),
+        "surroundings": surroundings,
+    }
 
 
 def _by_train(
@@ -84,7 +94,7 @@ def _piece(
         value = presenter.record.value(path)
         if isinstance(value, float) and value != 0.0:
             direction = presenter.record.values[path].get("direction")
-            crossing.append((" ".join(filter(None, (name, direction))), presenter.number(path)))
+            crossing.append((" ".join(filter(None, (name.replace("_", " "), direction))), presenter.number(path)))
     ports = {"in": [], "out": []}  # type: dict[str, list[dict[str, str]]]
     for port in piece["ports"]:
         ports[port["direction"]].append(
@@ -252,6 +262,13 @@ _BALANCES = {
         "entropy generated is what the entropy changes by less what came with heat, and is never assumed to be zero:",
         r"S_\mathrm{gen}",
         r"\sum_\mathrm{end} m s - \sum_\mathrm{beginning} m s - \sum_{j} \frac{Q_{j}}{T_{j}} \geq 0",
+    ),
+    "vessels": (
+        "Vessels. The content of a rigid volume is followed while mass enters or leaves, all columns of the uncertain "
+        "inputs together, by a method of order 5 that ends its steps on the saturation line; the entropy generated in "
+        "content, valve and wall is integrated along the path and held against the balance of the whole:",
+        r"S_\mathrm{gen}",
+        r"S_2 - S_1 - \int \frac{\mathrm{d}Q}{T_\mathrm{w}} \mp \int s\,\mathrm{d}m \geq 0",
     ),
 }
 
