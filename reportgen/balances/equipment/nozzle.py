@@ -125,10 +125,9 @@ def doubts(piece: Piece, samples: Callable[[str], Any]) -> list[Doubt]:
         f"{piece.title}: the flow ⟦chokes|may choke⟧. It reaches the speed of sound at throat_pressure, above the "
         "outlet pressure; a convergent nozzle expands no further, and its flow no longer depends on what follows. "
         "State throat_area if it has a divergent part, or let the outlet have the throat pressure. The value is the "
-        "outlet pressure; the margin counts from the throat pressure."
+        "outlet pressure less the throat pressure."
     )
-    limit = samples(piece.path("throat_pressure"))
-    return [Doubt("choked", piece.owner, outlet, text, limit + margin, limit, dimension="pressure")]
+    return [Doubt("choked", piece.owner, outlet, text, margin, dimension="pressure_difference")]
 
 
 KIND = Kind(

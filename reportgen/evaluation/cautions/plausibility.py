@@ -12,6 +12,7 @@ if TYPE_CHECKING:
     from reportgen.balances.doubts import Doubt
 
 __all__ = [
+    "choked_flow",
     "efficiency_above_one",
     "flow_against_its_direction",
     "heat_against_its_direction",
@@ -113,6 +114,16 @@ pressure_from_enthalpy = _passed_on(
     "pressure-from-enthalpy",
     "Pressure of a single phase found from temperature and enthalpy, which hardly depend on it.",
     undecided="always",
+)
+
+
+choked_flow = _passed_on(
+    "P19",
+    "stop",
+    "Choked flow",
+    "conservation of mass and energy along an isentropic path",
+    "choked",
+    "Convergent nozzle whose outlet pressure lies below that at which it reaches the speed of sound.",
 )
 
 
