@@ -95,6 +95,7 @@ class RealFluid:
         density with any of these three; specific_enthalpy with specific_entropy. specific_volume stands for density.
         Temperature with enthalpy, internal energy or (water below 4 °C) entropy, and pressure with density, can have
         several states: these are refused with a list of them, and given by :meth:`roots`.
+        A gas so thin that its energy does not tell its density is refused beside a temperature.
         Pressure and temperature within 1e-9 of saturation are refused, since they do not tell liquid from vapour:
         give the quality.
         """
