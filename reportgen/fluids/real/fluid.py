@@ -148,12 +148,12 @@ class RealFluid:
         InputError : not exactly one of the two given.
         RangeError : below the triple point or above the critical point (``errors="raise"``).
         """
+        check_errors(errors)
         few = self._few.saturation(temperature, pressure)
         if few is not None:
             return few
         if (temperature is None) == (pressure is None):
             raise InputError(Fault("Saturation is fixed by a temperature or a pressure, one of the two."))
-        check_errors(errors)
         given: dict[str, Any] = {"pressure": pressure} if temperature is None else {"temperature": temperature}
         shape, liquid, elements = self._solved(errors, {**given, "quality": 0.0})
         vapour = self._solved(errors, {**given, "quality": 1.0})[1] if self.pseudo_pure else liquid.other_end()

@@ -326,8 +326,8 @@ class ScalarPairs:
     # -- fields read later ---------------------------------------------------------------------------------------------
 
     def fill(self, name: str, values: dict[str, Any], phases: tuple[float, float] | None) -> dict[str, float]:
-        """The field ``name`` [SI] of a solved state and those that come with it, as in ../solution.py; ``phases`` are the
-        densities of liquid and vapour [kg/m3] where they coexist.
+        """The field ``name`` [SI] of a solved state and those that come with it, as in ../solution.py; ``phases`` holds
+        the densities of liquid and vapour [kg/m3] where they coexist.
         """
         t, p, rho, x = values["temperature"], values["pressure"], values["density"], values["quality"]
         if name in CALORIC:
