@@ -229,6 +229,13 @@ _ENTRIES = (
         "efficiency",
         "Second-law efficiency: what a cycle is for over what it is given, both as exergy",
     ),
+    Name("excess_air", r"e_\mathrm{air}", "ratio", "Excess air: oxygen beyond what is needed, in parts of that"),
+    Name("air_ratio", r"\lambda", "ratio", "Air ratio: oxygen that is there over oxygen needed"),
+    Name("lower_heating_value", r"H_\mathrm{l}", "specific_energy", "Lower heating value at 25 °C: water as vapour"),
+    Name("higher_heating_value", r"H_\mathrm{h}", "specific_energy", "Higher heating value at 25 °C: water as liquid"),
+    Name("fuel_heat", r"\dot Q_\mathrm{fuel}", "heat_flow", "Heat of the fuel: flow times lower heating value"),
+    Name("adiabatic_temperature", r"T_\mathrm{ad}", "temperature", "Temperature of the products without heat exchange"),
+    Name("dew_point", r"T_\mathrm{dew}", "temperature", "Temperature at which water begins to condense"),
     Name("closure", r"\delta\dot S_\mathrm{gen}", "entropy_flow", "Sum of the parts minus the balance round the whole"),
     # processes of closed systems
     Name("work", "W", "energy", "Work", "positive out of the system"),
@@ -238,6 +245,7 @@ _ENTRIES = (
     Name("entropy_change", r"\Delta S", "entropy", "Change of entropy", "end less beginning"),
     Name("entropy_of_mixing", r"\Delta S_\mathrm{mix}", "entropy", "Entropy of mixing", "never negative"),
     Name("mole_fraction", "x", "ratio", "Mole fraction, of a species in a mixture"),
+    Name("dry_mole_fraction", r"x_\mathrm{dry}", "ratio", "Mole fraction of a species in a gas without its water"),
     # vessels
     Name("supply_volume", r"V_\mathrm{sup}", "volume", "Volume of the vessel that supplies"),
     Name("back_pressure", r"p_\mathrm{b}", "pressure", "Pressure behind the outlet, absolute"),

@@ -153,7 +153,7 @@ class _FlowBook(Book):
             [*_entropy_terms(piece), Term(-1.0, (carried,))],
         )
         self.lost_work(piece.owner, piece.title)
-        for formula in piece.kind.results(piece):
+        for formula in (*piece.kind.results(piece), *piece.kind.found(piece, self.values)):
             self.formula(formula)
         self._account(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
 

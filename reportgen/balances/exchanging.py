@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
+from reportgen.balances.composition import flow_paths, for_composition, with_flows
 from reportgen.balances.merit import ratio_of
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Formula, token
@@ -36,12 +37,16 @@ class Exchanging:
         self.parallel = piece.choice("arrangement") == PARALLEL
         states = [piece.one(f"{side}_{end}") for side in _SIDES for end in ("inlet", "outlet")]
         names = ("pressure", "specific_enthalpy")
-        #: Pressure and enthalpy of the four states, then flow and pressure loss of both sides.
-        self.inputs = (
+        #: Pressure and enthalpy of the four states, then flow and pressure loss of both sides; last the flows below.
+        self.inputs: tuple[str, ...] = (
             *(f"states.{state}.{name}" for state in states for name in names),
             *(f"states.{piece.one(f'{side}_inlet')}.mass_flow" for side in _SIDES),
             *(piece.path(f"{side}_pressure_drop") for side in _SIDES),
         )
+        self.models = [piece.fluid(piece.one(f"{side}_inlet")) for side in _SIDES]
+        #: Flows from which the composition of a stream follows, if it does.
+        self.flows = tuple(dict.fromkeys(path for model in self.models for path in flow_paths(model)))
+        self.inputs = (*self.inputs, *self.flows)
         self._last: tuple[tuple[Any, ...], Along] | None = None
 
     def along(self, *arrays: Any) -> Along:
@@ -65,10 +70,11 @@ class Exchanging:
         inlets = [(parts[0], parts[1]), (parts[4], parts[5])]
         outlets = [(parts[2], parts[3]), (parts[6], parts[7])]
         streams = []
+        composition = dict(zip(self.flows, parts[12:], strict=True))
         for number, side in enumerate(_SIDES):
             backwards = side == "hot" and not self.parallel
             first, last = (outlets, inlets) if backwards else (inlets, outlets)
-            fluid = self.piece.fluid(self.piece.one(f"{side}_inlet"))
+            fluid = with_flows(self.models[number], composition)
             streams.append(Stream(fluid, Ends(*first[number], *last[number]), parts[8 + number], parts[10 + number]))
         return streams
 
@@ -159,6 +165,9 @@ class Exchanging:
         )
 
     def _effectiveness(self) -> Formula:
+        return for_composition(self.models, self._effectiveness_of)
+
+    def _effectiveness_of(self, hot_model: Any, cold_model: Any) -> Formula:
         piece = self.piece
         inlets = [piece.one(f"{side}_inlet") for side in _SIDES]
         outlets = [piece.one(f"{side}_outlet") for side in _SIDES]
@@ -169,14 +178,13 @@ class Exchanging:
             *(f"states.{state}.temperature" for state in inlets),
         )
         duty, m1, h1, m2, h2, p1, p2, t1, t2 = (token(path) for path in inputs)
-        models = [piece.fluid(state) for state in inlets]
 
         def evaluate(exchanged: Any, *arrays: Any) -> Any:
             import numpy as np
 
             hot_flow, hot_in, cold_flow, cold_in, hot_p, cold_p, hot_t, cold_t = arrays
-            coldest = models[0].at(pressure=hot_p, temperature=cold_t, errors="mask").specific_enthalpy
-            hottest = models[1].at(pressure=cold_p, temperature=hot_t, errors="mask").specific_enthalpy
+            coldest = hot_model.at(pressure=hot_p, temperature=cold_t, errors="mask").specific_enthalpy
+            hottest = cold_model.at(pressure=cold_p, temperature=hot_t, errors="mask").specific_enthalpy
             most = np.fmin(hot_flow * (hot_in - coldest), cold_flow * (hottest - cold_in))
             return ratio_of(exchanged, most)
 

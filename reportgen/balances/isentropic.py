@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from reportgen.balances.composition import for_composition
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Formula, token
 
@@ -12,8 +13,11 @@ __all__ = ["isentropic_change"]
 
 def isentropic_change(piece: Piece) -> Formula:
     """h_s = h(p_2, s_1) [J/kg], the enthalpy that a piece with one inlet and one outlet would reach reversibly."""
+    return for_composition([piece.fluid(piece.one("inlet"))], lambda fluid: _isentropic_change(piece, fluid))
+
+
+def _isentropic_change(piece: Piece, fluid: Any) -> Formula:
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
-    fluid = piece.fluid(inlet)
     pressure, entropy = f"states.{outlet}.pressure", f"states.{inlet}.specific_entropy"
 
     def enthalpy(outlet_pressure: Any, inlet_entropy: Any) -> Any:

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from reportgen.balances.composition import for_composition
 from reportgen.balances.kinds import Parameter
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Balance, Formula, Relation, Term, token
@@ -26,6 +27,10 @@ ISOTHERMAL_REPORTS = ("isothermal_work",)
 
 def isothermal_work(owner: str, title: str, fluid: Any, fluid_id: str, inlet: str, outlet: str) -> Formula:
     """w_T [J/kg] from the state ``inlet`` to the pressure of the state ``outlet``; ``owner`` gets the value."""
+    return for_composition([fluid], lambda model: _isothermal_work(owner, title, model, fluid_id, inlet, outlet))
+
+
+def _isothermal_work(owner: str, title: str, fluid: Any, fluid_id: str, inlet: str, outlet: str) -> Formula:
     names = ("temperature", "specific_enthalpy", "specific_entropy")
     inputs = (f"states.{outlet}.pressure", *(f"states.{inlet}.{name}" for name in names))
     p2, t1, h1, s1 = (token(path) for path in inputs)

@@ -113,6 +113,11 @@ class Kind:
     path_taken : of a process, what is assumed of the states it passes, to follow its title; empty: nothing.
     checks : what is wrong with a piece whose ports and fluids are known.
     mixes : whether a process makes the fluid of its end state by mixing ideal gases.
+    burns : whether what leaves is another fluid than what enters, whose composition follows from the flows that enter.
+    found : results whose list depends on the values of the base case, such as the species of a gas.
+    starts : values to begin a search from, by path; called with the piece, a function from path to what is known (NaN
+        where nothing is) and the oxygen beyond what is needed to try.
+    species : species whose ``mole_fraction`` may be reported.
     """
 
     name: str
@@ -143,6 +148,10 @@ class Kind:
     path_taken: str = ""
     checks: Callable[[Piece], Sequence[Fault]] = lambda piece: ()
     mixes: Callable[[Piece], bool] = lambda piece: False
+    burns: bool = False
+    found: Callable[[Piece, Mapping[str, Any]], Sequence[Formula]] = lambda piece, values: ()
+    starts: Callable[[Piece, Callable[[str], float], float], Mapping[str, float]] = lambda piece, known, excess: {}
+    species: tuple[str, ...] = ()
 
     def port(self, name: str) -> Port:
         """The port of that name; KeyError when the kind has none."""

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Any
 
+from reportgen.balances.composition import is_made
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Formula, token
 
@@ -73,6 +74,8 @@ def entropy_number_by_power(piece: Piece, reference: str, name: str) -> Formula:
 def entropy_number_by_flow(piece: Piece, state: str) -> Formula:
     """N_s = Ṡgen / (ṁ R), with the specific gas constant R of the fluid."""
     flow, generated = f"states.{state}.mass_flow", piece.path("entropy_generation")
+    if is_made(piece.fluid(state)):
+        return _entropy_number_by_volume(piece, state)
     constant = float(piece.fluid(state).gas_constant)
     return Formula(
         piece.path("entropy_generation_number"),
@@ -86,6 +89,26 @@ def entropy_number_by_flow(piece: Piece, state: str) -> Formula:
         lambda generation, mass: ratio_of(generation, mass * constant),
         rf"\frac{{{token(generated)}}}{{{token(flow)}\,R}}",
         fluids=(piece.fluid_id(state),),
+        reason="there is no flow",
+    )
+
+
+def _entropy_number_by_volume(piece: Piece, state: str) -> Formula:
+    """N_s = Ṡgen T/(ṁ p v), with p v/T for R of a gas whose composition follows from flows."""
+    names = ("mass_flow", "pressure", "specific_volume", "temperature")
+    flow, pressure, volume, temperature = (f"states.{state}.{name}" for name in names)
+    generated = piece.path("entropy_generation")
+    return Formula(
+        piece.path("entropy_generation_number"),
+        piece.owner,
+        "Entropy generation number",
+        f"{piece.title}: the entropy generation number is the entropy generated in parts of flow times gas constant, "
+        f"which is p v/T of state {state}.",
+        "definition for this kind of equipment",
+        piece.path("entropy_generation_number"),
+        (generated, flow, pressure, volume, temperature),
+        lambda generation, mass, p, v, t: ratio_of(generation * t, mass * p * v),
+        rf"\frac{{{token(generated)}\,{token(temperature)}}}{{{token(flow)}\,{token(pressure)}\,{token(volume)}}}",
         reason="there is no flow",
     )
 

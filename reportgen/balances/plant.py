@@ -164,6 +164,9 @@ def balance_groups(piece: Piece) -> list[tuple[tuple[str, ...], tuple[str, ...]]
 
 
 def _stream_groups(piece: Piece) -> list[StreamGroup]:
+    if piece.kind.burns:  # elements are kept, substances are not
+        outlet = piece.streams("out")
+        return [StreamGroup("", piece.fluid_id(outlet[0]), piece.fluid(outlet[0]), piece.streams("in"), outlet)]
     groups: list[tuple[str, str, Any, list[str], list[str]]] = []
     for port in piece.kind.ports:
         for state in piece.states(port.name):
@@ -254,6 +257,7 @@ def pieces_of(plant: Plant, given: frozenset[str]) -> dict[str, Piece]:
         faults += found
         if not found and not faults:
             faults += conflicts(piece.title, piece.owner, _stream_groups(piece))
+            faults += piece.kind.checks(piece)
         pieces[tag] = piece
     faults += _trains(plant)
     if not faults:

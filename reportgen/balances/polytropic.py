@@ -25,6 +25,7 @@ from collections.abc import Callable
 from functools import cache
 from typing import Any
 
+from reportgen.balances.composition import for_composition, is_made
 from reportgen.balances.kinds import Parameter
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Formula, Inverse, token
@@ -124,6 +125,13 @@ def _end_entropy(fluid: Any, factor: Callable[[Any], Any]) -> Callable[[Any, Any
     return ideal if fluid.kind == "ideal-gas" else real
 
 
+def _constant(fluid: Any) -> str:
+    """The specific gas constant in words."""
+    if is_made(fluid):
+        return "R that of its composition"
+    return f"R = {float(fluid.gas_constant):.6g} J/(kg K)"
+
+
 def _ends(piece: Piece) -> tuple[str, str, str, str]:
     """Paths of pressure and entropy of inlet and outlet."""
     inlet, outlet = (f"states.{piece.one(port)}." for port in ("inlet", "outlet"))
@@ -133,8 +141,12 @@ def _ends(piece: Piece) -> tuple[str, str, str, str]:
 
 def polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
     """The polytropic efficiency from the end states, and either entropy from it."""
+    fluid = piece.fluid(piece.one("inlet"))
+    return for_composition([fluid], lambda model: _polytropic_relation(piece, absorbs, model))
+
+
+def _polytropic_relation(piece: Piece, absorbs: bool, fluid: Any) -> Formula:
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
-    fluid = piece.fluid(inlet)
     integral = _path_integral(fluid)
     leave = _end_entropy(fluid, (lambda eta: 1.0 / eta - 1.0) if absorbs else (lambda eta: eta - 1.0))
     inputs = _ends(piece)
@@ -164,7 +176,7 @@ def polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
     }
     top, bottom = (whole, rf"{whole} + {s2} - {s1}") if absorbs else (rf"{whole} + {s2} - {s1}", whole)
     manner = (
-        f"exact for an ideal gas, R = {float(fluid.gas_constant):.6g} J/(kg K)"
+        f"exact for an ideal gas, {_constant(fluid)}"
         if is_ideal
         else "with the integral of v/T over pressure, given with the figures of merit"
     )
@@ -188,7 +200,8 @@ def polytropic_results(piece: Piece, absorbs: bool) -> list[Formula]:
     """I = ∫ (v/T) dp of a real fluid, by which the efficiency can be checked; and what the end states alone give."""
     inlet = piece.one("inlet")
     fluid = piece.fluid(inlet)
-    found = [] if fluid.kind == "ideal-gas" else [_integral_result(piece, fluid)]
+    integral = for_composition([fluid], lambda model: _integral_result(piece, model))
+    found = [] if fluid.kind == "ideal-gas" else [integral]
     return [*found, _end_point_efficiency(piece, absorbs), _end_point_difference(piece)]
 
 

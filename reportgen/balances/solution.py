@@ -188,7 +188,9 @@ class Solution:
         return found
 
     def _curve(self, tag: str, stretch: Stretch, points: int) -> Curve:
-        fluid = self.plant.fluids[self.plant.states[stretch.start]]
+        fluid_id = self.plant.states[stretch.start]
+        base = {path: self.values[path][:1] for path in self.mixtures.masses(fluid_id)}
+        fluid = self.mixtures.model(fluid_id, base)
         names = ("pressure", "temperature", "specific_volume", "specific_enthalpy", "specific_entropy")
         first, last = (
             {name: float(self.values[f"states.{state}.{name}"][0]) for name in names}

@@ -154,7 +154,9 @@ class _Run:
 
     def _is_ambiguous(self, state: str, pair: tuple[str, str]) -> bool:
         """Whether a known pair gives no one state in the base case: then the nearest in the plant is looked for."""
-        fluid = self.plant.fluids[self.plant.states[state]]
+        fluid_id = self.plant.states[state]
+        base = {path: self.values[path][:1] for path in self.solution.mixtures.masses(fluid_id)}
+        fluid = self.solution.mixtures.model(fluid_id, base)
         inputs = {name: self.values[f"states.{state}.{name}"][:1] for name in pair}
         if not np.isfinite(list(inputs.values())).all():
             return False

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from reportgen.balances.composition import for_composition
 from reportgen.balances.kinds import Parameter
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Balance, Equation, Formula, Inverse, Term, token
@@ -86,8 +87,12 @@ def _throat_inputs(piece: Piece) -> tuple[str, ...]:
 
 def throat_relation(piece: Piece) -> Formula:
     """A_t = ṁ/max(ρ V), solvable for the flow too."""
+    return for_composition([piece.fluid(piece.one("inlet"))], lambda fluid: _throat_relation(piece, fluid))
+
+
+def _throat_relation(piece: Piece, fluid: Any) -> Formula:
     inlet = piece.one("inlet")
-    fluid, flow, area = piece.fluid(inlet), f"states.{inlet}.mass_flow", piece.path("throat_area")
+    flow, area = f"states.{inlet}.mass_flow", piece.path("throat_area")
     inputs = _throat_inputs(piece)
 
     def flux(*arrays: Any) -> Any:
@@ -121,8 +126,11 @@ def throat_relation(piece: Piece) -> Formula:
 
 def throat_result(piece: Piece) -> Formula:
     """Pressure at the throat [Pa]."""
+    return for_composition([piece.fluid(piece.one("inlet"))], lambda fluid: _throat_result(piece, fluid))
+
+
+def _throat_result(piece: Piece, fluid: Any) -> Formula:
     inlet = piece.one("inlet")
-    fluid = piece.fluid(inlet)
     inputs = _throat_inputs(piece)
 
     def pressure(*arrays: Any) -> Any:

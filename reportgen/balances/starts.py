@@ -44,20 +44,21 @@ _RANDOM, _SPREAD_OF_PRESSURE, _SPREAD_OF_ENTHALPY = 8, 0.6, 1.2e5
 @dataclass(frozen=True)
 class _Attempt:
     """Scale of the pressures, offset of the enthalpies [J/kg], temperature in parts of the surroundings' (0: that of
-    states nearby) and ratio of the pressures across machines and valves.
+    states nearby), ratio of the pressures across machines and valves, and oxygen beyond what a fire needs.
     """
 
     pressures: float = 1.0
     enthalpies: float = 0.0
     temperature: float = 0.0
     ratio: float = _RATIO
+    excess: float = 0.3
 
 
 _ATTEMPTS = (
     _Attempt(),
-    _Attempt(ratio=1.0),
-    _Attempt(enthalpies=1.0e5),
-    _Attempt(enthalpies=-1.0e5),
+    _Attempt(ratio=1.0, excess=1.5),
+    _Attempt(enthalpies=1.0e5, excess=0.05),
+    _Attempt(enthalpies=-1.0e5, excess=5.0),
     _Attempt(pressures=0.5),
     _Attempt(pressures=2.0, ratio=4.0),
     _Attempt(temperature=1.0),
@@ -75,9 +76,10 @@ class Starts:
     def __init__(self, plant: Plant, pieces: Iterable[Piece], values: Mapping[str, Any]) -> None:
         self._plant = plant
         self._values = values
+        self._pieces = tuple(pieces)
         #: State to (state at another port of the same piece, +1 when the pressure is higher there, -1 when lower).
         self._neighbours: dict[str, list[tuple[str, int]]] = {state: [] for state in plant.states}
-        for piece in pieces:
+        for piece in self._pieces:
             ends = piece.connections()
             for _, direction, state in ends:
                 for _, other_direction, other in ends:
@@ -117,6 +119,9 @@ class Starts:
                 found[path] = enthalpy + attempt.enthalpies + _APART * (number % 7)
             else:
                 found[path] = self._nearest(state, name, 1.0)
+        for piece in self._pieces:
+            better = piece.kind.starts(piece, lambda path: self._base(path, np.nan), attempt.excess)
+            found.update((path, value) for path, value in better.items() if path in found)
         return found
 
     @staticmethod

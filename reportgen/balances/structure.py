@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Container, Iterable, Iterator, Mapping
 
+from reportgen.balances.composition import is_made
 from reportgen.balances.freedom import may_be_given, refuse_excess, refuse_ill_posed, refuse_lack
 from reportgen.balances.matching import Matching, blocks_in_order
 from reportgen.balances.network import (
@@ -18,10 +19,12 @@ from reportgen.balances.network import (
     owner_of,
 )
 from reportgen.balances.plant import Piece, Plant
-from reportgen.balances.relations import Balance, Default, Relation, Term
+from reportgen.balances.relations import Balance, Default, Formula, Inverse, Relation, Term, token
 from reportgen.errors import Fault, InputError
 
 __all__ = ["all_relations", "build_network"]
+
+MOLAR_GAS_CONSTANT = 8.31446261815324  # J/(mol*K), exact by the definition of the SI of 2019
 
 
 def state_properties(state: str, known: Container[str], flows: Iterable[str]) -> list[str]:
@@ -33,17 +36,46 @@ def state_properties(state: str, known: Container[str], flows: Iterable[str]) ->
     return wanted
 
 
-def _flow_relations(plant: Plant, state: str, flows: Iterable[str]) -> list[Balance]:
+def _amount_of_gas(state: str) -> Formula:
+    """ṅ = p V̇/(R T), of an ideal gas whose molar mass follows from its flows."""
+    names = ("mass_flow", "pressure", "temperature", "density")
+    mass, pressure, temperature, density = (f"states.{state}.{name}" for name in names)
+    amount = f"states.{state}.molar_flow"
+    volume = rf"{token(mass)}\,{token(pressure)}"
+    below = rf"R\,{token(temperature)}\,{token(density)}"
+    return Formula(
+        f"{amount}.definition",
+        f"states.{state}",
+        "Molar flow",
+        f"State {state}: the molar flow of an ideal gas from its volume flow, R = {MOLAR_GAS_CONSTANT:.9g} J/(mol K).",
+        "law of ideal gases",
+        amount,
+        (mass, pressure, temperature, density),
+        lambda m, p, t, rho: m * p / (MOLAR_GAS_CONSTANT * t * rho),
+        rf"\frac{{{volume}}}{{{below}}}",
+        {
+            mass: Inverse(
+                lambda n, p, t, rho: n * MOLAR_GAS_CONSTANT * t * rho / p,
+                rf"\frac{{{token(amount)}\,{below}}}{{{token(pressure)}}}",
+            )
+        },
+        solvable_inputs=(mass,),
+    )
+
+
+def _flow_relations(plant: Plant, state: str, flows: Iterable[str]) -> list[Relation]:
     """ṁ = ρ V̇ and ṁ = M ṅ for the flows that are given."""
     mass, owner = f"states.{state}.mass_flow", f"states.{state}"
-    found = []
+    found: list[Relation] = []
     if "volume_flow" in flows:
         volume = f"states.{state}.volume_flow"
         terms = (Term(1.0, (f"states.{state}.density", volume)), Term(-1.0, (mass,)))
         sentence = f"State {state}: the mass flow is the density times the volume flow."
         key, basis = f"{owner}.volume_flow.definition", "definition of density"
         found.append(Balance(key, owner, "Volume flow", sentence, basis, terms))
-    if "molar_flow" in flows:
+    if "molar_flow" in flows and is_made(plant.fluids[plant.states[state]]):
+        found.append(_amount_of_gas(state))
+    elif "molar_flow" in flows:
         molar_mass = float(plant.fluids[plant.states[state]].molar_mass)
         terms = (Term(molar_mass, (f"states.{state}.molar_flow",), "M"), Term(-1.0, (mass,)))
         sentence = (
@@ -128,6 +160,8 @@ def all_relations(
     of_pieces: list[Relation] = [relation for piece in pieces.values() for relation in piece.kind.relations(piece)]
     of_pieces += [_volume(state) for state in plant.states if state in closed]
     known = given.union(path for relation in of_pieces for path in relation.variables)
+    made = (state for state, fluid in plant.states.items() if is_made(plant.fluids[fluid]))
+    known = known.union(f"states.{state}.density" for state in made if f"states.{state}.molar_flow" in given)
     relations: list[AnyRelation] = []
     for state, fluid in plant.states.items():
         flows = [name for name in FLOWS if f"states.{state}.{name}" in given]

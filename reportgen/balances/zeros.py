@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Any, NamedTuple
 
+from reportgen.balances.composition import is_made
 from reportgen.errors import Fault
 
 __all__ = ["StreamGroup", "conflicts", "same_zero"]
@@ -38,6 +39,8 @@ def same_zero(first: Any, second: Any) -> bool:
     The equations may differ: third-law water is the same as an ideal gas and by its equation of state. A constant
     heat capacity is not the same as a variable one, whose enthalpy it leaves away from the reference point.
     """
+    if is_made(first) or is_made(second):
+        return first is second  # the composition of one follows from its own flows
     return first is second or (
         _same_substance(first, second)
         and first.entropy_zero_name == second.entropy_zero_name

@@ -37,7 +37,14 @@ from reportgen.evaluation.evaluated import ClosedProcess, EvaluatedPlant
 from reportgen.evaluation.exchanger_profile import exchanger_figures
 from reportgen.evaluation.figures import bar_figures, temperature_entropy_figures
 from reportgen.evaluation.fluid_assumptions import fluid_assumptions
-from reportgen.evaluation.models import placed, plant_of, property_model, property_models, real_counterpart
+from reportgen.evaluation.models import (
+    placed,
+    plant_of,
+    property_model,
+    property_models,
+    real_counterpart,
+    solved_models,
+)
 from reportgen.evaluation.provenance import provenance
 from reportgen.evaluation.results import relations_section, values_section
 from reportgen.evaluation.sampling import SampleAxis, sample_axis
@@ -89,6 +96,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
     except ReportgenError as error:
         told = sized(error, lambda givens: balances.solve(definition, givens), axis, Display(calculation.units))
         raise placed(calculation, told, models) from error
+    models = solved_models(calculation, models, solution)
     plant = _evaluated(calculation, models, axis, solution)
     plant = replace(plant, cross_checks=cross_checks(plant, calculation.states, seconds))
     totals = counted_pieces(plant, plant.alternatives)

@@ -108,6 +108,10 @@ def _claim(specification: FluidSpec) -> str:
             return f"follows the cubic equation of state of {specification.equation}"
         case "incompressible":
             return f"is incompressible: its density is {specification.density:g} kg/m3 in every state"
+    if specification.products_of is not None and specification.chemistry == "complete":
+        return "is an ideal gas, burnt completely: no dissociation, no nitrogen oxides"
+    if specification.products_of is not None:
+        return "is an ideal gas at chemical equilibrium in every state, also while it cools"
     return "is an ideal gas"
 
 

@@ -49,6 +49,9 @@ def _number(label: str, value: float, dimension: str) -> dict[str, Any]:
 
 
 def _ideal_gas(specification: FluidSpec) -> Iterator[dict[str, Any]]:
+    if specification.products_of is not None:
+        yield _words("products of", specification.products_of)
+        yield _words("chemistry", specification.chemistry)
     if specification.heat_capacity is not None:
         yield _number("constant heat capacity", specification.heat_capacity, "specific_entropy")
 

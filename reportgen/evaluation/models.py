@@ -21,7 +21,16 @@ from reportgen.spec.calculation import HeatPolynomial, HeatTable
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Calculation, EquipmentSpec, FluidSpec
 
-__all__ = ["fluid_name", "located", "placed", "plant_of", "property_model", "property_models", "real_counterpart"]
+__all__ = [
+    "fluid_name",
+    "located",
+    "placed",
+    "plant_of",
+    "property_model",
+    "property_models",
+    "real_counterpart",
+    "solved_models",
+]
 
 
 def property_model(specification: FluidSpec, heat_capacity: float | None = None) -> Any:
@@ -94,8 +103,12 @@ def _incompressible(specification: FluidSpec) -> Any:
 
 def property_models(calculation: Calculation) -> dict[str, Any]:
     """Property models of all fluids. Raises InputError with the place of every fluid that cannot be made."""
-    models, faults = {}, []
+    models: dict[str, Any] = {}
+    faults: list[Fault] = []
+    made = {name: each for name, each in calculation.fluids.items() if each.products_of is not None}
     for identifier, specification in calculation.fluids.items():
+        if identifier in made:
+            continue
         try:
             models[identifier] = _titled(identifier, property_model(specification, specification.heat_capacity))
         except ReportgenError as error:
@@ -103,7 +116,60 @@ def property_models(calculation: Calculation) -> dict[str, Any]:
             faults += [located(calculation, replace(fault, path=fault.path or path)) for fault in error.faults]
     if faults:
         raise InputError(faults)
-    return models
+    _add_products(calculation, models, made)
+    return {identifier: models[identifier] for identifier in calculation.fluids}
+
+
+def _add_products(calculation: Calculation, models: dict[str, Any], made: Mapping[str, FluidSpec]) -> None:
+    """Add the gases of combustors, each after those of the combustors that feed its own."""
+    from reportgen.fluids.reacting.product_gas import ProductGas
+
+    pending = dict(made)
+    while pending:
+        ready = {name: each for name, each in pending.items() if not _feeds(calculation, name, each) & set(pending)}
+        if not ready:
+            first = next(iter(pending))
+            fault = Fault(
+                "The combustors feed each other, so that no composition can be told before the others.",
+                f"fluids.{first}.products_of",
+                found=", ".join(pending),
+                expected="combustors in a row",
+            )
+            raise InputError(located(calculation, fault))
+        faults = []
+        for name, specification in ready.items():
+            tag = str(specification.products_of)
+            entering = {state: calculation.states[state].fluid for state in calculation.equipment[tag].ports["inlets"]}
+            # what comes back from its own outlet brings nothing new
+            streams = {state: models[fluid] for state, fluid in entering.items() if fluid != name}
+            title = f"{name} (products of {tag})"
+            try:
+                models[name] = ProductGas(title, streams, specification.chemistry)
+            except ReportgenError as error:
+                path = f"equipment.{tag}.inlets"
+                faults += [located(calculation, replace(fault, path=fault.path or path)) for fault in error.faults]
+            del pending[name]
+        if faults:
+            raise InputError(faults)
+
+
+def _feeds(calculation: Calculation, name: str, specification: FluidSpec) -> set[str]:
+    """Fluids other than its own that enter the combustor of a fluid."""
+    inlets = calculation.equipment[str(specification.products_of)].ports["inlets"]
+    return {calculation.states[state].fluid for state in inlets} - {name}
+
+
+def solved_models(calculation: Calculation, models: Mapping[str, Any], solution: Any) -> dict[str, Any]:
+    """The models with the gases of combustors as their composition came out, base case, told as at the outlet."""
+    found = dict(models)
+    for name, specification in calculation.fluids.items():
+        if specification.products_of is None:
+            continue
+        base = {path: solution.values[path][:1] for path in solution.mixtures.masses(name)}
+        outlet = calculation.equipment[specification.products_of].ports["outlet"][0]
+        point = (float(solution.values[f"states.{outlet}.{key}"][0]) for key in ("temperature", "pressure"))
+        found[name] = solution.mixtures.model(name, base).told_at(*point)
+    return found
 
 
 def _titled(identifier: str, model: Any) -> Any:
@@ -151,7 +217,7 @@ def real_counterpart(model: Any) -> Any:
 
     It counts from the zero of the ideal gases where that can be had, so that given enthalpies keep their meaning.
     """
-    if model.kind == "incompressible" and model.phase != "liquid":
+    if (model.kind == "incompressible" and model.phase != "liquid") or getattr(model, "flows", ()):
         return None
     try:
         published = crosscheck.second_model(model, "real-fluid")

@@ -108,7 +108,8 @@ class FluidSpec:
 
     ``heat_capacity`` [J/(kg K)] is None for a variable one; ``composition`` holds fractions [1]; ``volume_translation``
     [m3/mol] by substance; ``density`` [kg/m3], ``specific_heat`` [J/(kg K)] if constant; temperatures in K.
-    ``second_sources`` are those of its states that name none of their own.
+    ``second_sources`` are those of its states that name none of their own. ``products_of`` is the tag of the combustor
+    whose products it is, ``chemistry`` how these come about.
     """
 
     id: str
@@ -129,6 +130,8 @@ class FluidSpec:
     temperature_range: tuple[float, float] | None = None
     source: str | None = None
     second_sources: tuple[SecondSource, ...] = ()
+    products_of: str | None = None
+    chemistry: Literal["complete", "equilibrium"] = "complete"
 
 
 @dataclass(frozen=True)

@@ -12,7 +12,7 @@ from collections.abc import Mapping
 from reportgen.errors import InputError
 from reportgen.quantities import Quantity
 from reportgen.spec.fields import QuantityOf, shown
-from reportgen.spec.fluid_tables import check_fluids
+from reportgen.spec.fluid_tables import check_fluids, check_products
 from reportgen.spec.network import check_network
 from reportgen.spec.paths import input_locations, result_dimensions
 from reportgen.spec.process_tables import check_processes
@@ -37,6 +37,7 @@ def check(source: Source, context: Mapping[str, float]) -> None:
     check_states(source, context)
     check_second_sources(source)
     check_network(source)
+    check_products(source)
     check_processes(source)
     check_vessels(source)
     _check_limits(source, context)

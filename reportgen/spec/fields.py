@@ -97,6 +97,7 @@ _BOUNDS: dict[str, Bounds] = {
     "subcooling": Bounds(0.0, remark="Above saturation, give superheat."),
     "pressure_drop": Bounds(0.0, remark="The drop is counted from inlet to outlet."),
     "split_fraction": Bounds(0.0, 1.0),
+    "excess_air": Bounds(-0.99, 1e3, 'An excess of 20 percent is written "20 %" or "0.2".'),
     "pressure_ratio": Bounds(1.0, remark="The ratio is that of the higher to the lower pressure."),
     "area": Bounds(0.0),
     "diameter": Bounds(0.0),

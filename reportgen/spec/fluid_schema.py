@@ -7,7 +7,7 @@ from typing import Annotated, Any, Literal, get_args
 from pydantic import ConfigDict, Discriminator, Field, Tag
 
 from reportgen.quantities import Quantity, usual_units
-from reportgen.spec.fields import Bounds, QuantityOf, ShortText
+from reportgen.spec.fields import Bounds, Identifier, QuantityOf, ShortText
 from reportgen.spec.table import Table, with_unit
 
 __all__ = [
@@ -79,6 +79,12 @@ _OF_FLUID = "the states of this fluid are"
 # --- composition ----------------------------------------------------------------------------------------------------
 
 _Fraction = Annotated[Quantity, QuantityOf(("ratio",), Bounds(0.0, 1.0), certain=True)]
+_IDEAL_GAS = ConfigDict(
+    json_schema_extra={
+        "oneOf": [{"required": [key]} for key in ("substance", "composition", "products_of")],
+        "dependentRequired": {"composition": ["basis"], "basis": ["composition"], "chemistry": ["products_of"]},
+    }
+)
 _SUBSTANCE_OR_COMPOSITION = ConfigDict(
     json_schema_extra={
         "oneOf": [{"required": ["substance"]}, {"required": ["composition"]}],
@@ -100,9 +106,17 @@ class _ComposedTable(Table):
 class IdealGasTable(_ComposedTable):
     """A gas with p v = R T."""
 
-    model_config = _SUBSTANCE_OR_COMPOSITION
+    model_config = _IDEAL_GAS
 
     model: Literal["ideal-gas"] = Field(description="Property model: ideal-gas.")
+    products_of: Identifier | None = Field(
+        None, description="Tag of the combustor that makes this gas; its composition follows from the flows there."
+    )
+    chemistry: Literal["complete", "equilibrium"] | None = Field(
+        None,
+        description="complete: all burns to CO2, H2O, SO2 and HCl, without nitrogen oxides, and needs oxygen enough; "
+        "equilibrium: the composition of least Gibbs energy at every state. If not given: complete.",
+    )
     heat_capacity: (
         Annotated[Quantity | str, QuantityOf(("specific_entropy",), certain=True, words=("variable",))] | None
     ) = Field(

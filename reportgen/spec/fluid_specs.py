@@ -32,6 +32,7 @@ def fluid_spec(source: Source, name: str, table: Any) -> FluidSpec:
         case "ideal-gas":
             constant = isinstance(table.heat_capacity, Quantity)
             common |= _composed(table) | {"heat_capacity": table.heat_capacity.value if constant else None}
+            common |= {"products_of": table.products_of, "chemistry": table.chemistry or "complete"}
         case "cubic":
             common |= _composed(table) | _cubic(table)
         case "incompressible":

@@ -13,9 +13,11 @@ from reportgen.spec.calculation import FluidSpec
 from reportgen.spec.fields import QuantityOf, shown
 from reportgen.spec.fluid_schema import FluidTable
 from reportgen.spec.fluid_specs import fluid_spec
+from reportgen.spec.paths import kind_of
 from reportgen.spec.source import Location, Source
+from reportgen.spec.states import fluid_of
 
-__all__ = ["FluidCheck", "ask_the_models", "check_fluids"]
+__all__ = ["FluidCheck", "ask_the_models", "check_fluids", "check_products"]
 
 #: Makes the property model of a fluid, or raises InputError.
 FluidCheck = Callable[[FluidSpec], object]
@@ -28,12 +30,80 @@ def check_fluids(source: Source, context: Mapping[str, float]) -> None:
     """Substance or composition, fractions that add up, constants of substances that are there, ranges in order."""
     for fluid in source.table("fluids"):
         model = source.text("fluids", fluid, "model")
-        if model in _COMPOSED:
+        if model in _COMPOSED and not _is_product(source, fluid):
             _check_composition(source, fluid, context)
         if model == "cubic":
             _check_cubic(source, fluid)
         if model == "incompressible":
             _check_incompressible(source, fluid, context)
+
+
+# --- products of a combustor ----------------------------------------------------------------------------------------
+
+
+#: What is said of a gas of given composition only.
+_OF_GIVEN = ("substance", "composition", "basis", "heat_capacity", "second_source")
+
+
+def _is_product(source: Source, fluid: str) -> bool:
+    """Whether a fluid is made by a combustor; then what it says of itself is checked."""
+    location = ("fluids", fluid)
+    table = source.table(*location)
+    if "products_of" not in table:
+        if "chemistry" in table:
+            source.report(
+                (*location, "chemistry"),
+                "Only the products of a combustor have a chemistry.",
+                at="key",
+                found="chemistry",
+                expected="products_of with the tag of the combustor",
+            )
+        return False
+    if source.text(*location, "model") != "ideal-gas":
+        return False  # the key is refused
+    for key in _OF_GIVEN:
+        if key in table:
+            source.report(
+                (*location, key),
+                "The composition of the products follows from the flows into the combustor.",
+                at="key",
+                found=key,
+                expected="products_of and chemistry only",
+            )
+    tag = source.text(*location, "products_of")
+    kind = kind_of(source, tag) if tag is not None else None
+    if tag is None or not source.names_are_complete or source.is_broken(("equipment", tag)):
+        return True
+    named = [name for name in source.table("equipment") if (each := kind_of(source, name)) is not None and each.burns]
+    if tag not in source.table("equipment") or (kind is not None and not kind.burns):
+        source.report(
+            (*location, "products_of"),
+            "There is no combustor of this tag.",
+            found=shown(tag),
+            expected=" or ".join(f'"{name}"' for name in named) or 'the tag of a piece with kind = "combustor"',
+            hint=source.hint(tag, named),
+        )
+    return True
+
+
+def check_products(source: Source) -> None:
+    """The outlet of a combustor is of a fluid that names it, and of none of the fluids that enter elsewhere."""
+    for tag in source.table("equipment"):
+        kind = kind_of(source, tag)
+        outlets = source.texts("equipment", tag, "outlet")
+        if kind is None or not kind.burns or len(outlets) != 1:
+            continue
+        location, state = outlets[0]
+        fluid = fluid_of(source, state)
+        if fluid is None or fluid not in source.table("fluids"):
+            continue
+        if source.text("fluids", fluid, "products_of") != tag and source.node(("fluids", fluid)) is not None:
+            source.report(
+                location,
+                f"The state is of fluid {fluid}, which is not the product of this combustor.",
+                found=shown(state),
+                expected=f'a state of a fluid with model = "ideal-gas" and products_of = "{tag}"',
+            )
 
 
 # --- composition ----------------------------------------------------------------------------------------------------
@@ -199,7 +269,7 @@ def ask_the_models(source: Source, context: Mapping[str, float], check_fluid: Fl
     reader: TypeAdapter[Any] = TypeAdapter(FluidTable)
     at_fault = {(fault.path or "").split(".")[1] for fault in source.faults if (fault.path or "").startswith("fluids.")}
     for name, node in source.table("fluids").items():
-        if name in at_fault or source.crowded:
+        if name in at_fault or source.crowded or "products_of" in node.table:
             continue
         try:
             check_fluid(fluid_spec(source, name, reader.validate_python(node.plain(), context=dict(context))))

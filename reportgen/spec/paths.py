@@ -73,10 +73,10 @@ _PROCESS_RESULTS = (
 )
 #: Of a sum over processes.
 _CLOSED_RESULTS = (*_PROCESS_RESULTS, "closure")
-#: Of a sum over vessels.
-_OF_VESSELS = ("heat", "entropy_change", "entropy_with_heat", "entropy_generation", "lost_work")
 #: What a process reports for each species of a mixture.
 _OF_SPECIES = "mole_fraction"
+#: What a combustor reports for each species of its products.
+_OF_PRODUCTS = ("mole_fraction", "dry_mole_fraction")
 _SURROUNDINGS = ("temperature", "pressure")
 #: Tables whose entries have a kind, with the registry of their kinds.
 _REGISTRIES = {"equipment": kinds, "processes": process_kinds, "vessels": vessel_kinds}
@@ -150,8 +150,6 @@ def _names_of_whole(source: Source, whole: str) -> dict[str, tuple[str]]:
     if whole == "surroundings":
         return {name: (NAMES[name].dimension,) for name in _SURROUNDINGS}
     flows, processes = bool(source.table("equipment")), bool(source.table("processes"))
-    if whole == "total" and not flows and not processes and len(source.table("vessels")) > 1:
-        return _amounts(_OF_VESSELS)
     if whole == "total" and (flows or not processes):
         return {name: (NAMES[name].dimension,) for name in _TOTAL_RESULTS}
     return _amounts(_CLOSED_RESULTS) if processes and (whole == "total") is not flows else {}
@@ -196,6 +194,7 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
         reports = [name for name in kind.reports if name != _OF_SPECIES]
         names |= _amounts(reports) if closed else {name: (NAMES[name].dimension,) for name in reports}
         names |= _shares(source, owner) if _OF_SPECIES in kind.reports else {}
+        names |= {f"species.{key}.{name}": (NAMES[name].dimension,) for key in kind.species for name in _OF_PRODUCTS}
         for group in kind.groups:
             node = source.node((section, owner, group.name))
             if group.single and node is not None:

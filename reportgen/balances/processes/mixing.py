@@ -66,7 +66,7 @@ class Mixtures:
             raise InputError(faults)
 
     def masses(self, fluid: str) -> tuple[str, ...]:
-        """Paths of the masses, or mass flows, that the composition of a fluid follows from; none for any other fluid."""
+        """Paths of the masses or mass flows that the composition of a fluid follows from; none for any other."""
         if fluid not in self.blends:
             return flow_paths(self._plant.fluids[fluid])
         gases = self.blends[fluid].gases

@@ -32,12 +32,14 @@ def water_condenses(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
     """
     for state in plant.state_fluids:
         fluid: Any = plant.fluid_of(state)
-        if fluid.kind != "ideal-gas":
+        if fluid.kind not in ("ideal-gas", "reacting-gas"):
             continue
         from reportgen.fluids.gases import condensation
 
-        share = condensation.water_fraction(fluid)
         temperature, pressure = (plant.samples(f"states.{state}.{name}") for name in ("temperature", "pressure"))
+        if hasattr(fluid, "frozen"):
+            fluid = fluid.frozen(float(temperature[0]), float(pressure[0]))
+        share = condensation.water_fraction(fluid)
         if not share or not np.isfinite(temperature[0] * pressure[0]):
             continue
         ratio, dew_point = condensation.water_saturation(fluid, temperature, pressure)

@@ -107,7 +107,7 @@ class ProductGas:
         return {name: max(more, 1.0) if each.free > each.needed else 1.0 for name, each in self._contents.items()}
 
     def fractions(self, temperature: ArrayLike, pressure: ArrayLike) -> dict[str, Array]:
-        """Mole fractions [1] by species key at T [K] and p [Pa], arrays of the flows' shape; NaN where there is none."""
+        """Mole fractions [1] by species at T [K] and p [Pa], arrays of the flows' shape; NaN where there is no gas."""
         amounts = self._gas.amounts(shares=self._shares, errors="mask", temperature=temperature, pressure=pressure)
         return self._gas.mole_fractions(amounts)
 

@@ -1,0 +1,334 @@
+r"""What a combustor is told by the streams that enter it: oxygen needed and free, heats of combustion, its products.
+
+With d_i the oxygen that a kilogram of stream i needs for complete combustion and o_i that which it frees [kg/kg]
+
+    Σ o_i ṁ_i = (1 + e) Σ d_i ṁ_i
+
+defines the excess air e, whatever the streams are: fuel and air apart, a mixture of both, several of each.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from functools import cache
+from typing import TYPE_CHECKING, Any
+
+from reportgen.balances.composition import flow_paths, for_composition, is_made, with_flows
+from reportgen.balances.merit import ratio_of
+from reportgen.balances.plant import Piece
+from reportgen.balances.relations import Balance, Formula, Term, token
+
+if TYPE_CHECKING:
+    from reportgen.fluids.reacting.streams import Contents
+
+__all__ = [
+    "adiabatic_temperature",
+    "air_ratio",
+    "contents",
+    "dew_point",
+    "excess_air",
+    "flows_to_try",
+    "fuel_heat",
+    "heating_value",
+    "is_fire",
+    "mole_fractions",
+    "no_exergetic_efficiency",
+]
+
+#: Mole fraction of the base case below which a species is not reported: one in a million.
+TRACE = 1e-6
+#: Key of water among the species.
+WATER = "H2O"
+
+
+def contents(piece: Piece) -> dict[str, Contents]:
+    """Contents of each stream that enters, by state; of the gases of other combustors nothing is told."""
+    from reportgen.fluids.reacting.streams import contents_of
+
+    fluids = {state: piece.fluid(state) for state in piece.states("inlets")}
+    return {state: contents_of(fluid) for state, fluid in fluids.items() if not is_made(fluid)}
+
+
+def is_fire(piece: Piece) -> bool:
+    """Whether it is known what oxygen the streams need and have."""
+    known = contents(piece)
+    made = any(is_made(piece.fluid(state)) for state in piece.states("inlets") if not _recycled(piece, state))
+    return not made and any(each.needed for each in known.values()) and any(each.free for each in known.values())
+
+
+def _recycled(piece: Piece, state: str) -> bool:
+    """Whether a stream is of the gas that the piece makes: it comes back unchanged in its elements."""
+    return piece.fluid_id(state) == piece.fluid_id(piece.one("outlet"))
+
+
+def _flow(state: str) -> str:
+    return f"states.{state}.mass_flow"
+
+
+def _oxygen(known: Mapping[str, Contents]) -> str:
+    """Oxygen of the streams in words."""
+    parts = [f"stream {state} needs {each.needed:.6g} kg/kg" for state, each in known.items() if each.needed]
+    parts += [f"stream {state} frees {each.free:.6g} kg/kg" for state, each in known.items() if each.free]
+    return ", ".join(parts)
+
+
+def excess_air(piece: Piece) -> Balance:
+    """Σ o_i ṁ_i − (1 + e) Σ d_i ṁ_i = 0."""
+    known, excess = contents(piece), piece.path("excess_air")
+    free = [
+        Term(each.free, (_flow(state),), rf"o_{{\mathrm{{{state}}}}}") for state, each in known.items() if each.free
+    ]
+    needed = {state: each.needed for state, each in known.items() if each.needed}
+    bound = [Term(-need, (_flow(state),), rf"d_{{\mathrm{{{state}}}}}") for state, need in needed.items()]
+    more = [Term(-need, (excess, _flow(state)), rf"d_{{\mathrm{{{state}}}}}") for state, need in needed.items()]
+    words = f"{piece.title}: oxygen o that is free and d that the fire needs ({_oxygen(known)})"
+    return Balance(
+        piece.path("excess_air.definition"),
+        piece.owner,
+        "Excess air",
+        f"{words} are tied by the excess air.",
+        "definition of excess air, complete combustion to CO2, H2O, SO2, HCl and N2",
+        (*free, *bound, *more),
+        {},
+        {excess: f"{words} give the excess air."},
+    )
+
+
+def air_ratio(piece: Piece) -> Formula:
+    """λ = 1 + e."""
+    excess, path = piece.path("excess_air"), piece.path("air_ratio")
+    return Formula(
+        path,
+        piece.owner,
+        "Air ratio",
+        f"{piece.title}: oxygen that is there over oxygen that the fire needs.",
+        "definition of the air ratio",
+        path,
+        (excess,),
+        lambda more: 1.0 + more,
+        rf"1 + {token(excess)}",
+    )
+
+
+@cache
+def _heating_values(fluid: Any) -> tuple[float, float]:
+    from reportgen.fluids.reacting.streams import heating_values
+
+    return heating_values(fluid)
+
+
+def _fuels(piece: Piece) -> list[str]:
+    return [state for state, each in contents(piece).items() if each.needed]
+
+
+def heating_value(piece: Piece, which: str) -> Formula:
+    """Mean heating value of the streams that burn, at 25 °C: "lower" with water as vapour, "higher" as liquid."""
+    fuels, path = _fuels(piece), piece.path(f"{which}_heating_value")
+    values = [_heating_values(piece.fluid(state))[which == "higher"] for state in fuels]
+    each = ", ".join(f"{value / 1e6:.6g} MJ/kg of stream {state}" for state, value in zip(fuels, values, strict=True))
+    water = "vapour" if which == "lower" else "liquid"
+    flows = [token(_flow(state)) for state in fuels]
+    symbols = [rf"H_{{\mathrm{{{state}}}}}" for state in fuels]
+    heat = " + ".join(rf"{flow}\,{symbol}" for flow, symbol in zip(flows, symbols, strict=True))
+    return Formula(
+        path,
+        piece.owner,
+        f"{which.capitalize()} heating value",
+        f"{piece.title}: heat of complete combustion at 25 °C and 101.325 kPa, all water {water}: {each}.",
+        "enthalpies of formation",
+        path,
+        tuple(_flow(state) for state in fuels),
+        lambda *masses: ratio_of(
+            sum(mass * value for mass, value in zip(masses, values, strict=True)), sum(masses) if masses else 0.0
+        ),
+        rf"\frac{{{heat}}}{{{' + '.join(flows)}}}",
+        fluids=tuple(dict.fromkeys(piece.fluid_id(state) for state in fuels)),
+        reason="no fuel flows",
+    )
+
+
+def fuel_heat(piece: Piece) -> Formula:
+    """Q̇_fuel = H_l Σ ṁ_fuel."""
+    lower, path = piece.path("lower_heating_value"), piece.path("fuel_heat")
+    flows = [_flow(state) for state in _fuels(piece)]
+    total = " + ".join(token(flow) for flow in flows)
+    return Formula(
+        path,
+        piece.owner,
+        "Heat of the fuel",
+        f"{piece.title}: flow of what burns times its lower heating value.",
+        "definition of the heating value",
+        path,
+        (lower, *flows),
+        lambda value, *masses: value * sum(masses),
+        rf"{token(lower)}\left({total}\right)" if len(flows) > 1 else rf"{token(lower)}\,{total}",
+    )
+
+
+def adiabatic_temperature(piece: Piece) -> Formula:
+    """T(p_2, h_2 − Q̇/ṁ_2), the temperature that the products would have without the heat."""
+    outlet = piece.one("outlet")
+    names = ("pressure", "specific_enthalpy", "mass_flow")
+    inputs = (*(f"states.{outlet}.{name}" for name in names), piece.path("heat"))
+    pressure, enthalpy, flow, heat = (token(path) for path in inputs)
+    path = piece.path("adiabatic_temperature")
+
+    def make(fluid: Any) -> Formula:
+        def evaluate(p: Any, h: Any, mass: Any, brought: Any) -> Any:
+            return fluid.at(pressure=p, specific_enthalpy=h - brought / mass, errors="mask").temperature
+
+        return Formula(
+            path,
+            piece.owner,
+            "Adiabatic temperature",
+            f"{piece.title}: temperature of the products at the pressure of state {outlet} if no heat were exchanged.",
+            f"first law, steady flow; {fluid.title}",
+            path,
+            inputs,
+            evaluate,
+            rf"T\left({pressure},\,{enthalpy} - \frac{{{heat}}}{{{flow}}}\right)",
+            fluids=(piece.fluid_id(outlet),),
+            reason="the products have no state of this enthalpy in the range of their model",
+        )
+
+    return for_composition([piece.fluid(outlet)], make)
+
+
+def _of_composition(
+    piece: Piece, name: str, heading: str, sentence: str, latex: str, take: Callable[..., Any]
+) -> Formula:
+    """A value of the composition of the products at the outlet; ``take`` gets the fractions by species, and p [Pa]."""
+    outlet = piece.one("outlet")
+    path = piece.path(name)
+
+    def make(fluid: Any) -> Formula:
+        return Formula(
+            path,
+            piece.owner,
+            heading,
+            f"{piece.title}: {sentence}",
+            "elements are conserved; complete combustion"
+            if fluid.chemistry == "complete"
+            else "elements are conserved; least Gibbs energy at outlet temperature and pressure",
+            path,
+            (f"states.{outlet}.temperature", f"states.{outlet}.pressure"),
+            lambda temperature, pressure: take(fluid.fractions(temperature, pressure), pressure),
+            latex,
+            fluids=(piece.fluid_id(outlet),),
+            reason="the products have no such value",
+        )
+
+    return for_composition([piece.fluid(outlet)], make)
+
+
+def mole_fractions(piece: Piece, values: Mapping[str, Any]) -> list[Formula]:
+    """Mole fraction of each species in the products at the outlet, wet and dry; traces below 1e-6 left out."""
+    outlet = piece.one("outlet")
+    fluid = piece.fluid(outlet)
+    base = {path: values[path][:1] for path in flow_paths(fluid)}
+    point = (values[f"states.{outlet}.{name}"][:1] for name in ("temperature", "pressure"))
+    fractions = with_flows(fluid, base).fractions(*point)
+    found = []
+    for key in sorted(fractions, key=lambda key: -float(fractions[key][0])):
+        if not fractions[key][0] > TRACE:
+            continue
+        found.append(
+            _of_composition(
+                piece,
+                f"species.{key}.mole_fraction",
+                "Mole fraction",
+                f"{key} in the products.",
+                rf"\frac{{n_{{\mathrm{{{key}}}}}}}{{\sum n}}",
+                lambda shares, _, key=key: shares[key],
+            )
+        )
+        if key == WATER:
+            continue
+        wet = piece.path(f"species.{key}.mole_fraction")
+        water = piece.path(f"species.{WATER}.mole_fraction")
+        found.append(_dry(piece, key, wet, water if fractions.get(WATER, [0.0])[0] > TRACE else None))
+    # the fraction of water is needed by those of the dry gas
+    return sorted(found, key=lambda formula: formula.output.endswith("dry_mole_fraction"))
+
+
+def _dry(piece: Piece, key: str, wet: str, water: str | None) -> Formula:
+    path = piece.path(f"species.{key}.dry_mole_fraction")
+    return Formula(
+        path,
+        piece.owner,
+        "Mole fraction in the dry gas",
+        f"{piece.title}: {key} in the products without their water.",
+        "definition",
+        path,
+        (wet, water) if water else (wet,),
+        lambda share, moist=0.0: ratio_of(share, 1.0 - moist),
+        rf"\frac{{{token(wet)}}}{{1 - {token(water)}}}" if water else token(wet),
+        reason="the products are water alone",
+    )
+
+
+def dew_point(piece: Piece) -> Formula:
+    """Temperature at which the water of the products condenses at the outlet pressure."""
+
+    def point(shares: Mapping[str, Any], pressure: Any) -> Any:
+        from reportgen.fluids.gases.condensation import saturation_temperature
+
+        return saturation_temperature(shares.get(WATER, 0.0) * pressure)
+
+    outlet = piece.one("outlet")
+    return _of_composition(
+        piece,
+        "dew_point",
+        "Dew point of the products",
+        f"temperature at which the water in state {outlet} begins to condense at its pressure; nothing is said of "
+        "sulfuric acid.",
+        rf"T_\mathrm{{sat}}\left(x_\mathrm{{H_2O}}\,{token(f'states.{outlet}.pressure')}\right)",
+        point,
+    )
+
+
+def no_exergetic_efficiency(piece: Piece) -> Formula:
+    """The figure that is not given, with the reason."""
+    import numpy as np
+
+    path = piece.path("exergetic_efficiency")
+    return Formula(
+        path,
+        piece.owner,
+        "Exergetic efficiency",
+        f"{piece.title}: not given.",
+        "definition for this kind of equipment",
+        path,
+        (piece.path("lost_work"),),
+        lambda lost: np.full(np.shape(lost), np.nan),
+        r"\text{—}",
+        reason="the exergy of a stream is its physical part here, without the chemical exergy that the fuel spends",
+    )
+
+
+def flows_to_try(piece: Piece, known: Callable[[str], float], excess: float) -> dict[str, float]:
+    """Flows with which the fire has oxygen enough: a search must begin where there is a complete combustion."""
+    import math
+
+    if not is_fire(piece):
+        return {}
+    streams = contents(piece)
+    flows = {state: known(_flow(state)) for state in piece.states("inlets")}
+    told = {state: flow for state, flow in flows.items() if math.isfinite(flow)}
+    wanted = known(piece.path("excess_air"))
+    ratio = 1.0 + (wanted if math.isfinite(wanted) else excess)
+    fuels = [state for state, each in streams.items() if state not in told and each.needed > each.free]
+    airs = [state for state, each in streams.items() if state not in told and each.free > each.needed]
+    needed = sum(flow * streams[state].needed for state, flow in told.items() if state in streams)
+    free = sum(flow * streams[state].free for state, flow in told.items() if state in streams)
+    found = {piece.path("excess_air"): ratio - 1.0}
+    burnt = max(free / ratio - needed, 0.0) if free > 0.0 and not airs else 1.0
+    for state in fuels:
+        flows[state] = max(burnt, 1e-6 * free) / streams[state].needed / len(fuels)
+        needed += flows[state] * streams[state].needed
+    for state in airs:
+        lacking = max(ratio * needed - free, 0.05 * needed)
+        flows[state] = lacking / streams[state].free / len(airs)
+    flows = {state: flow if math.isfinite(flow) else 1.0 for state, flow in flows.items()}
+    outlet = piece.one("outlet")
+    return found | {_flow(state): flow for state, flow in flows.items()} | {_flow(outlet): sum(flows.values())}
