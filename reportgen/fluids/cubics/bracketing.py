@@ -23,6 +23,8 @@ def bracketed_root(
     high: FloatArray,
     at_low: FloatArray,
     at_high: FloatArray,
+    *,
+    edge: float = 1e-7,
 ) -> tuple[FloatArray, BoolArray]:
     """Where a function changes its sign, by inverse quadratic interpolation or bisection.
 
@@ -31,9 +33,11 @@ def bracketed_root(
 
     Parameters
     ----------
-    function : of places [any unit], shape (n,), and the indices of their states; NaN stops a state.
+    function : of places [any unit], shape (n,), and the indices of their states; NaN stops a state, infinite values
+        say on which side of it the function exists.
     low, high : the brackets [same unit], shape (N,).
     at_low, at_high : values of the function there.
+    edge : relative width [1] of a bracket with an infinite end at which it is given up.
 
     Returns
     -------
@@ -61,13 +65,14 @@ def bracketed_root(
         with np.errstate(all="ignore"):
             limit = _RELATIVE * np.abs(best) / np.abs(b - a)
             done = (at_best == 0.0) | (limit > 0.5)
+            # next to an infinite value there is only the edge of where the function exists
+            lost = np.isnan(value) | (~np.isfinite(fa + fb) & (np.abs(b - a) < edge * (np.abs(a) + np.abs(b))))
             xi, phi = (a - b) / (c - b), (fa - fb) / (fc - fb)
             curved = (phi**2 < xi) & ((1.0 - phi) ** 2 < 1.0 - xi)
             quadratic = fa / (fb - fa) * fc / (fb - fc) + (c - a) / (b - a) * fa / (fc - fa) * fb / (fc - fb)
             part = np.where(curved & np.isfinite(quadratic), quadratic, 0.5)
             part = np.clip(part, limit, 1.0 - limit)
         result[todo] = best
-        lost = np.isnan(value)
         found[todo[done & ~lost]] = True
         keep = ~(done | lost)
         todo, part = todo[keep], part[keep]

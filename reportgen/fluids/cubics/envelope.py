@@ -90,6 +90,14 @@ class Envelope:
         return float(np.exp(self._values[:, -1].max())) if self.whole else np.inf
 
     @property
+    def lowest_pressure(self) -> float:
+        """Pressure [Pa] below which the line is crossed below the lowest temperature of interest only; zero where it is
+        not whole, or still above that temperature at its end.
+        """
+        cold = self.whole and np.exp(self._values[0, self._size]) <= self._coldest
+        return float(np.exp(self._values[:, -1].min())) if cold else 0.0
+
+    @property
     def highest_temperature(self) -> float:
         """Highest temperature [K] of the line, infinite where it is not whole."""
         return float(np.exp(self._values[:, -2].max())) if self.whole else np.inf

@@ -80,8 +80,8 @@ class Boundaries(NamedTuple):
     """Saturation at N pressures or temperatures.
 
     ``bubble``, ``dew`` the two points; ``bubble_count``, ``dew_count`` how many there are; ``simple`` where there is
-    one of each, both solved for; ``half`` where there is one dew point and no bubble point, so that beyond the dew
-    point lie two phases up to the end of the line; ``absent`` where there is certainly no saturation.
+    one of each, both solved for; ``half`` where there is one point of the two, so that from there two phases reach to
+    the end of the line, low temperature or high pressure; ``absent`` where there is certainly no saturation.
     """
 
     bubble: Pairing
@@ -188,11 +188,11 @@ class Equilibria:
 
     # --- at temperature and pressure ----------------------------------------------------------------------------------
 
-    def at(self, temperature: FloatArray, pressure: FloatArray) -> States:
-        """States at T [K] and p [Pa], shape (N,)."""
+    def at(self, temperature: FloatArray, pressure: FloatArray, *, final: bool = True) -> States:
+        """States at T [K] and p [Pa], shape (N,); ``final`` whether to test them for a third phase."""
         if self.pure:
             return self.single(temperature, pressure, self.volume(temperature, pressure))
-        split = flash(self.model, self.feed, temperature, pressure)
+        split = flash(self.model, self.feed, temperature, pressure, final=final)
         one = np.isnan(split.fraction)
         volume = np.full(temperature.size, np.nan)
         if one.any():
@@ -238,7 +238,9 @@ class Equilibria:
         arguments: dict[str, FloatArray] = {axis: given}
         bubble = envelope.crossing("bubble", **arguments)
         dew = envelope.crossing("dew", **arguments)
-        top = envelope.highest_pressure if axis == "pressure" else envelope.highest_temperature
+        isobars = axis == "pressure"
+        top = envelope.highest_pressure if isobars else envelope.highest_temperature
+        bottom = envelope.lowest_pressure if isobars else 0.0
         none = (bubble.number == 0) & (dew.number == 0)
         return Boundaries(
             bubble.pairing,
@@ -248,8 +250,8 @@ class Equilibria:
             bubble.found,
             dew.found,
             bubble.solved & dew.solved & envelope.whole,
-            (bubble.number == 0) & dew.solved & envelope.whole,
-            none & (given > top * (1.0 + 1e-7)),
+            envelope.whole & np.where(bubble.number == 0, dew.solved, bubble.solved & (dew.number == 0) & isobars),
+            none & ((given > top * (1.0 + 1e-7)) | (given < bottom)),
         )
 
     def _pure_boundaries(self, axis: str, given: FloatArray) -> Boundaries:
@@ -266,6 +268,13 @@ class Equilibria:
         never = np.zeros(given.size, dtype=np.bool_)
         return Boundaries(bubble, dew, count, count, there, there, there, never, np.isnan(other))
 
-    def lever(self, bubble: Pairing, dew: Pairing, fraction: FloatArray) -> States:
-        """Two phases of a pure substance at mole fractions [1] of vapour."""
-        return self.paired(bubble._replace(fraction=fraction, temperature=bubble.temperature, pressure=dew.pressure))
+    def ordered(self, pairing: Pairing) -> BoolArray:
+        """Where the vapour of two phases has the greater volume, in multiples of the covolume."""
+        conditions = self.model.mixture.conditions(pairing.temperature, pairing.pressure)
+        sides: tuple[Side, Side] = ("liquid", "vapour")
+        liquid, vapour = (
+            phase_at(self.model.mixture, conditions, fractions, side)
+            for fractions, side in zip(pairing.compositions(self.feed), sides, strict=True)
+        )
+        result: BoolArray = vapour.compressibility * liquid.covolume >= liquid.compressibility * vapour.covolume
+        return result

@@ -36,7 +36,7 @@ _ITERATIONS = 25
 _SOLVED = 1e-9
 _SETTLED = 1e-8
 #: Greatest ln K_i [1] and relative difference of density below which two phases are one.
-_TRIVIAL = 1e-7
+_TRIVIAL = 1e-5
 
 
 class Pairing(NamedTuple):

@@ -53,10 +53,14 @@ class Split(NamedTuple):
     third: BoolArray
 
 
-def flash(model: MolarModel, feed: FloatArray, temperature: FloatArray, pressure: FloatArray) -> Split:
-    """Phases at T [K] and p [Pa], shape (N,), of a feed of mole fractions [1] of shape (C, 1)."""
+def flash(
+    model: MolarModel, feed: FloatArray, temperature: FloatArray, pressure: FloatArray, *, final: bool = True
+) -> Split:
+    """Phases at T [K] and p [Pa], shape (N,), of a feed of mole fractions [1] of shape (C, 1); ``final`` whether to
+    test the phases for a third one.
+    """
     parts = [
-        _flash(model, feed, temperature[start : start + CHUNK], pressure[start : start + CHUNK])
+        _flash(model, feed, temperature[start : start + CHUNK], pressure[start : start + CHUNK], final)
         for start in range(0, max(temperature.size, 1), CHUNK)
     ]
     return (
@@ -64,7 +68,7 @@ def flash(model: MolarModel, feed: FloatArray, temperature: FloatArray, pressure
     )
 
 
-def _flash(model: MolarModel, feed: FloatArray, temperature: FloatArray, pressure: FloatArray) -> Split:
+def _flash(model: MolarModel, feed: FloatArray, temperature: FloatArray, pressure: FloatArray, final: bool) -> Split:
     mixture = model.mixture
     size = temperature.size
     everywhere = np.repeat(feed, size, axis=1)
@@ -92,7 +96,8 @@ def _flash(model: MolarModel, feed: FloatArray, temperature: FloatArray, pressur
     result.fraction[unstable] = pairing.fraction
     result.liquid[:, unstable], result.vapour[:, unstable] = liquid, vapour
     result.found[unstable] = found
-    result.third[unstable] = _third_phase(model, here, liquid, vapour, found)
+    if final:
+        result.third[unstable] = _third_phase(model, here, liquid, vapour, found)
     return result
 
 

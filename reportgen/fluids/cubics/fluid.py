@@ -14,9 +14,10 @@ from reportgen.fluids.cubics.description import Description
 from reportgen.fluids.cubics.equilibria import Equilibria, States
 from reportgen.fluids.cubics.equilibrium import Pairing
 from reportgen.fluids.cubics.guard import LOWEST_PRESSURE, Guard
-from reportgen.fluids.cubics.isolines import Isoline, Sought
+from reportgen.fluids.cubics.isolines import Isoline
 from reportgen.fluids.cubics.nested import enthalpy_entropy, volume_energy
 from reportgen.fluids.cubics.solution import Solution
+from reportgen.fluids.cubics.sought import Sought
 from reportgen.fluids.cubics.thermodynamics import MolarModel
 from reportgen.fluids.cubics.values import Target
 from reportgen.fluids.gases.gas import MOLAR_GAS_CONSTANT
@@ -320,7 +321,9 @@ class CubicFluid:
             where = np.flatnonzero(quality == end)
             if where.size:
                 self._on_line(line, branch, pair.first[where], where, states, elements)
-        self._no_saturation(line, pair.first, quality, states, elements)
+        # a mixture's share of vapour between 0 and 1 may be met or not: that is no matter of the lines alone
+        between = (quality > 0.0) & (quality < 1.0) & (not self._equilibria.pure)
+        self._no_saturation(line, pair.first, quality, states.found | between, elements)
         return states
 
     def _on_line(
@@ -353,9 +356,9 @@ class CubicFluid:
         states.put(where[found], self._equilibria.paired(pairing.take(found)))
 
     def _no_saturation(
-        self, line: str, given: FloatArray, quality: FloatArray, states: States, elements: Elements
+        self, line: str, given: FloatArray, quality: FloatArray, settled: NDArray[np.bool_], elements: Elements
     ) -> None:
-        """Say why there is no saturated state."""
+        """Say why there is no saturated state, but for elements that are ``settled``."""
 
         def describe(i: int) -> Fault:
             branch = "dew" if quality[i] == 1.0 else "bubble"
@@ -365,7 +368,7 @@ class CubicFluid:
                 roots = self._equilibria.envelope.roots(branch, line, value)  # type: ignore[arg-type]
             return self._guard.no_saturation(line, float(given[i]), branch, roots if len(roots) > 1 else [])
 
-        elements.reject(~states.found & ~elements.rejected, describe)
+        elements.reject(~settled & ~elements.rejected, describe)
 
     def _beside_saturation(self, pair: Pair, elements: Elements) -> States:
         """States at a stated distance from the dew or the bubble temperature; none at all is the saturated state."""
@@ -395,16 +398,13 @@ class CubicFluid:
                     states.put(good, self._equilibria.single(temperature[good], pressure[good], volume))
                 else:
                     states.put(good, self._equilibria.at(temperature[good], pressure[good]))
-        self._no_saturation("pressure", pressure, quality, states, elements)
+        self._no_saturation("pressure", pressure, quality, states.found, elements)
         return states
 
     def _temperature_density(self, pair: Pair, elements: Elements) -> States:
         temperature, volume = pair.first, self.molar_mass / pair.second
         sought = self._isotherms.find(temperature, "volume", volume)
         self._tell(pair, sought, elements)
-        # one phase: the volume is known to the last digit
-        one = sought.states.found & ~sought.states.mixed
-        sought.states.volume = np.where(one, volume + self._equilibria.shift, sought.states.volume)
         return sought.states
 
     def _density_energy(self, pair: Pair, elements: Elements) -> States:
@@ -413,4 +413,4 @@ class CubicFluid:
 
     def _enthalpy_entropy(self, pair: Pair, elements: Elements) -> States:
         enthalpy, entropy = self.molar_mass * pair.first, self.molar_mass * pair.second
-        return enthalpy_entropy(self._equilibria, self._isobars, enthalpy, entropy, LOWEST_PRESSURE, self._top)
+        return enthalpy_entropy(self._equilibria, self._isobars, self._isotherms, enthalpy, entropy)

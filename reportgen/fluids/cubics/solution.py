@@ -42,10 +42,16 @@ class Solution:
         self._there = states.found
         self._known = {name: np.where(self._there, array, np.nan) for name, array in known.items() if name != "quality"}
         self._mixed = states.mixed
-        two = np.flatnonzero(self._mixed)
-        volume = states.volume - equilibria.shift
-        if two.size:
-            volume[two] = value_of(equilibria, states, "volume")[two]
+        if "density" in self._known:
+            # a bracket may have closed before the last digits of the volume
+            one = self._there & ~self._mixed
+            volume = equilibria.molar_mass / self._known["density"]
+            states.volume = np.where(one, volume + equilibria.shift, states.volume)
+        else:
+            two = np.flatnonzero(self._mixed)
+            volume = states.volume - equilibria.shift
+            if two.size:
+                volume[two] = value_of(equilibria, states, "volume")[two]
         self._volume = volume
 
     def values(self) -> dict[str, FloatArray]:
