@@ -245,7 +245,7 @@ _ENTRIES = (
     Name("entropy_change", r"\Delta S", "entropy", "Change of entropy", "end less beginning"),
     Name("entropy_of_mixing", r"\Delta S_\mathrm{mix}", "entropy", "Entropy of mixing", "never negative"),
     Name("mole_fraction", "x", "ratio", "Mole fraction, of a species in a mixture"),
-    Name("dry_mole_fraction", r"x_\mathrm{dry}", "ratio", "Mole fraction of a species in a gas without its water"),
+    Name("dry_mole_fraction", r"x_\mathrm{dry}", "ratio", "Mole fraction in the dry gas, of a species"),
     # vessels
     Name("supply_volume", r"V_\mathrm{sup}", "volume", "Volume of the vessel that supplies"),
     Name("back_pressure", r"p_\mathrm{b}", "pressure", "Pressure behind the outlet, absolute"),
@@ -267,7 +267,7 @@ _ENTRIES = (
     Name("entropy_with_mass", "S_m", "entropy", "Entropy carried by mass", "positive into the vessel"),
     Name("vessel_entropy_generation", r"S_\mathrm{gen,vessel}", "entropy", "Entropy generation in the content"),
     Name("valve_entropy_generation", r"S_\mathrm{gen,valve}", "entropy", "Entropy generation in the valve"),
-    Name("wall_entropy_generation", r"S_\mathrm{gen,wall}", "entropy", "Entropy generation at the wall"),
+    Name("wall_entropy_generation", r"S_\mathrm{gen,wall}", "entropy", "Entropy generation by heat of the wall"),
     Name("final_temperature", "T_2", "temperature", "Final temperature of the content"),
     Name("final_quality", "x_2", "ratio", "Final vapour mass fraction of the content"),
     Name("minimum_temperature", r"T_\mathrm{min}", "temperature", "Lowest temperature of the content"),

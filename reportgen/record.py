@@ -34,6 +34,7 @@ SECTIONS: dict[str, type] = {
     "calculation": dict,
     "cases": dict,
     "cautions": list,
+    "combustion": dict,
     "criteria": list,
     "cross_checks": list,
     "cycles": dict,

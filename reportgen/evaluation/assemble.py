@@ -29,6 +29,7 @@ from reportgen.evaluation.audits import (
 from reportgen.evaluation.budget import budgets
 from reportgen.evaluation.cautions import catalogue, check_adjustments, in_order, lost_samples, raised, unevaluated
 from reportgen.evaluation.closed import closed_boundary_test
+from reportgen.evaluation.combustion import combustion_section
 from reportgen.evaluation.contradictions import sized
 from reportgen.evaluation.criteria import decided_criteria
 from reportgen.evaluation.cross_checks import cross_checks, second_sources
@@ -130,6 +131,7 @@ def evaluate(calculation: Calculation, folder: Path | None = None) -> Record:
             "accounts": accounts,
             "criteria": criteria,
             "cross_checks": plant.cross_checks,
+            "combustion": combustion_section(plant, solution),
             "cycles": cycles_section(plant, solution),
             "summary": headlines,
             "uncertainty_budget": budgets(plant, dict.fromkeys([*headlines, *(entry["path"] for entry in criteria)])),

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 import numpy.typing as npt
 
+from reportgen.balances.kinds import kinds
 from reportgen.evaluation.assumptions import AutomaticAssumption
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.models import fluid_name
@@ -81,6 +82,8 @@ def _model_assumption(
         mixed = _mixed_by(trial.plant, identifier) if specification.model == "ideal-gas" else None
         if mixed is not None:
             test = untested(f"Not tested{remark}: process {mixed} mixes it with other gases, as ideal gases alone are.")
+        elif model.composition and (burner := _burnt_in(trial.plant, identifier)) is not None:
+            test = untested(f"Not tested{remark}: it takes part in the combustion of {burner}, where traces in it count.")
         else:
             test = _model_test(trial, identifier, counterpart, condition)
     return AutomaticAssumption(
@@ -97,6 +100,15 @@ def _mixed_by(plant: EvaluatedPlant, identifier: str) -> str | None:
     """The process that mixes a gas with others, or makes it by mixing; None when there is none."""
     for tag, process in plant.processes.items():
         if process.mixes and any(plant.state_fluids[state] == identifier for state in process.states):
+            return tag
+    return None
+
+
+def _burnt_in(plant: EvaluatedPlant, identifier: str) -> str | None:
+    """The combustor that a gas enters, where the elements of its mixture count; None when there is none."""
+    for tag, connections in plant.connections.items():
+        entering = {plant.state_fluids[connection.state] for connection in connections if connection.direction == "in"}
+        if kinds()[plant.kinds[tag]].burns and identifier in entering:
             return tag
     return None
 

@@ -22,7 +22,7 @@ OF_END_STATES = ("temperature", "pressure", "quality", "volume")
 UNCHANGED = 1e-9
 #: Of a piece and of sums over pieces, in this order.
 SUMS = ("entropy_generation", "lost_work", "power")
-OF_PIECES = (*SUMS, "shaft_power", "isentropic_efficiency", "duty", "heat")
+OF_PIECES = (*SUMS, "shaft_power", "isentropic_efficiency", "duty", "heat", "excess_air", "adiabatic_temperature")
 #: Of cycles and of compressions in several stages.
 OF_CYCLES = ("thermal_efficiency", "coefficient_of_performance", "second_law_efficiency", "isothermal_efficiency")
 #: Of a vessel.
@@ -64,7 +64,6 @@ def summary(plant: EvaluatedPlant, solution: Solution, totals: Sequence[str]) ->
     found += [f"{owner}.{name}" for owner in owners for name in (*SUMS, *_of_cycle(solution, owner))]
     found += _of_processes(plant)
     found += [f"vessels.{tag}.{name}" for tag in plant.vessels for name in OF_VESSELS]
-    found += [f"total.{name}" for name in OF_VESSELS if "total" in plant.closed and len(plant.vessels) > 1]
     return [path for path in found if _tells(plant, path)]
 
 

@@ -57,7 +57,7 @@ class Fluid(Protocol):
 
     @property
     def kind(self) -> str:
-        """``"ideal-gas"``, ``"real-fluid"``, ``"cubic"`` or ``"incompressible"``."""
+        """``"ideal-gas"``, ``"reacting-gas"`` (at equilibrium), ``"real-fluid"``, ``"cubic"``, ``"incompressible"``."""
 
     @property
     def substance(self) -> str | None:

@@ -9,7 +9,18 @@ from reportgen.record import Record
 from reportgen.report import figures
 from reportgen.report.links import anchor
 from reportgen.report.presenter import Presenter, prose
-from reportgen.report.sections import account, basis, budget, cross_checks, cycles, findings, head, tail, working
+from reportgen.report.sections import (
+    account,
+    basis,
+    budget,
+    combustion,
+    cross_checks,
+    cycles,
+    findings,
+    head,
+    tail,
+    working,
+)
 from reportgen.report.templates import environment, fonts_folder, style
 
 __all__ = ["page"]
@@ -50,6 +61,7 @@ SECTIONS: tuple[tuple[str, str, Callable[[Presenter], dict[str, Any] | None]], .
     ("method", "Method", basis.method),
     ("states", "States", working.states),
     ("working", "Working", working.working),
+    ("combustion", "Combustion", combustion.combustion),
     ("cycles", "Cycles", cycles.cycles),
     ("account", "Entropy account", account.accounts),
     ("closure", "Closure", account.closure),

@@ -233,7 +233,8 @@ class Presenter:
             owner = f"process\N{NO-BREAK SPACE}{name}" if parts[0] == "processes" else name
             port, species = _HEAT_PORT.fullmatch(name), _SPECIES.fullmatch(name)
             if species:
-                return f"{species[2]}, process\N{NO-BREAK SPACE}{species[1]}"
+                whose = f"process\N{NO-BREAK SPACE}{species[1]}" if parts[0] == "processes" else species[1]
+                return f"{species[2]}, {whose}"
             return f"heat port\N{NO-BREAK SPACE}{port[2]} of {port[1]}" if port else owner
         if parts[0] == "trains":
             return str(trains.get(name, {}).get("title") or name)

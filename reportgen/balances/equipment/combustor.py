@@ -95,7 +95,8 @@ def checks(piece: Piece) -> list[Fault]:
     try:
         contents(piece)
     except InputError as error:
-        return [Fault(fault.message, piece.path("inlets"), fault.found, fault.expected) for fault in error.faults]
+        path = piece.path("inlets")
+        return [Fault(each.message, path, found=each.found, expected=each.expected) for each in error.faults]
     if piece.path("excess_air") in piece.given and not is_fire(piece):
         return [
             Fault(

@@ -153,7 +153,8 @@ class CombustionGas:
 
         Parameters
         ----------
-        shares : mass share [1] of every parent; arrays broadcast with the pair, sums are scaled to 1.
+        shares : mass share [1] of every parent; arrays broadcast with the pair, sums are scaled to 1. One may be negative,
+            where the others bring what it takes out.
         pair : pressure with temperature, specific_enthalpy, specific_entropy or density (specific_volume).
         errors : as in ``Fluid.at``.
 
@@ -180,16 +181,22 @@ class CombustionGas:
         outcome = Elements(given.first.size)
         total = weights.sum(axis=0)
         known = np.isfinite(given.first) & np.isfinite(given.second) & np.isfinite(total)
+        # A stream may run backwards as long as no element is lacking: whoever solves for flows can then say so.
+        atoms = weights.T @ self._elements
         outcome.reject(
-            known & ~((weights >= 0).all(axis=0) & (total > 0)),
-            lambda i: Fault(f"{self.title}: the shares of the streams are not negative.", found=str(weights[:, i])),
+            known & ~((atoms >= 0).all(axis=1) & (total > 0)),
+            lambda i: Fault(
+                f"{self.title}: the streams do not make a gas, since one of them takes out what no other brings.",
+                found=str(weights[:, i]),
+            ),
         )
         outcome.reject(
             known & ~(given.first > 0),
             lambda i: Fault(f"{self.title}: the pressure lies above zero.", found=in_words("pressure", given.first[i])),
         )
         good = known & ~outcome.rejected
-        elements = np.where(good, weights / np.where(good, total, 1.0), 1.0 / weights.shape[0]).T @ self._elements
+        usual = self._elements.mean(axis=0)
+        elements = np.where(good[:, None], atoms / np.where(good, total, 1.0)[:, None], usual)
         pressure = np.where(good, given.first, 1e5)
         value = np.where(good, given.second, np.nan)
         with np.errstate(over="ignore", invalid="ignore", divide="ignore"):

@@ -18,6 +18,7 @@ __all__ = ["MODELS", "assumptions", "boundary", "inputs", "method", "purpose"]
 #: Property models in words.
 MODELS = {
     "ideal-gas": "ideal gas",
+    "reacting-gas": "ideal gas at chemical equilibrium",
     "real-fluid": "real fluid, multiparameter Helmholtz-energy equation",
     "cubic": "cubic equation of state",
     "incompressible": "incompressible",
