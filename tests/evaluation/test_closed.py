@@ -282,3 +282,19 @@ def test_gases_that_are_mixed_are_not_tested_as_real_ones() -> None:
     finding = listed["fluids.nitrogen.ideal-gas"]["test"]["finding"]
     assert finding.startswith("Not tested (|Z − 1| up to")
     assert "process EQ-1 mixes it with other gases" in finding
+
+
+def test_a_content_of_negative_mass_stops() -> None:
+    """The whole is given with less mass than one of its parts holds: P18; with more, nothing is told."""
+
+    def cautions(mass: str) -> list[tuple[str, str]]:
+        text = HEAD + AIR
+        text += '[states.1]\nfluid = "air"\npressure = "2 bar"\ntemperature = "300 K"\nvolume = "1 m3"\n'
+        text += '[states.2]\nfluid = "air"\npressure = "1 bar"\ntemperature = "300 K"\n'
+        text += f'[states.3]\nfluid = "air"\nmass = "{mass}"\n'
+        text += '[processes.P]\nkind = "partition-removal"\nfrom = ["1", "2"]\nto = "3"\n'
+        found = evaluated(text).data["cautions"]
+        return [(entry["severity"], entry["path"]) for entry in found if entry["id"] == "P18"]
+
+    assert cautions("2 kg") == [("stop", "states.2.mass")]
+    assert cautions("3 kg") == []
