@@ -63,7 +63,7 @@ def _check_tags(source: Source) -> None:
     """Tags of processes and vessels that a person reads as the same, also as that of a piece, are the same."""
     words = {"equipment": "a piece of equipment", "processes": "a process", "vessels": "a vessel"}
     seen: dict[str, tuple[str, str]] = {tag.casefold(): ("equipment", tag) for tag in source.table("equipment")}
-    for own, tag in ((own, tag) for own in ("processes", "vessels") for tag in source.table(own)):
+    for own, tag in ((name, tag) for name in ("processes", "vessels") for tag in source.table(name)):
         section, other = seen.setdefault(tag.casefold(), (own, tag))
         if (section, other) != (own, tag):
             line, _ = source.place((section, other), "key")

@@ -138,7 +138,9 @@ def omissions(kind: str, has: Callable[[str], bool]) -> Iterator[Omission]:
         yield Omission("volume", '"volume" is missing.', "the inner volume of the vessel")
     discharge = kind == "discharge"
     if discharge and not has("back_pressure") and not has("final_pressure"):
-        yield Omission("final_pressure", "Nothing says where the discharge ends.", "final_pressure, back_pressure, or both")
+        yield Omission(
+            "final_pressure", "Nothing says where the discharge ends.", "final_pressure, back_pressure, or both"
+        )
     if discharge and has("orifice") and not has("back_pressure"):
         text = "The flow through the orifice needs the pressure behind it."
         yield Omission("back_pressure", text, "back_pressure beside it", "orifice")

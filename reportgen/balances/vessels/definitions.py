@@ -145,7 +145,9 @@ def _body(piece: Piece, port: str, values: Mapping[str, Any], columns: int) -> B
         fields[field] = np.broadcast_to(np.asarray(values.get(path, np.nan), dtype=float), (columns,))
         if not np.isfinite(fields[field][0]):
             text = f"State {states[0]} is not known, from which {piece.title} begins or is fed."
-            raise SolutionError(Fault(text, piece.path(port), found=states[0], expected="a state with known properties"))
+            raise SolutionError(
+                Fault(text, piece.path(port), found=states[0], expected="a state with known properties")
+            )
     return Body(**fields)
 
 

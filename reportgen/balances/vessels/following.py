@@ -30,13 +30,15 @@ Indices = npt.NDArray[np.intp]
 
 #: Error of one step in parts of content, its energy and the temperature.
 TOLERANCE = 1e-9
-#: A flow through an orifice comes to rest asymptotically: it counts as balanced when this part of the pressure difference
-#: that drove it in the beginning is left.
+#: A flow through an orifice comes to rest asymptotically: it counts as balanced when this part of the pressure
+#: difference that drove it in the beginning is left.
 BALANCED = 1e-4
 #: Distance to the lowest temperature of the property model at which the path ends [K].
 LAST = 5e-3
 #: An evacuated vessel is followed from this part of the mass that the supply state would fill it with.
 FIRST_PART = 1e-6
+#: Difference of the logarithms of pressure and final pressure at which a path has come to its end.
+_AT_END = 1e-8
 #: Longest steps, in parts of the content, of the largest content, and of the pressure difference.
 _OF_CONTENT, _OF_GROWTH, _OF_LARGEST, _OF_DIFFERENCE = 0.08, 0.25, 0.04, 0.35
 
@@ -70,8 +72,8 @@ class Vessel:
     """One vessel and what happens to it; every array has shape (N,).
 
     ``volume`` [m3]; ``initial`` None for an evacuated one. ``supply`` of a charging vessel is a line at that state, or,
-    with ``supply_volume`` [m3], a vessel that begins with it. ``back_pressure`` behind the outlet, ``final_pressure`` at
-    which the path ends [Pa]; without the latter it ends in balance. ``flow_area`` [m2]: discharge coefficient times
+    with ``supply_volume`` [m3], a vessel that begins with it. ``back_pressure`` behind the outlet, ``final_pressure``
+    at which the path ends [Pa]; without the latter it ends in balance. ``flow_area`` [m2]: discharge coefficient times
     area of the orifice, None for a path without time.
     """
 
@@ -86,6 +88,18 @@ class Vessel:
     final_pressure: Array | None = None
     wall: Wall | None = None
     flow_area: Array | None = None
+
+    def column(self, number: int) -> Vessel:
+        """The same vessel with one column alone."""
+
+        def cut(value: Any) -> Any:
+            if isinstance(value, np.ndarray):
+                return value[number : number + 1]
+            if isinstance(value, Body | Wall):
+                return type(value)(**{name: cut(getattr(value, name)) for name in value.__dataclass_fields__})
+            return value
+
+        return Vessel(**{name: cut(getattr(self, name)) for name in self.__dataclass_fields__})
 
     @property
     def timed(self) -> bool:
@@ -322,6 +336,16 @@ class Following:
     def mark(self, columns: Indices) -> Array:
         """Temperature of the content [K]."""
         return self.place[columns].copy()
+
+    @property
+    def complete(self) -> Flags:
+        """Columns whose path ended at its final pressure or in balance, not at the end of the property model, (N,)."""
+        beyond = self.place <= self.lowest * (1.0 + 1e-9)
+        if self.vessel.supply_volume is not None:
+            beyond = beyond | (self.supply_temperature <= self.lowest * (1.0 + 1e-9))
+        with np.errstate(all="ignore"):
+            ended = np.abs(np.log(self.vessel.end_pressure / self.pressure)) < _AT_END
+        return np.asarray(self.steps.reached & (ended | ~beyond))
 
 
 def _of(values: Array, columns: Indices) -> Array:

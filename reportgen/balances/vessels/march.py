@@ -64,9 +64,9 @@ class Problem(Protocol):
 class Steps:
     """Every accepted step of every column, column by column and in order.
 
-    ``column`` and ``start`` (value of the independent variable), ``length``: shape (steps,); ``inside`` (bodies,
-    steps); ``mark`` (steps,) and ``y`` (k, steps) at the start; ``dense`` (k, 4, steps). ``end`` is y at the end of each column (k, N),
-    ``reached`` whether the end was come to, (N,). ``evaluations``: calls of the rates.
+    ``column``, ``start`` (value of the independent variable) and ``length``: shape (steps,); ``inside`` (bodies,
+    steps); ``mark`` (steps,) and ``y`` (k, steps) at the start; ``dense`` (k, 4, steps). ``end`` is y at the end of
+    each column (k, N), ``reached`` whether the end was come to, (N,). ``evaluations``: calls of the rates.
     """
 
     column: Indices

@@ -43,8 +43,8 @@ class Integrals:
     """Integrals over the path, shape (N,): NaN where they have no meaning or the model no state.
 
     ``mass`` [kg] and ``enthalpy`` [J] transferred, ``entropy_behind`` [J/K] of what left, behind the valve, and
-    ``entropy_at_outlet`` before it; ``heat`` from the wall [J] and ``entropy_of_heat`` at the temperature of the wall [J/K];
-    ``vessel``, ``valve``, ``wall``: entropy generated [J/K]; ``duration`` [s]; ``largest_flow`` [kg/s].
+    ``entropy_at_outlet`` before it; ``heat`` from the wall [J]; ``vessel``, ``valve``, ``wall``: entropy generated
+    [J/K]; ``duration`` [s]; ``largest_flow`` [kg/s].
     """
 
     mass: Array
@@ -52,7 +52,6 @@ class Integrals:
     entropy_behind: Array
     entropy_at_outlet: Array
     heat: Array
-    entropy_of_heat: Array
     vessel: Array
     valve: Array
     wall: Array
@@ -198,7 +197,6 @@ def integrals(following: Following) -> Integrals:
             "vessel": transfer * rates.vessel,
             "valve": transfer * rates.valve,
             "wall": heat * (1.0 / rates.temperature - 1.0 / rates.wall_temperature) if vessel.timed else 0.0 * heat,
-            "entropy_of_heat": heat / rates.wall_temperature if vessel.timed else 0.0 * heat,
             "duration": time,
         }
     for name, values in parts.items():

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, NamedTuple
 
 from reportgen.balances import kinds
 from reportgen.evaluation.cautions.entry import Finding, caution
 from reportgen.evaluation.evaluated import EvaluatedPlant
 from reportgen.evaluation.phases import saturation_temperature
 from reportgen.evaluation.sampling import ATMOSPHERE
+from reportgen.evaluation.vessels import minimum_metal_temperature
 
 if TYPE_CHECKING:
     from reportgen.spec.calculation import Limits
@@ -122,37 +123,38 @@ def wet_turbine_exhaust(plant: EvaluatedPlant, limit: float) -> Iterator[Finding
     dimension="ratio",
 )
 def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
-    """Pressure above 90 % of the maximum allowable pressure (warning) or above the whole of it (stop): at the ports of a
-    piece, before and after a process.
+    """Pressure above 90 % of the maximum allowable pressure (warning) or above the whole of it (stop).
+
+    At the ports of a piece, before and after a process, in a vessel at both ends of its way.
 
     Both are taken as gauge pressures against the stated atmosphere, (p − p0)/(p_max − p0), because what strains a
     shell is the difference to its outside; an allowable pressure written as absolute is converted. The ratio to 90 %
     is what the adjustable limit moves.
     """
-    for owner, tag, state, table in _states_with_limits(plant):
+    for owner, tag, subject, table, path, _, _ in _places_with_limits(plant):
         if table.pressure is None:
             continue
         atmosphere = plant.samples(ATMOSPHERE)
-        pressure = plant.samples(f"states.{state}.pressure")
+        pressure = plant.samples(path)
         allowable = plant.limit_samples(table.pressure)
         source = "; ".join(part for part in (table.source, PRESSURE_SOURCE) if part)
         yield Finding(
-            f"states.{state}.pressure",
+            path,
             pressure,
             allowable,
             "below",
-            f"The pressure of state {state} ⟦is|may be⟧ above the maximum allowable pressure of {tag}.",
+            f"The pressure of {subject} ⟦is|may be⟧ above the maximum allowable pressure of {tag}.",
             "pressure",
             owner=owner,
             severity="stop",
             source=source,
         )
         yield Finding(
-            f"states.{state}.pressure",
+            path,
             pressure,
             atmosphere + limit * (allowable - atmosphere),
             "below",
-            f"The pressure of state {state} ⟦is|may be⟧ above {100 * limit:g} % of the maximum allowable pressure of "
+            f"The pressure of {subject} ⟦is|may be⟧ above {100 * limit:g} % of the maximum allowable pressure of "
             f"{tag} (both as gauge pressures): little is left between operation and relief. The limit shown is that "
             "part.",
             "pressure",
@@ -170,31 +172,31 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
     dimension="temperature_difference",
 )
 def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
-    """State at a port of a piece, before or after a process, beyond the maximum or minimum temperature (stop), or within
-    10 K of it (warning).
+    """Temperature beyond the maximum or minimum (stop), or within 10 K of it (warning).
 
-    The pressure of the same table is the matter of T19.
+    At the ports of a piece, before and after a process, in a vessel on its whole way. The pressure of the same table is the matter of T19.
     """
-    for owner, tag, state, table in _states_with_limits(plant):
-        temperature = plant.samples(f"states.{state}.temperature")
-        path = f"states.{state}.temperature"
+    for owner, tag, subject, table, _, hottest, coldest in _places_with_limits(plant):
+        subject = subject[:1].upper() + subject[1:]
         source = table.source or f"limits of {tag}"
         warned = f"{source}; margin of {limit:g} K: common practice"
         if table.temperature is not None:
+            path, temperature = hottest, plant.samples(hottest)
             maximum = table.temperature.value
-            text = f"State {state} ⟦is|may be⟧ hotter than the maximum temperature of {tag}."
+            text = f"{subject} ⟦is|may be⟧ hotter than the maximum temperature of {tag}."
             yield Finding(
                 path, temperature, maximum, "below", text, "temperature", owner=owner, severity="stop", source=source
             )
-            text = f"State {state} ⟦comes|may come⟧ within {limit:g} K of the maximum temperature of {tag}."
+            text = f"{subject} ⟦comes|may come⟧ within {limit:g} K of the maximum temperature of {tag}."
             yield Finding(path, temperature, maximum - limit, "below", text, "temperature", owner=owner, source=warned)
         if table.minimum_temperature is not None:
+            path, temperature = coldest, plant.samples(coldest)
             minimum = table.minimum_temperature.value
-            text = f"State {state} ⟦is|may be⟧ colder than the minimum temperature of {tag}: brittle fracture."
+            text = f"{subject} ⟦is|may be⟧ colder than the minimum temperature of {tag}: brittle fracture."
             yield Finding(
                 path, temperature, minimum, "above", text, "temperature", owner=owner, severity="stop", source=source
             )
-            text = f"State {state} ⟦comes|may come⟧ within {limit:g} K of the minimum temperature of {tag}."
+            text = f"{subject} ⟦comes|may come⟧ within {limit:g} K of the minimum temperature of {tag}."
             yield Finding(path, temperature, minimum + limit, "above", text, "temperature", owner=owner, source=warned)
 
 
@@ -210,12 +212,35 @@ def _pumps_liquid(kind: str) -> bool:
     return kinds()[kind].power_sign > 0 and not _compresses_gas(kind)
 
 
-def _states_with_limits(plant: EvaluatedPlant) -> Iterator[tuple[str, str, str, Limits]]:
-    """Owner, tag, state and limits: at the ports of a piece, before and after a process in its vessel."""
-    for tag, table in plant.limits.items():
-        for state in plant.states_at(tag):
-            yield f"equipment.{tag}", tag, state, table
+class _Place(NamedTuple):
+    """Something held against the limits of its owner: what it is called, and the paths of its extremes."""
+
+    owner: str
+    tag: str
+    subject: str
+    table: Limits
+    pressure: str
+    hottest: str
+    coldest: str
+
+
+def _places_with_limits(plant: EvaluatedPlant) -> Iterator[_Place]:
+    """States at the ports of a piece, before and after a process, and of the content of a vessel on its whole way."""
+    states = [
+        (f"equipment.{tag}", tag, state, table) for tag, table in plant.limits.items() for state in plant.states_at(tag)
+    ]
     for tag, process in plant.processes.items():
         if process.limits is not None:
-            for state in process.states:
-                yield f"processes.{tag}", f"process {tag}", state, process.limits
+            states += [(f"processes.{tag}", f"process {tag}", state, process.limits) for state in process.states]
+    for tag, vessel in plant.vessels.items():
+        if vessel.limits is not None and vessel.initial is not None:
+            states.append((f"vessels.{tag}", tag, vessel.initial, vessel.limits))
+    for owner, tag, state, table in states:
+        temperature = f"states.{state}.temperature"
+        yield _Place(owner, tag, f"state {state}", table, f"states.{state}.pressure", temperature, temperature)
+    for tag, vessel in plant.vessels.items():
+        if vessel.limits is not None:
+            owner, (coldest, _) = f"vessels.{tag}", minimum_metal_temperature(plant, tag)
+            subject = "the metal on its way" if vessel.metal else "the content on its way"
+            ends = (f"{owner}.final_pressure", f"{owner}.maximum_temperature", coldest)
+            yield _Place(owner, tag, subject, vessel.limits, *ends)

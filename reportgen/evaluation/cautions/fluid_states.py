@@ -59,6 +59,30 @@ def carbon_dioxide_freezes(plant: EvaluatedPlant, limit: float) -> Iterator[Find
                 "to dry ice, which may plug lines and relief paths.",
                 "pressure",
             )
+    for tag, vessel in plant.vessels.items():
+        if _is_carbon_dioxide(plant.fluid_of(vessel.states[0])):
+            yield from _in_vessel(plant, tag, limit)
+
+
+def _in_vessel(plant: EvaluatedPlant, tag: str, limit: float) -> Iterator[Finding]:
+    """Carbon dioxide that freezes in a vessel on the way, or behind the valve through which it leaves."""
+    owner = f"vessels.{tag}"
+    path = f"{owner}.minimum_temperature"
+    if plant.vessels[tag].path.stopped:
+        text = (
+            f"The content of {tag} comes to its triple point before its final pressure: dry ice forms in the vessel. "
+        )
+        text += "It is not followed further, and what would hold in the end is not reported."
+        path = f"{owner}.followed_temperature"
+        yield Finding(path, plant.samples(path), None, "above", text, "temperature")
+    else:
+        text = f"The content of {tag} ⟦comes|may come⟧ to its triple point on the way: dry ice forms in the vessel."
+        yield Finding(path, plant.samples(path), np.nextafter(limit, np.inf), "above", text, "temperature")
+    if plant.has(f"{owner}.back_pressure"):
+        path = f"{owner}.back_pressure"
+        text = f"What leaves {tag} ⟦expands|may expand⟧ below the triple-point pressure of carbon dioxide: dry ice may "
+        text += "form in the valve and behind it, and plug the vent."
+        yield Finding(path, plant.samples(path), CO2_TRIPLE_PRESSURE, "above", text, "pressure")
 
 
 def freezing_hint(fluid: Fluid) -> str | None:
