@@ -73,13 +73,15 @@ class Group:
 class Choice:
     """A word that may be given for a piece, one of ``values``; the first of them holds where none is given.
 
-    ``many``: a list with one word for each state at the first port may be given too.
+    ``many``: a list with one word for each state at the first port may be given too. ``assumed``: what is taken for
+    granted where none is given, to follow the title of the piece and become a listed assumption; empty: nothing.
     """
 
     name: str
     values: tuple[str, ...]
     text: str
     many: bool = False
+    assumed: str = ""
 
 
 @dataclass(frozen=True)

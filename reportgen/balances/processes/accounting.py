@@ -100,7 +100,12 @@ class _ProcessBook(Book):
         self._account(piece.owner, piece.title, alone)
 
     def _path_taken(self, piece: Piece) -> None:
-        """List what the kind of process assumes of its way."""
+        """List what the kind of process assumes of its way, and what it was taken to keep without being told."""
+        for choice in piece.kind.choices:
+            if choice.assumed and choice.name not in piece.options:
+                text = f"{piece.title} {choice.assumed}."
+                affects = (piece.path("work"),)
+                self.solution.assumptions.append(Assumption(piece.path(choice.name), text, piece.owner, affects))
         if piece.kind.path_taken:
             text = f"{piece.title} {piece.kind.path_taken}."
             key, affects = piece.path("quasi-static"), (piece.path("work"),)

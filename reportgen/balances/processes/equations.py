@@ -58,12 +58,14 @@ CONSTANT = Choice(
     "constant",
     ("pressure", "volume"),
     "What stays the same while the system exchanges heat and work: its pressure or its volume",
+    assumed="takes place at constant pressure",
 )
 CONSTANT_EACH = Choice(
     "constant",
     CONSTANT.values,
     "What each body keeps while it exchanges heat, its pressure or its volume; one word for all of them",
     many=True,
+    assumed="leaves every body its pressure",
 )
 #: Boundaries of a closed system, with amounts in the place of flows.
 BOUNDARIES = Group(

@@ -29,7 +29,7 @@ def part(state: str, pressure: float, temperature: float, volume: float) -> dict
 @settings(max_examples=25, deadline=None)
 @given(first=st.tuples(PRESSURES, TEMPERATURES, VOLUMES), second=st.tuples(PRESSURES, TEMPERATURES, VOLUMES))
 def test_an_isolated_change_never_destroys_entropy(first: Any, second: Any) -> None:
-    """Gases let together; what the whole generates is the mixing at one state and the levelling before it, in any order."""
+    """Gases let together generate what the mixing alone does, and more where pressures or temperatures differ."""
     amounts = [p * v / (8.31446261815324 * t) for p, t, v in (first, second)]
     share = amounts[0] / sum(amounts)
     mixture = fluids.ideal_gas({"N2": share, "CO2": 1.0 - share})
