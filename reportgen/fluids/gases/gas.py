@@ -30,6 +30,9 @@ MOLAR_GAS_CONSTANT = 8.31446261815324  # J/(mol*K), exact by the definition of t
 #: Where a constant heat capacity meets the temperature-dependent one.
 REFERENCE_TEMPERATURE = 298.15  # K
 
+#: A constant heat capacity rests on no polynomial: the author who states it answers for it, down to here [K].
+LOWEST_WITH_CONSTANT_HEAT_CAPACITY = 20.0
+
 #: Least pressure [Pa] and density [kg/m3] taken: below, volumes overflow.
 _LEAST = 1e-290
 
@@ -87,6 +90,8 @@ class IdealGas:
         self.gas_constant = MOLAR_GAS_CONSTANT / self.molar_mass
         self._standard_pressure = carried.standard_pressure
         self._breaks = carried.temperature_breaks
+        lowest = self._breaks[0] if constant_heat_capacity is None else LOWEST_WITH_CONSTANT_HEAT_CAPACITY
+        self._range = (lowest, self._breaks[-1])
         self._law = self._caloric_law()
         self._extra_sources = extra_sources
 
@@ -113,8 +118,8 @@ class IdealGas:
             temperature=REFERENCE_TEMPERATURE,
             enthalpy=float(variable.enthalpy(reference)[0]),
             entropy=float(variable.entropy(reference)[0]),
-            minimum_temperature=self._breaks[0],
-            maximum_temperature=self._breaks[-1],
+            minimum_temperature=self._range[0],
+            maximum_temperature=self._range[1],
         )
 
     # --- description --------------------------------------------------------------------------------------------------
@@ -126,10 +131,10 @@ class IdealGas:
 
     @cached_property
     def limits(self) -> Limits:
-        """Range of the polynomials; kept for a constant heat capacity too."""
+        """Range of the polynomials; a constant heat capacity, which is the author's, holds to lower temperatures."""
         return Limits(
-            minimum_temperature=self._breaks[0],
-            maximum_temperature=self._breaks[-1],
+            minimum_temperature=self._range[0],
+            maximum_temperature=self._range[1],
             maximum_pressure=math.inf,
             remarks=(
                 "The pressure is not limited; how far the gas is from ideal is not part of this model.",
@@ -268,7 +273,7 @@ class IdealGas:
         return result
 
     def _check_temperature(self, temperature: Array, known: Mapping[str, Array], elements: Elements) -> None:
-        low, high = self._breaks[0], self._breaks[-1]
+        low, high = self._range
         # A temperature worked out at a limit must stay inside, whatever its last bits are.
         outside = ~((temperature >= low * (1.0 - LIMIT_SLACK)) & (temperature <= high * (1.0 + LIMIT_SLACK)))
         if not outside.any():
