@@ -70,6 +70,8 @@ class _FlowBook(Book):
         flowing = {state: fluid_id for state, fluid_id in plant.states.items() if state not in closed}
         for fluid_id in dict.fromkeys(flowing.values()):
             self._dead_state(fluid_id)
+        fires = any(piece.kind.burns for piece in solution.pieces.values())
+        chemical = ", potential and chemical" if fires else " and potential"
         for state, fluid_id in flowing.items():
             prefix, dead = f"states.{state}.", f"surroundings.{fluid_id}."
             h, s = prefix + "specific_enthalpy", prefix + "specific_entropy"
@@ -80,7 +82,7 @@ class _FlowBook(Book):
                 f"states.{state}",
                 "Specific exergy",
                 f"State {state}: work that could be had on the way to equilibrium with the surroundings.",
-                "definition of flow exergy, without kinetic and potential energy",
+                f"definition of flow exergy, without kinetic{chemical} energy",
                 terms,
             )
 

@@ -65,32 +65,23 @@ def _flow(state: str) -> str:
     return f"states.{state}.mass_flow"
 
 
-def _oxygen(known: Mapping[str, Contents]) -> str:
-    """Oxygen of the streams in words."""
-    parts = [f"stream {state} needs {each.needed:.6g} kg/kg" for state, each in known.items() if each.needed]
-    parts += [f"stream {state} frees {each.free:.6g} kg/kg" for state, each in known.items() if each.free]
-    return ", ".join(parts)
-
-
 def excess_air(piece: Piece) -> Balance:
-    """Σ o_i ṁ_i − (1 + e) Σ d_i ṁ_i = 0."""
+    """Σ o_i ṁ_i − (1 + e) Σ d_i ṁ_i = 0, the coefficients as numbers [kg/kg]."""
     known, excess = contents(piece), piece.path("excess_air")
-    free = [
-        Term(each.free, (_flow(state),), rf"o_{{\mathrm{{{state}}}}}") for state, each in known.items() if each.free
-    ]
+    free = [Term(each.free, (_flow(state),), f"{each.free:.6g}") for state, each in known.items() if each.free]
     needed = {state: each.needed for state, each in known.items() if each.needed}
-    bound = [Term(-need, (_flow(state),), rf"d_{{\mathrm{{{state}}}}}") for state, need in needed.items()]
-    more = [Term(-need, (excess, _flow(state)), rf"d_{{\mathrm{{{state}}}}}") for state, need in needed.items()]
-    words = f"{piece.title}: oxygen o that is free and d that the fire needs ({_oxygen(known)})"
+    bound = [Term(-need, (_flow(state),), f"{need:.6g}") for state, need in needed.items()]
+    more = [Term(-need, (excess, _flow(state)), f"{need:.6g}") for state, need in needed.items()]
+    each = "each flow times the kilograms of oxygen that a kilogram of it frees or needs"
     return Balance(
         piece.path("excess_air.definition"),
         piece.owner,
         "Excess air",
-        f"{words} are tied by the excess air.",
+        f"{piece.title}: the excess air ties the oxygen that is free to that which the fire needs, {each}.",
         "definition of excess air, complete combustion to CO2, H2O, SO2, HCl and N2",
         (*free, *bound, *more),
         {},
-        {excess: f"{words} give the excess air."},
+        {excess: f"{piece.title}: oxygen that is free and that the fire needs give the excess air, {each}."},
     )
 
 

@@ -89,6 +89,10 @@ class ProductGas:
         told._point = (temperature, pressure)
         return told
 
+    def with_chemistry(self, chemistry: Chemistry) -> ProductGas:
+        """The gas of the same streams that comes about otherwise; its flows are not known."""
+        return ProductGas(self.title, self.streams, chemistry)
+
     def _weights(self, flows: Mapping[str, ArrayLike]) -> dict[str, Any]:
         """Mass of each stream of fixed composition, in proportion."""
         found: dict[str, Any] = {}

@@ -153,8 +153,8 @@ class CombustionGas:
 
         Parameters
         ----------
-        shares : mass share [1] of every parent; arrays broadcast with the pair, sums are scaled to 1. One may be negative,
-            where the others bring what it takes out.
+        shares : mass share [1] of every parent; arrays broadcast with the pair, sums are scaled to 1. One may be
+            negative, where the others bring what it takes out.
         pair : pressure with temperature, specific_enthalpy, specific_entropy or density (specific_volume).
         errors : as in ``Fluid.at``.
 

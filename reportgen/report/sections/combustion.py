@@ -8,6 +8,7 @@ from reportgen.report.presenter import NO_VALUE, Presenter, in_order
 
 __all__ = ["combustion"]
 
+_SUBSCRIPTS = str.maketrans("0123456789", "₀₁₂₃₄₅₆₇₈₉")
 _CHEMISTRY = {
     "complete": "Complete combustion: the products are CO₂, H₂O, SO₂, HCl, N₂ and the oxygen left; no dissociation, no "
     "nitrogen oxides.",
@@ -41,12 +42,12 @@ def _combustor(tag: str, entry: dict[str, Any], presenter: Presenter) -> dict[st
         "uncertain": any(presenter.plus_minus(path) for path in paths),
         "species": [
             {
-                "name": item["species"],
+                "name": item["species"].translate(_SUBSCRIPTS),
                 "wet": presenter.number(item["wet"]),
                 "dry": presenter.number(item["dry"]) if item["dry"] else NO_VALUE,
             }
             for item in entry["species"]
         ],
-        "remark": f"Mole fractions below {entry['smallest']:.0e} are not listed. Chemical exergy is not part of the "
-        "exergies of this report: no exergetic efficiency is given for a combustor.",
+        "remark": f"Mole fractions below {entry['smallest'] * 1e6:g} in a million are not listed. Exergies of this "
+        "report are physical, without chemical exergy: no exergetic efficiency is given for a combustor.",
     }
