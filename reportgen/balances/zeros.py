@@ -82,6 +82,10 @@ def _conflict(title: str, owner: str, first: StreamGroup, second: StreamGroup) -
     """Streams of two fluids in one balance: both fluids, both zeros, and what would do."""
     who = " and ".join(f"fluid {group.fluid_id} (state {', '.join(group.states)})" for group in (first, second))
     zeros = "; ".join(f"{group.fluid_id}: {_stated(group.fluid)}" for group in (first, second))
+    if is_made(first.fluid) or is_made(second.fluid):
+        message = f"{title} brings {who} into one balance, but the products of a combustor are a fluid of their own."
+        cure = "a combustor in which they join, with a fluid that names it in products_of"
+        return Fault(message, owner, found=zeros, expected=cure)
     if _same_substance(first.fluid, second.fluid):
         message = f"{title} brings {who} into one balance, but their enthalpies and entropies have different zeros."
         return Fault(message, owner, found=zeros, expected=_cure(first, second))
