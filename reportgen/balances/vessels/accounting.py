@@ -100,6 +100,11 @@ def _assume(solution: Solution, piece: Piece, vessel: Vessel) -> None:
             add("wall_begins", text, "final_wall_temperature", "heat")
     text = f"{title}: the content is of one pressure and temperature throughout, its phases in equilibrium."
     add("uniform", text, "final_temperature", basis="balance of one volume")
+    if not vessel.charging and vessel.outlet != "homogeneous":
+        text = (
+            f"{title}: when one of the phases is gone, what leaves is the content as it is, also if it condenses again."
+        )
+        add("one_phase_left", text, "mass_transferred", basis="the outlet no longer tells phases apart")
     if not vessel.charging:
         if piece.options.get("outlet") is None:
             text = f"{title}: what leaves is the content as it is, liquid and vapour in their proportion."

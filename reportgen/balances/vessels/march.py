@@ -37,7 +37,11 @@ _PLACE = 1e-12
 
 
 class Problem(Protocol):
-    """What is integrated. Arrays have the columns last; ``columns`` are the indices of those asked for."""
+    """What is integrated. Arrays have the columns last; ``columns`` are the indices of those asked for.
+
+    ``inside`` says which bodies are two-phase. A body that has once left the two-phase region is not told to be inside
+    again when rates are asked for: its phases had come apart, and one of them is gone.
+    """
 
     def rates(self, y: Array, columns: Indices, inside: Flags) -> Array:
         """y' for y of shape (k, n), with ``inside`` of shape (bodies, n); NaN where there is none."""
@@ -143,6 +147,7 @@ def march(problem: Problem, y: Array, tolerance: float) -> Steps:
     distance, now_inside, _ = problem.events(y[:, active], active)
     inside = np.zeros((now_inside.shape[0], count), dtype=bool)
     inside[:, active] = now_inside
+    left_behind = np.zeros_like(inside)
     reached = np.zeros(count, dtype=bool)
     reached[active] = distance <= 0.0
     active = active[distance > 0.0]
@@ -159,9 +164,10 @@ def march(problem: Problem, y: Array, tolerance: float) -> Steps:
         if not active.size:
             break
         before, first, mode = y[:, active], slope[:, active], inside[:, active]
+        apart = mode & ~left_behind[:, active]
         step = np.minimum(length[active], longest[active])
         mark = problem.mark(active)
-        end, slopes = method.step(before, first, step, active, mode)
+        end, slopes = method.step(before, first, step, active, apart)
         estimate = step * np.einsum("i,ikn->kn", method.error, slopes)
         size = np.max(np.abs(estimate) / (tolerance * problem.scales(before, active)), axis=0)
         whole = np.isfinite(end).all(axis=0) & np.isfinite(slopes).all(axis=(0, 1)) & np.isfinite(size)
@@ -180,7 +186,8 @@ def march(problem: Problem, y: Array, tolerance: float) -> Steps:
             passed = (left <= 0.0) | changed
             if passed.any():
                 which = np.nonzero(passed)[0]
-                start = _Start(before[:, part[which]], first[:, part[which]], columns[which], mode[:, part[which]])
+                at = part[which]
+                start = _Start(before[:, at], first[:, at], columns[which], mode[:, at], apart[:, at])
                 steps[which], ends[:, which], all_slopes[:, :, which] = _land(
                     method, start, steps[which], ends[:, which], all_slopes[:, :, which]
                 )
@@ -189,14 +196,17 @@ def march(problem: Problem, y: Array, tolerance: float) -> Steps:
                 # The next steps begin where the derivative is new.
                 length[columns[which]] = np.minimum(length[columns[which]], 0.05 * longest[columns[which]])
             dense = np.einsum("ip,ikn->kpn", method.dense, all_slopes)
-            taken.append(_Taken(columns, position[columns], steps, mode[:, part], mark[part], before[:, part], dense))
+            taken.append(_Taken(columns, position[columns], steps, apart[:, part], mark[part], before[:, part], dense))
             position[columns] += steps
             y[:, columns] = ends
             slope[:, columns] = all_slopes[-1]
             new = (now != mode[:, part]).any(axis=0)
+            left_behind[:, columns] |= mode[:, part] & ~now
             inside[:, columns] = now
             if new.any():
-                slope[:, columns[new]] = method.rates(ends[:, new], columns[new], now[:, new])
+                slope[:, columns[new]] = method.rates(
+                    ends[:, new], columns[new], now[:, new] & ~left_behind[:, columns[new]]
+                )
             longest[columns] = problem.longest(ends, slope[:, columns], columns)
             reached[columns] = left <= 0.0
         stuck = length[active] < SHORTEST * longest[active]
@@ -207,12 +217,13 @@ def march(problem: Problem, y: Array, tolerance: float) -> Steps:
 
 @dataclass(frozen=True)
 class _Start:
-    """Beginnings of steps that pass an event."""
+    """Beginnings of steps that pass an event; ``apart`` is what the rates are told of ``inside``."""
 
     y: Array
     slope: Array
     columns: Indices
     inside: Flags
+    apart: Flags
 
 
 def _land(method: _Method, start: _Start, length: Array, end: Array, slopes: Array) -> tuple[Array, Array, Array]:
@@ -238,7 +249,7 @@ def _land(method: _Method, start: _Start, length: Array, end: Array, slopes: Arr
         part = np.where((part > 0.0) & (part < 1.0) & (rounds % 6 != 5), part, 0.5)
         trial = low[open_] + part * (high - low)[open_]
         found, found_slopes = method.step(
-            start.y[:, open_], start.slope[:, open_], trial, start.columns[open_], start.inside[:, open_]
+            start.y[:, open_], start.slope[:, open_], trial, start.columns[open_], start.apart[:, open_]
         )
         value = _nearest(problem, start, open_, found) + 0.5 * _NEAR
         value = np.where(np.isfinite(value), value, -1.0)
