@@ -6,7 +6,7 @@ import re
 
 import pytest
 
-from reportgen.balances.kinds import kinds, process_kinds
+from reportgen.balances.kinds import kinds, process_kinds, vessel_kinds
 from reportgen.fluids.state import FIELDS
 from reportgen.names import AMOUNTS, DIMENSIONS, NAMES, name_of, symbol_of
 from reportgen.quantities import Display, parse, usual_units
@@ -64,8 +64,8 @@ def test_every_promised_name_is_there() -> None:
         assert name in NAMES, name
 
 
-def test_parameters_of_equipment_have_the_dimension_of_the_glossary() -> None:
-    for kind in kinds().values():
+def test_parameters_have_the_dimension_of_the_glossary() -> None:
+    for kind in (*kinds().values(), *vessel_kinds().values()):
         for parameter in (*kind.parameters, *(inner for group in kind.groups for inner in group.parameters)):
             assert NAMES[parameter.name].dimension == parameter.dimension, (kind.name, parameter.name)
 

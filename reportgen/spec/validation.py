@@ -131,7 +131,7 @@ def _note_tag(source: Source, location: Location, context: Mapping[str, Any]) ->
     place = (*location, key)
     node = source.node(place)
     if node is None:
-        noun = "process" if location[0] == "processes" else "equipment"
+        noun = {"processes": "process", "vessels": "vessel"}.get(str(location[0]), "equipment")
         what = f"what kind of {noun} it is" if key == "kind" else "which property model holds"
         source.miss(place, f'"{key}" is missing.', expected=what)
     elif not node.broken:
@@ -203,7 +203,7 @@ def _choices(expected: str) -> list[str]:
 
 def _without_tags(tagged: Location) -> tuple[str | int, ...]:
     """A location of pydantic without the names of variants that it puts behind pieces, processes, fluids and values."""
-    if len(tagged) > 2 and tagged[0] in ("equipment", "processes", "fluids"):
+    if len(tagged) > 2 and tagged[0] in ("equipment", "processes", "vessels", "fluids"):
         tagged = (*tagged[:2], *tagged[3:])
     return tuple(part for part in tagged if not _is_tag(part))
 

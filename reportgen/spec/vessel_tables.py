@@ -14,16 +14,18 @@ __all__ = ["check_vessels"]
 
 def check_vessels(source: Source) -> None:
     """States, fluids and combinations of what is given; tags are checked with those of processes."""
+    looked_at: set[str] = set()
     for tag in source.table("vessels"):
         kind = kind_of(source, tag, "vessels")
         if kind is None:
             continue
         for port in kind.ports:
             for location, state in source.texts("vessels", tag, port.name):
-                if state in source.table("states"):
-                    _check_amount(source, tag, state)
-                else:
+                if state not in source.table("states"):
                     unknown_state(source, location, state)
+                elif state not in looked_at:
+                    _check_amount(source, tag, state)
+                    looked_at.add(state)
         _check_fluids(source, tag)
         _check_given(source, tag, kind.name)
 

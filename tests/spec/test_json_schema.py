@@ -12,7 +12,7 @@ import pytest
 from jsonschema import Draft202012Validator
 
 from reportgen import spec
-from reportgen.balances.kinds import kinds, process_kinds
+from reportgen.balances.kinds import kinds, process_kinds, vessel_kinds
 from reportgen.names import DIMENSIONS
 
 ROOT = Path(__file__).parents[2]
@@ -125,7 +125,7 @@ def test_every_kind_with_its_ports_and_parameters_is_in_it(schema: dict[str, Any
         for entry in schema["$defs"].values()
         if "kind" in entry.get("properties", {})
     }
-    every = {**kinds(), **process_kinds()}
+    every = {**kinds(), **process_kinds(), **vessel_kinds()}
     assert by_kind.keys() == every.keys()
     for name, kind in every.items():
         declared = {entry.name for entry in (*kind.ports, *kind.parameters, *kind.groups, *kind.choices)}
