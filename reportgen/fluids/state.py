@@ -68,7 +68,7 @@ class State:
     specific_entropy = Field("Specific entropy s [J/(kg*K)]; zero as stated by the fluid.")
     specific_internal_energy = Field("Specific internal energy u = h − p v [J/kg].")
     quality = Field("Vapour mass fraction x [1] of two-phase and saturated states, else NaN.")
-    isobaric_heat_capacity = Field("c_p = (∂h/∂T)_p [J/(kg*K)]; NaN in two-phase states.")
+    isobaric_heat_capacity = Field("c_p = (∂h/∂T)_p [J/(kg*K)]; NaN in two phases, infinite at the critical point.")
     isochoric_heat_capacity = Field("c_v = (∂u/∂T)_v [J/(kg*K)]; NaN in two-phase states.")
     speed_of_sound = Field("w = √(∂p/∂ρ)_s [m/s]; NaN in two-phase states.")
     compressibility_factor = Field("Z = p v M/(R T) [1].")

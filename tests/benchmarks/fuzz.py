@@ -70,6 +70,8 @@ REASONS = (
     ("splits into two liquids", "three phases, or two liquids"),
     ("the covolume", "too dense"),
 )
+#: Fields that are above zero wherever they have a value.
+_POSITIVE = ("temperature", "pressure", "density", "isobaric_heat_capacity", "isochoric_heat_capacity")
 #: What no user may ever be told.
 FORBIDDEN = ("fault of the program", "Traceback")
 
@@ -259,6 +261,13 @@ def _short(value: Any) -> str:
     return repr(value)[:300]
 
 
+def _critical(model: Any, temperature: np.ndarray) -> np.ndarray:
+    """Where c_p is infinite in truth."""
+    critical = model.limits.critical_point
+    near = np.zeros(temperature.shape, dtype=bool)
+    return near if critical is None else np.abs(temperature / critical.temperature - 1) < 1e-6
+
+
 def _check(model: Any, state: State, given: dict[str, Any] | None) -> str:
     """What is wrong with a state; empty if nothing. ``given`` is None where shapes and faults are of another call."""
     limits = model.limits
@@ -280,8 +289,10 @@ def _check(model: Any, state: State, given: dict[str, Any] | None) -> str:
                 return "a state without a phase"
         elif np.isfinite(values[flagged]).any():
             return f"finite {name} beside a fault"
-        elif np.isinf(values).any():
+        elif (np.isinf(values) & ~(_critical(model, t) if name == "isobaric_heat_capacity" else False)).any():
             return f"infinite {name}"
+        elif name in _POSITIVE and (values <= 0).any():
+            return f"{name} not above zero"
     answered = np.isfinite(t) & np.isfinite(p) & np.isfinite(rho)
     with np.errstate(invalid="ignore"):
         outside = (t < limits.minimum_temperature * (1 - EDGE)) | (t > limits.maximum_temperature * (1 + EDGE))

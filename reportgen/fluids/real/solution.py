@@ -141,8 +141,8 @@ class Solution:
     def _caloric(self) -> dict[str, FloatArray]:
         """Enthalpy, entropy, internal energy, heat capacities and speed of sound.
 
-        Single phase: ``c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ)``, ``w² = (c_p/c_v) ∂p/∂ρ``. Two phases: h and s by the
-        lever rule.
+        Single phase: ``c_p = c_v + T (∂p/∂T)²/(ρ² ∂p/∂ρ)``, ``w² = ∂p/∂ρ + T (∂p/∂T)²/(ρ² c_v)``. Two phases: h and
+        s by the lever rule.
         """
         t, p, rho = self.temperature, self.pressure, self.density
         mixed = None if self.quality is None else np.flatnonzero(self._two_phase())
@@ -154,8 +154,10 @@ class Solution:
             h, s, cv = found.enthalpy, found.entropy, found.isochoric_heat_capacity
             slope = found.pressure_density
             with np.errstate(invalid="ignore", divide="ignore"):
-                cp = cv + t * (found.pressure_temperature / rho) ** 2 / slope
-                w = np.sqrt(cp / cv * slope)
+                push = t * (found.pressure_temperature / rho) ** 2
+                # at the critical point the slope is zero but for rounding, of either sign
+                cp = np.where(slope > 0, cv + push / slope, np.where(np.isnan(slope), np.nan, np.inf))
+                w = np.sqrt(slope + push / cv)
         if mixed is not None and mixed.size:
             assert self.quality is not None
             assert self.liquid_density is not None

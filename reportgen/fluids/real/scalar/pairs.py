@@ -367,8 +367,10 @@ def _caloric_fields(
 ) -> dict[str, float]:
     """The fields of a single phase by p [Pa], T [K], ρ [kg/m3] and what ``ScalarEquation.properties`` gives there."""
     _, h, s, c_v, p_rho, p_t = found
-    c_p = c_v + t * (p_t / rho) ** 2 / p_rho
-    square = c_p / c_v * p_rho
+    push = t * (p_t / rho) ** 2
+    # at the critical point the slope is zero but for rounding, of either sign
+    c_p = c_v + push / p_rho if p_rho > 0.0 else inf
+    square = p_rho + push / c_v
     return {
         "specific_enthalpy": h,
         "specific_entropy": s,
