@@ -12,8 +12,11 @@ import json
 import math
 from collections.abc import Callable
 from pathlib import Path
+from typing import Any
 
 import cantera
+import cea
+import numpy as np
 import pytest
 from click.testing import CliRunner
 from CoolProp.CoolProp import PropsSI
@@ -168,6 +171,31 @@ def _mixed_gases() -> float:
 
 def _change(values: Values, before: str, after: str) -> float:
     return values[f"states.{after}.entropy"] - values[f"states.{before}.entropy"]
+
+
+# --- combustion: complete products of one kilomole of methane, unmixed streams at 25 °C and 1 atm -------------------
+
+
+def _burner() -> tuple[float, float]:
+    """Adiabatic temperature [K] and entropy generated [kJ/K], 50 % excess air of 21 % oxygen; data of ``cea``."""
+    mixture = cea.Mixture(["CH4", "O2", "N2", "CO2", "H2O"])
+    nitrogen = 3.0 * 79.0 / 21.0
+    streams = ([1.0, 0.0, 0.0, 0.0, 0.0], [0.0, 3.0, nitrogen, 0.0, 0.0])
+    products = [0.0, 1.0, nitrogen, 1.0, 2.0]
+    modern = 8314.46261815324 / cea.R  # its gas constant is that of 1986
+
+    def whole(moles: list[float], quantity: Any, temperature: float) -> float:
+        weights = mixture.moles_to_weights(np.array(moles))
+        more = (1.01325,) if quantity == cea.ENTROPY else ()
+        return float(mixture.calc_property(quantity, weights, temperature, *more) * weights.sum() * modern / 1e3)
+
+    before = {key: sum(whole(moles, key, 298.15) for moles in streams) for key in (cea.ENTHALPY, cea.ENTROPY)}
+    low, high = 1000.0, 3000.0
+    for _ in range(60):
+        middle = 0.5 * (low + high)
+        cool = whole(products, cea.ENTHALPY, middle) < before[cea.ENTHALPY]
+        low, high = (middle, high) if cool else (low, middle)
+    return low, whole(products, cea.ENTROPY, low) - before[cea.ENTROPY]
 
 
 # --- the table: example, quantity, published number and its unit in the last digit, from the file, recomputed -------
@@ -385,6 +413,30 @@ ROWS: list[Row] = [
         0.01,
         lambda v: v["processes.F-1.entropy_generation"],
         lambda: cantera.gas_constant / 1e3 * math.log(2),
+    ),
+    (
+        "methane-burner",
+        "flame temperature, K",
+        1789.0,
+        1.0,
+        lambda v: v["states.3.temperature"],
+        lambda: _burner()[0],
+    ),
+    (
+        "methane-burner",
+        "entropy generated for each kilomole of methane, kJ/K",
+        966.0,
+        1.0,
+        lambda v: v["equipment.B-1.entropy_generation"],
+        lambda: _burner()[1],
+    ),
+    (
+        "methane-burner",
+        "work forgone for each kilomole of methane at 298 K, MJ",
+        288.0,
+        1.0,
+        lambda v: v["equipment.B-1.lost_work"] / 1e3,
+        lambda: 298.0 * _burner()[1] / 1e3,
     ),
     (
         "stirred-water",

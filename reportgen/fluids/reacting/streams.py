@@ -83,7 +83,7 @@ def contents_of(fluid: Fluid) -> Contents:
 
 
 def oxygen_bound(atoms: Mapping[str, float]) -> float:
-    """Atoms of oxygen that a molecule binds when it burns, less its own; negative where it frees some."""
+    """Atoms of oxygen [1] that a molecule binds when it burns, less its own; negative where it frees some."""
     hydrogen = max(atoms.get("H", 0) - atoms.get("Cl", 0), 0)
     return 2.0 * atoms.get("C", 0) + 0.5 * hydrogen + 2.0 * atoms.get("S", 0) - atoms.get("O", 0)
 
