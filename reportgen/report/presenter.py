@@ -231,6 +231,8 @@ class Presenter:
             return f"state\N{NO-BREAK SPACE}{name}"
         if parts[0] in ("equipment", "processes", "vessels"):
             owner = f"process\N{NO-BREAK SPACE}{name}" if parts[0] == "processes" else name
+            if parts[0] == "vessels" and len(parts) > 3:
+                owner = f"{parts[-2]} of {'.'.join(parts[1:-2])}"
             port, species = _HEAT_PORT.fullmatch(name), _SPECIES.fullmatch(name)
             if species:
                 whose = f"process\N{NO-BREAK SPACE}{species[1]}" if parts[0] == "processes" else species[1]

@@ -100,7 +100,9 @@ def _columns(figure: dict[str, Any]) -> dict[str, tuple[str, str]]:
     }
     if figure["against"] == "mass":
         del columns["mass"]
-    return {name: column for name, column in columns.items() if any(entry is not None for entry in figure.get(name, []))}
+    return {
+        name: column for name, column in columns.items() if any(entry is not None for entry in figure.get(name, []))
+    }
 
 
 def table(figure: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
