@@ -155,8 +155,10 @@ class _FlowBook(Book):
             [*_entropy_terms(piece), Term(-1.0, (carried,))],
         )
         self.lost_work(piece.owner, piece.title)
-        for formula in (*piece.kind.results(piece), *piece.kind.found(piece, self.values)):
+        for formula in piece.kind.results(piece):
             self.formula(formula)
+        for formulas in piece.kind.found(piece, self.values):
+            self.formulas(formulas)
         self._account(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
 
     def _imbalances(

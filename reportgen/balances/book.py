@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Equation, Formula, HeatPort, Term, sum_latex, token
+from reportgen.balances.relations import Equation, Formula, Formulas, HeatPort, Term, sum_latex, token
 from reportgen.balances.solution import Assumption, Solution, Step
 from reportgen.errors import Fault
 
@@ -100,6 +100,25 @@ class Book:
             (formula.balanced(),),
         )
         return self.put(step, result, formula.reason)
+
+    def formulas(self, formulas: Formulas) -> None:
+        """Enter several values that come from the same inputs, as one step."""
+        with np.errstate(all="ignore"):
+            results = formulas.evaluate(*(self.array(path) for path in formulas.inputs))
+        for path, result in zip(formulas.outputs, results, strict=True):
+            self.values[path] = np.array(np.broadcast_to(np.asarray(result, dtype=float), (self.columns,)))
+        self.solution.steps.append(
+            Step(
+                formulas.key,
+                formulas.owner,
+                formulas.name,
+                formulas.sentence,
+                formulas.basis,
+                formulas.outputs,
+                (*formulas.inputs, *(f"fluids.{fluid}" for fluid in formulas.fluids)),
+                tuple(Equation(token(path), right) for path, right in formulas.latex.items()),
+            )
+        )
 
     def entropy_with_heat(self, piece: Piece, port: HeatPort, scale: float) -> None:
         """Q/T of one boundary; ``scale`` is the size of the energy [as the heat] of which a small part is rounding."""

@@ -10,13 +10,13 @@ defines the excess air e, whatever the streams are: fuel and air apart, a mixtur
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from functools import cache
+from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 from reportgen.balances.composition import flow_paths, for_composition, is_made, with_flows
 from reportgen.balances.merit import ratio_of
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Balance, Formula, Term, token
+from reportgen.balances.relations import Balance, Formula, Formulas, Term, token
 
 if TYPE_CHECKING:
     from reportgen.fluids.reacting.streams import Contents
@@ -101,7 +101,7 @@ def air_ratio(piece: Piece) -> Formula:
     )
 
 
-@cache
+@lru_cache(maxsize=64)
 def _heating_values(fluid: Any) -> tuple[float, float]:
     from reportgen.fluids.reacting.streams import heating_values
 
@@ -198,9 +198,7 @@ def _of_composition(
             piece.owner,
             heading,
             f"{piece.title}: {sentence}",
-            "elements are conserved; complete combustion"
-            if fluid.chemistry == "complete"
-            else "elements are conserved; least Gibbs energy at outlet temperature and pressure",
+            _chemistry(fluid),
             path,
             (f"states.{outlet}.temperature", f"states.{outlet}.pressure"),
             lambda temperature, pressure: take(fluid.fractions(temperature, pressure), pressure),
@@ -212,50 +210,61 @@ def _of_composition(
     return for_composition([piece.fluid(outlet)], make)
 
 
-def mole_fractions(piece: Piece, values: Mapping[str, Any]) -> list[Formula]:
-    """Mole fraction of each species in the products at the outlet, wet and dry; traces below 1e-6 left out."""
+def mole_fractions(piece: Piece, values: Mapping[str, Any]) -> list[Formulas]:
+    """Mole fraction of every species in the products at the outlet, wet and dry.
+
+    Equations are shown of those above one in a million in the base case; the others have their values.
+    """
     outlet = piece.one("outlet")
     fluid = piece.fluid(outlet)
-    base = {path: values[path][:1] for path in flow_paths(fluid)}
-    point = (values[f"states.{outlet}.{name}"][:1] for name in ("temperature", "pressure"))
-    fractions = with_flows(fluid, base).fractions(*point)
-    found = []
-    for key in sorted(fractions, key=lambda key: -float(fractions[key][0])):
-        if not fractions[key][0] > TRACE:
-            continue
-        found.append(
-            _of_composition(
-                piece,
-                f"species.{key}.mole_fraction",
-                "Mole fraction",
-                f"{key} in the products.",
-                rf"\frac{{n_{{\mathrm{{{key}}}}}}}{{\sum n}}",
-                lambda shares, _, key=key: shares[key],
-            )
-        )
-        if key == WATER:
-            continue
-        wet = piece.path(f"species.{key}.mole_fraction")
-        water = piece.path(f"species.{WATER}.mole_fraction")
-        found.append(_dry(piece, key, wet, water if fractions.get(WATER, [0.0])[0] > TRACE else None))
-    # the fraction of water is needed by those of the dry gas
-    return sorted(found, key=lambda formula: formula.output.endswith("dry_mole_fraction"))
+    flows = flow_paths(fluid)
+    point = tuple(f"states.{outlet}.{name}" for name in ("temperature", "pressure"))
+    inputs = (*point, *(path for path in flows if path not in point))
+
+    def fractions(*arrays: Any) -> dict[str, Any]:
+        known = dict(zip(inputs, arrays, strict=True))
+        shares: dict[str, Any] = with_flows(fluid, known).fractions(arrays[0], arrays[1])
+        return shares
+
+    base = fractions(*(values[path][:1] for path in inputs))
+    keys = sorted(base, key=lambda key: -float(base[key][0]))
+    wet = {key: piece.path(f"species.{key}.mole_fraction") for key in keys}
+    dry = {key: piece.path(f"species.{key}.dry_mole_fraction") for key in keys if key != WATER}
+    shown = [key for key in keys if base[key][0] > TRACE]
+    water = wet.get(WATER)
+    part = rf"1 - {token(water)}" if water else "1"
+    return [
+        Formulas(
+            piece.path("species.composition"),
+            piece.owner,
+            "Composition of the products",
+            f"{piece.title}: amounts of the species at the outlet, in parts of all.",
+            _chemistry(fluid),
+            tuple(wet.values()),
+            inputs,
+            lambda *arrays: (lambda shares: [shares[key] for key in keys])(fractions(*arrays)),
+            {wet[key]: rf"\frac{{n_{{\mathrm{{{key}}}}}}}{{\sum n}}" for key in shown},
+            (piece.fluid_id(outlet),),
+        ),
+        Formulas(
+            piece.path("species.dry_composition"),
+            piece.owner,
+            "Composition of the dry gas",
+            f"{piece.title}: the same without the water.",
+            "definition",
+            tuple(dry.values()),
+            (*(wet[key] for key in dry), *([water] if water else [])),
+            lambda *shares: [ratio_of(share, 1.0 - (shares[-1] if water else 0.0)) for share in shares[: len(dry)]],
+            {dry[key]: rf"\frac{{{token(wet[key])}}}{{{part}}}" for key in shown if key in dry},
+        ),
+    ]
 
 
-def _dry(piece: Piece, key: str, wet: str, water: str | None) -> Formula:
-    path = piece.path(f"species.{key}.dry_mole_fraction")
-    return Formula(
-        path,
-        piece.owner,
-        "Mole fraction in the dry gas",
-        f"{piece.title}: {key} in the products without their water.",
-        "definition",
-        path,
-        (wet, water) if water else (wet,),
-        lambda share, moist=0.0: ratio_of(share, 1.0 - moist),
-        rf"\frac{{{token(wet)}}}{{1 - {token(water)}}}" if water else token(wet),
-        reason="the products are water alone",
-    )
+def _chemistry(fluid: Any) -> str:
+    """Basis of a composition of products."""
+    if fluid.chemistry == "complete":
+        return "elements are conserved; complete combustion"
+    return "elements are conserved; least Gibbs energy at outlet temperature and pressure"
 
 
 def dew_point(piece: Piece) -> Formula:
@@ -322,4 +331,8 @@ def flows_to_try(piece: Piece, known: Callable[[str], float], excess: float) -> 
         flows[state] = lacking / streams[state].free / len(airs)
     flows = {state: flow if math.isfinite(flow) else 1.0 for state, flow in flows.items()}
     outlet = piece.one("outlet")
+    rest = known(_flow(outlet)) - sum(told.values())
+    sought = sum(flow for state, flow in flows.items() if state not in told)
+    if rest > 0.0 and sought > 0.0:  # what leaves is known: the flows keep their proportions
+        flows = {state: flow if state in told else flow * rest / sought for state, flow in flows.items()}
     return found | {_flow(state): flow for state, flow in flows.items()} | {_flow(outlet): sum(flows.values())}

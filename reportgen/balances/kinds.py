@@ -19,7 +19,7 @@ if TYPE_CHECKING:
     from reportgen.balances.doubts import Doubt
     from reportgen.balances.plant import Piece
     from reportgen.balances.profiles import Along
-    from reportgen.balances.relations import Default, Exchange, Formula, HeatPort, Relation, Stretch
+    from reportgen.balances.relations import Default, Exchange, Formula, Formulas, HeatPort, Relation, Stretch
     from reportgen.errors import Fault
 
 __all__ = ["Choice", "Group", "Kind", "Parameter", "Port", "kinds", "process_kinds", "vessel_kinds"]
@@ -151,7 +151,7 @@ class Kind:
     checks: Callable[[Piece], Sequence[Fault]] = lambda piece: ()
     mixes: Callable[[Piece], bool] = lambda piece: False
     burns: bool = False
-    found: Callable[[Piece, Mapping[str, Any]], Sequence[Formula]] = lambda piece, values: ()
+    found: Callable[[Piece, Mapping[str, Any]], Sequence[Formulas]] = lambda piece, values: ()
     starts: Callable[[Piece, Callable[[str], float], float], Mapping[str, float]] = lambda piece, known, excess: {}
     species: tuple[str, ...] = ()
 

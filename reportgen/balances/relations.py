@@ -21,6 +21,7 @@ __all__ = [
     "Equation",
     "Exchange",
     "Formula",
+    "Formulas",
     "HeatPort",
     "Inverse",
     "Relation",
@@ -313,6 +314,26 @@ class Formula:
         if path in self.inverses and self.inverses[path].sentence:
             return self.inverses[path].sentence
         return self.sentence
+
+
+@dataclass(frozen=True)
+class Formulas:
+    """Several values from the same inputs in one step: (y1, y2, …) = f(x1, x2, …).
+
+    ``evaluate`` takes the inputs in order and gives an array for each of ``outputs``. ``latex`` holds the right sides
+    of those outputs whose equations are shown.
+    """
+
+    key: str
+    owner: str
+    name: str
+    sentence: str
+    basis: str
+    outputs: tuple[str, ...]
+    inputs: tuple[str, ...]
+    evaluate: Callable[..., Sequence[Array]]
+    latex: Mapping[str, str]
+    fluids: tuple[str, ...] = ()
 
 
 Relation = Balance | Formula

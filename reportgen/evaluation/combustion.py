@@ -37,7 +37,7 @@ def combustion_section(plant: EvaluatedPlant, solution: Solution) -> dict[str, A
             continue
         outlet = piece.one("outlet")
         paths = [path for path in plant.values if path.startswith(f"{piece.owner}.species.")]
-        wet = [path for path in paths if path.endswith(".mole_fraction")]
+        wet = [path for path in paths if path.endswith(".mole_fraction") and plant.samples(path)[0] > burning.TRACE]
         wet.sort(key=lambda path: -float(plant.samples(path)[0]))
         section[tag] = {
             "outlet": outlet,
