@@ -5,7 +5,8 @@
 ``heat_ports`` lists the boundaries when there are several, each with ``heat`` and ``temperature``; ``heat`` is then
 their sum. Without it ``heat`` and ``boundary_temperature`` describe the one boundary. Power is positive when delivered.
 
-Exergetic efficiency: exergy that leaves with streams, heat and power over exergy that enters with them.
+Exergetic efficiency: exergy that leaves with streams, heat and power over exergy that enters with them; a stated
+velocity counts with its kinetic energy.
 """
 
 from __future__ import annotations
@@ -42,42 +43,44 @@ def defaults(piece: Piece) -> list[Default]:
 
 def results(piece: Piece) -> list[Formula]:
     """Exergy that leaves over exergy that enters."""
-    flows = []
-    for state in (*piece.streams("in"), *piece.streams("out")):
-        flows += [f"states.{state}.mass_flow", f"states.{state}.specific_exergy"]
-    heat_paths = []
-    for port in heat_ports(piece):
-        heat_paths += [port.heat, port.entropy]
-    inputs = (*flows, *heat_paths, piece.path("power"), "surroundings.temperature")
-    entering = 2 * len(piece.streams("in"))
+    sides = {side: [f"states.{state}." for state in piece.streams(side)] for side in ("in", "out")}
+    ports = heat_ports(piece)
+    power, ambient = piece.path("power"), "surroundings.temperature"
+    streams = [*sides["in"], *sides["out"]]
+    speeds = [prefix + "velocity" for prefix in streams if prefix + "velocity" in piece.carried]
+    inputs = [prefix + name for prefix in streams for name in ("mass_flow", "specific_exergy")]
+    inputs += [*speeds, *(path for port in ports for path in (port.heat, port.entropy)), power, ambient]
 
-    def parts(*arrays: Any) -> tuple[Any, Any]:
+    def side(number: int, arrays: tuple[Any, ...]) -> Any:
         import numpy as np
 
-        power, ambient = arrays[-2], arrays[-1]
-        gained = np.maximum(power, 0.0) + sum(arrays[i] * arrays[i + 1] for i in range(entering, len(flows), 2))
-        spent = np.maximum(-power, 0.0) + sum(arrays[i] * arrays[i + 1] for i in range(0, entering, 2))
-        for i in range(len(flows), len(arrays) - 2, 2):
-            exergy = arrays[i] - ambient * arrays[i + 1]
-            gained, spent = gained + np.maximum(-exergy, 0.0), spent + np.maximum(exergy, 0.0)
-        return gained, spent
+        value = dict(zip(inputs, arrays, strict=True))
+        sign = 1.0 if number else -1.0
+        found = np.maximum(-sign * value[power], 0.0)
+        for prefix in sides["in" if number else "out"]:
+            moving = value.get(prefix + "velocity", 0.0)
+            found = found + value[prefix + "mass_flow"] * (value[prefix + "specific_exergy"] + 0.5 * moving**2)
+        for port in ports:
+            found = found + np.maximum(sign * (value[port.heat] - value[ambient] * value[port.entropy]), 0.0)
+        return found
 
-    products = [rf"{token(flows[i])}\,{token(flows[i + 1])}" for i in range(0, len(flows), 2)]
-    ambient, power = token("surroundings.temperature"), token(piece.path("power"))
-    of_heat = [
-        rf"\left({token(heat_paths[i])} - {ambient}\,{token(heat_paths[i + 1])}\right)"
-        for i in range(0, len(heat_paths), 2)
-    ]
-    leave = " + ".join([*products[entering // 2 :], *(rf"{part}^-" for part in of_heat), rf"{power}^+"])
-    enter = " + ".join([*products[: entering // 2], *(rf"{part}^+" for part in of_heat), rf"{power}^-"])
+    def product(prefix: str) -> str:
+        flow, exergy, speed = (prefix + name for name in ("mass_flow", "specific_exergy", "velocity"))
+        if speed not in speeds:
+            return rf"{token(flow)}\,{token(exergy)}"
+        return rf"{token(flow)}\left({token(exergy)} + \tfrac{{1}}{{2}}\left({token(speed)}\right)^{{2}}\right)"
+
+    of_heat = [rf"\left({token(port.heat)} - {token(ambient)}\,{token(port.entropy)}\right)" for port in ports]
+    leave = " + ".join([*map(product, sides["out"]), *(rf"{part}^-" for part in of_heat), rf"{token(power)}^+"])
+    enter = " + ".join([*map(product, sides["in"]), *(rf"{part}^+" for part in of_heat), rf"{token(power)}^-"])
     return [
         exergy_ratio(
             piece,
             "exergy that leaves over exergy that enters, with streams, heat and power "
             "(⁺ and ⁻: the size of what is positive or negative, else nothing).",
             inputs,
-            lambda *arrays: parts(*arrays)[0],
-            lambda *arrays: parts(*arrays)[1],
+            lambda *arrays: side(0, arrays),
+            lambda *arrays: side(1, arrays),
             rf"\frac{{{leave}}}{{{enter}}}",
         )
     ]
