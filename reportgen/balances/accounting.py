@@ -19,7 +19,7 @@ from reportgen.balances.cycles import add_cycle
 from reportgen.balances.equations import elevated_enthalpy
 from reportgen.balances.network import Network
 from reportgen.balances.plant import Piece, Train, balance_groups, trains_of
-from reportgen.balances.relations import Equation, Term, token
+from reportgen.balances.relations import Equation, Formulas, Term, token
 from reportgen.balances.solution import Account, Entry, Solution, Step
 from reportgen.errors import Fault
 
@@ -157,8 +157,11 @@ class _FlowBook(Book):
         self.lost_work(piece.owner, piece.title)
         for formula in piece.kind.results(piece):
             self.formula(formula)
-        for formulas in piece.kind.found(piece, self.values):
-            self.formulas(formulas)
+        for found in piece.kind.found(piece, self.values):
+            if isinstance(found, Formulas):
+                self.formulas(found)
+            else:
+                self.formula(found)
         self._account(piece.owner, piece.title, [piece], piece.streams("in"), piece.streams("out"))
 
     def _imbalances(

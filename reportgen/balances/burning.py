@@ -24,14 +24,13 @@ if TYPE_CHECKING:
 __all__ = [
     "adiabatic_temperature",
     "air_ratio",
+    "composition_results",
     "contents",
-    "dew_point",
     "excess_air",
     "flows_to_try",
     "fuel_heat",
     "heating_value",
     "is_fire",
-    "mole_fractions",
     "no_exergetic_efficiency",
 ]
 
@@ -112,29 +111,53 @@ def _fuels(piece: Piece) -> list[str]:
     return [state for state, each in contents(piece).items() if each.needed]
 
 
-def heating_value(piece: Piece, which: str) -> Formula:
-    """Mean heating value of the streams that burn, at 25 °C: "lower" with water as vapour, "higher" as liquid."""
+def heating_value(piece: Piece, which: str) -> list[Formula]:
+    """Heating value of each stream that burns, and their mean; "lower" with all water as vapour, "higher" as liquid."""
     fuels, path = _fuels(piece), piece.path(f"{which}_heating_value")
-    values = [_heating_values(piece.fluid(state))[which == "higher"] for state in fuels]
-    each = ", ".join(f"{value / 1e6:.6g} MJ/kg of stream {state}" for state, value in zip(fuels, values, strict=True))
+    each = [_stream_heating_value(piece, state, which) for state in fuels]
+    flows = [_flow(state) for state in fuels]
+    heat = " + ".join(rf"{token(flow)}\,{token(value.output)}" for flow, value in zip(flows, each, strict=True))
+
+    def mean(*arrays: Any) -> Any:
+        values, masses = arrays[: len(fuels)], arrays[len(fuels) :]
+        return ratio_of(sum(value * mass for value, mass in zip(values, masses, strict=True)), sum(masses))
+
+    single = len(fuels) == 1
+    words = "" if single else ", the mean by flow of its streams"
+    return [
+        *each,
+        Formula(
+            path,
+            piece.owner,
+            f"{which.capitalize()} heating value",
+            f"{piece.title}: {which} heating value of what burns{words}.",
+            "definition of the heating value",
+            path,
+            (each[0].output,) if single else (*(value.output for value in each), *flows),
+            (lambda value: value) if single else mean,
+            token(each[0].output) if single else rf"\frac{{{heat}}}{{{' + '.join(token(flow) for flow in flows)}}}",
+            reason="no fuel flows",
+        ),
+    ]
+
+
+def _stream_heating_value(piece: Piece, state: str, which: str) -> Formula:
+    """H = h(25 °C) − Σ n_k h_k [J/kg] of one stream."""
+    path = f"states.{state}.{which}_heating_value"
+    value = _heating_values(piece.fluid(state))[which == "higher"]
     water = "vapour" if which == "lower" else "liquid"
-    flows = [token(_flow(state)) for state in fuels]
-    symbols = [rf"H_{{\mathrm{{{state}}}}}" for state in fuels]
-    heat = " + ".join(rf"{flow}\,{symbol}" for flow, symbol in zip(flows, symbols, strict=True))
     return Formula(
         path,
         piece.owner,
         f"{which.capitalize()} heating value",
-        f"{piece.title}: heat of complete combustion at 25 °C and 101.325 kPa, all water {water}: {each}.",
+        f"{piece.title}: a kilogram of stream {state} at 25 °C and 101.325 kPa, less the products n of its complete "
+        f"combustion there, all water {water}.",
         "enthalpies of formation",
         path,
-        tuple(_flow(state) for state in fuels),
-        lambda *masses: ratio_of(
-            sum(mass * value for mass, value in zip(masses, values, strict=True)), sum(masses) if masses else 0.0
-        ),
-        rf"\frac{{{heat}}}{{{' + '.join(flows)}}}",
-        fluids=tuple(dict.fromkeys(piece.fluid_id(state) for state in fuels)),
-        reason="no fuel flows",
+        (),
+        lambda: value,
+        r"h\left(25\,\mathrm{°C}\right) - \sum n_k\,h_k\left(25\,\mathrm{°C}\right)",
+        fluids=(piece.fluid_id(state),),
     )
 
 
@@ -185,33 +208,8 @@ def adiabatic_temperature(piece: Piece) -> Formula:
     return for_composition([piece.fluid(outlet)], make)
 
 
-def _of_composition(
-    piece: Piece, name: str, heading: str, sentence: str, latex: str, take: Callable[..., Any]
-) -> Formula:
-    """A value of the composition of the products at the outlet; ``take`` gets the fractions by species, and p [Pa]."""
-    outlet = piece.one("outlet")
-    path = piece.path(name)
-
-    def make(fluid: Any) -> Formula:
-        return Formula(
-            path,
-            piece.owner,
-            heading,
-            f"{piece.title}: {sentence}",
-            _chemistry(fluid),
-            path,
-            (f"states.{outlet}.temperature", f"states.{outlet}.pressure"),
-            lambda temperature, pressure: take(fluid.fractions(temperature, pressure), pressure),
-            latex,
-            fluids=(piece.fluid_id(outlet),),
-            reason="the products have no such value",
-        )
-
-    return for_composition([piece.fluid(outlet)], make)
-
-
-def mole_fractions(piece: Piece, values: Mapping[str, Any]) -> list[Formulas]:
-    """Mole fraction of every species in the products at the outlet, wet and dry.
+def composition_results(piece: Piece, values: Mapping[str, Any]) -> list[Formula | Formulas]:
+    """Mole fraction of every species in the products at the outlet, wet and dry, and their dew point.
 
     Equations are shown of those above one in a million in the base case; the others have their values.
     """
@@ -257,6 +255,7 @@ def mole_fractions(piece: Piece, values: Mapping[str, Any]) -> list[Formulas]:
             lambda *shares: [ratio_of(share, 1.0 - (shares[-1] if water else 0.0)) for share in shares[: len(dry)]],
             {dry[key]: rf"\frac{{{token(wet[key])}}}{{{part}}}" for key in shown if key in dry},
         ),
+        *([dew_point(piece)] if water else []),
     ]
 
 
@@ -269,21 +268,27 @@ def _chemistry(fluid: Any) -> str:
 
 def dew_point(piece: Piece) -> Formula:
     """Temperature at which the water of the products condenses at the outlet pressure."""
+    outlet = piece.one("outlet")
+    path, share = piece.path("dew_point"), piece.path(f"species.{WATER}.mole_fraction")
+    pressure = f"states.{outlet}.pressure"
 
-    def point(shares: Mapping[str, Any], pressure: Any) -> Any:
+    def point(water: Any, total: Any) -> Any:
         from reportgen.fluids.gases.condensation import saturation_temperature
 
-        return saturation_temperature(shares.get(WATER, 0.0) * pressure)
+        return saturation_temperature(water * total)
 
-    outlet = piece.one("outlet")
-    return _of_composition(
-        piece,
-        "dew_point",
+    return Formula(
+        path,
+        piece.owner,
         "Dew point of the products",
-        f"temperature at which the water in state {outlet} begins to condense at its pressure; nothing is said of "
-        "sulfuric acid.",
-        rf"T_\mathrm{{sat}}\left(x_\mathrm{{H_2O}}\,{token(f'states.{outlet}.pressure')}\right)",
+        f"{piece.title}: temperature at which the water in state {outlet} begins to condense at its pressure; nothing "
+        "is said of sulfuric acid.",
+        "saturation pressure of water: IAPWS R6-95(2018), over ice R14-08(2011)",
+        path,
+        (share, pressure),
         point,
+        rf"T_\mathrm{{sat}}\left({token(share)}\,{token(pressure)}\right)",
+        reason="the products hold no water that could condense at their pressure",
     )
 
 

@@ -151,7 +151,7 @@ class Kind:
     checks: Callable[[Piece], Sequence[Fault]] = lambda piece: ()
     mixes: Callable[[Piece], bool] = lambda piece: False
     burns: bool = False
-    found: Callable[[Piece, Mapping[str, Any]], Sequence[Formulas]] = lambda piece, values: ()
+    found: Callable[[Piece, Mapping[str, Any]], Sequence[Formula | Formulas]] = lambda piece, values: ()
     starts: Callable[[Piece, Callable[[str], float], float], Mapping[str, float]] = lambda piece, known, excess: {}
     species: tuple[str, ...] = ()
 

@@ -18,14 +18,13 @@ from __future__ import annotations
 from reportgen.balances.burning import (
     adiabatic_temperature,
     air_ratio,
+    composition_results,
     contents,
-    dew_point,
     excess_air,
     flows_to_try,
     fuel_heat,
     heating_value,
     is_fire,
-    mole_fractions,
     no_exergetic_efficiency,
 )
 from reportgen.balances.composition import is_made
@@ -69,12 +68,12 @@ def defaults(piece: Piece) -> list[Default]:
 
 
 def results(piece: Piece) -> list[Formula]:
-    """Air ratio, heating values, adiabatic temperature, dew point, lost work in parts of the heat of the fuel."""
-    found = [no_exergetic_efficiency(piece), adiabatic_temperature(piece), dew_point(piece)]
+    """Air ratio, heating values, adiabatic temperature, lost work in parts of the heat of the fuel."""
+    found = [no_exergetic_efficiency(piece), adiabatic_temperature(piece)]
     if not is_fire(piece):
         return found
     heat = fuel_heat(piece)
-    of_fuel = [air_ratio(piece), heating_value(piece, "lower"), heating_value(piece, "higher"), heat]
+    of_fuel = [air_ratio(piece), *heating_value(piece, "lower"), *heating_value(piece, "higher"), heat]
     return [*of_fuel, *found, entropy_number_by_power(piece, heat.output, "heat of the fuel")]
 
 
@@ -137,7 +136,7 @@ KIND = Kind(
     ),
     checks=checks,
     burns=True,
-    found=mole_fractions,
+    found=composition_results,
     starts=flows_to_try,
     species=SPECIES,
     entropy_generation_number="Lost work over the heat of the fuel, flow times lower heating value.",
