@@ -32,6 +32,8 @@ MOST_CROSSINGS = 20
 _SAFETY, _LEAST, _MOST = 0.9, 0.2, 4.0
 #: How far behind an event, in its own measure, a step may end.
 _NEAR = 1e-10
+#: Trials after which a step is taken to the far end of its bracket.
+_MOST_TRIALS = 60
 #: Parts of a step to which an event is located.
 _PLACE = 1e-12
 
@@ -140,138 +142,146 @@ def march(problem: Problem, y: Array, tolerance: float) -> Steps:
     ``tolerance`` [1] is the error that a step may make, in parts of the scales. A column ends where its distance to the
     end is used up (``reached``), or where it can go no further because the rates have no value there.
     """
-    method = _Method(problem)
-    count = y.shape[1]
-    y = np.array(y, dtype=float)
-    active = np.nonzero(np.isfinite(y).all(axis=0))[0]
-    distance, now_inside, _ = problem.events(y[:, active], active)
-    inside = np.zeros((now_inside.shape[0], count), dtype=bool)
-    inside[:, active] = now_inside
-    left_behind = np.zeros_like(inside)
-    reached = np.zeros(count, dtype=bool)
-    reached[active] = distance <= 0.0
-    active = active[distance > 0.0]
-    slope = np.full_like(y, np.nan)
-    slope[:, active] = method.rates(y[:, active], active, inside[:, active])
-    longest = np.full(count, np.nan)
-    longest[active] = problem.longest(y[:, active], slope[:, active], active)
-    length = 1e-3 * longest
-    position = np.zeros(count)
-    crossings = np.zeros(count, dtype=int)
-    taken: list[_Taken] = []
-    active = active[np.isfinite(slope[:, active]).all(axis=0)]
+    columns = _Columns(problem, np.array(y, dtype=float), tolerance)
     for _ in range(MOST_STEPS):
-        if not active.size:
+        if not columns.active.size:
             break
-        before, first, mode = y[:, active], slope[:, active], inside[:, active]
-        apart = mode & ~left_behind[:, active]
-        step = np.minimum(length[active], longest[active])
-        mark = problem.mark(active)
-        end, slopes = method.step(before, first, step, active, apart)
-        estimate = step * np.einsum("i,ikn->kn", method.error, slopes)
-        size = np.max(np.abs(estimate) / (tolerance * problem.scales(before, active)), axis=0)
+        columns.round()
+    return _gathered(columns.taken, columns.y, columns.reached, columns.method.calls)
+
+
+class _Columns:
+    """Where every column stands; arrays have shape (N,), or end with N.
+
+    ``length`` is the step that is tried next. A step that passes an event is not taken: its column then looks for the
+    step that ends just behind the event, between ``low`` and ``high``, one trial in each round, while the others go on.
+    """
+
+    def __init__(self, problem: Problem, y: Array, tolerance: float) -> None:
+        self.problem, self.method, self.tolerance = problem, _Method(problem), tolerance
+        self.y = y
+        count = y.shape[1]
+        every = np.nonzero(np.isfinite(y).all(axis=0))[0]
+        left, now, far = problem.events(y[:, every], every)
+        self.inside = np.zeros((now.shape[0], count), dtype=bool)
+        self.inside[:, every] = now
+        self.left_behind = np.zeros_like(self.inside)
+        self.mark, self.position, self.longest = (np.full(count, fill) for fill in (np.nan, 0.0, np.nan))
+        self.mark[every] = problem.mark(every)
+        self.crossings, self.tried, self.moved = (np.zeros(count, dtype=int) for _ in range(3))
+        self.landing, self.reached = (np.zeros(count, dtype=bool) for _ in range(2))
+        self.low, self.high, self.low_value, self.high_value, self.here = (np.zeros(count) for _ in range(5))
+        self.reached[every] = left <= 0.0
+        self.here[every] = self._nearest(left, far, now, every)
+        going = every[left > 0.0]
+        self.slope = np.full_like(y, np.nan)
+        self.slope[:, going] = self.method.rates(y[:, going], going, self.inside[:, going])
+        self.longest[going] = problem.longest(y[:, going], self.slope[:, going], going)
+        self.length = 1e-3 * self.longest
+        self.active = going[np.isfinite(self.slope[:, going]).all(axis=0)]
+        self.taken: list[_Taken] = []
+
+    def round(self) -> None:
+        """One step of every active column: taken, repeated shorter, or a trial on the way to an event."""
+        active = self.active
+        landing = self.landing[active]
+        before, first = self.y[:, active], self.slope[:, active]
+        apart = self.inside[:, active] & ~self.left_behind[:, active]
+        step = np.where(landing, self.length[active], np.minimum(self.length[active], self.longest[active]))
+        end, slopes = self.method.step(before, first, step, active, apart)
+        estimate = step * np.einsum("i,ikn->kn", self.method.error, slopes)
+        size = np.max(np.abs(estimate) / (self.tolerance * self.problem.scales(before, active)), axis=0)
         whole = np.isfinite(end).all(axis=0) & np.isfinite(slopes).all(axis=(0, 1)) & np.isfinite(size)
         with np.errstate(all="ignore"):
             factor = np.where(whole, np.clip(_SAFETY * np.maximum(size, 1e-10) ** -0.2, _LEAST, _MOST), 0.3)
-        good = whole & (size <= 1.0)
-        length[active] = np.where(
-            good, step * factor, np.where(whole, np.minimum(step * factor, 0.9 * step), 0.3 * step)
-        )
+        # What is shorter than a step that was good is good as well: trials on the way to an event are not judged.
+        good = whole & ((size <= 1.0) | landing)
+        shorter = np.where(whole, np.minimum(step * factor, 0.9 * step), 0.3 * step)
+        self.length[active] = np.where(good, step * factor, np.where(landing, step, shorter))
+        self._bracket(active[landing & ~good], step[landing & ~good], np.full(np.sum(landing & ~good), -1.0))
         if good.any():
             part = np.nonzero(good)[0]
             columns = active[part]
-            ends, all_slopes, steps = end[:, part], slopes[:, :, part], step[part]
-            left, now, far = problem.events(ends, columns)
-            changed = (now != mode[:, part]).any(axis=0) & (crossings[columns] < MOST_CROSSINGS)
-            passed = (left <= 0.0) | changed
-            if passed.any():
-                which = np.nonzero(passed)[0]
-                at = part[which]
-                start = _Start(before[:, at], first[:, at], columns[which], mode[:, at], apart[:, at])
-                steps[which], ends[:, which], all_slopes[:, :, which] = _land(
-                    method, start, steps[which], ends[:, which], all_slopes[:, :, which]
-                )
-                left[which], now[:, which], far[:, which] = problem.events(ends[:, which], columns[which])
-                crossings[columns[which]] += (now[:, which] != mode[:, part[which]]).any(axis=0)
-                # The next steps begin where the derivative is new.
-                length[columns[which]] = np.minimum(length[columns[which]], 0.05 * longest[columns[which]])
-            dense = np.einsum("ip,ikn->kpn", method.dense, all_slopes)
-            taken.append(_Taken(columns, position[columns], steps, apart[:, part], mark[part], before[:, part], dense))
-            position[columns] += steps
-            y[:, columns] = ends
-            slope[:, columns] = all_slopes[-1]
-            new = (now != mode[:, part]).any(axis=0)
-            left_behind[:, columns] |= mode[:, part] & ~now
-            inside[:, columns] = now
-            if new.any():
-                slope[:, columns[new]] = method.rates(
-                    ends[:, new], columns[new], now[:, new] & ~left_behind[:, columns[new]]
-                )
-            longest[columns] = problem.longest(ends, slope[:, columns], columns)
-            reached[columns] = left <= 0.0
-        stuck = length[active] < SHORTEST * longest[active]
-        lost = ~np.isfinite(slope[:, active]).all(axis=0)
-        active = active[~(reached[active] | stuck | lost)]
-    return _gathered(taken, y, reached, method.calls)
-
-
-@dataclass(frozen=True)
-class _Start:
-    """Beginnings of steps that pass an event; ``apart`` is what the rates are told of ``inside``."""
-
-    y: Array
-    slope: Array
-    columns: Indices
-    inside: Flags
-    apart: Flags
-
-
-def _land(method: _Method, start: _Start, length: Array, end: Array, slopes: Array) -> tuple[Array, Array, Array]:
-    """Steps shortened so that they end just behind the first event they pass.
-
-    Bracketing with the method of Illinois (Dowell and Jarratt 1971, https://doi.org/10.1007/BF01934364) on the nearest
-    of the events, which is positive before it; at most 60 rounds, halving the bracket where that gains little.
-    """
-    problem, every = method.problem, np.arange(length.size)
-    end, slopes = end.copy(), slopes.copy()
-    low, high = np.zeros_like(length), length.copy()
-    # Aimed at is a place a little behind the event, so that the last step ends behind it.
-    low_value = _nearest(problem, start, every, start.y) + 0.5 * _NEAR
-    high_value = _nearest(problem, start, every, end) + 0.5 * _NEAR
-    moved_low = np.zeros(length.size, dtype=int)
-    open_ = np.nonzero(high_value < -0.5 * _NEAR)[0]
-    for rounds in range(60):
-        open_ = open_[(high - low)[open_] > _PLACE * length[open_]]
-        if not open_.size:
-            break
+            left, now, far = self.problem.events(end[:, part], columns)
+            value = self._nearest(left, far, self.inside[:, columns], columns)
+            forced = self.landing[columns] & (self.tried[columns] >= _MOST_TRIALS)
+            take = np.where(self.landing[columns], (value <= 0.0) & (value >= -_NEAR) | forced, value >= -_NEAR)
+            self._bracket(columns[~take], step[part[~take]], value[~take])
+            if take.any():
+                kept = part[take]
+                dense = np.einsum("ip,ikn->kpn", self.method.dense, slopes[:, :, kept])
+                self._take(columns[take], step[kept], end[:, kept], slopes[-1][:, kept], apart[:, kept], dense)
+                self._arrive(columns[take], left[take], now[:, take], far[:, take])
         with np.errstate(all="ignore"):
-            part = low_value[open_] / (low_value[open_] - high_value[open_])
-        part = np.where((part > 0.0) & (part < 1.0) & (rounds % 6 != 5), part, 0.5)
-        trial = low[open_] + part * (high - low)[open_]
-        found, found_slopes = method.step(
-            start.y[:, open_], start.slope[:, open_], trial, start.columns[open_], start.apart[:, open_]
-        )
-        value = _nearest(problem, start, open_, found) + 0.5 * _NEAR
-        value = np.where(np.isfinite(value), value, -1.0)
+            stuck = ~self.landing[active] & (self.length[active] < SHORTEST * self.longest[active])
+        lost = ~np.isfinite(self.slope[:, active]).all(axis=0)
+        self.active = active[~(self.reached[active] | stuck | lost)]
+
+    def _nearest(self, left: Array, far: Array, inside: Flags, columns: Indices) -> Array:
+        """Distance to the nearest event, shape (n,): the end, or the saturation line from the side a body is on."""
+        sides = np.where(inside, -far, far)
+        sides = np.where(self.crossings[columns] < MOST_CROSSINGS, sides, np.inf)
+        nearest: Array = np.minimum(left, np.min(sides, axis=0, initial=np.inf))
+        return nearest
+
+    def _bracket(self, columns: Indices, step: Array, value: Array) -> None:
+        """Narrow the bracket round an event by a trial, or begin one; choose the next trial.
+
+        Method of Illinois (Dowell and Jarratt 1971, https://doi.org/10.1007/BF01934364), aimed at a place a little
+        behind the event; halving from time to time, and the far end of the bracket when nothing else is left.
+        """
+        if not columns.size:
+            return
+        begin = ~self.landing[columns]
+        fresh = columns[begin]
+        self.landing[fresh], self.tried[fresh], self.moved[fresh] = True, 0, 0
+        self.low[fresh], self.low_value[fresh] = 0.0, self.here[fresh] + 0.5 * _NEAR
+        value = value + 0.5 * _NEAR
         behind = value <= 0.5 * _NEAR
-        kept, moved = open_[behind], open_[~behind]
-        high[kept], high_value[kept] = trial[behind], value[behind]
-        end[:, kept], slopes[:, :, kept] = found[:, behind], found_slopes[:, :, behind]
-        low[moved], low_value[moved] = trial[~behind], value[~behind]
+        kept, gone = columns[behind], columns[~behind]
+        self.high[kept], self.high_value[kept] = step[behind], value[behind]
+        self.low[gone], self.low_value[gone] = step[~behind], value[~behind]
         # An end that stays twice is weighed half.
-        low_value[kept] *= np.where(moved_low[kept] == -1, 0.5, 1.0)
-        high_value[moved] *= np.where(moved_low[moved] == 1, 0.5, 1.0)
-        moved_low[kept], moved_low[moved] = -1, 1
-        open_ = open_[~(behind & (value >= -0.5 * _NEAR))]
-    return high, end, slopes
+        self.low_value[kept] *= np.where(self.moved[kept] == -1, 0.5, 1.0)
+        self.high_value[gone] *= np.where(self.moved[gone] == 1, 0.5, 1.0)
+        self.moved[kept], self.moved[gone] = -1, 1
+        self.moved[fresh] = 0
+        self.tried[columns] += 1
+        low, high = self.low[columns], self.high[columns]
+        with np.errstate(all="ignore"):
+            part = self.low_value[columns] / (self.low_value[columns] - self.high_value[columns])
+        part = np.where((part > 0.0) & (part < 1.0) & (self.tried[columns] % 6 != 5), part, 0.5)
+        narrow = high - low <= _PLACE * high
+        self.tried[columns] = np.where(narrow, _MOST_TRIALS, self.tried[columns])
+        last = self.tried[columns] >= _MOST_TRIALS
+        self.length[columns] = np.where(last, high, low + part * (high - low))
 
+    def _take(self, columns: Indices, step: Array, end: Array, slope: Array, apart: Flags, dense: Array) -> None:
+        """Accept steps."""
+        self.taken.append(
+            _Taken(columns, self.position[columns], step, apart, self.mark[columns], self.y[:, columns], dense)
+        )
+        self.position[columns] += step
+        self.y[:, columns], self.slope[:, columns] = end, slope
 
-def _nearest(problem: Problem, start: _Start, which: Indices, y: Array) -> Array:
-    """Distance to the nearest event, shape (n,): the end, or the saturation line from the side a body is on."""
-    left, _, far = problem.events(y, start.columns[which])
-    signed = np.where(start.inside[:, which], -far, far)
-    nearest: Array = np.minimum(left, np.min(signed, axis=0, initial=np.inf))
-    return nearest
+    def _arrive(self, columns: Indices, left: Array, now: Flags, far: Array) -> None:
+        """Where accepted steps have led to: other sides of saturation lines, the end."""
+        new = (now != self.inside[:, columns]).any(axis=0)
+        self.crossings[columns] += new
+        self.left_behind[:, columns] |= self.inside[:, columns] & ~now
+        self.inside[:, columns] = now
+        self.mark[columns] = self.problem.mark(columns)
+        if new.any():
+            changed = columns[new]
+            apart = now[:, new] & ~self.left_behind[:, changed]
+            self.slope[:, changed] = self.method.rates(self.y[:, changed], changed, apart)
+        self.longest[columns] = self.problem.longest(self.y[:, columns], self.slope[:, columns], columns)
+        # Behind an event the derivative is new, and the next step begins small.
+        landed = columns[self.landing[columns]]
+        self.length[landed] = 0.05 * self.longest[landed]
+        self.landing[columns] = False
+        self.reached[columns] = left <= 0.0
+        self.here[columns] = self._nearest(left, far, now, columns)
 
 
 def _gathered(taken: list[_Taken], y: Array, reached: Flags, calls: int) -> Steps:
