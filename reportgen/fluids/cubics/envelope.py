@@ -13,6 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.cubics.equilibrium import Pairing, equilibrate
+from reportgen.fluids.cubics.flash import flash
 from reportgen.fluids.cubics.fugacity import phase_at
 from reportgen.fluids.cubics.stability import tangent_plane_test
 from reportgen.fluids.cubics.thermodynamics import MolarModel
@@ -26,6 +27,13 @@ BoolArray = NDArray[np.bool_]
 Branch = Literal["bubble", "dew"]
 
 _BISECTIONS = 50
+#: Temperatures and pressures of each kind at which the line is held against flashes, the pressures [Pa] between which
+#: they lie, and the relative distance in T from the line at which they say nothing.
+_SAMPLES = 25
+_SAMPLED_PRESSURES = (1e2, 9e7)
+_NEAR = 1e-3
+#: Margin on the highest temperature of an unstable point.
+_MARGIN = 1.05
 #: States whose crossings are looked up at a time.
 _CHUNK = 4096
 
@@ -60,7 +68,7 @@ class Envelope:
         tracer = Tracer(model, feed, lowest_temperature)
         points = tracer.points
         self.critical_point: CriticalPoint | None = tracer.critical
-        self.whole = tracer.whole
+        self._traced = tracer.whole
         self._values = np.array([point.values for point in points]).reshape(-1, self._size + 2)
         self._tangents = np.array([point.tangent for point in points]).reshape(-1, self._size + 2)
         self._bubble = np.array([point.bubble for point in points], dtype=np.bool_)
@@ -80,9 +88,53 @@ class Envelope:
         return stable
 
     @cached_property
-    def stable(self) -> bool:
-        """Whether all of the line is stable: else, somewhere, a second liquid forms."""
-        return bool(self._stable.all())
+    def _sampled(self) -> tuple[bool, float]:
+        """Whether flashes at points all over the range of interest agree with the line, and the temperature [K] below
+        which one of them gives a second liquid or a third phase.
+        """
+        if not self._traced:
+            return False, np.inf
+        hottest = 1.2 * float(self._model.mixture.critical_temperatures.max())
+        t = np.linspace(self._coldest / 0.98, max(hottest, 1.1 * self._coldest), _SAMPLES)
+        p = np.geomspace(_SAMPLED_PRESSURES[0], _SAMPLED_PRESSURES[1], _SAMPLES)
+        temperature, pressure = (grid.ravel() for grid in np.meshgrid(t, p))
+        split = flash(self._model, self._feed, temperature, pressure)
+        hotter, nearest = self._hotter(p, t)
+        clear = nearest.ravel() > _NEAR
+        mixed = (split.fraction > 0.0) & (split.fraction < 1.0)
+        agrees = (mixed == (hotter.ravel() % 2 == 1)) | split.third | ~clear
+        third = temperature[split.third]
+        return bool(agrees.all()), float(third.max() + (t[1] - t[0])) if third.size else 0.0
+
+    def _hotter(self, pressure: FloatArray, temperature: FloatArray) -> tuple[NDArray[np.intp], FloatArray]:
+        """How often the line crosses each isobar above each temperature, shape (pressures, temperatures), and the
+        relative distance to the nearest crossing.
+        """
+        level = np.log(pressure)
+        above = self._values[None, :, -1] > level[:, None]
+        isobar, segment = np.nonzero(above[:, 1:] != above[:, :-1])
+        crossing = np.exp(self._between(segment, self._place(segment, level[isobar], self._size + 1))[self._size])
+        count = np.zeros((pressure.size, temperature.size), dtype=np.intp)
+        nearest = np.full(count.shape, np.inf)
+        for row, at in zip(isobar, crossing, strict=True):
+            count[row] += at > temperature
+            nearest[row] = np.minimum(nearest[row], np.abs(temperature / at - 1.0))
+        return count, nearest
+
+    @property
+    def whole(self) -> bool:
+        """Whether the line leaves what is of interest at both ends, and tells one phase from two wherever that was
+        tried: then its crossings with isobars and isotherms can be relied on.
+        """
+        return self._traced and self._sampled[0]
+
+    @cached_property
+    def doubtful_temperature(self) -> float:
+        """Temperature [K] below which a second liquid may form, so that crossings do not tell everything; zero where
+        none was met, neither on the line nor elsewhere.
+        """
+        unstable = np.exp(self._values[~self._stable, self._size])
+        return max(self._sampled[1], float(unstable.max(initial=0.0)) * _MARGIN)
 
     @property
     def highest_pressure(self) -> float:

@@ -118,9 +118,9 @@ class Equilibria:
         return Envelope(self.model, self.feed, self.model.ideal.minimum_temperature)
 
     @property
-    def doubtful(self) -> bool:
-        """Whether a second liquid may form, so that crossings of the envelope do not tell everything."""
-        return not self.pure and not self.envelope.stable
+    def doubtful_temperature(self) -> float:
+        """Temperature [K] below which a second liquid may form, so that crossings of the envelope do not tell all."""
+        return 0.0 if self.pure else self.envelope.doubtful_temperature
 
     @cached_property
     def saturation(self) -> PureSaturation:

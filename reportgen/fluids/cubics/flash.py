@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 
 from reportgen.fluids.cubics.equilibrium import Pairing, equilibrate
 from reportgen.fluids.cubics.fugacity import Phase, phase_at
+from reportgen.fluids.cubics.gibbs import least_gibbs
 from reportgen.fluids.cubics.mixing import Conditions
 from reportgen.fluids.cubics.rachford_rice import vapour_fraction
 from reportgen.fluids.cubics.stability import tangent_plane_test
@@ -29,9 +30,11 @@ CHUNK = 4096
 
 #: Successive substitutions before each try of Newton's method, the change of ln K [1] at which it is tried early, and
 #: whether they are sped up.
-_ROUNDS = ((5, 0.02, True), (15, 5e-3, True), (60, 1e-3, True), (500, 1e-7, False))
+_ROUNDS = ((5, 0.02, True), (15, 5e-3, True), (60, 1e-3, True))
+#: Multiples of the first ln K, and shares of vapour, from which Newton's method is tried in between.
+_STRETCHED = ((1.5, 0.5), (2.0, 0.5), (1.2, 0.5), (3.0, 0.5), (1.5, 0.3), (1.5, 0.7))
 #: Gibbs energy over R T [1] by which two phases may seem to lie above one, by rounding.
-_ROUNDING = 1e-9
+_ROUNDING = 1e-12
 #: A light phase is a second liquid when it is below this part of the critical temperature of its own composition, as
 #: the equation has it without separation, and its volume is below this multiple of the covolume.
 _LIQUID_TEMPERATURE = 0.95
@@ -102,35 +105,69 @@ def _flash(model: MolarModel, feed: FloatArray, temperature: FloatArray, pressur
 
 
 def split(
-    model: MolarModel, feed: FloatArray, conditions: Conditions, ln_ratio: FloatArray, alone: FloatArray | None = None
+    model: MolarModel, feed: FloatArray, conditions: Conditions, ln_ratio: FloatArray, alone: FloatArray
 ) -> tuple[Pairing, BoolArray]:
     """Two phases at given conditions from estimates of ln K_i [1], shape (C, N), and where they were found.
 
-    ``alone`` is the Gibbs energy over R T [1] of the feed as one phase, which two phases must not exceed; None where
-    the feed is known to split.
+    ``alone`` is the Gibbs energy over R T [1] of the feed as one phase, which two phases must not exceed.
     """
     size = conditions.temperature.size
     pairing = Pairing(ln_ratio.copy(), conditions.temperature.copy(), conditions.pressure.copy(), np.full(size, 0.5))
     found = np.zeros(size, dtype=np.bool_)
+
+    def accept(todo: NDArray[np.intp], start: Pairing) -> NDArray[np.intp]:
+        """Newton's method from a start; returns what is left to do."""
+        end, good = equilibrate(model, feed, start, ("temperature", "pressure"), {})
+        good &= (end.fraction > -1e-9) & (end.fraction < 1.0 + 1e-9)
+        if good.any():
+            here = conditions.take(todo[good])
+            good[good] = _gibbs(model, feed, here, end.take(good)) <= alone[todo[good]] + _ROUNDING
+        end = end._replace(fraction=np.clip(end.fraction, 0.0, 1.0))
+        pairing.put(todo[good], end.take(good))
+        found[todo[good]] = True
+        return todo[~good]
+
     todo = np.arange(size)
-    for count, early, speed_up in _ROUNDS:
+    for number, (count, early, speed_up) in enumerate(_ROUNDS):
         here = conditions.take(todo)
         ratio = _substitute(model, feed, here, pairing.ln_ratio[:, todo], count, early, speed_up)
         start = Pairing(ratio, here.temperature, here.pressure, vapour_fraction(feed, ratio))
         pairing.put(todo, start)
-        end, good = equilibrate(model, feed, start, ("temperature", "pressure"), {})
-        good &= (end.fraction > -1e-9) & (end.fraction < 1.0 + 1e-9)
-        if alone is not None and good.any():
-            tried = end.take(good)
-            level = alone[todo[good]]
-            good[good] = _gibbs(model, feed, here.take(good), tried) <= level + _ROUNDING
-        end = end._replace(fraction=np.clip(end.fraction, 0.0, 1.0))
-        pairing.put(todo[good], end.take(good))
-        found[todo[good]] = True
-        todo = todo[~good]
+        todo = accept(todo, start)
+        if number == 1:
+            # next to the critical point substitution hardly moves, while the phases lie beyond the trial phase
+            for stretch, fraction in _STRETCHED:
+                if todo.size:
+                    here = conditions.take(todo)
+                    half = np.full(todo.size, fraction)
+                    todo = accept(todo, Pairing(stretch * ln_ratio[:, todo], here.temperature, here.pressure, half))
         if not todo.size:
             break
+    if todo.size:
+        _settle_by_gibbs(model, feed, conditions, ln_ratio, pairing, found, todo)
     return _ordered(model, feed, conditions, pairing), found
+
+
+def _settle_by_gibbs(
+    model: MolarModel,
+    feed: FloatArray,
+    conditions: Conditions,
+    ln_ratio: FloatArray,
+    pairing: Pairing,
+    found: BoolArray,
+    todo: NDArray[np.intp],
+) -> None:
+    """Fill in what equal fugacities have not led to, from the trial phases K z."""
+    here = conditions.take(todo)
+    amounts, good = least_gibbs(model.mixture, feed, here, ln_ratio[:, todo] + np.log(feed))
+    some = todo[good]
+    amounts = amounts[:, good]
+    rest = feed - amounts
+    fraction = np.sum(amounts, axis=0)
+    ratio = np.log(amounts / rest) + np.log((1.0 - fraction) / fraction)
+    here = conditions.take(some)
+    pairing.put(some, Pairing(ratio, here.temperature, here.pressure, fraction))
+    found[some] = True
 
 
 def _substitute(

@@ -32,6 +32,9 @@ FloatArray = NDArray[np.float64]
 #: Pressures of a pure substance closer than this to saturation (relative) do not tell liquid from vapour.
 _SATURATION_BAND = 1e-9
 
+#: States worked on at a time.
+_CHUNK = 16384
+
 #: Properties by which a state is sought along an isobar or isotherm.
 _TARGETS: dict[str, Target] = {
     "specific_enthalpy": "enthalpy",
@@ -223,21 +226,24 @@ class CubicFluid:
     def _states(self, given: Pair, usable: NDArray[np.intp], elements: Elements) -> States:
         """States of all elements, NaN where there is none."""
         states = States.nowhere(len(self._fractions), elements.size)
-        if not usable.size:
-            return states
-        part = Elements(usable.size)
-        pair = Pair(given.names, given.first[usable], given.second[usable], (usable.size,))
-        # far from a solution, searches may overflow; what they return is checked for each element
-        with np.errstate(all="ignore"):
-            found = self._pairs[given.names](pair, part)
-            third = found.third & found.found
-            p, t = found.pressure.copy(), found.temperature.copy()
-            part.reject(third, lambda i: self._guard.third_phase(p[i], t[i]))
-            part.reject(~found.found, lambda i: self._guard.none(given.names, (pair.first[i], pair.second[i])))
-            found.drop(part.rejected)
-        states.put(usable, found)
-        elements.take_over(part, usable)
+        for start in range(0, usable.size, _CHUNK):
+            where = usable[start : start + _CHUNK]
+            part = Elements(where.size)
+            pair = Pair(given.names, given.first[where], given.second[where], (where.size,))
+            # far from a solution, searches may overflow; what they return is checked for each element
+            with np.errstate(all="ignore"):
+                states.put(where, self._chunk(pair, part))
+            elements.take_over(part, where)
         return states
+
+    def _chunk(self, pair: Pair, elements: Elements) -> States:
+        """States of some elements, NaN where there is none, with the reason."""
+        found = self._pairs[pair.names](pair, elements)
+        p, t = found.pressure.copy(), found.temperature.copy()
+        elements.reject(found.third & found.found, lambda i: self._guard.third_phase(p[i], t[i]))
+        elements.reject(~found.found, lambda i: self._guard.none(pair.names, (pair.first[i], pair.second[i])))
+        found.drop(elements.rejected)
+        return found
 
     # --- pairs --------------------------------------------------------------------------------------------------------
 

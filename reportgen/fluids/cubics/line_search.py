@@ -94,8 +94,11 @@ class Search:
         rest = np.flatnonzero(~boundaries.simple & ~open_ended & ~absent & (self._thorough | (crossings > 1)))
         if rest.size:
             self._by_flashes(rest, *self._crossings(rest, crossings[rest] % 2 == 1))
-        if self._equilibria.doubtful and self._thorough:
-            self._verify(np.setdiff1d(np.flatnonzero(self.sought.states.found), rest))
+        if self._thorough:
+            doubtful = self.sought.states.temperature < self._equilibria.doubtful_temperature
+            doubtful[rest] = False
+            if doubtful.any():
+                self._verify(np.flatnonzero(doubtful))
 
     def _crossings(self, where: Indices, odd: BoolArray) -> tuple[FloatArray, FloatArray] | tuple[None, None]:
         """Ends between which two phases may be; None where the whole line is to be searched. After an ``odd`` number of

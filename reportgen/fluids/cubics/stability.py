@@ -39,7 +39,7 @@ _NEWTON_STEPS = 60
 #: Longest step [1] in ln W.
 _LONGEST = 2.0
 #: Where the gradient ends, and where a trial phase is on its way into the phase tested: square of the distance in
-#: ln W, and the least shrinking of it from step to step that is trusted.
+#: ln W and ln(v/b), and the least shrinking of it from step to step that is trusted.
 _STATIONARY = 1e-8
 _TRIVIAL = 1e-5
 _TRIVIAL_RATE = 0.5
@@ -81,7 +81,10 @@ def tangent_plane_test(
     size = conditions.temperature.size
     ln_feed = np.log(feed)
     level = ln_feed + tested.ln_phi
-    known = (ln_feed, *(np.log(other) for other in others))
+    known = [(ln_feed, np.log(tested.compressibility / tested.covolume))]
+    for other in others:
+        phase = phase_at(mixture, conditions, other)
+        known.append((np.log(other), np.log(phase.compressibility / phase.covolume)))
     threshold = _THIRD_PHASE if others else _UNSTABLE
     lowest = np.full(size, threshold)
     best = np.full(feed.shape, np.nan)
@@ -96,7 +99,9 @@ def tangent_plane_test(
         if not todo.size:
             break
         each = np.tile(todo, len(wave))
-        descent = _Descent(mixture, conditions.take(each), level[:, each], tuple(array[:, each] for array in known))
+        descent = _Descent(
+            mixture, conditions.take(each), level[:, each], [(ln[:, each], space[each]) for ln, space in known]
+        )
         reached, trial, compressibility = descent.run(np.concatenate([start(todo) for start in wave], axis=1))
         deepest = np.argmin(reached.reshape(len(wave), todo.size), axis=0) * todo.size + np.arange(todo.size)
         better = reached[deepest] < lowest[todo]
@@ -141,11 +146,15 @@ class _Descent:
     ----------
     mixture, conditions : as above.
     level : d_i [1], shape (C, n).
-    known : ln of mole fractions at which tm is known to be stationary and not negative.
+    known : ln of mole fractions, and ln(v/b), of phases at which tm is known to be stationary and not negative.
     """
 
     def __init__(
-        self, mixture: Mixture, conditions: Conditions, level: FloatArray, known: tuple[FloatArray, ...]
+        self,
+        mixture: Mixture,
+        conditions: Conditions,
+        level: FloatArray,
+        known: list[tuple[FloatArray, FloatArray]],
     ) -> None:
         self._mixture, self._conditions, self._level, self._known = mixture, conditions, level, known
         size = conditions.temperature.size
@@ -176,16 +185,18 @@ class _Descent:
             self._compressibility[where] = phase.compressibility[lower]
         return phase, gradient, distance
 
-    def _apart(self, todo: NDArray[np.intp], trial: FloatArray) -> FloatArray:
-        """Square of the distance to the nearest phase known, in ln W."""
-        return np.asarray(np.min([np.sum((trial - ln[:, todo]) ** 2, axis=0) for ln in self._known], axis=0))
+    def _apart(self, todo: NDArray[np.intp], trial: FloatArray, phase: Phase) -> FloatArray:
+        """Square of the distance to the nearest phase known, in ln W and ln(v/b)."""
+        space = np.log(phase.compressibility / phase.covolume)
+        each = [np.sum((trial - ln[:, todo]) ** 2, axis=0) + (space - other[todo]) ** 2 for ln, other in self._known]
+        return np.asarray(np.min(each, axis=0))
 
     def _substitute(self, todo: NDArray[np.intp], trial: FloatArray) -> tuple[NDArray[np.intp], FloatArray]:
         """ln W_i ← d_i − ln φ_i(W); returns what is neither settled nor negative."""
         before = np.full(todo.size, np.inf)
         step = np.zeros_like(trial)
         for iteration in range(_SUBSTITUTIONS):
-            _, gradient, distance = self._evaluate(todo, trial)
+            phase, gradient, distance = self._evaluate(todo, trial)
             if iteration % 4 == 3:
                 # dominant eigenvalue, after Orbach and Crowe (1971)
                 part = np.sum(gradient * step, axis=0) / np.maximum(np.sum(step * step, axis=0), 1e-300)
@@ -193,7 +204,7 @@ class _Descent:
             else:
                 factor = np.ones_like(distance)
             moved = trial - factor * gradient
-            apart = self._apart(todo, moved)
+            apart = self._apart(todo, moved, phase)
             trivial = (apart < _TRIVIAL) & (apart < _TRIVIAL_RATE * before)
             settled = np.max(np.abs(gradient), axis=0) < _STATIONARY
             keep = ~(trivial & (distance > 0.0) | settled | (distance < _DEEP))
@@ -214,7 +225,7 @@ class _Descent:
             phase, slope, value = self._evaluate(todo, tried)
             better = value <= distance + 1e-14
             done = better & (np.max(np.abs(slope), axis=0) < _STATIONARY)
-            done |= better & (value > 0.0) & (self._apart(todo, tried) < 1e-3 * _TRIVIAL)
+            done |= better & (value > 0.0) & (self._apart(todo, tried, phase) < 1e-3 * _TRIVIAL)
             done |= (value < _DEEP) | (length < 1e-4)
             root = np.where(better, moved, root)
             trial, gradient = np.where(better, tried, trial), np.where(better, slope, gradient)

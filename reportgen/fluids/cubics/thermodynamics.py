@@ -25,6 +25,10 @@ __all__ = ["Bulk", "MolarModel", "Partial"]
 FloatArray = NDArray[Any]
 
 
+#: States worked on at a time, so that the temporaries stay small.
+_CHUNK = 8192
+
+
 class Bulk(NamedTuple):
     """Properties of a phase, shape (N,): ``volume`` [m3/mol] (translated), ``enthalpy`` [J/mol], ``entropy``,
     ``isobaric_heat_capacity``, ``isochoric_heat_capacity`` [J/(mol*K)]; (∂p/∂v)_T [Pa*mol/m3] and (∂p/∂T)_v [Pa/K].
@@ -74,6 +78,10 @@ class MolarModel:
 
     def bulk(self, temperature: FloatArray, pressure: FloatArray, volume: FloatArray, fractions: FloatArray) -> Bulk:
         """Properties at T [K], p [Pa], untranslated volume v' [m3/mol] and mole fractions [1] of shape (C, N)."""
+        if temperature.size > _CHUNK:
+            slices = (slice(start, start + _CHUNK) for start in range(0, temperature.size, _CHUNK))
+            parts = [self.bulk(temperature[s], pressure[s], volume[s], fractions[:, s]) for s in slices]
+            return Bulk(*(np.concatenate(field) for field in zip(*parts, strict=True)))
         mixture = self.mixture
         strength = mixture.strength(mixture.attraction(temperature), fractions)
         found = departures(mixture.form, strength, temperature, pressure, volume)
