@@ -32,6 +32,8 @@ _SATURATION = ("quality", "superheat", "subcooling")
 #: Ratios to a pressure and number of temperatures that are tried in the place of a start that does not exist.
 _RATIOS_TRIED = np.concatenate([[1.0], 10.0 ** np.linspace(-3.0, 3.0, 49)])
 _LEVELS_TRIED = 24
+#: Systems above this size are started as they are; times that a start is projected.
+_MOST_PROJECTED, _PROJECTIONS = 150, 40
 
 #: Beginnings of the paths of what pieces and processes give.
 _OF_PIECES = ("equipment.", "processes.")
@@ -169,6 +171,40 @@ class Coupled:
         for formula in self.formulae:
             values[formula.output] = formula.evaluate(*(values[path] for path in formula.inputs))
         return values, computed
+
+    def consistent(self, x: Array) -> Array:
+        """The start x, shape (T, 1), moved as little as can be to where all balances hold that are linear in the tears.
+
+        Pressures stay above half of what they were: alternating projections, after which what is left is small.
+        """
+        rows = [
+            relation
+            for relation in self.residuals
+            if isinstance(relation, Balance)
+            and all(path in self.known or path in self.index for path in relation.variables)
+            and relation.is_linear_in(self.tears)
+        ]
+        if not rows or len(self.tears) > _MOST_PROJECTED:
+            return x
+        values = {path: array[:1] for path, array in self.known.items()}
+        scale = np.maximum(np.abs(x[:, 0]), [typical(path) for path in self.tears])
+        matrix = np.zeros((len(rows), len(self.tears)))
+        here = values | {path: x[number] for path, number in self.index.items()}
+        for number, relation in enumerate(rows):
+            for path in relation.variables:
+                if path in self.index:
+                    matrix[number, self.index[path]] = float(np.asarray(relation.derivative(path, here)).flat[0])
+        matrix = matrix * scale
+        right = -np.array([float(np.asarray(relation.residual(here)).flat[0]) for relation in rows])
+        if not (np.isfinite(matrix).all() and np.isfinite(right).all()):
+            return x
+        inverse = np.linalg.pinv(matrix, rcond=1e-10)
+        lowest = np.where([path.endswith(".pressure") for path in self.tears], -0.5 * x[:, 0] / scale, -np.inf)
+        moved = np.zeros(len(self.tears))
+        for _ in range(_PROJECTIONS):
+            moved = np.maximum(moved + inverse @ (right - matrix @ moved), lowest)
+        moved += inverse @ (right - matrix @ moved)
+        return x + (moved * scale)[:, None] if np.all(moved >= 1.8 * lowest) else x
 
     def within_range(self, x: Array) -> Array:
         """The start x, shape (T, 1), with states that do not exist moved to the nearest that do.

@@ -158,8 +158,9 @@ def _heats(piece: Piece, inside: frozenset[str]) -> Iterable[_Heat]:
     for port in piece.kind.heats(piece):
         into = states if port.into is None or port.beside else set(port.into)
         if into & inside:
-            exergy = (Term(1.0, (port.heat,)), Term(-1.0, (AMBIENT, port.entropy)))
-            yield _Heat(Reservoir(port.label, port.heat, 1, port.temperature), exergy, piece.kind.serves, port.beside)
+            with_heat = (Term(1.0, (port.heat,)), Term(-1.0, (AMBIENT, port.entropy)))
+            boundary = Reservoir(port.label, port.heat, 1, port.temperature)
+            yield _Heat(boundary, with_heat, piece.kind.serves, port.beside)
     for exchange in piece.kind.exchanges(piece):
         gives, takes = (bool(set(side) & inside) for side in (exchange.giver, exchange.taker))
         if gives != takes:

@@ -6,7 +6,7 @@ from typing import Any
 
 from reportgen.balances.composition import for_composition
 from reportgen.balances.plant import Piece
-from reportgen.balances.relations import Formula, token
+from reportgen.balances.relations import Formula, Inverse, token
 
 __all__ = ["isentropic_change"]
 
@@ -24,6 +24,16 @@ def _isentropic_change(piece: Piece, fluid: Any) -> Formula:
         state = fluid.at(pressure=outlet_pressure, specific_entropy=inlet_entropy, errors="mask")
         return state.specific_enthalpy
 
+    def inlet_entropy(outlet_pressure: Any, ideal: Any) -> Any:
+        state = fluid.at(pressure=outlet_pressure, specific_enthalpy=ideal, errors="mask")
+        return state.specific_entropy
+
+    ideal = piece.path("isentropic_outlet_enthalpy")
+    turned = Inverse(
+        inlet_entropy,
+        rf"s\left({token(pressure)},\,{token(ideal)}\right)",
+        f"{piece.title}: the isentropic change ends with the entropy with which it began.",
+    )
     return Formula(
         piece.path("isentropic_outlet_enthalpy"),
         piece.owner,
@@ -31,10 +41,11 @@ def _isentropic_change(piece: Piece, fluid: Any) -> Formula:
         f"{piece.title}: without entropy generation the stream would reach the pressure of state {outlet} "
         f"with the entropy of state {inlet}.",
         f"equation of state, {fluid.title}",
-        piece.path("isentropic_outlet_enthalpy"),
+        ideal,
         (pressure, entropy),
         enthalpy,
         rf"h\left({token(pressure)},\,{token(entropy)}\right)",
+        {entropy: turned},
         fluids=(piece.fluid_id(inlet),),
         reason="the isentropic outlet state lies outside the range of the fluid's equation",
     )

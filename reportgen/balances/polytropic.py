@@ -24,6 +24,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from functools import cache
 from typing import Any
+from weakref import WeakKeyDictionary
 
 from reportgen.balances.composition import for_composition, is_made
 from reportgen.balances.kinds import Parameter
@@ -90,21 +91,40 @@ def _walk(fluid: Any, p1: Any, s1: Any, p2: Any, rise: Callable[[Any], Any]) -> 
 
 
 def _path_integral(fluid: Any) -> Callable[[Any, Any, Any, Any], Any]:
-    """I = ∫ (p v/T) d ln p [J/(kg K)] from (p1, s1) to (p2, s2) along the path of constant polytropic efficiency."""
+    """I = ∫ (p v/T) d ln p [J/(kg K)] from (p1, s1) to (p2, s2) along the path of constant polytropic efficiency.
+
+    The last result is kept: efficiency and integral of one machine are asked for with the same arrays.
+    """
+    last: list[Any] = [(), None]
 
     def ideal(p1: Any, s1: Any, p2: Any, s2: Any) -> Any:
         import numpy as np
 
         return fluid.gas_constant * np.log(p2 / p1)
 
-    def real(p1: Any, s1: Any, p2: Any, s2: Any) -> Any:
+    def real(*ends: Any) -> Any:
         import numpy as np
 
-        p1, s1, p2, s2 = (np.atleast_1d(np.asarray(part, float)) for part in np.broadcast_arrays(p1, s1, p2, s2))
-        with np.errstate(all="ignore"):
-            return _walk(fluid, p1, s1, p2, lambda total: np.where(s2 == s1, 0.0, (s2 - s1) / total))
+        if len(last[0]) != len(ends) or any(a is not b for a, b in zip(last[0], ends, strict=True)):
+            p1, s1, p2, s2 = (np.atleast_1d(np.asarray(part, float)) for part in np.broadcast_arrays(*ends))
+            with np.errstate(all="ignore"):
+                found = _walk(fluid, p1, s1, p2, lambda total: np.where(s2 == s1, 0.0, (s2 - s1) / total))
+            last[:] = ends, found
+        return last[1]
 
     return ideal if fluid.kind == "ideal-gas" else real
+
+
+_integrals: WeakKeyDictionary[Any, Callable[[Any, Any, Any, Any], Any]] = WeakKeyDictionary()
+
+
+def _integral_of(fluid: Any) -> Callable[[Any, Any, Any, Any], Any]:
+    """The path integral of a fluid, one function for all that ask for that of a real one."""
+    if fluid.kind == "ideal-gas":
+        return _path_integral(fluid)
+    if fluid not in _integrals:
+        _integrals[fluid] = _path_integral(fluid)
+    return _integrals[fluid]
 
 
 def _end_entropy(fluid: Any, factor: Callable[[Any], Any]) -> Callable[[Any, Any, Any, Any], Any]:
@@ -147,7 +167,7 @@ def polytropic_relation(piece: Piece, absorbs: bool) -> Formula:
 
 def _polytropic_relation(piece: Piece, absorbs: bool, fluid: Any) -> Formula:
     inlet, outlet = piece.one("inlet"), piece.one("outlet")
-    integral = _path_integral(fluid)
+    integral = _integral_of(fluid)
     leave = _end_entropy(fluid, (lambda eta: 1.0 / eta - 1.0) if absorbs else (lambda eta: eta - 1.0))
     inputs = _ends(piece)
     p1, s1, p2, s2 = (token(path) for path in inputs)
@@ -218,7 +238,7 @@ def _integral_result(piece: Piece, fluid: Any) -> Formula:
         f"collocation, {_PANELS} panels of {_STAGES} Gauss–Legendre nodes in ln p",
         output,
         inputs,
-        _path_integral(fluid),
+        _integral_of(fluid),
         rf"\int_{{{p1}}}^{{{p2}}}\frac{{v}}{{T}}\,\mathrm{{d}}p",
         fluids=(piece.fluid_id(piece.one("inlet")),),
         reason="the path between the two states leaves the range of the fluid's equation",

@@ -113,10 +113,10 @@ def along(hot: Stream, cold: Stream) -> Along:
     there = [np.asarray(stream.state(place[None, :]).temperature, float) for stream in (hot, cold)]
     drawn = np.concatenate([share, place[None, :]])
     order = np.argsort(drawn, axis=0, kind="stable")
-    curves = [
+    drawn_hot, drawn_cold = (
         np.take_along_axis(np.concatenate([curve, point]), order, axis=0)
         for curve, point in zip(curves, there, strict=True)
-    ]
+    )
     width = np.diff(share, axis=0)
     nodes = (share[:-1, None, :] + width[:, None, :] * _NODES[None, :, None]).reshape(-1, share.shape[1])
     weights = (width[:, None, :] * _WEIGHTS[None, :, None]).reshape(nodes.shape)
@@ -131,7 +131,8 @@ def along(hot: Stream, cold: Stream) -> Along:
         )
         return Along(
             np.take_along_axis(drawn, order, axis=0),
-            *curves,
+            drawn_hot,
+            drawn_cold,
             corners,
             pinch,
             place,
@@ -171,4 +172,5 @@ def _smallest(hot: Stream, cold: Stream, share: Array, difference: Array) -> tup
 def _first_smallest(difference: Array) -> NDArray[np.intp]:
     """Row of the first of the smallest differences, column by column; those that are not known count as large."""
     known = np.where(np.isfinite(difference), difference, np.inf)
-    return np.argmax(known <= known.min(axis=0) + _LEVEL, axis=0)
+    rows: NDArray[np.intp] = np.argmax(known <= known.min(axis=0) + _LEVEL, axis=0)
+    return rows
