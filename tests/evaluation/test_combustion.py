@@ -207,3 +207,14 @@ def test_the_demonstration_balances_and_finds_fuel_and_air_from_the_temperature(
     assert 0.0 < record.value("states.2.mass_flow") < record.value("states.3.mass_flow")
     assert np.isclose(record.value("total.closure"), 0.0, atol=1e-9)
     assert [item["id"] for item in record.data["cautions"]] == []
+
+
+@pytest.mark.parametrize(("flow", "raised"), [("0.9 kg/h", []), ("3.1 kg/h", ["warning"])])
+def test_too_little_air_that_nobody_asked_for_raises_a_caution(flow: str, raised: list[str]) -> None:
+    """Of 50 kg/h of products, 3.1 kg/h of hydrogen leave too little air: 34 kg of air burn one of hydrogen."""
+    text = HEAD + FLUIDS.replace("methane", "hydrogen").replace("B-1", 'B-1"\nchemistry = "equilibrium')
+    text += STREAMS.replace('mass_flow   = "36 kg/h ± 2 %"', f'mass_flow = "{flow}"')
+    text = text.replace('[states.3]\nfluid = "flue"', '[states.3]\nfluid = "flue"\nmass_flow = "50 kg/h"')
+    text += PIECES.replace('excess_air = "20 % ± 2 %"', "")
+    found = [item["severity"] for item in evaluated(text).data["cautions"] if item["id"] == "P20"]
+    assert found == raised

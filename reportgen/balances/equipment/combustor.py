@@ -15,6 +15,9 @@ Entropy generation number: lost work over the heat of the fuel (flow times lower
 
 from __future__ import annotations
 
+from collections.abc import Callable
+from typing import Any
+
 from reportgen.balances.burning import (
     adiabatic_temperature,
     air_ratio,
@@ -28,6 +31,7 @@ from reportgen.balances.burning import (
     no_exergetic_efficiency,
 )
 from reportgen.balances.composition import is_made
+from reportgen.balances.doubts import Doubt
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
@@ -75,6 +79,17 @@ def results(piece: Piece) -> list[Formula]:
     heat = fuel_heat(piece)
     of_fuel = [air_ratio(piece), *heating_value(piece, "lower"), *heating_value(piece, "higher"), heat]
     return [*of_fuel, *found, entropy_number_by_power(piece, heat.output, "heat of the fuel")]
+
+
+def doubts(piece: Piece, samples: Callable[[str], Any]) -> list[Doubt]:
+    """Too little oxygen that follows from a temperature or a heat: more of it than needed may give the same."""
+    excess = piece.path("excess_air")
+    flows = [f"states.{state}.mass_flow" for state in piece.states("inlets")]
+    if excess in piece.given or all(path in piece.given for path in flows) or not is_fire(piece):
+        return []
+    text = f"{piece.title} ⟦burns|may burn⟧ with less oxygen than its fuel needs, although no excess air is given; "
+    text += "what is given may also hold with more than it needs. State the excess air, or the flows that enter."
+    return [Doubt("fire-without-air", piece.owner, excess, text, samples(excess), dimension="ratio")]
 
 
 def checks(piece: Piece) -> list[Fault]:
@@ -135,6 +150,7 @@ KIND = Kind(
         "mole_fraction",
     ),
     checks=checks,
+    doubts=doubts,
     burns=True,
     found=composition_results,
     starts=flows_to_try,

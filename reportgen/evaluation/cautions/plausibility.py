@@ -14,6 +14,7 @@ if TYPE_CHECKING:
 __all__ = [
     "choked_flow",
     "efficiency_above_one",
+    "fire_without_air",
     "flow_against_its_direction",
     "heat_against_its_direction",
     "negative_amount",
@@ -105,6 +106,14 @@ heat_against_its_direction = _passed_on(
     "first law of thermodynamics",
     "heat-against-direction",
     "Negative duty of an exchanger, heater that cools, cooler that heats.",
+)
+fire_without_air = _passed_on(
+    "P20",
+    "warning",
+    "Fire without air enough",
+    "two air ratios give one flame temperature",
+    "fire-without-air",
+    "Excess air of a combustor found to be negative where a temperature or a heat was given in its place.",
 )
 pressure_from_enthalpy = _passed_on(
     "P10",

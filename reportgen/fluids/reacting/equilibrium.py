@@ -90,6 +90,9 @@ class Equilibrium:
 
     def __init__(self, keys: Sequence[str]) -> None:
         self.table = SpeciesTable(keys)
+        atoms = self.table.atoms
+        #: a_jk a_jl of every species, (S, E·E).
+        self._pairs: Array = (atoms[:, :, None] * atoms[:, None, :]).reshape(atoms.shape[0], -1)
 
     def solve(self, elements: Array, pressure: Array, *, given: Given, value: Array) -> Mixture:
         """Composition, and temperature where it is not given.
@@ -157,7 +160,7 @@ class Equilibrium:
         columns, size = amounts.shape[0], atoms.shape[1]
         matrix = np.zeros((columns, size + 1, size + 1))
         per_element = amounts @ atoms
-        matrix[:, :size, :size] = np.einsum("nj,jk,jl->nkl", amounts, atoms, atoms, optimize=True)
+        matrix[:, :size, :size] = (amounts @ self._pairs).reshape(columns, size, size)
         matrix[:, :size, size] = matrix[:, size, :size] = per_element
         for k in range(size):
             matrix[~(per_element[:, k] > 0), k, k] = 1.0
@@ -212,7 +215,7 @@ class Equilibrium:
         matrix = np.zeros((columns, order, order))
         right = np.zeros((columns, order))
         per_element = amounts @ atoms
-        matrix[:, :size, :size] = np.einsum("nj,jk,jl->nkl", amounts, atoms, atoms, optimize=True)
+        matrix[:, :size, :size] = (amounts @ self._pairs).reshape(columns, size, size)
         matrix[:, :size, size] = matrix[:, size, :size] = per_element
         present_total = amounts.sum(axis=1)
         matrix[:, size, size] = present_total - total
