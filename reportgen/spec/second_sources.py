@@ -43,6 +43,12 @@ def check_second_sources(source: Source) -> None:
         _check(source, ("fluids", fluid, "second_source"), source.text("fluids", fluid, "model"))
     for state in source.table("states"):
         fluid_id = fluid_of(source, state)
+        own = ("states", state, "second_source")
+        if source.node(own) is not None and source.node(("fluids", fluid_id or "", "products_of")) is not None:
+            message = "The products of a combustor have no second source: their composition is found with the flows."
+            if source.text(*own) != NO_SECOND_SOURCE:
+                source.report(own, message, at="key", found=f"a state of {fluid_id}", expected="states of other fluids")
+            continue
         model = source.text("fluids", fluid_id, "model") if fluid_id is not None else None
         _check(source, ("states", state, "second_source"), model)
 

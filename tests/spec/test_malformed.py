@@ -35,9 +35,10 @@ EXPECTED: dict[str, list[tuple[str | None, ...]]] = {
         ("31:15", "fluids.smoke.products_of", "There is no combustor of this tag", 'Did you mean "B-1"?'),
         ("35:15", "fluids.vapour.products_of", "There is no combustor of this tag"),
         ("40:1", "fluids.liquid.products_of", 'There is no key "products_of" here'),
-        ("66:14", "equipment.B-1.outlet", "The state is of fluid air, which is not the product of this combustor"),
-        ("67:14", "equipment.B-1.excess_air", "The value is outside what is possible", "An excess of 20 percent"),
-        ("68:1", "equipment.B-1.oxidant", 'There is no key "oxidant" here'),
+        ("58:1", "states.4.second_source", "The products of a combustor have no second source"),
+        ("67:14", "equipment.B-1.outlet", "The state is of fluid air, which is not the product of this combustor"),
+        ("68:14", "equipment.B-1.excess_air", "The value is outside what is possible", "An excess of 20 percent"),
+        ("69:1", "equipment.B-1.oxidant", 'There is no key "oxidant" here'),
     ],
     "composition-faults": [
         ("16:1", "fluids.air.composition", "The composition does not say what its fractions count"),
