@@ -186,6 +186,7 @@ class Drawing:
         self.network = network
         self.relations = complete(network)
         self.derivatives = Derivatives(network)
+        self._true: dict[Any, bool] = {}
         plant = network.plant
         allowed = {f"states.{state}.{name}" for state in plant.states for name in OF_STATES}
         for tag, definition in plant.equipment.items():
@@ -252,8 +253,12 @@ class Drawing:
             raise Unlucky
         found = build_network(plant, pieces_of(plant, frozenset(givens)), frozenset(givens))
         relations = [relation for block in found.blocks for relation in block.relations]
-        if not all(_holds(relation, truth) for relation in relations):
-            raise Unlucky
+        for relation in relations:
+            key = (relation.key, relation.variables)
+            if key not in self._true:
+                self._true[key] = _holds(relation, truth)
+            if not self._true[key]:
+                raise Unlucky
         matrix, columns = self.derivatives.matrix(relations)
         known = np.array([path in givens for path in columns])
         growth = np.abs(np.linalg.solve(matrix[:, ~known], matrix[:, known])).max(axis=1, initial=0.0)
@@ -277,15 +282,15 @@ def _holds(relation: Any, truth: dict[str, float]) -> bool:
     if not isinstance(relation, Balance):
         found = _number(relation.evaluate, truth, relation.inputs)
         return abs(found - truth[relation.output]) <= 1e-9 * max(abs(found), 1e-3)
-    values = {path: np.float64(value) for path, value in truth.items()}
+    values = {path: np.float64(truth[path]) for path in relation.variables}
     size = max(abs(float(term.value(values))) for term in relation.terms)
     return abs(float(relation.residual(values))) <= 1e-9 * max(size, 1e-3 if len(relation.terms) > 1 else 1e9)
 
 
-def draw(seed: int) -> tuple[Network, dict[str, float]]:
-    """A network with givens that determine it; equal seeds give equal ones."""
+def draw(seed: int, most: int = MOST_PIECES) -> tuple[Network, dict[str, float]]:
+    """A network of up to ``most`` pieces with givens that determine it; equal seeds give equal ones."""
     random = Random(seed)
-    pieces = random.randint(1, MOST_PIECES)
+    pieces = random.randint(1, most)
     while True:
         try:
             network = Builder(random, pieces).build()

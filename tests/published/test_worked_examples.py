@@ -128,6 +128,19 @@ def _brayton() -> tuple[Air, Air, Air, Air]:
     )
 
 
+def _rankine() -> dict[str, float]:
+    """Per kilogram of steam; lost work T0 (Δs of the steam − heat over the temperature of the boundary)."""
+    h1, s1 = (water(key, "P", 75e3, "Q", 0) for key in "HS")
+    h3, s3 = (water(key, "P", 3e6, "T", 623.15) for key in "HS")
+    h2, h4 = water("H", "P", 3e6, "S", s1), water("H", "P", 75e3, "S", s3)
+    supplied, rejected = h3 - h2, h4 - h1
+    return {
+        "efficiency": 1 - rejected / supplied,
+        "boiler": 290.0 * (s3 - s1 - supplied / 1600.0),
+        "condenser": 290.0 * (s1 - s3) + rejected,
+    }
+
+
 def _refrigerator() -> dict[str, float]:
     def at(output: str, *pair: object) -> float:
         return PropsSI(output, *pair, "R134a")
@@ -299,6 +312,30 @@ ROWS: list[Row] = [
         0.01,
         lambda v: v["equipment.E-2.heat"] / v["equipment.K-1.power"],
         lambda: _refrigerator()["performance"],
+    ),
+    (
+        "rankine",
+        "thermal efficiency, %",
+        26.0,
+        0.1,
+        lambda v: v["total.thermal_efficiency"] * 100,
+        lambda: _rankine()["efficiency"] * 100,
+    ),
+    (
+        "rankine",
+        "work lost in the boiler, kJ/kg",
+        1110.0,
+        1.0,
+        lambda v: v["equipment.B-1.lost_work"] / 1e3,
+        lambda: _rankine()["boiler"] / 1e3,
+    ),
+    (
+        "rankine",
+        "work lost in the condenser, kJ/kg",
+        414.0,
+        1.0,
+        lambda v: v["equipment.C-1.lost_work"] / 1e3,
+        lambda: _rankine()["condenser"] / 1e3,
     ),
     (
         "brayton",
