@@ -108,6 +108,7 @@ class Kind:
     serves : whether the heat over its boundary is what a cycle is for, as with heaters and coolers, and no loss or gain
         by the way.
     compresses : whether it raises the pressure of a gas, so that several in a row are stages of one compression.
+    moves : what a machine that absorbs power is made for, liquid or gas; empty: either, or it moves nothing.
     lifts : +1 when the pressure rises from inlet to outlet, -1 when it falls by much, 0 when it stays about the same.
     exergetic_efficiency, entropy_generation_number : their definitions in words.
     family : table of the calculation file it belongs to; a process has the ports ``from`` and ``to``, amounts in the
@@ -143,6 +144,7 @@ class Kind:
     work: Callable[[Piece], str] = lambda piece: piece.path("power")
     serves: bool = False
     compresses: bool = False
+    moves: Literal["", "liquid", "gas"] = ""
     lifts: int = 0
     exergetic_efficiency: str = ""
     entropy_generation_number: str = ""

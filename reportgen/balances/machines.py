@@ -11,6 +11,8 @@ Polytropic efficiencies are in :mod:`reportgen.balances.polytropic`, the isother
 
 from __future__ import annotations
 
+from typing import Literal
+
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
     HEAT_BY_CUSTOM,
@@ -49,14 +51,15 @@ def machine_kind(
     text: str,
     *,
     absorbs: bool,
+    moves: Literal["", "liquid", "gas"] = "",
     polytropic: bool = False,
     isothermal: bool = False,
     total: bool = False,
 ) -> Kind:
     """A machine with one inlet and one outlet that absorbs power, or delivers it.
 
-    ``polytropic``, ``isothermal``: whether efficiencies of these names have a meaning for it. ``total``: its efficiency
-    counts kinetic energy, and its pressure rise may be given.
+    ``moves``: what an absorbing machine is made for. ``polytropic``, ``isothermal``: whether efficiencies of these
+    names have a meaning for it. ``total``: its efficiency counts kinetic energy, and its pressure rise may be given.
     """
     verb = "absorbed" if absorbs else "delivered"
     merit = (
@@ -91,6 +94,7 @@ def machine_kind(
         power_sign=1 if absorbs else -1,
         work=work_path,
         compresses=absorbs and polytropic,
+        moves=moves,
         lifts=(0 if total else 1) if absorbs else -1,
         exergetic_efficiency=merit,
         entropy_generation_number=f"Lost work over the power {verb}.",

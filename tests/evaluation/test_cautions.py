@@ -116,6 +116,10 @@ def test_t09_two_phase_suction() -> None:
     assert summary("T09", wet) == [("stop", "states.1.quality", True)]
     saturated = machine("compressor", "in", state(373.0, 1e5, "two-phase", quality=1.0))
     assert summary("T09", saturated) == []
+    assert summary("T09", machine("fan", "in", state(373.0, 1e5, "two-phase", quality=0.9))) == [
+        ("stop", "states.1.quality", True)
+    ]
+    assert summary("T09", machine("fan", "in", state(300.0, 1e5, "gas"))) == []
     assert summary("T09", machine("turbine", "in", state(373.0, 1e5, "two-phase", quality=0.9))) == []
     assert summary("T09", machine("pump", "in", state(373.0, 1e5, "two-phase", quality=0.9))) == []
     assert summary("T09", machine("compressor", "out", state(373.0, 1e5, "two-phase", quality=0.9))) == []

@@ -125,6 +125,8 @@ def test_p08() -> None:
     assert summary("P08", pump("gas")) == [("warning", "states.1.quality", True)]
     assert summary("P08", pump("vapour", 400.0, kind="compressor")) == []
     assert summary("P08", pump("vapour", 400.0, kind="turbine")) == []
+    assert summary("P08", pump("vapour", 400.0, kind="fan")) == []
+    assert summary("P08", pump("gas", kind="fan")) == []
 
 
 def test_p08_of_a_mixture_counts_from_its_bubble_line() -> None:

@@ -14,6 +14,7 @@ KIND = machine_kind(
     "Compressor",
     "Raises the pressure of a gas by absorbing power.",
     absorbs=True,
+    moves="gas",
     polytropic=True,
     isothermal=True,
 )

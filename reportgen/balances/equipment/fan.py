@@ -12,4 +12,6 @@ from __future__ import annotations
 
 from reportgen.balances.machines import machine_kind
 
-KIND = machine_kind("fan", "Fan", "Raises the pressure of a gas by little, moving it.", absorbs=True, total=True)
+KIND = machine_kind(
+    "fan", "Fan", "Raises the pressure of a gas by little, moving it.", absorbs=True, moves="gas", total=True
+)

@@ -8,4 +8,4 @@ from __future__ import annotations
 
 from reportgen.balances.machines import machine_kind
 
-KIND = machine_kind("pump", "Pump", "Raises the pressure of a liquid by absorbing power.", absorbs=True)
+KIND = machine_kind("pump", "Pump", "Raises the pressure of a liquid by absorbing power.", absorbs=True, moves="liquid")

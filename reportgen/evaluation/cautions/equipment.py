@@ -32,18 +32,19 @@ PRESSURE_SOURCE = "see ASME BPVC Section VIII and API 520, current edition"
 TEMPERATURE_MARGIN = 10.0
 
 
-@caution("T09", "stop", "Liquid at compressor suction", source="common practice")
+@caution("T09", "stop", "Liquid at the suction of a compressor or fan", source="common practice")
 def liquid_at_compressor_suction(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Quality below 1 at the inlet of a machine that compresses gas.
+    """Quality below 1 at the inlet of a machine that is made for gas.
 
     For inlets of one phase the superheat is looked at instead: below 0, or not resolved from 0.
     Ideal gases have no liquid and are passed over.
     """
     for tag, kind in plant.kinds.items():
-        if not _compresses_gas(kind):
+        if kinds()[kind].moves != "gas":
             continue
         for state in plant.states_at(tag, "in"):
-            text = f"There ⟦is|may be⟧ liquid at the suction of {tag} (state {state}): liquid slugs break compressors."
+            text = f"There ⟦is|may be⟧ liquid at the suction of {tag} (state {state}): liquid slugs break "
+            text += f"{kinds()[kind].title.lower()}s."
             if plant.phase(state) == "two-phase":
                 yield Finding(
                     f"states.{state}.quality",
@@ -73,7 +74,7 @@ def vapour_at_pump_suction(plant: EvaluatedPlant, _limit: float) -> Iterator[Fin
     For inlets of one phase the temperature is held against saturation at the same pressure.
     """
     for tag, kind in plant.kinds.items():
-        if not _pumps_liquid(kind):
+        if kinds()[kind].moves != "liquid":
             continue
         for state in plant.states_at(tag, "in"):
             text = f"There ⟦is|may be⟧ vapour at the suction of {tag} (state {state}): pumps lose their prime by it."
@@ -198,18 +199,6 @@ def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]
             )
             text = f"{subject} ⟦comes|may come⟧ within {limit:g} K of the minimum temperature of {tag}."
             yield Finding(path, temperature, minimum + limit, "above", text, "temperature", owner=owner, source=warned)
-
-
-def _compresses_gas(kind: str) -> bool:
-    """Whether a kind absorbs power and compresses in small steps of density, which is what its polytropic efficiency
-    says: kinds are told by what they declare, so that a new one needs no entry here."""
-    declared = kinds()[kind]
-    return declared.power_sign > 0 and any(item.name == "polytropic_efficiency" for item in declared.parameters)
-
-
-def _pumps_liquid(kind: str) -> bool:
-    """Whether a kind absorbs power and has no polytropic efficiency: see ``_compresses_gas``."""
-    return kinds()[kind].power_sign > 0 and not _compresses_gas(kind)
 
 
 class _Place(NamedTuple):
