@@ -81,9 +81,9 @@ def _cubic(specification: FluidSpec) -> Any:
 
 def _incompressible(specification: FluidSpec) -> Any:
     heat = specification.specific_heat
-    given: float | tuple[Sequence[float], Sequence[float]] | list[float]
+    given: float | dict[str, Sequence[float]] | list[float]
     if isinstance(heat, HeatTable):
-        given = (heat.temperatures, heat.specific_heats)
+        given = {"temperature": heat.temperatures, "specific_heat": heat.specific_heats}
     elif isinstance(heat, HeatPolynomial):
         # From powers of T − about to powers of T, as the model has them.
         shifted = np.polynomial.Polynomial(heat.coefficients)(np.polynomial.Polynomial([-heat.about, 1.0]))

@@ -12,6 +12,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids.model import Errors, Point
+from reportgen.fluids.numeric import numbers
 
 __all__ = ["PROPERTIES", "Elements", "Faults", "Pair", "SeveralStates", "check_errors", "in_words", "read_pair"]
 
@@ -95,7 +96,7 @@ def read_pair(given: Mapping[str, ArrayLike], supported: Collection[tuple[str, s
         raise InputError(Fault(f"A state of {title} is fixed by exactly two properties.", found=found))
     values = {}
     for name, value in given.items():
-        array = _numbers(name, value)
+        array = numbers(name.replace("_", " "), PROPERTIES[name], value)
         if name == "specific_volume":
             with np.errstate(divide="ignore", over="ignore"):
                 array = 1.0 / array
@@ -139,24 +140,6 @@ def in_words(name: str, value: float, digits: int = 9) -> str:
     return f"{value / factor:.{digits}g}" + ("" if unit == "1" else f" {unit}")
 
 
-def _numbers(name: str, value: ArrayLike) -> NDArray[np.float64]:
-    """A copy as floats, since a State does not change when its givens do; zero without a sign."""
-    try:
-        array = np.array(value)
-    except ValueError:  # rows of unequal length
-        array = np.empty(0, dtype=object)
-    # Complex numbers would lose their imaginary part, truth values and texts would pass for numbers.
-    if array.dtype.kind not in "iuf":
-        raise InputError(
-            Fault(
-                f"The {name.replace('_', ' ')} is not a number or an array of numbers.",
-                found=repr(value)[:80],
-                expected=f"numbers in {PROPERTIES[name]}",
-            )
-        )
-    return array.astype(np.float64, copy=False) + 0.0
-
-
 def check_errors(errors: str) -> None:
     """Refuse anything but the two ways to treat elements that cannot be evaluated. Raises InputError."""
     if errors not in ("raise", "mask"):
@@ -192,6 +175,10 @@ class Faults(Mapping[int, Fault]):
 
     def __len__(self) -> int:
         return int(np.count_nonzero(self._reason)) if self._describe else 0
+
+    def __repr__(self) -> str:
+        first = ", ".join(f"{index}: {str(self[index])!r}" for index in islice(self, _NAMED_FAULTS))
+        return f"{{{first}{', ...' if len(self) > _NAMED_FAULTS else ''}}} ({len(self)} of {self._reason.size})"
 
 
 class Elements:

@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+import math
+from fractions import Fraction
+
 import numpy as np
 import pytest
 
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids import real_fluid
+from reportgen.fluids.numeric import finite_number, number, numbers
 from reportgen.fluids.pairs import PROPERTIES, Elements, Faults, in_words, read_pair
 
 PAIRS = (("pressure", "density"), ("density", "specific_internal_energy"))
@@ -80,3 +84,25 @@ class TestFaults:
         state = water.at(errors="mask", pressure=pressure, temperature=300.0)
         assert len(state.faults) == 100_000
         assert "not above zero" in state.faults[77_777].message
+
+
+def test_faults_tell_themselves() -> None:
+    state = real_fluid("water").at(errors="mask", pressure=1e5, temperature=[300.0, 4000.0, 300.0, 20.0])
+    text = repr(state.faults)
+    assert "1: 'Temperature 4000 K" in text
+    assert "3: 'Temperature 20 K" in text
+    assert "(2 of 4)" in text
+    assert len(repr(real_fluid("water").at(errors="mask", pressure=1e5, temperature=[9e3] * 10_000).faults)) < 1500
+
+
+def test_numbers_of_any_type_and_nothing_else() -> None:
+    class Whole(int):
+        pass
+
+    for value in (3, 3.0, np.float32(3), np.int8(3), np.array(3), Whole(3), Fraction(6, 2)):
+        assert finite_number(value) == 3.0
+    for value in (True, np.True_, "3", b"3", None, 3j, [3], np.array([3]), math.nan, math.inf):
+        assert finite_number(value) is None
+    assert number(10**400) == math.inf
+    with pytest.raises(InputError, match="enthalpy is not a number"):
+        numbers("enthalpy", "J/kg", ["3"])

@@ -3,18 +3,24 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import Any, Literal
 
 from reportgen.errors import Fault, InputError
 from reportgen.fluids.incompressibles.fluid import ZERO_TEMPERATURE, Incompressible
 from reportgen.fluids.incompressibles.heat import HeatCapacityLaw, PolynomialHeat, TabulatedHeat, check_table
 from reportgen.fluids.model import Limits
+from reportgen.fluids.numeric import finite_number, number
 
 __all__ = ["SpecificHeat", "incompressible"]
 
-#: A constant c [J/(kg*K)]; coefficients a_0, a_1, ... of Σ a_i T^i; or a table (T_k [K], c_k [J/(kg*K)]).
-SpecificHeat = float | Sequence[float] | tuple[Sequence[float], Sequence[float]]
+#: A constant c [J/(kg*K)]; coefficients a_0, a_1, ... of Σ a_i T^i; or a table of T_k [K] and c_k [J/(kg*K)]: rows
+#: (T_k, c_k), the two columns, or the columns by name.
+SpecificHeat = float | Sequence[float] | Sequence[Sequence[float]] | Mapping[str, Sequence[float]]
+
+#: Columns of a table of specific heat, by name.
+COLUMNS = ("temperature", "specific_heat")
+_BY_NAME = '{"temperature": [...], "specific_heat": [...]}'
 
 #: Range [K] of a constant heat capacity whose range is not stated.
 UNSTATED_RANGE = (50.0, 3000.0)
@@ -38,7 +44,9 @@ def incompressible(
     name : what it is called, for titles and messages.
     density : ρ [kg/m3]; with a thermal expansion, the density at the temperature of the zeros.
     specific_heat : a constant c [J/(kg*K)]; or coefficients a_0, a_1, ... of c = Σ a_i T^i [J/(kg*K^(i+1))], T in K; or
-        a table (temperatures [K], values [J/(kg*K)]), between whose entries c runs straight.
+        a table, between whose entries c runs straight: rows (T [K], c [J/(kg*K)]), or two columns, temperatures and
+        values. A table of two rows is given by name, ``{"temperature": [...], "specific_heat": [...]}``, since two
+        pairs of numbers may be either; any table may be.
     phase : "liquid" or "solid": a word only, since neither freezing nor boiling is part of the model.
     limits : lowest and highest temperature [K]. A table has its own, which may be narrowed; a polynomial needs them;
         without them a constant c is taken from 50 K to 3000 K, with a remark that its range was not stated.
@@ -97,22 +105,51 @@ def incompressible(
 
 def _read_heat(given: Any, faults: list[Fault]) -> tuple[list[float], list[float]] | list[float] | None:
     """A table as two lists, or the coefficients of a polynomial; None after a fault."""
-    expected = "J/(kg*K), coefficients a_0, a_1, ..., or a table (temperatures, values)"
-    if _is_number(given):
-        if math.isfinite(given):
-            return [float(given)]
-    elif not isinstance(given, str) and hasattr(given, "__len__") and len(given) > 0:
-        rows = list(given)
-        if all(_is_number(entry) and math.isfinite(entry) for entry in rows):
-            return [float(entry) for entry in rows]
-        columns = [list(row) for row in rows if not isinstance(row, str) and hasattr(row, "__len__")]
-        if len(rows) == len(columns) == 2 and all(_is_number(entry) for column in columns for entry in column):
-            temperatures, values = ([float(entry) for entry in column] for column in columns)
-            wrong = check_table(temperatures, values)
-            faults += wrong
-            return None if wrong else (temperatures, values)
-    faults.append(Fault("The specific heat is not understood.", found=repr(given)[:80], expected=expected))
+    constant = finite_number(given)
+    if constant is not None:
+        return [constant]
+    expected = f"J/(kg*K), coefficients a_0, a_1, ..., or a table: rows (T, c), or {_BY_NAME}"
+    message = "The specific heat is not understood."
+    if isinstance(given, Mapping):
+        if set(given) == set(COLUMNS):
+            table = [_numbers(given[name]) for name in COLUMNS]
+            if None not in table:
+                return _table(table, faults)
+    elif _is_sequence(given) and len(given) > 0:
+        coefficients = [finite_number(entry) for entry in given]
+        if None not in coefficients:
+            return [entry for entry in coefficients if entry is not None]
+        rows = [_numbers(entry) for entry in given]
+        if None not in rows:
+            if len(rows) == 2 and all(row is not None and len(row) == 2 for row in rows):
+                message = "Two pairs of numbers may be the rows or the columns of a table of specific heat."
+                expected = _BY_NAME
+            elif len(rows) == 2:
+                return _table(rows, faults)
+            elif all(row is not None and len(row) == 2 for row in rows):
+                return _table([list(column) for column in zip(*(row or () for row in rows), strict=True)], faults)
+    faults.append(Fault(message, found=repr(given)[:80], expected=expected))
     return None
+
+
+def _table(columns: Sequence[list[float] | None], faults: list[Fault]) -> tuple[list[float], list[float]] | None:
+    temperatures, values = (column or [] for column in columns)
+    wrong = check_table(temperatures, values)
+    faults += wrong
+    return None if wrong else (temperatures, values)
+
+
+def _numbers(given: Any) -> list[float] | None:
+    """A sequence of numbers as a list of floats, or None."""
+    found = [number(entry) for entry in given] if _is_sequence(given) else [None]
+    return None if None in found else [entry for entry in found if entry is not None]
+
+
+def _is_sequence(given: Any) -> bool:
+    """Whether something has entries in an order: lists, tuples, arrays; not texts, sets, mappings or scalars."""
+    if isinstance(given, str | bytes | Mapping):
+        return False
+    return hasattr(given, "__getitem__") and hasattr(given, "__len__") and getattr(given, "ndim", 1) > 0
 
 
 def _read_limits(
@@ -134,8 +171,8 @@ def _read_limits(
             )
             return None
         return UNSTATED_RANGE
-    numbers = [float(entry) for entry in given if _is_number(entry)] if hasattr(given, "__len__") else []
-    if len(numbers) != 2 or len(given) != 2 or not 0.0 < numbers[0] < numbers[1] < math.inf:
+    numbers = _numbers(given) or []
+    if len(numbers) != 2 or not 0.0 < numbers[0] < numbers[1] < math.inf:
         faults.append(
             Fault(
                 "The limits of temperature are two numbers, the lower one first.",
@@ -161,10 +198,11 @@ def _read_expansion(given: float | None, low: float, high: float, zero: float, f
     """The thermal expansion [1/K], 0 for none."""
     if given is None:
         return 0.0
-    if _is_number(given) and math.isfinite(given):
-        least = min(1.0 + given * (low - zero), 1.0 + given * (high - zero), 1.0 - given * zero)
+    expansion = finite_number(given)
+    if expansion is not None:
+        least = min(1.0 + expansion * (low - zero), 1.0 + expansion * (high - zero), 1.0 - expansion * zero)
         if least > 0.0:
-            return float(given)
+            return expansion
     faults.append(
         Fault(
             "The thermal expansion is not a number, or too large for volume and enthalpy to keep a meaning in range.",
@@ -176,14 +214,11 @@ def _read_expansion(given: float | None, low: float, high: float, zero: float, f
 
 
 def _above_zero(words: str, given: Any, unit: str, faults: list[Fault]) -> None:
-    if not (_is_number(given) and 0.0 < given < math.inf):
+    value = finite_number(given)
+    if value is None or value <= 0.0:
         faults.append(
             Fault(f"The {words} is a finite number above 0.", found=repr(given)[:60], expected=f"a number in {unit}")
         )
-
-
-def _is_number(value: object) -> bool:
-    return isinstance(value, int | float) and not isinstance(value, bool)
 
 
 def _limits(low: float, high: float, phase: str, stated: bool) -> Limits:

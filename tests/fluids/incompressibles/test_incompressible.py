@@ -181,6 +181,37 @@ def test_it_is_a_fluid_with_its_zero_stated():
 
 
 @pytest.mark.parametrize(
+    "heat",
+    [
+        ([260.0, 300.0, 400.0], [1800.0, 1900.0, 2100.0]),
+        [(260.0, 1800.0), (300.0, 1900.0), (400.0, 2100.0)],
+        np.array([[260, 1800], [300, 1900], [400, 2100]]),
+        {"temperature": [260.0, 300.0, 400.0], "specific_heat": [1800.0, 1900.0, 2100.0]},
+        {"temperature": [260.0, 300.0], "specific_heat": np.array([1800.0, 1900.0], dtype=np.float32)},
+    ],
+)
+def test_forms_of_a_table(heat):
+    oil = incompressible("oil", density=880.0, specific_heat=heat)
+    assert oil.at(pressure=1e5, temperature=280.0).isobaric_heat_capacity == pytest.approx(1850.0, rel=1e-12)
+
+
+def test_numbers_of_numpy_are_numbers():
+    plain = incompressible(
+        "oil", density=880.0, specific_heat=1900.0, limits=(260.0, 400.0), thermal_expansion=0.0005, molar_mass=0.25
+    )
+    numpy = incompressible(
+        "oil",
+        density=np.float32(880.0),
+        specific_heat=np.int64(1900),
+        limits=np.array([260, 400]),
+        thermal_expansion=np.array(0.0005),
+        molar_mass=np.float64(0.25),
+    )
+    given = {"pressure": 2e5, "temperature": 350.0}
+    assert numpy.at(**given).specific_enthalpy == plain.at(**given).specific_enthalpy
+
+
+@pytest.mark.parametrize(
     ("arguments", "said"),
     [
         ({"density": -1.0, "specific_heat": 4.0}, "density"),
@@ -192,9 +223,17 @@ def test_it_is_a_fluid_with_its_zero_stated():
         ({"density": 1.0, "specific_heat": [1000.0, -4.0], "limits": (200.0, 400.0)}, "not above zero everywhere"),
         ({"density": 1.0, "specific_heat": [4000.0, -24.0, 0.035], "limits": (200.0, 450.0)}, "everywhere"),
         ({"density": 1.0, "specific_heat": ([300.0], [2.0])}, "two at least"),
-        ({"density": 1.0, "specific_heat": ([300.0, 290.0], [2.0, 3.0])}, "increase"),
-        ({"density": 1.0, "specific_heat": ([300.0, 390.0], [2.0, -3.0])}, "above 0"),
-        ({"density": 1.0, "specific_heat": ([300.0, 390.0], [2.0, 3.0]), "limits": (250.0, 390.0)}, "beyond"),
+        ({"density": 1.0, "specific_heat": ([300.0, 290.0, 310.0], [2.0, 3.0, 3.0])}, "increase"),
+        ({"density": 1.0, "specific_heat": ([300.0, 390.0, 400.0], [2.0, -3.0, 2.0])}, "above 0"),
+        (
+            {"density": 1.0, "specific_heat": [(300.0, 2.0), (310.0, 2.5), (390.0, 3.0)], "limits": (250.0, 390.0)},
+            "beyond",
+        ),
+        ({"density": 1.0, "specific_heat": [(260.0, 1800.0), (300.0, 1900.0)]}, "rows or the columns"),
+        ({"density": 1.0, "specific_heat": {"temperature": [260.0, 300.0], "values": [1800.0, 1900.0]}}, "understood"),
+        ({"density": 1.0, "specific_heat": [(260.0, 1800.0), (300.0, "1900"), (310.0, 1950.0)]}, "not understood"),
+        ({"density": "880", "specific_heat": 2.0}, "density"),
+        ({"density": True, "specific_heat": 2.0}, "density"),
         ({"density": 1.0, "specific_heat": 2.0, "limits": (400.0, 300.0)}, "lower one first"),
         ({"density": 1.0, "specific_heat": 2.0, "limits": 300.0}, "lower one first"),
         ({"density": 1.0, "specific_heat": 2.0, "thermal_expansion": 0.01}, "expansion"),
