@@ -75,6 +75,8 @@ _PROCESS_RESULTS = (
 _CLOSED_RESULTS = (*_PROCESS_RESULTS, "closure")
 #: What a process reports for each species of a mixture.
 _OF_SPECIES = "mole_fraction"
+#: Of what burns.
+_OF_FUELS = ("lower_heating_value", "higher_heating_value")
 #: What a combustor reports for each species of its products.
 _OF_PRODUCTS = ("mole_fraction", "dry_mole_fraction")
 _SURROUNDINGS = ("temperature", "pressure")
@@ -171,12 +173,24 @@ def _may_move(source: Source, state: str) -> bool:
     return False
 
 
+def _may_burn(source: Source, state: str) -> bool:
+    """Whether the state enters a combustor."""
+    for tag in source.table("equipment"):
+        kind = kind_of(source, tag)
+        ports = kind.ports if kind is not None and kind.burns else ()
+        entering = (port.name for port in ports if port.direction == "in")
+        if any(name == state for port in entering for _, name in source.texts("equipment", tag, port)):
+            return True
+    return False
+
+
 def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]:
     """Names of the results of one state, piece or train with their dimensions."""
     if section == "states":
         given = [name for name in _ONLY_WHERE_GIVEN if name in givens_of(source, owner)]
         given += ["velocity"] if _may_move(source, owner) else []
         given += [*AMOUNTS, "entropy"] if _is_closed(source, owner) else []
+        given += _OF_FUELS if _may_burn(source, owner) else []
         return {name: (NAMES[name].dimension,) for name in (*_STATE_RESULTS, *given)}
     if section == "trains":
         if source.node(("trains", owner, "processes")) is not None:

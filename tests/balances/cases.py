@@ -6,10 +6,14 @@ from dataclasses import dataclass
 from typing import Any
 
 from reportgen.balances import EquipmentDefinition, Plant, Train, solve
-from reportgen.fluids import real_fluid
+from reportgen.fluids import ideal_gas, real_fluid
+from reportgen.fluids.reacting.product_gas import ProductGas
 from tests.balances.models import SimpleGas
 
 SURROUNDINGS = {"surroundings.temperature": 288.15, "surroundings.pressure": 1.013e5}
+
+
+_FUEL, _AIR = ideal_gas("CH4"), ideal_gas("air")
 
 
 @dataclass(frozen=True)
@@ -72,6 +76,23 @@ PUMP = one_piece("pump", THROUGH, {**INLET, "2.pressure": 1.5e5, "isentropic_eff
 VALVE = one_piece("throttling-valve", THROUGH, {**INLET, "2.pressure": 0.6e5})
 HEATER = one_piece("heater", THROUGH, {**INLET, "heat": 3.0e5, "pressure_drop": 2e3, "boundary_temperature": 600.0})
 COOLER = one_piece("cooler", THROUGH, {**INLET, "heat": -5.0e4, "pressure_drop": 2e3})
+COMBUSTOR = one_piece(
+    "combustor",
+    {"inlets": ("1", "2"), "outlet": ("3",)},
+    {
+        "1.pressure": 1.2e5,
+        "1.temperature": 290.0,
+        "1.mass_flow": 0.02,
+        "2.pressure": 1.1e5,
+        "2.temperature": 300.0,
+        "excess_air": 0.25,
+        "heat": -2.0e5,
+        "pressure_drop": 2e3,
+        "boundary_temperature": 600.0,
+    },
+    fluids={"fuel": _FUEL, "air": _AIR, "flue": ProductGas("Flue gas", {"1": _FUEL, "2": _AIR}, "complete")},
+    of={"1": "fuel", "2": "air", "3": "flue"},
+)
 HEAT_EXCHANGER = one_piece(
     "heat-exchanger",
     EXCHANGER,
@@ -199,6 +220,7 @@ CASES = {
     "mixer": MIXER,
     "splitter": SPLITTER,
     "control-volume": CONTROL_VOLUME,
+    "combustor": COMBUSTOR,
     "fan": FAN,
     "nozzle": NOZZLE,
     "diffuser": DIFFUSER,
