@@ -47,9 +47,9 @@ PAIRS = (
 TEMPERATURE = 1e-9
 #: The same for ρ where T was given.
 DENSITY = 1e-6
-#: How well a state has the pair given, in parts of |h| + R T, |s| + R, p + ρ R T, ρ or T: rounding, and 1e-7 within
-#: 1e-4 of the critical temperature, where the saturation curves of some fluids are joins (measured: up to 1.5e-8).
-SAME, SAME_NEAR = 1e-11, 1e-7
+#: How well a state has the pair given, in parts of |h| + R T, |s| + R, p + ρ R T, ρ or T: rounding, and 1e-9 within
+#: 1e-4 of the critical temperature, where saturation curves end in joins (Gibbs energies apart by up to 3e-10).
+SAME, SAME_NEAR = 1e-11, 1e-9
 _NEAR = 1e-4
 
 
@@ -142,7 +142,7 @@ def _reason(fluid: RealFluid, fault: Fault, temperature: float, density: float) 
         return fluid.pseudo_pure, "on a line, by pressure and temperature"
     critical = fluid.limits.critical_point
     assert critical is not None
-    if "between the bubble and the dew line" in fault.message and abs(temperature / critical.temperature - 1) < 1e-6:
+    if "between the bubble and the dew line" in fault.message and abs(temperature / critical.temperature - 1) < 3e-6:
         return fluid.pseudo_pure, "where bubble and dew line of a pseudo-pure fluid meet, within rounding"
     edge = fluid.limits.maximum_pressure
     if (
