@@ -27,6 +27,11 @@ if TYPE_CHECKING:
 __all__ = ["AGREES", "DIFFERS", "NOT_COMPARED", "Second", "cross_checks", "second_sources"]
 
 AGREES, DIFFERS, NOT_COMPARED = "agrees", "differs", "not compared"
+#: Why enthalpy and entropy of a single state are not compared.
+ONLY_STATE = (
+    "Every source has a zero of its own, so they are compared as differences from another state, and this is the only "
+    "state that the source has been compared at."
+)
 #: Fields of a state that a comparison reads.
 READ = (
     "temperature",
@@ -129,7 +134,11 @@ def _of_one_source(
         return [_not_compared(head, state, tolerances[state], str(second.reason)) for state in tolerances]
     if not known:
         return []
-    comparison = crosscheck.compare(fluid, second.model, _states(plant, known))
+    states = _states(plant, known)
+    comparison = crosscheck.compare(fluid, second.model, states)
+    compared = [index for index in range(len(known)) if index not in comparison.faults]
+    if len(compared) > 1 and compared[0] > 0:  # enthalpies cannot count from a state that the second source lacks
+        comparison = crosscheck.compare(fluid, second.model, states, compared[0])
     entries = []
     for index, state in enumerate(known):
         if index in comparison.faults:
@@ -141,6 +150,14 @@ def _of_one_source(
                 reference = None if item.counted_from is None else known[item.counted_from]
                 remark = comparison.remarks.get(index)
                 entries.append(_entry(head, state, item, index, tolerances[state], reference, remark))
+    if len(compared) == 1:
+        state = known[compared[0]]
+        shown = {entry["property"] for entry in entries}
+        entries += [
+            _not_compared(head, state, tolerances[state], ONLY_STATE, name)
+            for name in crosscheck.DIFFERENCES
+            if name not in shown
+        ]
     entries += _of_species(head, comparison.deviations, known, tolerances)
     return entries
 
@@ -204,15 +221,19 @@ def _entry(
     }
 
 
-def _not_compared(head: Mapping[str, Any], state: str, tolerance: float, reason: str) -> dict[str, Any]:
+def _not_compared(
+    head: Mapping[str, Any], state: str, tolerance: float, reason: str, name: str | None = None
+) -> dict[str, Any]:
+    """The entry of a state, or of the property ``name`` of it, that the second source could not check."""
     empty = dict.fromkeys(
         ("property", "species", "counted_from", "first", "second", "difference", "relative", "unit", "dimension")
     )
     return {
         **head,
         **empty,
+        "property": name,
         "state": state,
-        "path": f"states.{state}",
+        "path": f"states.{state}" if name is None else f"states.{state}.{name}",
         "threshold": tolerance,
         "verdict": NOT_COMPARED,
         "remark": reason,

@@ -52,7 +52,7 @@ OF_SATURATION = ("pressure",)
 
 #: Part of R T and of R below which differences of enthalpy and entropy are not resolved.
 _FLOOR = 1e-3
-_LIQUID, _GASEOUS = ("liquid",), ("vapour", "gas")
+_LIQUID, _GASEOUS, _BOTH = ("liquid",), ("vapour", "gas"), ("two-phase",)
 
 
 @dataclass(frozen=True)
@@ -294,12 +294,12 @@ def _deviation(
 
 
 def _remarks(state: State, other: State) -> dict[int, str]:
-    """States that one source has as a liquid and the other as a vapour."""
+    """States that one source has as a liquid and the other as a vapour, or that the second has as two phases."""
     phases = zip(state.flat("phase"), other.flat("phase"), strict=True)
     return {
-        index: f"The second source finds {theirs} where the first has {ours}."
+        index: f"The second source finds {'two phases' if theirs in _BOTH else theirs} where the first has {ours}."
         for index, (ours, theirs) in enumerate(phases)
-        if (ours in _LIQUID and theirs in _GASEOUS) or (ours in _GASEOUS and theirs in _LIQUID)
+        if (ours in _LIQUID and theirs in (*_GASEOUS, *_BOTH)) or (ours in _GASEOUS and theirs in (*_LIQUID, *_BOTH))
     }
 
 

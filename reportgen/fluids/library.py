@@ -38,6 +38,9 @@ _PHASES = {
     "phase_gas": "vapour",
     "phase_twophase": "two-phase",
 }
+#: A quality at either end of the two phases is a state of one phase.
+_SATURATED = {0.0: "liquid", 1.0: "vapour"}
+#: Of two phases the library has none of these, or mixes what each phase does with how one becomes the other.
 _SINGLE_PHASE = {
     "isobaric_heat_capacity": "cpmass",
     "isochoric_heat_capacity": "cvmass",
@@ -212,9 +215,16 @@ class LibraryFluid:
             backend.update(library.PT_INPUTS, first, second)
         names = {getattr(library, f"i{key}"): word for key, word in _PHASES.items()}
         found: dict[str, Any] = {name: float(getattr(backend, call)()) for name, call in _ALWAYS.items()}
-        found["phase"] = "two-phase" if by_quality else names.get(backend.phase(), "")
-        if not by_quality:
-            found |= {name: float(getattr(backend, call)()) for name, call in _SINGLE_PHASE.items()}
-        else:
+        found["phase"] = _SATURATED.get(second, "two-phase") if by_quality else names.get(backend.phase(), "")
+        if by_quality:
             found["quality"] = second
+        if found["phase"] != "two-phase":
+            found |= {name: self._where_defined(call) for name, call in _SINGLE_PHASE.items()}
         return found
+
+    def _where_defined(self, call: str) -> float:
+        """A property of the state last set; NaN where the library defines none, so that the others can be compared."""
+        try:
+            return float(getattr(self._backend, call)())
+        except ValueError:
+            return float("nan")

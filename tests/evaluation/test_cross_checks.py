@@ -44,6 +44,18 @@ outlet = "2"
 )
 
 
+THIRD = """
+[states.3]
+fluid    = "steam"
+pressure = "0.1 bar"
+
+[equipment.W]
+kind   = "throttling-valve"
+inlet  = "2"
+outlet = "3"
+"""
+
+
 def steam(fluid: str = "", state: str = "") -> Record:
     return evaluated(STEAM.format(fluid=fluid, state=state))
 
@@ -121,7 +133,25 @@ def test_a_state_has_the_sources_of_its_fluid_its_own_or_none() -> None:
 
 def test_a_single_state_has_no_differences_of_enthalpy() -> None:
     record = steam(state='second_source = "library"')
-    assert {entry["property"] for entry in checks(record)} == {"density", "isobaric_heat_capacity", "speed_of_sound"}
+    compared = {entry["property"] for entry in checks(record, verdict="agrees")}
+    assert compared == {"density", "isobaric_heat_capacity", "speed_of_sound"}
+    left_out = checks(record, verdict="not compared")
+    assert {entry["property"] for entry in left_out} == {"specific_enthalpy", "specific_entropy"}
+    (told,) = cautions(record, "P15")
+    assert told["text"].startswith("Specific enthalpy and specific entropy of state 2 of fluid steam were not checked")
+
+
+def test_enthalpies_count_from_the_first_state_that_the_second_source_has() -> None:
+    head = STEAM.format(fluid='second_source = "ideal-gas"', state="")
+    record = evaluated(
+        head.replace('pressure    = "40 bar"', 'pressure    = "1 bar"')
+        .replace('temperature = "400 degC"', 'quality = "0.99"')
+        .replace('pressure = "10 bar"', 'pressure = "0.2 bar"')
+        + THIRD
+    )
+    assert {entry["state"] for entry in checks(record, verdict="not compared")} == {"1"}
+    (enthalpy,) = checks(record, path="states.3.specific_enthalpy")
+    assert enthalpy["counted_from"] == "2"
 
 
 def test_a_library_that_is_not_installed_is_a_note_and_no_error(monkeypatch: pytest.MonkeyPatch) -> None:
@@ -164,11 +194,14 @@ def test_states_outside_the_second_source_are_notes() -> None:
         + '[states.1]\nfluid = "gas"\npressure = "2 bar"\ntemperature = "20 degC"\n'
         + '[states.2]\nfluid = "gas"\npressure = "2 bar"\ntemperature = "4000 K"\n'
     )
-    (note,) = cautions(record, "P15")
+    only, note = cautions(record, "P15")
+    assert only["text"].startswith("Specific enthalpy of state 1 of fluid gas was not checked")
     assert "State 2 of fluid gas was not checked" in note["text"]
     assert "from 20 K to 3000 K" in note["text"]
     assert checks(record, state="2")[0]["verdict"] == "not compared"
-    assert {entry["verdict"] for entry in checks(record, state="1")} == {"agrees"}
+    left_out = {entry["property"] for entry in checks(record, state="1", verdict="not compared")}
+    assert left_out == {"specific_enthalpy"}
+    assert {entry["verdict"] for entry in checks(record, state="1")} == {"agrees", "not compared"}
 
 
 def test_the_demonstration_checks_steam_by_another_equation_of_state() -> None:

@@ -175,6 +175,27 @@ def test_the_library_refuses_a_state_with_its_own_words() -> None:
     assert found.faults[1].message.startswith("CoolProp ")
 
 
+def test_two_phases_of_the_library_are_compared_in_what_both_phases_have() -> None:
+    """Humid air beyond saturation: the ideal gas keeps the water, the library finds a mist."""
+    humid = ideal_gas({"N2": 0.766, "O2": 0.204, "H2O": 0.03})
+    found = compare(humid, "library", humid.at(pressure=[1e5, 6.9e5], temperature=[303.15, 308.15]))
+    assert not found.faults
+    for name, counted in (("density", False), ("specific_enthalpy", True), ("specific_entropy", True)):
+        assert np.isfinite(of(found, name, counted).relative[1]), name
+    assert of(found, "density").relative[1] > 0.015  # less volume by the water that is liquid
+    assert np.isnan(of(found, "speed_of_sound").relative[1])
+    assert found.remarks == {1: "The second source finds two phases where the first has gas."}
+
+
+def test_saturated_states_of_the_library_have_heat_capacity_and_speed_of_sound() -> None:
+    found = compare(WATER, "library", WATER.at(temperature=[400.0, 400.0, 400.0], quality=[0.0, 0.5, 1.0]))
+    assert not found.faults
+    assert not found.remarks
+    for name in ("isobaric_heat_capacity", "speed_of_sound"):
+        assert of(found, name).relative[[0, 2]] == pytest.approx([0.0, 0.0], abs=1e-6)
+        assert np.isnan(of(found, name).relative[1])
+
+
 def test_a_library_that_is_not_installed_is_told_from_other_faults(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(library, "library_version", lambda: None)
     with pytest.raises(library.NotInstalled, match=r'pip install "reportgen\[crosscheck\]"'):

@@ -83,9 +83,9 @@ def test_what_differs_is_called_so_and_counted() -> None:
 
 def test_differences_of_rounding_are_told_as_such() -> None:
     text = section(entry(second=13.0 * (1 + 1e-14), difference=1.3e-13, relative=1e-14))
-    assert re.search(r"below 1 × 10 −6 %", text)
+    assert re.search(r"< 10 ⁻⁶ %|< 10⁻⁶ %", text)
     zero = {**COUNTED, "second": 1e-9, "difference": 1e-9, "relative": 2.5e-15, "verdict": "agrees"}
-    assert re.search(r" 0 0 below", section(entry(), zero))
+    assert re.search(r" 0 0 <", section(entry(), zero))
 
 
 def test_units_follow_the_calculation() -> None:
@@ -103,8 +103,26 @@ def test_states_that_were_not_compared_give_the_reason() -> None:
     missing = {**entry(**empty, verdict="not compared", path="states.1", second_sources=[], second_title=None)}
     missing |= {"second_model": "library", "remark": "The independent property library is not installed."}
     text = section(missing, {**missing, "state": "2"})
-    assert "Not compared, state 1, 2: The independent property library is not installed." in text
+    assert "Not compared, states 1, 2: The independent property library is not installed." in text
     assert "agree" not in text
+
+
+def test_properties_that_were_not_compared_are_named_and_what_was_is_counted() -> None:
+    empty = dict.fromkeys(("first", "second", "difference", "relative", "unit", "dimension"))
+    left_out = [
+        entry(**empty, verdict="not compared", property=name, path=f"states.1.{name}", remark="There is one state.")
+        for name in ("specific_enthalpy", "specific_entropy")
+    ]
+    text = section(entry(), entry(property="speed_of_sound", dimension="velocity"), *left_out)
+    assert "Not compared, specific enthalpy and specific entropy of state 1: There is one state." in text
+    assert "All 2 values that were compared agree within 2 %." in text
+
+
+def test_sources_that_stand_on_the_page_already_are_not_repeated() -> None:
+    other = entry(second_model="ideal-gas", second_sources=["a paper <1976>", "tables"])
+    text = section(entry(), other)
+    assert text.count("a paper <1976>") == 1
+    assert "Second source: tables · others as for the check of Water above" in text
 
 
 def test_a_phase_that_differs_is_remarked_at_the_state() -> None:

@@ -47,13 +47,16 @@ def second_source_differs(plant: EvaluatedPlant, _limit: float) -> Iterator[Find
 @caution("P15", "note", "Second source not compared", source="comparison with a second source")
 def second_source_not_compared(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
     """States whose second source has no value there, or is not on the machine; one note for each source and reason."""
-    groups: dict[tuple[str, str, str], list[str]] = {}
+    groups: dict[tuple[str, str, str], list[Mapping[str, Any]]] = {}
     for entry in plant.cross_checks:
         if entry["verdict"] == NOT_COMPARED:
-            groups.setdefault((entry["fluid"], entry["second_model"], entry["remark"]), []).append(entry["state"])
-    for (fluid, second, reason), states in groups.items():
-        one = len(states) == 1
-        text = f"State{'' if one else 's'} {', '.join(states)} of fluid {fluid} {'was' if one else 'were'} not checked "
-        text += f"by the second source ({second}). {reason}"
-        path = f"states.{states[0]}"
-        yield Finding(path, None, None, "below", text, None, owner=f"fluids.{fluid}.{second}")
+            groups.setdefault((entry["fluid"], entry["second_model"], entry["remark"]), []).append(entry)
+    for (fluid, second, reason), entries in groups.items():
+        states = list(dict.fromkeys(entry["state"] for entry in entries))
+        properties = dict.fromkeys(NAMES[entry["property"]].text.lower() for entry in entries if entry["property"])
+        subject = f"State{'' if len(states) == 1 else 's'} {', '.join(states)} of fluid {fluid}"
+        if properties:
+            subject = f"{' and '.join(properties).capitalize()} of s{subject[1:]}"
+        verb = "was" if max(len(states), len(properties)) == 1 else "were"
+        text = f"{subject} {verb} not checked by the second source ({second}). {reason}"
+        yield Finding(entries[0]["path"], None, None, "below", text, None, owner=f"fluids.{fluid}.{second}")

@@ -9,7 +9,7 @@ from markupsafe import Markup
 
 from reportgen.names import NAMES
 from reportgen.report.links import anchor
-from reportgen.report.presenter import Presenter, natural, prose
+from reportgen.report.presenter import Presenter, in_order, natural, prose
 
 __all__ = ["cross_checks"]
 
@@ -34,11 +34,21 @@ def cross_checks(presenter: Presenter) -> dict[str, Any] | None:
         groups.setdefault((entry["fluid"], entry["second_model"]), []).append(entry)
     if not groups:
         return None
-    tables = [_table(fluid, second, entries, presenter) for (fluid, second), entries in groups.items()]
+    listed = {
+        source: fluid["title"]
+        for _, fluid in in_order(presenter.record.data["plant"]["fluids"])
+        for source in fluid["sources"]
+    }
+    tables = [_table(fluid, second, entries, listed, presenter) for (fluid, second), entries in groups.items()]
     return {"tables": tables, "counted": any(table["counted_from"] for table in tables)}
 
 
-def _table(fluid: str, second: str, entries: list[dict[str, Any]], presenter: Presenter) -> dict[str, Any]:
+def _table(
+    fluid: str, second: str, entries: list[dict[str, Any]], listed: dict[str, str], presenter: Presenter
+) -> dict[str, Any]:
+    """One table; sources that stand on the page already, as ``listed`` says where, are not repeated in full."""
+    title = presenter.record.data["plant"]["fluids"][fluid]["title"]
+    sources = entries[0]["second_sources"]
     compared = [entry for entry in entries if entry["verdict"] != _NOT_COMPARED]
     columns = sorted(dict.fromkeys(_column(entry) for entry in compared), key=_place)
     rows: dict[tuple[str, str], list[dict[str, Any]]] = {}
@@ -47,13 +57,16 @@ def _table(fluid: str, second: str, entries: list[dict[str, Any]], presenter: Pr
     states = [_row(species, state, found, columns, presenter) for (species, state), found in rows.items()]
     thresholds = sorted({entry["threshold"] for entry in entries})
     model = presenter.record.data["plant"]["fluids"][fluid]["model"]
+    told = [source for source in sources if source not in listed]
+    elsewhere = dict.fromkeys(listed[source] for source in sources if source in listed)
+    listed |= dict.fromkeys(told, f"the check of {title} above")
     return {
         "fluid": fluid,
-        "title": presenter.record.data["plant"]["fluids"][fluid]["title"],
+        "title": title,
         "anchor": anchor("fluid", fluid),
         "first": _WORDS.get(model, model),
         "second": _second(second, entries[0].get("second_title")),
-        "sources": entries[0]["second_sources"],
+        "sources": [*told, *([f"{'others ' if told else ''}as for {', '.join(elsewhere)}"] if elsewhere else [])],
         "tolerance": " or ".join(_percent(threshold, signed=False) for threshold in thresholds),
         "heads": [_head(*column, presenter) for column in columns],
         "rows": [row for row in states if not row["species"]] + [row for row in states if row["species"]],
@@ -142,18 +155,26 @@ def _number(entry: dict[str, Any], which: str, presenter: Presenter) -> str:
 
 
 def _left_out(entries: Iterable[dict[str, Any]]) -> list[tuple[str, str]]:
-    """States that were not compared, with the reason."""
-    reasons: dict[str, list[str]] = {}
+    """What was not compared, states or properties of them, with the reason."""
+    reasons: dict[str, list[dict[str, Any]]] = {}
     for entry in entries:
         if entry["verdict"] == _NOT_COMPARED:
-            reasons.setdefault(entry["remark"], []).append(entry["state"])
-    return [(", ".join(sorted(states, key=natural)), prose(reason)) for reason, states in reasons.items()]
+            reasons.setdefault(entry["remark"], []).append(entry)
+    return [(_subject(left_out), prose(reason)) for reason, left_out in reasons.items()]
+
+
+def _subject(entries: Iterable[dict[str, Any]]) -> str:
+    """ "state 1", "states 1, 2", or "specific enthalpy and specific entropy of state 1"."""
+    states = sorted({entry["state"] for entry in entries}, key=natural)
+    words = f"state{'' if len(states) == 1 else 's'} {', '.join(states)}"
+    properties = dict.fromkeys(NAMES[entry["property"]].text.lower() for entry in entries if entry["property"])
+    return f"{' and '.join(properties)} of {words}" if properties else words
 
 
 def _percent(part: float, *, signed: bool = True) -> str:
     """A part of one in per cent, to two digits."""
     if abs(part) < _LEAST:
-        return "0\N{NO-BREAK SPACE}%" if part == 0.0 else f"below\N{NO-BREAK SPACE}{_percent(_LEAST, signed=False)}"
+        return "0\N{NO-BREAK SPACE}%" if part == 0.0 else "<\N{NO-BREAK SPACE}10⁻⁶\N{NO-BREAK SPACE}%"
     number = f"{100.0 * part:.{_DIGITS}g}"
     mantissa, _, exponent = number.partition("e")
     if exponent:
