@@ -58,7 +58,6 @@ from __future__ import annotations
 from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
-from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases.gas import ideal_gas
 from reportgen.fluids.real import catalogue
 
@@ -93,18 +92,20 @@ _LOADED_LATER = {
     "stoichiometric_air": "reportgen.fluids.gases.compositions",
     "with_units": "reportgen.fluids.unit_interface",
 }
-#: Parts of the package that are loaded in the same way.
-_PARTS_LOADED_LATER = {
-    "statistical": "reportgen.fluids.statistical",
-}
+#: Parts of the package that users ask for by name, loaded in the same way.
+_PARTS_LOADED_LATER = ("crosscheck", "statistical")
 
 
 def __getattr__(name: str) -> Any:
     if name in _LOADED_LATER:
         return getattr(import_module(_LOADED_LATER[name]), name)
     if name in _PARTS_LOADED_LATER:
-        return import_module(_PARTS_LOADED_LATER[name])
+        return import_module(f"{__name__}.{name}")
     raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
+
+
+def __dir__() -> list[str]:
+    return sorted({*globals(), *_LOADED_LATER, *_PARTS_LOADED_LATER})
 
 
 def real_fluid(name: str, reference_state: str = "published") -> RealFluid:
@@ -148,18 +149,8 @@ def describe(name: str) -> str:
 
     Raises
     ------
-    InputError : neither carries the name; hints give the nearest names.
+    InputError : neither carries the name (a hint gives the nearest), or several substances share the formula.
     """
-    from reportgen.fluids.description import describe_real
-    from reportgen.fluids.gases import catalogue as gas_catalogue
+    from reportgen.fluids.description import describe_all
 
-    texts = []
-    faults: list[Fault] = []
-    for write in (describe_real, gas_catalogue.describe):
-        try:
-            texts.append(write(name))
-        except InputError as error:
-            faults += error.faults
-    if not texts:
-        raise InputError(faults)
-    return "\n\n".join(texts)
+    return describe_all(name)

@@ -5,12 +5,53 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
+from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases import catalogue as gas_catalogue
+from reportgen.fluids.gases import species as gas_species
 from reportgen.fluids.gases.gas import ideal_gas
+from reportgen.fluids.naming import sharing
+from reportgen.fluids.pairs import in_words
 from reportgen.fluids.real import catalogue
 from reportgen.fluids.real.fluid import RealFluid
 
-__all__ = ["describe_real", "list_all"]
+__all__ = ["describe_all", "describe_real", "list_all"]
+
+_MOST_GUESSES = 3
+
+
+def describe_all(name: str) -> str:
+    """What is carried under a name, real fluid and ideal gas, as lines of text.
+
+    Raises
+    ------
+    InputError : neither carries the name (a hint gives the nearest), or several substances share the formula.
+    """
+    texts = []
+    for write in (describe_real, gas_catalogue.describe):
+        try:
+            texts.append(write(name))
+        except InputError:
+            continue
+    if not texts:
+        raise InputError(_nowhere(name))
+    return "\n\n".join(texts)
+
+
+def _nowhere(name: Any) -> Fault:
+    """What to say of a name under which there is neither a real fluid nor an ideal gas."""
+    if not isinstance(name, str):
+        return Fault("The name of a fluid is a text.", found=repr(name)[:60], expected='such as "water"')
+    found, isomers = repr(name[:80]), sharing(name)
+    if isomers:
+        return Fault("Several isomers share this formula.", found=found, expected=", ".join(isomers))
+    near = [*catalogue.nearest_names(name), *gas_species.nearest_names(name)]
+    meant = " or ".join(repr(other) for other in list(dict.fromkeys(near))[:_MOST_GUESSES])
+    return Fault(
+        "Neither a real fluid nor an ideal gas of this name is carried.",
+        found=found,
+        expected="one of those that `reportgen fluids` lists, by name, formula, number or CAS number",
+        hint=f"Did you mean {meant}?" if meant else None,
+    )
 
 
 def describe_real(name: str) -> str:
@@ -38,9 +79,9 @@ def describe_real(name: str) -> str:
     lines += [
         f"  molar mass    {fluid.molar_mass * 1e3:.8g} g/mol",
         f"  temperature   {limits.minimum_temperature:g} K to {limits.maximum_temperature:g} K",
-        f"  pressure      up to {limits.maximum_pressure / 1e6:g} MPa",
-        f"  {heading:<14}{lowest['temperature']:g} K, {lowest['pressure']:.6g} Pa",
-        f"  critical      {critical.temperature:.8g} K, {critical.pressure / 1e6:.7g} MPa, "
+        f"  pressure      up to {in_words('pressure', limits.maximum_pressure, 6)}",
+        f"  {heading:<14}{lowest['temperature']:g} K, {in_words('pressure', lowest['pressure'], 6)}",
+        f"  critical      {critical.temperature:.8g} K, {in_words('pressure', critical.pressure, 7)}, "
         f"{critical.density:.7g} kg/m3",
         *_melting(data["melting_line"]),
         f"  zeros         {fluid.entropy_zero}",

@@ -19,13 +19,20 @@ __all__ = ["Errors", "Fluid", "Limits", "Point"]
 Errors = Literal["raise", "mask"]
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Point:
-    """A distinguished state: temperature [K], absolute pressure [Pa] and density [kg/m3] (None where it has none)."""
+    """A distinguished state: temperature [K], absolute pressure [Pa] and density [kg/m3] (None where it has none).
+
+    Printed with nine digits: critical points are solutions of the equations, with rounding in the last of sixteen.
+    """
 
     temperature: float
     pressure: float
     density: float | None = None
+
+    def __repr__(self) -> str:
+        density = "" if self.density is None else f", density={self.density:.9g}"
+        return f"Point(temperature={self.temperature:.9g}, pressure={self.pressure:.9g}{density})"
 
 
 @dataclass(frozen=True)

@@ -21,8 +21,8 @@ def number(value: object) -> float | None:
         return None
     try:
         return float(value)
-    except OverflowError:  # whole numbers beyond the largest float
-        return math.inf if math.trunc(value) > 0 else -math.inf
+    except OverflowError:  # a whole number beyond the largest float
+        return None
 
 
 def finite_number(value: object) -> float | None:

@@ -23,6 +23,7 @@ __all__ = [
     "constants_for",
     "digest",
     "key_of",
+    "key_of_cas",
     "rackett_source",
 ]
 
@@ -91,6 +92,11 @@ def carried_cas(key: str) -> str | None:
     """CAS number of a species, or None where its constants are not carried."""
     entry = _content()[0]["species"].get(key)
     return None if entry is None else str(entry["cas"])
+
+
+def key_of_cas(number: str) -> str | None:
+    """Species key of a CAS number, or None."""
+    return next((key for key, entry in _content()[0]["species"].items() if entry["cas"] == number), None)
 
 
 def rackett_source() -> str:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection
 
+from reportgen.fluids.cubics.constants import carried_cas
 from reportgen.fluids.gases.gas import IdealGas, ideal_gas
 from reportgen.fluids.gases.species import GasSpecies, library, plain_name, resolve
 from reportgen.fluids.real import catalogue
@@ -34,10 +35,14 @@ def describe(name: str) -> str:
     if isinstance(entry, GasSpecies):
         formula = entry.formula if entry.key == entry.name else entry.key
         others = [other for other in entry.aliases if other != formula]
-        lines.append(f"  formula       {formula}")
+        number = carried_cas(entry.key)
+        lines += [f"  name          {entry.name}", f"  formula       {formula}"]
+        if number is not None:
+            lines.append(f"  CAS number    {number}")
         if others:
             lines.append(f"  other names   {', '.join(others)}")
     else:
+        lines.append(f"  name          {entry.key}")
         lines.append("  mole shares   " + ", ".join(f"{key} {share:g}" for key, share in entry.mole_fractions.items()))
     limits = gas.limits
     lines += [

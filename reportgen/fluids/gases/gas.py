@@ -20,6 +20,8 @@ from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases.caloric import LIMIT_SLACK, CaloricLaw, ConstantHeatCapacity, Nasa9
 from reportgen.fluids.gases.species import DATA_FILE, Basis, GasMixture, library, mole_fractions, resolve
 from reportgen.fluids.model import Errors, Limits
+from reportgen.fluids.naming import title_of
+from reportgen.fluids.numeric import number
 from reportgen.fluids.pairs import Elements, Pair, check_errors, in_words, read_pair
 from reportgen.fluids.state import State
 
@@ -362,8 +364,9 @@ def ideal_gas(
     fractions = mole_fractions(substance_or_composition, basis)
     title, substance, extra = _title(substance_or_composition, fractions)
     constant: float | None = None
-    if heat_capacity != "variable":
-        if isinstance(heat_capacity, bool) or not isinstance(heat_capacity, int | float):
+    if not (isinstance(heat_capacity, str) and heat_capacity == "variable"):
+        constant = number(heat_capacity)
+        if constant is None:
             raise InputError(
                 Fault(
                     "The heat capacity is not understood.",
@@ -371,7 +374,6 @@ def ideal_gas(
                     expected='"variable" or J/(kg*K)',
                 )
             )
-        constant = float(heat_capacity)
     return IdealGas(title, substance, fractions, constant, extra)
 
 
@@ -380,8 +382,8 @@ def _title(asked: str | Mapping[str, float], fractions: Mapping[str, float]) -> 
     if isinstance(asked, str):
         entry = resolve(asked)
         if isinstance(entry, GasMixture):
-            return entry.key.capitalize(), entry.key, (f"{entry.key}: {entry.source}",)
-        return entry.name[:1].upper() + entry.name[1:], entry.name, ()
+            return title_of(entry.key), entry.key, (f"{entry.key}: {entry.source}",)
+        return title_of(entry.name), entry.name, ()
     if len(fractions) == 1:
         (key,) = fractions
         return _title(key, fractions)

@@ -5,14 +5,15 @@ from __future__ import annotations
 import hashlib
 import json
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from difflib import get_close_matches
 from functools import lru_cache
 from pathlib import Path
 from typing import Any, Literal
 
 from reportgen.errors import Fault, InputError
+from reportgen.fluids.naming import CAS_NUMBER, nearest, sharing
+from reportgen.fluids.numeric import number
 
 __all__ = [
     "DATA_FILE",
@@ -21,6 +22,8 @@ __all__ = [
     "GasSpecies",
     "library",
     "mole_fractions",
+    "nearest_names",
+    "of_formula",
     "plain_name",
     "resolve",
 ]
@@ -35,7 +38,7 @@ SUM_TOLERANCE = 1e-6
 
 @dataclass(frozen=True)
 class GasSpecies:
-    """One species: ``key`` (formula, or the name where several isomers are carried), name and other names.
+    """One species: ``key`` (formula, or the name where isomers are carried, here or as real fluids), other names.
 
     ``molar_mass`` [kg/mol]; ``coefficients`` the nine numbers a1..a7, b1, b2 of each temperature interval, [K] based
     and divided by the molar gas constant; ``source`` where the underlying data come from.
@@ -117,57 +120,85 @@ def plain_name(name: str) -> str:
 
 @lru_cache(maxsize=1)
 def _names() -> tuple[dict[str, GasSpecies | GasMixture], dict[str, list[GasSpecies]]]:
-    """Exact and plain spellings of every entry; and by formula, the isomers that share it."""
+    """Entries by the plain spelling of key, name and aliases; and species by that of their formula."""
     carried = library()
     found: dict[str, GasSpecies | GasMixture] = {}
-    isomers: dict[str, list[GasSpecies]] = {}
+    formulas: dict[str, list[GasSpecies]] = {}
     entries: list[GasSpecies | GasMixture] = [*carried.species.values(), *carried.mixtures.values()]
     for entry in entries:
         names = [entry.key, *entry.aliases]
         if isinstance(entry, GasSpecies):
             names.append(entry.name)
-            isomers.setdefault(entry.formula, []).append(entry)
+            formulas.setdefault(plain_name(entry.formula), []).append(entry)
         for name in names:
             found.setdefault(plain_name(name), entry)
-    for formula, sharing in isomers.items():
-        if len(sharing) == 1:
-            found.setdefault(plain_name(formula), sharing[0])
-    return found, isomers
+    return found, formulas
+
+
+def of_formula(formula: str) -> tuple[GasSpecies, ...]:
+    """The species of a molecular formula (Hill's order; case does not matter)."""
+    return tuple(_names()[1].get(plain_name(formula), ()))
 
 
 def resolve(name: str) -> GasSpecies | GasMixture:
-    """The species or named mixture of that name, formula or alias; case, spaces and hyphens do not matter.
+    """The species or named mixture of that name, formula, alias or CAS number; case, spaces, hyphens do not matter.
 
-    Raises InputError for a name not carried, with the nearest one, and for a formula that several isomers share.
+    Raises InputError for a name not carried, with the nearest one, and for a formula that several substances share
+    which are carried as ideal gases or real fluids.
     """
-    found, isomers = _names()
     if not isinstance(name, str) or not name.strip() or len(name) > 80:
         raise InputError(Fault("The name of a gas is a short text.", found=repr(name)[:60], expected='such as "N2"'))
-    entry = found.get(plain_name(name))
+    entry = _names()[0].get(plain_name(name)) or _by_number(name)
     if entry is not None:
         return entry
-    sharing = isomers.get(name.strip(), [])
-    if len(sharing) > 1:
+    isomers = of_formula(name)
+    if isomers:
+        carried = [species.name for species in isomers]
+        others = _not_among(isomers, sharing(name))
+        if len(isomers) == 1 and not others:
+            return isomers[0]
         raise InputError(
             Fault(
                 "Several isomers share this formula.",
-                found=name,
-                expected=" or ".join(species.key for species in sharing),
+                found=repr(name),
+                expected=" or ".join(carried),
+                hint=f"The formula is that of {', '.join(others)}, too: carried as real fluid only."
+                if others
+                else None,
             )
         )
-    near = get_close_matches(plain_name(name), found, n=1, cutoff=0.6)
-    hint = None
-    if near:
-        close = found[near[0]]
-        named = (
-            f"{close.key} ({close.name})" if isinstance(close, GasSpecies) and close.name != close.key else close.key
-        )
-        hint = f"Nearest: {named}."
+    near = nearest_names(name)
     raise InputError(
         Fault(
-            "This gas is not carried as an ideal gas.", found=name, expected='a name or formula such as "N2"', hint=hint
+            "This gas is not carried as an ideal gas.",
+            found=repr(name),
+            expected='a name or formula such as "N2"',
+            hint=f"Nearest: {' or '.join(near)}." if near else None,
         )
     )
+
+
+def nearest_names(name: str) -> tuple[str, ...]:
+    """Names that may be meant by one that is not carried, the likeliest first, three at most."""
+    found = _names()[0]
+    close = [found[match] for match in nearest(name, plain_name(name), found)]
+    return tuple(dict.fromkeys(entry.name if isinstance(entry, GasSpecies) else entry.key for entry in close))
+
+
+def _by_number(name: str) -> GasSpecies | None:
+    """The species of a CAS number, None for none."""
+    if not CAS_NUMBER.fullmatch(name.strip()):
+        return None
+    from reportgen.fluids.cubics.constants import key_of_cas  # the file that has the numbers is read for them only
+
+    key = key_of_cas(name.strip())
+    return None if key is None else library().species[key]
+
+
+def _not_among(isomers: Sequence[GasSpecies], names: Sequence[str]) -> list[str]:
+    """The names that none of the species has."""
+    known = {plain_name(name) for species in isomers for name in (species.key, species.name, *species.aliases)}
+    return [name for name in names if plain_name(name) not in known]
 
 
 def mole_fractions(substance_or_composition: str | Mapping[str, float], basis: Basis) -> dict[str, float]:
@@ -183,6 +214,14 @@ def mole_fractions(substance_or_composition: str | Mapping[str, float], basis: B
     if isinstance(substance_or_composition, str):
         entry = resolve(substance_or_composition)
         return dict(entry.mole_fractions) if isinstance(entry, GasMixture) else {entry.key: 1.0}
+    if not isinstance(substance_or_composition, Mapping):
+        raise InputError(
+            Fault(
+                "This is neither the name of a gas nor a composition.",
+                found=repr(substance_or_composition)[:60],
+                expected='such as "N2", or fractions by name such as {"N2": 0.8, "O2": 0.2}',
+            )
+        )
     faults: list[Fault] = []
     fractions: dict[str, float] = {}
     for name, fraction in substance_or_composition.items():
@@ -223,6 +262,5 @@ def mole_fractions(substance_or_composition: str | Mapping[str, float], basis: B
 
 def _fraction(value: object) -> float | None:
     """The value as a fraction from 0 to 1 (a rounding above 1 is left to the check of the sum), or None."""
-    if isinstance(value, bool) or not isinstance(value, int | float):
-        return None
-    return float(value) if 0.0 <= value <= 1.0 + SUM_TOLERANCE else None
+    found = number(value)
+    return found if found is not None and 0.0 <= found <= 1.0 + SUM_TOLERANCE else None

@@ -20,6 +20,7 @@ from reportgen.errors import Fault, InputError
 from reportgen.fluids.incompressibles.heat import HeatCapacityLaw
 from reportgen.fluids.inversion import Inverse
 from reportgen.fluids.model import Errors, Limits
+from reportgen.fluids.naming import title_of
 from reportgen.fluids.pairs import Elements, check_errors, in_words, read_pair
 from reportgen.fluids.state import State
 
@@ -81,7 +82,7 @@ class Incompressible:
         molar_mass: float,
         source: str | None,
     ) -> None:
-        self.title = name[:1].upper() + name[1:]
+        self.title = title_of(name)
         self.substance = name
         self.phase = phase
         self.thermal_expansion = expansion

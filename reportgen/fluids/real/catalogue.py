@@ -5,14 +5,24 @@ from __future__ import annotations
 import hashlib
 import json
 import re
-from difflib import get_close_matches
+from collections.abc import Sequence
 from functools import cache
 from pathlib import Path
 from typing import Any
 
 from reportgen.errors import Fault, InputError
+from reportgen.fluids.naming import nearest, sharing
 
-__all__ = ["FORMAT", "digest", "find", "names", "source_lines"]
+__all__ = [
+    "FORMAT",
+    "canonical",
+    "digest",
+    "find",
+    "names",
+    "nearest_names",
+    "of_formula",
+    "source_lines",
+]
 
 #: Format of the data files of real fluids; other files beside them have another.
 FORMAT = "reportgen-fluid/1"
@@ -52,6 +62,7 @@ def _index() -> tuple[dict[str, str], dict[str, str], dict[str, list[str]]]:
         files[name] = file
         for other in (name, *entry["others"]):
             known.setdefault(_plain(other), name)
+            known.setdefault(_plain(other.split(" (")[0]), name)  # a title without the number behind it
         if entry["formula"]:
             formulas.setdefault(_plain(entry["formula"]), []).append(name)
     return files, known, formulas
@@ -66,40 +77,56 @@ def names() -> tuple[str, ...]:
     return tuple(sorted(_index()[0], key=lambda name: place(name.casefold())))
 
 
+def canonical(name: str) -> str | None:
+    """Canonical name of the fluid of that name, alias or CAS number, but not formula; None for none."""
+    return _index()[1].get(_plain(name))
+
+
+def of_formula(formula: str) -> tuple[str, ...]:
+    """Canonical names of the real fluids of a molecular formula; case does not matter."""
+    return tuple(_index()[2].get(_plain(formula), ()))
+
+
 def find(name: str) -> tuple[dict[str, Any], str]:
     """Content and file name of the fluid of that name, alias, formula or CAS number.
 
     Raises
     ------
-    InputError : no such fluid, with the nearest names in the hint; a formula that several fluids share.
+    InputError : no such fluid, with the nearest names in the hint; a formula that several substances carried share.
     """
-    files, known, formulas = _index()
-    plain = _plain(name)
-    canonical = known.get(plain)
-    if canonical is None:
-        shared = formulas.get(plain, [])
-        if len(shared) != 1:
-            raise InputError(_not_found(name, shared))
-        canonical = shared[0]
-    file = files[canonical]
+    if not isinstance(name, str):
+        raise InputError(Fault("The name of a fluid is a text.", found=repr(name)[:60], expected='such as "water"'))
+    found = canonical(name)
+    if found is None:
+        real = of_formula(name)
+        others = [other for other in sharing(name) if other not in real] if real else []
+        if len(real) != 1 or others:
+            raise InputError(_not_found(name, real, others))
+        found = real[0]
+    file = _index()[0][found]
     return _read(file)[0], file
 
 
-def _not_found(name: str, shared: list[str]) -> Fault:
-    """What to say of a name that is not carried, or of a formula that several fluids share."""
+def _not_found(name: str, real: Sequence[str], others: Sequence[str]) -> Fault:
+    """What to say of a name that is not carried, or of a formula that several substances share."""
     found = repr(name[:80])
-    if shared:
-        return Fault("Several real fluids have this formula.", found=found, expected=", ".join(shared))
-    known = _index()[1]
-    plain = _plain(name)
-    near = get_close_matches(plain, known, n=3, cutoff=0.8) or get_close_matches(plain, known, n=1, cutoff=0.6)
-    meant = " or ".join(repr(other) for other in dict.fromkeys(known[match] for match in near))
+    if real:
+        also = f"The formula is that of {', '.join(others)}, too: carried as ideal gas only." if others else None
+        message = "Several real fluids have this formula." if len(real) > 1 else "Several isomers share this formula."
+        return Fault(message, found=found, expected=", ".join(real), hint=also)
+    meant = " or ".join(repr(other) for other in nearest_names(name))
     return Fault(
         "No real fluid of this name is carried.",
         found=found,
         expected=f"one of the {len(names())} that `reportgen fluids` lists, by name, formula, number or CAS number",
         hint=f"Did you mean {meant}?" if meant else None,
     )
+
+
+def nearest_names(name: str) -> tuple[str, ...]:
+    """Canonical names that may be meant by one that is not carried, the likeliest first, three at most."""
+    known = _index()[1]
+    return tuple(dict.fromkeys(known[match] for match in nearest(name, _plain(name), known)))
 
 
 def digest(file: str) -> str:

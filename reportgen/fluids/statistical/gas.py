@@ -11,6 +11,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids.gases.gas import MOLAR_GAS_CONSTANT
+from reportgen.fluids.naming import title_of
 from reportgen.fluids.pairs import in_words
 from reportgen.fluids.statistical import diatomic, polyatomic
 from reportgen.fluids.statistical.molecules import DATA_FILE, Atom, Diatomic, Polyatomic, digest, find
@@ -50,7 +51,7 @@ class StatisticalGas:
         molecule = find(name)
         self._structure = molecule.structure
         self.formula = molecule.species.key
-        self.title = molecule.species.name[:1].upper() + molecule.species.name[1:]
+        self.title = title_of(molecule.species.name)
         self.molar_mass = molecule.species.molar_mass
         self.sources = molecule.sources
         self.note = molecule.note

@@ -108,7 +108,7 @@ def find(name: str) -> Molecule:
         raise InputError(
             Fault(
                 "No molecular constants are carried for this gas.",
-                found=name,
+                found=repr(name),
                 expected=", ".join(_content()["molecules"]),
                 hint=f"Nearest: {near[0]}." if near else None,
             )

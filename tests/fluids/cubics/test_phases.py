@@ -24,8 +24,8 @@ def parts(fluid: CubicFluid):
     [
         ({"CO2": 0.6, "N2": 0.4}, {}, (180.0, 310.0)),
         ({"CH4": 0.8, "n-octane": 0.2}, {}, (180.0, 560.0)),
-        ({"H2O": 0.4, "C6H14": 0.6}, {"interaction": {("H2O", "C6H14"): 0.5}}, (300.0, 560.0)),
-        ({"CH4": 0.97, "C6H14": 0.03}, {"equation": "Soave-Redlich-Kwong"}, (170.0, 320.0)),
+        ({"H2O": 0.4, "n-hexane": 0.6}, {"interaction": {("H2O", "n-hexane"): 0.5}}, (300.0, 560.0)),
+        ({"CH4": 0.97, "n-hexane": 0.03}, {"equation": "Soave-Redlich-Kwong"}, (170.0, 320.0)),
     ],
 )
 def test_the_stability_test_is_right_wherever_every_composition_is_tried(composition, options, temperatures) -> None:
@@ -215,7 +215,7 @@ def test_an_azeotrope_boils_at_one_temperature_and_is_solved() -> None:
 
 def test_a_second_liquid_is_refused_and_no_wrong_phase_given() -> None:
     fluid = fluids.cubic(
-        {"H2O": 0.3, "CH4": 0.3, "C6H14": 0.4}, interaction={("H2O", "C6H14"): 0.5, ("H2O", "CH4"): 0.5}
+        {"H2O": 0.3, "CH4": 0.3, "n-hexane": 0.4}, interaction={("H2O", "n-hexane"): 0.5, ("H2O", "CH4"): 0.5}
     )
     with pytest.raises(RangeError, match="two liquids, or into three phases"):
         fluid.at(temperature=300.0, pressure=1e6)
