@@ -10,6 +10,7 @@ from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any, Literal
 
+from reportgen.balances.equations import STANDARD_GRAVITY
 from reportgen.names import NAMES
 
 if TYPE_CHECKING:
@@ -25,7 +26,8 @@ class Doubt:
 
     ``key`` tells what kind of doubt it is and stays the same from version to version. ``text`` is a full sentence
     without the numbers; ``⟦rises|may rise⟧`` holds the words for a value that is beyond the limit for certain and for
-    one that may be. ``measured`` [SI unit of ``dimension``], shape (N,), is None where the doubt itself is the news.
+    one that may be. ``measured`` [SI unit of ``dimension``], shape (N,), is None where the doubt itself is the news;
+    ``limit``, in the same unit, is a number or has that shape.
     """
 
     key: str
@@ -33,7 +35,7 @@ class Doubt:
     path: str
     text: str
     measured: Any = None
-    limit: float = 0.0
+    limit: Any = 0.0
     keep: Literal["above", "below"] = "above"
     dimension: str = "ratio"
 
@@ -42,8 +44,10 @@ class Doubt:
         """Whether the base case is on the wrong side of the limit."""
         if self.measured is None:
             return True
-        value = float(self.measured[0])
-        return value < self.limit if self.keep == "above" else value > self.limit
+        import numpy as np
+
+        value, limit = float(self.measured[0]), float(np.ravel(self.limit)[0])
+        return value < limit if self.keep == "above" else value > limit
 
 
 #: Last part of a path, key, smallest value that makes sense, and what a smaller one says.
@@ -68,6 +72,10 @@ _EFFICIENCIES = (
     "mechanical_efficiency",
     "exergetic_efficiency",
 )
+#: Heat in parts of the power that a machine taken for adiabatic by custom may have.
+_HEAT_BY_CUSTOM = 0.02
+#: Share of a static head that the mean density may be off by.
+_HEAD_RESOLUTION = 0.01
 #: A value this close to its limit, in parts of its own scale, is rounding.
 _ROUNDING = 1e-9
 #: The same for pressure differences [Pa], far below what any gauge shows.
@@ -113,13 +121,68 @@ def _of_piece(piece: Piece, samples: Callable[[str], Any]) -> Iterator[Doubt]:
         if name not in _SMALLEST or (name == "power" and any(port.many for port in piece.kind.ports)):
             continue  # a control volume may absorb or deliver
         key, smallest, words = _SMALLEST[name]
+        head = _static_head(piece, name, samples) if key == "pressure-rises" else None
+        if head is not None:
+            yield _less_than_head(piece, name, samples(piece.path(name)), head)
+            continue
         rounding = {"pressure_difference": _ROUNDING_OF_PRESSURE, "ratio": _ROUNDING}.get(parameter.dimension, scale)
         text = f"{piece.title}: {words}; {_WHY.get(key) or _machine(piece)}"
         measured = _snapped(samples(piece.path(name)), smallest, rounding)
         yield Doubt(key, piece.owner, piece.path(name), text, measured, smallest, dimension=parameter.dimension)
     for name in _EFFICIENCIES:
         yield _efficiency(piece, name, samples, scale)
+    if piece.kind.power_sign and _is_adiabatic_by_custom(piece):
+        yield _heat_of_machine(piece, samples)
     yield from piece.kind.doubts(piece, samples)
+
+
+def _static_head(piece: Piece, drop: str, samples: Callable[[str], Any]) -> Any:
+    """ρ g (z_2 − z_1) [Pa] with the mean density, shape (N,); None where no elevations are stated."""
+    side = drop.removesuffix("pressure_drop")
+    ends = [piece.states(f"{side}{port}") for port in ("inlet", "outlet")]
+    if not all(ends):
+        return None
+    inlet, outlet = (f"states.{states[0]}" for states in ends)
+    if not {f"{inlet}.elevation", f"{outlet}.elevation"} <= piece.carried:
+        return None
+    density = 0.5 * (samples(f"{inlet}.density") + samples(f"{outlet}.density"))
+    return density * STANDARD_GRAVITY * (samples(f"{outlet}.elevation") - samples(f"{inlet}.elevation"))
+
+
+def _less_than_head(piece: Piece, name: str, drop: Any, head: Any) -> Doubt:
+    """A pressure that falls by less, or rises by more, than the height explains."""
+    text = (
+        f"{piece.title}: the pressure at the outlet ⟦is|may be⟧ above what the difference of elevation leaves of that "
+        "at the inlet; nothing in it does work on the stream. The limit is the static head ρ g Δz, with the "
+        "mean density."
+    )
+    rounding = max(_ROUNDING_OF_PRESSURE, _HEAD_RESOLUTION * abs(float(head[0])))
+    measured = _snapped(drop, head, rounding)
+    return Doubt("pressure-rises", piece.owner, piece.path(name), text, measured, head, dimension="pressure_difference")
+
+
+def _is_adiabatic_by_custom(piece: Piece) -> bool:
+    """Whether nobody says that heat crosses the boundary, neither its amount nor its temperature."""
+    spoken = {piece.path("heat"), piece.path("boundary_temperature")} & piece.given
+    custom = any(parameter.name == "heat" and parameter.default for parameter in piece.kind.parameters)
+    return custom and not spoken and not piece.count("heat_ports")
+
+
+def _heat_of_machine(piece: Piece, samples: Callable[[str], Any]) -> Doubt:
+    """Heat that the balance leaves to a machine which is adiabatic by custom; a compressor may well be cooled."""
+    import numpy as np
+
+    heat, power = samples(piece.path("heat")), samples(piece.path("power"))
+    with np.errstate(all="ignore"):
+        share = (heat if piece.kind.compresses else np.abs(heat)) / np.abs(power)
+    text = (
+        f"{piece.title} ⟦exchanges|may exchange⟧ heat that nobody states: what is given determines it more than once, "
+        "and the energy balance leaves the rest as heat in the place of an adiabatic machine. State the heat, or its "
+        "boundary_temperature, where it is meant; else one of the given values is too many, or wrong. The value is the "
+        "heat in parts of the power."
+    )
+    limit = _HEAT_BY_CUSTOM
+    return Doubt("unstated-heat", piece.owner, piece.path("heat"), text, share, limit, "below", "ratio")
 
 
 def _machine(piece: Piece) -> str:

@@ -26,6 +26,7 @@ __all__ = [
     "INLET",
     "OUTLET",
     "PRESSURE_DROP",
+    "STANDARD_GRAVITY",
     "adiabatic",
     "elevated_enthalpy",
     "energy_balance",

@@ -2,8 +2,8 @@
 
 A kind is one module of :mod:`reportgen.balances.equipment`, of :mod:`reportgen.balances.processes.kinds` or of
 :mod:`reportgen.balances.vessels.kinds`, that binds one :class:`Kind` to the name ``KIND``. Nothing else names it:
-:func:`kinds`, :func:`process_kinds` and :func:`vessel_kinds` find the modules by looking into the package. This module and the declarations need neither numpy nor a fluid, so that the schema of the
-calculation file stays cheap to make.
+:func:`kinds`, :func:`process_kinds` and :func:`vessel_kinds` find the modules by looking into the package. This module
+and the declarations need neither numpy nor a fluid, so that the schema of the calculation file stays cheap to make.
 """
 
 from __future__ import annotations
@@ -45,13 +45,15 @@ class Parameter:
     """A quantity that may be given for a piece of equipment; what is not given is solved for.
 
     ``dimension`` is a key of :data:`reportgen.names.DIMENSIONS`; ``default`` says in words what is assumed when
-    neither the file nor any balance determines the quantity (empty: nothing is assumed).
+    neither the file nor any balance determines the quantity (empty: nothing is assumed). ``signed``: it may be negative
+    though others of its name may not, as the pressure loss of a pipe that runs down.
     """
 
     name: str
     dimension: str
     text: str
     default: str = ""
+    signed: bool = False
 
 
 @dataclass(frozen=True)

@@ -260,7 +260,8 @@ class Formula:
     ``evaluate`` takes the inputs in order. ``inverses`` give an input in closed form: they take the arrays in the
     order of ``inputs`` with the output in the place of the input asked for. ``solvable_inputs`` are the inputs the
     relation may be solved for in any way (None: all). ``fluids`` are the fluids whose properties it uses. ``reason``
-    says why the value may be missing. ``written`` gives the LaTeX from values where it depends on them.
+    says why the value may be missing; ``explain`` says it from the inputs, single numbers. ``written`` gives the LaTeX
+    from values where it depends on them.
     ``slopes`` gives the derivatives by each input where differences would not do.
     """
 
@@ -279,6 +280,7 @@ class Formula:
     reason: str = ""
     slopes: Callable[..., Sequence[Array]] | None = None
     written: Callable[[Mapping[str, Array]], str] | None = None
+    explain: Callable[..., str] | None = None
 
     @property
     def variables(self) -> tuple[str, ...]:

@@ -313,6 +313,10 @@ class _Run:
             reason = self.solution.reasons.get(empty[0], f"{empty[0]} has no value")
         elif isinstance(relation, Formula):
             reason = relation.reason or "the formula has no value here"
+            if relation.explain and unknown == relation.output:
+                reason = relation.explain(*(float(self.values[path][0]) for path in relation.inputs))
+        elif relation.is_square_in(unknown):
+            reason = f"its square would be negative{self._against_pressure(relation.owner)}"
         else:
             reason = f"the factor of {unknown} in the equation is zero, so that any value would satisfy it"
         if needed:
@@ -320,6 +324,18 @@ class _Run:
             raise SolutionError(Fault(message, unknown, numbers=self._numbers(others)))
         self.solution.reasons[unknown] = reason
         self.solution.lacking[unknown] = tuple(others)
+
+    def _against_pressure(self, owner: str) -> str:
+        """What to say of a piece whose pressure falls by its nature and rises by what is given; else nothing."""
+        piece = self.solution.pieces.get(owner.partition(".")[2])
+        if piece is None or piece.kind.lifts >= 0:
+            return ""
+        inlet, outlet = piece.one("inlet"), piece.one("outlet")
+        first, last = (self.values.get(f"states.{state}.pressure", np.nan) for state in (inlet, outlet))
+        if not np.ravel(last)[0] > np.ravel(first)[0]:
+            return ""
+        title = piece.kind.title.lower()
+        return f"; the pressure of a {title} falls, and here it rises from state {inlet} to state {outlet}"
 
     def _together(self, block: Block) -> None:
         """Solve several relations at once."""

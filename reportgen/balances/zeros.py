@@ -90,6 +90,7 @@ def _conflict(title: str, owner: str, first: StreamGroup, second: StreamGroup) -
         message = f"{title} brings {who} into one balance, but their enthalpies and entropies have different zeros."
         return Fault(message, owner, found=zeros, expected=_cure(first, second))
     if first.fluid.entropy_zero_name == second.fluid.entropy_zero_name:
+        zeros = "; ".join(f"{group.fluid_id}: {group.fluid.title}" for group in (first, second))
         why = "which are different substances: what comes in as one of them cannot go out as the other"
     else:
         why = "which are different substances with different zeros of enthalpy and entropy"

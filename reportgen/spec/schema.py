@@ -15,6 +15,7 @@ from reportgen.balances.kinds import Choice, Group, Kind, Parameter, kinds, proc
 from reportgen.names import NAMES
 from reportgen.quantities import Quantity
 from reportgen.spec.fields import (
+    Bounds,
     CalendarDate,
     Identifier,
     LongText,
@@ -284,7 +285,8 @@ def _parameters(parameters: tuple[Parameter, ...]) -> dict[str, Any]:
     """Optional quantity fields, as a kind declares them."""
     fields = {}
     for parameter in parameters:
-        marker = QuantityOf((parameter.dimension,), bounds_for(parameter.name))
+        bounds = Bounds() if parameter.signed else bounds_for(parameter.name)
+        marker = QuantityOf((parameter.dimension,), bounds)
         text = parameter.text.rstrip(".")
         if parameter.default:
             text = f"{text}; if not given: {parameter.default}"

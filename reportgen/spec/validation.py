@@ -10,7 +10,9 @@ from typing import Annotated, Any, Literal, Union, get_args, get_origin
 
 from pydantic import BaseModel, Tag, ValidationError
 
+from reportgen.balances.kinds import kinds, process_kinds, vessel_kinds
 from reportgen.errors import Fault, InputError
+from reportgen.names import NAMES
 from reportgen.spec.fields import QuantityOf, shown
 from reportgen.spec.schema import LATER, document
 from reportgen.spec.source import Location, Source
@@ -106,7 +108,7 @@ def _note(source: Source, detail: Any) -> None:
     else:
         message, expected, hint = "The value does not fit.", detail["msg"], None
         if kind in _TYPES:
-            message, expected = "This is not the type of value that belongs here.", _TYPES[kind]
+            message, expected = "This is not the type of value that belongs here.", _TYPES[kind] + _as_in(tagged)
             hint = _rewritten(kind, source.node(location))
         elif kind in _BOUNDS:
             expected = _BOUNDS[kind].format(**context)
@@ -171,9 +173,19 @@ def _note_unknown(source: Source, detail: Any) -> list[Location]:
         at="key",
         found=shown(key)[1:-1],
         expected=", ".join(choices),
-        hint=f'Did you mean "{meant}"?' if meant else None,
+        hint=f'Did you mean "{meant}"?' if meant else _why_not(source, location),
     )
     return [(*tagged[:-1], meant)] if meant else []
+
+
+def _why_not(source: Source, location: Location) -> str | None:
+    """What a kind is, where a quantity of the glossary is no parameter of it: "without heat" answers for ``heat``."""
+    registry = {"equipment": kinds, "processes": process_kinds, "vessels": vessel_kinds}.get(str(location[0]))
+    if registry is None or len(location) != 3 or location[2] not in NAMES:
+        return None
+    node = source.node((*location[:2], "kind"))
+    kind = registry().get(str(node.plain())) if node is not None else None
+    return f"{kind.title}: {kind.text}" if kind is not None else None
 
 
 def _rewritten(kind: str, node: Node | None) -> str | None:
@@ -264,8 +276,28 @@ def _keys_of(tagged: Location) -> list[str]:
     return list(model.model_fields) if model is not None else []
 
 
+def _field(tagged: Location) -> Any:
+    """The field at a location, or None."""
+    model = _model_at(tagged[:-1])
+    return model.model_fields.get(str(tagged[-1])) if model is not None else None
+
+
+def _as_in(tagged: Location) -> str:
+    """How the field at a location is written, where it has an example: ", as in: critical = { ... }"."""
+    field = _field(tagged)
+    return f", as in: {tagged[-1]} = {_inline(field.examples[0])}" if field is not None and field.examples else ""
+
+
+def _inline(value: Any) -> str:
+    """A table, list, text or number as TOML writes it on one line."""
+    if isinstance(value, Mapping):
+        return "{ " + ", ".join(f"{key} = {_inline(item)}" for key, item in value.items()) + " }"
+    if isinstance(value, list):
+        return "[" + ", ".join(map(_inline, value)) + "]"
+    return f'"{value}"' if isinstance(value, str) else str(value)
+
+
 def _description(tagged: Location) -> str | None:
     """Description of the field at a location."""
-    model = _model_at(tagged[:-1])
-    field = model.model_fields.get(str(tagged[-1])) if model is not None else None
+    field = _field(tagged)
     return field.description.rstrip(".") if field is not None and field.description else None

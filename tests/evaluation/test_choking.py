@@ -41,6 +41,9 @@ def test_an_outlet_pressure_below_the_throat_chokes_the_flow(pressure: str, seve
     assert [caution["severity"] for caution in found] == ([severity] if severity else [])
     if found:
         assert found[0]["path"] == "states.2.pressure"
+        assert found[0]["value"] < found[0]["limit"]
+        assert found[0]["limit"] == pytest.approx(1.585e5, rel=1e-3)
+        assert "throat_pressure" not in found[0]["text"]
         assert "State throat_area if it has a divergent part" in found[0]["text"]
 
 

@@ -224,9 +224,14 @@ def test_p11_names_the_assumption_the_result_and_the_difference() -> None:
 
 
 def flowing(
-    given: tuple[str, ...], kind: str = "throttling-valve", ports: tuple[str, str] = ("inlet", "outlet")
+    given: tuple[str, ...],
+    kind: str = "throttling-valve",
+    ports: tuple[str, str] = ("inlet", "outlet"),
+    solved: tuple[str, ...] = (),
 ) -> Any:
-    values: dict[str, Any] = {"states.1.velocity": 30.0, "states.2.velocity": 40.0, "states.2.pressure": 1e5}
+    values: dict[str, Any] = {"states.1.pressure": 1e5, "states.2.pressure": 1e5} | dict.fromkeys(
+        (*given, *solved), 30.0
+    )
     connections = {"M": [(ports[0], "in", "1"), (ports[1], "out", "2")]}
     return plant(values, kinds={"M": kind}, connections=connections, given=given)
 
@@ -234,6 +239,8 @@ def flowing(
 def test_p12() -> None:
     assert summary("P12", flowing(("states.1.velocity",))) == [("warning", "states.1.velocity", True)]
     assert summary("P12", flowing(("states.1.velocity", "states.2.velocity"))) == []
+    assert summary("P12", flowing(("states.1.velocity",), solved=("states.2.velocity",))) == []
+    assert summary("P12", flowing((), solved=("states.2.velocity",))) == []
     assert summary("P12", flowing(())) == []
     two_streams = flowing(("states.1.velocity",), "heat-exchanger", ("hot_inlet", "cold_outlet"))
     assert summary("P12", two_streams) == []

@@ -119,15 +119,15 @@ def doubts(piece: Piece, samples: Callable[[str], Any]) -> list[Doubt]:
     if piece.path("throat_area") in piece.given:
         return []
     outlet = f"states.{piece.one('outlet')}.pressure"
-    margin = samples(outlet) - samples(piece.path("throat_pressure"))
-    margin = np.where(np.abs(margin) <= _ROUNDING * np.abs(samples(outlet)), 0.0, margin)
+    pressure, throat = samples(outlet), samples(piece.path("throat_pressure"))
+    pressure = np.where(np.abs(pressure - throat) <= _ROUNDING * np.abs(pressure), throat, pressure)
     text = (
-        f"{piece.title}: the flow ⟦chokes|may choke⟧. It reaches the speed of sound at throat_pressure, above the "
-        "outlet pressure; a convergent nozzle expands no further, and its flow no longer depends on what follows. "
-        "State throat_area if it has a divergent part, or let the outlet have the throat pressure. The value is the "
-        "outlet pressure less the throat pressure."
+        f"{piece.title}: the flow ⟦chokes|may choke⟧. It reaches the speed of sound at its mouth before the "
+        "pressure has fallen to that of the outlet; a convergent nozzle expands no further, and its flow no longer "
+        "depends on what follows. State throat_area if it has a divergent part, or let the outlet have the pressure at "
+        "which the flow chokes. The value is the outlet pressure, the limit the pressure at which the flow chokes."
     )
-    return [Doubt("choked", piece.owner, outlet, text, margin, dimension="pressure_difference")]
+    return [Doubt("choked", piece.owner, outlet, text, pressure, throat, dimension="pressure")]
 
 
 KIND = Kind(

@@ -1,6 +1,8 @@
 r"""Pipe: leads a stream from one place to another, with pressure loss, heat loss and a difference of elevation.
 
-``pressure_drop`` is p_1 − p_2 as two gauges would show it, whatever causes it: friction, fittings or height. With
+``pressure_drop`` is p_1 − p_2 as two gauges would show it, whatever causes it: friction, fittings or height. It is
+negative where a pipe runs down so far that the height gives more than the friction takes; a caution compares it with
+the static head where elevations are stated. With
 ``inner_diameter`` the velocities at both ends follow from the flow, ṁ = ρ V π d²/4, and count in the energy balance.
 
 Exergetic efficiency: exergy gained over exergy given up, by the stream and by the heat at its boundary temperature.
@@ -10,6 +12,7 @@ Entropy generation number: Ṡgen/(ṁ R).
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 from reportgen.balances.equations import (
     BOUNDARY_TEMPERATURE,
@@ -81,7 +84,7 @@ KIND = Kind(
     text="Leads a stream from one place to another.",
     ports=(INLET, OUTLET),
     parameters=(
-        PRESSURE_DROP,
+        replace(PRESSURE_DROP, text="Pressure at the inlet less that at the outlet, height included.", signed=True),
         Parameter("inner_diameter", "length", "Inner diameter; given, it takes in the velocities at both ends."),
         HEAT_BY_CUSTOM,
         BOUNDARY_TEMPERATURE,

@@ -3,7 +3,8 @@ r"""Separator: a two-phase stream leaves as its vapour and its liquid; adiabatic
     x_vapour = 1 ,   x_liquid = 0 ,   p_vapour = p_liquid = p_in − Δp
 
 A quality given for an outlet (liquid carried over, vapour drawn under) takes the place of 1 or 0. A stream that enters
-in one phase would make one of the two flows negative, which a caution tells.
+in one phase would make one of the two flows negative, which a caution tells. Pure substances only: the phases of a
+mixture have compositions of their own, which no outlet could have, and are refused.
 
 Exergetic efficiency: exergy that leaves over exergy that enters. Entropy generation number: Ṡgen/(ṁ_in R).
 """
@@ -28,6 +29,7 @@ from reportgen.balances.kinds import Kind, Port
 from reportgen.balances.merit import divided_exergy_ratio, entropy_number_by_flow
 from reportgen.balances.plant import Piece
 from reportgen.balances.relations import Balance, Default, Formula, Relation, Stretch, Term
+from reportgen.errors import Fault
 
 _OUTLETS = (("vapour_outlet", 1.0, "as saturated vapour"), ("liquid_outlet", 0.0, "as saturated liquid"))
 
@@ -88,6 +90,25 @@ def stretches(piece: Piece) -> list[Stretch]:
     return [Stretch(f"stream {state}", inlet, state, "enthalpy", mixing=True) for state in piece.streams("out")]
 
 
+def checks(piece: Piece) -> list[Fault]:
+    """A fluid whose saturated vapour and liquid are not of one composition."""
+    inlet = piece.one("inlet")
+    fluid = piece.fluid(inlet)
+    if not getattr(fluid, "pseudo_pure", False) and len(fluid.composition or ()) < 2:
+        return []
+    return [
+        Fault(
+            f"{piece.title} parts a mixture. Its vapour and its liquid have compositions of their own, but both "
+            f"outlets would be states of the whole composition of fluid {piece.fluid_id(inlet)}.",
+            f"states.{inlet}.fluid",
+            found=fluid.title,
+            expected="a pure substance",
+            hint="Work out the split apart from this calculation, and begin it behind the separator with vapour and "
+            "liquid as two fluids, each with its own composition.",
+        )
+    ]
+
+
 KIND = Kind(
     name="separator",
     title="Separator",
@@ -104,6 +125,7 @@ KIND = Kind(
     heats=heat_ports,
     stretches=stretches,
     groups=(HEAT_PORTS,),
+    checks=checks,
     exergetic_efficiency="Exergy of the streams that leave over exergy of the stream that enters.",
     entropy_generation_number="Entropy generation over entering flow times specific gas constant.",
 )

@@ -175,7 +175,8 @@ def maximum_pressure(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
 def temperature_limits(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
     """Temperature beyond the maximum or minimum (stop), or within 10 K of it (warning).
 
-    At the ports of a piece, before and after a process, in a vessel on its whole way. The pressure of the same table is the matter of T19.
+    At the ports of a piece, before and after a process, in a vessel on its whole way. The pressure of the same table is
+    the matter of T19.
     """
     for owner, tag, subject, table, _, hottest, coldest in _places_with_limits(plant):
         subject = subject[:1].upper() + subject[1:]

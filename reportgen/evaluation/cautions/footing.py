@@ -66,7 +66,7 @@ def assumption_fails(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
 
 @caution("P12", "warning", "Velocity on one side", source="first law of thermodynamics")
 def velocity_on_one_side(plant: EvaluatedPlant, _limit: float) -> Iterator[Finding]:
-    """Velocity stated for one state of a stream and not for another of the same piece."""
+    """Velocity stated for one state of a stream; for another of the same piece neither stated nor solved for."""
     for tag, kind in plant.kinds.items():
         sides = {port.name: port.side for port in kinds()[kind].ports}
         streams: dict[tuple[str, str], list[str]] = {}
@@ -75,7 +75,7 @@ def velocity_on_one_side(plant: EvaluatedPlant, _limit: float) -> Iterator[Findi
             streams.setdefault(stream, []).append(connection.state)
         for states in streams.values():
             stated = [state for state in states if f"states.{state}.velocity" in plant.axis.givens]
-            silent = [state for state in states if state not in stated]
+            silent = [state for state in states if not plant.has(f"states.{state}.velocity")]
             if stated and silent:
                 path = f"states.{stated[0]}.velocity"
                 text = f"A velocity is stated for state {', '.join(stated)} of {tag} but not for state "

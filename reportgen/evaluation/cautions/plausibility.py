@@ -23,6 +23,7 @@ __all__ = [
     "pressure_from_enthalpy",
     "pressure_rises_without_work",
     "temperatures_cross",
+    "unstated_heat",
 ]
 
 
@@ -114,6 +115,15 @@ fire_without_air = _passed_on(
     "two air ratios give one flame temperature",
     "fire-without-air",
     "Excess air of a combustor found to be negative where a temperature or a heat was given in its place.",
+)
+unstated_heat = _passed_on(
+    "P21",
+    "warning",
+    "Heat that nobody states",
+    "first law of thermodynamics; 2 % of the power: common practice",
+    "unstated-heat",
+    "Heat above 2 % of the power of a machine that is adiabatic by custom, because the energy balance leaves it over; "
+    "of a compressor heat taken up only, since it may be cooled.",
 )
 pressure_from_enthalpy = _passed_on(
     "P10",
