@@ -230,6 +230,8 @@ _ENTRIES = (
         "Second-law efficiency: what a cycle is for over what it is given, both as exergy",
     ),
     Name("excess_air", r"e_\mathrm{air}", "ratio", "Excess air: oxygen beyond what is needed, in parts of that"),
+    Name("oxygen_needed", r"o_\mathrm{n}", "ratio", "Oxygen that a kilogram needs to burn completely"),
+    Name("oxygen_free", r"o_\mathrm{f}", "ratio", "Oxygen that a kilogram frees"),
     Name("air_ratio", r"\lambda", "ratio", "Air ratio: oxygen that is there over oxygen needed"),
     Name("lower_heating_value", r"H_\mathrm{l}", "specific_energy", "Lower heating value at 25 °C: water as vapour"),
     Name("higher_heating_value", r"H_\mathrm{h}", "specific_energy", "Higher heating value at 25 °C: water as liquid"),
@@ -332,7 +334,7 @@ def symbol_of(path: str, amounts: bool = False) -> str:
         owner = rf"\mathrm{{{parts[0]}}}"
     elif len(parts) > 3 and parts[-3] == "species":
         owner = r"\mathrm{" + ".".join(parts[1:-3]) + r"},\mathrm{" + parts[-2] + "}"
-    elif len(parts) > 3 and parts[-3] == "heat_ports":
+    elif len(parts) > 3 and parts[-3] in ("heat_ports", "streams"):
         owner = r"\mathrm{" + ".".join(parts[1:-3]) + "}," + parts[-2]
     else:
         owner = r"\mathrm{" + ".".join(parts[1:-1]) + "}"

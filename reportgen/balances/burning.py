@@ -32,6 +32,8 @@ __all__ = [
     "heating_value",
     "is_fire",
     "no_exergetic_efficiency",
+    "of_stream",
+    "oxygen",
 ]
 
 #: Mole fraction of the base case below which a species is not reported: one in a million.
@@ -64,23 +66,68 @@ def _flow(state: str) -> str:
     return f"states.{state}.mass_flow"
 
 
+def of_stream(piece: Piece, state: str, name: str) -> str:
+    """Path of a value of one stream that enters."""
+    return piece.path(f"streams.{state}.{name}")
+
+
+def oxygen(piece: Piece) -> list[Formula]:
+    """Oxygen that a kilogram of each stream needs, and that it frees [kg/kg], where there is any."""
+    found = []
+    for state, each in contents(piece).items():
+        for name, amount, words in (
+            ("oxygen_needed", each.needed, "needs for its complete combustion to CO2, H2O, SO2, HCl and N2"),
+            ("oxygen_free", each.free, "brings free"),
+        ):
+            if amount:
+                found.append(_constant(piece, state, name, amount, "Oxygen", f"oxygen that a kilogram of it {words}."))
+    return found
+
+
+def _constant(piece: Piece, state: str, name: str, amount: float, heading: str, words: str) -> Formula:
+    """A value that follows from the fluid of a stream alone."""
+    path = of_stream(piece, state, name)
+    return Formula(
+        path,
+        piece.owner,
+        heading,
+        f"{piece.title}, stream {state}: {words}",
+        "elements are conserved" if heading == "Oxygen" else "enthalpies of formation",
+        path,
+        (),
+        lambda: amount,
+        _CONSTANTS[name],
+        fluids=(piece.fluid_id(state),),
+    )
+
+
+#: Right sides of what follows from a fluid alone: sums over the species k of the stream, over the products j.
+_CONSTANTS = {
+    "oxygen_needed": r"\sum_k o_k",
+    "oxygen_free": r"\sum_k o_k",
+    "lower_heating_value": r"h - \sum_j n_j\,h_j",
+    "higher_heating_value": r"h - \sum_j n_j\,h_j",
+}
+
+
 def excess_air(piece: Piece) -> Balance:
-    """Σ o_i ṁ_i − (1 + e) Σ d_i ṁ_i = 0, the coefficients as numbers [kg/kg]."""
+    """Σ o_i ṁ_i − (1 + e) Σ d_i ṁ_i = 0."""
     known, excess = contents(piece), piece.path("excess_air")
-    free = [Term(each.free, (_flow(state),), f"{each.free:.6g}") for state, each in known.items() if each.free]
-    needed = {state: each.needed for state, each in known.items() if each.needed}
-    bound = [Term(-need, (_flow(state),), f"{need:.6g}") for state, need in needed.items()]
-    more = [Term(-need, (excess, _flow(state)), f"{need:.6g}") for state, need in needed.items()]
-    each = "each flow times the kilograms of oxygen that a kilogram of it frees or needs"
+    free = [Term(1.0, (of_stream(piece, s, "oxygen_free"), _flow(s))) for s, each in known.items() if each.free]
+    needed = [(of_stream(piece, s, "oxygen_needed"), _flow(s)) for s, each in known.items() if each.needed]
+    bound = [Term(-1.0, factors) for factors in needed]
+    more = [Term(-1.0, (excess, *factors)) for factors in needed]
+    coefficients = {term.factors[0] for term in (*free, *bound)}
     return Balance(
         piece.path("excess_air.definition"),
         piece.owner,
         "Excess air",
-        f"{piece.title}: the excess air ties the oxygen that is free to that which the fire needs, {each}.",
-        "definition of excess air, complete combustion to CO2, H2O, SO2, HCl and N2",
+        f"{piece.title}: the excess air ties the oxygen that is free to that which the fire needs.",
+        "definition of excess air",
         (*free, *bound, *more),
         {},
-        {excess: f"{piece.title}: oxygen that is free and that the fire needs give the excess air, {each}."},
+        {excess: f"{piece.title}: oxygen that is free and that the fire needs give the excess air."},
+        frozenset(coefficients),
     )
 
 
@@ -142,23 +189,12 @@ def heating_value(piece: Piece, which: str) -> list[Formula]:
 
 
 def _stream_heating_value(piece: Piece, state: str, which: str) -> Formula:
-    """H = h(25 °C) − Σ n_k h_k [J/kg] of one stream."""
-    path = f"states.{state}.{which}_heating_value"
+    """H = h(25 °C) − Σ n_j h_j [J/kg] of one stream."""
     value = _heating_values(piece.fluid(state))[which == "higher"]
     water = "vapour" if which == "lower" else "liquid"
-    return Formula(
-        path,
-        piece.owner,
-        f"{which.capitalize()} heating value",
-        f"{piece.title}: a kilogram of stream {state} at 25 °C and 101.325 kPa, less the products n of its complete "
-        f"combustion there, all water {water}.",
-        "enthalpies of formation",
-        path,
-        (),
-        lambda: value,
-        r"h\left(25\,\mathrm{°C}\right) - \sum n_k\,h_k\left(25\,\mathrm{°C}\right)",
-        fluids=(piece.fluid_id(state),),
-    )
+    words = "its enthalpy at 25 °C and 101.325 kPa, less that of the products of its complete combustion there, all "
+    words += f"water {water}."
+    return _constant(piece, state, f"{which}_heating_value", value, f"{which.capitalize()} heating value", words)
 
 
 def fuel_heat(piece: Piece) -> Formula:

@@ -31,6 +31,7 @@ _BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:K|bar|kPa|MPa|Pa|%)(?!\w))")
 _PRODUCT_OF_UNITS = re.compile(r"\((k?g|lb|mol|kmol) (K|°R)\)")
 _HEAT_PORT = re.compile(r"(.+)\.heat_ports\.(\d+)")
 _SPECIES = re.compile(r"(.+)\.species\.([^.]+)")
+_STREAM = re.compile(r"(.+)\.streams\.([^.]+)")
 _QUALIFIED = re.compile(r"[,:]| at the | of a two-phase| relative to| p v ")
 _PIECES = re.compile(r"(\d+)")
 #: Dimensions of what a process of a closed system has where equipment has a rate.
@@ -237,6 +238,8 @@ class Presenter:
             if species:
                 whose = f"process\N{NO-BREAK SPACE}{species[1]}" if parts[0] == "processes" else species[1]
                 return f"{species[2]}, {whose}"
+            if stream := _STREAM.fullmatch(name):
+                return f"stream\N{NO-BREAK SPACE}{stream[2]} of {stream[1]}"
             return f"heat port\N{NO-BREAK SPACE}{port[2]} of {port[1]}" if port else owner
         if parts[0] == "trains":
             return str(trains.get(name, {}).get("title") or name)

@@ -75,8 +75,8 @@ _PROCESS_RESULTS = (
 _CLOSED_RESULTS = (*_PROCESS_RESULTS, "closure")
 #: What a process reports for each species of a mixture.
 _OF_SPECIES = "mole_fraction"
-#: Of what burns.
-_OF_FUELS = ("lower_heating_value", "higher_heating_value")
+#: Of each stream that enters a combustor.
+_OF_STREAMS = ("oxygen_needed", "oxygen_free", "lower_heating_value", "higher_heating_value")
 #: What a combustor reports for each species of its products.
 _OF_PRODUCTS = ("mole_fraction", "dry_mole_fraction")
 _SURROUNDINGS = ("temperature", "pressure")
@@ -173,15 +173,9 @@ def _may_move(source: Source, state: str) -> bool:
     return False
 
 
-def _may_burn(source: Source, state: str) -> bool:
-    """Whether the state enters a combustor."""
-    for tag in source.table("equipment"):
-        kind = kind_of(source, tag)
-        ports = kind.ports if kind is not None and kind.burns else ()
-        entering = (port.name for port in ports if port.direction == "in")
-        if any(name == state for port in entering for _, name in source.texts("equipment", tag, port)):
-            return True
-    return False
+def _at(source: Source, tag: str, port: str) -> list[str]:
+    """States at a port of a piece."""
+    return [state for _, state in source.texts("equipment", tag, port)]
 
 
 def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]:
@@ -190,7 +184,6 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
         given = [name for name in _ONLY_WHERE_GIVEN if name in givens_of(source, owner)]
         given += ["velocity"] if _may_move(source, owner) else []
         given += [*AMOUNTS, "entropy"] if _is_closed(source, owner) else []
-        given += _OF_FUELS if _may_burn(source, owner) else []
         return {name: (NAMES[name].dimension,) for name in (*_STATE_RESULTS, *given)}
     if section == "trains":
         if source.node(("trains", owner, "processes")) is not None:
@@ -208,6 +201,12 @@ def _names_of(source: Source, section: str, owner: str) -> dict[str, tuple[str]]
         reports = [name for name in kind.reports if name != _OF_SPECIES]
         names |= _amounts(reports) if closed else {name: (NAMES[name].dimension,) for name in reports}
         names |= _shares(source, owner) if _OF_SPECIES in kind.reports else {}
+        entering = [state for port in kind.ports if port.direction == "in" for state in _at(source, owner, port.name)]
+        names |= {
+            f"streams.{state}.{name}": (NAMES[name].dimension,)
+            for state in (entering if kind.burns else ())
+            for name in _OF_STREAMS
+        }
         names |= {f"species.{key}.{name}": (NAMES[name].dimension,) for key in kind.species for name in _OF_PRODUCTS}
         for group in kind.groups:
             node = source.node((section, owner, group.name))

@@ -90,7 +90,11 @@ def test_exergy_destroyed_is_the_lost_work() -> None:
         for _, direction, state in piece.connections():
             mechanical = 0.5 * values.get(f"states.{state}.velocity", 0.0) ** 2
             mechanical += 9.80665 * values.get(f"states.{state}.elevation", 0.0)
-            exergy = values[f"states.{state}.mass_flow"] * (values[f"states.{state}.specific_exergy"] + mechanical)
+            specific = values[f"states.{state}.specific_exergy"]
+            if piece.kind.burns:  # the dead states of fuel, air and products do not cancel: their zeros do
+                specific = values[f"states.{state}.specific_enthalpy"]
+                specific -= 288.15 * values[f"states.{state}.specific_entropy"]
+            exergy = values[f"states.{state}.mass_flow"] * (specific + mechanical)
             balance += exergy if direction == "in" else -exergy
         balance += piece.kind.power_sign * values[piece.kind.work(piece)] if piece.kind.power_sign else 0.0
         balance += sum(values[port.heat] - 288.15 * values[port.entropy] for port in piece.kind.heats(piece))

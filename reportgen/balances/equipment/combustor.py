@@ -29,6 +29,7 @@ from reportgen.balances.burning import (
     heating_value,
     is_fire,
     no_exergetic_efficiency,
+    oxygen,
 )
 from reportgen.balances.composition import is_made
 from reportgen.balances.doubts import Doubt
@@ -63,7 +64,12 @@ def relations(piece: Piece) -> list[Relation]:
     """Mass, pressure, energy, and what the excess air says of the flows."""
     pressures = tuple(f"states.{state}.pressure" for state in piece.states("inlets"))
     found: list[Relation] = [*mass_balances(piece), outlet_pressure(piece, pressures)]
-    return [*found, energy_balance(piece), *heat_sum(piece), *([excess_air(piece)] if is_fire(piece) else [])]
+    return [
+        *found,
+        energy_balance(piece),
+        *heat_sum(piece),
+        *([*oxygen(piece), excess_air(piece)] if is_fire(piece) else []),
+    ]
 
 
 def defaults(piece: Piece) -> list[Default]:
@@ -155,5 +161,6 @@ KIND = Kind(
     found=composition_results,
     starts=flows_to_try,
     species=SPECIES,
+    exergetic_efficiency="Not given: exergies are physical, without the chemical exergy of a fuel.",
     entropy_generation_number="Lost work over the heat of the fuel, flow times lower heating value.",
 )
