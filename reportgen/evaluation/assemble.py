@@ -167,6 +167,7 @@ def _evaluated(
         alternatives=tuple(name for name, train in calculation.trains.items() if train.alternative_to),
         closed=frozenset(solution.closed),
         vessels=evaluated_vessels(calculation, solution),
+        units=calculation.units,
     )
 
 

@@ -77,6 +77,7 @@ class EvaluatedPlant:
         alternatives: trains that stand in the place of another and do not count in totals.
         closed: owners of sums over processes, whose values are amounts and no rates.
         vessels: vessel tag to what it is.
+        units: in which the report shows numbers, "SI" or "US".
         doubts: values that could come out where they cannot be meant, as the balances found them.
         assumptions: those of the program, with their tests; empty until they are tested.
         cross_checks: record entries of states held against a second source; empty until they are compared.
@@ -100,6 +101,7 @@ class EvaluatedPlant:
     alternatives: tuple[str, ...] = ()
     closed: frozenset[str] = frozenset()
     vessels: Mapping[str, EvaluatedVessel] = field(default_factory=dict)
+    units: str = "SI"
 
     def is_closed(self, owner: str) -> bool:
         """Whether an owner is a process or a sum over processes."""

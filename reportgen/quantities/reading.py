@@ -36,6 +36,8 @@ __all__ = ["Quantity", "parse"]
 _ABSOLUTE = ("temperature", "pressure", "density", "specific_volume", "molar_mass", "mass", "volume", "area")
 _NEVER_NEGATIVE = ("mass_flow", "molar_flow", "volume_flow", "velocity")
 _SHARES = ("ratio", "efficiency")
+#: An efficiency above 1 that may have been meant in %; machines do not have less.
+_LEAST_PERCENT = 5.0
 #: The dimension of an uncertainty, where it is not that of the value.
 _DIFFERENCE_OF = {"temperature": "temperature_difference", "pressure": "pressure_difference"}
 
@@ -44,6 +46,8 @@ _NUMBER = re.compile(
     r"(?:\s*[×x]\s*10(?:\^(?P<plain>[+\-−]?[0-9]{1,3})|(?P<raised>[⁺⁻]?[⁰¹²³⁴⁵⁶⁷⁸⁹]{1,3})))?"
 )
 _GROUP_SPACE = re.compile("(?<=[0-9])[\u2009\u202f\u00a0](?=[0-9]{3}(?![0-9]))")
+#: A number in groups of three set apart by the space bar: refused, since a slip of the finger looks the same.
+_TYPED_GROUPS = re.compile("[+\\-−]?[0-9]{1,3}(?: [0-9]{3})+(?![0-9])")
 _RAISED = str.maketrans("⁺⁻⁰¹²³⁴⁵⁶⁷⁸⁹", "+-0123456789")
 _SHARED_BRACKET = re.compile(r"^\(([^()]*±[^()]*)\)(.*)$", re.DOTALL)
 
@@ -225,7 +229,10 @@ def _split(text: str, content: str, allowed: tuple[str, ...]) -> tuple[float, st
         hint = "A comma that sets thousands apart is left out."
         raise Refused("The decimal sign is a point.", quoted(content), example(allowed), hint)
     if re.match(r"[0-9.,+\-−]", unit):
-        raise Refused("The number cannot be read.", quoted(content), example(allowed))
+        groups = _TYPED_GROUPS.match(text)
+        meant = groups and groups[0].replace(" ", "") + text[groups.end() :]
+        hint = f'A space that sets thousands apart is left out: "{short(meant)}".' if meant else None
+        raise Refused("The number cannot be read.", quoted(content), example(allowed), hint)
     exponent = match["plain"] or (match["raised"] or "").translate(_RAISED)
     digits = match["mantissa"] + (f"e{exponent}" if exponent and "e" not in match["mantissa"].lower() else "")
     if exponent and digits == match["mantissa"]:
@@ -306,6 +313,6 @@ def _within(value: float, dimension: str, found: str) -> float:
     if dimension in _NEVER_NEGATIVE and value < 0.0:
         raise Refused(f"{subject} cannot be negative.", found, hint="The ports give the direction.")
     if dimension == "efficiency" and not 0.0 < value <= 1.0:
-        hint = f'Did you mean "{value:g} %"?' if 1.0 < value <= 100.0 and "%" not in found else None
+        hint = f'Did you mean "{value:g} %"?' if _LEAST_PERCENT <= value <= 100.0 and "%" not in found else None
         raise Refused("An efficiency is above 0 and at most 1.", found, '"0.85" or "85 %"', hint)
     return value

@@ -23,6 +23,7 @@ from pydantic_core import CoreSchema, core_schema
 from reportgen.errors import Fault, InputError
 from reportgen.names import DIMENSIONS, NAMES
 from reportgen.quantities import Quantity, parse
+from reportgen.quantities.wording import words as dimension_in_words
 from reportgen.spec.source import Location, Source
 
 __all__ = [
@@ -121,7 +122,8 @@ def dimensions_for(name: str) -> tuple[str, ...]:
 class QuantityOf:
     """Marks a field as a quantity of these dimensions and bounds.
 
-    ``certain`` refuses an uncertainty, ``absolute`` a gauge pressure; ``words`` are texts taken in place of a quantity.
+    ``certain`` refuses an uncertainty, ``absolute`` a gauge pressure; ``words`` are texts taken in place of a quantity;
+    ``called`` names a quantity, with its article, that shares its dimension with another: "a specific heat capacity".
     The validation context carries ``atmosphere`` [Pa] (None: not known) and ``coverage_factor`` [1].
     """
 
@@ -130,15 +132,21 @@ class QuantityOf:
     certain: bool = False
     absolute: bool = False
     words: tuple[str, ...] = ()
+    called: str = ""
 
     def read(self, raw: object, atmosphere: float | None, coverage_factor: float) -> Quantity:
         """The quantity; raises InputError."""
-        quantity = parse(
-            raw,
-            self.dimensions,
-            atmosphere=None if self.absolute else atmosphere,
-            coverage_factor=coverage_factor,
-        )
+        try:
+            quantity = parse(
+                raw,
+                self.dimensions,
+                atmosphere=None if self.absolute else atmosphere,
+                coverage_factor=coverage_factor,
+            )
+        except InputError as error:
+            if not self.called:
+                raise
+            raise InputError(self._renamed(fault) for fault in error.faults) from None
         if not self.bounds.admit(quantity.value):
             unit = DIMENSIONS[quantity.dimension]
             fault = Fault(
@@ -157,6 +165,11 @@ class QuantityOf:
                 )
             )
         return quantity
+
+    def _renamed(self, fault: Fault) -> Fault:
+        """The fault with the quantity under its own name, which is not that of its dimension."""
+        (dimension,) = self.dimensions
+        return replace(fault, message=fault.message.replace(dimension_in_words(dimension), self.called))
 
     def read_at(self, source: Source, location: Location, context: Mapping[str, float]) -> Quantity | None:
         """The quantity at a location; None, without a word, when there is none that can be read."""

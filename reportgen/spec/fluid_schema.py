@@ -79,6 +79,8 @@ _OF_FLUID = "the states of this fluid are"
 # --- composition ----------------------------------------------------------------------------------------------------
 
 _Fraction = Annotated[Quantity, QuantityOf(("ratio",), Bounds(0.0, 1.0), certain=True)]
+#: What shares the dimension of an entropy.
+_HEAT = "a specific heat capacity"
 _IDEAL_GAS = ConfigDict(
     json_schema_extra={
         "oneOf": [{"required": [key]} for key in ("substance", "composition", "products_of")],
@@ -118,7 +120,8 @@ class IdealGasTable(_ComposedTable):
         "equilibrium: the composition of least Gibbs energy at every state. If not given: complete.",
     )
     heat_capacity: (
-        Annotated[Quantity | str, QuantityOf(("specific_entropy",), certain=True, words=("variable",))] | None
+        Annotated[Quantity | str, QuantityOf(("specific_entropy",), certain=True, words=("variable",), called=_HEAT)]
+        | None
     ) = Field(
         None,
         description='"variable" with temperature (default), or a constant isobaric heat capacity [J/(kg*K)]. '
@@ -182,10 +185,15 @@ class CubicTable(_ComposedTable):
     model: Literal["cubic"] = Field(description="Property model: cubic.")
     equation: Literal["Peng-Robinson", "Soave-Redlich-Kwong"] = Field(description="Which cubic equation of state.")
     critical: dict[ShortText, CriticalTable] | None = Field(
-        None, description="Critical constants by substance, where those carried are not to be used."
+        None,
+        description="Critical constants by substance, where those carried are not to be used.",
+        examples=[{"CO2": {"temperature": "304.13 K", "pressure": "73.77 bar", "acentric_factor": 0.224}}],
     )
     interaction: list[InteractionTable] | None = Field(
-        None, max_length=MOST_PAIRS, description="Binary interaction coefficients; zero for pairs that are not listed."
+        None,
+        max_length=MOST_PAIRS,
+        description="Binary interaction coefficients; zero for pairs that are not listed.",
+        examples=[[{"between": ["CO2", "N2"], "coefficient": -0.017}]],
     )
     volume_translation: (
         Annotated[
@@ -202,6 +210,9 @@ class CubicTable(_ComposedTable):
 
 
 # --- incompressible -------------------------------------------------------------------------------------------------
+
+
+_CERTAIN_HEAT = QuantityOf(("specific_entropy",), Bounds(1e-3), certain=True, called=_HEAT)
 
 
 class PolynomialTable(Table):
@@ -222,7 +233,7 @@ class HeatRowTable(Table):
     temperature: Annotated[Quantity, QuantityOf(("temperature",), certain=True)] = Field(
         description=with_unit("Temperature", ("temperature",))
     )
-    specific_heat: Annotated[Quantity, QuantityOf(("specific_entropy",), Bounds(1e-3), certain=True)] = Field(
+    specific_heat: Annotated[Quantity, _CERTAIN_HEAT] = Field(
         description=with_unit("Specific heat capacity there; straight lines between the rows", ("specific_entropy",))
     )
 
@@ -231,9 +242,6 @@ def _form_of_specific_heat(value: Any) -> str:
     if isinstance(value, list):
         return "(rows)"
     return "(polynomial)" if isinstance(value, dict) and "value" not in value else "(constant)"
-
-
-_CERTAIN_HEAT = QuantityOf(("specific_entropy",), Bounds(1e-3), certain=True)
 
 
 class IncompressibleTable(Table):

@@ -265,11 +265,14 @@ def _check_inside_rows(
 
 
 def ask_the_models(source: Source, context: Mapping[str, float], check_fluid: FluidCheck) -> None:
-    """Note what the property models refuse in those fluids whose tables have no fault of their own."""
+    """Note what the property models refuse; of fluids whose tables have faults of their own, only the substances."""
     reader: TypeAdapter[Any] = TypeAdapter(FluidTable)
     at_fault = {(fault.path or "").split(".")[1] for fault in source.faults if (fault.path or "").startswith("fluids.")}
     for name, node in source.table("fluids").items():
-        if name in at_fault or source.crowded or "products_of" in node.table:
+        if source.crowded or "products_of" in node.table:
+            continue
+        if name in at_fault:
+            _ask_for_substances(source, name, check_fluid)
             continue
         try:
             check_fluid(fluid_spec(source, name, reader.validate_python(node.plain(), context=dict(context))))
@@ -278,6 +281,29 @@ def ask_the_models(source: Source, context: Mapping[str, float], check_fluid: Fl
         except InputError as error:
             for fault in error.faults:
                 source.note(_key_of(source, name, fault), fault)
+
+
+def _ask_for_substances(source: Source, name: str, check_fluid: FluidCheck) -> None:
+    """Note the substances that are not carried, each asked for by itself; not those with constants of their own."""
+    location = ("fluids", name)
+    equation: Any = "Peng-Robinson"
+    model: Any = source.text(*location, "model")
+    if model not in (*_COMPOSED, "real-fluid"):
+        return
+    single = source.text(*location, "substance")
+    asked = {(*location, "substance"): single} if single else {}
+    if model != "real-fluid":
+        asked |= {(*location, "composition", part): part for part in source.table(*location, "composition")}
+    node = source.node((*location, "critical"))
+    own = node.table if node is not None else {}
+    for place, substance in asked.items():
+        if substance in own or (node is not None and not own):
+            continue
+        try:
+            check_fluid(FluidSpec(name, model, 0, substance=substance, equation=equation))
+        except InputError as error:
+            for fault in error.faults:
+                source.note(place, fault, at="value" if place[-1] == "substance" else "key")
 
 
 def _key_of(source: Source, name: str, fault: Fault) -> Location:

@@ -47,7 +47,7 @@ def test_it_trips_with_the_ratio_and_the_amount() -> None:
     condensed = (0.15 - held) / (1.0 - held)
     assert f"{100 * condensed / 0.15:.2g} % of it" in entry["text"]
     assert f"{100 * condensed * 0.018015268 / GAS.molar_mass:.2g} % of the mass of the gas" in entry["text"]
-    assert "is beyond saturation (dew point 327.1" in entry["text"]
+    assert "is beyond saturation (dew point 53.9" in entry["text"]
 
 
 @pytest.mark.parametrize(("temperature", "decided"), [(327.0, [False]), (328.5, []), (700.0, [])])

@@ -6,6 +6,9 @@ from pathlib import Path
 
 import pytest
 
+from reportgen import spec
+from reportgen.errors import InputError
+from reportgen.evaluation import property_model
 from reportgen.spec.calculation import (
     CriticalConstants,
     FluidSpec,
@@ -144,3 +147,49 @@ def test_the_fluids_of_the_readme_can_be_read(tmp_path: Path) -> None:
     calculation = read(tmp_path, TITLE + SURROUNDINGS + block)
     assert {fluid.model for fluid in calculation.fluids.values()} == {"real-fluid", "cubic", "incompressible"}
     assert [source.model for source in calculation.states["7"].second_sources] == ["library", "ideal-gas"]
+
+
+def test_critical_constants_of_the_wrong_form_are_answered_with_an_example(tmp_path: Path) -> None:
+    text = 'model = "cubic"\nequation = "Peng-Robinson"\nsubstance = "X"\ncritical = [{ temperature = "300 K" }]\n'
+    (fault,) = faults(tmp_path, TITLE + SURROUNDINGS + "[fluids.f]\n" + text + STATE)
+    assert fault.path == "fluids.f.critical"
+    assert fault.expected is not None
+    assert 'critical = { CO2 = { temperature = "304.13 K", pressure = "73.77 bar", acentric' in fault.expected
+    example = fault.expected.partition("as in: ")[2].replace("CO2", "X")
+    found = fluid(tmp_path, text.replace('critical = [{ temperature = "300 K" }]', example))
+    assert found.critical["X"].acentric_factor == 0.224
+
+
+def test_substances_that_are_not_carried_are_told_with_all_other_faults(tmp_path: Path) -> None:
+    text = """
+[fluids.a]
+model     = "cubic"
+equation  = "Peng Robinson"
+substance = "propan"
+
+[fluids.b]
+model           = "real-fluid"
+substance       = "watr"
+reference_state = "thirdlaw"
+
+[fluids.c]
+model       = "ideal-gas"
+basis       = "mole"
+composition = { N2 = 0.5, Oxigen = 0.6 }
+
+[fluids.d]
+model       = "cubic"
+equation    = "Peng-Robinson"
+basis       = "mole"
+composition = { N2 = 0.5, mine = 0.6 }
+critical    = { mine = { temperature = "300 K" } }
+"""
+    (tmp_path / "calculation.toml").write_text(TITLE + SURROUNDINGS + text, encoding="utf-8")
+    with pytest.raises(InputError) as caught:
+        spec.read(tmp_path, property_model)
+    paths = [fault.path for fault in caught.value.faults]
+    for path in ("fluids.a.substance", "fluids.b.substance", "fluids.c.composition.Oxigen"):
+        assert paths.count(path) == 1, str(caught.value)
+    for path in ("fluids.a.equation", "fluids.b.reference_state", "fluids.c.composition"):
+        assert path in paths
+    assert "fluids.d.composition.mine" not in paths

@@ -188,7 +188,7 @@ EXPECTED: dict[str, list[tuple[str | None, ...]]] = {
         (
             "15:127",
             "fluids.oil.specific_heat.2.specific_heat",
-            '"kJ" is a unit of an energy, but a specific entropy is needed',
+            '"kJ" is a unit of an energy, but a specific heat capacity is needed',
         ),
         ("16:23", "fluids.oil.phase", 'This is not a value that "phase" can have'),
         ("17:23", "fluids.oil.maximum_temperature", "The range goes beyond the rows of the specific heat"),
@@ -206,7 +206,7 @@ EXPECTED: dict[str, list[tuple[str | None, ...]]] = {
         (
             "30:17",
             "fluids.steel.specific_heat",
-            '"kJ/kg" is a unit of a specific energy, but a specific entropy is needed',
+            '"kJ/kg" is a unit of a specific energy, but a specific heat capacity is needed',
         ),
         ("35:17", "fluids.one-row.specific_heat", "The value does not fit"),
         ("40:23", "fluids.brine.specific_heat", "The value is outside what is possible"),

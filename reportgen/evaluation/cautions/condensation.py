@@ -9,6 +9,7 @@ import numpy as np
 
 from reportgen.evaluation.cautions.entry import Finding, caution
 from reportgen.evaluation.evaluated import EvaluatedPlant
+from reportgen.quantities import Display
 
 __all__ = ["water_condenses"]
 
@@ -46,7 +47,8 @@ def water_condenses(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
         condensed = float(condensation.condensed_water(fluid, temperature[0], pressure[0]))
         ice = temperature[0] < TRIPLE_TEMPERATURE
         text = f"The water vapour in state {state} ⟦is|may be⟧ beyond saturation{' over ice' if ice else ''}"
-        text += f" (dew point {dew_point[0]:.5g} K)" if np.isfinite(dew_point[0]) else ""
+        if np.isfinite(dew_point[0]):
+            text += f" (dew point {Display(plant.units).show(float(f'{dew_point[0]:.5g}'), 'temperature').text})"
         text += (
             f"{_amount(share, condensed, fluid.molar_mass)}. The ideal gas keeps it as vapour, without the heat and "
         )

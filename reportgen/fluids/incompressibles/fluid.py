@@ -35,6 +35,10 @@ ZERO_TEMPERATURE = 298.15
 
 _MOLAR_GAS_CONSTANT = 8.31446261815324  # J/(mol*K), exact by the definition of the SI of 2019
 _LIMIT_SLACK = 1e-12
+#: 0 degC [K].
+_ICE = 273.15
+#: Temperature [K] above which nobody is helped by hearing what would result.
+_HIGHEST_TOLD = 1e4
 
 _PAIRS = (
     ("pressure", "temperature"),
@@ -253,9 +257,30 @@ class Incompressible:
                     f"Temperature {written} is {side} of {where}.", found=written, expected=f"{low:g} K to {high:g} K"
                 )
             name = "specific_enthalpy" if "specific_enthalpy" in known else "specific_entropy"
-            return _fault(name, known[name][index], where, f"a temperature of {low:g} K to {high:g} K")
+            would_be = self._beyond(name, {key: float(array[index]) for key, array in known.items()})
+            allowed = f"a temperature of {low:g} K to {high:g} K ({low - _ICE:.4g} degC to {high - _ICE:.4g} degC)"
+            return _fault(name, known[name][index], where, allowed + would_be)
 
         elements.reject(outside & ~empty & ~elements.rejected, describe)
+
+    def _beyond(self, name: str, known: Mapping[str, float]) -> str:
+        """The temperature that would result if the heat capacity stayed as it is at the nearer end of the range."""
+        if "pressure" not in known:
+            return ""
+        ends = np.array([self.limits.minimum_temperature, self.limits.maximum_temperature])
+        pushed = known["pressure"] - ZERO_PRESSURE
+        of_enthalpy = name == "specific_enthalpy"
+        held = self._law.enthalpy(ends) + self._enthalpy_slope * pushed if of_enthalpy else self._law.entropy(ends)
+        beyond = known[name] - (held if of_enthalpy else held - self._entropy_slope * pushed)
+        nearer = int(np.argmin(np.abs(beyond)))
+        step = float(beyond[nearer]) / float(self._law.heat_capacity(ends)[nearer])
+        with np.errstate(over="ignore"):
+            result = float(ends[nearer] + step if of_enthalpy else ends[nearer] * np.exp(step))
+        if not 0.0 < result < _HIGHEST_TOLD:
+            return ""
+        return (
+            f"; with the specific heat capacity held beyond it would be about {result:.4g} K ({result - _ICE:.4g} degC)"
+        )
 
     def _filler(self, temperature: Array, pressure: Array) -> Callable[[str], Mapping[str, NDArray[Any]]]:
         """What computes the other fields of a state when they are read."""

@@ -298,3 +298,17 @@ def test_absurd_values_are_masked_with_a_reason_and_nan_stays_silent(first, seco
         else:
             assert 220.0 <= state.temperature[index] <= 560.0
             assert state.pressure[index] > 0.0
+
+
+def test_beyond_the_range_the_temperature_that_would_result_is_told() -> None:
+    """Constant c = 1900 J/(kg K): 100 kJ/kg above 463.15 K is 515.78 K; the entropy c ln(T/T0) leads there, too."""
+    oil = incompressible("oil", density=870.0, specific_heat=1900.0, limits=(273.15, 473.15))
+    enthalpy = float(oil.at(pressure=4e5, temperature=463.15).specific_enthalpy) + 100e3
+    with pytest.raises(RangeError, match=r"473.15 K \(0 degC to 200 degC\); .* about 515.8 K \(242.6 degC\)"):
+        oil.at(pressure=4e5, specific_enthalpy=enthalpy)
+    entropy = float(oil.at(pressure=4e5, temperature=463.15).specific_entropy) + 1900.0 * math.log(515.78 / 463.15)
+    with pytest.raises(RangeError, match=r"about 515.8 K"):
+        oil.at(pressure=4e5, specific_entropy=entropy)
+    with pytest.raises(RangeError) as far:
+        oil.at(pressure=4e5, specific_enthalpy=1e9)
+    assert "about" not in str(far.value)
