@@ -80,7 +80,7 @@ def oxygen(piece: Piece) -> list[Formula]:
             ("oxygen_free", each.free, "brings free"),
         ):
             if amount:
-                found.append(_constant(piece, state, name, amount, "Oxygen", f"oxygen that a kilogram of it {words}."))
+                found.append(_constant(piece, state, name, amount, "Oxygen", f"oxygen that a kilogram {words}."))
     return found
 
 
@@ -192,7 +192,7 @@ def _stream_heating_value(piece: Piece, state: str, which: str) -> Formula:
     """H = h(25 °C) − Σ n_j h_j [J/kg] of one stream."""
     value = _heating_values(piece.fluid(state))[which == "higher"]
     water = "vapour" if which == "lower" else "liquid"
-    words = "its enthalpy at 25 °C and 101.325 kPa, less that of the products of its complete combustion there, all "
+    words = "enthalpy of a kilogram at 25 °C and 101.325 kPa, less that of its products of complete combustion, all "
     words += f"water {water}."
     return _constant(piece, state, f"{which}_heating_value", value, f"{which.capitalize()} heating value", words)
 

@@ -111,7 +111,7 @@ def test_flue_gas_cooled_below_its_dew_point_raises_the_caution() -> None:
     assert entry["path"] == "states.4.temperature"
     dew_point = record.value("equipment.B-1.dew_point")
     # at the pressure of state 4, which is that of state 3
-    assert f"dew point {dew_point:.5g} K" in entry["text"]
+    assert f"dew point {dew_point - 273.15:.2f} °C" in entry["text"]
     assert "P16" not in [item["id"] for item in burner('"45 degC ± 1 K"', '"70 degC ± 1 K"').data["cautions"]]
 
 
