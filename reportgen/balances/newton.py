@@ -20,13 +20,19 @@ __all__ = ["NoSolution", "solve_system"]
 Array = NDArray[np.float64]
 
 _MOST_ITERATIONS = 40
-_MOST_HALVINGS = 14
+_MOST_HALVINGS = 10
 #: Halvings after which a finite place will do: the residual of a curved relation may have to grow first.
 _PATIENCE = 5
 #: Iterations in which the smallest residual so far must have come down by half.
-_PROGRESS = 9
+_PROGRESS = 6
+#: Part of a step that counts as short, and how many in a row mean that the way ends at the range of a fluid.
+_SHORT, _MOST_SHORT = 0.05, 2
 #: Starts that led somewhere but not to a solution, and solutions nobody can mean, after which no more are tried.
 _MOST_TRAVELS, _MOST_DOUBTFUL = 12, 3
+#: Starts that must have been tried before as many as came to the same closest place are taken for proof.
+_FEWEST_TRAVELS, _ALIKE = 5, 3
+#: Starts closer than this to an earlier one, in parts of the variables, are left out.
+_SAME_PLACE = 0.01
 #: A mass flow [kg/s] taken for none.
 _NO_FLOW = 1e-12
 _EXTENSIVE = ("mass_flow", "power", "shaft_power", "heat", "mechanical_heat", "duty")
@@ -79,7 +85,7 @@ def solve_system(system: Coupled, starts: Iterable[Mapping[str, float]], columns
             base = _iterate(system, x, np.array([0]), strict=True)
         except NoSolution as problem:
             failures.append(problem)
-            if sum(failure.travelled for failure in failures) == _MOST_TRAVELS:
+            if _is_enough(failures):
                 break
             continue
         _refuse_no_flow(system, base)
@@ -100,14 +106,29 @@ def solve_system(system: Coupled, starts: Iterable[Mapping[str, float]], columns
     return {path: full[path] for path in full if path not in system.known}
 
 
+def _is_enough(failures: Sequence[NoSolution]) -> bool:
+    """Whether as many starts led nowhere as are tried, or several came to the same closest place."""
+    travelled = [failure for failure in failures if failure.travelled]
+    last = travelled[-1] if travelled else None
+    alike = [f for f in travelled if last and f.worst == last.worst and _same(f.imbalance, last.imbalance)]
+    return len(travelled) == _MOST_TRAVELS or (len(travelled) >= _FEWEST_TRAVELS and len(alike) >= _ALIKE)
+
+
+def _same(first: float, second: float) -> bool:
+    return abs(first - second) <= 0.02 * max(first, second)
+
+
 def _places(system: Coupled, starts: Iterable[Mapping[str, float]]) -> Iterator[Array]:
     """Each start moved to where the linear balances hold, then, where that is somewhere else, as it is."""
+    tried: list[Array] = []
+    floor = np.array([typical(path) for path in system.tears])[:, None]
     for start in starts:
         plain = np.array([[start[path]] for path in system.tears], dtype=float)
-        consistent = system.consistent(plain)
-        yield consistent
-        if consistent is not plain:
-            yield plain
+        for place in (system.consistent(plain), plain):
+            scale = np.maximum(np.abs(place), floor)
+            if all(np.max(np.abs(place - other) / scale, initial=0.0) > _SAME_PLACE for other in tried) or not tried:
+                tried.append(place)
+                yield place
 
 
 def _refuse_no_flow(system: Coupled, base: Array) -> None:
@@ -156,8 +177,10 @@ def _iterate(system: Coupled, x: Array, columns: NDArray[np.intp], strict: bool)
         size = np.max(np.abs(step) / scale, axis=0)
         if not system.is_linear:
             step = _limited(step, x[:, active], positive)
-        residual, values, trial, bad = _search(system, x[:, active], step, residual, row_scale, columns[active])
-        if strict and (bad.any() or iteration - closest.iteration > _PROGRESS):
+        residual, values, trial, length = _search(system, x[:, active], step, residual, row_scale, columns[active])
+        bad = np.isnan(length)
+        closest.short = closest.short + 1 if length[0] < _SHORT else 0
+        if strict and (bad.any() or iteration - closest.iteration > _PROGRESS or closest.short > _MOST_SHORT):
             words = "no step brings the relations closer together within the range of the fluid"
             raise NoSolution(words, system.tears[:6], True, closest.worst, closest.size)
         failed[active[bad]] = True
@@ -187,6 +210,8 @@ class _Closest:
 
     def __init__(self) -> None:
         self.size, self.worst, self.iteration = np.inf, 0, 0
+        #: Short steps in a row.
+        self.short = 0
 
     def look(self, residual: Array, row_scale: Array, iteration: int) -> None:
         """Take note of a place, residuals and their scales of shape (R, 1)."""
@@ -285,8 +310,8 @@ def _looks_open(matrix: Array) -> bool:
 
 def _search(
     system: Coupled, x: Array, step: Array, residual: Array, row_scale: Array, columns: NDArray[np.intp]
-) -> tuple[Array, dict[str, Array], Array, NDArray[np.bool_]]:
-    """Step lengths by halving: residual, values and place reached, and the columns that found none."""
+) -> tuple[Array, dict[str, Array], Array, Array]:
+    """Step lengths by halving: residual, values and place reached, and the length, NaN for columns that found none."""
     size = np.max(np.abs(residual) / row_scale, axis=0)
     length = np.ones(columns.size)
     length[~np.isfinite(step).all(axis=0)] = np.nan
@@ -299,8 +324,8 @@ def _search(
         if accepted.all() or not np.isfinite(length).any():
             break
         length[~accepted] *= 0.5
-    bad = ~accepted
-    return np.where(bad, 0.0, found), values, np.where(bad, np.nan, trial), bad
+    lost = ~accepted
+    return np.where(lost, 0.0, found), values, np.where(lost, np.nan, trial), np.where(lost, np.nan, length)
 
 
 def _limited(step: Array, x: Array, positive: NDArray[np.bool_]) -> Array:
