@@ -64,12 +64,10 @@ def relations(piece: Piece) -> list[Relation]:
     """Mass, pressure, energy, and what the excess air says of the flows."""
     pressures = tuple(f"states.{state}.pressure" for state in piece.states("inlets"))
     found: list[Relation] = [*mass_balances(piece), outlet_pressure(piece, pressures)]
-    return [
-        *found,
-        energy_balance(piece),
-        *heat_sum(piece),
-        *([*oxygen(piece), excess_air(piece)] if is_fire(piece) else []),
-    ]
+    found += [energy_balance(piece), *heat_sum(piece)]
+    if is_fire(piece):
+        found += [*oxygen(piece), excess_air(piece)]
+    return found
 
 
 def defaults(piece: Piece) -> list[Default]:
