@@ -176,6 +176,7 @@ def refuse_ill_posed(blocks: Iterable[Block], pieces: Mapping[str, Piece], given
         for piece in pieces.values()
         if len(names := [name for name in _OF_ONE_RATIO if piece.path(name) in given]) > 1
     }
+    known = set(given)
     for block in blocks if several else ():
         owners = [owner_of(relation) for relation in block.relations if not isinstance(relation, PropertyRelation)]
         for owner in dict.fromkeys(owners):
@@ -185,7 +186,7 @@ def refuse_ill_posed(blocks: Iterable[Block], pieces: Mapping[str, Piece], given
             keys = {relation.key for relation in block.relations}
             used = [name for name in names if piece.path(f"{name}.definition") in keys]
             ends = [f"states.{state}.pressure" for state in (*piece.streams("in"), *piece.streams("out"))]
-            sought = [path for path in ends if path in block.unknowns]
+            sought = [path for path in ends if path not in known]
             if len(used) > 1 and sought:
                 words = " and ".join(f"{owner}.{name}" for name in used)
                 faults.append(
@@ -196,6 +197,7 @@ def refuse_ill_posed(blocks: Iterable[Block], pieces: Mapping[str, Piece], given
                         expected=f"{sought[0]} or {owner}.pressure_ratio in the place of one of the efficiencies",
                     )
                 )
+        known.update(block.unknowns)
     if faults:
         raise SolutionError(faults)
 

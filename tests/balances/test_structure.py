@@ -231,3 +231,45 @@ def test_enthalpy_of_an_ideal_gas_is_found_before_its_pressure() -> None:
     assert back.values["states.2.pressure"][0] == pytest.approx(6e5, rel=1e-10)
     assert "whatever the pressure" in " ".join(step.sentence for step in back.steps)
     assert not [doubt for doubt in back.doubts if doubt.stands]
+
+
+@pytest.mark.parametrize(
+    ("drop", "give", "pressure"),
+    [
+        ("2.pressure", {"polytropic_efficiency": 0.75}, "states.2.pressure"),
+        ("2.pressure", {"isothermal_efficiency": 0.6}, "states.2.pressure"),
+        ("1.pressure", {"polytropic_efficiency": 0.75}, "states.1.pressure"),
+    ],
+)
+def test_a_pressure_is_not_found_from_two_efficiencies(drop: str, give: dict[str, float], pressure: str) -> None:
+    """They agree as the ratio goes to 1 and differ little elsewhere: what came out would mean nothing."""
+    with pytest.raises(SolutionError, match="which differ by the pressure ratio alone") as caught:
+        COMPRESSOR.solve((long(drop),), {long(path): value for path, value in give.items()})
+    (fault,) = caught.value.faults
+    assert pressure in fault.message
+    assert pressure in (fault.expected or "")
+
+
+def test_two_efficiencies_may_be_given_where_the_pressure_is_known_otherwise() -> None:
+    """The isothermal efficiency then gives the power, and what it leaves is the heat of the casing."""
+    both = COMPRESSOR.solve((), {"equipment.X.isothermal_efficiency": 0.6})
+    assert both.values["equipment.X.heat"][0] != 0.0
+    assert both.values["equipment.X.isothermal_efficiency"][0] == 0.6
+
+
+def test_several_values_that_are_missing_are_proposed_together() -> None:
+    """One set that would do, and not the same degree of freedom twice."""
+    plant = chain(
+        ("V", "throttling-valve", {"inlet": ("1",), "outlet": ("2",)}),
+        ("H", "heater", {"inlet": ("2",), "outlet": ("3",)}),
+        fluid=SimpleGas(),
+    )
+    givens = {**SURROUNDINGS, "states.1.mass_flow": 1.0, "states.1.pressure": 2e5}
+    with pytest.raises(SolutionError, match=r"more independent values, for example .* together with ") as caught:
+        solve(plant, givens)
+    proposed: dict[str, float] = {}
+    usual = {"pressure": 1.5e5, "temperature": 320.0, "specific_enthalpy": 2e4, "heat": 1e4}
+    for fault in caught.value.faults:
+        for path in (fault.expected or "").split("for example ")[1].split(" together with "):
+            proposed[path.split(" or ")[0]] = usual[path.split(" or ")[0].rsplit(".", 1)[-1]]
+    assert solve(plant, {**givens, **proposed}).values["states.3.temperature"][0] > 0.0
