@@ -139,4 +139,7 @@ def _why_stopped(following: Following) -> str:
         if triple is not None and following.lowest <= triple.temperature + 1.0:
             return f"not followed below the triple point of {title}, where solid forms"
         return f"not followed below the lowest temperature of the property model of {title}"
-    return f"the property model of {title} has no state on the further way, or in the throat of the orifice"
+    return (
+        f"the property model of {title} has no state on the further way, or in the throat of the orifice, or the path "
+        "needs too many steps"
+    )

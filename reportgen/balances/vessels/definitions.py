@@ -71,6 +71,9 @@ def _structure(piece: Piece) -> list[Fault]:
     if fluid.kind == "incompressible":
         text = "An incompressible fluid keeps its density: its pressure does not tell how much of it is in a vessel."
         faults.append(Fault(text, piece.path("initial"), found=states[0], expected="a state of a compressible fluid"))
+    if fluid.kind == "cubic" and fluid.composition is not None and len(fluid.composition) > 1:
+        text = "Mixtures by a cubic equation of state are not followed: their phases differ in composition."
+        faults.append(Fault(text, piece.path("initial" if piece.states("initial") else "supply"), found=states[0]))
     if len({piece.fluid_id(state) for state in states}) > 1:
         text = "What enters is of another fluid than the content."
         expected = f"a state of fluid {piece.fluid_id(states[0])}"

@@ -23,8 +23,8 @@ Array = npt.NDArray[np.float64]
 Flags = npt.NDArray[np.bool_]
 Indices = npt.NDArray[np.intp]
 
-#: Steps after which a column that has not come to its end is given up.
-MOST_STEPS = 4000
+#: Rounds after which columns that have not come to their end are given up; some 150 are usual.
+MOST_STEPS = 1500
 #: Shortest step in parts of the largest one of a column: what is shorter makes no way.
 SHORTEST = 1e-12
 #: Crossings of the saturation line that are landed on; a content that slides along the line is not followed closer.

@@ -281,8 +281,8 @@ class _VesselBook(Book):
             sentence, reason = "entropy of what left, behind the valve.", _NOTHING_BEHIND
             self.tell("entropy_with_mass", carried, sentence, latex, heading=heading, basis=_ADDITIVE, reason=reason)
         sentence = "what the entropy changes by and came neither with heat nor with mass was generated."
-        signs = ((1.0, "entropy_change"), (-1.0, "entropy_with_heat"), (-1.0, "entropy_with_mass"))
-        self.add_up("entropy_generation", "Entropy balance", sentence, "second law, open volume", *signs)
+        balance = ((1.0, "entropy_change"), (-1.0, "entropy_with_heat"), (-1.0, "entropy_with_mass"))
+        self.add_up("entropy_generation", "Entropy balance", sentence, "second law, open volume", *balance)
         self.lost_work(self.piece.owner, self.piece.title)
 
     def parts(self) -> None:

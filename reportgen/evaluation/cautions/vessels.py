@@ -45,8 +45,8 @@ def brittle_fracture(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             samples,
             limit,
             "above",
-            f"In {tag} {taken} ⟦falls|may fall⟧ below the temperature down to which carbon steel is used without a "
-            f"test of its toughness; the vessel is {of}. The minimum design metal temperature depends on its thickness.",
+            f"In {tag} {taken} ⟦falls|may fall⟧ below the temperature down to which carbon steel is used without "
+            f"a test of its toughness; the vessel is {of}. The minimum design metal temperature depends on its thickness.",
             "temperature",
             owner=f"vessels.{tag}",
         )

@@ -265,3 +265,10 @@ def test_what_is_missing_is_named() -> None:
     told = str(caught.value)
     for words in ('"volume" is missing', "where the discharge ends", "how much time", "area", "no two phases"):
         assert words in told
+
+
+def test_mixtures_by_a_cubic_equation_are_refused() -> None:
+    mixture = fluids.cubic({"CO2": 0.5, "N2": 0.5}, equation="Peng-Robinson")
+    state = {"initial": {"pressure": 1e6, "temperature": 300.0}}
+    with pytest.raises(InputError, match="phases differ in composition"):
+        followed(mixture, "discharge", state, {"volume": 1.0, "final_pressure": 1e5})
