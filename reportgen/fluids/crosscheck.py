@@ -50,6 +50,9 @@ DIFFERENCES = ("specific_enthalpy", "specific_entropy")
 #: Where the state is fixed by temperature and quality, its pressure is a result.
 OF_SATURATION = ("pressure",)
 
+#: Part by which molar masses of one substance or mixture may differ between two models: mixtures near air are compared
+#: with air.
+_SAME_MOLAR_MASS = 0.02
 #: Part of R T and of R below which differences of enthalpy and entropy are not resolved.
 _FLOOR = 1e-3
 _LIQUID, _GASEOUS, _BOTH = ("liquid",), ("vapour", "gas"), ("two-phase",)
@@ -108,9 +111,18 @@ def second_model(fluid: Fluid, name: str) -> Any:
     InputError : no such source, or none for this substance or mixture.
     NotInstalled : the independent library is not on this machine.
     """
-    maker = _MAKERS.get(name)
+    _require_model(fluid)
+    maker = _MAKERS.get(name) if isinstance(name, str) else None
     if maker is None:
         raise InputError(Fault("This second source is not known.", found=repr(name)[:60], expected=", ".join(_MAKERS)))
+    if name == fluid.kind:
+        raise InputError(
+            Fault(
+                f"{fluid.title} cannot be checked by a model of its own kind: that would be the same model again.",
+                found=repr(name),
+                expected=", ".join(other for other in _MAKERS if other != name),
+            )
+        )
     return maker(fluid)
 
 
@@ -203,8 +215,27 @@ def compare(fluid: Fluid, second: Any, state: State, reference: int | None = 0) 
     -------
     Comparison of density, c_p, speed of sound (and pressure where temperature and quality fix the state), and of
     enthalpy and entropy as differences; each array of shape (N,). Properties that none of the states has are left out.
+
+    Raises
+    ------
+    InputError : what is no model or no state, models of different substances (by their molar masses), and as in
+        :func:`second_model`.
     """
+    _require_model(fluid)
     model: Any = second_model(fluid, second) if isinstance(second, str) else second
+    _require_model(model)
+    if not hasattr(state, "flat"):
+        raise InputError(
+            Fault("These are no states.", found=repr(state)[:60], expected=f"what `at` gives for {fluid.title}")
+        )
+    masses = (fluid.molar_mass, getattr(model, "molar_mass", np.nan))
+    if abs(masses[1] / masses[0] - 1.0) > _SAME_MOLAR_MASS:  # false where one has none
+        raise InputError(
+            Fault(
+                "The two models are of different substances.",
+                found=f"{fluid.title} of {masses[0] * 1e3:.6g} g/mol, {model.title} of {masses[1] * 1e3:.6g} g/mol",
+            )
+        )
     other = _same_state(model, state)
     deviations = []
     for name in (*OF_SATURATION, *AS_THEY_STAND):
@@ -221,6 +252,13 @@ def compare(fluid: Fluid, second: Any, state: State, reference: int | None = 0) 
         deviations += model.species_deviations(_array(state, "temperature"))
     compared = tuple(item for item in deviations if np.isfinite(item.relative).any())
     return Comparison(compared, other.faults, _remarks(state, other))
+
+
+def _require_model(model: Any) -> None:
+    if not callable(getattr(model, "at", None)):
+        raise InputError(
+            Fault("This is no property model.", found=repr(model)[:60], expected='such as real_fluid("water")')
+        )
 
 
 def _same_state(model: Any, state: State) -> State:

@@ -156,10 +156,18 @@ def with_units(fluid: Fluid, registry: Any) -> FluidWithUnits:
     fluid : any property model, for example ``real_fluid("water")``.
     registry : has ``Quantity(number, unit)``; its units go by the common names (Pa, K, J, kg, m, s).
 
+    A model that has units already is wrapped anew, with this registry.
+
     Raises
     ------
-    InputError : a registry that makes no quantities.
+    InputError : something else than a property model, a registry that makes no quantities.
     """
+    if isinstance(fluid, FluidWithUnits):
+        fluid = fluid.fluid
+    if not (callable(getattr(fluid, "at", None)) and hasattr(fluid, "title") and hasattr(fluid, "limits")):
+        raise InputError(
+            Fault("This is no property model.", found=repr(fluid)[:60], expected='such as real_fluid("water")')
+        )
     if not callable(getattr(registry, "Quantity", None)):
         raise InputError(
             Fault("This is no unit registry.", found=repr(registry)[:60], expected="such as pint.UnitRegistry()")

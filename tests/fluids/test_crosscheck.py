@@ -9,7 +9,7 @@ import numpy as np
 import pytest
 
 from reportgen.errors import InputError
-from reportgen.fluids import crosscheck, ideal_gas, library, real_fluid
+from reportgen.fluids import crosscheck, cubic, ideal_gas, library, real_fluid
 from reportgen.fluids.crosscheck import Comparison, Deviation, compare, second_model, second_models, usual_tolerance
 from reportgen.fluids.state import State
 
@@ -226,3 +226,22 @@ def test_tolerances_by_what_two_models_share() -> None:
     assert usual_tolerance("library", "real-fluid") == 1e-4
     assert usual_tolerance("library", "ideal-gas") == 2e-2
     assert usual_tolerance("statistical", "ideal-gas") == 3e-3
+
+
+@pytest.mark.parametrize("fluid", [WATER, AIR, cubic("CO2")])
+def test_a_model_of_the_same_kind_is_no_second_source(fluid: Any) -> None:
+    with pytest.raises(InputError, match="own kind"):
+        second_model(fluid, fluid.kind)
+    assert fluid.kind not in second_models(fluid)
+
+
+def test_what_is_no_model_or_no_state_or_another_substance_is_refused() -> None:
+    state = WATER.at(pressure=[1e5, 2e5], temperature=[300.0, 400.0])
+    for first, second, states in ((WATER, None, state), ("water", AIR, state), (WATER, 3, state), (WATER, AIR, None)):
+        with pytest.raises(InputError, match=r"This is no property model|These are no states"):
+            compare(first, second, states)
+    with pytest.raises(InputError, match=r"different substances. Found: Water of 18.0153 g/mol, Carbon dioxide of 44"):
+        compare(WATER, real_fluid("CO2"), state)
+    for name in ("nothing", None, ["library"]):
+        with pytest.raises(InputError, match="not known"):
+            second_model(WATER, name)

@@ -123,3 +123,14 @@ def test_the_examples_in_the_description_of_the_package_hold():
     result = doctest.testmod(reportgen.fluids, optionflags=doctest.ELLIPSIS | doctest.NORMALIZE_WHITESPACE)
     assert result.attempted >= 15
     assert result.failed == 0
+
+
+@pytest.mark.parametrize("model", ["water", None, reportgen.fluids.statistical.gas("N2")])
+def test_only_property_models_are_wrapped(model):
+    with pytest.raises(InputError, match="no property model"):
+        with_units(model, units)
+
+
+def test_a_model_with_units_is_wrapped_anew(water):
+    state = with_units(water, units).at(pressure=Q(39, "bar"), temperature=Q(400, "degC"))
+    assert state.specific_entropy.to("kJ/(kg*K)").magnitude == pytest.approx(6.7850, abs=1e-4)

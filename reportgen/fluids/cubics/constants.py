@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import hashlib
 import json
-import math
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from difflib import get_close_matches
@@ -14,6 +13,7 @@ from typing import Any
 
 from reportgen.errors import Fault, InputError, ReportgenError
 from reportgen.fluids.gases.species import GasMixture, library, resolve
+from reportgen.fluids.numeric import finite_number
 
 __all__ = [
     "DATA_FILE",
@@ -150,6 +150,14 @@ def constants_for(
     keys = list(species)
     faults: list[Fault] = []
     own: dict[str, CriticalConstants] = {}
+    if given is not None and not isinstance(given, Mapping):
+        raise InputError(
+            Fault(
+                "Critical constants are given by species.",
+                found=repr(given)[:60],
+                expected='such as {"CO2": {"temperature": 304.13, "pressure": 7.3773e6, "acentric_factor": 0.2239}}',
+            )
+        )
     for name, values in (given or {}).items():
         try:
             key = key_of(name, keys, "table of critical constants")
@@ -197,13 +205,12 @@ def _own(key: str, name: str, values: Mapping[str, float]) -> CriticalConstants:
         if word not in values:
             faults.append(Fault(f"The {word.replace('_', ' ')} of {name} is missing.", expected=f"a number in {unit}"))
             continue
-        value = values[word]
-        number = isinstance(value, int | float) and not isinstance(value, bool) and math.isfinite(value)
-        if not number or not low <= value <= high:
+        number = finite_number(values[word])
+        if number is None or not low <= number <= high:
             faults.append(
                 Fault(
                     f"The {word.replace('_', ' ')} of {name} cannot be meant.",
-                    found=repr(value)[:60],
+                    found=repr(values[word])[:60],
                     expected=f"{low:g} to {high:g} {unit}",
                 )
             )

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Mapping
 from difflib import get_close_matches
 from typing import Literal
@@ -20,6 +19,7 @@ from reportgen.fluids.cubics.mixing import Mixture
 from reportgen.fluids.cubics.thermodynamics import MolarModel
 from reportgen.fluids.gases.gas import MOLAR_GAS_CONSTANT, ideal_gas
 from reportgen.fluids.gases.species import Basis, library, mole_fractions
+from reportgen.fluids.numeric import finite_number
 
 __all__ = ["Equation", "cubic"]
 
@@ -104,18 +104,20 @@ def _form(equation: str, faults: list[Fault]) -> CubicForm | None:
     return form
 
 
-def _number(value: object) -> float | None:
-    """The value as a finite float, or None."""
-    if isinstance(value, bool) or not isinstance(value, int | float) or not math.isfinite(value):
-        return None
-    return float(value)
-
-
 def _pairs(
     fractions: Mapping[str, float], interaction: Mapping[tuple[str, str], float] | None, faults: list[Fault]
 ) -> dict[tuple[str, str], float]:
     """Interaction coefficients [1] by pairs of species keys."""
     found: dict[tuple[str, str], float] = {}
+    if interaction is not None and not isinstance(interaction, Mapping):
+        faults.append(
+            Fault(
+                "Interaction coefficients are given by pairs of species.",
+                found=repr(interaction)[:60],
+                expected='such as {("CO2", "N2"): -0.017}',
+            )
+        )
+        return found
     for pair, value in (interaction or {}).items():
         if not (isinstance(pair, tuple) and len(pair) == 2):
             faults.append(
@@ -131,7 +133,7 @@ def _pairs(
         except ReportgenError as error:
             faults += error.faults
             continue
-        number = _number(value)
+        number = finite_number(value)
         if first == second:
             faults.append(Fault("A species has no interaction coefficient with itself.", found=f"{pair[0]}, {pair[1]}"))
         elif (first, second) in found or (second, first) in found:
@@ -175,6 +177,14 @@ def _translation(
                 rackett = 0.29056 - 0.08775 * part.acentric_factor
             shifts[key] = factor * (MOLAR_GAS_CONSTANT * part.temperature / part.pressure) * (offset - rackett)
         return np.array(list(shifts.values()))
+    if not isinstance(given, Mapping):
+        raise InputError(
+            Fault(
+                "Volume translations are given by species.",
+                found=repr(given)[:60],
+                expected='"Peneloux", or c in m3/mol by species, such as {"CO2": 2e-6}',
+            )
+        )
     faults: list[Fault] = []
     for name, value in given.items():
         try:
@@ -183,7 +193,7 @@ def _translation(
             faults += error.faults
             continue
         covolume = form.covolume * MOLAR_GAS_CONSTANT * constants[key].temperature / constants[key].pressure
-        number = _number(value)
+        number = finite_number(value)
         if number is None or abs(number) >= 0.9 * covolume:
             faults.append(
                 Fault(

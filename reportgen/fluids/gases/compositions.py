@@ -8,6 +8,7 @@ from collections.abc import Mapping
 from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases.condensation import WATER, saturation_pressure
 from reportgen.fluids.gases.species import Basis, library, mole_fractions
+from reportgen.fluids.numeric import finite_number
 from reportgen.fluids.pairs import in_words
 
 __all__ = ["combustion_products", "humid_air", "stoichiometric_air"]
@@ -58,14 +59,10 @@ def humid_air(
     _require(dry.get(WATER, 0.0) == 0.0, "The dry air holds water already.", f"{WATER} = {dry.get(WATER)}", "dry gas")
     _require(_positive(temperature), "The temperature is above 0 K.", repr(temperature), "a number in K")
     _require(_positive(pressure), "The pressure is above 0 Pa.", repr(pressure), "a number in Pa")
-    ((name, value),) = given.items()
+    temperature, pressure = float(temperature), float(pressure)
+    ((name, measure),) = given.items()
     words = name.replace("_", " ")
-    _require(
-        isinstance(value, int | float) and not isinstance(value, bool) and 0.0 <= value < math.inf,
-        f"The {words} is a number from 0.",
-        repr(value),
-        "a finite number",
-    )
+    value = _from_zero(measure, f"The {words} is a number from 0.", "a finite number")
     saturated = float(saturation_pressure(temperature)) / pressure
     if name == "relative_humidity":
         _require(value <= 1.0, "The relative humidity is a fraction from 0 to 1.", f"{value:g}", "such as 0.6 for 60 %")
@@ -115,14 +112,13 @@ def combustion_products(
     """
     from reportgen.fluids.reacting.products import CombustionGas  # compositions of air start without it
 
-    _require(
-        isinstance(excess_air, int | float) and not isinstance(excess_air, bool) and 0.0 <= excess_air < math.inf,
+    excess = _from_zero(
+        excess_air,
         "The excess of air is a number from 0: with less air the combustion is not complete.",
-        repr(excess_air),
         "such as 0.2 for 20 %",
     )
     burnt, supplied = mole_fractions(fuel, basis), mole_fractions(air, "mole")
-    amount = (1.0 + excess_air) * _air_needed(burnt, supplied)
+    amount = (1.0 + excess) * _air_needed(burnt, supplied)
     # one mole of fuel: masses of both streams, and their atoms for each kilogram
     masses = {"fuel": _mass(burnt), "air": amount * _mass(supplied)}
     parents = {
@@ -178,7 +174,16 @@ def _mass(fractions: Mapping[str, float]) -> float:
 
 
 def _positive(value: object) -> bool:
-    return isinstance(value, int | float) and not isinstance(value, bool) and 0.0 < value < math.inf
+    number = finite_number(value)
+    return number is not None and number > 0.0
+
+
+def _from_zero(value: object, message: str, expected: str) -> float:
+    """The value as a number from 0. Raises InputError."""
+    number = finite_number(value)
+    if number is None or number < 0.0:
+        raise InputError(Fault(message, found=repr(value)[:60], expected=expected))
+    return number
 
 
 def _require(holds: bool, message: str, found: str, expected: str) -> None:

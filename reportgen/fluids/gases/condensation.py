@@ -21,6 +21,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids.inversion import Inverse
+from reportgen.fluids.numeric import numbers
 from reportgen.fluids.pairs import in_words
 
 if TYPE_CHECKING:
@@ -42,6 +43,7 @@ Array = NDArray[np.float64]
 #: Key of water among the ideal gases.
 WATER = "H2O"
 
+_GASES = ("ideal-gas", "reacting-gas")
 _TRIPLE_TEMPERATURE = 273.16  # K
 _TRIPLE_PRESSURE = 611.657  # Pa
 _LOWEST_TEMPERATURE = 50.0  # K, of the sublimation equation
@@ -56,19 +58,18 @@ def saturation_pressure(temperature: ArrayLike) -> Any:
 
     Raises
     ------
-    RangeError : below 50 K, where the sublimation equation ends.
+    InputError : what is no number.
+    RangeError : below 50 K, where the sublimation equation ends, and an infinite temperature.
     """
-    given = np.asarray(temperature, dtype=np.float64)
+    given = _temperatures(temperature)
     flat = given.reshape(-1)
-    low = flat < _LOWEST_TEMPERATURE
-    if low.any():
-        raise RangeError(
-            Fault(
-                "The saturation pressure of water is known from 50 K.",
-                found=in_words("temperature", float(flat[low][0])),
-                expected="50 K or more",
-            )
-        )
+    _refuse(
+        (flat < _LOWEST_TEMPERATURE) | np.isinf(flat),
+        "The saturation pressure of water is known from 50 K.",
+        "temperature",
+        flat,
+        "50 K or more",
+    )
     result = np.full(flat.shape, np.nan)
     result[flat > _critical_temperature()] = np.inf
     ice = flat < _TRIPLE_TEMPERATURE
@@ -84,11 +85,19 @@ def saturation_pressure(temperature: ArrayLike) -> Any:
 def saturation_temperature(pressure: ArrayLike) -> Any:
     """Temperature [K] at which water vapour of a partial pressure [Pa] condenses: dew point, or frost point below 0 °C.
 
-    NaN where nothing condenses at any temperature: above the critical pressure, and where the pressure is 0 or below
-    that of ice at 50 K (1.9e-40 Pa).
+    NaN where there is no such temperature: above the critical pressure, at 0 Pa (a gas without water) and below the
+    pressure of ice at 50 K (1.9e-40 Pa); and for NaN.
+
+    Raises
+    ------
+    InputError : what is no number.
+    RangeError : a negative or infinite pressure.
     """
-    given = np.asarray(pressure, dtype=np.float64)
+    given = numbers("partial pressure", "Pa", pressure)
     flat = given.reshape(-1)
+    _refuse(
+        (flat < 0.0) | np.isinf(flat), "A partial pressure is a finite number from 0.", "pressure", flat, "0 Pa or more"
+    )
     result = np.full(flat.shape, np.nan)
     ice = (flat > 0.0) & (flat < _TRIPLE_PRESSURE)
     result[ice] = _over_ice()(np.log(flat[ice]))
@@ -100,7 +109,16 @@ def saturation_temperature(pressure: ArrayLike) -> Any:
 
 
 def water_fraction(gas: IdealGas) -> float:
-    """Mole fraction [1] of water in a gas."""
+    """Mole fraction [1] of water in a gas.
+
+    Raises
+    ------
+    InputError : something else than a gas.
+    """
+    if getattr(gas, "kind", None) not in _GASES:
+        raise InputError(
+            Fault("This is no gas.", found=repr(gas)[:60], expected='such as ideal_gas({"N2": 0.9, "H2O": 0.1})')
+        )
     if gas.composition is not None:
         return gas.composition.get(WATER, 0.0)
     return 1.0 if gas.substance == "water" else 0.0
@@ -122,10 +140,12 @@ def water_saturation(gas: IdealGas, temperature: ArrayLike, pressure: ArrayLike)
 
     Raises
     ------
-    RangeError : a temperature below 50 K.
+    InputError : something else than a gas or numbers, shapes that do not fit together.
+    RangeError : a temperature below 50 K, a pressure that is not above zero, infinite ones.
     """
-    given_t, given_p = np.broadcast_arrays(np.asarray(temperature, float), np.asarray(pressure, float))
-    partial = water_fraction(gas) * given_p
+    share = water_fraction(gas)
+    given_t, given_p = _conditions(temperature, pressure)
+    partial = share * given_p
     ratio = partial / saturation_pressure(given_t)
     return ratio[()], saturation_temperature(np.where(np.isnan(given_t), np.nan, partial))
 
@@ -138,10 +158,10 @@ def condensed_water(gas: IdealGas, temperature: ArrayLike, pressure: ArrayLike) 
 
     Raises
     ------
-    RangeError : a temperature below 50 K.
+    InputError, RangeError : as in :func:`water_saturation`.
     """
-    given_t, given_p = np.broadcast_arrays(np.asarray(temperature, float), np.asarray(pressure, float))
     share = water_fraction(gas)
+    given_t, given_p = _conditions(temperature, pressure)
     with np.errstate(divide="ignore", invalid="ignore"):
         held = saturation_pressure(given_t) / given_p
         condensed = np.where(held < share, (share - held) / (1.0 - held), 0.0)
@@ -153,13 +173,44 @@ def humidity_ratio(gas: IdealGas) -> float:
 
     Raises
     ------
-    InputError : a gas of water alone.
+    InputError : a gas of water alone; something else than a gas.
     """
     share = water_fraction(gas)
     if share >= 1.0:
         raise InputError(Fault("Water alone has no humidity ratio: there is no dry gas.", found=gas.title))
     water = share * _water().molar_mass
     return water / (gas.molar_mass - water)
+
+
+def _temperatures(given: ArrayLike) -> Array:
+    return numbers("temperature", "K", given)
+
+
+def _conditions(temperature: ArrayLike, pressure: ArrayLike) -> tuple[Array, Array]:
+    """T [K] and p [Pa] in their common shape. Raises InputError and RangeError, the latter for the pressure only."""
+    given_t, given_p = _temperatures(temperature), numbers("pressure", "Pa", pressure)
+    try:
+        given_t, given_p = np.broadcast_arrays(given_t, given_p)
+    except ValueError:
+        raise InputError(
+            Fault(
+                "Temperature and pressure have shapes that do not fit together.",
+                found=f"{given_t.shape}, {given_p.shape}",
+            )
+        ) from None
+    _refuse(
+        (given_p <= 0.0) | np.isinf(given_p),
+        "The pressure of a gas is a finite number above 0.",
+        "pressure",
+        given_p,
+        "more than 0 Pa",
+    )
+    return given_t, given_p
+
+
+def _refuse(wrong: NDArray[np.bool_], message: str, name: str, values: Array, expected: str) -> None:
+    if wrong.any():
+        raise RangeError(Fault(message, found=in_words(name, float(values[wrong][0])), expected=expected))
 
 
 @lru_cache(maxsize=1)

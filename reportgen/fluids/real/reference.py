@@ -12,7 +12,7 @@ from reportgen.errors import Fault, InputError
 from reportgen.fluids.real.helmholtz import Helmholtz
 from reportgen.fluids.real.saturation import SaturationCurves
 
-__all__ = ["REFERENCE_STATES", "THIRD_LAW", "Zero", "zero_of"]
+__all__ = ["REFERENCE_STATES", "THIRD_LAW", "Zero", "conventions", "zero_of"]
 
 #: Name of the zero that all species share: elements in their reference states for h, perfect crystals at 0 K for s.
 THIRD_LAW = "third-law"
@@ -50,27 +50,26 @@ def zero_of(name: str, data: Mapping[str, Any], equation: Helmholtz, curves: Sat
         return Zero(data["entropy_zero"], f"published:{data['name']}")
     if name == THIRD_LAW:
         return _third_law(data, equation)
-    known = REFERENCE_STATES.get(name)
+    known = REFERENCE_STATES.get(name) if isinstance(name, str) else None
     if known is None:
         raise InputError(
             Fault(
                 "This reference state is not known.",
-                found=repr(name),
+                found=repr(name)[:60],
                 expected=", ".join(["published", *REFERENCE_STATES, THIRD_LAW]),
             )
         )
     temperature, enthalpy, entropy, words = known
-    lowest, critical = data["lower_end"], data["critical_point"]
-    if temperature is None:
-        exists = lowest["pressure"] <= _ATMOSPHERE < critical["pressure"]
-        where = f"{_ATMOSPHERE:g} Pa"
-    else:
-        exists = lowest["temperature"] <= temperature < critical["temperature"]
-        where = f"{temperature:g} K"
-    if not exists:
+    if not _exists(temperature, data):
+        from reportgen.fluids.real.third_law import has_standard_values  # other zeros start without it
+
+        third_law = [THIRD_LAW] if has_standard_values(data) else []
+        where = "101 325 Pa" if temperature is None else f"{temperature:g} K"
         raise InputError(
             Fault(
-                f"{data['title']} has no saturated liquid at {where}, where the reference state {name} sets its zero."
+                f"{data['title']} has no saturated liquid at {where}, where the reference state {name} sets its zero.",
+                found=repr(name),
+                expected=", ".join([*conventions(data), *third_law]),
             )
         )
     if temperature is None:
@@ -80,6 +79,18 @@ def zero_of(name: str, data: Mapping[str, Any], equation: Helmholtz, curves: Sat
     found = equation.properties(saturated.bubble_temperature, saturated.liquid_density)
     equation.shift(enthalpy - float(found.enthalpy[0]), entropy - float(found.entropy[0]))
     return Zero(words, name)
+
+
+def _exists(temperature: float | None, data: Mapping[str, Any]) -> bool:
+    """Whether a fluid has a saturated liquid at a temperature [K], at 101 325 Pa for None."""
+    name, value = ("pressure", _ATMOSPHERE) if temperature is None else ("temperature", temperature)
+    return bool(data["lower_end"][name] <= value < data["critical_point"][name])
+
+
+def conventions(data: Mapping[str, Any]) -> list[str]:
+    """Names of the reference states that a fluid can have, from its data file; but for the third law."""
+    possible = [name for name, (temperature, *_) in REFERENCE_STATES.items() if _exists(temperature, data)]
+    return ["published", *possible]
 
 
 def _third_law(data: Mapping[str, Any], equation: Helmholtz) -> Zero:

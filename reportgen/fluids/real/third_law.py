@@ -13,10 +13,19 @@ from typing import Any
 
 from reportgen.errors import Fault, InputError
 from reportgen.fluids.gases.gas import ideal_gas
-from reportgen.fluids.gases.species import GasSpecies, library, plain_name
+from reportgen.fluids.gases.species import GasSpecies, library, of_formula, plain_name
 from reportgen.fluids.real import catalogue
+from reportgen.fluids.real.reference import conventions
 
-__all__ = ["PRESSURE", "TEMPERATURE", "Standard", "gas_species", "species_fractions", "standard_values"]
+__all__ = [
+    "PRESSURE",
+    "TEMPERATURE",
+    "Standard",
+    "gas_species",
+    "has_standard_values",
+    "species_fractions",
+    "standard_values",
+]
 
 TEMPERATURE = 298.15  # K
 PRESSURE = 1e5  # Pa
@@ -71,6 +80,11 @@ def standard_values(data: Mapping[str, Any]) -> Standard:
     )
 
 
+def has_standard_values(data: Mapping[str, Any]) -> bool:
+    """Whether third-law data are carried for a real fluid, from its data file."""
+    return data["name"] in _COMPOSITIONS if data["pseudo_pure"] else gas_species(data) is not None
+
+
 def species_fractions(name: str) -> Mapping[str, float]:
     """Mole fractions [1] of the ideal-gas species that a real fluid consists of, by its name.
 
@@ -92,17 +106,19 @@ def _fractions(data: Mapping[str, Any]) -> Mapping[str, float]:
                 Fault(
                     f"The third-law zero of {title} is not known: it is a blend, and third-law data are not carried "
                     "for all its components.",
-                    expected="published, IIR, ASHRAE or NBP",
+                    expected=", ".join(conventions(data)),
                 )
             )
         return found
     species = gas_species(data)
     if species is None:
+        others = [gas.name for gas in of_formula(data["formula"])] if data["formula"] else []
         raise InputError(
             Fault(
                 f"The third-law zero of {title} is not known: its ideal gas is not among those carried.",
-                found=data["formula"] or data["name"],
-                expected="published, IIR, ASHRAE or NBP",
+                found=repr(data["name"]),
+                expected=", ".join(conventions(data)),
+                hint=f"Of its formula there is {' and '.join(others)}, with another entropy." if others else None,
             )
         )
     return {species.key: 1.0}

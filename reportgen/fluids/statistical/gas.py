@@ -12,6 +12,7 @@ from numpy.typing import ArrayLike, NDArray
 from reportgen.errors import Fault, InputError, RangeError
 from reportgen.fluids.gases.gas import MOLAR_GAS_CONSTANT
 from reportgen.fluids.naming import title_of
+from reportgen.fluids.numeric import numbers
 from reportgen.fluids.pairs import in_words
 from reportgen.fluids.statistical import diatomic, polyatomic
 from reportgen.fluids.statistical.molecules import DATA_FILE, Atom, Diatomic, Polyatomic, digest, find
@@ -153,12 +154,15 @@ class StatisticalGas:
 
     def _read(self, temperature: ArrayLike, pressure: ArrayLike = 1.0) -> tuple[Array, tuple[int, ...]]:
         """Temperatures as a flat array and the common shape. Raises RangeError outside the range."""
+        given, pressures = numbers("temperature", "K", temperature), numbers("pressure", "Pa", pressure)
         try:
-            given = np.asarray(temperature, dtype=np.float64)
-            shape = np.broadcast_shapes(given.shape, np.asarray(pressure, dtype=np.float64).shape)
-        except (TypeError, ValueError):
+            shape = np.broadcast_shapes(given.shape, pressures.shape)
+        except ValueError:
             raise InputError(
-                Fault("Temperature [K] and pressure [Pa] are numbers or arrays of numbers that fit together.")
+                Fault(
+                    "Temperature and pressure have shapes that do not fit together.",
+                    found=f"{given.shape}, {pressures.shape}",
+                )
             ) from None
         flat = np.broadcast_to(given, shape).reshape(-1)
         low, high = self.minimum_temperature, self.maximum_temperature

@@ -140,3 +140,38 @@ def test_the_cold_ideal_part_joins_without_a_step() -> None:
     assert thin == pytest.approx(33.28, abs=0.01)
     # nothing published is carried for ozone in the cold
     assert fluids.cubic("O3").limits.minimum_temperature == 200.0
+
+
+@pytest.mark.parametrize(
+    ("options", "said"),
+    [
+        ({"interaction": [("CO2", "N2", 0.1)]}, "by pairs of species"),
+        ({"interaction": "CO2"}, "by pairs of species"),
+        ({"interaction": {("CO2", "N2"): "0.1"}}, "cannot be meant"),
+        ({"volume_translation": 3}, "by species"),
+        ({"volume_translation": [1e-6, 2e-6]}, "by species"),
+        ({"volume_translation": {"CO2": "1e-6"}}, "cannot be meant"),
+        ({"critical": "304 K"}, "given by species"),
+        ({"critical": [304.0, 73e5, 0.2]}, "given by species"),
+        ({"critical": {"CO2": {"temperature": "304", "pressure": 73e5, "acentric_factor": 0.2}}}, "cannot be meant"),
+    ],
+)
+def test_tables_of_another_form_are_refused(options, said) -> None:
+    with pytest.raises(InputError, match=said):
+        fluids.cubic({"CO2": 0.6, "N2": 0.4}, **options)
+
+
+def test_numbers_of_numpy_are_numbers() -> None:
+    def made(number):
+        return fluids.cubic(
+            {"CO2": number(0.5), "N2": number(0.5)},
+            interaction={("CO2", "N2"): number(0.125)},
+            volume_translation={"CO2": number(2.0**-20)},
+            critical={
+                "CO2": {"temperature": number(304.0), "pressure": number(7380000), "acentric_factor": number(0.25)}
+            },
+        )
+
+    expected = made(float).at(pressure=1e6, temperature=300.0).density
+    for number in (np.float32, np.float64, np.array):
+        assert made(number).at(pressure=1e6, temperature=300.0).density == expected

@@ -47,10 +47,63 @@ def test_saturation_temperature_leads_back():
 
 def test_where_nothing_condenses_there_is_no_dew_point():
     assert saturation_pressure(700.0) == math.inf
-    assert np.isnan(saturation_temperature([0.0, 3e7, -5.0, np.nan])).all()
+    assert np.isnan(saturation_temperature([0.0, 3e7, 1e-50, np.nan])).all()
     assert math.isnan(saturation_pressure(math.nan))
     with pytest.raises(RangeError, match="from 50 K"):
         saturation_pressure([300.0, 20.0])
+
+
+MOIST = ideal_gas({"N2": 0.97, "H2O": 0.03})
+
+
+@pytest.mark.parametrize("pressure", [-7e5, 0.0, math.inf, [1e5, -1.0]])
+@pytest.mark.parametrize("function", [water_saturation, condensed_water])
+def test_pressures_that_no_gas_has_are_refused(function, pressure):
+    with pytest.raises(RangeError, match="finite number above 0"):
+        function(MOIST, 300.0, pressure)
+
+
+def test_partial_pressures_and_temperatures_that_cannot_be_are_refused():
+    with pytest.raises(RangeError, match="Found: -3 Pa"):
+        saturation_temperature([500.0, -3.0])
+    with pytest.raises(RangeError, match="finite number from 0"):
+        saturation_temperature(math.inf)
+    for temperature in (-1.0, 0.0, math.inf):
+        with pytest.raises(RangeError, match="from 50 K"):
+            saturation_pressure(temperature)
+
+
+@pytest.mark.parametrize("function", [water_saturation, condensed_water])
+def test_what_is_no_gas_or_no_number_is_refused(function):
+    for gas in ("air", None, 3):
+        with pytest.raises(InputError, match="no gas"):
+            function(gas, 300.0, 1e5)
+    for conditions in (("300", 1e5), (300.0, "1e5"), (None, 1e5), (True, 1e5), (300.0, [[1e5], [1e5, 2e5]])):
+        with pytest.raises(InputError, match="not a number"):
+            function(MOIST, *conditions)
+    with pytest.raises(InputError, match=r"do not fit together. Found: \(2,\), \(3,\)"):
+        function(MOIST, [300.0, 280.0], [1e5, 2e5, 3e5])
+    for of_saturation in (saturation_pressure, saturation_temperature):
+        with pytest.raises(InputError, match="not a number"):
+            of_saturation("a")
+    with pytest.raises(InputError, match="no gas"):
+        humidity_ratio("air")
+
+
+def test_nan_stays_nan_in_condensation():
+    ratio, dew_point = water_saturation(MOIST, [300.0, math.nan], [math.nan, 1e5])
+    assert np.isnan(ratio).all()
+    assert np.isnan(dew_point).all()
+    assert np.isnan(condensed_water(MOIST, [300.0, math.nan], [math.nan, 1e5])).all()
+
+
+def test_humid_air_takes_numbers_of_numpy():
+    plain = humid_air(temperature=293.0, pressure=1e5, relative_humidity=0.5)
+    numpy = humid_air(temperature=np.float32(293.0), pressure=np.int64(100_000), relative_humidity=np.float32(0.5))
+    assert numpy == plain
+    with pytest.raises(InputError, match="relative humidity is a number"):
+        humid_air(temperature=293.0, pressure=1e5, relative_humidity="0.5")
+    assert combustion_products("CH4", excess_air=np.float32(0.25)) == combustion_products("CH4", excess_air=0.25)
 
 
 # --- humid air --------------------------------------------------------------------------------------------------------

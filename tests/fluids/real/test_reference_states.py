@@ -169,3 +169,31 @@ def test_isomers_and_spin_isomers_are_not_taken_for_each_other():
 def test_without_third_law_data_the_zero_is_refused_with_the_reason(name):
     with pytest.raises(InputError, match=r"third-law zero .* not known"):
         real_fluid(name, "third-law")
+
+
+@pytest.mark.parametrize(
+    ("name", "zero", "possible"),
+    [
+        ("argon", "IIR", "published, NBP, third-law"),
+        ("methane", "ASHRAE", "published, NBP, third-law"),
+        ("water", "ASHRAE", "published, NBP, third-law"),
+        ("parahydrogen", "IIR", "published, NBP"),
+        ("parahydrogen", "third-law", "published, NBP"),
+        ("R410A", "third-law", "published, IIR, ASHRAE, NBP"),
+    ],
+)
+def test_a_zero_that_cannot_be_is_answered_with_those_that_can(name, zero, possible):
+    with pytest.raises(InputError) as caught:
+        real_fluid(name, reference_state=zero)
+    assert caught.value.faults[0].expected == possible
+    for other in possible.split(", "):
+        assert real_fluid(name, reference_state=other).substance == name
+
+
+def test_spin_isomers_are_told_from_the_gas_that_is_carried():
+    with pytest.raises(
+        InputError, match=r"Found: 'parahydrogen'.*Of its formula there is hydrogen, with another entropy"
+    ):
+        real_fluid("parahydrogen", reference_state="third-law")
+    with pytest.raises(InputError, match=r"not known. Found: None"):
+        real_fluid("water", reference_state=None)

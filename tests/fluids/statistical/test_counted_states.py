@@ -275,3 +275,13 @@ def test_names_are_those_of_the_ideal_gases():
 def test_second_radiation_constant():
     """c₂ = 1.438 776 877 cm K (CODATA 2018)."""
     assert pytest.approx(1.438776877, rel=1e-9) == SECOND_RADIATION
+
+
+@pytest.mark.parametrize("conditions", [("300", 1e5), (300.0, "1e5"), (None, 1e5), (True, 1e5)])
+def test_what_is_no_number_is_refused(conditions):
+    nitrogen = statistical.gas("N2")
+    with pytest.raises(InputError, match="not a number"):
+        nitrogen.entropy(*conditions)
+    with pytest.raises(InputError, match=r"fit together. Found: \(2,\), \(3,\)"):
+        nitrogen.entropy([300.0, 400.0], [1e5, 2e5, 3e5])
+    assert nitrogen.entropy(np.float32(300.0), np.int64(100_000)) == nitrogen.entropy(300.0, 1e5)
