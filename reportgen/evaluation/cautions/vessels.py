@@ -46,7 +46,7 @@ def brittle_fracture(plant: EvaluatedPlant, limit: float) -> Iterator[Finding]:
             limit,
             "above",
             f"In {tag} {taken} ⟦falls|may fall⟧ below the temperature down to which carbon steel is used without "
-            f"a test of its toughness; the vessel is {of}. The minimum design metal temperature depends on its thickness.",
+            f"a test of its toughness; the vessel is {of}. Its minimum design metal temperature depends on thickness.",
             "temperature",
             owner=f"vessels.{tag}",
         )
