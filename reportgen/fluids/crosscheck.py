@@ -120,7 +120,7 @@ def second_model(fluid: Fluid, name: str) -> Any:
             Fault(
                 f"{fluid.title} cannot be checked by a model of its own kind: that would be the same model again.",
                 found=repr(name),
-                expected=", ".join(other for other in _MAKERS if other != name),
+                expected=", ".join(second_models(fluid)),
             )
         )
     return maker(fluid)

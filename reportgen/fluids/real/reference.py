@@ -106,9 +106,10 @@ def _third_law(data: Mapping[str, Any], equation: Helmholtz) -> Zero:
     enthalpy = equation.gas_constant * TEMPERATURE * (1.0 + float(ideal.tau[0]))
     entropy = equation.gas_constant * float(ideal.tau[0] - ideal.value[0])
     equation.shift(standard.enthalpy / mass - enthalpy, standard.entropy / mass - entropy)
+    formation = f"{standard.enthalpy / 1e3:.3f}".replace("-", "−")
     words = (
         f"Third law (zero for the perfect crystal at 0 K): the ideal gas at {TEMPERATURE:g} K and 1 bar has "
-        f"s = {standard.entropy:.3f} J/(mol K), and h = {standard.enthalpy / 1e3:.3f} kJ/mol, its enthalpy of "
+        f"s = {standard.entropy:.3f} J/(mol K), and h = {formation} kJ/mol, its enthalpy of "
         "formation from the elements in their reference states."
     )
     return Zero(words, THIRD_LAW, standard.sources, standard.data_files)
