@@ -27,6 +27,7 @@ _STATE_COLUMNS = (
     "specific_exergy",
     "density",
     "mass_flow",
+    "velocity",
     "mass",
     "volume",
 )
