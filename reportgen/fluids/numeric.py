@@ -14,7 +14,10 @@ __all__ = ["finite_number", "number", "numbers"]
 
 
 def number(value: object) -> float | None:
-    """The value as a float, or None: real numbers of any type and arrays of shape () that hold one are taken."""
+    """The value as a float [in the unit it is given in], or None.
+
+    Real numbers of any type are taken, and arrays of shape () that hold one.
+    """
     if isinstance(value, np.ndarray) and value.shape == ():
         value = value[()]
     if isinstance(value, bool) or not isinstance(value, Real):
@@ -26,7 +29,7 @@ def number(value: object) -> float | None:
 
 
 def finite_number(value: object) -> float | None:
-    """As :func:`number`, and None for infinite ones and NaN too."""
+    """As :func:`number` [in the unit it is given in], and None for infinite ones and NaN too."""
     found = number(value)
     return found if found is not None and math.isfinite(found) else None
 
@@ -38,7 +41,7 @@ def numbers(words: str, unit: str, value: ArrayLike) -> NDArray[np.float64]:
     ----------
     words : what it is, for the message, such as "specific enthalpy".
     unit : its unit, for the message.
-    value : what was given.
+    value : what was given [``unit``].
 
     Raises
     ------
