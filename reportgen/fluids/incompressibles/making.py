@@ -66,6 +66,8 @@ def incompressible(
         faults.append(Fault("An incompressible fluid has a name.", found=repr(name)[:60], expected='such as "oil"'))
     if phase not in ("liquid", "solid"):
         faults.append(Fault("The phase is not known.", found=repr(phase)[:60], expected='"liquid", "solid"'))
+    if source is not None and not isinstance(source, str):
+        faults.append(Fault("The source is a text.", found=repr(source)[:60], expected='such as "data sheet"'))
     _above_zero("density", density, "kg/m3", faults)
     if molar_mass is not None:
         _above_zero("molar mass", molar_mass, "kg/mol", faults)

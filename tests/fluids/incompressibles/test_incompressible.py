@@ -233,6 +233,7 @@ def test_numbers_of_numpy_are_numbers():
         ({"density": 1.0, "specific_heat": {"temperature": [260.0, 300.0], "values": [1800.0, 1900.0]}}, "understood"),
         ({"density": 1.0, "specific_heat": [(260.0, 1800.0), (300.0, "1900"), (310.0, 1950.0)]}, "not understood"),
         ({"density": "880", "specific_heat": 2.0}, "density"),
+        ({"density": 880.0, "specific_heat": 2.0, "source": 3}, "source is a text"),
         ({"density": True, "specific_heat": 2.0}, "density"),
         ({"density": 1.0, "specific_heat": 2.0, "limits": (400.0, 300.0)}, "lower one first"),
         ({"density": 1.0, "specific_heat": 2.0, "limits": 300.0}, "lower one first"),
