@@ -169,7 +169,8 @@ def _lost_work(
             "kind": "lost-work-bars",
             "dimension": plant.dimension_of(str(bars[0]["path"])),
             "title": title,
-            "caption": "Temperature of the surroundings times entropy generation, with its expanded uncertainty.",
+            "caption": "Temperature of the surroundings times entropy generation"
+            + (", with its expanded uncertainty." if any(bar["expanded_uncertainty"] for bar in bars) else "."),
             "bars": bars,
         }
     ]

@@ -26,6 +26,7 @@ __all__ = ["NO_VALUE", "Presenter", "in_order", "natural", "prose", "significant
 NO_VALUE = "—"
 #: Part of the terms of a balance below which what is left of it is rounding.
 _ROUNDING = 1e-10
+_NEGATIVE = re.compile(r"(?:(?<=\s)|(?<=\()|^)-(?=\d)")
 _DEGREES = re.compile(r"(?<=\d) deg([CF])\b")
 _BEFORE_UNIT = re.compile(r"(?<=\d) (?=(?:K|bar|kPa|MPa|Pa|%)(?!\w))")
 _PRODUCT_OF_UNITS = re.compile(r"\((k?g|lb|mol|kmol) (K|°R)\)")
@@ -50,7 +51,8 @@ def natural(text: str) -> list[tuple[int, int, str]]:
 
 def prose(text: str | None) -> str:
     """The program's own sentences with units as the page sets them (°C, kJ/(kg·K)); never what an author wrote."""
-    set_apart = _BEFORE_UNIT.sub("\N{NO-BREAK SPACE}", _DEGREES.sub("\N{NO-BREAK SPACE}°\\1", text or ""))
+    signed = _NEGATIVE.sub("\N{MINUS SIGN}", text or "")
+    set_apart = _BEFORE_UNIT.sub("\N{NO-BREAK SPACE}", _DEGREES.sub("\N{NO-BREAK SPACE}°\\1", signed))
     return _PRODUCT_OF_UNITS.sub(r"(\1·\2)", set_apart)
 
 

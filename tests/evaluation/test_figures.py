@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import numpy as np
 import pytest
 from calculations import VALVE, evaluated
@@ -58,4 +60,8 @@ outlets = ["2", "3"]
 
 def test_no_bars_are_drawn_where_no_work_is_lost() -> None:
     assert "lost-work-bars" in {figure["kind"] for figure in evaluated(VALVE).data["figures"]}
+    captions = {figure["kind"]: figure["caption"] for figure in evaluated(VALVE).data["figures"]}
+    assert captions["lost-work-bars"].endswith("with its expanded uncertainty.") == ("±" in VALVE)
+    certain = {figure["kind"]: figure["caption"] for figure in evaluated(re.sub(' ±[^"]*', "", VALVE)).data["figures"]}
+    assert "uncertainty" not in certain["lost-work-bars"]
     assert "lost-work-bars" not in {figure["kind"] for figure in evaluated(SPLITTER).data["figures"]}

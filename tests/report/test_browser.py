@@ -138,6 +138,28 @@ def test_the_page_never_scrolls_sideways(opened: Any, name: str, width: int) -> 
     assert wide == []
 
 
+def test_property_models_are_read_down_the_page_on_a_narrow_screen(opened: Any) -> None:
+    box = "s => [...document.querySelectorAll(s)].map(e => [e.getBoundingClientRect().left, e.scrollWidth])"
+    narrow = opened("air", width=390).page
+    cells = narrow.evaluate(box, "#method .fluids td")
+    assert len({left for left, _ in cells}) == 1
+    assert max(width for _, width in cells) < 390
+    assert len({left for left, _ in opened("air", width=1100).page.evaluate(box, "#method .fluids td")}) > 1
+
+
+def test_the_state_stays_in_view_while_a_cross_check_is_scrolled(opened: Any) -> None:
+    page = opened("air", width=390).page
+    found = page.evaluate(
+        """() => { const box = [...document.querySelectorAll('.wide:has(.checks)')]
+                     .find(e => e.scrollWidth > e.clientWidth + 1);
+                   box.scrollLeft = 1000;
+                   const state = box.querySelector('tbody th').getBoundingClientRect().left;
+                   return [box.scrollLeft, state - box.getBoundingClientRect().left] }"""
+    )
+    assert found[0] > 20
+    assert abs(found[1]) < 1.0
+
+
 @pytest.mark.parametrize("width", [390, 820, 1440])
 def test_no_equation_scrolls_and_the_smallest_can_still_be_read(opened: Any, width: int) -> None:
     page = opened("air", width=width).page

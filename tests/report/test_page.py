@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import copy
 import hashlib
 import json
 import os
@@ -9,6 +10,7 @@ import re
 import subprocess
 import sys
 from collections import Counter
+from html import unescape
 from html.parser import HTMLParser
 from pathlib import Path
 from typing import Any
@@ -532,3 +534,37 @@ def test_small_helpers_of_the_templates() -> None:
     assert lower_first("TG-2 power") == "TG-2 power"
     assert raised("2 ×\xa010⁻¹² kW") == "2 ×\xa010<sup>−12</sup> kW"
     assert raised("10 m²") == "10 m²"
+
+
+def method_of(fluids: dict[str, dict[str, Any]]) -> str:
+    data = invented_data()
+    steam = data["plant"]["fluids"]["steam"]
+    data["plant"]["fluids"] = {
+        name: {**copy.deepcopy(steam), "title": name.capitalize(), **more} for name, more in fluids.items()
+    }
+    found = re.search(r'<section id="method".*?</section>', page(Record(data)), re.DOTALL)
+    assert found is not None
+    text = re.sub(r"<[^>]+>", " ", found[0])
+    return re.sub(r"\s+", " ", unescape(text).replace("\N{NO-BREAK SPACE}", " "))
+
+
+def test_property_models_tell_range_zero_and_sources_as_one_reads_them() -> None:
+    limits = {"minimum_temperature": 253.15, "maximum_temperature": 573.15, "maximum_pressure": 1e7, "remarks": []}
+    zero = "h = -241.825 kJ/mol for H2O (-0.5 at R14-08(2011))."
+    text = method_of(
+        {
+            "steam": {
+                "limits": limits,
+                "sources": ["a table"],
+                "entropy_zero": zero,
+                "entropy_zero_name": "298.15 K liquid:oil",
+            },
+            "water": {"limits": limits, "sources": ["a table", "a paper"], "entropy_zero_name": "third-law"},
+        }
+    )
+    assert "from −20 °C to 300 °C, up to 100 bar" in text
+    assert "h = −241.825 kJ/mol for H2O (−0.5 at R14-08(2011))." in text
+    assert "liquid:oil" not in text
+    assert "name of this zero: third-law" in text
+    assert text.count("a table") == 1
+    assert "a paper · others as for Steam" in text

@@ -107,7 +107,7 @@ class Incompressible:
     def entropy_zero(self) -> str:
         """Where entropy and enthalpy are zero, in words."""
         return (
-            f"s = 0 and h = 0 for the {self.phase} at {self._zero_temperature:g} K and {ZERO_PRESSURE:g} Pa; "
+            f"s = 0 and h = 0 for the {self.phase} at {self._zero_temperature:g} K and {ZERO_PRESSURE / 1e5:g} bar; "
             + ("s depends on temperature alone, " if not self.thermal_expansion else "")
             + "h carries the work of pushing v (p − p0)."
         )

@@ -220,12 +220,8 @@ def _test(test: dict[str, Any], presenter: Presenter) -> dict[str, Any]:
 def method(presenter: Presenter) -> dict[str, Any]:
     """The author's method and the property models with sources and limits."""
     fluids = []
+    listed: dict[str, str] = {}
     for name, entry in in_order(presenter.record.data["plant"]["fluids"]):
-        limits = [
-            f"{word} {presenter.with_unit(entry['limits'][key], dimension)}"
-            for key, word, dimension in _LIMITS
-            if isinstance(entry.get("limits", {}).get(key), float | int)
-        ]
         fluids.append(
             {
                 "anchor": anchor("fluid", name),
@@ -235,10 +231,10 @@ def method(presenter: Presenter) -> dict[str, Any]:
                 "composition": _composition(entry["composition"]),
                 "details": [_detail(detail, presenter) for detail in entry.get("details", [])],
                 "entropy_zero": prose(entry["entropy_zero"]),
-                "zero_name": entry.get("entropy_zero_name"),
-                "limits": ", ".join(limits) or NO_VALUE,
+                "zero_name": _zero_name(entry.get("entropy_zero_name")),
+                "limits": _limits(entry.get("limits", {}), presenter),
                 "remarks": [prose(remark) for remark in entry.get("limits", {}).get("remarks", [])],
-                "sources": entry["sources"],
+                "sources": _told_once(entry, listed),
             }
         )
     return {
@@ -248,6 +244,30 @@ def method(presenter: Presenter) -> dict[str, Any]:
         "uncertain": any(entry["standard_uncertainty"] for entry in presenter.record.inputs.values()),
         "balances": _balances(presenter.record.data["plant"]),
     }
+
+
+def _limits(limits: dict[str, Any], presenter: Presenter) -> str:
+    """The range of a model: "from −20 °C to 300 °C, up to 100 bar"."""
+    words = {
+        key: f"{word} {presenter.with_unit(limits[key], dimension)}"
+        for key, word, dimension in _LIMITS
+        if isinstance(limits.get(key), float | int)
+    }
+    range_of_temperature = " ".join(words[key] for key in words if key != "maximum_pressure")
+    return ", ".join(filter(None, (range_of_temperature, words.get("maximum_pressure")))) or NO_VALUE
+
+
+def _zero_name(key: str | None) -> str | None:
+    """The name of a zero that several fluids may share; None where the key only tells one fluid from another."""
+    return None if key is None or ":" in key else key
+
+
+def _told_once(entry: dict[str, Any], listed: dict[str, str]) -> list[str]:
+    """Sources of a fluid; of those that an earlier fluid lists, only its title."""
+    told = [source for source in entry["sources"] if source not in listed]
+    elsewhere = list(dict.fromkeys(listed[source] for source in entry["sources"] if source in listed))
+    listed |= dict.fromkeys(told, entry["title"])
+    return [*told, *([f"{'others ' if told else ''}as for {', '.join(elsewhere)}"] if elsewhere else [])]
 
 
 #: What is solved, by family: what is said before the equation, its left and its right side.
