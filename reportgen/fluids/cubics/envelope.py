@@ -32,6 +32,9 @@ _BISECTIONS = 50
 _SAMPLES = 25
 _SAMPLED_PRESSURES = (1e2, 9e7)
 _NEAR = 1e-3
+#: Greatest ln K and difference in ln(v/b) [1] of phases at two points between which the line is taken from the cubic
+#: where Newton's method fails.
+_BESIDE_CRITICAL = (0.05, 0.05)
 #: Margin on the highest temperature of an unstable point.
 _MARGIN = 1.05
 #: States whose crossings are looked up at a time.
@@ -72,6 +75,8 @@ class Envelope:
         self._values = np.array([point.values for point in points]).reshape(-1, self._size + 2)
         self._tangents = np.array([point.tangent for point in points]).reshape(-1, self._size + 2)
         self._bubble = np.array([point.bubble for point in points], dtype=np.bool_)
+        self._close = np.max(np.abs(self._values[:, : self._size]), axis=1, initial=0.0) < _BESIDE_CRITICAL[0]
+        self._close &= np.array([point.apart for point in points]) < _BESIDE_CRITICAL[1]
 
     @cached_property
     def _stable(self) -> BoolArray:
@@ -206,10 +211,17 @@ class Envelope:
         fixed = "temperature" if column == self._size else "pressure"
         pairing, good = equilibrate(self._model, self._feed, start, (fixed, "fraction"), {}, ("liquid", "vapour"))
         moved = np.max(np.abs(pairing.ln_ratio - start.ln_ratio), axis=0)
-        near = moved < 0.5 + 0.5 * np.max(np.abs(start.ln_ratio), axis=0)
+        apart = np.max(np.abs(start.ln_ratio), axis=0)
+        # right beside the critical point Newton's method is ill-conditioned, and the cubic through its neighbours is not
+        beside = self._close[segment] & self._close[segment + 1]
+        shifted = np.abs(np.log(pairing.temperature / start.temperature * pairing.pressure / start.pressure))
+        solved = good & np.where(beside, (moved < 0.5 * apart) & (shifted < 0.01 * apart), moved < 0.5 + 0.5 * apart)
+        known = beside & ~solved
+        pairing.put(known, start.take(known))
+        solved |= known
         stable = self._stable[segment] & self._stable[segment + 1]
         result.pairing.put(some, pairing)
-        result.solved[some] = good & near & (result.number[some] == 1)
+        result.solved[some] = solved & (result.number[some] == 1)
         result.found[some] = result.solved[some] & stable
 
     def roots(self, branch: Branch, axis: str, given: float) -> list[float]:

@@ -168,8 +168,8 @@ class Equilibria:
         """States of one phase at T [K], p [Pa] and v' [m3/mol] that belong together."""
         everywhere = np.repeat(self.feed, temperature.size, axis=1)
         return States(
-            temperature,
-            pressure,
+            temperature.copy(),
+            pressure.copy(),
             volume,
             np.full(temperature.size, np.nan),
             everywhere,

@@ -35,6 +35,9 @@ _ITERATIONS = 25
 #: Largest residual [1] of a solution, and the step [1] whose square is below rounding.
 _SOLVED = 1e-9
 _SETTLED = 1e-8
+#: Next to the critical point steps are rounding, magnified: residual [1], and step in parts of ln K, that end there.
+_EXACT = 1e-12
+_MAGNIFIED = 1e-2
 #: Greatest ln K_i [1] and relative difference of density below which two phases are one.
 _TRIVIAL = 1e-5
 
@@ -104,6 +107,7 @@ def equilibrate(
         with np.errstate(invalid="ignore"):
             good = np.isfinite(worst) & np.isfinite(longest)
             done = good & (worst < _SOLVED) & (longest < _SETTLED)
+            done |= (worst < _EXACT) & (longest < _MAGNIFIED * np.max(np.abs(now.ln_ratio), axis=0))
         found.put(todo, system.stepped(step))
         trivial = (np.max(np.abs(now.ln_ratio), axis=0) < _TRIVIAL) & system.equal
         solved[todo[done & ~trivial]] = True

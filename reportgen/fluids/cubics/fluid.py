@@ -298,19 +298,7 @@ class CubicFluid:
         for where, above in ((sought.below, False), (sought.above, True)):
             where = where & ~sought.states.found & ~sought.several
             elements.reject(where, lambda i, above=above: self._guard.beyond(names, values(i), other, above=above))  # type: ignore[misc]
-        elements.reject(
-            sought.several, lambda i: self._guard.several(names, values(i), self._points(names[0], pair, sought, i))
-        )
-
-    def _points(self, line: str, pair: Pair, sought: Sought, index: int) -> tuple[Point, ...]:
-        """All states of an element that has several, in the order of rising density."""
-        places = np.array(sought.places[index])
-        held = np.full(places.size, pair.first[index])
-        t, p = (places, held) if line == "pressure" else (held, places)
-        states = self._equilibria.at(t, p)
-        density = Solution(self._equilibria, states, {}).values()["density"]
-        order = np.argsort(density)
-        return tuple(Point(float(t[i]), float(p[i]), float(density[i])) for i in order)
+        elements.reject(sought.several, lambda i: self._guard.several(names, values(i), tuple(sought.points[i])))
 
     def _with_quality(self, pair: Pair, elements: Elements) -> States:
         line, quality = pair.names[0], pair.second

@@ -15,6 +15,7 @@ from reportgen.fluids.cubics.fugacity import Side
 from reportgen.fluids.cubics.scanning import brackets
 from reportgen.fluids.cubics.sought import Sought
 from reportgen.fluids.cubics.values import Target, value_of
+from reportgen.fluids.model import Point
 
 if TYPE_CHECKING:
     from reportgen.fluids.cubics.isolines import Isoline
@@ -197,8 +198,8 @@ class Search:
         else:
             self._two_phases(where[mixed], first.take(mixed), edge.take(mixed), value_first[mixed], value_edge[mixed])
             if self._turning:
-                for index in where[mixed & self.sought.states.found[where]]:
-                    self.sought.places[int(index)] = [float(self.sought.states.pressure[index])]
+                some = where[mixed & self.sought.states.found[where]]
+                self._note(some, self.sought.states.take(some))
         low, high = np.full(where.size, line.low), np.full(where.size, line.high)
         if line.rising:
             ranges = ((low, np.minimum(at_first, high)), (np.maximum(at_edge, low), high))
@@ -380,8 +381,13 @@ class Search:
             some = np.flatnonzero(fresh.third == third)
             kept = some[self._keep(where[state[some]], fresh.take(some))]
             if not third:
-                for index, at in zip(where[state[kept]], place[kept], strict=True):
-                    self.sought.places.setdefault(int(index), []).append(float(at))
+                self._note(where[state[kept]], fresh.take(kept))
+
+    def _note(self, where: Indices, states: States) -> None:
+        """Take down states of which there may be several."""
+        density = self._equilibria.molar_mass / value_of(self._equilibria, states, "volume")
+        for index, *values in zip(where, states.temperature, states.pressure, density, strict=True):
+            self.sought.points.setdefault(int(index), []).append(Point(*(float(value) for value in values)))
 
     def _keep(self, where: Indices, states: States) -> BoolArray:
         """Take over states that have the value, and not those where a bracket has closed on a jump; which were."""

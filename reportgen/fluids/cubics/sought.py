@@ -9,29 +9,39 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reportgen.fluids.cubics.equilibria import States
+from reportgen.fluids.model import Point
 
 __all__ = ["Sought"]
 
 BoolArray = NDArray[np.bool_]
 
+#: Relative difference in temperature or pressure of two states that may be the same.
+_ROUNDING = 1e-9
+
 
 @dataclass
 class Sought:
     """Result of a search along N lines: the states; ``below``, ``above`` where the value lies beyond the lower or the
-    upper end of the line (temperature or pressure); ``several`` where more than one state has it; ``places`` of the
-    states [K or Pa] by index, where several were possible.
+    upper end of the line (temperature or pressure); ``several`` where more than one state has it; ``points`` of the
+    states by index, where several were possible.
     """
 
     states: States
     below: BoolArray
     above: BoolArray
     several: BoolArray
-    places: dict[int, list[float]] = field(default_factory=dict)
+    points: dict[int, list[Point]] = field(default_factory=dict)
 
     def settle(self) -> None:
         """Mark the states that are not the only ones."""
-        for index, places in list(self.places.items()):
-            places.sort()
-            apart = [places[0], *(b for a, b in pairwise(places) if b > a * (1.0 + 1e-9))]
+        for index, points in list(self.points.items()):
+            points.sort(key=lambda point: (point.temperature, point.pressure))
+            apart = [points[0], *(b for a, b in pairwise(points) if _differ(a, b))]
             self.several[index] = len(apart) > 1
-            self.places[index] = apart
+            self.points[index] = sorted(apart, key=lambda point: point.density or 0.0)
+
+
+def _differ(one: Point, other: Point) -> bool:
+    """Whether two points are more than rounding apart."""
+    temperature, pressure = other.temperature / one.temperature, other.pressure / one.pressure
+    return abs(temperature - 1.0) > _ROUNDING or abs(pressure - 1.0) > _ROUNDING

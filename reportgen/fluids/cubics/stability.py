@@ -43,8 +43,9 @@ _LONGEST = 2.0
 _STATIONARY = 1e-8
 _TRIVIAL = 1e-5
 _TRIVIAL_RATE = 0.5
-#: Mole fraction of the species that a nearly pure trial phase consists of.
-_NEARLY_PURE = 0.9
+#: Mole fraction of the species that a nearly pure trial phase consists of: with a tenth of hexane, water is a vapour
+#: where with a thousandth it is the liquid that is looked for.
+_NEARLY_PURE = 0.999
 
 
 class Verdict(NamedTuple):
@@ -181,7 +182,7 @@ class _Descent:
         if lower.any():
             where = todo[lower]
             self._lowest[where] = distance[lower]
-            self._trial[:, where] = np.log(phase.fractions[:, lower])
+            self._trial[:, where] = trial[:, lower] - np.log(np.sum(amounts[:, lower], axis=0))
             self._compressibility[where] = phase.compressibility[lower]
         return phase, gradient, distance
 

@@ -38,6 +38,8 @@ _LONGEST_RATIO, _LONGEST_TEMPERATURE, _LONGEST_PRESSURE = 0.5, 0.03, 0.5
 _CLOSE, _NEAR_CRITICAL = 1.2, 0.2
 #: Points from which the critical point is interpolated, in parts of ln K where it was stepped over.
 _CRITICAL_NODES = (-1.0, -0.7, -0.4, 0.4, 0.7, 1.0)
+#: and points beside it, between which the line is so well known that it is found right up to the critical point.
+_BESIDE = (-0.1, -0.02, 0.02, 0.1)
 #: Distance in ln T and ln p at which two lines that both stopped are taken to meet in the critical point.
 _GAP = (0.02, 0.1)
 _ITERATIONS = 8
@@ -254,24 +256,32 @@ class Tracer:
         number = turns[0]
         before, after = points[number], points[number + 1]
         held = int(np.argmax(np.abs(before.values[: self._size])))
-        near = np.array([point.values for point in points[max(0, number - 2) : number + 4]])
         nodes = -before.values[held] * np.array(_CRITICAL_NODES)
-        found = []
-        for node in nodes:
-            nearer = before if node * before.values[held] > 0.0 else after
-            corrected = self._corrected(
-                _lagrange(near[:, held], near, node), held, nearer.spacing, bubble=nearer.bubble
-            )
-            if corrected is None:
-                return points
-            sign = np.sign(corrected[0].tangent[held] * -before.values[held])
-            found.append(replace(corrected[0], tangent=sign * corrected[0].tangent))
+        found = self._at_nodes(points[max(0, number - 2) : number + 4], held, nodes, before, after)
+        if len(found) < nodes.size:
+            return points
         ln_temperature, ln_pressure = _lagrange(nodes, np.array([point.values for point in found]), 0.0)[self._size :]
         t, p = np.exp([ln_temperature]), np.exp([ln_pressure])
         phase = phase_at(self._model.mixture, self._model.mixture.conditions(t, p), self._feed)
         volume = self._model.untranslated_volume(t, p, phase)
         self.critical = CriticalPoint(float(t[0]), float(p[0]), float(volume[0]))
-        return [*points[: number + 1], *found[1:-1], *points[number + 1 :]]
+        beside = self._at_nodes(found, held, -before.values[held] * np.array(_BESIDE), before, after)
+        return [*points[: number + 1], *found[1:3], *beside, *found[3:-1], *points[number + 1 :]]
+
+    def _at_nodes(self, near: list[Point], held: int, nodes: FloatArray, before: Point, after: Point) -> list[Point]:
+        """Points at which the variable ``held`` has the values ``nodes``, interpolated between those ``near`` and
+        corrected, where that succeeds; ``before`` and ``after`` lie on the two sides of the critical point.
+        """
+        values = np.array([point.values for point in near])
+        found = []
+        for node in nodes:
+            nearer = before if node * before.values[held] > 0.0 else after
+            guess = _lagrange(values[:, held], values, node)
+            corrected = self._corrected(guess, held, nearer.spacing, bubble=nearer.bubble)
+            if corrected is not None:
+                sign = np.sign(corrected[0].tangent[held] * -before.values[held])
+                found.append(replace(corrected[0], tangent=sign * corrected[0].tangent))
+        return found
 
     def _extremes(self, points: list[Point]) -> list[Point]:
         """The points, and between them those where the temperature and where the pressure turns."""
