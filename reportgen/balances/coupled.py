@@ -9,15 +9,15 @@ along the sample axis, with the displaced points of their derivatives, so that a
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from functools import cached_property
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
+from reportgen.balances.bundles import Bundle, Model, bundles
 from reportgen.balances.network import AnyRelation, PropertyRelation
-from reportgen.balances.properties import state_from
 from reportgen.balances.relations import Balance, Formula
 
 __all__ = ["Coupled", "Derivatives", "typical"]
@@ -68,34 +68,6 @@ def typical(path: str) -> float:
     return _TYPICAL.get(path.rsplit(".", 1)[-1], 1.0)
 
 
-#: Makes the property model of a fluid from the masses that its composition follows from, by path.
-Model = Callable[[str, Mapping[str, Any]], Any]
-
-
-@dataclass(frozen=True)
-class _Bundle:
-    """States of one fluid that are evaluated from the same two properties and, of a mixture, from masses beside."""
-
-    fluid: str
-    model: Model
-    pair: tuple[str, str]
-    beside: tuple[str, ...]
-    states: tuple[str, ...]
-    names: tuple[str, ...]
-
-    def inputs(self, state: str) -> dict[str, str]:
-        """What a state is evaluated from: the two properties by name, the masses by path; with their paths."""
-        return {name: f"states.{state}.{name}" for name in self.pair} | {path: path for path in self.beside}
-
-    def evaluate(self, inputs: Mapping[str, Sequence[Array]]) -> dict[str, list[Array]]:
-        """Properties by name, each a list of arrays as long as those given for each of the inputs."""
-        sizes = [array.size for array in inputs[self.pair[0]]]
-        ends = np.cumsum(sizes)[:-1]
-        joined = {name: np.concatenate(arrays) for name, arrays in inputs.items()}
-        result = state_from(self.model(self.fluid, joined), self.pair, joined)
-        return {name: np.split(np.asarray(getattr(result, name), float), ends) for name in self.names}
-
-
 class Coupled:
     """A block of relations with as many unknowns.
 
@@ -136,7 +108,7 @@ class Coupled:
                 continue
             self.residuals.append(_turned(relation, free) if isinstance(relation, Formula) else relation)
         beside = {item.state: item.beside for item in relations if isinstance(item, PropertyRelation)}
-        self.bundles = _bundles(self.outputs, self.carriers, beside, fluid_of, model)
+        self.bundles = bundles(self.outputs, self.carriers, beside, fluid_of, model)
         self.tears = [path for path in unknowns if path not in explicit]
         self.index = {path: number for number, path in enumerate(self.tears)}
         involved = {path for relation in relations for path in relation.variables}
@@ -221,7 +193,7 @@ class Coupled:
                         self._move(x, bundle, state, values)
         return x
 
-    def _move(self, x: Array, bundle: _Bundle, state: str, values: Mapping[str, Array]) -> None:
+    def _move(self, x: Array, bundle: Bundle, state: str, values: Mapping[str, Array]) -> None:
         paths = [f"states.{state}.{name}" for name in bundle.pair]
         here = [float(values[path][0]) for path in paths]
         pressures = abs(here[0]) * _RATIOS_TRIED if paths[0] in self.index else np.array([here[0]])
@@ -299,7 +271,7 @@ class Coupled:
         return of_property, chain
 
     def _of_bundle(
-        self, bundle: _Bundle, values: Mapping[str, Array], chain: Mapping[str, Derivatives]
+        self, bundle: Bundle, values: Mapping[str, Array], chain: Mapping[str, Derivatives]
     ) -> dict[str, Derivatives]:
         """Derivatives of all properties of a bundle, the displaced points of all its states in one call."""
         arrays: dict[str, list[Array]] = {name: [] for name in bundle.inputs("")}
@@ -357,30 +329,6 @@ def _carriers(relations: Sequence[AnyRelation], free: set[str]) -> dict[str, tup
             if relation.output in _SATURATION and relation.path not in free:
                 found[relation.state] = ("pressure", relation.output)
     return found
-
-
-def _bundles(
-    outputs: Mapping[str, Sequence[str]],
-    carriers: Mapping[str, tuple[str, str]],
-    beside: Mapping[str, tuple[str, ...]],
-    fluid_of: Callable[[str], str],
-    model: Model,
-) -> list[_Bundle]:
-    """States that can be evaluated in one call."""
-    groups: dict[tuple[str, tuple[str, str]], list[str]] = {}
-    for state in outputs:
-        groups.setdefault((fluid_of(state), carriers[state]), []).append(state)
-    return [
-        _Bundle(
-            fluid,
-            model,
-            pair,
-            beside[states[0]],
-            tuple(states),
-            tuple(dict.fromkeys(name for state in states for name in outputs[state])),
-        )
-        for (fluid, pair), states in groups.items()
-    ]
 
 
 def _accumulate(row: Derivatives, slopes: Mapping[str, Array], factor: Any) -> None:

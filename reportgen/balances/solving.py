@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 import numpy as np
@@ -10,17 +10,17 @@ from numpy.typing import ArrayLike, NDArray
 
 from reportgen.balances.accounting import add_results
 from reportgen.balances.coupled import Coupled
-from reportgen.balances.doubts import Doubt, doubts
-from reportgen.balances.network import PROPERTIES, AnyRelation, Block, Network, PropertyRelation
+from reportgen.balances.doubts import doubts
+from reportgen.balances.network import AnyRelation, Block, Network, PropertyRelation
 from reportgen.balances.newton import NoSolution, solve_system
 from reportgen.balances.plant import Plant, balance_groups, pieces_of, refuse_half_elevations
 from reportgen.balances.processes.accounting import add_process_results
 from reportgen.balances.processes.definitions import processes_of
 from reportgen.balances.processes.mixing import Mixtures
-from reportgen.balances.properties import known_pair, state_from, what_would_do, why_missing
 from reportgen.balances.relations import Balance, Equation, Formula, token
 from reportgen.balances.solution import Assumption, Solution, Step
 from reportgen.balances.starts import Starts
+from reportgen.balances.state_steps import StateSteps, numbers_of
 from reportgen.balances.structure import build_network
 from reportgen.balances.vessels import PREFIX
 from reportgen.errors import Fault, SolutionError
@@ -30,25 +30,6 @@ __all__ = ["solve"]
 
 Array = NDArray[np.float64]
 
-#: Fields of a state that are reported as values beside those the network solves for.
-REPORTED = (
-    "temperature",
-    "pressure",
-    "specific_enthalpy",
-    "specific_entropy",
-    "specific_internal_energy",
-    "density",
-    "specific_volume",
-    "quality",
-    "superheat",
-    "subcooling",
-    "compressibility_factor",
-    "isobaric_heat_capacity",
-    "isochoric_heat_capacity",
-    "speed_of_sound",
-)
-#: Properties whose line is shown in the working of a state.
-_SHOWN = ("pressure", "temperature", "specific_enthalpy", "specific_entropy", "density")
 _ESSENTIAL = ("power", "heat", "duty", "work")
 
 
@@ -102,7 +83,6 @@ class _Run:
     def __init__(self, solution: Solution, network: Network, columns: int) -> None:
         self.solution = solution
         self.values = solution.values
-        self.given = frozenset(solution.values)
         self.plant = solution.plant
         self.columns = columns
         self.network = network
@@ -111,8 +91,7 @@ class _Run:
         self.starts = Starts(self.plant, every, self.values)
         self.needed = _needed(network.blocks)
         self.simultaneous = 0
-        #: States whose pressure was found from temperature and enthalpy, which hardly depend on it in a single phase.
-        self.doubtful: set[str] = set()
+        self.states = StateSteps(solution, columns)
 
     def blocks(self) -> None:
         """Solve all blocks in order and list the assumptions taken."""
@@ -127,143 +106,24 @@ class _Run:
             self._block(block, number in self.needed)
         for state in self.plant.states:
             if state not in self.solution.states:
-                self._state(state, ("pressure", "specific_enthalpy"))
+                self.states.enter(state, ("pressure", "specific_enthalpy"))
 
     def _block(self, block: Block, needed: bool) -> None:
         if all(path in self.values for path in block.unknowns):
             return
         owners = {relation.state if isinstance(relation, PropertyRelation) else "" for relation in block.relations}
         if len(owners) == 1 and (state := next(iter(owners))):
-            known = [name for name in PROPERTIES if f"states.{state}.{name}" in self.values]
-            pair = known_pair(self.plant.fluids[self.plant.states[state]], known)
-            # What the author gives is answered with the states that share it; what was worked out has neighbours.
-            if pair and ("pressure" in pair or self._is_given(state, pair) or not self._is_ambiguous(state, pair)):
-                self._state(state, pair)
+            pair = self.states.pair_of(state)
+            if pair:
+                self.states.enter(state, pair)
                 return
         relation, unknown = block.relations[0], block.unknowns[0]
         if len(block.relations) == 1 and isinstance(relation, PropertyRelation) and len(relation.inputs) == 1:
-            self._caloric(relation, unknown)
+            self.states.caloric(relation, unknown)
             return
         if len(block.relations) == 1 and self._direct(relation, unknown, needed):
             return
         self._together(block)
-
-    def _is_given(self, state: str, pair: tuple[str, str]) -> bool:
-        """Whether both properties of a pair stand in the file."""
-        return all(f"states.{state}.{name}" in self.given for name in pair)
-
-    def _is_ambiguous(self, state: str, pair: tuple[str, str]) -> bool:
-        """Whether a known pair gives no one state in the base case: then the nearest in the plant is looked for."""
-        fluid_id = self.plant.states[state]
-        base = {path: self.values[path][:1] for path in self.solution.mixtures.masses(fluid_id)}
-        fluid = self.solution.mixtures.model(fluid_id, base)
-        inputs = {name: self.values[f"states.{state}.{name}"][:1] for name in pair}
-        if not np.isfinite(list(inputs.values())).all():
-            return False
-        return not np.isfinite(state_from(fluid, pair, inputs).specific_enthalpy[0])
-
-    def _state(self, state: str, pair: tuple[str, str]) -> None:
-        """All properties of a state from two of them."""
-        fluid_id = self.plant.states[state]
-        fluid = self.solution.mixtures.model(fluid_id, self.values)
-        prefix = f"states.{state}."
-        inputs = {name: self.values[prefix + name] for name in pair}
-        result = state_from(fluid, pair, inputs)
-        enthalpy = np.asarray(result.specific_enthalpy)
-        missing = ~np.isfinite(enthalpy)
-        if missing[0]:
-            absent = [prefix + name for name in pair if not np.isfinite(inputs[name][0])]
-            reason = self.solution.reasons.get(absent[0]) if absent else None
-            expected, hint = what_would_do(result, 0)
-            if reason is None:
-                reason = f"it depends on {absent[0]}, which has no value" if absent else why_missing(result, 0)
-            told = " and ".join(name.replace("_", " ") for name in pair)
-            message = f"State {state} ({fluid.title}) cannot be evaluated from its {told}: {reason}"
-            raise SolutionError(
-                Fault(
-                    message,
-                    f"states.{state}",
-                    expected=expected,
-                    hint=hint,
-                    numbers=self._numbers(prefix + name for name in pair),
-                )
-            )
-        if missing.any():
-            text = f"State {state} has no value in {int(missing.sum())} of {self.columns} columns: "
-            text += why_missing(result, int(np.argmax(missing)))
-            self.solution.warnings.append(Fault(text, f"states.{state}"))
-        if pair == ("temperature", "specific_enthalpy"):
-            self.doubtful.add(state)
-        if state in self.doubtful and str(np.asarray(result.phase).flat[0]) != "two-phase":
-            text = f"The pressure of state {state} is not given; it was found from temperature and enthalpy, "
-            text += "which hardly depend on it. State the pressure or the pressure loss."
-            self.solution.doubts.append(Doubt("pressure-from-enthalpy", f"states.{state}", f"{prefix}pressure", text))
-        solved = []
-        for name in REPORTED:
-            path = prefix + name
-            if path not in self.values:
-                self.values[path] = np.array(getattr(result, name), dtype=float)
-                solved.append(path)
-        self.values[f"{prefix}phase"] = np.asarray(result.phase)
-        solved.append(f"{prefix}phase")
-        self.solution.states[state] = result
-        arguments = r",\,".join(token(prefix + name) for name in pair)
-        equations = tuple(
-            Equation(token(prefix + name), rf"{NAMES[name].symbol}\left({arguments}\right)")
-            for name in _SHOWN
-            if prefix + name in solved
-        )
-        words = " and ".join(name.replace("_", " ") for name in pair)
-        if prefix + "specific_enthalpy" in solved or prefix + "temperature" in solved:
-            sentence = f"State {state} is fixed by its {words}; the equation of state gives the rest."
-        else:
-            sentence = f"State {state} is known; the equation of state gives its remaining properties."
-        masses = self.solution.mixtures.masses(fluid_id)
-        uses = (*(prefix + name for name in pair), *masses, f"fluids.{fluid_id}")
-        basis = f"equation of state, {fluid.title}"
-        self.solution.steps.append(
-            Step(
-                f"{prefix}properties",
-                f"states.{state}",
-                f"State {state}",
-                sentence,
-                basis,
-                tuple(solved),
-                uses,
-                equations,
-            )
-        )
-
-    def _caloric(self, relation: PropertyRelation, unknown: str) -> None:
-        """Enthalpy from temperature or the reverse, for an ideal gas whose pressure is not known yet."""
-        fluid_id = self.plant.states[relation.state]
-        fluid = self.solution.mixtures.model(fluid_id, self.values)
-        (known,) = (path for path in relation.solvable if path != unknown)
-        name, given = (path.rsplit(".", 1)[-1] for path in (unknown, known))
-        ambient = self.values["surroundings.pressure"]
-        result = fluid.at(errors="mask", pressure=ambient, **{given: self.values[known]})
-        array = np.array(getattr(result, name), dtype=float)
-        if np.isnan(array[0]):
-            told = given.replace("_", " ")
-            message = f"State {relation.state} ({fluid.title}) cannot be evaluated from its {told}: "
-            message += why_missing(result, 0)
-            raise SolutionError(Fault(message, f"states.{relation.state}", numbers=self._numbers([known])))
-        self.values[unknown] = array
-        equation = Equation(token(unknown), rf"{NAMES[name].symbol}\left({token(known)}\right)")
-        words = " and ".join(NAMES[part].text.lower().removeprefix("specific ") for part in (given, name))
-        sentence = f"State {relation.state}: {words} of an ideal gas fix each other, whatever the pressure."
-        self.solution.steps.append(
-            Step(
-                relation.key,
-                f"states.{relation.state}",
-                f"State {relation.state}",
-                sentence,
-                f"equation of state, {fluid.title}",
-                (unknown,),
-                (known, *relation.beside, f"fluids.{fluid_id}"),
-                (equation,),
-            )
-        )
 
     def _direct(self, relation: AnyRelation, unknown: str, needed: bool) -> bool:
         """Solve one relation for one unknown in closed form; False when that cannot be done."""
@@ -321,7 +181,7 @@ class _Run:
             reason = f"the factor of {unknown} in the equation is zero, so that any value would satisfy it"
         if needed:
             message = f"{relation.name} of {relation.owner} cannot be solved for {unknown}: {reason}."
-            raise SolutionError(Fault(message, unknown, numbers=self._numbers(others)))
+            raise SolutionError(Fault(message, unknown, numbers=numbers_of(self.values, others)))
         self.solution.reasons[unknown] = reason
         self.solution.lacking[unknown] = tuple(others)
 
@@ -410,7 +270,7 @@ class _Run:
                 and path.endswith("pressure")
                 and relation.state not in settled
             ):
-                self.doubtful.add(relation.state)
+                self.states.doubtful.add(relation.state)
 
     def _unsolved(self, block: Block, problem: Coupled, failure: NoSolution) -> Fault:
         relations = ", ".join(relation.key for relation in block.relations[:8])
@@ -425,12 +285,9 @@ class _Run:
         return Fault(
             f"The relations {relations}{more} have no common solution that could be found: {failure.reason}.{closest}",
             failure.paths[0] if failure.paths else block.unknowns[0],
-            numbers=self._numbers(list(known)[:8]),
+            numbers=numbers_of(self.values, list(known)[:8]),
             hint=f"Unknown together: {', '.join(failure.paths)}.",
         )
-
-    def _numbers(self, paths: Iterable[str]) -> tuple[tuple[str, float], ...]:
-        return tuple((path, float(self.values[path][0])) for path in paths if np.isfinite(self.values[path][0]))
 
 
 def _neglected(solution: Solution) -> list[Assumption]:

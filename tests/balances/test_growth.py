@@ -69,7 +69,7 @@ def test_a_thousand_pieces_in_half_a_minute() -> None:
             "heater": {f"equipment.{tag}.heat": 1e4},
         }[kind]
     plant = chain(*pieces, fluid=SimpleGas())
-    began = time.perf_counter()
+    began = time.process_time()
     solution = solve(plant, givens)
-    assert time.perf_counter() - began < 30.0
+    assert time.process_time() - began < 30.0
     assert np.isfinite(solution.values["states.1000.specific_exergy"][0])
