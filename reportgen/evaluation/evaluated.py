@@ -101,7 +101,7 @@ class EvaluatedPlant:
     alternatives: tuple[str, ...] = ()
     closed: frozenset[str] = frozenset()
     vessels: Mapping[str, EvaluatedVessel] = field(default_factory=dict)
-    units: str = "SI"
+    units: Literal["SI", "US"] = "SI"
 
     def is_closed(self, owner: str) -> bool:
         """Whether an owner is a process or a sum over processes."""

@@ -230,9 +230,9 @@ def _split(text: str, content: str, allowed: tuple[str, ...]) -> tuple[float, st
         raise Refused("The decimal sign is a point.", quoted(content), example(allowed), hint)
     if re.match(r"[0-9.,+\-−]", unit):
         groups = _TYPED_GROUPS.match(text)
-        meant = groups and groups[0].replace(" ", "") + text[groups.end() :]
-        hint = f'A space that sets thousands apart is left out: "{short(meant)}".' if meant else None
-        raise Refused("The number cannot be read.", quoted(content), example(allowed), hint)
+        meant = groups and short(groups[0].replace(" ", "") + text[groups.end() :])
+        apart = f'A space that sets thousands apart is left out: "{meant}".' if meant else None
+        raise Refused("The number cannot be read.", quoted(content), example(allowed), apart)
     exponent = match["plain"] or (match["raised"] or "").translate(_RAISED)
     digits = match["mantissa"] + (f"e{exponent}" if exponent and "e" not in match["mantissa"].lower() else "")
     if exponent and digits == match["mantissa"]:

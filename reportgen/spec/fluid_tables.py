@@ -291,7 +291,7 @@ def _ask_for_substances(source: Source, name: str, check_fluid: FluidCheck) -> N
     if model not in (*_COMPOSED, "real-fluid"):
         return
     single = source.text(*location, "substance")
-    asked = {(*location, "substance"): single} if single else {}
+    asked: dict[tuple[str, ...], str] = {(*location, "substance"): single} if single else {}
     if model != "real-fluid":
         asked |= {(*location, "composition", part): part for part in source.table(*location, "composition")}
     node = source.node((*location, "critical"))
