@@ -27,6 +27,7 @@ from reportgen.quantities.wording import words as dimension_in_words
 from reportgen.spec.source import Location, Source
 
 __all__ = [
+    "CALLED",
     "Bounds",
     "CalendarDate",
     "Identifier",
@@ -106,6 +107,10 @@ _BOUNDS: dict[str, Bounds] = {
     "heat_transfer": Bounds(0.0),
     "specific_heat": Bounds(0.0),
 }
+
+
+#: What shares its dimension with another quantity, with its article.
+CALLED = {"specific_heat": "a specific heat capacity"}
 
 
 def bounds_for(name: str) -> Bounds:

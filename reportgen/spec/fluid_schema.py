@@ -7,7 +7,7 @@ from typing import Annotated, Any, Literal, get_args
 from pydantic import ConfigDict, Discriminator, Field, Tag
 
 from reportgen.quantities import Quantity, usual_units
-from reportgen.spec.fields import Bounds, Identifier, QuantityOf, ShortText
+from reportgen.spec.fields import CALLED, Bounds, Identifier, QuantityOf, ShortText
 from reportgen.spec.table import Table, with_unit
 
 __all__ = [
@@ -80,7 +80,7 @@ _OF_FLUID = "the states of this fluid are"
 
 _Fraction = Annotated[Quantity, QuantityOf(("ratio",), Bounds(0.0, 1.0), certain=True)]
 #: What shares the dimension of an entropy.
-_HEAT = "a specific heat capacity"
+_HEAT = CALLED["specific_heat"]
 _IDEAL_GAS = ConfigDict(
     json_schema_extra={
         "oneOf": [{"required": [key]} for key in ("substance", "composition", "products_of")],

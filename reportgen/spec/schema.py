@@ -15,6 +15,7 @@ from reportgen.balances.kinds import Choice, Group, Kind, Parameter, kinds, proc
 from reportgen.names import NAMES
 from reportgen.quantities import Quantity
 from reportgen.spec.fields import (
+    CALLED,
     Bounds,
     CalendarDate,
     Identifier,
@@ -286,7 +287,7 @@ def _parameters(parameters: tuple[Parameter, ...]) -> dict[str, Any]:
     fields = {}
     for parameter in parameters:
         bounds = Bounds() if parameter.signed else bounds_for(parameter.name)
-        marker = QuantityOf((parameter.dimension,), bounds)
+        marker = QuantityOf((parameter.dimension,), bounds, called=CALLED.get(parameter.name, ""))
         text = parameter.text.rstrip(".")
         if parameter.default:
             text = f"{text}; if not given: {parameter.default}"

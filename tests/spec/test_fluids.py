@@ -193,3 +193,12 @@ critical    = { mine = { temperature = "300 K" } }
     for path in ("fluids.a.equation", "fluids.b.reference_state", "fluids.c.composition"):
         assert path in paths
     assert "fluids.d.composition.mine" not in paths
+
+
+def test_the_specific_heat_of_a_wall_is_called_a_heat_capacity(tmp_path: Path) -> None:
+    vessel = '[vessels.V]\nkind = "discharge"\ninitial = "1"\nwall = { mass = "9 kg", specific_heat = "470 J/kg" }\n'
+    text = '[fluids.f]\nmodel = "real-fluid"\nsubstance = "water"\n'
+    found = faults(tmp_path, TITLE + SURROUNDINGS + text + STATE + vessel)
+    (told,) = (fault for fault in found if fault.path == "vessels.V.wall.specific_heat")
+    assert told.message == '"J/kg" is a unit of a specific energy, but a specific heat capacity is needed.'
+    assert told.expected == '"1.5 kJ/(kg*K)"'
