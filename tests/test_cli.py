@@ -183,7 +183,9 @@ def test_a_site_that_cannot_be_written_is_named_as_the_user_named_it(
 
 def test_several_calculations_as_json_are_one_array_or_nothing(tmp_path: Path) -> None:
     result = run("evaluate", PROJECTS, "--json")
-    assert [record["format"] for record in json.loads(result.stdout)] == ["reportgen-record/1"] * len(list(PROJECTS.glob("*/calculation.toml")))
+    assert [record["format"] for record in json.loads(result.stdout)] == ["reportgen-record/1"] * len(
+        list(PROJECTS.glob("*/calculation.toml"))
+    )
     put(PROJECTS / "letdown-station" / "calculation.toml", tmp_path / "a")
     put(MALFORMED[0], tmp_path / "b")
     result = run("evaluate", tmp_path, "--json")
