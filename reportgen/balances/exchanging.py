@@ -201,7 +201,8 @@ class Exchanging:
             path,
             inputs,
             evaluate,
-            rf"\frac{{{duty}}}{{\min\left({hot},\,{cold}\right)}}",
+            # in one line, since a fraction over so long a choice could not be broken
+            rf"{duty}/\min\left({hot},\,{cold}\right)",
             fluids=tuple(dict.fromkeys(piece.fluid_id(state) for state in inlets)),
             reason="neither stream has a state at the inlet temperature of the other, or there is nothing to exchange",
         )
