@@ -212,7 +212,7 @@ class Envelope:
         pairing, good = equilibrate(self._model, self._feed, start, (fixed, "fraction"), {}, ("liquid", "vapour"))
         moved = np.max(np.abs(pairing.ln_ratio - start.ln_ratio), axis=0)
         apart = np.max(np.abs(start.ln_ratio), axis=0)
-        # right beside the critical point Newton's method is ill-conditioned, and the cubic through its neighbours is not
+        # beside the critical point Newton's method is ill-conditioned, and the cubic through its neighbours is not
         beside = self._close[segment] & self._close[segment + 1]
         shifted = np.abs(np.log(pairing.temperature / start.temperature * pairing.pressure / start.pressure))
         solved = good & np.where(beside, (moved < 0.5 * apart) & (shifted < 0.01 * apart), moved < 0.5 + 0.5 * apart)

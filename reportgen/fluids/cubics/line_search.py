@@ -41,6 +41,8 @@ _ROUNDING = 1e-10
 _SCALE: dict[str, float] = {"enthalpy": 1e3, "entropy": 1.0, "volume": 0.0, "mass_quality": 1.0}
 #: What may be left of the target where a bracket has closed, in parts of it.
 _LEFT_OVER = 1e-6
+#: Parts of a place by which Newton's method may move it at the end of a search.
+_POLISHED = np.array([[1.0 - 1e-6], [1.0 + 1e-6]])
 
 
 class Search:
@@ -77,6 +79,9 @@ class Search:
             ends = np.sort([line.place(pairing)[wary] for pairing in (boundaries.bubble, boundaries.dew)], axis=0)
             if wary.size:
                 self._by_flashes(wary, *ends)
+                # two phases over a span of temperature near rounding, where flashes do not tell their shares
+                rest = wary[~self.sought.states.found[wary]]
+                self._crossed(rest, boundaries.bubble.take(rest), boundaries.dew.take(rest), "vapour", None)
         if simple.size:
             bubble, dew = boundaries.bubble.take(simple), boundaries.dew.take(simple)
             self._crossed(simple, bubble, dew, "vapour", None)
@@ -376,12 +381,25 @@ class Search:
         place, found, _, _ = self._root(held[state], target[state], evaluate, start, stop)
         state, place = state[found], place[found]
         fresh = evaluate(held[state], place, True)
+        if self._name == "mass_quality":
+            self._polish(fresh, target[state])
         # what would split further is a state only where there is no other
         for third in (True, False):
             some = np.flatnonzero(fresh.third == third)
             kept = some[self._keep(where[state[some]], fresh.take(some))]
             if not third:
                 self._note(where[state[kept]], fresh.take(kept))
+
+    def _polish(self, states: States, wanted: FloatArray) -> None:
+        """Two phases found by flashes, with their share as exact as Newton's method makes it."""
+        two = np.flatnonzero(states.mixed & ~states.third)
+        if not two.size:
+            return
+        some = states.take(two)
+        start = Pairing(np.log(some.vapour / some.liquid), some.temperature, some.pressure, some.fraction)
+        place = self._line.place(start)
+        pairing, good = self._equilibrated(start, wanted[two], np.stack([place, place]) * _POLISHED)
+        states.put(two[good], self._equilibria.paired(pairing.take(good)))
 
     def _note(self, where: Indices, states: States) -> None:
         """Take down states of which there may be several."""

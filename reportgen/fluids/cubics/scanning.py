@@ -15,7 +15,7 @@ Indices = NDArray[np.intp]
 
 #: Points at which a function is looked at, and steps towards an extreme between them.
 _SCANNED = 33
-_TURNS = 4
+_TURNS = 10
 
 Gap = Callable[[Indices, FloatArray], FloatArray]
 
@@ -57,10 +57,11 @@ def _extremes(gap: Gap, grid: FloatArray, gaps: FloatArray) -> list[tuple[Indice
     places = [grid[state, step + shift] for shift in range(3)]
     values = [gaps[state, step + shift] for shift in range(3)]
     found = []
-    for _ in range(_TURNS):
+    for turn in range(_TURNS):
         if not state.size:
             break
-        place = _vertex(places, values)
+        # a parabola alone creeps up on an extreme that is steep on one side
+        place = _middle(places) if turn % 2 else _vertex(places, values)
         value = gap(state, place)
         reached = np.sign(value) != np.sign(values[1])
         for end, other in ((places[0], place), (place, places[2])):
@@ -84,6 +85,11 @@ def _vertex(places: list[FloatArray], values: list[FloatArray]) -> FloatArray:
     left, right = (b - a) * (fb - fc), (b - c) * (fb - fa)
     with np.errstate(all="ignore"):
         vertex = b - 0.5 * ((b - a) * left - (b - c) * right) / (left - right)
-    wide = np.where(b - a > c - b, 0.5 * (a + b), 0.5 * (b + c))
     good = (vertex > a) & (vertex < c) & (np.abs(vertex - b) > 1e-6 * (c - a))
-    return np.where(good, vertex, wide)
+    return np.where(good, vertex, _middle(places))
+
+
+def _middle(places: list[FloatArray]) -> FloatArray:
+    """Middle of the wider of two neighbouring intervals."""
+    a, b, c = places
+    return np.where(b - a > c - b, 0.5 * (a + b), 0.5 * (b + c))

@@ -12,6 +12,7 @@ from reportgen.fluids.cubics.fluid import CubicFluid
 from reportgen.fluids.cubics.fugacity import Slopes, phase_at
 from reportgen.fluids.cubics.mixing import Conditions, Mixture
 from reportgen.fluids.cubics.stability import tangent_plane_test
+from reportgen.fluids.pairs import SeveralStates
 
 NATURAL_GAS = {"CH4": 0.70, "C2H6": 0.12, "C3H8": 0.08, "N2": 0.04, "CO2": 0.06}
 
@@ -161,6 +162,19 @@ def curvature(mixture: Mixture, conditions: Conditions, amounts: np.ndarray) -> 
     return float(values[0]), vectors[:, 0] * scale
 
 
+def test_a_share_of_vapour_met_three_times_is_told() -> None:
+    """A narrow peak of the vapour's share beside the bubble point, and the same share again far below."""
+    fluid = fluids.cubic({"CO2": 0.8, "N2": 0.2})
+    state = fluid.at(temperature=281.43423712684, pressure=11075412.496917902)
+    with pytest.raises(RangeError, match="has 3 states") as caught:
+        fluid.at(pressure=state.pressure, quality=state.quality)
+    (fault,) = caught.value.faults
+    assert isinstance(fault, SeveralStates)
+    found = fluid.at(temperature=[root.temperature for root in fault.roots], pressure=state.pressure)
+    np.testing.assert_allclose(found.quality, state.quality, rtol=1e-9)
+    np.testing.assert_allclose(found.density, [root.density for root in fault.roots], rtol=1e-9)
+
+
 @pytest.mark.parametrize("form", ["Peng-Robinson", "Soave-Redlich-Kwong"])
 def test_critical_points_of_mixtures_meet_their_conditions(form: str) -> None:
     """Heidemann and Khalil (1980): the matrix ∂ln f_i/∂n_j at constant T and V is singular, and stays so along its null
@@ -188,6 +202,11 @@ def test_a_mixture_that_is_nearly_one_substance_is_nearly_that_substance() -> No
         for one, two in zip(pure.saturation(pressure=pressure), nearly.saturation(pressure=pressure), strict=True):
             assert two.temperature == pytest.approx(one.temperature, rel=1e-6)
             assert two.density == pytest.approx(one.density, rel=1e-5)
+    # bubble and dew point a millionth of a kelvin apart, and nearer and nearer to the critical point
+    critical = nearly.limits.critical_point
+    assert critical is not None
+    state = nearly.at(pressure=critical.pressure * (1.0 - np.array([1e-5, 1e-4, 1e-3, 1e-2])), quality=0.3)
+    np.testing.assert_allclose(state.quality, 0.3, rtol=1e-12)
     half = pure.at(pressure=1e6, quality=0.5)
     back = nearly.at(pressure=1e6, specific_enthalpy=half.specific_enthalpy)
     assert back.quality == pytest.approx(0.5, abs=1e-5)
