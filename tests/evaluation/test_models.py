@@ -120,7 +120,7 @@ def test_the_figure_has_no_dome_and_one_line_for_all_pressures(oil: Record) -> N
 
 def test_the_page_states_model_details_zero_and_source(oil: Record) -> None:
     text = page(oil).replace("\N{NO-BREAK SPACE}", " ")
-    for words in ("density 870 kg/m³", "name of this zero: 298.15 K liquid:thermal oil", "Data sheet DS-9"):
+    for words in ("density 870 kg/m³", "the liquid at 298.15 K", "Data sheet DS-9"):
         assert words in text
 
 
