@@ -34,6 +34,11 @@ class Bundle:
         """What a state is evaluated from: the two properties by name, the masses by path; with their paths."""
         return {name: f"states.{state}.{name}" for name in self.pair} | {path: path for path in self.beside}
 
+    @property
+    def can_saturate(self) -> bool:
+        """Whether the fluid has a saturation line."""
+        return hasattr(self.model(self.fluid, {}), "saturation") if not self.beside else False
+
     def evaluate(self, inputs: Mapping[str, Sequence[Array]]) -> dict[str, list[Array]]:
         """Properties by name, each a list of arrays as long as those given for each of the inputs."""
         sizes = [array.size for array in inputs[self.pair[0]]]

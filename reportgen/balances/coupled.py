@@ -217,6 +217,19 @@ class Coupled:
                 if path in self.index:
                     x[self.index[path]] = array[best]
 
+    @cached_property
+    def loose_pressures(self) -> list[str]:
+        """Unknown pressures of states of which a temperature and nothing else is known: more than one may have it."""
+        return [
+            f"states.{state}.pressure"
+            for bundle in self.bundles
+            for state in bundle.states
+            if f"states.{state}.pressure" in self.index
+            and f"states.{state}.temperature" in self.known
+            and set(self.outputs[state]) <= {"temperature", "specific_enthalpy"}
+            and bundle.can_saturate
+        ]
+
     def residual(self, x: Array, columns: NDArray[np.intp]) -> tuple[Array, dict[str, Array]]:
         """Residuals, shape (R, M), and the completed values; NaN where a property does not exist."""
         with np.errstate(all="ignore"):

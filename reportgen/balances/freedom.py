@@ -166,9 +166,10 @@ def _proposals(matching: Matching, candidates: Sequence[str], missing: int) -> s
 
 
 def refuse_ill_posed(blocks: Iterable[Block], pieces: Mapping[str, Piece], given: frozenset[str]) -> None:
-    """SolutionError where a pressure would have to be found from two efficiencies of one machine.
+    """SolutionError where an end state would have to be found from two efficiencies of one machine.
 
-    They differ by the pressure ratio alone, agree as it goes to 1, and leave it open within any uncertainty.
+    They differ by the pressure ratio alone, agree as it goes to 1, and leave it and all else open within any
+    uncertainty. With the heat of the machine unknown an isothermal efficiency stands for its power, and may be given.
     """
     faults = []
     several = {
@@ -185,16 +186,21 @@ def refuse_ill_posed(blocks: Iterable[Block], pieces: Mapping[str, Piece], given
                 continue
             keys = {relation.key for relation in block.relations}
             used = [name for name in names if piece.path(f"{name}.definition") in keys]
-            ends = [f"states.{state}.pressure" for state in (*piece.streams("in"), *piece.streams("out"))]
-            sought = [path for path in ends if path not in known]
+            if piece.path("heat") in block.unknowns:
+                used = [name for name in used if name != "isothermal_efficiency"]
+            ends = [f"states.{state}" for state in (*piece.streams("in"), *piece.streams("out"))]
+            sought = [
+                path for name in ("pressure", "temperature") for end in ends if (path := f"{end}.{name}") not in known
+            ]
             if len(used) > 1 and sought:
                 words = " and ".join(f"{owner}.{name}" for name in used)
+                ratio = f" or {owner}.pressure_ratio" if sought[0].endswith(".pressure") else ""
                 faults.append(
                     Fault(
-                        f"The pressure {sought[0]} would have to be found from {words}, which differ by the pressure "
-                        "ratio alone: a small error of either would change it beyond use.",
+                        f"{sought[0]} would have to be found from {words}, which differ by the pressure ratio alone: a "
+                        "small error of either would change it beyond use.",
                         piece.path(used[-1]),
-                        expected=f"{sought[0]} or {owner}.pressure_ratio in the place of one of the efficiencies",
+                        expected=f"{sought[0]}{ratio} in the place of one of the efficiencies",
                     )
                 )
         known.update(block.unknowns)

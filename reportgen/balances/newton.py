@@ -27,12 +27,17 @@ _PATIENCE = 5
 _PROGRESS = 6
 #: Part of a step that counts as short, and how many in a row mean that the way ends at the range of a fluid.
 _SHORT, _MOST_SHORT = 0.05, 2
-#: Starts that led somewhere but not to a solution, and solutions nobody can mean, after which no more are tried.
-_MOST_TRAVELS, _MOST_DOUBTFUL = 12, 3
+#: Starts that led somewhere but not to a solution after which no more are tried; and starts that are tried after a
+#: solution that may not be meant.
+_MOST_TRAVELS, _MOST_MORE = 12, 12
 #: Starts that must have been tried before as many as came to the same closest place are taken for proof.
 _FEWEST_TRAVELS, _ALIKE = 5, 3
 #: Starts closer than this to an earlier one, in parts of the variables, are left out.
 _SAME_PLACE = 0.01
+#: Decades between a start and a pressure that is far.
+_FAR = 2.5
+#: Solutions closer than this, in parts of the variables, are one.
+_SAME_SOLUTION = 1e-5
 #: A mass flow [kg/s] taken for none.
 _NO_FLOW = 1e-12
 _EXTENSIVE = ("mass_flow", "power", "shaft_power", "heat", "mechanical_heat", "duty")
@@ -49,10 +54,10 @@ _SOLVED = 1e-6
 
 
 class NoSolution(ArithmeticError):
-    """The base column has no solution.
+    """The base column has no solution, or none that could be told from another.
 
-    Why; the unknowns that stand in the way; whether a step was ever taken; and, at the closest place found, which of
-    the residuals is farthest from zero and how far, in parts of its terms.
+    Why; the unknowns that stand in the way; whether a step was ever taken; at the closest place found, which of the
+    residuals is farthest from zero and how far, in parts of its terms; and whether there are several solutions.
     """
 
     def __init__(
@@ -62,6 +67,7 @@ class NoSolution(ArithmeticError):
         travelled: bool = True,
         worst: int | None = None,
         imbalance: float = np.inf,
+        several: bool = False,
     ) -> None:
         super().__init__(reason)
         self.reason = reason
@@ -69,41 +75,80 @@ class NoSolution(ArithmeticError):
         self.travelled = travelled
         self.worst = worst
         self.imbalance = imbalance
+        self.several = several
 
 
 def solve_system(system: Coupled, starts: Iterable[Mapping[str, float]], columns: int) -> dict[str, Array]:
     """Values of all unknowns by path, shape (N,), NaN in columns that do not converge.
 
-    A solution that nobody can mean (a flow or a heat against its direction, a pressure that rises by itself) is kept in
-    reserve while other starts are tried. Raises NoSolution for the base column.
+    A solution that nobody can mean (a flow or a heat against its direction, a pressure that rises by itself) is kept
+    while more starts are tried. So is one in which a pressure is found from a temperature, since another pressure may
+    go with it. Raises NoSolution for the base column, also where several solutions satisfy everything.
     """
-    failures: list[NoSolution] = []
-    doubtful: list[Array] = []
-    found: Array | None = None
-    for x in _places(system, starts):
-        try:
-            base = _iterate(system, x, np.array([0]), strict=True)
-        except NoSolution as problem:
-            failures.append(problem)
-            if _is_enough(failures):
-                break
-            continue
-        _refuse_no_flow(system, base)
-        if system.is_linear or _is_meant(system, base):
-            found = base
-            break
-        doubtful.append(base)
-        if len(doubtful) == _MOST_DOUBTFUL:
-            break
-    if found is None and doubtful:
-        found = doubtful[0]
-    if found is None:
-        raise min(failures, key=lambda failure: (not failure.travelled, failure.imbalance))
+    found = _base(system, starts)
+    _refuse_no_flow(system, found)
     x = np.repeat(found, columns, axis=1)
     if columns > 1:
         x[:, 1:] = _iterate(system, x[:, 1:], np.arange(1, columns), strict=False)
     full, _ = system.complete(x, np.arange(columns))
     return {path: full[path] for path in full if path not in system.known}
+
+
+def _base(system: Coupled, starts: Iterable[Mapping[str, float]]) -> Array:
+    """The solution of the base column, shape (T, 1)."""
+    failures: list[NoSolution] = []
+    senseless: list[Array] = []
+    solutions: list[Array] = []
+    more = 0
+    for x in _places(system, starts):
+        more += bool(senseless or solutions)
+        if more > _MOST_MORE:
+            break
+        try:
+            base = _iterate(system, x, np.array([0]), strict=True)
+        except NoSolution as problem:
+            failures.append(problem)
+            if not (senseless or solutions) and _is_enough(failures):
+                break
+            continue
+        if system.is_linear:
+            return base
+        values, _ = system.complete(base, np.array([0]))
+        has_sense = all(_has_sense(path, array[0]) for path, array in values.items() if path not in system.known)
+        if has_sense and not system.loose_pressures:
+            return base
+        kept = solutions if has_sense and _is_near(system, base, x) else senseless
+        if not any(_alike(system, base, other) for other in kept):
+            kept.append(base)
+    if len(solutions) > 1:
+        _refuse_several(system, solutions)
+    if solutions or senseless:
+        return (solutions or senseless)[0]
+    raise min(failures, key=lambda failure: (not failure.travelled, failure.imbalance))
+
+
+def _is_near(system: Coupled, base: Array, start: Array) -> bool:
+    """Whether the pressures found are of the size of those nearby.
+
+    At a thousand times the pressure many a liquid has the temperature and the enthalpy of a gas.
+    """
+    pressures = [number for number, path in enumerate(system.tears) if path.endswith(".pressure")]
+    return bool(np.all(np.abs(np.log10(base[pressures] / start[pressures])) < _FAR))
+
+
+def _alike(system: Coupled, first: Array, second: Array) -> bool:
+    """Whether two solutions are one."""
+    scale = np.maximum(np.abs(first), np.array([typical(path) for path in system.tears])[:, None])
+    return bool(np.max(np.abs(first - second) / scale, initial=0.0) < _SAME_SOLUTION)
+
+
+def _refuse_several(system: Coupled, solutions: Sequence[Array]) -> None:
+    """NoSolution naming a pressure that may be one or another."""
+    path = system.loose_pressures[0]
+    numbers = sorted(float(solution[system.index[path], 0]) / 1e5 for solution in solutions)
+    words = " or ".join(f"{number:.6g} bar" for number in numbers)
+    reason = f"{path} may be {words}; a temperature alone does not tell a pressure, so give it, or a pressure loss"
+    raise NoSolution(reason, system.loose_pressures, several=True)
 
 
 def _is_enough(failures: Sequence[NoSolution]) -> bool:
@@ -119,12 +164,12 @@ def _same(first: float, second: float) -> bool:
 
 
 def _places(system: Coupled, starts: Iterable[Mapping[str, float]]) -> Iterator[Array]:
-    """Each start moved to where the linear balances hold, then, where that is somewhere else, as it is."""
+    """Each start as it is, then, where that is somewhere else, moved to where the linear balances hold."""
     tried: list[Array] = []
     floor = np.array([typical(path) for path in system.tears])[:, None]
     for start in starts:
         plain = np.array([[start[path]] for path in system.tears], dtype=float)
-        for place in (system.consistent(plain), plain):
+        for place in (plain, system.consistent(plain)):
             scale = np.maximum(np.abs(place), floor)
             if all(np.max(np.abs(place - other) / scale, initial=0.0) > _SAME_PLACE for other in tried) or not tried:
                 tried.append(place)
@@ -138,13 +183,8 @@ def _refuse_no_flow(system: Coupled, base: Array) -> None:
         raise NoSolution("only with no flow at all would they hold, so nothing fixes the flow", system.tears)
 
 
-def _is_meant(system: Coupled, base: Array) -> bool:
-    """Whether flows, heats, pressure losses, ratios and efficiencies have the sense their names say."""
-    values, _ = system.complete(base, np.array([0]))
-    return all(path in system.known or _has_sense(path, float(array[0])) for path, array in values.items())
-
-
 def _has_sense(path: str, value: float) -> bool:
+    """Whether a flow, heat, pressure loss, ratio or efficiency has the sense its name says."""
     name = path.rsplit(".", 1)[-1]
     if name in _NEVER_NEGATIVE or name.endswith("pressure_drop"):
         return value >= -_SOLVED * typical(path)

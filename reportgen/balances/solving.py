@@ -282,8 +282,11 @@ class _Run:
         if failure.worst is not None and np.isfinite(failure.imbalance):
             key = problem.residuals[failure.worst].key
             closest = f" At the closest, {key} is {failure.imbalance:.2g} of its terms from holding."
+        words = (
+            "have more than one common solution" if failure.several else "have no common solution that could be found"
+        )
         return Fault(
-            f"The relations {relations}{more} have no common solution that could be found: {failure.reason}.{closest}",
+            f"The relations {relations}{more} {words}: {failure.reason}.{closest}",
             failure.paths[0] if failure.paths else block.unknowns[0],
             numbers=numbers_of(self.values, list(known)[:8]),
             hint=f"Unknown together: {', '.join(failure.paths)}.",

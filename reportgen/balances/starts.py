@@ -44,7 +44,8 @@ _RANDOM, _SPREAD_OF_PRESSURE, _SPREAD_OF_ENTHALPY = 8, 0.6, 1.2e5
 @dataclass(frozen=True)
 class _Attempt:
     """Scale of the pressures, offset of the enthalpies [J/kg], temperature in parts of the surroundings' (0: that of
-    states nearby), ratio of the pressures across machines and valves, and oxygen beyond what a fire needs.
+    states nearby), ratio of the pressures across machines and valves, oxygen beyond what a fire needs, and pressure of
+    states of known temperature in parts of that of saturation (1: wet, 0: from states nearby).
     """
 
     pressures: float = 1.0
@@ -52,11 +53,15 @@ class _Attempt:
     temperature: float = 0.0
     ratio: float = _RATIO
     excess: float = 0.3
+    saturation: float = 0.0
 
 
 _ATTEMPTS = (
     _Attempt(),
     _Attempt(ratio=1.0, excess=1.5),
+    _Attempt(saturation=1.0),
+    _Attempt(saturation=1.3),
+    _Attempt(saturation=0.6),
     _Attempt(enthalpies=1.0e5, excess=0.05),
     _Attempt(enthalpies=-1.0e5, excess=5.0),
     _Attempt(pressures=0.5),
@@ -110,6 +115,8 @@ class Starts:
             state = path.split(".")[1]
             if name in _USUAL or not path.startswith("states."):
                 found[path] = _USUAL.get(name, 0.0)
+            elif attempt.saturation and (at := self._at_saturation(state, attempt.saturation, name)) is not None:
+                found[path] = at
             elif name == "pressure":
                 near = self._pressure(state, attempt.ratio)
                 found[path] = attempt.pressures * near * (1.0 + _PRESSURES_APART * (number % 5 + 1))
@@ -138,9 +145,10 @@ class Starts:
 
         Saturated states of known temperature tell theirs themselves.
         """
-        own = self._saturation_pressure(state)
-        if np.isfinite(own):
-            return own
+        if np.isfinite(self._base(f"states.{state}.quality", np.nan)):
+            own = self._at_saturation(state, 1.0, "pressure")
+            if own is not None:
+                return own
         queue, seen = [(state, 0)], {state}
         for current, steps in queue:
             value = self._base(f"states.{current}.pressure", np.nan)
@@ -152,12 +160,22 @@ class Starts:
                     queue.append((other, steps + step))
         return self._nearest(state, "pressure", self._base("surroundings.pressure", 1e5))
 
-    def _saturation_pressure(self, state: str) -> float:
+    def _at_saturation(self, state: str, part: float, name: str) -> float | None:
+        """Pressure of a state of known temperature as a part of that of saturation; its enthalpy, where the part is 1,
+        in the middle of the dome. None where there is none.
+        """
         fluid = self._plant.fluids[self._plant.states[state]]
-        temperature, quality = (self._base(f"states.{state}.{name}", np.nan) for name in ("temperature", "quality"))
-        if not np.isfinite([temperature, quality]).all() or not hasattr(fluid, "saturation"):
-            return float(np.nan)
-        return float(fluid.saturation(temperature=temperature, errors="mask")[0].pressure)
+        temperature = self._base(f"states.{state}.temperature", np.nan)
+        if not np.isfinite(temperature) or not hasattr(fluid, "saturation"):
+            return None
+        ends = fluid.saturation(temperature=temperature, errors="mask")
+        if name == "pressure":
+            value = part * float(ends[0].pressure)
+        elif name == "specific_enthalpy" and part == 1.0:
+            value = sum(float(end.specific_enthalpy) for end in ends) / 2.0
+        else:
+            return None
+        return value if np.isfinite(value) else None
 
     def _nearest(self, state: str, name: str, otherwise: float, same_fluid: bool = False) -> float:
         """Value of the nearest state that has one, breadth first."""

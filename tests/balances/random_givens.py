@@ -8,6 +8,7 @@ pressure by a tenth. Where a set is not, the unknown that is worst is given too,
 
 from __future__ import annotations
 
+import re
 from random import Random
 from typing import Any
 
@@ -275,6 +276,14 @@ class Drawing:
         return model.kind != "ideal-gas" and not np.isfinite(model.at(errors="mask", **pair).pressure)
 
 
+def _shows_another(message: str, truth: dict[str, float]) -> bool:
+    found = re.search(r"more than one common solution: (\S+) may be ([\d.e+-]+ bar(?: or [\d.e+-]+ bar)+);", message)
+    if found is None:
+        return False
+    pressures = [float(number.removesuffix(" bar")) * 1e5 for number in found[2].split(" or ")]
+    return any(abs(pressure - truth[found[1]]) < 1e-4 * truth[found[1]] for pressure in pressures)
+
+
 def _holds(relation: Any, truth: dict[str, float]) -> bool:
     """Whether a relation is true of the known states; those that an assumption adds or rewrites may not be."""
     if isinstance(relation, PropertyRelation):
@@ -305,11 +314,13 @@ def draw(seed: int, most: int = MOST_PIECES) -> tuple[Network, dict[str, float]]
 
 
 def judge(network: Network, givens: dict[str, float]) -> tuple[str, str]:
-    """``recovered``; ``refused`` with the message; or ``wrong`` with what differs."""
+    """``recovered``; ``refused`` with the message; ``wrong`` with what differs; or ``not unique``: the program shows a
+    second set of values that satisfies everything given, beside the one from which the network was built.
+    """
     try:
         solution = solve(network.plant, givens)
     except SolutionError as error:
-        return "refused", str(error)
+        return ("not unique" if _shows_another(str(error), network.truth) else "refused"), str(error)
     for path, value in network.truth.items():
         if path.startswith("states.") and path.endswith((".pressure", ".specific_enthalpy", ".mass_flow")):
             found = float(solution.values[path][0])

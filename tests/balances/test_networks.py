@@ -361,3 +361,23 @@ def test_temperatures_alone_do_not_fix_a_flow_even_where_they_are_one_too_many(m
         solve(plant, givens)
     with pytest.raises(SolutionError, match=text):
         solve(plant, givens)
+
+
+def test_two_temperatures_round_a_valve_may_belong_to_two_pressures() -> None:
+    """Wet vapour throttled to gas, or liquid throttled into the dome: both have these temperatures and this loss."""
+    case = one_piece(
+        "throttling-valve",
+        {"inlet": ("1",), "outlet": ("2",)},
+        {"1.temperature": 311.42337962, "2.temperature": 284.14790791, "pressure_drop": 852196.93, "1.mass_flow": 0.1},
+        {"f": real_fluid("R134a")},
+    )
+    pattern = r"more than one common solution: states\.1\.pressure may be 9\.703\d* bar or 12\.80\d* bar"
+    with pytest.raises(SolutionError, match=pattern) as caught:
+        case.solve()
+    assert "give it, or a pressure loss" in str(caught.value)
+    for pressure, quality in ((9.7033e5, True), (12.808e5, False)):
+        drop = ("equipment.X.pressure_drop",) if quality else ("equipment.X.pressure_drop", "states.2.temperature")
+        give = {"states.2.pressure": pressure - 852196.93} if quality else {"states.1.pressure": pressure}
+        give |= {} if quality else {"equipment.X.pressure_drop": 852196.93}
+        values = case.solve(drop, give).values
+        assert values["states.1.pressure"][0] == pytest.approx(pressure, rel=2e-3)

@@ -5,7 +5,7 @@ A sample of what ``tests/benchmarks/random_networks.py`` does with networks of u
 
 from __future__ import annotations
 
-from hypothesis import HealthCheck, given, settings
+from hypothesis import HealthCheck, assume, given, settings
 from hypothesis import strategies as st
 
 from tests.balances.random_givens import draw, judge
@@ -18,4 +18,5 @@ MOST_PIECES = 10
 def test_the_solver_recovers_the_states_a_network_was_built_from(seed: int) -> None:
     network, givens = draw(seed, MOST_PIECES)
     verdict, text = judge(network, givens)
+    assume(verdict != "not unique")
     assert verdict == "recovered", f"seed {seed}, {len(network.plant.equipment)} pieces: {text}"
