@@ -5,13 +5,17 @@
 Two plants of real steam and water are grown. ``modules``: trains of ten pieces (compression with an intercooler, split,
 recycle, mixing, expansion, a throttle and a pipe) one after the other, each with a recycle that is solved as one block.
 ``one recycle``: the same pieces inside a single recycle of given duties, so that nearly all relations are one block.
-The exponent is the slope of log time against log pieces; times are of the processor, the best of a few runs.
+The exponent is the slope of log time against log pieces; times are of the processor, the best of a few runs, with one
+thread: others that wait for work would be counted as working.
 """
 
 from __future__ import annotations
 
 import math
+import os
 import time
+
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # before numpy is loaded
 
 from reportgen.balances import EquipmentDefinition, Plant, solve
 from reportgen.fluids import real_fluid
